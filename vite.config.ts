@@ -1,0 +1,53 @@
+import { reactRouter } from '@react-router/dev/vite'
+import tailwindcss from '@tailwindcss/vite'
+import { defineConfig } from 'vitest/config'
+
+// Under vitest the router plugin must stay off: it would take over module resolution.
+const underTest = process.env.VITEST !== undefined
+
+export default defineConfig({
+  plugins: underTest ? [] : [tailwindcss(), reactRouter()],
+  // Vite would otherwise pick one of its default ports and open it on every interface.
+  server: { host: '127.0.0.1' },
+  test: {
+    environment: 'node',
+    projects: [
+      {
+        extends: true,
+        test: { name: 'unit', include: ['tests/unit/**/*.test.{ts,tsx}'] },
+      },
+      {
+        extends: true,
+        test: {
+          name: 'db',
+          include: ['tests/db/**/*.test.ts'],
+          globalSetup: ['tests/support/migrate-test-databases.ts'],
+          maxWorkers: 2,
+          testTimeout: 30_000,
+          hookTimeout: 60_000,
+        },
+      },
+      {
+        extends: true,
+        test: {
+          name: 'routes',
+          include: ['tests/routes/**/*.test.ts'],
+          globalSetup: ['tests/support/migrate-test-databases.ts'],
+          maxWorkers: 2,
+          testTimeout: 30_000,
+          hookTimeout: 60_000,
+        },
+      },
+      {
+        extends: true,
+        test: {
+          name: 'e2e',
+          include: ['tests/e2e/**/*.test.ts'],
+          fileParallelism: false,
+          testTimeout: 120_000,
+          hookTimeout: 180_000,
+        },
+      },
+    ],
+  },
+})
