@@ -49,7 +49,8 @@ export function qualityCode(quality: Quality): number {
 /** Word for a stored quality number; an unknown number is a programming error. */
 export function qualityWord(code: number): Quality {
   const word = QUALITIES[code]
-  if (word === undefined) throw new RangeError(`No quality has the code ${code} (0 to ${QUALITIES.length - 1})`)
+  if (word === undefined)
+    throw new RangeError(`No quality has the code ${code} (0 to ${QUALITIES.length - 1})`)
   return word
 }
 

@@ -1,0 +1,6 @@
+export * from './intake.ts'
+export * from './logbook.ts'
+export * from './people.ts'
+export * from './readings.ts'
+export * from './register.ts'
+export * from './shared.ts'

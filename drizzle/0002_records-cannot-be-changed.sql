@@ -1,0 +1,1 @@
+CREATE TRIGGER `record_no_update` BEFORE UPDATE ON `record` FOR EACH ROW SIGNAL SQLSTATE '45000' SET MESSAGE_TEXT = 'The record is append-only';
