@@ -32,8 +32,9 @@ export function connect(databaseUrl: string, options: { connectionLimit?: number
   })
   pool.on('connection', (connection) => {
     connection.query(
-      "SET time_zone = '+00:00', sql_mode = 'STRICT_ALL_TABLES,NO_ZERO_DATE,NO_ZERO_IN_DATE,ERROR_FOR_DIVISION_BY_ZERO', SESSION TRANSACTION ISOLATION LEVEL READ COMMITTED",
+      "SET time_zone = '+00:00', sql_mode = 'STRICT_ALL_TABLES,NO_ZERO_DATE,NO_ZERO_IN_DATE,ERROR_FOR_DIVISION_BY_ZERO'",
     )
+    connection.query('SET SESSION TRANSACTION ISOLATION LEVEL READ COMMITTED')
   })
   return { db: drizzle(pool), pool }
 }
