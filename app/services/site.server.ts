@@ -1,0 +1,10 @@
+import type { DbOrTx } from '../db/client.server.ts'
+import { findSite, type Site } from '../db/queries/site.server.ts'
+import { DomainError } from '../domain/errors.ts'
+
+/** The site's own facts; an empty database is a set-up fault and is said as one. */
+export async function getSite(db: DbOrTx): Promise<Site> {
+  const found = await findSite(db)
+  if (found !== null) return found
+  throw new DomainError('unavailable', 'The register is empty: seed it first (npm start does so for the demo).')
+}
