@@ -8,8 +8,17 @@ export default [
 
   layout('routes/layout.tsx', [
     index('routes/line/line.tsx'),
+    route('segments/:tag', 'routes/segments/segment.tsx'),
+    route('segments/:tag/state', 'routes/segments/state.tsx'),
+    route('logbook', 'routes/logbook/logbook.tsx'),
+    route('logbook/new', 'routes/logbook/new-entry.tsx'),
+    route('logbook/:entryId', 'routes/logbook/entry.tsx'),
     route('account', 'routes/account/account.tsx'),
+    route('clock', 'routes/account/clock.tsx'),
   ]),
+
+  // Resource routes: no page of their own.
+  route('segments/:tag/readings.csv', 'routes/segments/readings-csv.tsx'),
 
   // Anything else: the plain 404 page, from a route of its own so that middleware and matrix cover it.
   route('*', 'routes/public/not-found.tsx'),

@@ -125,3 +125,13 @@ export async function listPlacedPumps(db: DbOrTx, segmentIds: readonly number[],
     )
     .orderBy(asc(pumpPlacement.startsAt))
 }
+
+/** Tags of all segments in order along the tube. */
+export async function listSegmentTags(db: DbOrTx): Promise<string[]> {
+  const rows = await db
+    .select({ tag: segment.tag })
+    .from(segment)
+    .innerJoin(line, eq(line.id, segment.lineId))
+    .orderBy(asc(line.sortOrder), asc(segment.sortOrder))
+  return rows.map(({ tag }) => tag)
+}
