@@ -1,15 +1,20 @@
 /** Line: the whole facility at one instant. */
 import type { Db } from '../db/client.server.ts'
 import { binReadings, listMapSpans, listSourceEnds } from '../db/queries/readings.server.ts'
-import { listLines } from '../db/queries/segments.server.ts'
+import { listLimits, listLines } from '../db/queries/segments.server.ts'
 import { expectedNight, type NightFileStatus } from '../domain/expected-files.ts'
 import type { Quality } from '../domain/readings.ts'
-import { type FacilityFigures, facilityFigures, type Question, type SegmentStanding } from '../domain/segment-standing.ts'
+import {
+  type FacilityFigures,
+  facilityFigures,
+  type Question,
+  type SegmentStanding,
+} from '../domain/segment-standing.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
+import { weeklyChange } from '../domain/trend.ts'
 import { predictedProfile } from './segment-model.server.ts'
-import { type LastAtPosition, limitFor, readStandings, type StandingSegment } from './standing.server.ts'
 import { getSite } from './site.server.ts'
-import { listLimits } from '../db/queries/segments.server.ts'
+import { type LastAtPosition, limitFor, readStandings, type StandingSegment } from './standing.server.ts'
 
 export interface LineGauge {
   tag: string
@@ -64,7 +69,7 @@ export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
   const needed = limitFor(limits, 'available-at-target', null)?.value ?? standings.length
   return {
     lines: lines.map(({ code, name, lengthM, joinsAtM }) => ({ code, name, lengthM, joinsAtM })),
-    segments: standings.map(toLineSegment),
+    segments: standings.map((entry) => toLineSegment(entry, at)),
     figures: facilityFigures(
       standings.map(({ segment, standing }) => ({
         tag: segment.tag,
@@ -77,13 +82,21 @@ export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
     worst: worstInService(standings),
     nightFiles: sources
       .filter(({ dueAt }) => dueAt !== '')
-      .map((source) => expectedNight({ code: source.code, dueAt: source.dueAt, endAt: source.endAt, now: at, zone: site.timeZone })),
+      .map((source) =>
+        expectedNight({
+          code: source.code,
+          dueAt: source.dueAt,
+          endAt: source.endAt,
+          now: at,
+          zone: site.timeZone,
+        }),
+      ),
     at,
     zone: site.timeZone,
   }
 }
 
-function toLineSegment(entry: StandingSegment): LineSegment {
+function toLineSegment(entry: StandingSegment, at: Date): LineSegment {
   const { segment, standing, gauges, target, limit } = entry
   return {
     tag: segment.tag,
@@ -108,7 +121,7 @@ function toLineSegment(entry: StandingSegment): LineSegment {
     limitPa: limit?.value ?? null,
     questions: standing.questions,
     gauges: gauges.map(toLineGauge),
-    predicted: predictedProfile(entry),
+    predicted: predictedProfile(entry, at),
   }
 }
 
@@ -130,7 +143,8 @@ function worstInService(standings: readonly StandingSegment[]): LinePageData['wo
   let worst: LinePageData['worst'] = null
   for (const { segment, standing, target } of standings) {
     const headline = standing.headline
-    if (segment.state !== 'in-service' || target === null || !headline?.fresh || headline.value === null) continue
+    if (segment.state !== 'in-service' || target === null || !headline?.fresh || headline.value === null)
+      continue
     const ratio = headline.value / target.value
     if (worst === null || ratio > worst.ratio) worst = { tag: segment.tag, ratio, pa: headline.value }
   }
@@ -147,7 +161,6 @@ export interface Trend {
 
 const TREND_DAYS = 30
 const TREND_BIN_SECONDS = 43_200
-const LEAST_BINS = 28
 
 /** Thirty days of each segment's cross gauge in half-day steps, for the small line and the trend. */
 export async function readTrends(db: Db, at: Date): Promise<Trend[]> {
@@ -157,7 +170,12 @@ export async function readTrends(db: Db, at: Date): Promise<Trend[]> {
     return cross === undefined ? [] : [{ tag: segment.tag, positionId: cross.position.id }]
   })
   const from = new Date(at.getTime() - TREND_DAYS * 86_400_000)
-  const spans = await listMapSpans(db, crosses.map(({ positionId }) => positionId), from, at)
+  const spans = await listMapSpans(
+    db,
+    crosses.map(({ positionId }) => positionId),
+    from,
+    at,
+  )
   const bins = await binReadings(db, {
     channelIds: [...new Set(spans.map(({ channelId }) => channelId))],
     from,
@@ -175,23 +193,6 @@ export async function readTrends(db: Db, at: Date): Promise<Trend[]> {
         if (bin.channelId === span.channelId && inside && step >= 0 && step < steps) values[step] = bin.mean
       }
     }
-    return { tag, values, perWeek: weeklyChange(values) }
+    return { tag, values, perWeek: weeklyChange(values, TREND_BIN_SECONDS) }
   })
-}
-
-/** Median of pairwise slopes of log p, robust against single bursts, as relative change per week. */
-function weeklyChange(values: readonly (number | null)[]): number | null {
-  const points = values.flatMap((value, step) => (value === null ? [] : [[step, Math.log(value)] as const]))
-  if (points.length < LEAST_BINS) return null
-  const slopes: number[] = []
-  for (let i = 0; i < points.length; i += 1) {
-    for (let j = i + 8; j < points.length; j += 1) {
-      const [a, b] = [points[i], points[j]]
-      if (a !== undefined && b !== undefined) slopes.push((b[1] - a[1]) / (b[0] - a[0]))
-    }
-  }
-  slopes.sort((a, b) => a - b)
-  const median = slopes[Math.floor(slopes.length / 2)]
-  if (median === undefined) return null
-  return Math.exp((median * 7 * 86_400) / TREND_BIN_SECONDS) - 1
 }

@@ -1,0 +1,114 @@
+/**
+ * The physical model of a segment, made from what the register says of it. The register holds facts about hardware;
+ * app/physics holds equations; this is the only place where one becomes the other.
+ */
+import type { PlacedPump, SegmentWithState } from '../db/queries/segments.server.ts'
+import { SEGMENT_STATES } from '../domain/segment-states.ts'
+import { longTubeConductance } from '../physics/conductance.ts'
+import { GASES } from '../physics/gases.ts'
+import { hydrogenDiffusivity } from '../physics/hydrogen.ts'
+import { bakeHoursToReach, predictPumpDown, type SegmentModel, steadyProfile } from '../physics/predict.ts'
+import type { StandingSegment } from './standing.server.ts'
+
+const ROOM_K = 293.15
+/** The bake that a baked, unfired segment is taken to have had: 150 °C for a week, the site's usual one. */
+const USUAL_BAKE_K = 423.15
+const USUAL_BAKE_S = 168 * 3600
+/** A sheet some weeks old has lost the hydrogen nearest its faces; without this the first rate would be infinite. */
+const MILL_AGE_M2 = 1e-9
+/** Water is not predicted below this; see the page on the model in DEVELOPERS.md. */
+const WATER_FLOOR_PA = 1e-11
+
+/** Whether water, rather than hydrogen from the steel, decides the pressure: never baked, or vented since. */
+function isUnbaked(segment: SegmentWithState): boolean {
+  return segment.lastBakeYear === null
+}
+
+/**
+ * The model of a segment with the pumps given, cold; null when no high-vacuum pump works on it or its register entry
+ * lacks what the model needs.
+ */
+export function coldModel(segment: SegmentWithState, pumps: readonly PlacedPump[]): SegmentModel | null {
+  const working = pumps.filter(({ kind }) => kind !== 'roughing-set')
+  if (working.length === 0) return null
+  const hydrogen = hydrogenOf(segment)
+  if (hydrogen === null) return null
+  return {
+    lengthM: segment.endM - segment.startM,
+    diameterM: segment.innerDiameterM,
+    wallM: segment.wallM,
+    temperatureK: ROOM_K,
+    pumps: working.map(({ offsetM, speeds }) => ({ atM: offsetM, speedM3S: speeds })),
+    hydrogen,
+    water: isUnbaked(segment)
+      ? { state: 'unbaked', capacityPerM2: segment.waterCapacity }
+      : { state: 'baked', floorPa: WATER_FLOOR_PA },
+  }
+}
+
+function hydrogenOf(segment: SegmentWithState): SegmentModel['hydrogen'] | null {
+  if (segment.hydrogenModel === 'low-hydrogen') {
+    return segment.hydrogenQ20 === null
+      ? null
+      : { kind: 'low-hydrogen', qPaMS: segment.hydrogenQ20, atK: ROOM_K }
+  }
+  if (segment.hydrogenC0 === null) return null
+  const agedTauM2 = isUnbaked(segment)
+    ? MILL_AGE_M2
+    : MILL_AGE_M2 + hydrogenDiffusivity(USUAL_BAKE_K) * USUAL_BAKE_S
+  return { kind: 'diffusion', c0PerM3: segment.hydrogenC0, agedTauM2 }
+}
+
+/**
+ * Pressure at the ends over pressure at the pump for hydrogen from the whole wall and one pump at mid-length:
+ * 1 + L·S/(8c), with c the specific conductance (parabolic profile of a tube outgassing evenly toward its middle).
+ *
+ * @returns null when no pump works, more than one does, or it does not stand at mid-length
+ */
+export function endToCrossRatio(segment: SegmentWithState, pumps: readonly PlacedPump[]): number | null {
+  const lengthM = segment.endM - segment.startM
+  const [pump, second] = pumps.filter(({ kind }) => kind !== 'roughing-set')
+  if (pump === undefined || second !== undefined || segment.state === 'isolated-test') return null
+  if (Math.abs(pump.offsetM - lengthM / 2) > 0.1 * lengthM) return null
+  const speed = pump.speeds.H2
+  if (speed === undefined) return null
+  const specific = longTubeConductance(GASES.H2, ROOM_K, segment.innerDiameterM, lengthM) * lengthM
+  return 1 + (lengthM * speed) / (8 * specific)
+}
+
+/** Pressure expected along a segment now, nitrogen-equivalent; null in states for which there is no model. */
+export function predictedProfile(
+  { segment, pumps }: StandingSegment,
+  at: Date,
+): { offsetM: number; pa: number }[] | null {
+  const facts = SEGMENT_STATES[segment.state]
+  if (facts.hot || !facts.highVacuum || segment.state === 'isolated-test') return null
+  const model = coldModel(segment, pumps)
+  if (model === null) return null
+  if (model.water.state === 'baked') {
+    return steadyProfile(model).map(({ offsetM, n2EquivalentPa }) => ({ offsetM, pa: n2EquivalentPa }))
+  }
+  const hours = segment.since === null ? null : (at.getTime() - segment.since.getTime()) / 3_600_000
+  if (segment.state !== 'pumping' || hours === null || hours <= 0) return null
+  const points = 13
+  return Array.from({ length: points }, (_, index) => {
+    const offsetM = (model.lengthM * index) / (points - 1)
+    return {
+      offsetM,
+      pa: predictPumpDown(model, { hours: [hours], atM: offsetM }).n2EquivalentPa[0] ?? Number.NaN,
+    }
+  }).filter(({ pa }) => Number.isFinite(pa))
+}
+
+/** Soak at a temperature that would bring an end of the segment to a target, with the pump it has in service. */
+export function bakeToReach(
+  segment: SegmentWithState,
+  everPlaced: readonly PlacedPump[],
+  targetPa: number,
+  bakeC: number,
+): { hours: number; limitedBy: 'water' | 'hydrogen' } | null {
+  const own = everPlaced.filter(({ kind }) => kind === 'getter-ion')
+  const model = coldModel(segment, own.length > 0 ? own.slice(-1) : everPlaced)
+  if (model === null) return null
+  return bakeHoursToReach(model, { targetPa, bakeK: bakeC + 273.15, atM: 0 })
+}
