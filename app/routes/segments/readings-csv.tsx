@@ -1,4 +1,4 @@
-import { permitted, nowOf } from '#app/auth/guard.server.ts'
+import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { getDb } from '#app/db/client.server.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
 import { segmentReadingsCsv } from '#app/services/segment-csv.server.ts'

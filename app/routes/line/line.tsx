@@ -1,0 +1,30 @@
+import { nowOf, permitted } from '#app/auth/guard.server.ts'
+import { LinePage } from '#app/components/line/line-page.tsx'
+import { getDb } from '#app/db/client.server.ts'
+import { readLinePage, readTrends } from '#app/services/line-page.server.ts'
+import { getSite } from '#app/services/site.server.ts'
+import type { Route } from './+types/line'
+
+export function meta() {
+  return [{ title: 'Line · Ebbline' }]
+}
+
+const DAY_MS = 86_400_000
+
+export async function loader({ context, request, url }: Route.LoaderArgs) {
+  permitted(context, request, 'facility:view')
+  const now = nowOf(context)
+  // Looking back shows what was true then, by what is known today.
+  const dayBefore = url.searchParams.get('at') === 'day-before'
+  const at = dayBefore ? new Date(now.getTime() - DAY_MS) : now
+  const [page, trends, site] = await Promise.all([
+    readLinePage(getDb(), at),
+    readTrends(getDb(), at),
+    getSite(getDb()),
+  ])
+  return { ...page, trends, siteName: site.name, dayBefore, show: url.searchParams.get('show') ?? 'all' }
+}
+
+export default function Line({ loaderData }: Route.ComponentProps) {
+  return <LinePage {...loaderData} />
+}

@@ -1,0 +1,38 @@
+import { nowOf, permitted } from '#app/auth/guard.server.ts'
+import { SegmentPage } from '#app/components/segment/segment-page.tsx'
+import { getDb } from '#app/db/client.server.ts'
+import { rolesHave } from '#app/domain/roles.ts'
+import { readAskedPressure } from '#app/domain/schemas/asked-pressure.ts'
+import { orRefuse } from '#app/server/respond.server.ts'
+import { readSegmentPage } from '#app/services/segment-page.server.ts'
+import { getSite } from '#app/services/site.server.ts'
+import type { Route } from './+types/segment'
+
+export function meta({ params }: Route.MetaArgs) {
+  return [{ title: `${params.tag} · Ebbline` }]
+}
+
+export async function loader({ context, request, params, url }: Route.LoaderArgs) {
+  const actor = permitted(context, request, 'facility:view')
+  const now = nowOf(context)
+  const asked = readAskedPressure(url.searchParams.get('to'))
+  const [page, site] = await Promise.all([
+    orRefuse(readSegmentPage(getDb(), params.tag, now, asked.pa)),
+    getSite(getDb()),
+  ])
+  return {
+    ...page,
+    now,
+    zone: site.timeZone,
+    asked,
+    may: {
+      setState: rolesHave(actor.roles, 'segment-state:set'),
+      takeIn: rolesHave(actor.roles, 'intake:take-in'),
+      writeEntry: rolesHave(actor.roles, 'entry:write'),
+    },
+  }
+}
+
+export default function Segment({ loaderData }: Route.ComponentProps) {
+  return <SegmentPage {...loaderData} />
+}
