@@ -58,7 +58,7 @@ async function listTables(connection: {
 }
 
 /** Call at the top of a test file: an empty database before each test, the pool closed after the last. */
-export function useDatabase(): Db {
+export function freshDatabase(): Db {
   beforeEach(cleanDatabase)
   afterAll(closeDb)
   return testDb()
