@@ -1,0 +1,181 @@
+/** The frame around every page: where one can go, whose site this is, what time it is here, and who is signed in. */
+import { Form, Link, useLocation } from 'react-router'
+import type { PressureUnit } from '#app/context.ts'
+import { ROLE_LABELS, type Role } from '#app/domain/roles.ts'
+import { SiteProvider } from '#app/hooks/use-site.ts'
+import { BrandMark } from './ui/brand-mark.tsx'
+import { Menu } from './ui/menu.tsx'
+import { Notice } from './ui/notice.tsx'
+import { longTimeText, offsetLabel } from './ui/site-time.ts'
+import { UnitSwitch } from './ui/unit-switch.tsx'
+
+export interface ShellProps {
+  person: { name: string; roles: readonly Role[] }
+  site: { name: string; zone: string }
+  clock: { at: Date; demo: boolean }
+  unit: PressureUnit
+  places: { facility: boolean; people: boolean }
+  mayAdvanceClock: boolean
+  notice: string | null
+  children: React.ReactNode
+}
+
+interface Place {
+  to: string
+  label: string
+  /** Beginnings of the addresses that belong to this place. */
+  roots: readonly string[]
+}
+
+function placesFor(places: ShellProps['places']): Place[] {
+  return [
+    ...(places.facility
+      ? [
+          { to: '/', label: 'Line', roots: ['/segments'] },
+          { to: '/intake', label: 'Log intake', roots: ['/intake'] },
+        ]
+      : []),
+    { to: '/logbook', label: 'Logbook', roots: ['/logbook'] },
+    ...(places.facility ? [{ to: '/register', label: 'Register', roots: ['/register'] }] : []),
+    ...(places.people ? [{ to: '/people', label: 'People', roots: ['/people'] }] : []),
+  ]
+}
+
+function isHere(place: Place, pathname: string): boolean {
+  return (
+    pathname === place.to || place.roots.some((root) => pathname === root || pathname.startsWith(`${root}/`))
+  )
+}
+
+export function Shell({ person, site, clock, unit, places, mayAdvanceClock, notice, children }: ShellProps) {
+  return (
+    <SiteProvider value={{ zone: site.zone, now: clock.at, unit }}>
+      <a
+        href="#content"
+        className="sr-only z-30 rounded-md bg-ink px-4 py-2.5 text-sheet focus:not-sr-only focus:fixed focus:top-2 focus:left-2 print:hidden"
+      >
+        Skip to the page
+      </a>
+      <div className="min-h-dvh md:grid md:grid-cols-[11.75rem_minmax(0,1fr)] print:block">
+        <div className="md:sticky md:top-0 md:flex md:h-dvh md:flex-col md:border-r md:px-3.5 md:py-4 print:hidden">
+          <Link
+            to={places.facility ? '/' : '/logbook'}
+            className="mx-1.5 mb-4 hidden items-center gap-2 rounded-sm text-xl font-semibold tracking-head md:flex"
+          >
+            <BrandMark />
+            Ebbline
+          </Link>
+          <Places places={placesFor(places)} />
+        </div>
+        <div className="min-w-0 pb-16 md:pb-0">
+          <header className="flex flex-wrap items-center gap-x-5 gap-y-1 border-b px-4 py-2 text-sm text-ink-2 md:px-6.5 print:hidden">
+            <span className="flex items-center gap-2 font-medium text-ink">
+              <BrandMark className="md:hidden" />
+              {site.name}
+            </span>
+            <Clock clock={clock} zone={site.zone} mayAdvance={mayAdvanceClock} />
+            <div className="ml-auto flex items-center gap-2">
+              <UnitSwitch unit={unit} />
+              <PersonMenu person={person} />
+            </div>
+          </header>
+          <p className="hidden px-4 text-xs print:block">
+            {site.name} · printed from Ebbline as of {longTimeText(clock.at, site.zone)} (
+            {offsetLabel(clock.at, site.zone)}) by {person.name}
+            {clock.demo && ' · demo data'}
+          </p>
+          <main
+            id="content"
+            tabIndex={-1}
+            className="max-w-[82.5rem] px-4 pt-4 pb-10 outline-none md:px-6.5 print:px-0"
+          >
+            {notice !== null && <Notice announce="status">{notice}</Notice>}
+            {children}
+          </main>
+        </div>
+      </div>
+    </SiteProvider>
+  )
+}
+
+/** The rail on a wide screen; a bar at the bottom edge, in reach of the thumb, on a narrow one. */
+function Places({ places }: { places: readonly Place[] }) {
+  const { pathname } = useLocation()
+  return (
+    <nav
+      aria-label="Places"
+      className="fixed inset-x-0 bottom-0 z-20 border-t bg-paper md:static md:border-t-0 md:bg-transparent"
+    >
+      <ul className="flex md:flex-col md:gap-0.5">
+        {places.map((place) => (
+          <li key={place.to} className="min-w-0 flex-1">
+            <Link
+              to={place.to}
+              aria-current={isHere(place, pathname) ? 'page' : undefined}
+              className="flex min-h-14 items-center justify-center rounded-md px-1 text-center text-sm text-ink-2 hover:bg-sheet aria-[current]:bg-sheet aria-[current]:font-semibold aria-[current]:text-ink aria-[current]:shadow-[inset_0_3px_0_var(--color-vac)] md:min-h-10 md:justify-start md:px-2.5 md:text-left md:text-base md:aria-[current]:shadow-[inset_3px_0_0_var(--color-vac)] md:pointer-coarse:min-h-11"
+            >
+              {place.label}
+            </Link>
+          </li>
+        ))}
+      </ul>
+    </nav>
+  )
+}
+
+function Clock({
+  clock,
+  zone,
+  mayAdvance,
+}: {
+  clock: ShellProps['clock']
+  zone: string
+  mayAdvance: boolean
+}) {
+  return (
+    <span>
+      <time dateTime={clock.at.toISOString()} className="font-medium text-ink">
+        {longTimeText(clock.at, zone)}
+      </time>{' '}
+      {offsetLabel(clock.at, zone)}
+      {clock.demo && (
+        <>
+          {' · '}
+          {mayAdvance ? (
+            <Link to="/clock" className="link inline-block py-1">
+              demo clock
+            </Link>
+          ) : (
+            'demo clock'
+          )}
+        </>
+      )}
+    </span>
+  )
+}
+
+function PersonMenu({ person }: { person: ShellProps['person'] }) {
+  const item =
+    'flex min-h-10 w-full items-center rounded-sm px-2.5 text-left text-ink hover:bg-rule-2 pointer-coarse:min-h-11'
+  return (
+    <Menu label={person.name}>
+      <p className="px-2.5 pb-1.5 text-sm text-ink-3">
+        {person.roles.map((role) => ROLE_LABELS[role]).join(', ') || 'No role in force'}
+      </p>
+      <ul className="border-t pt-1">
+        <li>
+          <Link to="/account" className={item}>
+            Your settings
+          </Link>
+        </li>
+        <li>
+          <Form method="post" action="/sign-out">
+            <button type="submit" className={item}>
+              Sign out
+            </button>
+          </Form>
+        </li>
+      </ul>
+    </Menu>
+  )
+}
