@@ -1,0 +1,80 @@
+/** The suites of `npm test`, in the order in which they run. */
+import { existsSync, readFileSync } from 'node:fs'
+import { join } from 'node:path'
+import { runChecks } from './checks.mjs'
+import { run, start } from './processes.mjs'
+import { outcomeOf } from './report.mjs'
+
+const HANGS_AFTER_MS = 8 * 60_000
+
+/**
+ * @typedef {object} Surroundings
+ * @property {string} root the project
+ * @property {string} folder for reports; removed at the end
+ * @property {NodeJS.ProcessEnv} env with TEST_DATABASE_URL
+ */
+
+/**
+ * @typedef {object} Suite
+ * @property {string} name
+ * @property {boolean} database whether it needs the database server
+ * @property {boolean} [browser] whether it needs Chromium
+ * @property {(surroundings: Surroundings) => Promise<import('./report.mjs').Outcome>} run
+ */
+
+/** @type {Suite[]} */
+export const SUITES = [
+  { name: 'validate', database: false, run: runValidate },
+  { name: 'unit', database: false, run: vitest('unit', 'UTC') },
+  { name: 'db', database: true, run: vitest('db', 'UTC') },
+  { name: 'build', database: false, run: build },
+  { name: 'routes', database: true, run: vitest('routes', 'UTC') },
+  { name: 'e2e', database: true, browser: true, run: vitest('e2e', 'UTC') },
+  // Far from UTC and on the other side of the year: what leans on the machine's zone shows here.
+  { name: 'unit-nz', database: false, run: vitest('unit', 'Pacific/Auckland') },
+  { name: 'db-nz', database: true, run: vitest('db', 'Pacific/Auckland') },
+]
+
+/** @type {Suite['run']} */
+async function runValidate({ root }) {
+  return { ...(await runChecks(root)), skipped: 0, notes: [] }
+}
+
+/** The production build counts as one test: route and browser tests rest on it. @type {Suite['run']} */
+async function build({ root, env }) {
+  const program = join(root, 'node_modules', '.bin', 'react-router')
+  await run(program, ['build'], {
+    cwd: root,
+    env: { ...env, NODE_ENV: 'production' },
+    failure: 'The build failed',
+  })
+  return { passed: 1, failed: 0, skipped: 0, notes: [] }
+}
+
+/**
+ * @param {string} project of vite.config.ts
+ * @param {string} zone
+ * @returns {Suite['run']}
+ */
+function vitest(project, zone) {
+  return async ({ root, folder, env }) => {
+    const reportPath = join(folder, `${project}-${zone.replace('/', '-')}.json`)
+    const args = [
+      'run',
+      '--project',
+      project,
+      '--reporter=default',
+      '--reporter=json',
+      `--outputFile.json=${reportPath}`,
+    ]
+    const program = start(join(root, 'node_modules', '.bin', 'vitest'), args, {
+      cwd: root,
+      env: { ...env, NODE_ENV: 'test', TZ: zone },
+      show: true,
+    })
+    const hung = setTimeout(() => program.child.kill('SIGKILL'), HANGS_AFTER_MS)
+    const end = await program.ended
+    clearTimeout(hung)
+    return outcomeOf(existsSync(reportPath) ? JSON.parse(readFileSync(reportPath, 'utf8')) : undefined, end)
+  }
+}
