@@ -71,7 +71,8 @@ function dampedStep(at: Landscape, damping: number): number[] | null {
   let scale = 0
   for (let i = 0; i < n; i++) scale = Math.max(scale, at.curvature[i * n + i]!)
   for (let i = 0; i < n; i++) {
-    for (let j = 0; j < n; j++) matrix.set(i, j, at.curvature[i * n + j]!)
+    // Only the lower half is read: a b and b a may differ in the last digit, which the decomposition refuses.
+    for (let j = 0; j <= i; j++) setBoth(matrix, i, j, at.curvature[i * n + j]!)
     const own = at.curvature[i * n + i]!
     matrix.set(i, i, own + damping * (own + 1e-12 * scale) + 1e-300)
   }
@@ -82,6 +83,11 @@ function dampedStep(at: Landscape, damping: number): number[] | null {
   return step.every(Number.isFinite) ? step : null
 }
 
+function setBoth(matrix: Matrix, i: number, j: number, value: number): void {
+  matrix.set(i, j, value)
+  matrix.set(j, i, value)
+}
+
 /** Inverse of a symmetric positive matrix given row-major, or null when it is singular. */
 export function invertPositive(curvature: Float64Array, size: number): Float64Array | null {
   // Scaled to a unit diagonal first: the parameters may differ in size by many decades.
@@ -89,7 +95,7 @@ export function invertPositive(curvature: Float64Array, size: number): Float64Ar
   if (scale.some((s) => !(s > 0))) return null
   const matrix = new Matrix(size, size)
   for (let i = 0; i < size; i++) {
-    for (let j = 0; j < size; j++) matrix.set(i, j, curvature[i * size + j]! / (scale[i]! * scale[j]!))
+    for (let j = 0; j <= i; j++) setBoth(matrix, i, j, curvature[i * size + j]! / (scale[i]! * scale[j]!))
   }
   const cholesky = new CholeskyDecomposition(matrix)
   if (!cholesky.isPositiveDefinite()) return null
