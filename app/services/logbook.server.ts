@@ -37,7 +37,9 @@ export async function writeEntry(db: Db, actor: Actor, now: Date, entry: NewEntr
   demand(actor, 'entry:write')
   if (entry.eventAt.getTime() > now.getTime() + AHEAD_MS) {
     throw new DomainError('bad-input', 'One field needs another look; nothing has been saved.', {
-      fields: { eventAt: ['This lies in the future. An entry says what has happened; give the time it happened.'] },
+      fields: {
+        eventAt: ['This lies in the future. An entry says what has happened; give the time it happened.'],
+      },
     })
   }
   const segmentId = entry.segment === '' ? null : await findSegmentId(db, entry.segment)
