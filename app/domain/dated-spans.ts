@@ -64,7 +64,7 @@ export function clip<Row extends Span>(rows: readonly Row[], window: Span): Remn
       const end = Math.min(endOf(row), endOf(window))
       return {
         of: row,
-        startsAt: row.startsAt > window.startsAt ? row.startsAt : window.startsAt,
+        startsAt: new Date(Math.max(row.startsAt.getTime(), window.startsAt.getTime())),
         endsAt: end === FOREVER ? null : new Date(end),
       }
     })
