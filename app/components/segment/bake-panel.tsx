@@ -1,0 +1,78 @@
+/** Whether waiting can reach the target, and the bake that would. */
+import { Facts, Panel } from '#app/components/ui/panel.tsx'
+import { Pressure } from '#app/components/ui/pressure.tsx'
+import type { SegmentPageProps } from './segment-page.tsx'
+
+/** Waiting this long is no plan. */
+const PATIENCE_HOURS = 24 * 60
+
+export function BakePanel({ bake, forecast, segment, standing }: SegmentPageProps) {
+  if (bake === null) return null
+  return (
+    <Panel title={`A bake at ${bake.bakeC} °C`}>
+      {forecast !== null && <NeedsBake forecast={forecast} targetPa={bake.targetPa} />}
+      {standing.verdict === 'at-target' && (
+        <p className="mb-2 text-ink-2">The segment is at its target; no bake is called for.</p>
+      )}
+      {bake.result === null ? (
+        <p>
+          By the model no bake at {bake.bakeC} °C brings the ends to <Pressure pa={bake.targetPa} /> with the
+          pump this segment has, or the register lacks what the model needs (pump speed, hydrogen content).
+        </p>
+      ) : (
+        <Facts
+          items={[
+            { name: 'Target at the ends', value: <Pressure pa={bake.targetPa} /> },
+            { name: 'Soak needed', value: soakText(bake.result.hours) },
+            {
+              name: 'What decides it',
+              value: bake.result.limitedBy === 'water' ? 'water on the wall' : 'hydrogen in the steel',
+            },
+          ]}
+        />
+      )}
+      <p className="mt-2 text-sm text-ink-3">
+        Closed forms from the register's steel and pump, cooled to 20 °C; hydrogen in {segment.steel}:{' '}
+        {segment.hydrogenOrigin}. Diffusion in steel is known to a factor of about two, so is this length. No
+        plan and no permit to heat.
+      </p>
+    </Panel>
+  )
+}
+
+function soakText(hours: number): string {
+  if (hours < 1) return 'the ramp alone'
+  return hours < 72 ? `${Math.ceil(hours)} h` : `${Math.ceil(hours)} h (${(hours / 24).toFixed(1)} days)`
+}
+
+function NeedsBake({
+  forecast,
+  targetPa,
+}: {
+  forecast: NonNullable<SegmentPageProps['forecast']>
+  targetPa: number
+}) {
+  const target = forecast.target?.result
+  if (target === undefined) return null
+  if (target.kind === 'forecast' && target.hours < PATIENCE_HOURS) {
+    return (
+      <p className="mb-2">
+        Pumping alone is forecast to reach the target after {Math.round(target.hours / 24)} days; a bake would
+        be sooner.
+      </p>
+    )
+  }
+  return (
+    <p className="mb-2">
+      <strong>The target needs a bake.</strong>{' '}
+      {target.kind === 'forecast' ? (
+        <>
+          On this course <Pressure pa={targetPa} /> would take about {Math.round(target.hours / 24)} days of
+          pumping.
+        </>
+      ) : (
+        <>Pumping alone: {target.message}</>
+      )}
+    </p>
+  )
+}
