@@ -41,6 +41,21 @@ export const QUALITIES = [
 
 export type Quality = (typeof QUALITIES)[number]
 
+/** What a quality means, as people read it beside a missing value. */
+export const QUALITY_LABELS: Record<Quality, string> = {
+  good: 'good',
+  'over-range': 'over range',
+  'under-range': 'under range',
+  off: 'off',
+  starting: 'starting up',
+  degas: 'degassing',
+  fault: 'gauge fault',
+  'no-signal': 'no signal',
+  suspect: 'suspect',
+  manual: 'typed by hand',
+  withdrawn: 'withdrawn',
+}
+
 /** Number stored for a quality word. */
 export function qualityCode(quality: Quality): number {
   return QUALITIES.indexOf(quality)

@@ -4,20 +4,16 @@
  */
 import type { PlacedPump, SegmentWithState } from '../db/queries/segments.server.ts'
 import { SEGMENT_STATES } from '../domain/segment-states.ts'
-import { longTubeConductance } from '../physics/conductance.ts'
-import { GASES } from '../physics/gases.ts'
-import { hydrogenDiffusivity } from '../physics/hydrogen.ts'
+import { molecularSpecific } from '../physics/conductance.ts'
+import { hydrogenDiffusivity, MILL_AGE_M2 } from '../physics/hydrogen.ts'
 import { bakeHoursToReach, predictPumpDown, type SegmentModel, steadyProfile } from '../physics/predict.ts'
+import { WATER_FLOOR_PA } from '../physics/water.ts'
 import type { StandingSegment } from './standing.server.ts'
 
 const ROOM_K = 293.15
 /** The bake that a baked, unfired segment is taken to have had: 150 °C for a week, the site's usual one. */
 const USUAL_BAKE_K = 423.15
 const USUAL_BAKE_S = 168 * 3600
-/** A sheet some weeks old has lost the hydrogen nearest its faces; without this the first rate would be infinite. */
-const MILL_AGE_M2 = 1e-9
-/** Water is not predicted below this; see the page on the model in DEVELOPERS.md. */
-const WATER_FLOOR_PA = 1e-11
 
 /** Whether water, rather than hydrogen from the steel, decides the pressure: never baked, or vented since. */
 function isUnbaked(segment: SegmentWithState): boolean {
@@ -72,7 +68,7 @@ export function endToCrossRatio(segment: SegmentWithState, pumps: readonly Place
   if (Math.abs(pump.offsetM - lengthM / 2) > 0.1 * lengthM) return null
   const speed = pump.speeds.H2
   if (speed === undefined) return null
-  const specific = longTubeConductance(GASES.H2, ROOM_K, segment.innerDiameterM, lengthM) * lengthM
+  const specific = molecularSpecific('H2', segment.innerDiameterM, ROOM_K)
   return 1 + (lengthM * speed) / (8 * specific)
 }
 
