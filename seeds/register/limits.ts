@@ -22,7 +22,7 @@ const GRID = 'Agreed with the grid operator of the site'
 
 const LIMITS: readonly DemoLimit[] = [
   { kind: 'target', value: 2e-7, reason: TIMING },
-  { kind: 'operating-limit', value: 2e-6, reason: 'Beam users stop above this' },
+  { kind: 'operating-limit', value: 2e-6, reason: 'Timing runs are called off above this' },
   { kind: 'air-leak', value: 1e-8, reason: 'A tenth of what the pump of a segment can carry for years' },
   { kind: 'isolation-rise', value: 1e-5, reason: 'Hydrogen of a baked 0.60 m tube, with room to spare' },
   ...SEGMENTS.filter(({ diameterM }) => diameterM === 0.5).map(({ id }) => ({
