@@ -1,0 +1,49 @@
+/** Every kind of work the worker does, what it needs to be told, and which of it recurs. */
+import { z } from 'zod'
+
+export const JOB_PAYLOADS = {
+  /** Makes the months ahead of the readings table. */
+  'partition-readings': z.strictObject({}),
+  /** Deletes sign-in sessions that have run out. */
+  'purge-sessions': z.strictObject({}),
+  /** Deletes finished jobs, and uploads that broke off, once nobody will ask about them. */
+  'purge-leftovers': z.strictObject({}),
+} as const satisfies Record<string, z.ZodType>
+
+export type JobKind = keyof typeof JOB_PAYLOADS
+export type JobPayload<Kind extends JobKind> = z.infer<(typeof JOB_PAYLOADS)[Kind]>
+
+/** Whether the text names a kind this program knows. */
+export function isJobKind(text: string): text is JobKind {
+  return Object.hasOwn(JOB_PAYLOADS, text)
+}
+
+/** A job that recurs. It is due at whole multiples of its period, counted in UTC, by the product's time. */
+export interface ScheduledTask {
+  name: string
+  kind: JobKind
+  everySeconds: number
+}
+
+export const SCHEDULED_TASKS: readonly ScheduledTask[] = [
+  { name: 'partition-readings', kind: 'partition-readings', everySeconds: 6 * 3600 },
+  { name: 'purge-sessions', kind: 'purge-sessions', everySeconds: 3600 },
+  { name: 'purge-leftovers', kind: 'purge-leftovers', everySeconds: 24 * 3600 },
+]
+
+/**
+ * The newest due time at or before an instant. Times missed while the product was off, or jumped over by the demo
+ * clock, are not made up for: housekeeping done once is done.
+ */
+export function lastDue(task: ScheduledTask, now: Date): Date {
+  const period = task.everySeconds * 1000
+  return new Date(Math.floor(now.getTime() / period) * period)
+}
+
+const FIRST_PAUSE_SECONDS = 5
+const LONGEST_PAUSE_SECONDS = 600
+
+/** Seconds until a job that has failed so many times is tried again: 5, 10, 20 … at most 600. */
+export function pauseAfter(attempts: number): number {
+  return Math.min(LONGEST_PAUSE_SECONDS, FIRST_PAUSE_SECONDS * 2 ** Math.max(0, attempts - 1))
+}
