@@ -42,13 +42,35 @@ export function LinePage({
         <p className="-mt-2 mb-4 text-sm text-ink-2">Not available: {figures.unavailableBecause}.</p>
       )}
       <Panel title="Pressure along the tube" aside={<LookBack dayBefore={dayBefore} />}>
-        <LineStrip lines={lines} segments={segments} />
+        <LineStrip
+          lines={lines}
+          segments={segments.map((segment) => ({
+            ...segment,
+            gauges: segment.gauges.filter(readsHighVacuum),
+          }))}
+          summary={stripSummary(figures)}
+          hrefFor={(tag) => `/segments/${tag}`}
+        />
       </Panel>
       <Panel title="Segments" aside={<ShownFilter segments={segments} shown={shown} dayBefore={dayBefore} />}>
         <SegmentsTable segments={segments} trends={trends} shown={shown} />
       </Panel>
     </>
   )
+}
+
+/** Thermal-conductivity gauges end where this picture begins. */
+function readsHighVacuum({ kind }: { kind: string }): boolean {
+  return kind !== 'thermal-conductivity'
+}
+
+function stripSummary({ inService, atTarget, heated, unknown }: LinePageData['figures']): string {
+  return [
+    `${inService.length} segments in service, ${atTarget.length} at target with fresh data.`,
+    heated.length === 0 ? 'None is heated.' : `Heated: ${heated.join(', ')}.`,
+    unknown.length === 0 ? 'None is unknown.' : `Unknown: ${unknown.join(', ')}.`,
+    'The table below holds every value.',
+  ].join(' ')
 }
 
 function LookBack({ dayBefore }: { dayBefore: boolean }) {
