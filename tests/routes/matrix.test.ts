@@ -1,0 +1,190 @@
+/**
+ * Every address × every role × reading and posting: who gets in, who is refused, who is sent to sign in. An address
+ * without an expectation fails, so nothing can be added unguarded by forgetting it here.
+ */
+import { beforeAll, describe, expect, test } from 'vitest'
+import { ROLES, type Role } from '#app/domain/roles.ts'
+import { machineNow } from '#app/machine-time.server.ts'
+import { loadBuild, request, signIn } from '#tests/support/app.ts'
+import { MORNING } from '#tests/support/clock.ts'
+import { cleanDatabase, testDb } from '#tests/support/db.ts'
+import {
+  createClock,
+  createSegment,
+  createSite,
+  createSource,
+  createState,
+  createUser,
+} from '#tests/support/factories.ts'
+
+const STAFF: readonly Role[] = ['technician', 'engineer', 'safety-officer', 'manager', 'administrator']
+const HANDS: readonly Role[] = ['technician', 'engineer']
+
+/** What those let in receive; `who` "anyone" needs no sign-in. Everybody else is refused with 403. */
+interface Expectation {
+  who: readonly Role[] | 'anyone'
+  status: number
+}
+interface Address {
+  GET?: Expectation
+  POST?: Expectation
+  /** Sent instead of the bare pattern. */
+  path?: string
+}
+
+const ADDRESSES: Record<string, Address> = {
+  '/sign-in': { GET: { who: 'anyone', status: 200 }, POST: { who: 'anyone', status: 400 } },
+  '/sign-out': { POST: { who: 'anyone', status: 302 } },
+  '/health': { GET: { who: 'anyone', status: 200 } },
+  '/*': { path: '/no-such-page', GET: { who: 'anyone', status: 404 } },
+  '/': { GET: { who: STAFF, status: 200 } },
+  '/segments/:tag': { path: '/segments/SG-X1', GET: { who: STAFF, status: 200 } },
+  '/segments/:tag/state': {
+    path: '/segments/SG-X1/state',
+    GET: { who: HANDS, status: 200 },
+    POST: { who: HANDS, status: 400 },
+  },
+  '/segments/:tag/readings.csv': { path: '/segments/SG-X1/readings.csv', GET: { who: STAFF, status: 200 } },
+  '/intake': { GET: { who: STAFF, status: 200 }, POST: { who: HANDS, status: 400 } },
+  '/intake/upload': { POST: { who: HANDS, status: 400 } },
+  '/intake/:importId': {
+    path: '/intake/999',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: HANDS, status: 400 },
+  },
+  '/intake/:importId/original': { path: '/intake/999/original', GET: { who: STAFF, status: 404 } },
+  '/intake/:importId/rejected.csv': { path: '/intake/999/rejected.csv', GET: { who: STAFF, status: 404 } },
+  '/logbook': { GET: { who: ROLES, status: 200 } },
+  '/logbook/new': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
+  '/logbook/:entryId': {
+    path: '/logbook/999',
+    GET: { who: ROLES, status: 404 },
+    POST: { who: ROLES, status: 400 },
+  },
+  '/register': { GET: { who: STAFF, status: 200 } },
+  '/register/:kind': { path: '/register/segments', GET: { who: STAFF, status: 200 } },
+  '/register/:kind/new': {
+    path: '/register/pumps/new',
+    GET: { who: ['engineer', 'administrator'], status: 200 },
+    POST: { who: ['engineer', 'administrator'], status: 400 },
+  },
+  '/register/:kind/:key': {
+    path: '/register/segments/SG-X1',
+    GET: { who: STAFF, status: 200 },
+    POST: { who: ['engineer', 'administrator'], status: 400 },
+  },
+  '/people': { GET: { who: ['administrator'], status: 200 } },
+  '/people/new': {
+    GET: { who: ['administrator'], status: 200 },
+    POST: { who: ['administrator'], status: 400 },
+  },
+  '/people/waiting': {
+    GET: { who: ['safety-officer', 'manager', 'administrator'], status: 200 },
+    POST: { who: ['safety-officer', 'manager', 'administrator'], status: 400 },
+  },
+  '/people/record': { GET: { who: ['administrator'], status: 200 } },
+  '/people/:personId': {
+    path: '/people/999',
+    GET: { who: ['administrator'], status: 404 },
+    POST: { who: ['administrator'], status: 400 },
+  },
+  '/account': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
+  '/clock': { GET: { who: ['administrator'], status: 200 }, POST: { who: ['administrator'], status: 400 } },
+}
+
+interface Found {
+  pattern: string
+  reads: boolean
+  posts: boolean
+}
+
+/** Addresses of the built application, with what each one answers to. */
+async function findAddresses(): Promise<Found[]> {
+  const { routes } = await loadBuild()
+  const pathOf = (id: string | undefined): string => {
+    const entry = id === undefined ? undefined : routes[id]
+    if (entry === undefined) return ''
+    const own = entry.path === undefined ? '' : `/${entry.path}`
+    return `${pathOf(entry.parentId)}${own}`
+  }
+  return Object.values(routes)
+    .filter((entry) => entry !== undefined && (entry.path !== undefined || entry.index === true))
+    .filter((entry) => entry?.id !== 'root')
+    .map((entry) => ({
+      pattern: pathOf(entry?.id) || '/',
+      reads: entry?.module.loader !== undefined || entry?.module.default !== undefined,
+      posts: entry?.module.action !== undefined,
+    }))
+}
+
+const cookies = new Map<Role | 'nobody', string>()
+
+beforeAll(async () => {
+  await cleanDatabase()
+  const db = testDb()
+  await createSite(db)
+  await createClock(db, { baseAt: MORNING, baseMachineAt: machineNow() })
+  const setter = await createUser(db, { roles: ['engineer'] })
+  const segment = await createSegment(db, { tag: 'SG-X1' })
+  await createState(db, { segmentId: segment.id, setBy: setter.personId, state: 'in-service' })
+  await createSource(db, { code: 'NL-X' })
+  for (const role of ROLES) {
+    const user = await createUser(db, { roles: [role] })
+    cookies.set(role, await signIn(user.personId))
+  }
+  const idle = await createUser(db, { roles: [] })
+  cookies.set('nobody', await signIn(idle.personId))
+})
+
+test('every address of the application has an expectation, and every expectation an address', async () => {
+  const found = await findAddresses()
+  const missing = found.flatMap(({ pattern, reads, posts }) => [
+    ...(reads && ADDRESSES[pattern]?.GET === undefined ? [`GET ${pattern}`] : []),
+    ...(posts && ADDRESSES[pattern]?.POST === undefined ? [`POST ${pattern}`] : []),
+  ])
+  expect(missing).toEqual([])
+  const patterns = new Set(found.map(({ pattern }) => pattern))
+  expect(Object.keys(ADDRESSES).filter((pattern) => !patterns.has(pattern))).toEqual([])
+})
+
+const CASES = Object.entries(ADDRESSES).flatMap(([pattern, address]) =>
+  (['GET', 'POST'] as const).flatMap((method) => {
+    const expectation = address[method]
+    return expectation === undefined
+      ? []
+      : [{ method, pattern, path: address.path ?? pattern, ...expectation }]
+  }),
+)
+
+describe.each(CASES)('$method $pattern', ({ method, path, who, status }) => {
+  const send = (cookie?: string) =>
+    request(path, {
+      method,
+      ...(cookie === undefined ? {} : { cookie }),
+      ...(method === 'POST' ? { form: {} } : {}),
+    })
+
+  test.each([...ROLES])('%s', async (role) => {
+    const response = await send(cookies.get(role))
+    expect(response.status).toBe(who === 'anyone' || who.includes(role) ? status : 403)
+    await response.body?.cancel()
+  })
+
+  test('somebody without any role in force', async () => {
+    const own = path === '/account'
+    const response = await send(cookies.get('nobody'))
+    expect(response.status).toBe(who === 'anyone' || own ? status : 403)
+    await response.body?.cancel()
+  })
+
+  test('nobody signed in', async () => {
+    const response = await send()
+    if (who === 'anyone') {
+      expect(response.status).toBe(status)
+    } else {
+      expect(response.status).toBe(302)
+      expect(response.headers.get('Location')).toMatch(/^\/sign-in/)
+    }
+    await response.body?.cancel()
+  })
+})
