@@ -1,0 +1,171 @@
+/**
+ * Steady pressure along a tube in molecular flow. With a uniform source per metre the pressure is a parabola between
+ * pumps, so balances over cells that meet half way between nodes are exact: a handful of nodes needs no finer mesh.
+ */
+import { requirePositive, requireWithin } from './argument-checks.ts'
+import { PhysicsError } from './errors.ts'
+
+export interface SteadyLine {
+  readonly lengthM: number
+  /** Specific conductance of the tube for this gas, m4/s. */
+  readonly specific: number
+  /** Gas given off per metre of tube, Pa m2/s. */
+  readonly sourcePerM: number
+  readonly pumps: readonly { readonly atM: number; readonly speedM3S: number }[]
+  readonly leaks?: readonly { readonly atM: number; readonly loadPaM3S: number }[]
+}
+
+/** Relative distance below which two positions along a tube are the same point. */
+const SAME_POINT = 1e-9
+
+/** Ends, pumps, leaks and the extra positions, sorted and each once, m. */
+export function linePositions(line: SteadyLine, extraM: readonly number[] = []): number[] {
+  requirePositive('lengthM', line.lengthM)
+  const wanted = [0, line.lengthM, ...extraM]
+  for (const pump of line.pumps) wanted.push(pump.atM)
+  for (const leak of line.leaks ?? []) wanted.push(leak.atM)
+  for (const position of wanted) requireWithin('position along the tube', position, 0, line.lengthM)
+  wanted.sort((a, b) => a - b)
+  return wanted.filter((x, i) => i === 0 || x - wanted[i - 1]! > SAME_POINT * line.lengthM)
+}
+
+/**
+ * Steady pressures in Pa at the ascending `positionsM`, which must hold both ends, every pump and every leak (see
+ * `linePositions`). A gas that comes in but is pumped nowhere has no steady pressure: that throws.
+ */
+export function steadyPressures(line: SteadyLine, positionsM: readonly number[]): Float64Array {
+  requirePositive('specific', line.specific)
+  const n = positionsM.length
+  const diagonal = new Float64Array(n)
+  const right = new Float64Array(n)
+  const link = new Float64Array(n)
+  for (let i = 0; i + 1 < n; i++) {
+    const gap = positionsM[i + 1]! - positionsM[i]!
+    const half = (line.sourcePerM * gap) / 2
+    link[i] = line.specific / gap
+    diagonal[i]! += link[i]!
+    diagonal[i + 1]! += link[i]!
+    right[i]! += half
+    right[i + 1]! += half
+  }
+  let speed = 0
+  for (const pump of line.pumps) {
+    requireWithin('speedM3S', pump.speedM3S, 0, 1e6)
+    diagonal[nodeAt(line, positionsM, pump.atM)]! += pump.speedM3S
+    speed += pump.speedM3S
+  }
+  for (const leak of line.leaks ?? []) {
+    requireWithin('loadPaM3S', leak.loadPaM3S, 0, 1e6)
+    right[nodeAt(line, positionsM, leak.atM)]! += leak.loadPaM3S
+  }
+  const load = right.reduce((sum, value) => sum + value, 0)
+  if (load === 0) return new Float64Array(n)
+  if (speed === 0) {
+    throw new PhysicsError('speed of all pumps for this gas', 0, 'at least one pump that takes the gas')
+  }
+  return solveLine(diagonal, link, right)
+}
+
+function nodeAt(line: SteadyLine, positionsM: readonly number[], atM: number): number {
+  const node = positionsM.findIndex((x) => Math.abs(x - atM) <= SAME_POINT * line.lengthM)
+  if (node < 0)
+    throw new PhysicsError('positionsM', atM, 'a list of positions with every pump and leak in it')
+  return node
+}
+
+// Gauss elimination of a symmetric chain; links carry the minus sign off the diagonal.
+function solveLine(diagonal: Float64Array, link: Float64Array, right: Float64Array): Float64Array {
+  const n = diagonal.length
+  for (let i = 1; i < n; i++) {
+    const factor = link[i - 1]! / diagonal[i - 1]!
+    diagonal[i]! -= factor * link[i - 1]!
+    right[i]! += factor * right[i - 1]!
+  }
+  right[n - 1]! /= diagonal[n - 1]!
+  for (let i = n - 2; i >= 0; i--) right[i] = (right[i]! + link[i]! * right[i + 1]!) / diagonal[i]!
+  return right
+}
+
+/** One stretch of tube with its pump at `lengthM` apart (periodic) or at one end, for the closed forms. */
+export interface PumpedStretch {
+  /** Gas given off per metre, q B, Pa m2/s. */
+  readonly sourcePerM: number
+  readonly specific: number
+  readonly lengthM: number
+  readonly speedM3S: number
+}
+
+/** Pressure at `xM` from a pump when equal pumps stand every `lengthM`, q B (x (L - x)/(2c) + L/S), Pa. */
+export function periodicPressure(stretch: PumpedStretch, xM: number): number {
+  const { sourcePerM, specific, lengthM, speedM3S } = stretch
+  requireWithin('xM', xM, 0, lengthM)
+  return sourcePerM * ((xM * (lengthM - xM)) / (2 * specific) + lengthM / speedM3S)
+}
+
+/** Mean pressure with equal pumps every `lengthM`, Pa. */
+export function periodicMean(stretch: PumpedStretch): number {
+  const { sourcePerM, specific, lengthM, speedM3S } = stretch
+  return sourcePerM * (lengthM ** 2 / (12 * specific) + lengthM / speedM3S)
+}
+
+/** Pressure at `xM` from the pump of a stretch pumped at one end and closed at the other, Pa. */
+export function endPumpedPressure(stretch: PumpedStretch, xM: number): number {
+  const { sourcePerM, specific, lengthM, speedM3S } = stretch
+  requireWithin('xM', xM, 0, lengthM)
+  return sourcePerM * ((lengthM * xM - xM ** 2 / 2) / specific + lengthM / speedM3S)
+}
+
+/** Mean pressure of a stretch pumped at one end and closed at the other, Pa. */
+export function endPumpedMean(stretch: PumpedStretch): number {
+  const { sourcePerM, specific, lengthM, speedM3S } = stretch
+  return sourcePerM * (lengthM ** 2 / (3 * specific) + lengthM / speedM3S)
+}
+
+/** Pressure at `xM` of a stretch with the same pump at both ends, Pa. */
+export function bothEndsPressure(stretch: PumpedStretch, xM: number): number {
+  const { sourcePerM, specific, lengthM, speedM3S } = stretch
+  requireWithin('xM', xM, 0, lengthM)
+  return sourcePerM * ((xM * (lengthM - xM)) / (2 * specific) + lengthM / (2 * speedM3S))
+}
+
+/**
+ * Pressure at `xM` with pumping spread over the wall (`wallSpeed` in m2/s per metre) beside an end pump at 0 and a
+ * closed end at `lengthM`, Pa.
+ */
+export function wallPumpedPressure(stretch: PumpedStretch, wallSpeed: number, xM: number): number {
+  const { sourcePerM, specific, lengthM, speedM3S } = stretch
+  requirePositive('wallSpeed', wallSpeed)
+  requireWithin('xM', xM, 0, lengthM)
+  const kappa = Math.sqrt(wallSpeed / specific)
+  const far = sourcePerM / wallSpeed
+  const flow = specific * kappa * Math.sinh(kappa * lengthM)
+  const amplitude = (speedM3S * far) / (flow + speedM3S * Math.cosh(kappa * lengthM))
+  return far - amplitude * Math.cosh(kappa * (lengthM - xM))
+}
+
+/**
+ * Slowest time constant of an empty tube closed at one end with a pump at the other, s: kappa tan(kappa L) = S/c,
+ * tau = 1/(D kappa2) with D = c/A. An infinite speed gives 4 L2/(pi2 D).
+ */
+export function slowestTime(
+  specific: number,
+  crossSectionM2: number,
+  lengthM: number,
+  speedM3S: number,
+): number {
+  requirePositive('specific', specific)
+  requirePositive('crossSectionM2', crossSectionM2)
+  requirePositive('lengthM', lengthM)
+  if (!(speedM3S > 0)) throw new PhysicsError('speedM3S', speedM3S, 'a number above 0, or Infinity')
+  let low = 0
+  let high = Math.PI / 2
+  if (speedM3S !== Infinity) {
+    const wanted = (speedM3S * lengthM) / specific
+    for (let i = 0; i < 200 && high - low > 1e-15; i++) {
+      const middle = (low + high) / 2
+      if (middle * Math.tan(middle) < wanted) low = middle
+      else high = middle
+    }
+  }
+  return lengthM ** 2 / ((specific / crossSectionM2) * high ** 2)
+}
