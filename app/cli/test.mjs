@@ -89,7 +89,7 @@ async function main() {
         say(`ready on 127.0.0.1:${server.port}, in ${folder}`)
         return server
       })
-      env.TEST_DATABASE_URL = database.url('ebbline_test')
+      env.TEST_DATABASE_URL = database.url('ebbline')
     }
     if (suites.some((suite) => suite.browser)) {
       await step('browser', 'installing Chromium', async (say) =>
