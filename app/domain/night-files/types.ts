@@ -9,19 +9,15 @@ export interface KnownChannel {
   name: string
   /** null: taken from the unit in the file. */
   quantity: Quantity | null
-  /** Time span in which the label is in use, in ms since 1970; a reading outside it is kept as suspect. */
-  fromMs?: number | null
-  untilMs?: number | null
-  /** For gauges logged as a voltage: p = 10^((U - voltsAtOnePa) / voltsPerDecade) Pa. */
-  curve?: { voltsPerDecade: number; voltsAtOnePa: number } | null
-  /** Last stored value (SI) of the position behind this channel, shown beside the candidates of a question. */
-  lastKnown?: { valueSi: number; atMs: number } | null
+  /** Left out of every file from now on. */
+  ignored?: boolean
 }
 
+/** An answer to a question; it holds for this file. */
 export interface Answer {
   /** Id of the question. */
   id: string
-  /** `value` of the choice taken; for questions with `freeText`, the text typed. */
+  /** `value` of the choice taken. */
   choice: string
 }
 
@@ -36,7 +32,6 @@ export interface ReadContext {
   fileName?: string
   /** Size the sender announced, when it did. */
   statedBytes?: number | null
-  /** Answers that hold for this file only (clock anchors, jumps); the others belong in the profile. */
   answers?: readonly Answer[]
 }
 
@@ -50,8 +45,8 @@ export interface ReadingBatch {
   channel: Uint16Array
   /** Instant in ms since 1970 UTC. */
   atMs: Float64Array
-  /** 0 for the first reading of a channel at an instant, 1, 2 … for conflicting or coarse ones. */
-  seq: Uint16Array
+  /** 0 for the first reading of a channel at an instant, 1, 2 … for differing ones of the same instant. */
+  seq: Uint8Array
   /** Value in the unit of the channel's quantity (Pa, °C, A …); NaN means no value. */
   value: Float64Array
   /** Limit of an over- or under-range reading, same unit; NaN means none. */
@@ -76,14 +71,11 @@ export interface NightFileReader {
   /** Lines seen so far, for a progress display. */
   readonly linesSeen: number
   readonly bytesSeen: number
-  /** Whether the head of the file already showed that it cannot be read; the rest is then only counted. */
-  readonly refused: boolean
   push(chunk: Uint8Array): void
   end(): ReadOut
 }
 
-export const LINE_OUTCOMES = ['header', 'directive', 'note', 'accepted', 'flagged', 'skipped'] as const
-export type LineOutcome = (typeof LINE_OUTCOMES)[number]
+export type LineOutcome = 'header' | 'directive' | 'note' | 'accepted' | 'flagged' | 'skipped'
 
 export type SkipReason =
   | 'refused'
@@ -95,14 +87,13 @@ export type SkipReason =
   | 'field-count'
   | 'broken-quote'
   | 'unreadable-time'
-  | 'impossible-time'
   | 'nonexistent-time'
   | 'clock-reset'
   | 'unreadable-value'
   | 'unknown-unit'
+  | 'no-unit'
   | 'unknown-word'
   | 'unknown-channel'
-  | 'before-header'
   | 'left-out'
   | 'too-long'
 
@@ -111,11 +102,27 @@ export interface Finding {
   code: string
   /** Counted from 1; null when it concerns the whole file. */
   line: number | null
-  /** Counted from 1; null when it concerns the whole line. */
+  /** Field of the line, counted from 1; null when it concerns the whole line. */
   column: number | null
   found: string
   expected: string
   mend: string
+}
+
+export type RefusalCode =
+  | 'empty-file'
+  | 'header-only'
+  | 'not-a-log'
+  | 'binary-file'
+  | 'archive'
+  | 'spreadsheet-file'
+  | 'no-known-channel'
+  | 'too-long-line'
+  | 'no-rows'
+  | 'no-unit'
+
+export interface Refusal extends Finding {
+  code: RefusalCode
 }
 
 export interface RejectedLine extends Finding {
@@ -127,15 +134,13 @@ export interface RejectedLine extends Finding {
   wholeLine: boolean
 }
 
+/** A cell or time of the file under one choice. */
 export interface Candidate {
-  channel: string
   line: number
   /** Cell or time as written. */
   text: string
-  /** Value in SI under this choice, or instant in ms for questions about time. */
-  valueSi: number | null
-  atMs: number | null
-  lastKnown: { valueSi: number; atMs: number } | null
+  /** What it would mean. */
+  meaning: string
 }
 
 export interface Choice {
@@ -147,26 +152,13 @@ export interface Choice {
 export type QuestionKind =
   | 'unit'
   | 'decimal-mark'
-  | 'layout'
   | 'date-order'
   | 'zone'
-  | 'spring-gap'
-  | 'epoch-unit'
-  | 'serial-base'
-  | 'start-time'
-  | 'half-day'
-  | 'columns'
-  | 'same-name'
   | 'unknown-channel'
   | 'unknown-word'
-  | 'clock-reset'
-  | 'clock-jump'
-  | 'floor-value'
-  | 'voltage-curve'
-  | 'cut-short'
 
 export interface Question extends Finding {
-  /** Stable for the same file: `unit`, `unit:HC-03A`, `clock-reset:120` … */
+  /** Stable for the same file: `unit`, `unknown-channel:HC99Z` … */
   id: string
   kind: QuestionKind
   /** A blocking question keeps the whole file from being accepted; the others leave out what they concern. */
@@ -174,44 +166,28 @@ export interface Question extends Finding {
   /** One sentence for the screen. */
   text: string
   choices: Choice[]
-  /** Set when any text of the named shape is an answer besides the choices. */
-  freeText: 'zone' | 'instant' | 'unit' | 'columns' | 'channel' | null
-  /** `profile`: the answer belongs in the source's profile. `file`: it holds for this file only. */
-  remember: 'profile' | 'file'
   /** Cells or lines that wait for the answer. */
   waiting: number
-  /** Set when a later line of the file settled the question: reading again with this choice needs no person. */
-  settledBy: { line: number; choice: string } | null
 }
 
 export type RemarkKind =
   | 'restart'
   | 'repeated-hour'
   | 'ambiguous-hour'
-  | 'gap'
   | 'channel-stops'
-  | 'stuck'
-  | 'unit-change'
-  | 'offset-change'
-  | 'clock-step'
-  | 'disorder'
   | 'conflicts'
-  | 'coarse-time'
   | 'future-times'
-  | 'damaged-bytes'
-  | 'encoding'
-  | 'departs-from-profile'
-  | 'left-out-columns'
   | 'outside-ceiling'
   | 'zero-or-negative'
-  | 'label-period'
-  | 'reconstructed-time'
-  | 'combined-header'
-  | 'spaced-exponent'
-  | 'formula-text'
+  | 'open-sensor'
+  | 'disorder'
+  | 'encoding'
+  | 'damaged-bytes'
   | 'short-file'
-  | 'mended-labels'
+  | 'left-out-columns'
+  | 'spaced-exponent'
 
+/** Something a person should look at before taking the file in. */
 export interface Remark {
   kind: RemarkKind
   text: string
@@ -222,17 +198,21 @@ export interface Remark {
 }
 
 export interface ColumnReadOut {
-  /** Position in the file counted from 1; 0 for the channels of a long file. */
+  /** Position in the file counted from 1. */
   position: number
   inFile: string
   role: 'time' | 'date' | 'channel' | 'value' | 'unit' | 'status' | 'comment' | 'left-out'
   /** Raw channel the column goes to. */
   channel: string | null
   unit: string | null
-  /** Where the unit comes from. */
-  unitFrom: 'header' | 'unit-row' | 'note' | 'column' | 'cell' | 'profile' | null
-  quantity: Quantity | null
-  firstText: string | null
+}
+
+/** Lowest and highest usable value in equal steps, for a small plot. */
+export interface Sketch {
+  fromMs: number
+  stepMs: number
+  low: (number | null)[]
+  high: (number | null)[]
 }
 
 export interface ChannelSummary {
@@ -242,17 +222,20 @@ export interface ChannelSummary {
   count: number
   firstMs: number | null
   lastMs: number | null
+  /** Cell of the first and last reading as written. */
+  firstText: string
+  lastText: string
   /** Over good readings only. */
   min: number | null
   minMs: number | null
   max: number | null
   maxMs: number | null
+  last: number | null
   byQuality: Partial<Record<Quality, number>>
   marked: number
   duplicates: number
   conflicts: number
-  /** Longest run of one unchanged value. */
-  longestRun: number
+  sketch: Sketch | null
 }
 
 export interface Gap {
@@ -265,8 +248,6 @@ export interface Gap {
 
 export interface Restart {
   line: number
-  /** Instant of the first row after the header; null when none follows. */
-  atMs: number | null
   /** Columns stand in another order than in the block before. */
   reordered: boolean
 }
@@ -289,11 +270,13 @@ export interface FileDialect {
   encoding: string
   separator: Separator | null
   decimalMark: '.' | ',' | null
-  thousandsMark: string | null
   layout: 'wide' | 'long' | null
   timeFormat: TimeFormat | null
-  /** IANA name, fixed offset, `in the file`, or `UTC` for epochs; null when not settled. */
+  /** IANA name, fixed offset, or `UTC` for epochs; null when not settled. */
   zone: string | null
+  /** Unit of the columns that name none of their own. */
+  unit: string | null
+  unitFrom: 'header' | 'note' | 'unit-row' | 'column' | 'profile' | null
   lineEnds: { crlf: number; lf: number; cr: number; crcrlf: number }
 }
 
@@ -302,11 +285,11 @@ export interface ReadOut {
   profileVersion: number
   /** `readable` may be accepted; `needs-answers` holds blocking questions; `refused` is no log we can read. */
   state: 'readable' | 'needs-answers' | 'refused'
-  refusal: Finding | null
+  refusal: Refusal | null
   bytes: number
   dialect: FileDialect
   lines: LineCounts
-  readings: { total: number; byQuality: Partial<Record<Quality, number>>; marked: number }
+  readings: { total: number; byQuality: Partial<Record<Quality, number>>; marked: number; duplicates: number }
   firstMs: number | null
   lastMs: number | null
   /** Seconds between rows: the profile's, else the commonest step of the head. */
@@ -314,6 +297,7 @@ export interface ReadOut {
   columns: ColumnReadOut[]
   channels: ChannelSummary[]
   gaps: Gap[]
+  gapTotal: number
   restarts: Restart[]
   remarks: Remark[]
   questions: Question[]
@@ -322,9 +306,4 @@ export interface ReadOut {
   rejectedTotal: number
   /** At most 200, cut after 300 characters. */
   notes: { line: number; text: string }[]
-  /**
-   * Marks to add to readings that had already been handed out when a later line showed the need (a conflict far
-   * down the file). Apply them to the stored rows of this import.
-   */
-  laterMarks: { channel: number; atMs: number; seq: number; marks: number }[]
 }

@@ -19,7 +19,6 @@ export const TIME_FORMATS = [
   'epoch-us',
   'serial-1900',
   'serial-1904',
-  'elapsed-s',
 ] as const
 export type TimeFormat = (typeof TIME_FORMATS)[number]
 
@@ -61,13 +60,17 @@ export const SourceProfileSchema = z.object({
   bareExponent: z.boolean().default(false),
   /** Unit of the columns that do not name their own. */
   unit: z.string().min(1).max(24).nullable().default(null),
+  /** These files say their unit themselves: one that says none is refused instead of trusted. */
+  unitInFile: z.boolean().default(false),
   time: z
     .object({
       format: z.enum(TIME_FORMATS).nullable().default(null),
+      /** Mark between day, month and year; a file that writes another one is asked about again. */
+      dateMark: z.enum(['.', '/', '-']).nullable().default(null),
       zone: ZoneSchema.nullable().default(null),
     })
     .prefault({}),
-  /** Word in the file (lower case, single spaces) to quality; `on`, `off-switch` and `ok` are allowed as well. */
+  /** Word in the file (lower case, single spaces) to its meaning; `ok` and `on` are no qualities but may stand here. */
   words: z.record(z.string(), z.enum([...QUALITIES, 'ok', 'on'])).default({}),
   /** Numbers that this source uses as words. */
   sentinels: z.array(z.object({ value: z.number(), quality: z.enum(QUALITIES) })).default([]),

@@ -1,0 +1,150 @@
+import type { Quantity } from '../readings.ts'
+import type { SourceProfile } from '../schemas/source-profile.ts'
+import type { ChannelBook } from './channel-names.ts'
+import { channelColumn, type HeaderColumn } from './header.ts'
+import type { ReadingSink } from './sink.ts'
+import type { ColumnReadOut } from './types.ts'
+import { type Unit, unitFits, unitOf } from './units.ts'
+
+/** One channel of a wide file in one block. */
+export interface WideColumn {
+  at: number
+  channel: number
+  quantity: Quantity
+  unit: Unit | null
+}
+
+/** What a header says about the rows under it. */
+export interface Block {
+  layout: 'wide' | 'long'
+  fieldCount: number
+  timeAt: number
+  /** -1 where there is none. */
+  dateAt: number
+  channelAt: number
+  valueAt: number
+  unitAt: number
+  statusAt: number
+  /** Unit of a long file's rows that name none. */
+  unit: Unit | null
+  wide: WideColumn[]
+  columns: ColumnReadOut[]
+  /** Columns whose name the register does not know, with their position counted from 1. */
+  unknown: { name: string; position: number }[]
+}
+
+export interface BlockFacts {
+  book: ChannelBook
+  profile: SourceProfile
+  sink: ReadingSink
+  /** Unit of a metadata line, or of an answer. */
+  noteUnit: Unit | null
+  /** Units of a second header row, by column. */
+  unitRow: readonly (Unit | null)[] | null
+  /** Where an unknown name goes by answer: a registered name, `leave-out`, or null while nobody has said. */
+  answerFor: (name: string) => string | null
+}
+
+/** The unit of the columns that name none: a metadata line's, else the profile's unless these files name their own. */
+export function defaultUnit(noteUnit: Unit | null, profile: SourceProfile): Unit | null {
+  return noteUnit ?? (profile.unitInFile ? null : unitOf(profile.unit))
+}
+
+function columnUnit(
+  column: HeaderColumn,
+  i: number,
+  quantity: Quantity | null,
+  facts: BlockFacts,
+): Unit | null {
+  const own =
+    column.unit.kind === 'unit' ? column.unit.unit : (facts.unitRow?.[i] ?? unitOf(column.profileUnit))
+  const unit = own ?? defaultUnit(facts.noteUnit, facts.profile)
+  if (unit === null || quantity === null) return unit
+  // A line "unit: mbar" says nothing about a temperature column beside the pressures.
+  return unitFits(quantity, unit) ? unit : null
+}
+
+/** Maps the columns of a header to what the rows under it hold. */
+export function makeBlock(
+  layout: 'wide' | 'long',
+  columns: readonly HeaderColumn[],
+  facts: BlockFacts,
+): Block {
+  const at = (role: ColumnReadOut['role']) => columns.findIndex((column) => column.role === role)
+  const block: Block = {
+    layout,
+    fieldCount: columns.length,
+    timeAt: at('time'),
+    dateAt: at('date'),
+    channelAt: layout === 'long' ? channelColumn(columns) : -1,
+    valueAt: at('value'),
+    unitAt: layout === 'long' ? at('unit') : -1,
+    statusAt: layout === 'long' ? at('status') : -1,
+    unit: null,
+    wide: [],
+    columns: [],
+    unknown: [],
+  }
+  const valueColumn = columns[block.valueAt]
+  if (layout === 'long' && valueColumn !== undefined)
+    block.unit = columnUnit(valueColumn, block.valueAt, null, facts)
+  columns.forEach((column, i) => {
+    const shown: ColumnReadOut = {
+      position: i + 1,
+      inFile: column.inFile,
+      role: column.role,
+      channel: null,
+      unit: null,
+    }
+    block.columns.push(shown)
+    if (column.role === 'value') shown.unit = block.unit?.token ?? null
+    if (layout !== 'wide' || column.role !== 'channel') return
+    const target = wideTarget(column, facts)
+    if (target === null) {
+      block.unknown.push({ name: column.name, position: i + 1 })
+      shown.role = 'left-out'
+      return
+    }
+    if (target === 'leave-out') {
+      shown.role = 'left-out'
+      return
+    }
+    const unit = columnUnit(column, i, target.quantity, facts)
+    const quantity = target.quantity ?? column.quantity ?? unit?.quantity ?? 'pressure'
+    const channel = facts.sink.channel(target.name, quantity)
+    block.wide.push({ at: i, channel, quantity, unit })
+    shown.channel = target.name
+    shown.unit = unit?.token ?? null
+  })
+  return block
+}
+
+type Target = { name: string; quantity: Quantity | null } | 'leave-out' | null
+
+function wideTarget(column: HeaderColumn, facts: BlockFacts): Target {
+  if (column.profileChannel === null) return 'leave-out'
+  return channelTarget(column.profileChannel ?? column.name, facts)
+}
+
+/** Where readings under a name go: a registered channel, nowhere, or null for a name nobody knows. */
+export function channelTarget(name: string, facts: Pick<BlockFacts, 'book' | 'answerFor'>): Target {
+  const match = facts.book.match(name)
+  if (match.kind === 'known')
+    return match.channel.ignored === true
+      ? 'leave-out'
+      : { name: match.channel.name, quantity: match.channel.quantity }
+  if (!facts.book.closed) return { name, quantity: null }
+  const answer = facts.answerFor(name)
+  if (answer === null) return null
+  if (answer === 'leave-out') return 'leave-out'
+  const chosen = facts.book.match(answer)
+  return chosen.kind === 'known' ? { name: chosen.channel.name, quantity: chosen.channel.quantity } : null
+}
+
+/** Whether two headers name the same columns in another order. */
+export function isReordered(before: Block, after: Block): boolean {
+  const names = (block: Block) => block.columns.map(({ inFile }) => inFile)
+  const a = names(before)
+  const b = names(after)
+  return a.join('\u0000') !== b.join('\u0000')
+}

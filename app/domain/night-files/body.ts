@@ -1,0 +1,391 @@
+import type { SourceProfile } from '../schemas/source-profile.ts'
+import { type Block, isReordered, makeBlock } from './block.ts'
+import { channelQuestion } from './cell-faults.ts'
+import { CellReader } from './cells.ts'
+import type { ChannelBook } from './channel-names.ts'
+import type { Dialect } from './dialect.ts'
+import { splitFields } from './fields.ts'
+import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
+import { MAX_HELD_ROWS } from './limits.ts'
+import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
+import { NumberReader } from './numbers.ts'
+import type { QuestionList } from './questions.ts'
+import { resolveRepeatedHour } from './repeated-hour.ts'
+import { isCutRow, type Row, RowReader } from './row-reader.ts'
+import { RowTimes } from './row-times.ts'
+import type { ReadingSink } from './sink.ts'
+import type { LineTally } from './tally.ts'
+import type { ReadContext, Refusal, Remark, Restart } from './types.ts'
+import { checkUnit, refuseWithoutUnit } from './unit-check.ts'
+import { readUnit, type Unit, unitOf } from './units.ts'
+import { WordBook } from './words.ts'
+
+export interface BodyTools {
+  dialect: Dialect
+  profile: SourceProfile
+  context: ReadContext
+  book: ChannelBook
+  questions: QuestionList
+  sink: ReadingSink
+  tally: LineTally
+}
+
+interface HeldRow {
+  row: Row
+  track: string
+  wallMs: number
+  first: number
+  second: number
+}
+
+/** Goes through the lines of a file whose dialect is settled, and gives each its outcome. */
+export class FileBody {
+  readonly restarts: Restart[] = []
+  readonly remarks: Remark[] = []
+  readonly rows: RowReader
+  /** Set when the header shows that nothing of the file can be read. */
+  refusal: Refusal | null = null
+  block: Block | null = null
+  noteUnit: Unit | null = null
+  unitFrom: 'header' | 'note' | 'unit-row' | 'column' | 'profile' | null = null
+  /** Unit in which the first pressures of the file are written. */
+  unitWritten: string | null = null
+  backSteps = 0
+  readonly #tools: BodyTools
+  readonly #times: RowTimes | null
+  #headerColumns: HeaderColumn[] = []
+  #headerLine = 0
+  #noteLine = 0
+  #sawRow = false
+  #override: { from: Unit; to: Unit } | null = null
+  #held: HeldRow[] = []
+  #lastMs: number | null = null
+
+  constructor(tools: BodyTools) {
+    this.#tools = tools
+    const { dialect, profile, context, questions, sink, tally, book } = tools
+    const numbers = new NumberReader({
+      decimalMark: dialect.decimalMark,
+      thousandsMark: profile.thousandsMark,
+      bareExponent: profile.bareExponent,
+    })
+    const words = new WordBook({ ...profile.words, ...questions.words() })
+    this.rows = new RowReader({
+      cells: new CellReader(numbers, words, profile.sentinels),
+      sink,
+      tally,
+      questions,
+      book,
+      decimalMark: dialect.decimalMark,
+      nowMs: context.nowMs,
+      settleUnit: (unit) => this.#settleUnit(unit),
+    })
+    this.#times =
+      dialect.timeFormat === null || dialect.zone === null
+        ? null
+        : new RowTimes(dialect.timeFormat, dialect.decimalMark, dialect.zone)
+  }
+
+  #settleUnit(unit: Unit): Unit {
+    return this.#override !== null && this.#override.from.factor === unit.factor ? this.#override.to : unit
+  }
+
+  line(text: string, line: number, terminated: boolean, tooLong: boolean): void {
+    const { tally, dialect, book } = this.#tools
+    if (tooLong) {
+      this.#reject(
+        line,
+        '',
+        'too-long',
+        'a line of more than a million characters',
+        'short lines, one row each',
+      )
+      return
+    }
+    if (text.includes('\u0000')) {
+      this.#reject(
+        line,
+        text.replaceAll('\u0000', '␀'),
+        'damaged',
+        'NUL bytes, as a disk fault leaves them',
+        'text',
+      )
+      return
+    }
+    if (text.trim() === '') {
+      tally.note(line, text)
+      return
+    }
+    if (this.block === null && directiveSeparator(text) !== null) {
+      tally.add('directive')
+      return
+    }
+    if (isComment(text, dialect.separator)) {
+      this.#note(text, line)
+      return
+    }
+    const split = splitFields(text, dialect.separator)
+    if (split.kind !== 'fields') {
+      this.#reject(
+        line,
+        text,
+        'broken-quote',
+        'a quotation mark that is not closed on its line',
+        'quotation marks in pairs',
+      )
+      return
+    }
+    const { fields } = split
+    // Rows begin with a figure, nearly all of them; only the others can be headers.
+    if (!/^\s*"?\d/.test(text)) {
+      if (looksLikeHeader(fields, book)) {
+        this.#header(fields, line)
+        return
+      }
+      if (this.#sawRow ? isFooter(text) : fields.length === 1 && isFooter(text)) {
+        tally.skip('footer')
+        return
+      }
+      if (this.block !== null && !this.#sawRow && looksLikeUnitRow(fields)) {
+        this.#unitRow(fields)
+        return
+      }
+    }
+    if (this.block === null || (!this.#sawRow && fields.length === 1)) {
+      this.#note(text, line)
+      return
+    }
+    this.#row({ fields, text, line, block: this.block }, terminated)
+  }
+
+  #note(text: string, line: number): void {
+    this.#tools.tally.note(line, text)
+    const unit = unitOf(readNote(text).unit)
+    if (unit === null) return
+    this.noteUnit = unit
+    this.#noteLine = line
+    if (this.block !== null) this.#makeBlock(null)
+  }
+
+  #header(fields: string[], line: number): void {
+    const { tally, book, profile, sink } = this.#tools
+    tally.add('header')
+    const before = this.block
+    this.#headerColumns = readHeader(fields, book, profile).columns
+    this.#headerLine = line
+    this.#makeBlock(null)
+    if (before === null || this.block === null) return
+    const reordered = isReordered(before, this.block)
+    this.restarts.push({ line, reordered })
+    this.remarks.push({
+      kind: 'restart',
+      text: reordered
+        ? `The logger started again at line ${line} and writes its columns in another order since. They are taken by name.`
+        : `The logger started again at line ${line}.`,
+      line,
+      channel: null,
+      atMs: this.#lastMs ?? sink.lastMs,
+      count: 1,
+    })
+  }
+
+  #unitRow(fields: string[]): void {
+    this.#tools.tally.add('header')
+    this.#makeBlock(
+      fields.map((field) => {
+        const reading = readUnit(field.trim().replace(/^[[(](.*)[\])]$/, '$1'))
+        return reading.kind === 'unit' ? reading.unit : null
+      }),
+    )
+  }
+
+  #makeBlock(unitRow: readonly (Unit | null)[] | null): void {
+    const { book, profile, sink, questions, dialect } = this.#tools
+    const block = makeBlock(dialect.layout, this.#headerColumns, {
+      book,
+      profile,
+      sink,
+      noteUnit: this.noteUnit,
+      unitRow,
+      answerFor: (name) => questions.answer(`unknown-channel:${name}`),
+    })
+    this.block = block
+    if (unitRow !== null) this.unitFrom = 'unit-row'
+    else if (this.#headerColumns.some(({ unit }) => unit.kind === 'unit')) this.unitFrom = 'header'
+    else if (block.unitAt !== -1) this.unitFrom = 'column'
+    else this.unitFrom = this.noteUnit === null ? 'profile' : 'note'
+    for (const { name, position } of block.unknown)
+      questions.ask(
+        `unknown-channel:${name}`,
+        () => channelQuestion(name, this.#headerLine, position, book),
+        0,
+      )
+    this.#checkUnit(block)
+    for (const column of block.wide) if (column.unit !== null) column.unit = this.#settleUnit(column.unit)
+    if (block.unit !== null) block.unit = this.#settleUnit(block.unit)
+  }
+
+  #checkUnit(block: Block): void {
+    const { dialect, profile, questions } = this.#tools
+    const at =
+      block.layout === 'wide'
+        ? block.wide.find(({ unit }) => unit?.quantity === 'pressure')?.at
+        : block.unitAt
+    const row = dialect.rows[0]
+    const written =
+      block.layout === 'wide'
+        ? (block.wide.find(({ unit }) => unit?.quantity === 'pressure')?.unit ?? null)
+        : (unitOf(row?.fields[block.unitAt]?.trim()) ?? block.unit)
+    if (written === null) return
+    this.unitWritten ??= written.token
+    const line =
+      this.unitFrom === 'note'
+        ? this.#noteLine
+        : this.unitFrom === 'column'
+          ? (row?.line ?? 0)
+          : this.#headerLine
+    const place = { unit: written, line, column: this.unitFrom === 'note' ? 1 : (at ?? 0) + 1 }
+    const to = checkUnit(place, dialect, block, profile, questions)
+    this.#override = to === null ? null : { from: written, to }
+  }
+
+  /** Whether the first block can give readings at all; asked when its first row comes. */
+  #judge(): Refusal | null {
+    const { dialect, book } = this.#tools
+    const block = this.block
+    if (block === null) return null
+    const unknown = block.unknown[0]
+    if (block.layout === 'wide' && block.wide.length === 0)
+      return this.#noKnownChannel(unknown?.name ?? '', this.#headerLine, unknown?.position ?? 1)
+    if (block.layout === 'long') {
+      const names = dialect.rows.map(({ fields, line }) => ({
+        name: (fields[block.channelAt] ?? '').trim(),
+        line,
+      }))
+      const known = names.some(
+        ({ name }) =>
+          !book.closed ||
+          book.isKnown(name) ||
+          this.#tools.questions.answer(`unknown-channel:${name}`) !== null,
+      )
+      const first = names[0]
+      if (!known && first !== undefined)
+        return this.#noKnownChannel(first.name, first.line, block.channelAt + 1)
+    }
+    return refuseWithoutUnit(block, dialect)
+  }
+
+  #noKnownChannel(name: string, line: number, column: number): Refusal {
+    const names = this.#tools.book.names()
+    return {
+      code: 'no-known-channel',
+      line,
+      column,
+      found: name === '' ? 'no column with a channel' : `“${name}” and no other channel of this source`,
+      expected:
+        names.length === 0
+          ? 'channels of this source, but the register has none'
+          : `channels such as ${names.slice(0, 4).join(', ')}`,
+      mend: 'Check that the right source was chosen. New channels are added in the register first.',
+    }
+  }
+
+  #row(row: Row, terminated: boolean): void {
+    const { tally } = this.#tools
+    const { block, fields, line, text } = row
+    if (!this.#sawRow) this.refusal = this.#judge()
+    this.#sawRow = true
+    if (this.refusal !== null) {
+      tally.skip('refused')
+      return
+    }
+    if (this.#times === null || this.#tools.questions.isBlocked()) {
+      tally.skip('unanswered')
+      return
+    }
+    if (!terminated && isCutRow(fields, block)) {
+      this.#reject(
+        line,
+        text,
+        'partial-last-line',
+        'a last line that stops in the middle',
+        `${block.fieldCount} whole fields and a line end`,
+      )
+      return
+    }
+    const extra = fields.slice(block.fieldCount)
+    if (fields.length < block.fieldCount || extra.some((field) => field.trim() !== '')) {
+      this.#reject(
+        line,
+        text,
+        'field-count',
+        `${fields.length} fields`,
+        `${block.fieldCount} fields, as in the header`,
+      )
+      return
+    }
+    const dateText = block.dateAt === -1 ? null : (fields[block.dateAt] ?? '')
+    const time = this.#times.read(fields[block.timeAt] ?? '', dateText, block.timeAt + 1)
+    if (time.kind === 'fault') {
+      tally.reject(line, text, time.fault)
+      return
+    }
+    if (time.kind === 'twice') {
+      const track = block.layout === 'long' ? (fields[block.channelAt] ?? '') : ''
+      this.#held.push({ row, track, wallMs: time.wallMs, first: time.first, second: time.second })
+      if (this.#held.length >= MAX_HELD_ROWS) this.#release(null)
+      return
+    }
+    this.#release(time.atMs)
+    if (this.#lastMs !== null && time.atMs < this.#lastMs) this.backSteps += 1
+    this.#lastMs = time.atMs
+    this.rows.read(row, time.atMs, false)
+  }
+
+  /** Reads the rows of a repeated hour, now that all of them are there. */
+  #release(afterMs: number | null): void {
+    const held = this.#held
+    const first = held[0]
+    if (first === undefined) return
+    this.#held = []
+    const { periodMs } = this.#tools.dialect
+    const instants = resolveRepeatedHour(held, { beforeMs: this.#lastMs, afterMs, periodMs })
+    let doubtful = 0
+    held.forEach((entry, i) => {
+      const atMs = instants[i] as number
+      const ambiguous = Number.isNaN(atMs)
+      if (ambiguous) doubtful += 1
+      this.rows.read(entry.row, ambiguous ? entry.first : atMs, ambiguous)
+      this.#lastMs = ambiguous ? entry.second : atMs
+    })
+    this.remarks.push({
+      kind: doubtful > 0 ? 'ambiguous-hour' : 'repeated-hour',
+      text:
+        doubtful > 0
+          ? `The hour that the clock change repeats cannot be told apart in ${doubtful} rows. They are kept, marked, and left out of rates and limits.`
+          : 'The clock goes back one hour inside this file. Both passes through the hour are kept apart by their order.',
+      line: first.row.line,
+      channel: null,
+      atMs: first.first,
+      count: held.length,
+    })
+  }
+
+  #reject(
+    line: number,
+    text: string,
+    code: 'too-long' | 'damaged' | 'broken-quote' | 'field-count' | 'partial-last-line',
+    found: string,
+    expected: string,
+  ): void {
+    const mend =
+      code === 'partial-last-line'
+        ? 'The logger was cut off while writing. Nothing needs doing; the line is left out.'
+        : 'Compare with the lines around it in the original; the rest of the file is read without it.'
+    this.#tools.tally.reject(line, text, { code, column: null, found, expected, mend })
+  }
+
+  end(): void {
+    this.#release(null)
+  }
+}

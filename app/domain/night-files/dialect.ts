@@ -1,0 +1,233 @@
+import type { Separator, SourceProfile, TimeFormat } from '../schemas/source-profile.ts'
+import type { ChannelBook } from './channel-names.ts'
+import { refuseMarkup } from './content-kind.ts'
+import { splitLoosely } from './fields.ts'
+import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
+import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
+import { decimalEvidence } from './numbers.ts'
+import { choice, type QuestionList, question } from './questions.ts'
+import { type HeadLine, sniffSeparator } from './sniff-separator.ts'
+import { sniffTime, type TimeSample } from './sniff-time.ts'
+import { TimeReader } from './time-text.ts'
+import type { ReadContext, Refusal } from './types.ts'
+import { wallText, ZoneClock } from './zones.ts'
+
+/** How the file is written, as far as its head shows it. */
+export interface Dialect {
+  separator: Separator
+  decimalMark: '.' | ','
+  layout: 'wide' | 'long'
+  columns: HeaderColumn[]
+  headerLine: number
+  timeFormat: TimeFormat | null
+  /** Zone of times that carry no offset; null while a person has to say it. */
+  zone: ZoneClock | null
+  /** Rows of the head, cut into fields. */
+  rows: { fields: string[]; line: number }[]
+  periodMs: number | null
+}
+
+const EXPECTED = 'a header line such as “Zeit;HC-01A;HC-01B” or “epoch_ms,channel,value,unit,status”'
+
+function excerpt(text: string): string {
+  const trimmed = text.trim()
+  return trimmed.length > 60 ? `“${trimmed.slice(0, 60)}…”` : `“${trimmed}”`
+}
+
+/** Settles separator, header, decimal mark, times and zone from the head; asks or refuses where it cannot. */
+export function settleDialect(
+  head: readonly HeadLine[],
+  profile: SourceProfile,
+  context: ReadContext,
+  book: ChannelBook,
+  questions: QuestionList,
+): Dialect | Refusal {
+  const markup = refuseMarkup(head.map(({ text }) => text).join('\n'))
+  if (markup !== null) return markup
+  const first = head.find(({ text }) => text.trim() !== '') as HeadLine
+  const notLog = (found: string, line: number): Refusal => ({
+    code: 'not-a-log',
+    line,
+    column: 1,
+    found,
+    expected: EXPECTED,
+    mend: 'Check that the right file was chosen, and send the file as the logger wrote it.',
+  })
+  const separation = sniffSeparator(head, profile)
+  if (separation === null) return notLog(excerpt(first.text), first.line)
+  const { separator } = separation
+  const isPlain = ({ text }: HeadLine) =>
+    text.trim() !== '' &&
+    directiveSeparator(text) === null &&
+    !isComment(text, separator) &&
+    !text.includes('\u0000')
+  const plain = head.filter(isPlain)
+  const headerLine = plain.find(({ text }) => looksLikeHeader(splitLoosely(text, separator), book))
+  if (headerLine === undefined) {
+    const at = plain[0] ?? first
+    return notLog(`${excerpt(at.text)} and no line with the names of the columns`, at.line)
+  }
+  const { layout, columns } = readHeader(splitLoosely(headerLine.text, separator), book, profile)
+  const timeAt = columns.findIndex(({ role }) => role === 'time')
+  if (timeAt === -1)
+    return notLog(`a header without a column for the time: ${excerpt(headerLine.text)}`, headerLine.line)
+  const rows = plain
+    .filter(({ line, text }) => line > headerLine.line && !isFooter(text))
+    .map(({ line, text }) => ({ fields: splitLoosely(text, separator), line }))
+    .filter(({ fields }) => fields.length > 1 && !looksLikeUnitRow(fields) && !looksLikeHeader(fields, book))
+  if (rows.length === 0)
+    return {
+      code: 'header-only',
+      line: headerLine.line,
+      column: null,
+      found: 'a header and no row under it',
+      expected: 'at least one row of readings under the header',
+      mend: 'The logger wrote nothing this night, or the file was cut. Fetch it again; this counts as no data received.',
+    }
+  const decimalMark = settleDecimalMark(rows, columns, layout, separator, profile, questions)
+  const samples: TimeSample[] = rows.map(({ fields, line }) => ({ text: fields[timeAt] ?? '', line }))
+  const time = sniffTime(samples, profile, decimalMark)
+  if (time.refusal !== null) return { ...time.refusal, column: timeAt + 1 }
+  let timeFormat = time.format
+  if (time.question !== null) {
+    const asked = time.question
+    const answer = questions.answer(asked.id)
+    const answered = asked.choices.find(({ value }) => value === answer)
+    if (answered === undefined) questions.ask(asked.id, () => asked, rows.length)
+    else timeFormat = answered.value as TimeFormat
+  }
+  const zone = settleZone(head, samples, timeFormat, profile, context, questions, separator)
+  return {
+    separator,
+    decimalMark,
+    layout,
+    columns,
+    headerLine: headerLine.line,
+    timeFormat,
+    zone,
+    rows,
+    periodMs: settlePeriod(samples, timeFormat, profile),
+  }
+}
+
+function settleDecimalMark(
+  rows: Dialect['rows'],
+  columns: readonly HeaderColumn[],
+  layout: 'wide' | 'long',
+  separator: Separator,
+  profile: SourceProfile,
+  questions: QuestionList,
+): '.' | ',' {
+  // In a file cut at commas no unquoted number can hold one.
+  if (separator === ',' && profile.decimalMark !== ',') return '.'
+  const value = layout === 'long' ? columns.findIndex(({ role }) => role === 'value') : -1
+  const sure: Record<'.' | ',', number> = { '.': 0, ',': 0 }
+  let doubtful: { text: string; line: number; column: number } | null = null
+  for (const { fields, line } of rows)
+    fields.forEach((field, i) => {
+      const counts = layout === 'long' ? i === value : columns[i]?.role === 'channel'
+      if (!counts) return
+      const evidence = decimalEvidence(field)
+      if (evidence.mark === null || evidence.mark === 'both') return
+      if (evidence.sure) sure[evidence.mark] += 1
+      else doubtful ??= { text: field.trim(), line, column: i + 1 }
+    })
+  const seen = sure['.'] === sure[','] ? null : sure['.'] > sure[','] ? '.' : ','
+  if (seen !== null && (profile.decimalMark === null || profile.decimalMark === seen)) return seen
+  if (seen === null && profile.decimalMark !== null) return profile.decimalMark
+  if (seen === null && doubtful === null) return '.'
+  const answer = questions.answer('decimal-mark')
+  if (answer === '.' || answer === ',') return answer
+  const found = doubtful as { text: string; line: number; column: number } | null
+  questions.ask('decimal-mark', () =>
+    question({
+      id: 'decimal-mark',
+      kind: 'decimal-mark',
+      line: found?.line ?? rows[0]?.line ?? null,
+      column: found?.column ?? null,
+      text:
+        seen === null
+          ? 'The mark in the numbers may stand before the decimals or between thousands. Which is it?'
+          : `The numbers use “${seen}” as decimal mark, the profile of this source says “${profile.decimalMark}”.`,
+      found: found === null ? `numbers with “${seen}”` : `“${found.text}”`,
+      expected: 'one decimal mark, the same as in the profile of the source',
+      mend: 'Choose the mark that stands before the decimals.',
+      choices: [
+        choice(',', 'the comma stands before the decimals'),
+        choice('.', 'the point stands before the decimals'),
+      ],
+    }),
+  )
+  return seen ?? '.'
+}
+
+/** Zone of times without an offset; UTC for epochs, a fixed stand-in when every time carries its own offset. */
+function settleZone(
+  head: readonly HeadLine[],
+  samples: readonly TimeSample[],
+  format: TimeFormat | null,
+  profile: SourceProfile,
+  context: ReadContext,
+  questions: QuestionList,
+  separator: Separator,
+): ZoneClock | null {
+  if (format?.startsWith('epoch') === true) return new ZoneClock('UTC')
+  const answer = questions.answer('zone')
+  if (answer !== null && answer !== '') return new ZoneClock(answer)
+  if (profile.time.zone !== null) return new ZoneClock(profile.time.zone)
+  if (format === null) return null
+  const reader = new TimeReader(format)
+  const bare = samples.find(({ text }) => reader.read(text) && Number.isNaN(reader.offset))
+  if (bare === undefined) return new ZoneClock('UTC')
+  reader.read(bare.text)
+  const noted = head.find(({ text }) => isComment(text, separator) && readNote(text).zone !== null)
+  const proposed = [noted === undefined ? null : readNote(noted.text).zone, context.siteZone, 'UTC']
+  const zones = Array.from(new Set(proposed.filter((zone) => zone !== null)))
+  questions.ask(
+    'zone',
+    () =>
+      question({
+        id: 'zone',
+        kind: 'zone',
+        line: bare.line,
+        text: 'The times carry no offset and the profile of this source names no zone. On which clock did the logger run?',
+        found: `“${bare.text}”`,
+        expected: 'a zone in the profile of the source, or times with an offset such as +01:00',
+        mend: 'Choose the clock of the logger. Ask whoever set it up rather than guess.',
+        choices: zones.map((zone) =>
+          choice(zone, zone, [
+            {
+              line: bare.line,
+              text: bare.text,
+              meaning: `${wallText(new ZoneClock(zone).instants(reader.wallMs)[0] ?? reader.wallMs)} UTC`,
+            },
+          ]),
+        ),
+      }),
+    samples.length,
+  )
+  return null
+}
+
+/** Commonest step between the times of the head, unless the profile gives the period. */
+function settlePeriod(
+  samples: readonly TimeSample[],
+  format: TimeFormat | null,
+  profile: SourceProfile,
+): number | null {
+  if (profile.expectedPeriodSeconds !== null) return profile.expectedPeriodSeconds * 1000
+  if (format === null) return null
+  const reader = new TimeReader(format)
+  const steps = new Map<number, number>()
+  let before = Number.NaN
+  for (const { text } of samples) {
+    if (!reader.read(text)) continue
+    const step = reader.wallMs - before
+    if (step > 0) steps.set(step, (steps.get(step) ?? 0) + 1)
+    before = reader.wallMs
+  }
+  let commonest: number | null = null
+  for (const [step, count] of steps)
+    if (commonest === null || count > (steps.get(commonest) ?? 0)) commonest = step
+  return commonest
+}

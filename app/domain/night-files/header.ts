@@ -1,0 +1,162 @@
+import type { Quantity } from '../readings.ts'
+import { channelKey } from '../register.ts'
+import type { SourceProfile } from '../schemas/source-profile.ts'
+import type { ChannelBook } from './channel-names.ts'
+import { mendLabel } from './encoding.ts'
+import { looksNumeric } from './numbers.ts'
+import { looksLikeTime } from './time-text.ts'
+import type { ColumnReadOut } from './types.ts'
+import { readUnit, type UnitReading } from './units.ts'
+
+/** What a header says about one column. */
+export interface HeaderColumn {
+  role: ColumnReadOut['role']
+  /** Text of the header cell, mended and trimmed. */
+  inFile: string
+  /** Name without the unit. */
+  name: string
+  unit: UnitReading
+  /** Given by the profile. */
+  profileUnit: string | null
+  profileChannel: string | null | undefined
+  quantity: Quantity | null
+}
+
+const TIME =
+  /^(?:time|zeit|uhrzeit|datum\s*[/+ ]\s*(?:uhr)?zeit|date\s*[/+ _]?\s*time|timestamp|time\s?stamp|zeitstempel|t|epoch.*|elapsed.*|seconds?|secs?|sekunden|heure|horodatage|fecha[ /]hora|hora|utc|(?:local|utc) time|time .*|zeit .*|time_.*|t_.*)$/i
+const DATE = /^(?:date|datum|day|tag|jour|fecha)$/i
+const CHANNEL =
+  /^(?:channel(?: name)?|kanal|sensor|gauge(?: name)?|position|tag|name|signal|voie|canal|messstelle|point)$/i
+const VALUE =
+  /^(?:value|wert|messwert|reading|pressure|druck|valeur|pression|valor|p|temperature|temperatur)$/i
+const UNIT = /^(?:units?|einheit(?:en)?|unit[ée]s?|unidad)$/i
+const STATUS = /^(?:status|state|quality|flags?|zustand|état|etat|gauge status)$/i
+const COMMENT = /^(?:comments?|remarks?|notes?|bemerkung(?:en)?|kommentare?|operator|remarques?|text)$/i
+
+/** Splits `P1 (mbar)`, `P1 [mbar]`, `P1 / mbar`, `P1, mbar`, `P1_mbar` into name and unit. */
+export function splitHeaderCell(cell: string): { name: string; unit: UnitReading } {
+  const text = mendLabel(cell).trim()
+  const bracketed = /^(.*?)\s*[[({]\s*([^\])}]*(?:\([a-z]\))?)\s*[\])}]$/.exec(text)
+  if (bracketed !== null) {
+    const unit = readUnit(bracketed[2] as string)
+    if (unit.kind !== 'none') return { name: (bracketed[1] as string).trim(), unit }
+    // A word in brackets may be part of the name (west end), a single letter-and-sign knot is meant as a unit.
+    if (/[?\ufffd]/.test(bracketed[2] as string))
+      return {
+        name: (bracketed[1] as string).trim(),
+        unit: { kind: 'doubtful', token: bracketed[2] as string, why: 'a letter was lost in transfer' },
+      }
+    return { name: text, unit: { kind: 'none' } }
+  }
+  const tailed = /^(.+?)(?:\s*[/,]\s*|[\s_]+(?:in\s+)?)([^\s_/,]+)$/.exec(text)
+  if (tailed !== null) {
+    const token = tailed[2] as string
+    const unit = readUnit(token)
+    // A lone letter at the end (HC 03 A, TC 1 C) is far more often a position than amperes or degrees.
+    if (unit.kind === 'unit' && token.length > 1) return { name: (tailed[1] as string).trim(), unit }
+    if (unit.kind === 'gauge-pressure') return { name: (tailed[1] as string).trim(), unit }
+  }
+  return { name: text, unit: { kind: 'none' } }
+}
+
+function roleOf(name: string): ColumnReadOut['role'] | null {
+  if (TIME.test(name)) return 'time'
+  if (DATE.test(name)) return 'date'
+  if (UNIT.test(name)) return 'unit'
+  if (STATUS.test(name)) return 'status'
+  if (COMMENT.test(name)) return 'comment'
+  return null
+}
+
+/** Whether a row of cells can be a header: names and no measured values or dates. */
+export function looksLikeHeader(fields: readonly string[], book: ChannelBook): boolean {
+  let names = 0
+  for (const field of fields) {
+    const text = field.trim()
+    if (text === '') continue
+    if (looksLikeTime(text)) return false
+    if (looksNumeric(text)) {
+      // m/z columns are called 2, 18, 28: whole numbers may be names, measured values rarely are.
+      if (!/^\d{1,3}$/.test(text)) return false
+      continue
+    }
+    names += 1
+  }
+  if (names === 0) return false
+  return fields.some((field) => {
+    const { name } = splitHeaderCell(field)
+    if (book.isKnown(name) || book.isKnown(field.trim())) return true
+    return TIME.test(name) || DATE.test(name)
+  })
+}
+
+/** Whether every named cell is a unit: the second row of a two-row header. */
+export function looksLikeUnitRow(fields: readonly string[]): boolean {
+  let units = 0
+  for (const field of fields) {
+    const text = mendLabel(field)
+      .trim()
+      .replace(/^[[(](.*)[\])]$/, '$1')
+    if (text === '' || /^(?:-|s|sec|h|hh:mm:ss|dd\.mm\.yyyy.*|yyyy-mm-dd.*|utc|local)$/i.test(text)) continue
+    if (readUnit(text).kind === 'none') return false
+    units += 1
+  }
+  return units > 0
+}
+
+/** Reads a header row into columns and the layout that follows from them. */
+export function readHeader(
+  fields: readonly string[],
+  book: ChannelBook,
+  profile: SourceProfile,
+): { layout: 'wide' | 'long'; columns: HeaderColumn[] } {
+  const profileByKey = new Map(profile.columns.map((column) => [channelKey(column.inFile), column]))
+  const columns = fields.map((field): HeaderColumn => {
+    const split = splitHeaderCell(field)
+    const whole = mendLabel(field).trim()
+    const fromProfile = profileByKey.get(channelKey(whole)) ?? profileByKey.get(channelKey(split.name))
+    const known = book.isKnown(whole) ? whole : split.name
+    const base = {
+      inFile: whole,
+      name: known,
+      unit: split.unit,
+      profileUnit: fromProfile?.unit ?? null,
+      profileChannel: fromProfile?.channel,
+      quantity: fromProfile?.quantity ?? null,
+    }
+    if (fromProfile !== undefined)
+      return { ...base, role: fromProfile.channel === null ? 'left-out' : 'channel' }
+    if (book.isKnown(whole) || book.isKnown(split.name)) return { ...base, role: 'channel' }
+    if (whole === '') return { ...base, role: 'left-out' }
+    return { ...base, role: roleOf(split.name) ?? 'channel' }
+  })
+  const channelAt = columns.findIndex(
+    (column) => column.role === 'channel' && CHANNEL.test(column.name) && !book.isKnown(column.name),
+  )
+  const valueAt = columns.findIndex(
+    (column) => column.role === 'channel' && VALUE.test(column.name) && !book.isKnown(column.name),
+  )
+  const layout = profile.layout !== 'wide' && channelAt !== -1 && valueAt !== -1 ? 'long' : 'wide'
+  if (layout === 'long' && valueAt !== -1) {
+    columns.forEach((column, i) => {
+      if (i === valueAt) column.role = 'value'
+      else if (column.role === 'channel' && i !== channelAt) column.role = 'comment'
+    })
+  }
+  settleTimeColumns(columns)
+  return { layout, columns }
+}
+
+/** Several columns may sound like a time (time, elapsed, UTC): the first counts, a date column joins it. */
+function settleTimeColumns(columns: HeaderColumn[]): void {
+  const times = columns.filter((column) => column.role === 'time')
+  for (const extra of times.slice(1)) extra.role = 'left-out'
+  const dates = columns.filter((column) => column.role === 'date')
+  for (const extra of dates.slice(1)) extra.role = 'left-out'
+  if (times.length === 0 && dates[0] !== undefined) dates[0].role = 'time'
+}
+
+/** Index of the column a long file names its channels in; -1 in a wide one. */
+export function channelColumn(columns: readonly HeaderColumn[]): number {
+  return columns.findIndex((column) => column.role === 'channel')
+}

@@ -1,0 +1,69 @@
+import { QUALITIES, type Quality } from '../readings.ts'
+import { MAX_QUESTIONS } from './limits.ts'
+import type { Answer, Candidate, Choice, Question } from './types.ts'
+
+export function choice(value: string, label: string, candidates: Candidate[] = []): Choice {
+  return { value, label, candidates }
+}
+
+type Draft = Pick<Question, 'id' | 'kind' | 'text' | 'found' | 'expected' | 'mend'> & Partial<Question>
+
+/** A question with its defaults filled in: blocking, nothing waiting yet. */
+export function question(draft: Draft): Question {
+  return {
+    code: draft.kind,
+    blocking: true,
+    choices: [],
+    waiting: 0,
+    line: null,
+    column: null,
+    ...draft,
+  }
+}
+
+/** The questions of one reading, each asked once, with the answers that came with this file. */
+export class QuestionList {
+  readonly #asked = new Map<string, Question>()
+  readonly #answers: Map<string, string>
+  #blocked = false
+
+  constructor(answers: readonly Answer[]) {
+    this.#answers = new Map(answers.map((answer) => [answer.id, answer.choice]))
+  }
+
+  answer(id: string): string | null {
+    return this.#answers.get(id) ?? null
+  }
+
+  /** Asks unless already asked; counts what waits for the answer. */
+  ask(id: string, make: () => Question, waiting = 1): void {
+    let asked = this.#asked.get(id)
+    if (asked === undefined) {
+      if (this.#asked.size >= MAX_QUESTIONS) return
+      asked = make()
+      this.#asked.set(id, asked)
+      if (asked.blocking) this.#blocked = true
+    }
+    asked.waiting += waiting
+  }
+
+  /** Whether a question stands open without whose answer no value or time is sure. */
+  isBlocked(): boolean {
+    return this.#blocked
+  }
+
+  /** Meanings of words that came as answers. */
+  words(): Record<string, Quality> {
+    const words: Record<string, Quality> = {}
+    for (const [id, choice] of this.#answers) {
+      const quality = QUALITIES.find((known) => known === choice)
+      if (id.startsWith('unknown-word:') && quality !== undefined)
+        words[id.slice('unknown-word:'.length)] = quality
+    }
+    return words
+  }
+
+  list(): Question[] {
+    return Array.from(this.#asked.values())
+  }
+}

@@ -1,0 +1,133 @@
+import type { FileBody } from './body.ts'
+import { GAP_PERIODS } from './limits.ts'
+import type { NulScanner } from './lines.ts'
+import type { ReadingSink } from './sink.ts'
+import type { ChannelSummary, Remark, RemarkKind } from './types.ts'
+
+function remark(kind: RemarkKind, count: number, text: string, extra: Partial<Remark> = {}): Remark {
+  return { kind, text, line: null, channel: null, atMs: null, count, ...extra }
+}
+
+export interface FileFacts {
+  encoding: string
+  badBytes: boolean
+  nul: NulScanner
+  bytes: number
+  statedBytes: number | null
+}
+
+/** What a person should look at, in sentences: from the rows, the channels and the bytes. */
+export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: FileFacts): Remark[] {
+  const remarks: Remark[] = []
+  if (facts.statedBytes !== null && facts.statedBytes !== facts.bytes)
+    remarks.push(
+      remark(
+        'short-file',
+        1,
+        `The file was announced with ${facts.statedBytes} bytes and ${facts.bytes} arrived. Send it again if it was cut.`,
+      ),
+    )
+  if (facts.encoding !== 'utf-8')
+    remarks.push(remark('encoding', 1, `The text is written in ${facts.encoding} and was read as such.`))
+  if (facts.badBytes)
+    remarks.push(
+      remark('damaged-bytes', 1, 'Some bytes are no text; they stand as � in the lines concerned.'),
+    )
+  const range = facts.nul.ranges[0]
+  if (range !== undefined && !facts.encoding.startsWith('utf-16'))
+    remarks.push(
+      remark(
+        'damaged-bytes',
+        facts.nul.ranges.length,
+        `Bytes ${range.from} to ${range.to} are NUL, as a disk fault leaves them. The lines concerned are left out.`,
+      ),
+    )
+  if (body === null) return remarks
+  remarks.push(...body.remarks)
+  const { doubts } = body.rows
+  const many = (count: number, one: string, several: string) => (count === 1 ? one : `${count} ${several}`)
+  if (doubts.conflict > 0)
+    remarks.push(
+      remark(
+        'conflicts',
+        doubts.conflict,
+        `${many(doubts.conflict, 'One reading differs', 'readings differ')} from another of the same channel and instant. Both are kept and marked.`,
+      ),
+    )
+  if (doubts.future > 0)
+    remarks.push(
+      remark(
+        'future-times',
+        doubts.future,
+        `${many(doubts.future, 'One reading lies', 'readings lie')} in the future and will be stored as suspect. Check the clock of the logger.`,
+      ),
+    )
+  if (doubts.zero + doubts.negative > 0)
+    remarks.push(
+      remark(
+        'zero-or-negative',
+        doubts.zero + doubts.negative,
+        `${many(doubts.zero + doubts.negative, 'One pressure is', 'pressures are')} zero or negative and will be stored as suspect.`,
+      ),
+    )
+  if (doubts.ceiling > 0)
+    remarks.push(
+      remark(
+        'outside-ceiling',
+        doubts.ceiling,
+        `${many(doubts.ceiling, 'One value lies', 'values lie')} outside what is plausible and will be stored as suspect.`,
+      ),
+    )
+  if (doubts['open-sensor'] > 0)
+    remarks.push(
+      remark(
+        'open-sensor',
+        doubts['open-sensor'],
+        `${many(doubts['open-sensor'], 'One temperature is', 'temperatures are')} at full scale, as an open sensor reads, and will be stored as fault.`,
+      ),
+    )
+  if (doubts.spaced > 0)
+    remarks.push(
+      remark(
+        'spaced-exponent',
+        doubts.spaced,
+        `${many(doubts.spaced, 'One number has', 'numbers have')} blanks inside and was read without them.`,
+      ),
+    )
+  if (body.backSteps > 0)
+    remarks.push(
+      remark(
+        'disorder',
+        body.backSteps,
+        `The time steps back ${body.backSteps === 1 ? 'once' : `${body.backSteps} times`} from one row to the next. Readings are ordered by their time.`,
+      ),
+    )
+  const leftOut = (body.block?.columns ?? [])
+    .filter(({ role }) => role === 'left-out')
+    .map(({ inFile }) => inFile)
+  if (leftOut.length > 0)
+    remarks.push(
+      remark(
+        'left-out-columns',
+        leftOut.length,
+        `Left out: ${leftOut.slice(0, 8).join(', ')}${leftOut.length > 8 ? ' …' : ''}.`,
+      ),
+    )
+  remarks.push(...stoppedChannels(sink))
+  return remarks
+}
+
+/** Channels that fall silent before the end of the file while others go on. */
+function stoppedChannels(sink: ReadingSink): Remark[] {
+  const { periodMs, lastMs } = sink
+  if (periodMs === null || lastMs === null) return []
+  return sink.summaries().flatMap((channel: ChannelSummary) => {
+    if (channel.lastMs === null || lastMs - channel.lastMs <= GAP_PERIODS * periodMs) return []
+    return [
+      remark('channel-stops', 1, `${channel.name} stops before the end of the file while others go on.`, {
+        channel: channel.name,
+        atMs: channel.lastMs,
+      }),
+    ]
+  })
+}

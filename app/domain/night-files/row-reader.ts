@@ -1,0 +1,199 @@
+import { MARKS, type Quantity, qualityCode } from '../readings.ts'
+import type { Block } from './block.ts'
+import { channelTarget } from './block.ts'
+import { cellFault, channelQuestion, wordQuestion } from './cell-faults.ts'
+import type { CellFault, CellReader } from './cells.ts'
+import type { ChannelBook } from './channel-names.ts'
+import { FUTURE_MS } from './limits.ts'
+import { isCutNumber } from './numbers.ts'
+import type { QuestionList } from './questions.ts'
+import type { ReadingSink } from './sink.ts'
+import type { LineTally } from './tally.ts'
+import { plainWord } from './text.ts'
+import { readUnit, type Unit } from './units.ts'
+
+const SUSPECT = qualityCode('suspect')
+const GOOD = qualityCode('good')
+
+/** A row cut into fields, with the header it stands under. */
+export interface Row {
+  fields: string[]
+  text: string
+  line: number
+  block: Block
+}
+
+export type DoubtCounts = Record<
+  'zero' | 'negative' | 'ceiling' | 'open-sensor' | 'spaced' | 'future' | 'conflict',
+  number
+>
+
+export interface RowTools {
+  cells: CellReader
+  sink: ReadingSink
+  tally: LineTally
+  questions: QuestionList
+  book: ChannelBook
+  decimalMark: '.' | ','
+  nowMs: number
+  /** Replaces a unit that the file names by the one a person said. */
+  settleUnit: (unit: Unit) => Unit
+}
+
+/** Turns rows whose instant is known into readings, and gives every row its outcome. */
+export class RowReader {
+  readonly doubts: DoubtCounts = {
+    zero: 0,
+    negative: 0,
+    ceiling: 0,
+    'open-sensor': 0,
+    spaced: 0,
+    future: 0,
+    conflict: 0,
+  }
+  leftOut = 0
+  readonly #tools: RowTools
+  /** Results of the row at hand. */
+  #kept = 0
+  #duplicates = 0
+  #firstFault: CellFault | null = null
+  #flagged = false
+
+  constructor(tools: RowTools) {
+    this.#tools = tools
+  }
+
+  read(row: Row, atMs: number, ambiguous: boolean): void {
+    this.#kept = 0
+    this.#duplicates = 0
+    this.#firstFault = null
+    this.#flagged = ambiguous
+    if (row.block.layout === 'wide') this.#wide(row, atMs, ambiguous)
+    else if (!this.#long(row, atMs, ambiguous)) return
+    const { tally } = this.#tools
+    if (this.#kept > 0) tally.add(this.#flagged || this.#firstFault !== null ? 'flagged' : 'accepted')
+    else if (this.#firstFault !== null) tally.skip(this.#firstFault)
+    else if (this.#duplicates > 0) tally.skip('duplicate')
+    else tally.skip('left-out')
+  }
+
+  #wide(row: Row, atMs: number, ambiguous: boolean): void {
+    const { cells } = this.#tools
+    for (const column of row.block.wide) {
+      const text = row.fields[column.at] ?? ''
+      const fault = cells.read(text, column.quantity, column.unit)
+      if (fault !== null) this.#fault(row, fault, text, column.at)
+      else this.#emit(column.channel, atMs, row, text, ambiguous)
+    }
+  }
+
+  /** False when the row's outcome has been counted already. */
+  #long(row: Row, atMs: number, ambiguous: boolean): boolean {
+    const { cells, sink, tally, questions, book } = this.#tools
+    const { block, fields } = row
+    const name = (fields[block.channelAt] ?? '').trim()
+    const target = channelTarget(name, {
+      book,
+      answerFor: (asked) => questions.answer(`unknown-channel:${asked}`),
+    })
+    if (target === 'leave-out') {
+      this.leftOut += 1
+      tally.skip('left-out')
+      return false
+    }
+    if (target === null) {
+      questions.ask(`unknown-channel:${name}`, () =>
+        channelQuestion(name, row.line, block.channelAt + 1, book),
+      )
+      tally.reject(row.line, row.text, {
+        code: 'unknown-channel',
+        column: block.channelAt + 1,
+        found: `“${name}”`,
+        expected: 'a channel of this source in the register',
+        mend: 'Say where the channel belongs, or add it in the register and read the file again.',
+      })
+      return false
+    }
+    const unit = this.#rowUnit(row)
+    if (unit === 'unknown') {
+      const text = (fields[block.unitAt] ?? '').trim()
+      tally.reject(
+        row.line,
+        row.text,
+        cellFault(
+          'unknown-unit',
+          fields[block.valueAt] ?? '',
+          text,
+          block.unitAt + 1,
+          this.#tools.decimalMark,
+        ),
+      )
+      return false
+    }
+    const quantity: Quantity = target.quantity ?? unit?.quantity ?? 'pressure'
+    const text = fields[block.valueAt] ?? ''
+    const status = block.statusAt === -1 ? '' : (fields[block.statusAt] ?? '')
+    const fault = cells.read(text, quantity, unit)
+    if (fault !== null) this.#fault(row, fault, text, block.valueAt)
+    else if (cells.applyStatus(status, quantity) !== null)
+      this.#fault(row, 'unknown-word', status, block.statusAt)
+    else this.#emit(sink.channel(target.name, quantity), atMs, row, text, ambiguous)
+    return true
+  }
+
+  #rowUnit(row: Row): Unit | null | 'unknown' {
+    const { block } = row
+    if (block.unitAt === -1) return block.unit
+    const token = (row.fields[block.unitAt] ?? '').trim()
+    if (token === '') return block.unit
+    const reading = readUnit(token)
+    return reading.kind === 'unit' ? this.#tools.settleUnit(reading.unit) : 'unknown'
+  }
+
+  #fault(row: Row, fault: CellFault, text: string, at: number): void {
+    const { tally, questions, cells, decimalMark } = this.#tools
+    this.#firstFault ??= fault
+    tally.rejectCell(row.line, row.text, cellFault(fault, text, cells.badUnit, at + 1, decimalMark))
+    if (fault === 'unknown-word')
+      questions.ask(`unknown-word:${plainWord(text)}`, () => wordQuestion(text, row.line, at + 1))
+  }
+
+  #emit(channel: number, atMs: number, row: Row, text: string, ambiguous: boolean): void {
+    const { cells, sink, nowMs } = this.#tools
+    let { quality } = cells
+    if (cells.doubt !== null) {
+      this.doubts[cells.doubt] += 1
+      this.#flagged = true
+    }
+    if (atMs > nowMs + FUTURE_MS) {
+      this.doubts.future += 1
+      this.#flagged = true
+      if (quality === GOOD) quality = SUSPECT
+    }
+    const result = sink.emit({
+      channel,
+      atMs,
+      value: cells.value,
+      bound: cells.bound,
+      quality,
+      marks: ambiguous ? MARKS['time-ambiguous'] : 0,
+      line: row.line,
+      text,
+    })
+    if (result === 'duplicate') {
+      this.#duplicates += 1
+      return
+    }
+    this.#kept += 1
+    if (result === 'conflict') {
+      this.#flagged = true
+      this.doubts.conflict += 1
+    }
+  }
+}
+
+/** Whether the last line of the file was cut while it was written. */
+export function isCutRow(fields: readonly string[], block: Block): boolean {
+  if (fields.length < block.fieldCount) return true
+  return isCutNumber(fields[fields.length - 1] ?? '')
+}
