@@ -1,0 +1,35 @@
+/** Makes the database of DATABASE_URL when it is missing and brings its tables up to date. */
+import { closeDb, getPool } from '../db/client.server.ts'
+import { migrateDatabase } from '../db/migrate.server.ts'
+import { env } from '../env.server.ts'
+
+/** One sentence for what stands between us and the database. */
+function whyNot(error: unknown, databaseUrl: string): string {
+  const code = error instanceof Error && 'code' in error ? String(error.code) : ''
+  const { hostname, port, username } = new URL(databaseUrl)
+  const server = `${hostname}:${port || '3306'}`
+  if (['ECONNREFUSED', 'ETIMEDOUT', 'ENOTFOUND', 'EHOSTUNREACH', 'PROTOCOL_CONNECTION_LOST'].includes(code)) {
+    return `No database server answers on ${server} (${code}). Start it or correct DATABASE_URL.`
+  }
+  if (code === 'ER_ACCESS_DENIED_ERROR' || code === 'ER_DBACCESS_DENIED_ERROR') {
+    return `The database server on ${server} refuses ${username}. Correct DATABASE_URL or grant the rights.`
+  }
+  return error instanceof Error ? error.message : String(error)
+}
+
+async function main(databaseUrl: string): Promise<void> {
+  try {
+    const { applied } = await migrateDatabase(databaseUrl)
+    const [rows] = await getPool().promise().query('SELECT EXISTS(SELECT 1 FROM line) AS filled')
+    const filled = Array.isArray(rows) && rows.some((row) => 'filled' in row && row.filled === 1)
+    // The start command reads this line to know whether there is anything to seed.
+    console.log(JSON.stringify({ applied, empty: !filled }))
+  } catch (error) {
+    console.error(whyNot(error, databaseUrl))
+    process.exitCode = 1
+  } finally {
+    await closeDb()
+  }
+}
+
+await main(env().DATABASE_URL)
