@@ -60,8 +60,8 @@ export const SourceProfileSchema = z.object({
   bareExponent: z.boolean().default(false),
   /** Unit of the columns that do not name their own. */
   unit: z.string().min(1).max(24).nullable().default(null),
-  /** These files say their unit themselves: one that says none is refused instead of trusted. */
-  unitInFile: z.boolean().default(false),
+  /** Whether these files say their unit themselves, so that one that says none is refused instead of trusted. */
+  unitInFile: z.boolean().default(true),
   time: z
     .object({
       format: z.enum(TIME_FORMATS).nullable().default(null),
