@@ -1,20 +1,19 @@
 /** Scales that the drawings share. Pure, so that what a drawing claims can be tested without a browser. */
 
-/** Most decades an axis shows; what lies above is drawn at the upper edge and marked as beyond it. */
-const MOST_DECADES = 9
 const LEAST_DECADES = 2
 
 /**
  * Whole powers of ten that enclose the values. Zero, negative and unfinite values have no place on a log axis and are
  * left out; the caller says how many.
  *
- * @returns exponents of the lower and upper edge, at least two decades apart and at most nine
+ * @param most decades at most; what lies above is beyond the axis, and the drawing says so
+ * @returns exponents of the lower and upper edge, at least two decades apart
  */
-export function decadesAround(values: readonly number[]): { low: number; high: number } {
+export function decadesAround(values: readonly number[], most = 9): { low: number; high: number } {
   const logs = values.filter((value) => value > 0 && Number.isFinite(value)).map((value) => Math.log10(value))
   if (logs.length === 0) return { low: -8, high: -6 }
   const low = Math.floor(Math.min(...logs))
-  const high = Math.min(low + MOST_DECADES, Math.ceil(Math.max(...logs)))
+  const high = Math.min(low + most, Math.ceil(Math.max(...logs)))
   return { low, high: Math.max(high, low + LEAST_DECADES) }
 }
 
