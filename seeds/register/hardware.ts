@@ -83,11 +83,11 @@ async function seedValves(db: DbOrTx): Promise<void> {
     box: one.tag === 'SP-1' ? 'VB-08' : `VB-${String(one.id - 1).padStart(2, '0')}`,
     segmentId: one.id,
     eastSegmentId: null,
-    seal: 'all metal, with a relief valve at 0.1 bar over the tunnel',
+    seal: 'all metal',
     limitC: 150,
     partRiseShare: 1,
     normalPosition: 'locked shut',
-    note: '',
+    note: 'Has a relief valve at 0.1 bar over the tunnel',
   }))
   await db.insert(valve).values([...mainGates, spurGate, ...ports, ...vents])
 }

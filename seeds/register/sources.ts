@@ -21,7 +21,7 @@ interface DemoSource {
   note: string
 }
 
-const SOURCES: readonly DemoSource[] = [
+export const SOURCES: readonly DemoSource[] = [
   {
     code: 'NL-W',
     name: 'Night logger west',
