@@ -5,7 +5,7 @@ export const CONTENT_TYPES = {
   'image/jpeg': 'JPEG picture',
   'image/webp': 'WebP picture',
   'application/pdf': 'PDF document',
-  'text/plain': 'text',
+  'text/plain': 'text file',
 } as const
 export type ContentType = keyof typeof CONTENT_TYPES
 
