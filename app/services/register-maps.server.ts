@@ -19,7 +19,7 @@ import { clip, nextChange, overlaps, type Span, writeOver } from '../domain/date
 import { DomainError } from '../domain/errors.ts'
 import type { ChannelMapForm } from '../domain/schemas/register-dated.ts'
 import { writeRecord } from './record.server.ts'
-import { fieldFault } from './register-values.server.ts'
+import { fieldFault, utcText } from './register-values.server.ts'
 
 /** What a map said over a window, as it goes on record. */
 interface MapLine {
@@ -115,7 +115,7 @@ function refuseStale(ownMaps: readonly MapRow[], seen: number, own: ChannelFacts
   const told =
     row === undefined
       ? ''
-      : ` ${row.recordedBy ?? 'The product'} mapped it to ${row.position} from ${row.startsAt.toISOString()}.`
+      : ` ${row.recordedBy ?? 'The product'} mapped it to ${row.position} from ${utcText(row.startsAt)}.`
   throw new DomainError(
     'conflict',
     `The map of ${own.name} has been changed since you opened this form.${told} Nothing of yours has been saved: look at the present map and do it again.`,

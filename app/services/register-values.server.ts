@@ -80,3 +80,8 @@ export function differences(before: Values, after: Values): { before: Values; af
     after: Object.fromEntries(names.map((name) => [name, after[name] ?? null])),
   }
 }
+
+/** An instant inside a sentence. Services know no site zone, so it is given in UTC and says so. */
+export function utcText(at: Date): string {
+  return `${at.toISOString().slice(0, 16).replace('T', ' ')} UTC`
+}

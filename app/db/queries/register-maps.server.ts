@@ -99,15 +99,9 @@ export async function lockSource(tx: DbOrTx, sourceId: number): Promise<void> {
   await tx.select({ id: source.id }).from(source).where(eq(source.id, sourceId)).for('update')
 }
 
-/** Locks instruments in one order whoever asks, so that two exchanges cannot wait for each other. */
-export async function lockInstruments(tx: DbOrTx, ids: readonly number[]): Promise<void> {
-  if (ids.length === 0) return
-  await tx
-    .select({ id: instrument.id })
-    .from(instrument)
-    .where(inArray(instrument.id, [...ids]))
-    .orderBy(asc(instrument.id))
-    .for('update')
+/** Locks an instrument, so that two people cannot put it into two places. */
+export async function lockInstrument(tx: DbOrTx, id: number): Promise<void> {
+  await tx.select({ id: instrument.id }).from(instrument).where(eq(instrument.id, id)).for('update')
 }
 
 export async function insertMap(tx: DbOrTx, row: typeof channelMap.$inferInsert): Promise<void> {
