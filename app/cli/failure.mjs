@@ -21,7 +21,7 @@ export function sentenceFor(error) {
   if (!(error instanceof Error)) return String(error)
   const code = 'code' in error ? error.code : undefined
   const path = 'path' in error && typeof error.path === 'string' ? error.path : 'the project folder'
-  if (code === 'ENOSPC') return `The disk that holds ${path} is full: free some space and start again.`
+  if (code === 'ENOSPC') return sentenceForFullDisk(path)
   if (code === 'EDQUOT') return `The quota for ${path} is used up: free some space and start again.`
   if (code === 'EROFS') return `${path} is on a disk mounted read-only: Ebbline needs to write there.`
   if (code === 'EACCES') return `No permission for ${path}: start as a user who may write there.`
@@ -30,5 +30,10 @@ export function sentenceFor(error) {
 
 /** Whether a full disk is what a program's last lines complain about. */
 export function speaksOfFullDisk(text) {
-  return /no space left on device|errno: 28|\(28 |disk (is )?full|ENOSPC/i.test(text)
+  return /no space left on device|errno: 28\b|errcode: 28\b|disk is full|ENOSPC/i.test(text)
+}
+
+/** @param {string} [path] something on that disk */
+export function sentenceForFullDisk(path = 'the project') {
+  return `The disk that holds ${path} is full: free some space and start again.`
 }

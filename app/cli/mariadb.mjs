@@ -1,15 +1,15 @@
 /** A MariaDB server of our own: made once in a folder, bound to loopback, reached by TCP with a password. */
-import { chownSync, existsSync, mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs'
+import { chownSync, existsSync, mkdirSync, readdirSync, rmSync, writeFileSync } from 'node:fs'
 import { createConnection } from 'node:net'
 import { join } from 'node:path'
-import { CommandFailure, speaksOfFullDisk } from './failure.mjs'
+import { CommandFailure, sentenceForFullDisk, speaksOfFullDisk } from './failure.mjs'
 import { findProgram } from './packages.mjs'
 import { freePort } from './ports.mjs'
 import { run, start, stop } from './processes.mjs'
 
 const ACCOUNT = 'ebbline'
 const ANSWER_WITHIN_MS = 60_000
-const STOP_WITHIN_MS = 7_000
+const STOP_WITHIN_MS = 5_000
 
 export const DATABASE_PACKAGES = {
   programs: ['mariadbd', 'mariadb-install-db'],
@@ -23,13 +23,14 @@ export const DATABASE_PACKAGES = {
  * @property {import('./database-user.mjs').DatabaseUser} user
  * @property {string} password of the account `ebbline`; letters and digits only
  * @property {string[]} [options] further options of mariadbd
+ * @property {(program: { pid?: number }) => void} [started] called as soon as the server runs, before it answers
  */
 
 /**
  * Makes the server's files when they are missing and starts it on a free port of 127.0.0.1.
  * @param {ServerSettings} settings
  */
-export async function startMariadb({ folder, user, password, options = [] }) {
+export async function startMariadb({ folder, user, password, options = [], started }) {
   const dataFolder = join(folder, 'files')
   await makeDataFolder(folder, dataFolder, user)
   const accountFile = join(folder, 'account.sql')
@@ -56,6 +57,7 @@ export async function startMariadb({ folder, user, password, options = [] }) {
   ]
   const [command, args] = commandAs(user, serverOptions)
   const server = start(command, args)
+  started?.(server)
   await answers(server, port)
   return {
     port,
@@ -146,8 +148,7 @@ async function answers(server, port) {
 /** @param {string[]} lines */
 function whyItEnded(lines) {
   const text = lines.join('\n')
-  if (speaksOfFullDisk(text))
-    return 'The disk that holds the database is full: free some space and start again.'
+  if (speaksOfFullDisk(text)) return sentenceForFullDisk('the database')
   if (/Unable to lock|lock .*(error|failed)|already running/i.test(text)) {
     return 'Another database server is using the same files: stop it, then start again.'
   }
@@ -171,12 +172,4 @@ function greets(port) {
     socket.on('end', () => answer(false))
     socket.on('data', (packet) => answer(packet[3] === 0 && packet[4] === 10))
   })
-}
-
-/** The server's account password kept in a file, made at the first call. @param {string} path */
-export function keptPassword(path, /** @type {() => string} */ make) {
-  if (existsSync(path)) return readFileSync(path, 'utf8').trim()
-  const made = make()
-  writeFileSync(path, `${made}\n`, { mode: 0o600, flag: 'wx' })
-  return made
 }

@@ -1,11 +1,12 @@
 /** Starting and ending other programs. Each gets a process group of its own, so that a stop reaches its children too. */
 import { spawn } from 'node:child_process'
-import { CommandFailure } from './failure.mjs'
+import { CommandFailure, sentenceForFullDisk, speaksOfFullDisk } from './failure.mjs'
 
 const KEPT_LINES = 30
 
 /** @type {Set<import('node:child_process').ChildProcess>} */
 const running = new Set()
+let closing = false
 
 /**
  * Starts a program in a process group of its own.
@@ -16,6 +17,7 @@ const running = new Set()
  *   onText: called with everything it writes
  */
 export function start(command, args, { cwd, env, show = false, channel = false, onText } = {}) {
+  if (closing) throw new CommandFailure('Stopping: nothing new is started.')
   const output = show ? 'inherit' : 'pipe'
   const child = spawn(command, args, {
     cwd,
@@ -68,6 +70,8 @@ export async function run(command, args, { cwd, env, failure } = {}) {
   const program = start(command, args, { cwd, env, onText: (text) => (all += text) })
   const { code, error } = await program.ended
   if (code === 0) return all
+  if (speaksOfFullDisk(all))
+    throw new CommandFailure(sentenceForFullDisk(cwd), { lines: program.lastLines() })
   const what = failure ?? `"${[command, ...args].join(' ')}" failed`
   throw new CommandFailure(error === undefined ? what : `${what}: ${error.message}`, {
     lines: program.lastLines(),
@@ -94,16 +98,23 @@ export async function stop(program, { graceMs }) {
   return went === true
 }
 
-/** Ends everything that was started here at once, for a command that is itself told to end. */
-export function killAll() {
-  for (const child of running) if (child.pid !== undefined) signalGroup(child.pid, 'SIGKILL')
+/**
+ * Ends everything that was started here at once and starts nothing more, for a command that is itself told to end.
+ * @param {{ pid?: number }[]} [except] these are left to an orderly stop
+ */
+export function killAll(except = []) {
+  closing = true
+  for (const { pid } of running) {
+    if (pid !== undefined && !except.some((program) => program.pid === pid)) signalGroup(pid, 'SIGKILL')
+  }
 }
 
 /**
+ * Signals a process group; one that is gone already is fine.
  * @param {number} pid leader of the group
  * @param {NodeJS.Signals} signal
  */
-function signalGroup(pid, signal) {
+export function signalGroup(pid, signal) {
   try {
     process.kill(-pid, signal)
   } catch (error) {

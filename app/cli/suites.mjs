@@ -1,8 +1,9 @@
 /** The suites of `npm test`, in the order in which they run. */
 import { existsSync, readFileSync } from 'node:fs'
 import { join } from 'node:path'
+import { ensureBuild } from './build-stamp.mjs'
 import { runChecks } from './checks.mjs'
-import { run, start } from './processes.mjs'
+import { start } from './processes.mjs'
 import { outcomeOf } from './report.mjs'
 
 const HANGS_AFTER_MS = 8 * 60_000
@@ -42,12 +43,7 @@ async function runValidate({ root }) {
 
 /** The production build counts as one test: route and browser tests rest on it. @type {Suite['run']} */
 async function build({ root, env }) {
-  const program = join(root, 'node_modules', '.bin', 'react-router')
-  await run(program, ['build'], {
-    cwd: root,
-    env: { ...env, NODE_ENV: 'production' },
-    failure: 'The build failed',
-  })
+  await ensureBuild(root, env)
   return { passed: 1, failed: 0, skipped: 0, notes: [] }
 }
 

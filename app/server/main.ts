@@ -7,11 +7,12 @@ import { endWithin, reportReady, untilStopped } from '../cli/until-stopped.ts'
 import { closeDb } from '../db/client.server.ts'
 import { env } from '../env.server.ts'
 import { log } from '../log.server.ts'
+import { listDemoSignIns } from '../services/demo-sign-ins.server.ts'
 import { close, createApp, listen } from './http.ts'
 
 /** Requests under way may take so long after the order to end; the start command waits a little longer. */
 const GRACE_MS = 3_000
-const END_WITHIN_MS = 5_000
+const END_WITHIN_MS = 4_000
 
 async function main(): Promise<void> {
   const told = untilStopped()
@@ -22,7 +23,7 @@ async function main(): Promise<void> {
   const server = await listen(app, { host: HOST, port: PORT })
   const { port } = server.address() as AddressInfo
   log.debug('Web server ready', { host: HOST, port })
-  reportReady({ port })
+  reportReady({ port, signIns: listDemoSignIns() })
 
   const reason = await told
   log.debug('Web server ends', { reason })

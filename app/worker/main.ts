@@ -5,7 +5,7 @@ import { log } from '../log.server.ts'
 import { runWorker } from './loop.server.ts'
 
 /** A job under way may take so long after the order to end; what is not done then is taken up after its lease. */
-const END_WITHIN_MS = 5_000
+const END_WITHIN_MS = 4_000
 
 async function main(): Promise<void> {
   const stopping = new AbortController()
