@@ -7,6 +7,7 @@ import { elapsedMs, machineNow } from '../app/machine-time.server.ts'
 import { ensureClock } from '../app/services/clock.server.ts'
 import { createReadingPartitions } from '../app/services/partitions.server.ts'
 import { DEMO_START } from './demo-time.ts'
+import { seedLogEntries } from './log-entries.ts'
 import { seedPeople } from './people.ts'
 import { loadReadings } from './readings/load.ts'
 import { readArchive, seedImports } from './readings/night-archive.ts'
@@ -56,7 +57,8 @@ export async function seedDemo(
     await seedLimits(inside)
     await seedSegmentStates(inside)
     const imports = await seedImports(inside, archive)
-    const counts = { people, segments, positions, channels, instruments, imports }
+    const entries = await seedLogEntries(inside)
+    const counts = { people, segments, positions, channels, instruments, imports, entries }
     await inside.insert(record).values({
       at: DEMO_START,
       machineAt: machineNow(),
