@@ -45,7 +45,7 @@ export function forecastPumpDown(
   }
   const last = pa.at(-1)
   if (last === undefined) return null
-  const askedPa = ask ?? 10 ** (Math.ceil(Math.log10(last)) - 1)
+  const askedPa = ask ?? Number(`1e${Math.ceil(Math.log10(last)) - 1}`)
   const targetPa = standing.target?.value ?? null
   const model = coldModel(standing.segment, standing.pumps)
   const position = standing.gauges.find(({ position: { tag } }) => tag === gauge.tag)?.position
