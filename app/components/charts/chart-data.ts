@@ -1,7 +1,4 @@
 /** Curves on their way into a chart: put on one axis, with gaps kept as gaps. Pure. */
-import type { PressureUnit } from '#app/context.ts'
-import { fromPascal } from '#app/physics/units.ts'
-
 export type SeriesRole = 'measured' | 'predicted' | 'forecast'
 
 /** A curve in Pa. `null` is a gap, and a gap is never bridged. */
@@ -37,14 +34,9 @@ export interface Aligned {
  * Puts curves on one axis of places.
  *
  * @param xLog leaves out places at zero or before, which have no logarithm
- * @returns values in `unit`
+ * @returns values in Pa
  */
-export function alignSeries(
-  x: readonly number[],
-  series: readonly ChartSeries[],
-  unit: PressureUnit,
-  xLog: boolean,
-): Aligned {
+export function alignSeries(x: readonly number[], series: readonly ChartSeries[], xLog: boolean): Aligned {
   const all = [...new Set([...x, ...series.flatMap((one) => one.x ?? [])])]
     .filter((place) => Number.isFinite(place) && (!xLog || place > 0))
     .sort((a, b) => a - b)
@@ -57,7 +49,7 @@ export function alignSeries(
       if (to === undefined) continue
       const value = values[at] ?? null
       if (value !== null && value <= 0 && counts) leftOut += 1
-      cells[to] = value === null || value <= 0 || !Number.isFinite(value) ? null : fromPascal(value, unit)
+      cells[to] = value === null || value <= 0 || !Number.isFinite(value) ? null : value
     }
     return cells
   }

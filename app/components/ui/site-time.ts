@@ -21,6 +21,12 @@ export function dayText(at: Date, zone: string): string {
   return `${local.getDate()} ${MONTHS[local.getMonth()]} ${local.getFullYear()}`
 }
 
+/** Day and month alone, such as `9 Nov`, where the year is plain from what stands around it. */
+export function shortDayText(at: Date, zone: string): string {
+  const local = new TZDate(at.getTime(), zone)
+  return `${local.getDate()} ${MONTHS[local.getMonth()]}`
+}
+
 /** Time of day alone, such as `08:00`; with seconds where the instant has any and they are asked for. */
 export function timeText(at: Date, zone: string, seconds = false): string {
   const local = new TZDate(at.getTime(), zone)

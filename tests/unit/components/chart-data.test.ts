@@ -18,7 +18,7 @@ const forecast: ChartSeries = {
 }
 
 describe('curves on one axis', () => {
-  const aligned = alignSeries([1, 2, 3], [measured, forecast], 'Pa', false)
+  const aligned = alignSeries([1, 2, 3], [measured, forecast], false)
 
   test('keep a gap as a gap and let a place of another curve be passed over', () => {
     expect(aligned.x).toEqual([1, 2, 3, 4])
@@ -28,19 +28,14 @@ describe('curves on one axis', () => {
     expect(aligned.columns[0]?.band).toBeNull()
   })
 
-  test('come in the unit of the reader', () => {
-    const inMbar = alignSeries([1], [{ ...measured, y: [4e-5] }], 'mbar', false)
-    expect(inMbar.columns[0]?.y[0]).toBeCloseTo(4e-7, 18)
-  })
-
   test('turn what has no logarithm into gaps and count it', () => {
-    const { columns, leftOut } = alignSeries([1, 2, 3], [{ ...measured, y: [0, -2e-5, 2e-5] }], 'Pa', false)
+    const { columns, leftOut } = alignSeries([1, 2, 3], [{ ...measured, y: [0, -2e-5, 2e-5] }], false)
     expect(columns[0]?.y).toEqual([null, null, 2e-5])
     expect(leftOut).toBe(2)
   })
 
   test('begin after zero where the places are on a log axis', () => {
-    expect(alignSeries([0, 1, 2], [{ ...measured, y: [1, 2, 3] }], 'Pa', true).x).toEqual([1, 2])
+    expect(alignSeries([0, 1, 2], [{ ...measured, y: [1, 2, 3] }], true).x).toEqual([1, 2])
   })
 
   test('give the axis their bands and levels too', () => {
@@ -51,12 +46,7 @@ describe('curves on one axis', () => {
 })
 
 test('the extremes of a curve carry their places, and an empty curve has none', () => {
-  const { x, columns } = alignSeries(
-    [1, 2, 3, 4],
-    [{ ...measured, y: [4e-5, null, 9e-6, 2e-5] }],
-    'Pa',
-    false,
-  )
+  const { x, columns } = alignSeries([1, 2, 3, 4], [{ ...measured, y: [4e-5, null, 9e-6, 2e-5] }], false)
   const [column] = columns
   if (column === undefined) throw new Error('no column')
   expect(extremesOf(x, column)).toEqual({
@@ -70,7 +60,7 @@ test('the extremes of a curve carry their places, and an empty curve has none', 
 
 test('a table is thinned evenly and ends with the last place', () => {
   const x = Array.from({ length: 100 }, (_, at) => at + 1)
-  const rows = tableRows(alignSeries(x, [{ ...measured, y: x }], 'Pa', false), 30)
+  const rows = tableRows(alignSeries(x, [{ ...measured, y: x }], false), 30)
   expect(rows.length).toBeLessThanOrEqual(30)
   expect(rows.at(-1)).toEqual({ x: 100, values: [100] })
   expect(new Set(rows.slice(1).map((row, at) => row.x - (rows[at]?.x ?? 0)))).toEqual(new Set([4]))
