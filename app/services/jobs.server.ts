@@ -9,6 +9,7 @@ import { randomUUID } from 'node:crypto'
 import type { Db, DbOrTx } from '../db/client.server.ts'
 import {
   closeJob,
+  deleteFinishedJobs,
   insertJob,
   type JobRow,
   leaseJob,
@@ -204,4 +205,14 @@ export async function drainJobs(
     if (held === null) return counts
     counts[await runJob(db, held, handlers, { signal, machine })] += 1
   }
+}
+
+const DONE_KEPT_MS = 7 * 86_400_000
+const FAILED_KEPT_MS = 90 * 86_400_000
+
+/** Deletes jobs done a week ago and jobs given up ninety days ago. Returns how many. */
+export async function purgeJobs(db: Db, machine: Date = machineNow()): Promise<number> {
+  const done = await deleteFinishedJobs(db, ['done'], new Date(machine.getTime() - DONE_KEPT_MS))
+  const failed = await deleteFinishedJobs(db, ['failed'], new Date(machine.getTime() - FAILED_KEPT_MS))
+  return done + failed
 }

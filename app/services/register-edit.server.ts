@@ -22,6 +22,8 @@ import { columnsOf, differences, fieldFault, type Values, valuesOf } from './reg
 const AHEAD_MS = 5 * 60_000
 const EDITED = 'register entry changed'
 const ADDED = 'register entry added'
+/** A pump that moved: counts the pump's revision up as an edit does. */
+export const MOVED = 'pump moved'
 
 /**
  * Changes one thing of the register.
@@ -122,8 +124,8 @@ function refuseLater(validFrom: Date, now: Date): void {
   })
 }
 
-/** Says who changed what since a form was made. */
-async function changedMeanwhile(
+/** The refusal that says who changed what since a form was made. */
+export async function changedMeanwhile(
   inside: DbOrTx,
   kind: EditedKind,
   row: RegisterRow,
@@ -131,7 +133,9 @@ async function changedMeanwhile(
 ): Promise<DomainError> {
   const { subject, fields } = KIND_FACTS[kind]
   const lines = await listRecord(inside, { subjectKind: subject, subjectId: row.tag, limit: 50 })
-  const edits = lines.filter(({ act }) => act === EDITED).slice(0, Math.max(1, row.revision - revision))
+  const edits = lines
+    .filter(({ act }) => act === EDITED || act === MOVED)
+    .slice(0, Math.max(1, row.revision - revision))
   const label = (name: string) => fields.find((field) => field.name === name)?.label ?? name
   const told = edits.map(({ person, before, after }) => {
     const [was, is] = [before as Values, after as Values]

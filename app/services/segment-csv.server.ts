@@ -1,6 +1,7 @@
 /** Readings of a segment as CSV. Streamed channel by channel, so that a year of them does not sit in memory. */
 import Papa from 'papaparse'
 import type { Db } from '../db/client.server.ts'
+import { findSegmentId } from '../db/queries/logbook.server.ts'
 import {
   factorAt,
   listChannelReadings,
@@ -8,7 +9,6 @@ import {
   listMapSpans,
   listPositions,
 } from '../db/queries/readings.server.ts'
-import { findSegmentId } from '../db/queries/logbook.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import { bitsToMarks } from '../domain/readings.ts'
 import { PRESSURE_KINDS } from './standing.server.ts'
@@ -51,7 +51,12 @@ function readInstant(text: string | null): Date | null {
   return Number.isNaN(at.getTime()) ? null : at
 }
 
-async function* csvLines(db: Db, segmentId: number, from: Date, to: Date): AsyncGenerator<string, void, undefined> {
+async function* csvLines(
+  db: Db,
+  segmentId: number,
+  from: Date,
+  to: Date,
+): AsyncGenerator<string, void, undefined> {
   yield 'position,utc,value_pa_nitrogen_equivalent,quality,marks,bound_pa,import,line\r\n'
   const positions = await listPositions(db, { segmentId, kinds: PRESSURE_KINDS })
   const ids = positions.map(({ id }) => id)
@@ -61,7 +66,12 @@ async function* csvLines(db: Db, segmentId: number, from: Date, to: Date): Async
       let cursor = span.from > from ? span.from : from
       const end = span.to !== null && span.to < to ? span.to : to
       for (;;) {
-        const page = await listChannelReadings(db, { channelId: span.channelId, from: cursor, to: end, limit: PAGE })
+        const page = await listChannelReadings(db, {
+          channelId: span.channelId,
+          from: cursor,
+          to: end,
+          limit: PAGE,
+        })
         const lastAt = page.at(-1)?.at.getTime()
         if (lastAt === undefined) break
         // A full page may end between two readings of one instant: those come with the next page, together.

@@ -27,7 +27,9 @@ export interface StateChange {
 export async function setSegmentState(db: Db, actor: Actor, now: Date, change: StateChange): Promise<void> {
   demand(actor, 'segment-state:set')
   const field = (name: string, message: string) =>
-    new DomainError('bad-input', 'One field needs another look; nothing has been saved.', { fields: { [name]: [message] } })
+    new DomainError('bad-input', 'One field needs another look; nothing has been saved.', {
+      fields: { [name]: [message] },
+    })
   if (change.since.getTime() > now.getTime() + AHEAD_MS) {
     throw field('since', 'This lies in the future. Set the state when it has changed.')
   }
@@ -43,7 +45,8 @@ export async function setSegmentState(db: Db, actor: Actor, now: Date, change: S
         `${change.tag} is now "${SEGMENT_STATES[current].label}" (set by ${open?.setBy ?? 'nobody'}), no longer "${SEGMENT_STATES[change.from].label}". Look again before you change it.`,
       )
     }
-    if (current === change.state) throw field('state', `${change.tag} is already "${SEGMENT_STATES[current].label}".`)
+    if (current === change.state)
+      throw field('state', `${change.tag} is already "${SEGMENT_STATES[current].label}".`)
     if (open !== null && change.since <= open.since) {
       throw field('since', `The present state began later than this. Give a time after its beginning.`)
     }
