@@ -6,6 +6,7 @@ import { createHash, randomBytes } from 'node:crypto'
 import { type Cookie, createCookie } from 'react-router'
 import type { Db } from '../db/client.server.ts'
 import {
+  deleteEndedSessions,
   deleteSession,
   findSession,
   insertSession,
@@ -16,7 +17,8 @@ import { env } from '../env.server.ts'
 import { machineNow } from '../machine-time.server.ts'
 
 const SESSION_DAYS = 14
-const IDLE_HOURS = 12
+/** A browser that asks for nothing for so long is signed out. */
+const IDLE_MS = 12 * 3_600_000
 /** A request within this time of the last one does not write to the database again. */
 const TOUCH_EVERY_MS = 60_000
 
@@ -67,7 +69,7 @@ export async function readSession(db: Db, request: Request, productNow: Date): P
   const found = await findSession(db, hashToken(token))
   if (found === null) return null
   const idle = now.getTime() - found.lastSeenAt.getTime()
-  if (found.expiresAt <= now || idle > IDLE_HOURS * 3_600_000) return null
+  if (found.expiresAt <= now || idle > IDLE_MS) return null
   if (found.person.endsAt !== null && found.person.endsAt <= productNow) return null
   if (idle > TOUCH_EVERY_MS) await touchSession(db, found.tokenHash, now)
   return found.person
@@ -78,4 +80,10 @@ export async function closeSession(db: Db, request: Request): Promise<string> {
   const token = await tokenOf(request)
   if (token !== null) await deleteSession(db, hashToken(token))
   return sessionCookie().serialize('', { maxAge: 0 })
+}
+
+/** Deletes the rows of sessions that have ended; nobody could have used them any more. Returns how many. */
+export function purgeSessions(db: Db): Promise<number> {
+  const now = machineNow()
+  return deleteEndedSessions(db, now, new Date(now.getTime() - IDLE_MS))
 }

@@ -1,4 +1,4 @@
-import { eq } from 'drizzle-orm'
+import { eq, lt, lte, or } from 'drizzle-orm'
 import type { Grant } from '../../domain/roles.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { person, roleGrant, session } from '../schema/index.ts'
@@ -75,4 +75,12 @@ export async function touchSession(db: DbOrTx, tokenHash: string, at: Date): Pro
 
 export async function deleteSession(db: DbOrTx, tokenHash: string): Promise<void> {
   await db.delete(session).where(eq(session.tokenHash, tokenHash))
+}
+
+/** Deletes sessions past their end, and those last used before an instant. */
+export async function deleteEndedSessions(db: DbOrTx, now: Date, idleSince: Date): Promise<number> {
+  const [result] = await db
+    .delete(session)
+    .where(or(lte(session.expiresAt, now), lt(session.lastSeenAt, idleSince)))
+  return result.affectedRows
 }
