@@ -74,6 +74,16 @@ export interface TransitionalFlow {
   readonly slipPerPa: number
 }
 
+/** X per pascal of Knudsen's formula, d sqrt(M/RT)/eta. */
+export function slipPerPascal(
+  gas: Gas,
+  diameterM: number,
+  temperatureK: number,
+  viscosityPaS: number,
+): number {
+  return (diameterM * Math.sqrt(GAS_DATA[gas].molarMass / (GAS_CONSTANT * temperatureK))) / viscosityPaS
+}
+
 /** Prepares Knudsen's formula for one gas, diameter and temperature; `viscosityPaS` overrides the table. */
 export function transitionalFlow(
   gas: Gas,
@@ -81,11 +91,10 @@ export function transitionalFlow(
   temperatureK: number,
   viscosityPaS: number = viscosity(gas, temperatureK),
 ): TransitionalFlow {
-  const thermal = Math.sqrt(GAS_DATA[gas].molarMass / (GAS_CONSTANT * temperatureK))
   return {
     molecular: molecularSpecific(gas, diameterM, temperatureK),
     viscousPerPa: viscousSpecific(diameterM, 1, viscosityPaS),
-    slipPerPa: (diameterM * thermal) / viscosityPaS,
+    slipPerPa: slipPerPascal(gas, diameterM, temperatureK, viscosityPaS),
   }
 }
 
