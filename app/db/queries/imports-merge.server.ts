@@ -1,0 +1,148 @@
+/**
+ * From the readings of one file to the stored ones. The rows first go into a table of this connection alone, by
+ * LOAD DATA, and from there into `reading`: what is held already goes no further, what differs is kept beside it.
+ */
+import { Readable } from 'node:stream'
+import { sql } from 'drizzle-orm'
+import { drizzle } from 'drizzle-orm/mysql2'
+import type mysql from 'mysql2'
+import { MARKS } from '../../domain/readings.ts'
+import type { Db, DbOrTx } from '../client.server.ts'
+
+/** A handle and the connection under it: whatever both do is one session, and one transaction. */
+export interface OneConnection {
+  db: Db
+  raw: mysql.PoolConnection
+}
+
+/** Whoever holds a connection here needs a second one to read the file from; all together must not empty the pool. */
+const AT_ONCE = 3
+let running = 0
+const waiting: (() => void)[] = []
+
+/** Takes one connection out of the pool for statements that drizzle cannot say, and gives it back afterwards. */
+export async function onOneConnection<Result>(
+  db: Db,
+  work: (one: OneConnection) => Promise<Result>,
+): Promise<Result> {
+  if (running >= AT_ONCE) await new Promise<void>((resolve) => waiting.push(resolve))
+  else running += 1
+  try {
+    return await borrow(db, work)
+  } finally {
+    const next = waiting.shift()
+    if (next === undefined) running -= 1
+    else next()
+  }
+}
+
+async function borrow<Result>(db: Db, work: (one: OneConnection) => Promise<Result>): Promise<Result> {
+  const pool = (db as Db & { $client: mysql.Pool }).$client
+  const raw = await new Promise<mysql.PoolConnection>((resolve, reject) => {
+    pool.getConnection((error, connection) => (error === null ? resolve(connection) : reject(error)))
+  })
+  try {
+    return await work({ db: drizzle(raw), raw })
+  } finally {
+    raw.release()
+  }
+}
+
+/** An empty table for the file's readings, seen by this connection only. */
+export async function createIncoming(tx: DbOrTx): Promise<void> {
+  await tx.execute(sql`DROP TEMPORARY TABLE IF EXISTS incoming, clash`)
+  await tx.execute(sql`CREATE TEMPORARY TABLE incoming (
+    channel_id INT UNSIGNED NOT NULL,
+    at DATETIME(3) NOT NULL,
+    seq SMALLINT UNSIGNED NOT NULL,
+    value DOUBLE NULL,
+    bound DOUBLE NULL,
+    quality TINYINT UNSIGNED NOT NULL,
+    marks TINYINT UNSIGNED NOT NULL,
+    line_no INT UNSIGNED NOT NULL,
+    PRIMARY KEY (channel_id, at, seq)
+  ) ENGINE=InnoDB`)
+}
+
+/** Streams tab-separated rows into `incoming`; says how many arrived and how many warnings the server had. */
+export async function loadIncoming(
+  raw: mysql.PoolConnection,
+  rows: AsyncIterable<Buffer>,
+): Promise<{ loaded: number; warnings: number }> {
+  const faults: unknown[] = []
+  // A stream that breaks would leave the server waiting for its end, so a fault ends it and is thrown afterwards.
+  async function* guarded(): AsyncGenerator<Buffer> {
+    try {
+      yield* rows
+    } catch (error) {
+      faults.push(error)
+    }
+  }
+  const loaded = await new Promise<{ loaded: number; warnings: number }>((resolve, reject) => {
+    raw.query<mysql.ResultSetHeader>(
+      {
+        sql: "LOAD DATA LOCAL INFILE 'readings' INTO TABLE incoming CHARACTER SET ascii FIELDS TERMINATED BY '\\t' LINES TERMINATED BY '\\n' (channel_id, at, seq, value, bound, quality, marks, line_no)",
+        // The server names a path; it is never opened. These rows are all it gets.
+        infileStreamFactory: () => Readable.from(guarded(), { objectMode: true }),
+      },
+      (error, result) => {
+        if (error !== null) reject(error)
+        // LOCAL turns every fault into a warning; the caller decides what they mean.
+        else resolve({ loaded: result.affectedRows, warnings: result.warningStatus })
+      },
+    )
+  })
+  if (faults.length > 0) throw faults[0]
+  return loaded
+}
+
+async function affected(tx: DbOrTx, statement: ReturnType<typeof sql>): Promise<number> {
+  const [result] = await tx.execute(statement)
+  return (result as unknown as mysql.ResultSetHeader).affectedRows
+}
+
+export interface MergeCounts {
+  /** Readings stored. */
+  stored: number
+  /** Held already: same channel, instant, value and quality. */
+  held: number
+  /** Stored beside a different reading of the same channel and instant. */
+  conflicting: number
+}
+
+/** Moves `incoming` into `reading` under the number of the import. */
+export async function mergeIncoming(tx: DbOrTx, importId: number): Promise<MergeCounts> {
+  const held = await affected(
+    tx,
+    sql`DELETE incoming FROM incoming JOIN reading ON reading.channel_id = incoming.channel_id AND reading.at = incoming.at
+      WHERE reading.value <=> incoming.value AND reading.bound <=> incoming.bound AND reading.quality = incoming.quality`,
+  )
+  await tx.execute(sql`CREATE TEMPORARY TABLE clash (PRIMARY KEY (channel_id, at)) ENGINE=InnoDB
+    SELECT reading.channel_id, reading.at, MAX(reading.seq) AS top FROM incoming
+    JOIN reading ON reading.channel_id = incoming.channel_id AND reading.at = incoming.at
+    GROUP BY reading.channel_id, reading.at`)
+  // From the highest number down, or a row would meet the one that has yet to move up.
+  const conflicting = await affected(
+    tx,
+    sql`UPDATE incoming SET marks = marks | ${MARKS.conflict},
+      seq = seq + 1 + (SELECT top FROM clash WHERE clash.channel_id = incoming.channel_id AND clash.at = incoming.at)
+      WHERE EXISTS (SELECT 1 FROM clash WHERE clash.channel_id = incoming.channel_id AND clash.at = incoming.at)
+      ORDER BY seq DESC`,
+  )
+  await tx.execute(sql`UPDATE reading JOIN clash ON clash.channel_id = reading.channel_id AND clash.at = reading.at
+    SET reading.marks = reading.marks | ${MARKS.conflict}`)
+  // Several readings of one instant inside the file: the first of them gets its mark here too.
+  await tx.execute(sql`UPDATE incoming JOIN
+      (SELECT channel_id, at FROM incoming GROUP BY channel_id, at HAVING COUNT(*) > 1) AS several
+      ON several.channel_id = incoming.channel_id AND several.at = incoming.at
+    SET incoming.marks = incoming.marks | ${MARKS.conflict}`)
+  const stored = await affected(
+    tx,
+    sql`INSERT INTO reading (channel_id, at, seq, value, bound, quality, marks, import_id, line_no)
+      SELECT channel_id, at, seq, value, bound, quality, marks, ${importId}, line_no FROM incoming`,
+  )
+  await tx.execute(sql`INSERT INTO import_range (import_id, channel_id, first_at, last_at, reading_count)
+    SELECT ${importId}, channel_id, MIN(at), MAX(at), COUNT(*) FROM incoming GROUP BY channel_id`)
+  await tx.execute(sql`DROP TEMPORARY TABLE IF EXISTS incoming, clash`)
+  return { stored, held, conflicting }
+}

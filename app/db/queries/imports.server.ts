@@ -1,0 +1,249 @@
+/** Night files on their way in: the original bytes, the rows of the intake, and what is needed to read them. */
+import { and, asc, desc, eq, gte, inArray, isNull, or, sql } from 'drizzle-orm'
+import { alias } from 'drizzle-orm/mysql-core'
+import type { ImportState } from '../../domain/imports.ts'
+import type { Quantity } from '../../domain/readings.ts'
+import type { DbOrTx } from '../client.server.ts'
+import { attachment, attachmentChunk, channel, importFile, person, source } from '../schema/index.ts'
+
+export interface SourceRow {
+  id: number
+  code: string
+  name: string
+  periodSeconds: number
+  dueAt: string
+  profile: unknown
+}
+
+const sourceColumns = {
+  id: source.id,
+  code: source.code,
+  name: source.name,
+  periodSeconds: source.periodSeconds,
+  dueAt: source.dueAt,
+  profile: source.profile,
+}
+
+/** Sources that are on, in order of their codes. */
+export function listSources(db: DbOrTx): Promise<SourceRow[]> {
+  return db.select(sourceColumns).from(source).where(isNull(source.offSince)).orderBy(asc(source.code))
+}
+
+/** A source by its code; null when there is none. */
+export async function findSource(db: DbOrTx, code: string): Promise<SourceRow | null> {
+  const [row] = await db.select(sourceColumns).from(source).where(eq(source.code, code))
+  return row ?? null
+}
+
+/** Locks a source until the transaction ends, so that its files are taken in one after the other. */
+export async function lockSource(tx: DbOrTx, sourceId: number): Promise<SourceRow | null> {
+  const [row] = await tx.select(sourceColumns).from(source).where(eq(source.id, sourceId)).for('update')
+  return row ?? null
+}
+
+export interface SourceChannel {
+  id: number
+  name: string
+  quantity: Quantity
+  ignored: boolean
+}
+
+/** Raw channels of a source as the register has them. */
+export async function listSourceChannels(db: DbOrTx, sourceId: number): Promise<SourceChannel[]> {
+  const rows = await db
+    .select({
+      id: channel.id,
+      name: channel.name,
+      quantity: channel.quantity,
+      ignoredSince: channel.ignoredSince,
+    })
+    .from(channel)
+    .where(eq(channel.sourceId, sourceId))
+    .orderBy(asc(channel.name))
+  return rows.map(({ ignoredSince, ...row }) => ({ ...row, ignored: ignoredSince !== null }))
+}
+
+const CHUNK_LIMIT = 1024 * 1024
+
+/** Begins to keep a file; it counts as nothing until `finishOriginal`. */
+export async function beginOriginal(
+  db: DbOrTx,
+  input: { fileName: string; createdBy: number; createdAt: Date },
+): Promise<number> {
+  const [result] = await db.insert(attachment).values({
+    ...input,
+    contentType: 'application/octet-stream',
+    byteSize: 0,
+    sha256: '',
+    complete: false,
+    subjectKind: 'import',
+    subjectId: '',
+  })
+  return result.insertId
+}
+
+/** Keeps one piece of at most 1 MiB. */
+export async function writeOriginalChunk(
+  db: DbOrTx,
+  attachmentId: number,
+  chunkNo: number,
+  data: Uint8Array,
+): Promise<void> {
+  if (data.length > CHUNK_LIMIT)
+    throw new RangeError(`A piece of ${data.length} bytes is more than ${CHUNK_LIMIT}`)
+  await db.insert(attachmentChunk).values({ attachmentId, chunkNo, data })
+}
+
+export async function finishOriginal(
+  tx: DbOrTx,
+  attachmentId: number,
+  facts: { byteSize: number; sha256: string; subjectId: string },
+): Promise<void> {
+  await tx
+    .update(attachment)
+    .set({ ...facts, complete: true })
+    .where(eq(attachment.id, attachmentId))
+}
+
+/** Throws away what has been kept of a file that did not arrive whole or is held already. */
+export async function dropOriginal(db: DbOrTx, attachmentId: number): Promise<void> {
+  await db.delete(attachmentChunk).where(eq(attachmentChunk.attachmentId, attachmentId))
+  await db.delete(attachment).where(eq(attachment.id, attachmentId))
+}
+
+/** Bytes of a kept file, piece by piece. */
+export async function* readOriginal(db: DbOrTx, attachmentId: number): AsyncGenerator<Uint8Array> {
+  for (let chunkNo = 0; ; chunkNo += 1) {
+    const [row] = await db
+      .select({ data: attachmentChunk.data })
+      .from(attachmentChunk)
+      .where(and(eq(attachmentChunk.attachmentId, attachmentId), eq(attachmentChunk.chunkNo, chunkNo)))
+    if (row === undefined) return
+    yield row.data
+  }
+}
+
+export interface ImportRow {
+  id: number
+  state: ImportState
+  sourceId: number
+  sourceCode: string
+  sourceName: string
+  fileName: string
+  byteSize: number
+  sha256: string
+  attachmentId: number
+  uploadedById: number
+  uploadedBy: string
+  uploadedAt: Date
+  readOut: unknown
+  lineCount: number | null
+  readingCount: number | null
+  heldCount: number | null
+  conflictCount: number | null
+  firstAt: Date | null
+  lastAt: Date | null
+  decidedBy: string | null
+  decidedAt: Date | null
+  reason: string
+}
+
+const uploader = alias(person, 'uploader')
+const decider = alias(person, 'decider')
+
+const importColumns = {
+  id: importFile.id,
+  state: importFile.state,
+  sourceId: sql<number>`${importFile.sourceId}`.mapWith(Number),
+  sourceCode: source.code,
+  sourceName: source.name,
+  fileName: importFile.fileName,
+  byteSize: importFile.byteSize,
+  sha256: importFile.sha256,
+  attachmentId: sql<number>`${importFile.attachmentId}`.mapWith(Number),
+  uploadedById: sql<number>`${importFile.uploadedBy}`.mapWith(Number),
+  uploadedBy: sql<string>`coalesce(${uploader.name}, '')`,
+  uploadedAt: importFile.uploadedAt,
+  lineCount: importFile.lineCount,
+  readingCount: importFile.readingCount,
+  heldCount: importFile.heldCount,
+  conflictCount: importFile.conflictCount,
+  firstAt: importFile.firstAt,
+  lastAt: importFile.lastAt,
+  decidedBy: decider.name,
+  decidedAt: importFile.decidedAt,
+  reason: importFile.reason,
+}
+
+function selectImports(db: DbOrTx) {
+  return db
+    .select(importColumns)
+    .from(importFile)
+    .innerJoin(source, eq(source.id, importFile.sourceId))
+    .leftJoin(uploader, eq(uploader.id, importFile.uploadedBy))
+    .leftJoin(decider, eq(decider.id, importFile.decidedBy))
+}
+
+/** One import with its report; null when there is none with this number. */
+export async function findImport(db: DbOrTx, importId: number): Promise<ImportRow | null> {
+  const [row] = await selectImports(db).where(eq(importFile.id, importId))
+  if (row === undefined) return null
+  const [report] = await db
+    .select({ readOut: importFile.readOut })
+    .from(importFile)
+    .where(eq(importFile.id, importId))
+  return { ...row, readOut: report?.readOut ?? null }
+}
+
+export type ImportListRow = Omit<ImportRow, 'readOut'>
+
+/** Imports, the last to arrive first. */
+export function listImports(db: DbOrTx, limit: number): Promise<ImportListRow[]> {
+  return selectImports(db).orderBy(desc(importFile.id)).limit(limit)
+}
+
+/** Imports that came in or end after an instant, for the nights of the overview. */
+export function listImportsSince(db: DbOrTx, since: Date): Promise<ImportListRow[]> {
+  return selectImports(db)
+    .where(or(gte(importFile.lastAt, since), gte(importFile.uploadedAt, since)))
+    .orderBy(desc(importFile.id))
+}
+
+/** The newest import of these bytes in one of the states. */
+export async function findSameBytes(
+  db: DbOrTx,
+  sha256: string,
+  states: readonly ImportState[],
+): Promise<ImportListRow | null> {
+  const [row] = await selectImports(db)
+    .where(and(eq(importFile.sha256, sha256), inArray(importFile.state, [...states])))
+    .orderBy(desc(importFile.id))
+    .limit(1)
+  return row ?? null
+}
+
+export async function insertImport(tx: DbOrTx, row: typeof importFile.$inferInsert): Promise<number> {
+  const [result] = await tx.insert(importFile).values(row)
+  return result.insertId
+}
+
+/** Locks an import until the transaction ends and says where it stands. */
+export async function lockImport(tx: DbOrTx, importId: number): Promise<ImportState | null> {
+  const [row] = await tx
+    .select({ state: importFile.state })
+    .from(importFile)
+    .where(eq(importFile.id, importId))
+    .for('update')
+  return row?.state ?? null
+}
+
+export async function updateImport(
+  tx: DbOrTx,
+  importId: number,
+  set: Partial<typeof importFile.$inferInsert>,
+): Promise<void> {
+  await tx
+    .update(importFile)
+    .set({ ...set, revision: sql`${importFile.revision} + 1` })
+    .where(eq(importFile.id, importId))
+}

@@ -1,0 +1,247 @@
+/** What a person decides about a file that has been read: answers to its questions, taking it in, or discarding it. */
+import type { Db, DbOrTx } from '../db/client.server.ts'
+import { isDuplicate } from '../db/errors.server.ts'
+import {
+  findImport,
+  findSameBytes,
+  findSource,
+  type ImportRow,
+  lockImport,
+  lockSource,
+  readOriginal,
+  updateImport,
+} from '../db/queries/imports.server.ts'
+import {
+  createIncoming,
+  loadIncoming,
+  mergeIncoming,
+  onOneConnection,
+} from '../db/queries/imports-merge.server.ts'
+import { tx } from '../db/transaction.server.ts'
+import { type Actor, demand } from '../domain/actor.ts'
+import { DomainError } from '../domain/errors.ts'
+import { IMPORT_STATE_LABELS } from '../domain/imports.ts'
+import { readNightFile } from '../domain/night-files/reader.ts'
+import type { Answer, ReadOut } from '../domain/night-files/types.ts'
+import { heldAlready } from './intake.server.ts'
+import { readingRules, type StoredReport, siteMinute, storedReport } from './intake-reading.server.ts'
+import { incomingRows, type ReadAgain } from './intake-rows.server.ts'
+import { writeRecord } from './record.server.ts'
+import { getSite } from './site.server.ts'
+
+export interface Accepted {
+  importId: number
+  stored: number
+  held: number
+  conflicting: number
+}
+
+/**
+ * Takes a read file in: its readings become visible all at once, or not at all. Readings that are held already are
+ * left alone; a different reading of the same channel and instant is kept beside the earlier one, and both are marked.
+ *
+ * @throws DomainError forbidden; not-found; conflict (taken in or discarded meanwhile, or the same bytes were);
+ *   not-acceptable-now (refused, or questions are open)
+ */
+export async function acceptImport(db: Db, actor: Actor, now: Date, importId: number): Promise<Accepted> {
+  demand(actor, 'intake:take-in')
+  const seen = await importOr404(db, importId)
+  try {
+    return await onOneConnection(db, ({ db: one, raw }) =>
+      tx(one, async (inside) => {
+        // Files of one source come in one after the other: two of them may hold the same instants.
+        const source = await lockSource(inside, seen.sourceId)
+        if (source === null)
+          throw new DomainError('not-found', `The register has no source ${seen.sourceCode}.`)
+        await demandWaiting(inside, importId)
+        const found = await importOr404(inside, importId)
+        const site = await getSite(inside)
+        const held = await findSameBytes(inside, found.sha256, ['accepted'])
+        if (held !== null) throw heldAlready(held, site.timeZone)
+        const report = storedReport(importId, found.readOut)
+        demandReadable(report.readOut)
+        const rules = await readingRules(inside, source, {
+          uploadedAt: found.uploadedAt,
+          fileName: found.fileName,
+          statedBytes: null,
+          answers: report.answers,
+        })
+        await createIncoming(inside)
+        const again: ReadAgain = { sent: 0, readOut: null }
+        const { loaded, warnings } = await loadIncoming(
+          raw,
+          incomingRows(originalOf(db, found), rules, again),
+        )
+        const readOut = again.readOut
+        if (readOut === null || loaded > again.sent)
+          throw new Error(`Import ${importId}: ${loaded} rows of ${again.sent} loaded`)
+        if (loaded < again.sent) {
+          throw new DomainError(
+            'not-acceptable-now',
+            'The file holds readings of one channel and instant very far apart, too far to compare them. Split it where it begins anew and send the parts.',
+          )
+        }
+        if (warnings > 0)
+          throw new Error(`Import ${importId}: the database had ${warnings} warnings while loading`)
+        const counts = await mergeIncoming(inside, importId)
+        await updateImport(inside, importId, {
+          state: 'accepted',
+          acceptedSha256: found.sha256,
+          readOut: { readOut, answers: report.answers } satisfies StoredReport,
+          profileVersion: readOut.profileVersion,
+          readingCount: counts.stored,
+          heldCount: counts.held,
+          conflictCount: counts.conflicting,
+          decidedBy: actor.personId,
+          decidedAt: now,
+        })
+        await writeRecord(inside, {
+          at: now,
+          actor,
+          act: 'night file taken in',
+          subjectKind: 'import',
+          subjectId: String(importId),
+          before: { state: 'read' },
+          after: { state: 'accepted', fileName: found.fileName, source: found.sourceCode, ...counts },
+        })
+        return { importId, ...counts }
+      }),
+    )
+  } catch (error) {
+    // Two files with the same bytes, of two sources, at once: the unique key lets one through.
+    if (!isDuplicate(error)) throw error
+    const held = await findSameBytes(db, seen.sha256, ['accepted'])
+    if (held === null) throw error
+    throw heldAlready(held, (await getSite(db)).timeZone)
+  }
+}
+
+/**
+ * Discards a file that is not taken in. Bytes and report stay, the file is simply not wanted.
+ *
+ * @throws DomainError forbidden; not-found; conflict when somebody has decided about it meanwhile
+ */
+export async function discardImport(
+  db: Db,
+  actor: Actor,
+  now: Date,
+  importId: number,
+  reason: string,
+): Promise<void> {
+  demand(actor, 'intake:take-in')
+  await importOr404(db, importId)
+  await tx(db, async (inside) => {
+    await demandWaiting(inside, importId)
+    await updateImport(inside, importId, {
+      state: 'discarded',
+      decidedBy: actor.personId,
+      decidedAt: now,
+      reason,
+    })
+    await writeRecord(inside, {
+      at: now,
+      actor,
+      act: 'night file discarded',
+      subjectKind: 'import',
+      subjectId: String(importId),
+      before: { state: 'read' },
+      after: { state: 'discarded' },
+      reason,
+    })
+  })
+}
+
+/**
+ * Reads a waiting file again with a person's answers to its questions, and stores the new report.
+ *
+ * @throws DomainError forbidden; not-found; conflict (decided meanwhile); bad-input (an answer that is no choice)
+ */
+export async function answerQuestions(
+  db: Db,
+  actor: Actor,
+  now: Date,
+  importId: number,
+  answers: readonly Answer[],
+): Promise<void> {
+  demand(actor, 'intake:take-in')
+  const found = await importOr404(db, importId)
+  const before = storedReport(importId, found.readOut)
+  const given = answers.filter(({ choice }) => choice !== '')
+  for (const { id, choice } of given) {
+    const asked = before.readOut.questions.find((question) => question.id === id)
+    if (asked?.choices.some(({ value }) => value === choice) !== true) {
+      throw new DomainError(
+        'bad-input',
+        `“${choice}” is no answer to a question of this file. Choose from the list.`,
+      )
+    }
+  }
+  const source = await findSource(db, found.sourceCode)
+  if (source === null) throw new DomainError('not-found', `The register has no source ${found.sourceCode}.`)
+  const all = [...before.answers.filter(({ id }) => !given.some((other) => other.id === id)), ...given]
+  const rules = await readingRules(db, source, {
+    uploadedAt: found.uploadedAt,
+    fileName: found.fileName,
+    statedBytes: null,
+    answers: all,
+  })
+  const readOut = await readNightFile(originalOf(db, found), rules.profile, rules.context, () => {})
+  await tx(db, async (inside) => {
+    await demandWaiting(inside, importId)
+    await updateImport(inside, importId, {
+      readOut: { readOut, answers: all } satisfies StoredReport,
+      readingCount: readOut.readings.total,
+      firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
+      lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
+    })
+    await writeRecord(inside, {
+      at: now,
+      actor,
+      act: 'questions of a night file answered',
+      subjectKind: 'import',
+      subjectId: String(importId),
+      before: before.answers,
+      after: all,
+    })
+  })
+}
+
+/** Bytes of a received file, as they came. */
+function originalOf(db: Db, found: ImportRow): AsyncGenerator<Uint8Array> {
+  return readOriginal(db, found.attachmentId)
+}
+
+async function importOr404(db: DbOrTx, importId: number): Promise<ImportRow> {
+  const found = Number.isSafeInteger(importId) ? await findImport(db, importId) : null
+  if (found === null)
+    throw new DomainError('not-found', 'There is no file with this number in the log intake.')
+  return found
+}
+
+/** Locks the import and makes sure that nobody has decided about it yet. */
+async function demandWaiting(inside: DbOrTx, importId: number): Promise<void> {
+  const state = await lockImport(inside, importId)
+  if (state === 'read') return
+  const found = await importOr404(inside, importId)
+  const site = await getSite(inside)
+  const when = found.decidedAt === null ? '' : ` on ${siteMinute(found.decidedAt, site.timeZone)}`
+  const who = found.decidedBy === null ? '' : ` by ${found.decidedBy}${when}`
+  throw new DomainError(
+    'conflict',
+    `Import ${importId} is “${IMPORT_STATE_LABELS[found.state]}”${who}. Nothing was changed.`,
+    {
+      details: { importId, state: found.state },
+    },
+  )
+}
+
+function demandReadable(readOut: ReadOut): void {
+  if (readOut.state === 'readable') return
+  const open = readOut.questions.find(({ blocking }) => blocking)
+  throw new DomainError(
+    'not-acceptable-now',
+    open === undefined
+      ? 'The file could not be read, so there is nothing to take in.'
+      : `One question is still open: ${open.text}`,
+  )
+}

@@ -1,0 +1,213 @@
+/** Receiving a night file: its bytes are kept as they came, read, and the report is put in front of a person. */
+import { createHash } from 'node:crypto'
+import type { Db } from '../db/client.server.ts'
+import {
+  beginOriginal,
+  dropOriginal,
+  findSameBytes,
+  findSource,
+  finishOriginal,
+  type ImportListRow,
+  insertImport,
+  writeOriginalChunk,
+} from '../db/queries/imports.server.ts'
+import { tx } from '../db/transaction.server.ts'
+import { type Actor, demand } from '../domain/actor.ts'
+import { DomainError, type ErrorCode } from '../domain/errors.ts'
+import { createNightFileReader } from '../domain/night-files/reader.ts'
+import type { ReadOut, Refusal } from '../domain/night-files/types.ts'
+import { readingRules, type StoredReport, siteMinute } from './intake-reading.server.ts'
+import { writeRecord } from './record.server.ts'
+
+const PIECE_BYTES = 1024 * 1024
+
+export interface Upload {
+  sourceCode: string
+  fileName: string
+  stream: AsyncIterable<Uint8Array>
+  /** Size the sender announced, when it did. */
+  statedBytes: number | null
+  /** Largest file taken, in bytes. */
+  limitBytes: number
+  onProgress?: (seen: { bytes: number; lines: number }) => void
+}
+
+export interface Staged {
+  importId: number
+  /** The report is there and waits for a person, or the file was refused (and kept, without readings). */
+  state: 'read' | 'refused'
+  refusal: Refusal | null
+  /** Whether the same bytes were waiting already; nothing was added then. */
+  again: boolean
+}
+
+/**
+ * Takes a file's bytes in 1 MiB pieces, reads them on the way, and stores bytes and report. No reading is stored.
+ *
+ * @throws DomainError forbidden; bad-input (no such source, nothing sent); too-large; conflict, when the same bytes
+ *   have been taken in before (nothing is kept then, and the message names that import)
+ */
+export async function stageUpload(db: Db, actor: Actor, now: Date, upload: Upload): Promise<Staged> {
+  demand(actor, 'intake:take-in')
+  const fileName = plainFileName(upload.fileName)
+  const source = await findSource(db, upload.sourceCode)
+  if (source === null) {
+    throw new DomainError('bad-input', 'One field needs another look; nothing has been saved.', {
+      fields: { source: [`The register has no source “${upload.sourceCode}”. Choose one from the list.`] },
+    })
+  }
+  const statedBytes = upload.statedBytes
+  if (statedBytes !== null && statedBytes > upload.limitBytes) throw tooLarge(upload.limitBytes)
+  const rules = await readingRules(db, source, { uploadedAt: now, fileName, statedBytes, answers: [] })
+  const attachmentId = await beginOriginal(db, { fileName, createdBy: actor.personId, createdAt: now })
+  try {
+    const reader = createNightFileReader(rules.profile, rules.context, () => {})
+    const { byteSize, sha256 } = await keepBytes(db, attachmentId, upload, (piece) => {
+      reader.push(piece)
+      upload.onProgress?.({ bytes: reader.bytesSeen, lines: reader.linesSeen })
+    })
+    const readOut = reader.end()
+    const held = await findSameBytes(db, sha256, ['accepted'])
+    if (held !== null) throw heldAlready(held, rules.zone)
+    const waiting = await findSameBytes(db, sha256, ['read'])
+    if (waiting !== null && waiting.sourceId === source.id) {
+      await dropOriginal(db, attachmentId)
+      return { importId: waiting.id, state: 'read', refusal: null, again: true }
+    }
+    const state = readOut.state === 'refused' ? 'refused' : 'read'
+    const importId = await storeReport(db, actor, now, {
+      sourceId: source.id,
+      sourceCode: source.code,
+      fileName,
+      byteSize,
+      sha256,
+      attachmentId,
+      readOut,
+      state,
+    })
+    return { importId, state, refusal: readOut.refusal, again: false }
+  } catch (error) {
+    await dropOriginal(db, attachmentId)
+    throw error
+  }
+}
+
+/** Status of a refused file: the wrong kind of file, or one that nothing can be taken from. */
+export function refusalErrorCode(refusal: Refusal): ErrorCode {
+  const wrongKind = ['binary-file', 'archive', 'spreadsheet-file', 'not-a-log'].includes(refusal.code)
+  return wrongKind ? 'wrong-type' : 'not-acceptable-now'
+}
+
+/** The message for bytes that have been taken in before. */
+export function heldAlready(held: ImportListRow, zone: string): DomainError {
+  const when = held.decidedAt === null ? '' : ` on ${siteMinute(held.decidedAt, zone)}`
+  return new DomainError(
+    'conflict',
+    `This file has been taken in already: import ${held.id} (${held.fileName}), by ${held.decidedBy ?? 'the product'}${when}. Nothing was added.`,
+    { details: { importId: held.id } },
+  )
+}
+
+function tooLarge(limitBytes: number): DomainError {
+  return new DomainError(
+    'too-large',
+    `The file is larger than ${Math.floor(limitBytes / PIECE_BYTES)} MiB, the most that is taken here. Split it at a line end and send the parts.`,
+  )
+}
+
+/** A name fit for showing: no folders, no control characters, at most 200 characters. */
+function plainFileName(raw: string): string {
+  const base = raw.split(/[/\\]/).at(-1) ?? ''
+  const plain = Array.from(base.normalize('NFC'))
+    .filter((letter) => letter >= ' ' && letter !== '\u007f')
+    .join('')
+    .trim()
+  return plain === '' ? 'unnamed' : plain.slice(0, 200)
+}
+
+async function keepBytes(
+  db: Db,
+  attachmentId: number,
+  upload: Upload,
+  onPiece: (piece: Uint8Array) => void,
+): Promise<{ byteSize: number; sha256: string }> {
+  const hash = createHash('sha256')
+  let byteSize = 0
+  let chunkNo = 0
+  let buffer = new Uint8Array(PIECE_BYTES)
+  let filled = 0
+  for await (const piece of upload.stream) {
+    byteSize += piece.length
+    if (byteSize > upload.limitBytes) throw tooLarge(upload.limitBytes)
+    hash.update(piece)
+    onPiece(piece)
+    for (let at = 0; at < piece.length; ) {
+      const part = piece.subarray(at, at + PIECE_BYTES - filled)
+      buffer.set(part, filled)
+      filled += part.length
+      at += part.length
+      if (filled < PIECE_BYTES) continue
+      await writeOriginalChunk(db, attachmentId, chunkNo, buffer)
+      chunkNo += 1
+      buffer = new Uint8Array(PIECE_BYTES)
+      filled = 0
+    }
+  }
+  if (filled > 0) await writeOriginalChunk(db, attachmentId, chunkNo, buffer.subarray(0, filled))
+  return { byteSize, sha256: hash.digest('hex') }
+}
+
+interface ReportToStore {
+  sourceId: number
+  sourceCode: string
+  fileName: string
+  byteSize: number
+  sha256: string
+  attachmentId: number
+  readOut: ReadOut
+  state: 'read' | 'refused'
+}
+
+function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Promise<number> {
+  const { readOut, state } = report
+  return tx(db, async (inside) => {
+    const stored: StoredReport = { readOut, answers: [] }
+    const importId = await insertImport(inside, {
+      state,
+      sourceId: report.sourceId,
+      fileName: report.fileName,
+      byteSize: report.byteSize,
+      sha256: report.sha256,
+      attachmentId: report.attachmentId,
+      uploadedBy: actor.personId,
+      uploadedAt: now,
+      profileVersion: readOut.profileVersion,
+      readOut: stored,
+      lineCount: readOut.lines.total,
+      readingCount: readOut.readings.total,
+      firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
+      lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
+    })
+    await finishOriginal(inside, report.attachmentId, {
+      byteSize: report.byteSize,
+      sha256: report.sha256,
+      subjectId: String(importId),
+    })
+    await writeRecord(inside, {
+      at: now,
+      actor,
+      act: state === 'refused' ? 'night file refused' : 'night file received',
+      subjectKind: 'import',
+      subjectId: String(importId),
+      after: {
+        source: report.sourceCode,
+        fileName: report.fileName,
+        byteSize: report.byteSize,
+        sha256: report.sha256,
+        lines: readOut.lines.total,
+        refusal: readOut.refusal?.code ?? null,
+      },
+    })
+    return importId
+  })
+}
