@@ -8,6 +8,11 @@ const KEPT_LINES = 30
 const running = new Set()
 let closing = false
 
+/** Whether everything is being ended, so that a program that dies now is no news. */
+export function isClosing() {
+  return closing
+}
+
 /**
  * Starts a program in a process group of its own.
  * @param {string} command

@@ -45,6 +45,18 @@ async function startUp() {
   env.SESSION_SECRET ??= keptSecret(join(dataFolder, 'session-secret'))
 
   await step('packages', 'installing npm packages', async (say) => say(await ensureNpmPackages(root)))
+  // Three things that do not wait for each other, on however many cores there are.
+  await Promise.all([prepareDatabase(dataFolder, env, demo), prepareBuild(env), prepareMail(dataFolder, env)])
+  const [, facts] = await Promise.all([startWorker(env), startWeb(env, host)])
+  return facts
+}
+
+/**
+ * @param {string} dataFolder
+ * @param {NodeJS.ProcessEnv} env gets DATABASE_URL
+ * @param {boolean} demo
+ */
+async function prepareDatabase(dataFolder, env, demo) {
   const ours = env.DATABASE_URL === undefined
   env.DATABASE_URL ??= await step('database', 'starting the database server', (say) =>
     ownDatabase(dataFolder, say),
@@ -53,20 +65,37 @@ async function startUp() {
   await step('demo data', 'seeding the demo facility', (say) =>
     ensureSeeded({ root, dataFolder, env, demo, empty, say }),
   )
+}
+
+/** @param {NodeJS.ProcessEnv} env */
+async function prepareBuild(env) {
   await step('build', 'building', async (say) => say(await ensureBuild(root, env)))
-  if (env.SMTP_URL === undefined) {
-    await step('mail', 'starting the mail fake', async (say) => {
-      const file = 'app/mail/fake-main.ts'
-      const facts = await service('mail fake', file, env, [join(dataFolder, 'mail')])
-      env.SMTP_URL = String(facts.smtpUrl)
-      env.MAIL_FAKE_URL = String(facts.httpUrl)
-      say(`kept, not sent; to read at ${env.MAIL_FAKE_URL}/messages`)
-    })
-  }
+}
+
+/**
+ * @param {string} dataFolder
+ * @param {NodeJS.ProcessEnv} env gets SMTP_URL and MAIL_FAKE_URL, unless a mail server is set
+ */
+async function prepareMail(dataFolder, env) {
+  if (env.SMTP_URL !== undefined) return
+  await step('mail', 'starting the mail fake', async (say) => {
+    const facts = await service('mail fake', 'app/mail/fake-main.ts', env, [join(dataFolder, 'mail')])
+    env.SMTP_URL = String(facts.smtpUrl)
+    env.MAIL_FAKE_URL = String(facts.httpUrl)
+    say(`kept, not sent; to read at ${env.MAIL_FAKE_URL}/messages`)
+  })
+}
+
+/** @param {NodeJS.ProcessEnv} env */
+async function startWorker(env) {
   await step('worker', 'starting the worker', async (say) => {
     await service('worker', 'app/worker/main.ts', env)
     say('at work')
   })
+}
+
+/** @param {NodeJS.ProcessEnv} env @param {string} host */
+async function startWeb(env, host) {
   return await step('web', 'starting the web server', async (say) => {
     const facts = await service('web server', 'app/server/main.ts', env)
     const address = `http://${host.includes(':') ? `[${host}]` : host}:${facts.port}`

@@ -1,4 +1,5 @@
 /** Lines like "database     ready on 127.0.0.1:40123                       1.2 s", one a step. */
+import { isClosing } from './processes.mjs'
 
 const NAME_WIDTH = 12
 const DETAIL_WIDTH = 62
@@ -35,7 +36,7 @@ export async function step(name, doing, work) {
     console.log(stepLine(name, detail, performance.now() - started))
     return result
   } catch (error) {
-    console.log(stepLine(name, 'failed', performance.now() - started))
+    if (!isClosing()) console.log(stepLine(name, 'failed', performance.now() - started))
     throw error
   } finally {
     clearTimeout(waiting)

@@ -94,7 +94,7 @@ export async function startMailFake(options: MailFakeOptions = {}): Promise<Mail
 /** Reads the messages of an earlier run. */
 async function load(box: Box): Promise<void> {
   if (box.folder === undefined) return
-  await mkdir(box.folder, { recursive: true })
+  await mkdir(box.folder, { recursive: true, mode: 0o700 })
   const ids = (await readdir(box.folder))
     .map((name) => Number(/^(\d+)\.eml$/.exec(name)?.[1]))
     .filter((id) => Number.isSafeInteger(id))
