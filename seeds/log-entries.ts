@@ -108,7 +108,7 @@ const ENTRIES: readonly DemoEntry[] = [
     event: '2026-11-03 01:12',
     written: '2026-11-03 07:05',
     by: 'pim',
-    text: 'West logger restarted by itself in the night and wrote a new heading. Restarted again by hand at 06:00.',
+    text: 'West logger restarted by itself in the night and wrote a new heading. Since the new file at 06:00 its columns stand as before.',
   },
   {
     segment: 'SG-05',
