@@ -1,0 +1,217 @@
+import { createHash } from 'node:crypto'
+import { count, eq, sql } from 'drizzle-orm'
+import { afterAll, beforeAll, describe, expect, it } from 'vitest'
+import { verifyPassword } from '#app/auth/password.ts'
+import { closeDb, getPool } from '#app/db/client.server.ts'
+import {
+  attachmentChunk,
+  channel,
+  importFile,
+  person,
+  reading,
+  roleGrant,
+  segmentState,
+  source,
+} from '#app/db/schema/index.ts'
+import { rolesAt } from '#app/domain/roles.ts'
+import { facilityFigures } from '#app/domain/segment-standing.ts'
+import { readClock } from '#app/services/clock.server.ts'
+import { readStandings } from '#app/services/standing.server.ts'
+import { seedDemo } from '#seeds/demo.ts'
+import { DEMO_SIGN_INS } from '#seeds/demo-sign-ins.ts'
+import { loadReadings } from '#seeds/readings/load.ts'
+import { nightFile } from '#seeds/readings/night-file.ts'
+import { channelId, SOURCE_ID } from '#seeds/register/sources.ts'
+import { cleanDatabase, testDb } from '../support/db.ts'
+
+const db = testDb()
+/** The demo clock's start. */
+const MORNING = new Date('2026-11-09T07:00:00.000Z')
+/** Segments at target needed for "available". */
+const NEEDED = 14
+
+async function figures() {
+  const standings = await readStandings(db, MORNING)
+  return facilityFigures(
+    standings.map(({ segment, standing }) => ({
+      tag: segment.tag,
+      main: segment.lineCode === 'MAIN',
+      state: segment.state,
+      standing,
+    })),
+    NEEDED,
+  )
+}
+
+/** Row counts of every table, to see whether anything changed. */
+async function tableCounts(): Promise<Record<string, number>> {
+  const [tables] = await getPool()
+    .promise()
+    .query(
+      "SELECT TABLE_NAME AS name FROM information_schema.TABLES WHERE TABLE_SCHEMA = DATABASE() AND TABLE_TYPE = 'BASE TABLE'",
+    )
+  const counts: Record<string, number> = {}
+  for (const { name } of tables as { name: string }[]) {
+    const [rows] = await getPool().promise().query(`SELECT COUNT(*) AS n FROM \`${name}\``)
+    counts[name] = Number((rows as { n: number }[])[0]?.n)
+  }
+  return counts
+}
+
+/** Puts the west logger's last night in as if somebody had accepted it. */
+async function acceptLastWestFile(): Promise<void> {
+  const file = nightFile('NL-W', '2026-11-08')
+  const sha256 = createHash('sha256').update(file.bytes).digest('hex')
+  const [inserted] = await db.insert(importFile).values({
+    state: 'accepted',
+    sourceId: SOURCE_ID['NL-W'],
+    fileName: file.fileName,
+    byteSize: file.bytes.length,
+    sha256,
+    acceptedSha256: sha256,
+    uploadedAt: MORNING,
+    firstAt: new Date(file.readings[0]?.atMs ?? Number.NaN),
+    lastAt: new Date(file.readings.at(-1)?.atMs ?? Number.NaN),
+  })
+  await loadReadings(
+    getPool(),
+    file.readings.map(({ channel: name, ...rest }) => ({
+      ...rest,
+      channelId: channelId('NL-W', name),
+      importId: inserted.insertId,
+    })),
+  )
+}
+
+beforeAll(async () => {
+  await cleanDatabase()
+  await seedDemo(db, getPool())
+}, 120_000)
+afterAll(async () => {
+  await cleanDatabase()
+  await closeDb()
+})
+
+describe('the demo', () => {
+  it('starts its clock on the morning of 9 November', async () => {
+    const clock = await readClock(db)
+    expect(clock.demo).toBe(true)
+    expect(clock.now.getTime()).toBeGreaterThanOrEqual(MORNING.getTime())
+    expect(clock.now.getTime()).toBeLessThan(MORNING.getTime() + 600_000)
+  })
+
+  it('lets each offered person sign in with the role offered', async () => {
+    for (const offered of DEMO_SIGN_INS) {
+      const [found] = await db.select().from(person).where(eq(person.email, offered.email))
+      expect(found?.name).toBe(offered.name)
+      expect(await verifyPassword(found?.passwordHash ?? '', offered.password)).toBe(true)
+      const grants = await db
+        .select()
+        .from(roleGrant)
+        .where(eq(roleGrant.personId, found?.id ?? 0))
+      expect(rolesAt(grants, MORNING)).toContain(offered.role)
+    }
+  })
+
+  it('lets the insulation contractor in until the end of November, and the electrician never', async () => {
+    const [tove] = await db.select().from(person).where(eq(person.name, 'Tove Brindlemark'))
+    const grants = await db
+      .select()
+      .from(roleGrant)
+      .where(eq(roleGrant.personId, tove?.id ?? 0))
+    expect(rolesAt(grants, MORNING)).toEqual(['contributor'])
+    expect(rolesAt(grants, new Date('2026-11-30T00:00:00Z'))).toEqual([])
+    const [wendel] = await db.select().from(person).where(eq(person.name, 'Wendel Quarrie'))
+    expect(wendel?.passwordHash).toBeNull()
+  })
+
+  it('gives every segment one open state', async () => {
+    const open = await db
+      .select({ segmentId: segmentState.segmentId, n: count() })
+      .from(segmentState)
+      .where(sql`${segmentState.endedAt} IS NULL`)
+      .groupBy(segmentState.segmentId)
+    expect(open).toHaveLength(17)
+    expect(open.every(({ n }) => n === 1)).toBe(true)
+  })
+
+  it('keeps the original bytes of every file, and of no file the west logger wrote last', async () => {
+    const imports = await db.select().from(importFile)
+    expect(imports).toHaveLength(59)
+    expect(imports.some(({ fileName }) => fileName === 'NL-W_2026-11-08.csv')).toBe(false)
+    const newest = imports.find(({ fileName }) => fileName === 'NL-E_2026-11-08.csv')
+    const chunks = await db
+      .select()
+      .from(attachmentChunk)
+      .where(eq(attachmentChunk.attachmentId, newest?.attachmentId ?? 0))
+    const bytes = Buffer.concat(chunks.map(({ data }) => data))
+    expect(createHash('sha256').update(bytes).digest('hex')).toBe(newest?.sha256)
+    expect(newest?.lineCount).toBe(bytes.toString('latin1').trimEnd().split('\n').length)
+  })
+
+  it('stores every reading at the line of the file it came from', async () => {
+    const [row] = await db
+      .select({ line: reading.lineNo, value: reading.value, at: reading.at, file: importFile.fileName })
+      .from(reading)
+      .innerJoin(importFile, eq(importFile.id, reading.importId))
+      .innerJoin(channel, eq(channel.id, reading.channelId))
+      .innerJoin(source, eq(source.id, channel.sourceId))
+      .where(
+        sql`${source.code} = 'NL-E' AND ${channel.name} = 'HC-16B' AND ${reading.at} = '2026-11-09 05:00:00'`,
+      )
+    expect(row?.file).toBe('NL-E_2026-11-08.csv')
+    const lines = nightFile('NL-E', '2026-11-08').bytes.toString('latin1').split('\n')
+    expect(lines[(row?.line ?? 0) - 1]).toBe('1794200400000,HC-16B,3.4e-07,Pa,OK')
+    expect(row?.value).toBe(3.4e-7)
+  })
+
+  it('changes nothing when it is filled in again', async () => {
+    const before = await tableCounts()
+    expect(await seedDemo(db, getPool())).toEqual({ seeded: false })
+    expect(await tableCounts()).toEqual(before)
+  })
+})
+
+describe('the morning of the demo', () => {
+  it('shows SG-11 at 2.4e-5 Pa after 66 hours of high vacuum', async () => {
+    const [sg11] = await readStandings(db, MORNING, 'SG-11')
+    expect(sg11?.segment.state).toBe('pumping')
+    expect((MORNING.getTime() - (sg11?.segment.since?.getTime() ?? 0)) / 3_600_000).toBe(66)
+    expect(sg11?.standing.headline?.tag).toBe('HC-11B')
+    expect(sg11?.standing.headline?.value).toBe(2.4e-5)
+    expect(sg11?.standing.headline?.fresh).toBe(true)
+  })
+
+  it('knows nothing of the west before its last file is in, and the counts of the morning after', async () => {
+    const before = await figures()
+    expect(before.unknown).toEqual(['SG-01', 'SG-02', 'SG-03', 'SG-04', 'SG-07', 'SG-15'])
+    const standings = await readStandings(db, MORNING)
+    const west = standings.filter(({ segment }) => segment.sortOrder <= 8)
+    expect(west).toHaveLength(8)
+    expect(west.every(({ standing }) => standing.freshGauges.fresh === 0)).toBe(true)
+
+    await acceptLastWestFile()
+    const after = await figures()
+    expect(after.inService).toEqual([
+      'SG-01',
+      'SG-02',
+      'SG-03',
+      'SG-04',
+      'SG-07',
+      'SG-09',
+      'SG-10',
+      'SG-15',
+      'SG-16',
+    ])
+    expect(after.atTarget).toEqual(['SG-01', 'SG-02', 'SG-03', 'SG-04', 'SG-07', 'SG-09', 'SG-10'])
+    expect(after.aboveTarget).toEqual(['SG-16'])
+    expect(after.unknown).toEqual(['SG-15'])
+    expect(after.questioned).toEqual(['SG-03', 'SG-04', 'SG-07'])
+    expect(after.overLimit).toEqual([])
+    expect(after.available).toBe(false)
+
+    const [sg01] = await readStandings(db, MORNING, 'SG-01')
+    expect(sg01?.standing.headline?.tag).toBe('HC-01B')
+    expect(sg01?.standing.headline?.value).toBeCloseTo(5.1e-8, 20)
+  })
+})
