@@ -86,10 +86,27 @@ export async function ensureClock(db: Db, options: { demo: boolean; startAt: Dat
   cache.delete(db)
 }
 
-/** Called once when the product starts: a demo clock goes on from where it was last seen. */
-export async function resumeClock(db: Db): Promise<void> {
-  await db.update(productClock).set({ baseAt: sql`${productClock.seenAt}`, baseMachineAt: machineNow() })
+/** The worker notes the time every other second; when the last note is older than this, the product was not running. */
+const STOPPED_AFTER_MS = 10_000
+
+/**
+ * Called when the product or its worker starts: a demo clock goes on from where it was last seen, if the product stood
+ * still since then. A worker that comes back at once, beside a web server that went on, changes nothing.
+ *
+ * @returns whether the clock was set back to where it was last seen
+ */
+export async function resumeClock(db: Db): Promise<boolean> {
+  const resumed = await tx(db, async (inside) => {
+    const rows = await inside.select().from(productClock).limit(1).for('update')
+    const row = rows[0]
+    const machine = machineNow()
+    if (row === undefined || !row.demo) return false
+    if (Math.abs(timeBy(row, machine).getTime() - row.seenAt.getTime()) <= STOPPED_AFTER_MS) return false
+    await inside.update(productClock).set({ baseAt: row.seenAt, baseMachineAt: machine })
+    return true
+  })
   cache.delete(db)
+  return resumed
 }
 
 /** Notes the product's time; the worker calls this every other second while the product runs. Never goes back. */
@@ -131,8 +148,8 @@ export async function advanceClock(db: Db, actor: Actor, to: Date, reason: strin
       act: 'demo clock moved forward',
       subjectKind: 'clock',
       subjectId: '1',
-      before: now.toISOString(),
-      after: to.toISOString(),
+      before: { now: now.toISOString() },
+      after: { now: to.toISOString() },
       reason,
     })
   })

@@ -17,8 +17,9 @@ export interface RecordEntry {
   act: string
   subjectKind: string
   subjectId: string
-  before?: unknown
-  after?: unknown
+  /** Objects or lists: a bare text cannot be told from unparsed JSON when it is read back. */
+  before?: object | null
+  after?: object | null
   reason?: string
   effectiveAt?: Date | null
   signedActId?: number | null

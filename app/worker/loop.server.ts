@@ -7,7 +7,7 @@ import { setTimeout as sleep } from 'node:timers/promises'
 import { type Db, getDb } from '../db/client.server.ts'
 import { isUnreachable } from '../db/errors.server.ts'
 import { log } from '../log.server.ts'
-import { keepClock, productNow } from '../services/clock.server.ts'
+import { keepClock, productNow, resumeClock } from '../services/clock.server.ts'
 import { claimJob, type JobHandlers, runJob } from '../services/jobs.server.ts'
 import { releaseSchedule, runSchedule } from '../services/schedule.server.ts'
 import { JOB_HANDLERS } from './jobs/handlers.server.ts'
@@ -31,6 +31,8 @@ export async function runWorker({
   db = getDb(),
   handlers = JOB_HANDLERS,
 }: WorkerOptions): Promise<void> {
+  // First of all, and before anything asks for the time: keeping a clock that has not been resumed would jump it ahead.
+  if (!(await resume(db, signal))) return
   const owner = randomUUID()
   await Promise.all([
     repeat('keep the clock', signal, async () => {
@@ -44,6 +46,17 @@ export async function runWorker({
     repeat('do jobs', signal, () => doOneJob(db, handlers, signal)),
   ])
   await endWell(db, owner)
+}
+
+/** Tries until the database answers; false when told to stop before that. */
+async function resume(db: Db, signal: AbortSignal): Promise<boolean> {
+  const resumed = new AbortController()
+  await repeat('resume the clock', AbortSignal.any([signal, resumed.signal]), async () => {
+    await resumeClock(db)
+    resumed.abort()
+    return 0
+  })
+  return resumed.signal.aborted
 }
 
 async function doOneJob(db: Db, handlers: JobHandlers, signal: AbortSignal): Promise<number> {

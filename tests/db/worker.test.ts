@@ -52,6 +52,16 @@ test('the worker does what the schedule asks for, keeps the clock and hands the 
   expect(owner?.owner).toBe('')
 })
 
+test('a worker that starts after a night off goes on from the time last seen', async () => {
+  await createClock(db, { baseMachineAt: after(new Date(), -43_200) })
+  const worker = startWorker()
+  await vi.waitFor(async () => expect(await db.select().from(job)).toHaveLength(3), { timeout: 10_000 })
+  worker.stop()
+  await worker.running
+  const [clock] = await db.select().from(productClock)
+  expect(clock?.seenAt.getTime()).toBeLessThan(after(MORNING, 60).getTime())
+})
+
 test('told to stop, the worker tells the job at hand, waits for it and begins no other', async () => {
   await createClock(db, { baseMachineAt: new Date() })
   const begun: string[] = []
