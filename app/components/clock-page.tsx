@@ -2,11 +2,12 @@
 import { Form } from 'react-router'
 import type { ActionFailure } from './forms/failure.ts'
 import { FormFailure } from './forms/form-failure.tsx'
+import { SiteTimeField } from './forms/site-time-field.tsx'
 import { Button } from './ui/button.tsx'
 import { TextField } from './ui/field.tsx'
 import { Notice } from './ui/notice.tsx'
 import { PageHead, Panel } from './ui/panel.tsx'
-import { fieldTime, longTimeText, offsetLabel } from './ui/site-time.ts'
+import { longTimeText, offsetLabel } from './ui/site-time.ts'
 
 const HOUR_MS = 3_600_000
 
@@ -37,13 +38,11 @@ export function ClockPage({
         <Panel title="Move it forward">
           <FormFailure failure={failure} />
           <Form method="post">
-            <TextField
+            <SiteTimeField
               name="to"
               label="New site time"
-              type="datetime-local"
-              defaultValue={fieldTime(new Date(now.getTime() + HOUR_MS), zone)}
-              min={fieldTime(now, zone)}
-              required
+              at={new Date(now.getTime() + HOUR_MS)}
+              zone={zone}
               hint="Only forward: what has been written keeps its time, and a clock put back would lie about it."
               errors={failure?.fields.to}
             />
