@@ -1,8 +1,4 @@
-/**
- * Makes the database of DATABASE_URL when it is missing and brings its tables up to date. With `--afresh` it first drops
- * it; the start command does that, and only on its own server, to a first seeding that was cut off.
- */
-import mysql from 'mysql2/promise'
+/** Makes the database of DATABASE_URL when it is missing and brings its tables up to date. */
 import { closeDb, getPool } from '../db/client.server.ts'
 import { migrateDatabase } from '../db/migrate.server.ts'
 import { env } from '../env.server.ts'
@@ -21,28 +17,13 @@ function whyNot(error: unknown, databaseUrl: string): string {
   return error instanceof Error ? error.message : String(error)
 }
 
-async function drop(url: URL): Promise<void> {
-  const connection = await mysql.createConnection({
-    host: url.hostname,
-    port: Number(url.port || 3306),
-    user: decodeURIComponent(url.username),
-    password: decodeURIComponent(url.password),
-  })
-  try {
-    await connection.query('DROP DATABASE IF EXISTS ??', [url.pathname.slice(1)])
-  } finally {
-    await connection.end()
-  }
-}
-
 async function main(): Promise<void> {
   const databaseUrl = env().DATABASE_URL
   try {
-    if (process.argv.includes('--afresh')) await drop(new URL(databaseUrl))
     const { applied } = await migrateDatabase(databaseUrl)
-    const [rows] = await getPool().promise().query('SELECT EXISTS(SELECT 1 FROM line) AS filled')
+    const [rows] = await getPool().promise().query('SELECT EXISTS(SELECT 1 FROM site) AS filled')
     const filled = Array.isArray(rows) && rows.some((row) => 'filled' in row && row.filled === 1)
-    // The start command reads this line to know whether there is anything to seed.
+    // The start command reads this line. Seeding writes the site's row last, so without one it has to be done (again).
     console.log(JSON.stringify({ applied, empty: !filled }))
   } catch (error) {
     throw new Error(whyNot(error, databaseUrl), { cause: error })

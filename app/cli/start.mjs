@@ -57,14 +57,11 @@ async function startUp() {
  * @param {boolean} demo
  */
 async function prepareDatabase(dataFolder, env, demo) {
-  const ours = env.DATABASE_URL === undefined
   env.DATABASE_URL ??= await step('database', 'starting the database server', (say) =>
     ownDatabase(dataFolder, say),
   )
-  const { empty } = await step('tables', 'migrating', (say) => migrate({ root, dataFolder, env, ours, say }))
-  await step('demo data', 'seeding the demo facility', (say) =>
-    ensureSeeded({ root, dataFolder, env, demo, empty, say }),
-  )
+  const { empty } = await step('tables', 'migrating', (say) => migrate({ root, env, say }))
+  await step('demo data', 'seeding the demo facility', (say) => ensureSeeded({ root, env, demo, empty, say }))
 }
 
 /** @param {NodeJS.ProcessEnv} env */
