@@ -1,0 +1,81 @@
+/** No page of the product has a serious or critical fault by axe, at a desk, on a tablet and on a phone; none scrolls sideways. */
+import type { Browser } from 'playwright-core'
+import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { type DemoRole, expectAccessible, launchBrowser, openPage } from '#tests/support/browser.ts'
+import { startTestServer, type TestServer } from '#tests/support/server.ts'
+
+let server: TestServer
+let browser: Browser
+
+beforeAll(async () => {
+  server = await startTestServer({ database: 'ebbline_e2e_accessibility' })
+  browser = await launchBrowser()
+})
+
+afterAll(async () => {
+  await browser?.close()
+  await server?.stop()
+})
+
+const WIDTHS = [1440, 820, 390]
+
+const PAGES: { role: DemoRole; paths: string[] }[] = [
+  {
+    role: 'engineer',
+    paths: [
+      '/',
+      '/?show=unknown',
+      '/segments/SG-11',
+      '/segments/SG-05',
+      '/segments/SG-14',
+      '/segments/SG-16',
+      '/segments/SG-11/state',
+      '/intake',
+      '/intake/1',
+      '/logbook',
+      '/logbook/new?segment=SG-11',
+      '/logbook/1',
+      '/register',
+      '/register/segments',
+      '/register/segments/SG-11',
+      '/register/positions/HC-11B',
+      '/register/instruments',
+      '/register/channels',
+      '/register/pumps',
+      '/register/pumps/new',
+      '/register/valves',
+      '/register/circuits',
+      '/register/sources/NL-W',
+      '/register/limits',
+      '/account',
+      '/people',
+    ],
+  },
+  {
+    role: 'administrator',
+    paths: ['/people', '/people/new', '/people/1', '/people/waiting', '/people/record', '/clock'],
+  },
+]
+
+test.each(WIDTHS)('the sign-in page at %d px', async (width) => {
+  const view = await openPage(browser, server.url, { viewport: { width, height: 900 } })
+  await view.goto('/sign-in')
+  await expectAccessible(view.page)
+  await view.close()
+})
+
+describe.each(PAGES)('pages of the $role', ({ role, paths }) => {
+  test.each(WIDTHS)('at %d px', async (width) => {
+    const view = await openPage(browser, server.url, { viewport: { width, height: 900 } })
+    await view.signIn(role)
+    for (const path of paths) {
+      await view.goto(path)
+      await expectAccessible(view.page)
+      const sideways = await view.page.evaluate(
+        () => document.documentElement.scrollWidth - document.documentElement.clientWidth,
+      )
+      expect(sideways, `${path} scrolls sideways at ${width} px`).toBeLessThanOrEqual(0)
+    }
+    await view.close()
+  })
+})
