@@ -22,7 +22,7 @@ afterAll(async () => {
 /** A figure of Line by the words under it. */
 async function figure(page: Awaited<ReturnType<typeof openPage>>['page'], label: string): Promise<string> {
   const term = page.locator('dl > div', { has: page.getByRole('link', { name: label, exact: true }) })
-  return (await term.innerText()).replace(/\s+/g, ' ')
+  return (await term.innerText()).replace(/\s+/g, ' ').slice(label.length).trim()
 }
 
 test('before the west logger’s last file is in, its segments are unknown', async () => {
