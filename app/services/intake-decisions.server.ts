@@ -24,7 +24,7 @@ import { IMPORT_STATE_LABELS } from '../domain/imports.ts'
 import { readNightFile } from '../domain/night-files/reader.ts'
 import type { Answer, ReadOut } from '../domain/night-files/types.ts'
 import { heldAlready } from './intake.server.ts'
-import { readingRules, type StoredReport, siteMinute, storedReport } from './intake-reading.server.ts'
+import { readingRules, siteMinute, storedReport } from './intake-reading.server.ts'
 import { incomingRows, type ReadAgain } from './intake-rows.server.ts'
 import { writeRecord } from './record.server.ts'
 import { getSite } from './site.server.ts'
@@ -58,8 +58,7 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
         const site = await getSite(inside)
         const held = await findSameBytes(inside, found.sha256, ['accepted'])
         if (held !== null) throw heldAlready(held, site.timeZone)
-        const report = storedReport(importId, found.readOut)
-        demandReadable(report.readOut)
+        const report = demandReadable(storedReport(found.readOut))
         const rules = await readingRules(inside, source, {
           uploadedAt: found.uploadedAt,
           fileName: found.fileName,
@@ -87,7 +86,7 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
         await updateImport(inside, importId, {
           state: 'accepted',
           acceptedSha256: found.sha256,
-          readOut: { readOut, answers: report.answers } satisfies StoredReport,
+          readOut,
           profileVersion: readOut.profileVersion,
           readingCount: counts.stored,
           heldCount: counts.held,
@@ -165,10 +164,12 @@ export async function answerQuestions(
 ): Promise<void> {
   demand(actor, 'intake:take-in')
   const found = await importOr404(db, importId)
-  const before = storedReport(importId, found.readOut)
+  const before = storedReport(found.readOut)
+  if (before === null)
+    throw new DomainError('not-found', 'This import holds no file, so there is nothing to answer.')
   const given = answers.filter(({ choice }) => choice !== '')
   for (const { id, choice } of given) {
-    const asked = before.readOut.questions.find((question) => question.id === id)
+    const asked = before.questions.find((question) => question.id === id)
     if (asked?.choices.some(({ value }) => value === choice) !== true) {
       throw new DomainError(
         'bad-input',
@@ -189,7 +190,7 @@ export async function answerQuestions(
   await tx(db, async (inside) => {
     await demandWaiting(inside, importId)
     await updateImport(inside, importId, {
-      readOut: { readOut, answers: all } satisfies StoredReport,
+      readOut,
       readingCount: readOut.readings.total,
       firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
       lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
@@ -235,9 +236,9 @@ async function demandWaiting(inside: DbOrTx, importId: number): Promise<void> {
   )
 }
 
-function demandReadable(readOut: ReadOut): void {
-  if (readOut.state === 'readable') return
-  const open = readOut.questions.find(({ blocking }) => blocking)
+function demandReadable(readOut: ReadOut | null): ReadOut {
+  if (readOut?.state === 'readable') return readOut
+  const open = readOut?.questions.find(({ blocking }) => blocking)
   throw new DomainError(
     'not-acceptable-now',
     open === undefined

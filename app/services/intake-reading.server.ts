@@ -7,17 +7,10 @@ import { offsetAt, wallText } from '../domain/night-files/zones.ts'
 import { emptyProfile, type SourceProfile, SourceProfileSchema } from '../domain/schemas/source-profile.ts'
 import { getSite } from './site.server.ts'
 
-/** A report with the answers it rests on, as stored with the import. */
-export interface StoredReport {
-  readOut: ReadOut
-  answers: Answer[]
-}
-
-/** The stored report of an import; a row without one is a fault of the program. */
-export function storedReport(importId: number, value: unknown): StoredReport {
-  // Written by this program and never by anybody else; later readers raise `readerVersion`.
-  if (value === null || value === undefined) throw new Error(`Import ${importId} has no report`)
-  return value as StoredReport
+/** The stored report of an import; null for one that came without a file (typed readings). */
+export function storedReport(value: unknown): ReadOut | null {
+  // Written by this program and never by anybody else; a later form of it raises `readerVersion`.
+  return (value ?? null) as ReadOut | null
 }
 
 export interface ReadingRules {

@@ -16,7 +16,7 @@ import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError, type ErrorCode } from '../domain/errors.ts'
 import { createNightFileReader } from '../domain/night-files/reader.ts'
 import type { ReadOut, Refusal } from '../domain/night-files/types.ts'
-import { readingRules, type StoredReport, siteMinute } from './intake-reading.server.ts'
+import { readingRules, siteMinute } from './intake-reading.server.ts'
 import { writeRecord } from './record.server.ts'
 
 const PIECE_BYTES = 1024 * 1024
@@ -171,7 +171,6 @@ interface ReportToStore {
 function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Promise<number> {
   const { readOut, state } = report
   return tx(db, async (inside) => {
-    const stored: StoredReport = { readOut, answers: [] }
     const importId = await insertImport(inside, {
       state,
       sourceId: report.sourceId,
@@ -182,7 +181,7 @@ function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Pr
       uploadedBy: actor.personId,
       uploadedAt: now,
       profileVersion: readOut.profileVersion,
-      readOut: stored,
+      readOut,
       lineCount: readOut.lines.total,
       readingCount: readOut.readings.total,
       firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),

@@ -1,10 +1,21 @@
 /** Night files on their way in: the original bytes, the rows of the intake, and what is needed to read them. */
-import { and, asc, desc, eq, gte, inArray, isNull, or, sql } from 'drizzle-orm'
+import { and, asc, desc, eq, gt, gte, inArray, isNull, lte, or, sql } from 'drizzle-orm'
 import { alias } from 'drizzle-orm/mysql-core'
 import type { ImportState } from '../../domain/imports.ts'
 import type { Quantity } from '../../domain/readings.ts'
 import type { DbOrTx } from '../client.server.ts'
-import { attachment, attachmentChunk, channel, importFile, person, source } from '../schema/index.ts'
+import {
+  attachment,
+  attachmentChunk,
+  channel,
+  channelMap,
+  importFile,
+  person,
+  position,
+  reading,
+  segment,
+  source,
+} from '../schema/index.ts'
 
 export interface SourceRow {
   id: number
@@ -112,7 +123,8 @@ export async function dropOriginal(db: DbOrTx, attachmentId: number): Promise<vo
 }
 
 /** Bytes of a kept file, piece by piece. */
-export async function* readOriginal(db: DbOrTx, attachmentId: number): AsyncGenerator<Uint8Array> {
+export async function* readOriginal(db: DbOrTx, attachmentId: number | null): AsyncGenerator<Uint8Array> {
+  if (attachmentId === null) return
   for (let chunkNo = 0; ; chunkNo += 1) {
     const [row] = await db
       .select({ data: attachmentChunk.data })
@@ -132,8 +144,7 @@ export interface ImportRow {
   fileName: string
   byteSize: number
   sha256: string
-  attachmentId: number
-  uploadedById: number
+  attachmentId: number | null
   uploadedBy: string
   uploadedAt: Date
   readOut: unknown
@@ -160,8 +171,7 @@ const importColumns = {
   fileName: importFile.fileName,
   byteSize: importFile.byteSize,
   sha256: importFile.sha256,
-  attachmentId: sql<number>`${importFile.attachmentId}`.mapWith(Number),
-  uploadedById: sql<number>`${importFile.uploadedBy}`.mapWith(Number),
+  attachmentId: importFile.attachmentId,
   uploadedBy: sql<string>`coalesce(${uploader.name}, '')`,
   uploadedAt: importFile.uploadedAt,
   lineCount: importFile.lineCount,
@@ -246,4 +256,38 @@ export async function updateImport(
     .update(importFile)
     .set({ ...set, revision: sql`${importFile.revision} + 1` })
     .where(eq(importFile.id, importId))
+}
+
+export interface ChannelTarget {
+  channel: string
+  position: string
+  segment: string | null
+}
+
+/** Where the channels of a source belonged at an instant, by the maps in force. */
+export function listChannelTargets(db: DbOrTx, sourceId: number, at: Date): Promise<ChannelTarget[]> {
+  return db
+    .select({ channel: channel.name, position: position.tag, segment: segment.tag })
+    .from(channelMap)
+    .innerJoin(channel, eq(channel.id, channelMap.channelId))
+    .innerJoin(position, eq(position.id, channelMap.positionId))
+    .leftJoin(segment, eq(segment.id, position.segmentId))
+    .where(
+      and(
+        eq(channel.sourceId, sourceId),
+        isNull(channelMap.replacedAt),
+        lte(channelMap.startsAt, at),
+        or(isNull(channelMap.endsAt), gt(channelMap.endsAt, at)),
+      ),
+    )
+}
+
+/** Readings of a source that are stored for a stretch of time, both ends included. */
+export async function countHeld(db: DbOrTx, sourceId: number, from: Date, to: Date): Promise<number> {
+  const [row] = await db
+    .select({ n: sql`COUNT(*)`.mapWith(Number) })
+    .from(reading)
+    .innerJoin(channel, eq(channel.id, reading.channelId))
+    .where(and(eq(channel.sourceId, sourceId), gte(reading.at, from), lte(reading.at, to)))
+  return row?.n ?? 0
 }

@@ -289,6 +289,7 @@ class Reader implements NightFileReader {
       rejected: this.#tally.rejected,
       rejectedTotal: this.#tally.rejectedTotal,
       notes: this.#tally.notes,
+      answers: [...(this.#context.answers ?? [])],
     }
   }
 }

@@ -306,4 +306,6 @@ export interface ReadOut {
   rejectedTotal: number
   /** At most 200, cut after 300 characters. */
   notes: { line: number; text: string }[]
+  /** Answers that this reading rests on. */
+  answers: Answer[]
 }
