@@ -80,6 +80,12 @@ export const PUBLISHED_RATES = {
   '304l-250c-380h': rate('Type 304L, 2.62 mm', '380 h at 250 °C', 2.86e-10, 'Avdiaj and Erjavec 2012'),
   '304l-350c-140h': rate('Type 304L, 2.62 mm', 'then 140 h at 350 °C', 5.7e-11, 'Avdiaj and Erjavec 2012'),
   '316l-gauge-removed': rate('Type 316L', 'hydrogen, gauge effects removed', 4.5e-12, 'RAL-TR-2016-008'),
+  '316l-150c-6h': rate(
+    'Type 316L, remelted in vacuum',
+    '6 h at 150 °C',
+    1.3e-10,
+    'abstract on baking temperature and air exposure of 316L',
+  ),
   'mild-steel-80c': rate(
     'Mild steel',
     '48 h at 80 °C, hydrogen, upper bound',
@@ -96,6 +102,12 @@ export const PUBLISHED_RATES = {
     'Unfired 304L or 316LN',
     '24 h at 150 °C, hydrogen',
     3e-9,
+    'lecture notes, Chiggiato',
+  ),
+  'steel-fired-baked': recalled(
+    'Vacuum-fired steel',
+    '950 °C, then a bake at 150 °C, hydrogen',
+    3e-10,
     'lecture notes, Chiggiato',
   ),
   'fluoroelastomer-1h': recalled('Fresh fluoroelastomer', 'after 1 h', 1.52e-4, "O'Hanlon, appendix C"),
