@@ -11,7 +11,7 @@ import { SEGMENTS } from '../register/segments.ts'
 import { noiseFactor, PRESSURE_NOISE } from './noise.ts'
 import { type Gauge, NIGHT_END, pressureAt, type Said, SG11_PUMPING, SG15_LAST } from './pressures.ts'
 
-export interface NightReading {
+interface NightReading {
   channel: string
   atMs: number
   seq: number

@@ -8,7 +8,7 @@ import { PERSON_ID } from '../people.ts'
 import { type DemoPosition, POSITIONS, type SourceCode } from './positions.ts'
 
 /** Loggers write a row every ten minutes; tests and pump-downs of NL-E every minute besides. */
-export const LOGGER_PERIOD_S = 600
+const LOGGER_PERIOD_S = 600
 
 const NITROGEN_EQUIVALENT = { kind: 'nitrogen-equivalent', gas: null } as const
 
@@ -96,7 +96,7 @@ export const SOURCE_ID = Object.fromEntries(SOURCES.map(({ code }, index) => [co
   number
 >
 
-export interface DemoChannel {
+interface DemoChannel {
   id: number
   source: SourceCode
   /** The position's tag: the loggers were labelled after the register. */

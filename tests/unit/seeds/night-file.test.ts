@@ -10,7 +10,7 @@ const SOURCE_CODES = ['NL-W', 'NL-E'] as const
 const LAST_NIGHTS = demoNights().slice(-3)
 
 async function readBack(file: NightFile) {
-  const rows: Omit<NightFile['readings'][number], never>[] = []
+  const rows: NightFile['readings'] = []
   const nullable = (value: number) => (Number.isNaN(value) ? null : value)
   const readOut = await readNightFile(
     [file.bytes],
