@@ -104,7 +104,8 @@ export function bakeToReach(
   bakeC: number,
 ): { hours: number; limitedBy: 'water' | 'hydrogen' } | null {
   const own = everPlaced.filter(({ kind }) => kind === 'getter-ion')
-  const model = coldModel(segment, own.length > 0 ? own.slice(-1) : everPlaced)
+  // One pump holds a segment in service; of several placements over the years the last one counts.
+  const model = coldModel(segment, (own.length > 0 ? own : everPlaced).slice(-1))
   if (model === null) return null
   return bakeHoursToReach(model, { targetPa, bakeK: bakeC + 273.15, atM: 0 })
 }

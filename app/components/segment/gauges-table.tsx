@@ -8,6 +8,9 @@ import type { SegmentPageData } from '#app/services/segment-page.server.ts'
 
 type Gauge = SegmentPageData['gauges'][number]
 
+/** Import number of readings that came from no file. */
+const TYPED = 0
+
 const COLUMNS: Column<Gauge>[] = [
   {
     key: 'tag',
@@ -62,6 +65,8 @@ const COLUMNS: Column<Gauge>[] = [
     cell: ({ importId, lineNo, sourceCode }) =>
       importId === null ? (
         '–'
+      ) : importId === TYPED ? (
+        'typed by hand'
       ) : (
         <Link to={`/intake/${importId}`} className="link inline-block py-0.5">
           {sourceCode ?? 'import'}, line {lineNo}
