@@ -14,6 +14,8 @@ import type { TubeMesh } from './tube.ts'
 const GAMMA = 1 - Math.SQRT1_2
 const FIRST_STEP_S = 1e-3
 const NEWTON_LIMIT = 12
+/** Below this pressure nothing is measured or meant: errors there count against it, and a linear gas may reach 0, Pa. */
+const NO_PRESSURE_PA = 1e-20
 /** Newton stops once no pressure moves by more than this share: the balance of molecules then closes to the same. */
 const NEWTON_SHARE = 1e-10
 
@@ -155,7 +157,8 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
         // Falling far, storage goes like ln p, so the same step is taken in ln p, at most three e-foldings at once.
         if (balance.linear || share > -0.8) p[i]! += change[i]!
         else p[i]! *= Math.exp(Math.max(share, -3))
-        if (!(p[i]! > 0 && p[i]! < Infinity)) return false
+        if (balance.linear && p[i]! <= 0 && p[i]! > -NO_PRESSURE_PA) p[i] = 0
+        else if (!(p[i]! > 0 && p[i]! < Infinity)) return false
       }
       if (balance.linear || largest < NEWTON_SHARE) return true
     }
@@ -185,7 +188,7 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
     for (let i = 0; i < n; i++) change[i] = amount[i]! - target[i]! - weight * firstRate[i]!
     solveTree(matrix, change)
     let error = 0
-    for (let i = 0; i < n; i++) error = Math.max(error, Math.abs(change[i]! / second[i]!))
+    for (let i = 0; i < n; i++) error = Math.max(error, Math.abs(change[i]!) / (second[i]! + NO_PRESSURE_PA))
     return Number.isFinite(error) ? error : Infinity
   }
 

@@ -110,6 +110,20 @@ describe('against exact answers', () => {
   })
 })
 
+test('a gas that nothing feeds any more is pumped to nothing without trouble', () => {
+  const { base } = run([{ name: 'tube', sections: [{ lengthM: 20, diameterM: 0.5 }] }], 1, (at) => ({
+    gas: 'N2',
+    startPa: 1e-4,
+    pumps: [steadyPump(at(0), 0.4)],
+  }))
+  const history = only({ ...base, outputsS: [100, 1e6] })
+  const slow = (crossSection(0.5) * 20) / 0.4
+  expect(history.pressurePa[0]![20]! / 1e-4).toBeGreaterThan(Math.exp(-100 / slow))
+  for (const p of history.pressurePa[1]!) expect(p >= 0 && p < 1e-20).toBe(true)
+  expect(history.pumped[1]! / ((1e-4 * crossSection(0.5) * 20) / (BOLTZMANN * T20_K))).toBeCloseTo(1, 9)
+  expect(history.steps).toBeLessThan(2000)
+})
+
 describe('valves and spurs', () => {
   const branches: TubeBranch[] = [
     {
