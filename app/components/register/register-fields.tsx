@@ -1,0 +1,112 @@
+/** A field of the register's forms from its facts, filled with what was typed or with what is recorded. */
+import type { FieldFact } from '#app/domain/schemas/register-fields.ts'
+import type { FieldValue } from '#app/domain/schemas/register-values.ts'
+import { CheckField, SelectField, TextAreaField, TextField } from '../ui/field.tsx'
+import { fieldTime } from '../ui/site-time.ts'
+
+/** Typed values of a form that was refused, by field. */
+export type Typed = Readonly<Record<string, string>>
+
+/** What a field starts with: a recorded value as a form would send it. */
+function startText(field: FieldFact, value: FieldValue, zone: string): string {
+  if (value === null) return ''
+  if (value instanceof Date) {
+    // The last day that counts is the one before the instant at which it no longer does.
+    if (field.input === 'last-day') return fieldTime(new Date(value.getTime() - 1), zone).slice(0, 10)
+    return timeWithSeconds(value, zone)
+  }
+  return String(value)
+}
+
+/** Site time for a field; with its seconds where there are any, so that saving the form does not drop them. */
+function timeWithSeconds(at: Date, zone: string): string {
+  const seconds = at.getUTCSeconds()
+  return seconds === 0 ? fieldTime(at, zone) : `${fieldTime(at, zone)}:${String(seconds).padStart(2, '0')}`
+}
+
+export function RegisterField({
+  field,
+  value,
+  typed,
+  zone,
+  segments,
+  errors,
+}: {
+  field: FieldFact
+  /** The recorded value; null for none. */
+  value: FieldValue
+  typed: Typed | undefined
+  zone: string
+  segments: readonly string[]
+  errors: readonly string[] | undefined
+}) {
+  const common = {
+    name: field.name,
+    label: field.unit === '' ? field.label : `${field.label}, ${field.unit}`,
+    hint: field.hint === '' ? undefined : field.hint,
+    errors,
+  }
+  const start = typed === undefined ? startText(field, value, zone) : (typed[field.name] ?? '')
+  if (field.input === 'tick') {
+    return <CheckField {...common} defaultChecked={typed === undefined ? value === true : start === 'on'} />
+  }
+  if (field.input === 'choice') {
+    const choose = value === null ? [{ value: '', label: 'Choose' }] : []
+    return <SelectField {...common} defaultValue={start} options={[...choose, ...field.options]} />
+  }
+  if (field.input === 'segment') return <SegmentField {...common} start={start} segments={segments} />
+  if (field.input === 'long-text') return <TextAreaField {...common} rows={2} defaultValue={start} />
+  if (field.input === 'instant') return <TimeField {...common} start={start} />
+  return (
+    <TextField
+      {...common}
+      type={field.input === 'last-day' ? 'date' : 'text'}
+      // A number keypad has no "e" and no comma; text with this mode keeps both within reach.
+      inputMode={field.input === 'number' ? 'decimal' : undefined}
+      defaultValue={start}
+    />
+  )
+}
+
+interface Common {
+  name: string
+  label: string
+  hint?: string | undefined
+  errors: readonly string[] | undefined
+}
+
+/** One segment of the list, or none. */
+export function SegmentField({
+  start,
+  segments,
+  none = 'None',
+  ...common
+}: Common & { start: string; segments: readonly string[]; none?: string }) {
+  const options = [{ value: '', label: none }, ...segments.map((tag) => ({ value: tag, label: tag }))]
+  return <SelectField {...common} defaultValue={start} options={options} />
+}
+
+/** A site time that may stay empty. It takes free text once an answer has asked for an offset. */
+export function TimeField({ start, ...common }: Common & { start: string }) {
+  const free = common.errors?.some((error) => error.includes('offset')) ?? false
+  return <TextField {...common} type={free ? 'text' : 'datetime-local'} step={1} defaultValue={start} />
+}
+
+/** Text with suggestions from a list; anything may be typed, and the server says when it is unknown. */
+export function SuggestField({
+  start,
+  choices,
+  ...common
+}: Common & { start: string; choices: readonly string[] }) {
+  const list = `${common.name}-choices`
+  return (
+    <>
+      <TextField {...common} list={list} autoComplete="off" defaultValue={start} />
+      <datalist id={list}>
+        {choices.map((choice) => (
+          <option key={choice} value={choice} />
+        ))}
+      </datalist>
+    </>
+  )
+}
