@@ -1,0 +1,249 @@
+/**
+ * What a bake leaves behind, how long it must be held for a target, and the choices between temperature, time and
+ * energy. Pressures in Pa after cooling; water by the emptying front, hydrogen by the age of the sheet, ramps counted.
+ */
+import { requirePositive, requireWithin } from './argument-checks.ts'
+import { molecularSpecific } from './conductance.ts'
+import { BOLTZMANN, GAS_CONSTANT } from './constants.ts'
+import { nitrogenEquivalent } from './gauges.ts'
+import { AUSTENITIC_DIFFUSIVITY, lowHydrogenRate, slabAtomFlux, transformedTime } from './hydrogen.ts'
+import type { SegmentModel } from './predict.ts'
+import { linePositions, steadyPressures } from './steady.ts'
+import {
+  DEFAULT_WATER,
+  emptyingFront,
+  WATER_FLOOR_PA,
+  type WaterIsotherm,
+  waterRateTime,
+  waterScalePressure,
+} from './water.ts'
+
+const HOUR_S = 3600
+/** Nobody holds a bake longer than a year, h. */
+const LONGEST_HOLD_H = 8766
+
+export interface BakeProgramme {
+  bakeK: number
+  holdHours: number
+  /** Kelvins per hour up and down; the same down as up unless given. */
+  upKH: number
+  downKH?: number
+  /** Hours of pumping at the cold temperature that count too, before the bake or after it; none unless given. */
+  coldHours?: number
+}
+
+export interface BakeOutcome {
+  waterPa: number
+  /** True where nothing but "at or below the floor" can be said of the water. */
+  waterAtFloor: boolean
+  hydrogenPa: number
+  airPa: number
+  n2EquivalentPa: number
+  limitedBy: 'water' | 'hydrogen' | 'air'
+}
+
+/**
+ * Pressures at `atM` once the segment is cold again after the bake. The water closed form takes each place at its own
+ * pressure while hot; it agrees with full transport along a
+ * 150 m tube to a few per cent while the front lies inside the energies, and is not knowable beyond (see the tests).
+ */
+export function afterBake(model: SegmentModel, programme: BakeProgramme, atM: number): BakeOutcome {
+  requireProgramme(model, programme)
+  return outcomeAt(model, atM, programme.bakeK, rampsOf(programme))(programme.holdHours)
+}
+
+/**
+ * Least hours of hold after which the cold segment reads `targetPa` (as nitrogen) at `atM`; 0 where the ramps alone do;
+ * null where a year would not.
+ */
+export function holdToMeet(
+  model: SegmentModel,
+  programme: Omit<BakeProgramme, 'holdHours'>,
+  targetPa: number,
+  atM: number,
+): { holdHours: number; outcome: BakeOutcome } | null {
+  requirePositive('targetPa', targetPa)
+  requireProgramme(model, { ...programme, holdHours: 0 })
+  const outcome = outcomeAt(model, atM, programme.bakeK, rampsOf(programme))
+  const meets = (hours: number): boolean => outcome(hours).n2EquivalentPa <= targetPa
+  if (!meets(LONGEST_HOLD_H)) return null
+  if (meets(0)) return { holdHours: 0, outcome: outcome(0) }
+  let low = Math.log(1e-3)
+  let high = Math.log(LONGEST_HOLD_H)
+  while (high - low > 1e-9) {
+    const middle = (low + high) / 2
+    if (meets(Math.exp(middle))) high = middle
+    else low = middle
+  }
+  return { holdHours: Math.exp(high), outcome: outcome(Math.exp(high)) }
+}
+
+/**
+ * Seconds at `otherK` that do for one gas what `seconds` at `hotK` did: hydrogen by equal age, water by an equally deep
+ * emptying front at a wall area over pumping speed `areaOverSpeed` in s/m.
+ */
+export function equivalentHold(
+  gas: 'hydrogen' | 'water',
+  hotK: number,
+  seconds: number,
+  otherK: number,
+  areaOverSpeed: number,
+): number {
+  requirePositive('seconds', seconds)
+  requireWithin('hotK', hotK, 250, 1300)
+  requireWithin('otherK', otherK, 250, 1300)
+  if (gas === 'hydrogen') {
+    return seconds * Math.exp((AUSTENITIC_DIFFUSIVITY.energyJMol / GAS_CONSTANT) * (1 / otherK - 1 / hotK))
+  }
+  requirePositive('areaOverSpeed', areaOverSpeed)
+  const front = emptyingFront((areaOverSpeed * waterRateTime(hotK)) / seconds, hotK)
+  const otherPa = waterScalePressure(otherK) * Math.exp(-front / (GAS_CONSTANT * otherK))
+  return (areaOverSpeed * waterRateTime(otherK)) / otherPa
+}
+
+interface Ramps {
+  upKH: number
+  downKH: number
+  coldHours: number
+}
+
+function rampsOf(programme: Omit<BakeProgramme, 'holdHours'>): Ramps {
+  const { upKH, downKH = upKH, coldHours = 0 } = programme
+  return { upKH, downKH, coldHours }
+}
+
+function requireProgramme(model: SegmentModel, programme: BakeProgramme): void {
+  requireWithin('temperatureK', model.temperatureK, 200, 700)
+  requireWithin('bakeK', programme.bakeK, model.temperatureK, 1300)
+  requireWithin('holdHours', programme.holdHours, 0, 1e6)
+  requireWithin('upKH', programme.upKH, 0.1, 1000)
+  if (programme.downKH !== undefined) requireWithin('downKH', programme.downKH, 0.1, 1000)
+  if (programme.coldHours !== undefined) requireWithin('coldHours', programme.coldHours, 0, 1e6)
+}
+
+function outcomeAt(
+  model: SegmentModel,
+  atM: number,
+  bakeK: number,
+  ramps: Ramps,
+): (holdHours: number) => BakeOutcome {
+  const water = waterAfter(model, atM, bakeK, ramps)
+  const hydrogen = hydrogenAfter(model, atM, bakeK, ramps)
+  const airPa = leakPressure(model, atM)
+  return (holdHours) => {
+    const { waterPa, waterAtFloor } = water(holdHours)
+    const hydrogenPa = hydrogen(holdHours)
+    const shares = {
+      water: nitrogenEquivalent({ H2O: waterPa }),
+      hydrogen: nitrogenEquivalent({ H2: hydrogenPa }),
+      air: airPa,
+    }
+    // Water at its floor is no measured gas: it may add to the sum but never counts as what limits.
+    let limitedBy: BakeOutcome['limitedBy'] = shares.hydrogen >= shares.air ? 'hydrogen' : 'air'
+    if (!waterAtFloor && shares.water > shares[limitedBy]) limitedBy = 'water'
+    return {
+      waterPa,
+      waterAtFloor,
+      hydrogenPa,
+      airPa,
+      n2EquivalentPa: shares.water + shares.hydrogen + shares.air,
+      limitedBy,
+    }
+  }
+}
+
+function waterAfter(
+  model: SegmentModel,
+  atM: number,
+  bakeK: number,
+  ramps: Ramps,
+): (holdHours: number) => { waterPa: number; waterAtFloor: boolean } {
+  const { water, temperatureK } = model
+  if (water.state === 'baked') return () => ({ waterPa: water.floorPa, waterAtFloor: true })
+  const isotherm: WaterIsotherm = { ...DEFAULT_WATER, capacityPerM2: water.capacityPerM2 }
+  const perRate = unitPressure(model, 'H2O', atM, bakeK)
+  const hotScale = waterScalePressure(bakeK, isotherm)
+  const rateTime = waterRateTime(bakeK, isotherm)
+  const coldRateTime = unitPressure(model, 'H2O', atM, temperatureK) * waterRateTime(temperatureK, isotherm)
+  return (holdHours) => {
+    // Near the top of a ramp the release falls by e every RT2/E: so many kelvins of each ramp work like the hold.
+    let seconds = Math.max(holdHours, 0) * HOUR_S
+    let energy = 0.9 * isotherm.highJMol
+    for (let round = 0; round < 6; round++) {
+      const near = (GAS_CONSTANT * bakeK ** 2) / energy
+      seconds = (holdHours + near / ramps.upKH + near / ramps.downKH) * HOUR_S
+      const found = emptyingFront((perRate * rateTime) / seconds, bakeK, isotherm)
+      energy = Math.min(isotherm.highJMol, Math.max(isotherm.lowJMol, found))
+    }
+    const share = Math.min(1, (perRate * rateTime) / seconds / hotScale)
+    const coldPa = waterScalePressure(temperatureK, isotherm) * share ** (bakeK / temperatureK)
+    // Cold pumping goes on along the 1/t line from the time that would have brought the unbaked wall here.
+    const sameAsSeconds = coldRateTime / coldPa
+    const waterPa = coldRateTime / (sameAsSeconds + ramps.coldHours * HOUR_S)
+    return { waterPa: Math.max(WATER_FLOOR_PA, waterPa), waterAtFloor: waterPa <= WATER_FLOOR_PA }
+  }
+}
+
+function hydrogenAfter(
+  model: SegmentModel,
+  atM: number,
+  bakeK: number,
+  ramps: Ramps,
+): (holdHours: number) => number {
+  const { hydrogen, temperatureK, wallM } = model
+  const perRate = unitPressure(model, 'H2', atM, temperatureK)
+  if (hydrogen.kind === 'low-hydrogen') {
+    const rate = lowHydrogenRate(hydrogen.qPaMS, hydrogen.atK, temperatureK) * (temperatureK / hydrogen.atK)
+    return () => perRate * rate
+  }
+  const rise = bakeK - temperatureK
+  const ramped = transformedTime([
+    { seconds: (rise / ramps.upKH) * HOUR_S, fromK: temperatureK, toK: bakeK },
+    { seconds: (rise / ramps.downKH) * HOUR_S, fromK: bakeK, toK: temperatureK },
+    { seconds: ramps.coldHours * HOUR_S, fromK: temperatureK, toK: temperatureK },
+  ])
+  return (holdHours) => {
+    const held = transformedTime([{ seconds: holdHours * HOUR_S, fromK: bakeK, toK: bakeK }])
+    const age = hydrogen.agedTauM2 + ramped + held
+    const atoms = slabAtomFlux({ c0PerM3: hydrogen.c0PerM3, wallM }, temperatureK, age)
+    return perRate * (atoms / 2) * BOLTZMANN * temperatureK
+  }
+}
+
+/** Steady pressure at `atM` for a wall that gives 1 Pa m/s everywhere. */
+function unitPressure(model: SegmentModel, gas: 'H2O' | 'H2', atM: number, kelvin: number): number {
+  const line = {
+    lengthM: model.lengthM,
+    specific: molecularSpecific(gas, model.diameterM, kelvin),
+    sourcePerM: Math.PI * model.diameterM,
+    // A pump whose water speed is not given takes water as it takes nitrogen.
+    pumps: model.pumps.map((p) => ({
+      atM: p.atM,
+      speedM3S: p.speedM3S[gas] ?? (gas === 'H2O' ? (p.speedM3S.N2 ?? 0) : 0),
+    })),
+  }
+  const positions = linePositions(line, [atM])
+  return steadyPressures(line, positions)[nodeOf(positions, atM)]!
+}
+
+function leakPressure(model: SegmentModel, atM: number): number {
+  const leaks = (model.airLeaks ?? []).map((leak) => ({ atM: leak.atM, loadPaM3S: leak.qPaM3S }))
+  if (leaks.length === 0) return 0
+  const line = {
+    lengthM: model.lengthM,
+    specific: molecularSpecific('N2', model.diameterM, model.temperatureK),
+    sourcePerM: 0,
+    pumps: model.pumps.map((p) => ({ atM: p.atM, speedM3S: p.speedM3S.N2 ?? 0 })),
+    leaks,
+  }
+  const positions = linePositions(line, [atM])
+  return steadyPressures(line, positions)[nodeOf(positions, atM)]!
+}
+
+function nodeOf(positions: readonly number[], atM: number): number {
+  let best = 0
+  for (let i = 1; i < positions.length; i++) {
+    if (Math.abs(positions[i]! - atM) < Math.abs(positions[best]! - atM)) best = i
+  }
+  return best
+}
