@@ -58,14 +58,7 @@ export function Shell({ person, site, clock, unit, places, mayAdvanceClock, noti
       </a>
       <div className="min-h-dvh md:grid md:grid-cols-[11.75rem_minmax(0,1fr)] print:block">
         <div className="md:sticky md:top-0 md:flex md:h-dvh md:flex-col md:border-r md:px-3.5 md:py-4 print:hidden">
-          <Link
-            to={places.facility ? '/' : '/logbook'}
-            className="mx-1.5 mb-4 hidden items-center gap-2 rounded-sm text-xl font-semibold tracking-head md:flex"
-          >
-            <BrandMark />
-            Ebbline
-          </Link>
-          <Places places={placesFor(places)} />
+          <Places places={placesFor(places)} home={places.facility ? '/' : '/logbook'} />
         </div>
         <div className="min-w-0 pb-16 md:pb-0">
           <header className="flex flex-wrap items-center gap-x-5 gap-y-1 border-b px-4 py-2 text-sm text-ink-2 md:px-6.5 print:hidden">
@@ -99,13 +92,20 @@ export function Shell({ person, site, clock, unit, places, mayAdvanceClock, noti
 }
 
 /** The rail on a wide screen; a bar at the bottom edge, in reach of the thumb, on a narrow one. */
-function Places({ places }: { places: readonly Place[] }) {
+function Places({ places, home }: { places: readonly Place[]; home: string }) {
   const { pathname } = useLocation()
   return (
     <nav
       aria-label="Places"
       className="fixed inset-x-0 bottom-0 z-20 border-t bg-paper md:static md:border-t-0 md:bg-transparent"
     >
+      <Link
+        to={home}
+        className="mx-1.5 mb-4 hidden items-center gap-2 rounded-sm text-xl font-semibold tracking-head md:flex"
+      >
+        <BrandMark />
+        Ebbline
+      </Link>
       <ul className="flex md:flex-col md:gap-0.5">
         {places.map((place) => (
           <li key={place.to} className="min-w-0 flex-1">

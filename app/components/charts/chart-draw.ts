@@ -51,7 +51,7 @@ export function drawDecades(plot: Plot, ticks: readonly Decade[], unit: string, 
     ctx.fillText('10', right - room - ratio, y)
   }
   ctx.font = font(plot, 12)
-  ctx.fillText(unit, right, plot.top - 16 * ratio)
+  ctx.fillText(unit, right, plot.top - 19 * ratio)
   ctx.restore()
 }
 
@@ -59,20 +59,26 @@ export function drawDecades(plot: Plot, ticks: readonly Decade[], unit: string, 
 export function drawLevels(plot: Plot, levels: readonly Level[], palette: Palette): void {
   const { ctx, ratio } = plot
   ctx.save()
-  ctx.strokeStyle = palette.ink3
   ctx.fillStyle = palette.ink2
-  ctx.lineWidth = 1.5 * ratio
+  ctx.lineJoin = 'round'
   ctx.font = font(plot, 12)
   ctx.textAlign = 'left'
   ctx.textBaseline = 'bottom'
   for (const { value, label } of levels) {
     const y = plot.place(value, 'y')
     if (y < plot.top || y > plot.top + plot.height) continue
+    ctx.strokeStyle = palette.ink3
+    ctx.lineWidth = 1.5 * ratio
     ctx.setLineDash([4 * ratio, 3 * ratio])
     ctx.beginPath()
     ctx.moveTo(plot.left, y)
     ctx.lineTo(plot.left + plot.width, y)
     ctx.stroke()
+    ctx.setLineDash([])
+    // A rim of paper keeps the word readable where a curve runs through it.
+    ctx.strokeStyle = palette.sheet
+    ctx.lineWidth = 4 * ratio
+    ctx.strokeText(label, plot.left + 5 * ratio, y - 2 * ratio)
     ctx.fillText(label, plot.left + 5 * ratio, y - 2 * ratio)
   }
   ctx.restore()
@@ -88,7 +94,8 @@ export function drawMarks(plot: Plot, places: readonly number[], palette: Palett
   const rows = new Array<number>(MARK_ROWS).fill(Number.NEGATIVE_INFINITY)
   for (const [at, value] of places.entries()) {
     const x = plot.place(value, 'x')
-    if (x < plot.left || x > plot.left + plot.width) continue
+    // Also true of no place at all, which zero has on a log axis.
+    if (!(x >= plot.left && x <= plot.left + plot.width)) continue
     // Neighbours step down a row, so that no number covers another.
     const free = rows.findIndex((last) => x - last > MARK * ratio * 1.2)
     const row = free < 0 ? MARK_ROWS - 1 : free

@@ -1,16 +1,9 @@
-import type { Cell, Column } from './chart-data.ts'
+import type { Column } from './chart-data.ts'
+import { Value } from './chart-words.tsx'
 import { dashOf, ROLE_LOOKS } from './uplot.tsx'
 
 /** Which line is which, with the value of each at the read-out, or its last one. */
-export function ChartKeys({
-  columns,
-  cursor,
-  valueText,
-}: {
-  columns: readonly Column[]
-  cursor: number | null
-  valueText: (cell: Cell) => string
-}) {
+export function ChartKeys({ columns, cursor }: { columns: readonly Column[]; cursor: number | null }) {
   return (
     <ul className="flex flex-wrap gap-x-5 gap-y-1 text-sm text-ink-2">
       {columns.map(({ label, role, y, band }, at) => {
@@ -30,7 +23,9 @@ export function ChartKeys({
               />
             </svg>
             {label}
-            <span className="min-w-24 font-medium whitespace-nowrap text-ink">{valueText(shown)}</span>
+            <span className="min-w-24 font-medium whitespace-nowrap text-ink">
+              <Value cell={shown} />
+            </span>
           </li>
         )
       })}

@@ -1,17 +1,26 @@
 /** What a chart says without being looked at: its course in sentences, its events as a list, its figures as a table. */
 import { ButtonLink } from '../ui/button.tsx'
 import { DataTable } from '../ui/data-table.tsx'
+import { Pressure } from '../ui/pressure.tsx'
 import { type Aligned, type Cell, extremesOf, tableRows } from './chart-data.ts'
 
 const TABLE_ROWS = 60
 
 interface Texts {
   placeText: (place: number) => string
-  valueText: (cell: Cell) => string
+}
+
+/** A pressure of a curve, or a dash where the curve has none. */
+export function Value({ cell }: { cell: Cell }) {
+  return cell === null || cell === undefined ? '–' : <Pressure pa={cell} />
 }
 
 /** A sentence for each measured curve, and one for what could not be drawn. */
-export function ChartWords({ aligned, placeText, valueText }: Texts & { aligned: Aligned }) {
+export function ChartWords({
+  aligned,
+  levels,
+  placeText,
+}: Texts & { aligned: Aligned; levels: readonly { pa: number; label: string }[] }) {
   const { x, columns, leftOut } = aligned
   return (
     <div className="text-sm text-ink-2">
@@ -21,11 +30,17 @@ export function ChartWords({ aligned, placeText, valueText }: Texts & { aligned:
         const { last, least, greatest } = course
         return (
           <p key={column.label}>
-            {column.label}: {valueText(last.value)} at {placeText(last.x)}, lowest {valueText(least.value)} at{' '}
-            {placeText(least.x)}, highest {valueText(greatest.value)} at {placeText(greatest.x)}.
+            {column.label}: <Pressure pa={last.value} /> at {placeText(last.x)}, lowest{' '}
+            <Pressure pa={least.value} /> at {placeText(least.x)}, highest <Pressure pa={greatest.value} /> at{' '}
+            {placeText(greatest.x)}.
           </p>
         )
       })}
+      {levels.map(({ pa, label }) => (
+        <p key={label}>
+          Dashed: {label} <Pressure pa={pa} />.
+        </p>
+      ))}
       {leftOut > 0 && (
         <p>
           {leftOut} {leftOut === 1 ? 'value' : 'values'} of zero or below: a log axis has no place for them,
@@ -66,7 +81,6 @@ export function ChartTable({
   caption,
   placeHead,
   placeText,
-  valueText,
   csvHref,
 }: Texts & { aligned: Aligned; caption: string; placeHead: string; csvHref: string | undefined }) {
   const rows = tableRows(aligned, TABLE_ROWS)
@@ -88,7 +102,7 @@ export function ChartTable({
               key: label,
               head: label,
               align: 'right' as const,
-              cell: (row: (typeof rows)[number]) => valueText(row.values[at]),
+              cell: (row: (typeof rows)[number]) => <Value cell={row.values[at]} />,
             })),
           ]}
           rows={rows}

@@ -180,7 +180,8 @@ function SegmentBand({ segment, scene }: { segment: StripSegment; scene: Scene }
 
 function SegmentPressure({ segment, scene }: { segment: StripSegment; scene: Scene }) {
   const [x1, x2] = [scene.x(segment.lineCode, segment.startM), scene.x(segment.lineCode, segment.endM)]
-  const target = segment.targetPa
+  // The target is a target of vacuum; across gas it would only look like a reading.
+  const target = SEGMENT_STATES[segment.state].highVacuum ? segment.targetPa : null
   const path = (segment.predicted ?? [])
     .map(({ offsetM, pa }, step) => {
       const x = scene.x(segment.lineCode, segment.startM + offsetM)
@@ -239,10 +240,10 @@ function ChainageAxis({ line, x, main }: { line: StripLine; x: Scene['x']; main:
           key={metres}
           x={x(line.code, metres)}
           y={AXIS_Y}
-          textAnchor={main ? 'middle' : 'end'}
+          textAnchor={metres === 0 ? 'start' : metres === line.lengthM ? 'end' : 'middle'}
           className="fill-ink-3 text-xs"
         >
-          {main ? `${metres} m` : `${line.name}, ${metres} m`}
+          {metres} m
         </text>
       ))}
     </>

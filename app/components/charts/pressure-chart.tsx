@@ -6,7 +6,7 @@ import { useMemo, useState } from 'react'
 import { usePalette } from '#app/hooks/use-palette.ts'
 import { useSite } from '#app/hooks/use-site.ts'
 import { fromPascal, toPascal } from '#app/physics/units.ts'
-import { pressureText } from '../ui/format-pressure.ts'
+import { pressureWords } from '../ui/format-pressure.ts'
 import { siteTimeText } from '../ui/site-time.ts'
 import { alignSeries, axisValuesOf, type Cell, type ChartSeries, extremesOf } from './chart-data.ts'
 import { ChartKeys } from './chart-keys.tsx'
@@ -69,7 +69,7 @@ export function PressureChart({
     return {
       aligned,
       decades: decades.map((exponent) => ({ exponent, value: toPascal(10 ** exponent, unit) })),
-      levels: levels.map(({ pa, label }) => ({ value: pa, label: `${label} ${pressureText(pa, unit)}` })),
+      levels: levels.map(({ pa, label }) => ({ value: pa, label })),
       marks: marks.map((mark) => mark.x),
       now: now ?? null,
     }
@@ -77,7 +77,7 @@ export function PressureChart({
   const { aligned } = drawn
   const placeText = (place: number) =>
     kind === 'time' ? siteTimeText(new Date(place), zone) : `${place.toFixed(place < 10 ? 2 : 1)} h`
-  const valueText = (cell: Cell) => (cell === null || cell === undefined ? '–' : pressureText(cell, unit))
+  const spoken = (cell: Cell) => (cell === null || cell === undefined ? 'none' : pressureWords(cell, unit))
 
   if (aligned.columns.every((column) => extremesOf(aligned.x, column) === null)) {
     return <p className="py-2 text-ink-2">There is no reading to draw in this stretch of time.</p>
@@ -86,7 +86,7 @@ export function PressureChart({
     <figure>
       <figcaption className="sr-only">{caption}</figcaption>
       <div className="mb-1 flex flex-wrap items-center justify-between gap-x-4 gap-y-2">
-        <ChartKeys columns={aligned.columns} cursor={cursor} valueText={valueText} />
+        <ChartKeys columns={aligned.columns} cursor={cursor} />
         {kind === 'hours' && <TimeAxisSwitch log={logTime} onChange={setLogTime} />}
       </div>
       <div className="min-h-85">
@@ -114,19 +114,18 @@ export function PressureChart({
         words={(at) =>
           [
             placeText(aligned.x[at] ?? 0),
-            ...aligned.columns.map(({ label, y }) => `${label} ${valueText(y[at])}`),
+            ...aligned.columns.map(({ label, y }) => `${label} ${spoken(y[at])}`),
           ].join('; ')
         }
         place={cursor === null ? null : placeText(aligned.x[cursor] ?? 0)}
       />
       <ChartMarks marks={marks} placeText={placeText} />
-      <ChartWords aligned={aligned} placeText={placeText} valueText={valueText} />
+      <ChartWords aligned={aligned} levels={levels} placeText={placeText} />
       <ChartTable
         aligned={aligned}
         caption={caption}
         placeHead={kind === 'time' ? 'Time' : 'Hours'}
         placeText={placeText}
-        valueText={valueText}
         csvHref={csvHref}
       />
     </figure>

@@ -153,8 +153,9 @@ function xAxis(kind: ChartKind, xLog: boolean, zone: string, palette: Palette): 
   if (kind === 'time') {
     return {
       ...look,
-      values: (_u, splits, _axis, _space, step) =>
+      values: (_u, splits: (number | null)[], _axis, _space, step) =>
         splits.map((at) => {
+          if (at === null) return null
           const time = timeText(new Date(at), zone)
           return step >= DAY_MS || time === '00:00' ? shortDayText(new Date(at), zone) : time
         }),
@@ -163,7 +164,9 @@ function xAxis(kind: ChartKind, xLog: boolean, zone: string, palette: Palette): 
   return {
     ...look,
     ...(xLog ? { splits: (_u: uPlot, _axis: number, min: number, max: number) => roundHours(min, max) } : {}),
-    values: (_u, splits) => splits.map((hours) => `${Number(hours.toPrecision(6))} h`),
+    // uPlot passes null where it leaves a tick without a word.
+    values: (_u, splits: (number | null)[]) =>
+      splits.map((hours) => (hours === null ? null : `${Number(hours.toPrecision(6))} h`)),
   }
 }
 
