@@ -76,9 +76,10 @@ export async function openPage(
       const person = DEMO_SIGN_INS.find((one) => one.role === role)
       if (person === undefined) throw new Error(`The demo has no ${role}.`)
       await goto('/sign-in')
-      await page.locator('input[name="email"]').fill(person.email)
-      await page.locator('input[name="password"]').fill(person.password)
-      await page.locator('form:has(input[name="password"]) button[type="submit"]').first().click()
+      // By type: the demo's one-press sign-ins hold hidden fields of the same names.
+      await page.locator('input[type="email"]').fill(person.email)
+      await page.locator('input[type="password"]').fill(person.password)
+      await page.locator('input[type="password"]').press('Enter')
       await page.waitForURL((url) => url.pathname !== '/sign-in')
       await hydrated(page)
     },

@@ -46,6 +46,7 @@ async function ensureOriginal(connection: mysql.Connection, url: URL): Promise<s
   const [rows] = await connection.query<mysql.RowDataPacket[]>('SHOW DATABASES LIKE ?', [`${PREFIX}%`])
   const present = rows.flatMap((row) => Object.values(row).map(String))
   for (const old of present) if (old !== wanted) await connection.query('DROP DATABASE ??', [old])
+  if (present.includes(wanted) && (await isSeeded(connection, wanted))) return wanted
   // Both are idempotent, and a seeding that was cut off is completed.
   for (const file of ['app/cli/migrate.ts', 'app/cli/seed.ts']) {
     await run(process.execPath, ['--import', 'tsx', file], {
@@ -58,6 +59,15 @@ async function ensureOriginal(connection: mysql.Connection, url: URL): Promise<s
     })
   }
   return wanted
+}
+
+/** The site's row is the last that seeding writes. */
+async function isSeeded(connection: mysql.Connection, database: string): Promise<boolean> {
+  const count =
+    "SELECT COUNT(*) AS n FROM information_schema.TABLES WHERE TABLE_SCHEMA = ? AND TABLE_NAME = 'site'"
+  const [table] = await rowsOf(connection, count, [database])
+  if (Number(table?.n) === 0) return false
+  return (await rowsOf(connection, 'SELECT 1 FROM ??.site', [database])).length > 0
 }
 
 /** Copies tables with their rows, keys, partitions and triggers. */
