@@ -34,13 +34,38 @@ export interface Finding {
   evidence: Evidence[]
 }
 
+interface RatioTest {
+  over: readonly [number, number]
+  low: number
+  high: number
+  wanted: string
+}
+
 interface Rule {
   pattern: GasPattern
   /** The first ratio decides; the others strengthen. */
-  tests: readonly { over: readonly [number, number]; low: number; high: number; wanted: string }[]
+  tests: readonly RatioTest[]
 }
 
-// Limits marked (seen) were found in printed guides to residual gas analysis: N2/O2 of air 3.7 with 3.5 to 5 usual in
+/** Ratios in standard dry air by amount; ion currents differ by the sensitivities, argon by about 1.4. */
+export const AIR_RATIOS = {
+  nitrogenOverOxygen: 0.78084 / 0.20946,
+  argonOverNitrogen: 0.00934 / 0.78084,
+} as const
+
+/** Fragment over parent at 70 eV (usual cracking patterns, from memory, not verified). */
+export const FRAGMENT_RATIOS = { nitrogen14: 0.07, carbonMonoxide12: 0.045, water17: 0.23 } as const
+
+const NITROGEN_FRAGMENT: RatioTest = {
+  over: [14, 28],
+  low: 0.05,
+  high: 3 * FRAGMENT_RATIOS.nitrogen14,
+  wanted: '0.05 or more, usually 0.07 (nitrogen)',
+}
+
+const OXYGEN_OVER_NITROGEN = 1 / AIR_RATIOS.nitrogenOverOxygen
+
+// These limits were found in printed guides to residual gas analysis: N2/O2 of air 3.7 with 3.5 to 5 usual in
 // ion current, argon about 1 % of 28, 14/28 of nitrogen above 5 %, 12/28 of carbon monoxide above 2 %, oxygen under a
 // fifth of nitrogen from a backing line. All others are common practice, no source. Oxygen may be eaten by hot
 // filaments and clean steel, so argon decides about air and 32 only strengthens.
@@ -48,15 +73,30 @@ const RULES: readonly Rule[] = [
   {
     pattern: 'air-leak',
     tests: [
-      { over: [40, 28], low: 0.005, high: 0.03, wanted: 'about 0.01 (argon of air)' },
-      { over: [14, 28], low: 0.05, high: 0.2, wanted: '0.05 or more (nitrogen)' },
-      { over: [32, 28], low: 0.17, high: 0.33, wanted: '0.20 to 0.29 (oxygen of air, unless it is eaten)' },
+      {
+        over: [40, 28],
+        low: 0.42 * AIR_RATIOS.argonOverNitrogen,
+        high: 2.5 * AIR_RATIOS.argonOverNitrogen,
+        wanted: 'about 0.01 (argon of air)',
+      },
+      NITROGEN_FRAGMENT,
+      {
+        over: [32, 28],
+        low: 0.63 * OXYGEN_OVER_NITROGEN,
+        high: 1.23 * OXYGEN_OVER_NITROGEN,
+        wanted: '0.20 to 0.29 (oxygen of air, unless it is eaten)',
+      },
     ],
   },
   {
     pattern: 'carbon-monoxide',
     tests: [
-      { over: [12, 28], low: 0.02, high: 0.15, wanted: 'above 0.02 (carbon)' },
+      {
+        over: [12, 28],
+        low: 0.02,
+        high: 3 * FRAGMENT_RATIOS.carbonMonoxide12,
+        wanted: 'above 0.02, usually 0.045 (carbon)',
+      },
       { over: [32, 28], low: 0, high: 0.01, wanted: 'no oxygen' },
       { over: [40, 28], low: 0, high: 0.003, wanted: 'no argon' },
     ],
@@ -65,7 +105,12 @@ const RULES: readonly Rule[] = [
     pattern: 'water',
     tests: [
       { over: [2, 18], low: 0, high: 0.5, wanted: '18 at least twice 2' },
-      { over: [17, 18], low: 0.17, high: 0.3, wanted: 'about 0.23 (fragments of water)' },
+      {
+        over: [17, 18],
+        low: FRAGMENT_RATIOS.water17 / 1.3,
+        high: FRAGMENT_RATIOS.water17 * 1.3,
+        wanted: 'about 0.23 (fragments of water)',
+      },
     ],
   },
   {
@@ -87,7 +132,7 @@ const RULES: readonly Rule[] = [
     pattern: 'backing-line',
     tests: [
       { over: [32, 28], low: 0.01, high: 0.17, wanted: 'oxygen seen, yet poor against air (below 0.17)' },
-      { over: [14, 28], low: 0.05, high: 0.2, wanted: '0.05 or more (nitrogen)' },
+      NITROGEN_FRAGMENT,
     ],
   },
   {
