@@ -1,3 +1,5 @@
+import type { FieldErrors } from './errors.ts'
+
 /** States of a night file on its way in. */
 export const IMPORT_STATES = ['receiving', 'read', 'refused', 'accepted', 'discarded', 'withdrawn'] as const
 export type ImportState = (typeof IMPORT_STATES)[number]
@@ -9,4 +11,13 @@ export const IMPORT_STATE_LABELS: Record<ImportState, string> = {
   accepted: 'Taken in',
   discarded: 'Discarded',
   withdrawn: 'Withdrawn',
+}
+
+/** What an upload answers when nothing new waits to be taken in. */
+export interface UploadFailure {
+  ok: false
+  message: string
+  fields: FieldErrors
+  /** The import that holds the refused file, or the earlier one with the same bytes. */
+  importId: number | null
 }

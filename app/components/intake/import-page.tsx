@@ -1,0 +1,189 @@
+/** One received file: what it holds, what is odd about it, and what to do with it. */
+import { Link } from 'react-router'
+import { IMPORT_STATE_LABELS } from '#app/domain/imports.ts'
+import { placeText } from '#app/domain/night-files/refusal-text.ts'
+import type { ReadOut } from '#app/domain/night-files/types.ts'
+import type { ImportPageData } from '#app/services/intake-pages.server.ts'
+import type { ActionFailure } from '../forms/failure.ts'
+import { FormFailure } from '../forms/form-failure.tsx'
+import { ButtonLink } from '../ui/button.tsx'
+import { Instant } from '../ui/instant.tsx'
+import { Notice } from '../ui/notice.tsx'
+import { Facts, PageHead, Panel } from '../ui/panel.tsx'
+import { ChannelsPanel } from './channels-panel.tsx'
+import { DiscardPanel, QuestionsPanel, TakeIn } from './decisions.tsx'
+import { countOf, countText, sizeText } from './file-words.ts'
+import { LinesPanel } from './lines-panel.tsx'
+import { NotesPanel, RejectedPanel } from './rejected-panel.tsx'
+import { StateTag, TONE_OF_STATE } from './state-tag.tsx'
+
+export function ImportPage({
+  file,
+  readOut,
+  targets,
+  heldBefore,
+  mayTakeIn,
+  failure,
+}: ImportPageData & { failure: ActionFailure | undefined }) {
+  const waits = file.state === 'read' && mayTakeIn && readOut !== null
+  return (
+    <>
+      <PageHead
+        title={file.state === 'read' ? 'Check before taking in' : `Import ${file.id}`}
+        crumbs={
+          <>
+            <Link to="/intake" className="link inline-block py-0.5">
+              Log intake
+            </Link>{' '}
+            / {file.fileName}
+          </>
+        }
+        actions={
+          <>
+            {file.attachmentId !== null && (
+              <ButtonLink to={`/intake/${file.id}/original`} reloadDocument>
+                Original
+              </ButtonLink>
+            )}
+            {waits && <TakeIn readOut={readOut} />}
+          </>
+        }
+      >
+        <StateTag word={IMPORT_STATE_LABELS[file.state]} tone={TONE_OF_STATE[file.state]} /> {file.fileName} ·{' '}
+        {sizeText(file.byteSize)}
+        {file.lineCount !== null && ` · ${countOf(file.lineCount, 'line', 'lines')}`} · sent
+        {file.uploadedBy !== '' && ` by ${file.uploadedBy}`} <Instant at={file.uploadedAt} />
+      </PageHead>
+      <FormFailure failure={failure} />
+      <Outcome file={file} />
+      {readOut === null ? (
+        <Notice>These readings were typed by hand, so there is no file to look at.</Notice>
+      ) : (
+        <>
+          {readOut.refusal !== null && <RefusalNotice refusal={readOut.refusal} />}
+          {waits && <QuestionsPanel readOut={readOut} />}
+          <div className="grid gap-x-4.5 xl:grid-cols-[minmax(0,1fr)_22rem]">
+            <div className="min-w-0">
+              <LinesPanel readOut={readOut} importId={file.id} heldBefore={heldBefore} />
+              {readOut.channels.length > 0 && <ChannelsPanel readOut={readOut} targets={targets} />}
+              <RejectedPanel readOut={readOut} importId={file.id} />
+            </div>
+            <div className="min-w-0">
+              <RemarksPanel readOut={readOut} />
+              <FilePanel file={file} readOut={readOut} />
+              <NotesPanel readOut={readOut} />
+              {waits && <DiscardPanel failure={failure} />}
+            </div>
+          </div>
+        </>
+      )}
+    </>
+  )
+}
+
+function Outcome({ file }: { file: ImportPageData['file'] }) {
+  if (file.decidedAt === null) return null
+  const who = file.decidedBy === null ? '' : ` by ${file.decidedBy}`
+  return (
+    <Notice>
+      {IMPORT_STATE_LABELS[file.state]}
+      {who} on <Instant at={file.decidedAt} />
+      {file.state === 'accepted' &&
+        `: ${countOf(file.readingCount ?? 0, 'reading', 'readings')} stored, ${countText(file.heldCount ?? 0)} held already, ${countText(file.conflictCount ?? 0)} beside a different one`}
+      .{file.reason !== '' && ` Reason: ${file.reason}`}
+    </Notice>
+  )
+}
+
+function RefusalNotice({ refusal }: { refusal: NonNullable<ReadOut['refusal']> }) {
+  const place = placeText(refusal)
+  return (
+    <Notice tone="bad" lead="Could not be read. ">
+      {place !== '' && `In ${place}. `}Found: {refusal.found}. Expected: {refusal.expected}. {refusal.mend}
+    </Notice>
+  )
+}
+
+function RemarksPanel({ readOut }: { readOut: ReadOut }) {
+  const gaps = readOut.gapTotal
+  if (readOut.remarks.length === 0 && gaps === 0) return null
+  return (
+    <Panel title="Worth a look">
+      {readOut.remarks.map((remark) => (
+        <Notice key={`${remark.kind} ${remark.line} ${remark.channel}`} tone="warn" lead="">
+          {remark.text}
+          {remark.atMs !== null && (
+            <>
+              {' '}
+              (<Instant at={new Date(remark.atMs)} />)
+            </>
+          )}
+        </Notice>
+      ))}
+      {gaps > 0 && (
+        <>
+          <p>
+            {countOf(gaps, 'gap', 'gaps')} of more than three periods. A gap stays a gap; nothing is filled
+            in.
+          </p>
+          <ul className="mt-1 text-sm text-ink-2">
+            {readOut.gaps.slice(0, 5).map((gap) => (
+              <li key={`${gap.channel} ${gap.line}`}>
+                {gap.channel}: <Instant at={new Date(gap.fromMs)} /> to <Instant at={new Date(gap.toMs)} />
+              </li>
+            ))}
+          </ul>
+        </>
+      )}
+    </Panel>
+  )
+}
+
+const MARK_WORDS = { '.': 'point', ',': 'comma' } as const
+const UNIT_FROM_WORDS: Record<NonNullable<ReadOut['dialect']['unitFrom']>, string> = {
+  header: 'from the header',
+  note: 'from a line above',
+  'unit-row': 'from the row of units',
+  column: 'from its own column',
+  profile: 'from the profile of the source',
+}
+
+function FilePanel({ file, readOut }: { file: ImportPageData['file']; readOut: ReadOut }) {
+  const { dialect, firstMs, lastMs } = readOut
+  const unit =
+    dialect.unit === null
+      ? '–'
+      : `${dialect.unit}${dialect.unitFrom === null ? '' : `, ${UNIT_FROM_WORDS[dialect.unitFrom]}`}`
+  return (
+    <Panel title="The file">
+      <Facts
+        items={[
+          { name: 'Source', value: `${file.sourceCode}, ${file.sourceName}` },
+          { name: 'Unit in the file', value: unit },
+          {
+            name: 'Decimal mark',
+            value: dialect.decimalMark === null ? '–' : MARK_WORDS[dialect.decimalMark],
+          },
+          { name: 'Zone of its times', value: dialect.zone ?? '–' },
+          { name: 'First reading', value: firstMs === null ? '–' : <Instant at={new Date(firstMs)} /> },
+          { name: 'Last reading', value: lastMs === null ? '–' : <Instant at={new Date(lastMs)} /> },
+          { name: 'Period', value: readOut.periodSeconds === null ? '–' : `${readOut.periodSeconds} s` },
+          {
+            name: 'Layout',
+            value:
+              dialect.layout === 'long'
+                ? 'a row per channel and time'
+                : dialect.layout === 'wide'
+                  ? 'a row per time'
+                  : '–',
+          },
+          { name: 'Encoding', value: dialect.encoding },
+          { name: 'Read by', value: `rules ${readOut.readerVersion}, profile ${readOut.profileVersion}` },
+        ]}
+      />
+      <p className="mt-2 text-sm text-ink-3">
+        SHA-256 <span className="break-all">{file.sha256}</span>
+      </p>
+    </Panel>
+  )
+}

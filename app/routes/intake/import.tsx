@@ -1,0 +1,52 @@
+import { nowOf, permitted } from '#app/auth/guard.server.ts'
+import { ImportPage } from '#app/components/intake/import-page.tsx'
+import { getDb } from '#app/db/client.server.ts'
+import { ANSWER_PREFIX, ImportDecisionSchema } from '#app/domain/schemas/import-decision.ts'
+import { parseForm } from '#app/server/form.server.ts'
+import { redirectWithNotice } from '#app/server/notice.server.ts'
+import { failure, orRefuse } from '#app/server/respond.server.ts'
+import { acceptImport, answerQuestions, discardImport } from '#app/services/intake-decisions.server.ts'
+import { readImportPage } from '#app/services/intake-pages.server.ts'
+import type { Route } from './+types/import'
+
+export function meta({ params }: Route.MetaArgs) {
+  return [{ title: `Import ${params.importId} · Ebbline` }]
+}
+
+export async function loader({ context, request, params }: Route.LoaderArgs) {
+  const actor = permitted(context, request, 'facility:view')
+  return orRefuse(readImportPage(getDb(), actor, Number(params.importId)))
+}
+
+export async function action({ context, request, params }: Route.ActionArgs) {
+  const actor = permitted(context, request, 'intake:take-in')
+  const importId = Number(params.importId)
+  try {
+    const decision = await parseForm(ImportDecisionSchema, request)
+    if (decision.intent === 'accept') {
+      const { stored, held, conflicting } = await acceptImport(getDb(), actor, nowOf(context), importId)
+      const beside = conflicting === 0 ? '' : `, ${conflicting} of them beside a different reading`
+      return redirectWithNotice(
+        `/intake/${importId}`,
+        `${stored} readings taken in${beside}; ${held} were held already.`,
+      )
+    }
+    if (decision.intent === 'discard') {
+      await discardImport(getDb(), actor, nowOf(context), importId, decision.reason)
+      return redirectWithNotice('/intake', `Import ${importId} discarded.`)
+    }
+    const answers = Object.entries(decision).flatMap(([name, choice]) =>
+      name.startsWith(ANSWER_PREFIX) && typeof choice === 'string'
+        ? [{ id: name.slice(ANSWER_PREFIX.length), choice }]
+        : [],
+    )
+    await answerQuestions(getDb(), actor, nowOf(context), importId, answers)
+    return redirectWithNotice(`/intake/${importId}`, 'Read again with the answers.')
+  } catch (error) {
+    return failure(error)
+  }
+}
+
+export default function ImportRoute({ loaderData, actionData }: Route.ComponentProps) {
+  return <ImportPage {...loaderData} failure={actionData} />
+}

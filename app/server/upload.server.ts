@@ -1,0 +1,131 @@
+/** Uploads of night files: a plain form, or the bare bytes of one file. Both end in the same answer. */
+import {
+  FormDataParseError,
+  MaxFileSizeExceededError,
+  MaxTotalSizeExceededError,
+  parseFormData,
+} from '@remix-run/form-data-parser'
+import type { Db } from '../db/client.server.ts'
+import type { Actor } from '../domain/actor.ts'
+import { DomainError, ERROR_STATUS } from '../domain/errors.ts'
+import type { UploadFailure } from '../domain/imports.ts'
+import { findingText } from '../domain/night-files/refusal-text.ts'
+import { refusalErrorCode, stageUpload } from '../services/intake.server.ts'
+
+const MIB = 1024 * 1024
+/** The parser of forms holds a file in memory as a whole, so larger ones come as bare bytes. */
+export const FORM_LIMIT_MIB = 64
+
+export type UploadAnswer =
+  | { ok: true; importId: number; again: boolean }
+  | { ok: false; status: number; failure: UploadFailure }
+
+export interface FileToReceive {
+  sourceCode: string
+  fileName: string
+  stream: AsyncIterable<Uint8Array>
+  statedBytes: number | null
+  limitBytes: number
+}
+
+/** Reads the form of the intake page: a source and one file. */
+export async function fileFromForm(request: Request, limitMib: number): Promise<FileToReceive> {
+  const limitBytes = Math.min(limitMib, FORM_LIMIT_MIB) * MIB
+  let form: FormData
+  try {
+    form = await parseFormData(request, { maxFiles: 1, maxFileSize: limitBytes })
+  } catch (error) {
+    if (error instanceof MaxFileSizeExceededError || error instanceof MaxTotalSizeExceededError) {
+      throw new DomainError(
+        'too-large',
+        `The file is larger than ${limitBytes / MIB} MiB, the most that this form takes. With scripts switched on files up to ${limitMib} MiB can be sent.`,
+      )
+    }
+    if (error instanceof FormDataParseError)
+      throw new DomainError('bad-input', 'The form arrived incomplete. Choose the file and send it again.')
+    throw error
+  }
+  const file = form.get('file')
+  if (!(file instanceof Blob) || (file.size === 0 && nameOf(file) === '')) throw noFile()
+  return {
+    sourceCode: String(form.get('source') ?? ''),
+    fileName: nameOf(file),
+    stream: piecesOf(file.stream()),
+    statedBytes: null,
+    limitBytes,
+  }
+}
+
+function nameOf(file: Blob): string {
+  return file instanceof File ? file.name : ''
+}
+
+function noFile(): DomainError {
+  return new DomainError('bad-input', 'One field needs another look; nothing has been saved.', {
+    fields: { file: ['No file came with the form. Choose the file that the logger wrote.'] },
+  })
+}
+
+/** Takes a request whose body is the file; source and name stand in the address. */
+export function fileFromBody(request: Request, limitMib: number): FileToReceive {
+  const url = new URL(request.url)
+  const body = request.body
+  if (body === null) throw noFile()
+  const stated = request.headers.get('Content-Length')
+  return {
+    sourceCode: url.searchParams.get('source') ?? '',
+    fileName: url.searchParams.get('name') ?? '',
+    stream: piecesOf(body),
+    statedBytes: stated !== null && /^\d+$/.test(stated) ? Number(stated) : null,
+    limitBytes: limitMib * MIB,
+  }
+}
+
+async function* piecesOf(stream: ReadableStream<Uint8Array>): AsyncGenerator<Uint8Array> {
+  const reader = stream.getReader()
+  try {
+    for (;;) {
+      const { value, done } = await reader.read()
+      if (done) return
+      yield value
+    }
+  } finally {
+    reader.releaseLock()
+  }
+}
+
+/** Hands a file to the intake and turns what comes back into an answer with its status. */
+export async function receiveFile(
+  db: Db,
+  actor: Actor,
+  now: Date,
+  take: () => FileToReceive | Promise<FileToReceive>,
+): Promise<UploadAnswer> {
+  try {
+    const staged = await stageUpload(db, actor, now, await take())
+    if (staged.refusal === null) return { ok: true, importId: staged.importId, again: staged.again }
+    return {
+      ok: false,
+      status: ERROR_STATUS[refusalErrorCode(staged.refusal)],
+      failure: {
+        ok: false,
+        message: `The file could not be read. ${findingText(staged.refusal)}`,
+        fields: {},
+        importId: staged.importId,
+      },
+    }
+  } catch (error) {
+    if (!(error instanceof DomainError)) throw error
+    const { importId } = error.details
+    return {
+      ok: false,
+      status: error.status,
+      failure: {
+        ok: false,
+        message: error.message,
+        fields: error.fields,
+        importId: typeof importId === 'number' ? importId : null,
+      },
+    }
+  }
+}
