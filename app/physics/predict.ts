@@ -140,6 +140,14 @@ function requireModel(model: SegmentModel): void {
   for (const leak of model.airLeaks ?? []) requireWithin('qPaM3S', leak.qPaM3S, 0, 1e3)
 }
 
+/**
+ * Speed of a pump for a gas, m3/s. One whose water speed is not given takes water as it takes nitrogen (common
+ * practice, no source); any other gas that is not given is not pumped.
+ */
+export function pumpSpeed(pump: SegmentModel['pumps'][number], gas: ModelGas): number {
+  return pump.speedM3S[gas] ?? (gas === 'H2O' ? (pump.speedM3S.N2 ?? 0) : 0)
+}
+
 // The tube as one gas sees it, giving off `rate` Pa m/s everywhere.
 function line(model: SegmentModel, gas: ModelGas, rate: number, temperatureK = model.temperatureK) {
   return {
@@ -148,7 +156,7 @@ function line(model: SegmentModel, gas: ModelGas, rate: number, temperatureK = m
     sourcePerM: rate * Math.PI * model.diameterM,
     pumps: model.pumps.map((pump) => ({
       atM: pump.atM,
-      speedM3S: pump.speedM3S[gas] ?? (gas === 'H2O' ? (pump.speedM3S.N2 ?? 0) : 0),
+      speedM3S: pumpSpeed(pump, gas),
     })),
   }
 }
