@@ -9,9 +9,10 @@ import { readSession } from './session.server.ts'
 
 /** Finds out who asks and what the product's time is. */
 export const identifyRequest: MiddlewareFunction<Response> = async ({ request, context }, next) => {
+  // First of all: the error page needs it too, and the next line fails when the database is away.
+  context.set(nonceContext, randomBytes(16).toString('base64'))
   const now = await productNow(getDb())
   context.set(nowContext, now)
-  context.set(nonceContext, randomBytes(16).toString('base64'))
   const person = await readSession(getDb(), request, now)
   if (person !== null) {
     context.set(actorContext, { personId: person.id, name: person.name, roles: rolesAt(person.grants, now) })
