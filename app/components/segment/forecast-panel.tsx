@@ -110,7 +110,7 @@ function PumpDownForecastPanel({
               },
               {
                 name: 'Exponent of the fall',
-                value: `${result.alpha.toFixed(2)} ± ${result.alphaSe.toFixed(2)}`,
+                value: `${result.alpha.toFixed(3)} ± ${result.alphaSe.toFixed(3)}`,
               },
               {
                 name: 'Constant part',
