@@ -73,7 +73,7 @@ export function SegmentsTable({
       cell: (segment) => {
         const attention = attentionOf(segment)
         return attention === null ? null : (
-          <span className={`text-sm ${TONES[attention.tone]}`}>{attention.text}</span>
+          <span className={`block min-w-56 text-sm ${TONES[attention.tone]}`}>{attention.text}</span>
         )
       },
     },
