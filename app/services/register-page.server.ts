@@ -4,7 +4,7 @@ import { type CountedKind, countRegister, searchRegister } from '../db/queries/r
 import { findRegisterRow, listSegmentPlaces } from '../db/queries/register-rows.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import { LIMIT_KINDS } from '../domain/register.ts'
-import { EDITED_KINDS, isEditedKind, KIND_FACTS, type RegisterKind } from '../domain/schemas/register.ts'
+import { type EditedKind, isEditedKind, KIND_FACTS, type RegisterKind } from '../domain/schemas/register.ts'
 import { addressOf, cellText, type RegisterTable } from './register-cells.server.ts'
 import { type DatedForm, type DatedPart, readDatedPart } from './register-dated.server.ts'
 import { type HistoryLine, readHistory } from './register-history.server.ts'
@@ -129,10 +129,17 @@ function missing(kind: RegisterKind, key: string): DomainError {
   return new DomainError('not-found', `The register has no ${KIND_FACTS[kind].one} ${key}.`)
 }
 
-/** Segments to choose from when something new is added; refuses kinds to which nothing is added by form. */
-export async function readNewThing(db: Db, kind: RegisterKind): Promise<{ segments: string[] }> {
-  if (!(EDITED_KINDS as readonly RegisterKind[]).includes(kind) || KIND_FACTS[kind].tag === null) {
+/**
+ * What the form that adds a thing needs.
+ *
+ * @throws DomainError not-found for kinds to which nothing is added by form
+ */
+export async function readNewThing(
+  db: Db,
+  kind: RegisterKind,
+): Promise<{ kind: EditedKind; segments: string[] }> {
+  if (!isEditedKind(kind) || KIND_FACTS[kind].tag === null) {
     throw new DomainError('not-found', `No ${KIND_FACTS[kind].one} is added by form.`)
   }
-  return { segments: (await listSegmentPlaces(db)).map(({ tag }) => tag) }
+  return { kind, segments: (await listSegmentPlaces(db)).map(({ tag }) => tag) }
 }
