@@ -29,7 +29,7 @@ const WARM = 423.15
 const COLD = 293.15
 const TUBE = { diameterM: 0.6, wallM: 0.003, lossWM2K: 0.7, ambientK: COLD, specificHeatJKgK: 500 }
 
-function fit() {
+function trendFit() {
   const { t_h, p_Pa } = checkValue('fit.params').inputs as { t_h: number[]; p_Pa: number[] }
   return fitPumpDown({ hours: t_h, pa: p_Pa }, { independent: true })
 }
@@ -40,14 +40,14 @@ function celsiusOf(id: string): number {
 
 const ANSWERS: Record<string, (id: string) => number | number[]> = {
   'fit.params': () => {
-    const { kPa, alpha, floorPa } = fit()
+    const { kPa, alpha, floorPa } = trendFit()
     return [kPa, alpha, floorPa!]
   },
-  'fit.ci95_alpha': () => confidenceLimits(fit()).alpha,
-  'fit.ci95_pL': () => confidenceLimits(fit()).floorPa!,
-  'fit.rms': () => fit().rmsLn,
+  'fit.ci95_alpha': () => confidenceLimits(trendFit()).alpha,
+  'fit.ci95_pL': () => confidenceLimits(trendFit()).floorPa!,
+  'fit.rms': () => trendFit().rmsLn,
   'fit.forecast': (id) => {
-    const { hours, lnSe } = crossingTime(fit(), checkInput(id, 'target'))!
+    const { hours, lnSe } = crossingTime(trendFit(), checkInput(id, 'target'))!
     return [hours, lnSe]
   },
   'th.cp.20': (id) => steelHeatCapacity(celsiusOf(id)),
