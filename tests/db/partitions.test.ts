@@ -28,18 +28,16 @@ async function rowsByPartition(): Promise<Record<string, number>> {
 }
 
 async function read(...instants: string[]): Promise<void> {
-  await db
-    .insert(reading)
-    .values(
-      instants.map((at) => ({
-        channelId: 1,
-        at: new Date(at),
-        value: 1e-8,
-        quality: 0,
-        importId: 1,
-        lineNo: 1,
-      })),
-    )
+  await db.insert(reading).values(
+    instants.map((at) => ({
+      channelId: 1,
+      at: new Date(at),
+      value: 1e-8,
+      quality: 0,
+      importId: 1,
+      lineNo: 1,
+    })),
+  )
 }
 
 test('makes each month from the last one to three months ahead, and the catch-all stays last', async () => {
