@@ -7,7 +7,7 @@ import { requirePositive, requireWithin } from './argument-checks.ts'
 import { tryAgainAfter, weighFloors } from './forecast-doubt.ts'
 import { normalQuantile, variancePenalty, weightedQuantile } from './statistics.ts'
 import { fitTrend, logSeries, type PressureSeries, residualsOf } from './trend.ts'
-import { type BinnedSeries, binEvenly, dailyWave } from './trend-bins.ts'
+import { type BinnedSeries, binEvenly, dailyWave, suddenStep } from './trend-bins.ts'
 
 export type ForecastRefusal =
   | 'too-few-hours'
@@ -38,7 +38,7 @@ export type Forecast =
 
 export interface ForecastOptions {
   targetPa: number
-  /** Hour of the last pump change, valve action or heating: nothing before it is used. */
+  /** Hour of the last pump change, valve action or heating: nothing before it is used. A sudden step counts as one. */
   windowStartHours?: number
   /** Good hours wanted after the start of the window. */
   minimumHours?: number
@@ -76,7 +76,10 @@ export function forecastTimeToTarget(series: PressureSeries, options: ForecastOp
       tryAgainHours: null,
     }
   }
-  return forecastFromBins(bins, targetPa, [start, end])
+  const step = suddenStep(bins, residualsOf(bins, fitTrend(bins, 'free')))
+  if (step === null) return forecastFromBins(bins, targetPa, [start, end])
+  // Bins blur the moment of the change by their width; the readings after that are clean.
+  return forecastTimeToTarget(series, { targetPa, minimumHours, windowStartHours: step + bins.widthHours })
 }
 
 function forecastFromBins(raw: BinnedSeries, targetPa: number, window: [number, number]): Forecast {
@@ -183,7 +186,7 @@ function refuseForHours(
     kind: 'refused',
     reason: changed ? 'pump-change' : 'too-few-hours',
     message: changed
-      ? `Pumps, valves or heat were changed at hour ${goodFrom.toFixed(1)}, and only ${have.toFixed(1)} h of readings follow; at least ${minimumHours} h are needed.`
+      ? `Pumps, valves or heat were changed (or the reading jumped) at hour ${goodFrom.toFixed(1)}, and only ${have.toFixed(1)} h of readings follow; at least ${minimumHours} h are needed.`
       : `Only ${have.toFixed(1)} h of good readings; at least ${minimumHours} h after the first are needed.`,
     tryAgainHours: again,
   }

@@ -8,7 +8,7 @@ import { ZERO_CELSIUS_K } from './constants.ts'
 /** Density, kg/m3 (data sheets give 7930 to 8000). */
 export const STEEL_DENSITY_KG_M3 = 7930
 /** Young's modulus at room temperature, Pa (data sheets). */
-export const STEEL_MODULUS_PA = 193e9
+const STEEL_MODULUS_PA = 193e9
 
 function celsius(kelvin: number): number {
   requireWithin('kelvin', kelvin, 200, 1300)

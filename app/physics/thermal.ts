@@ -101,7 +101,7 @@ export function bakeEnergyPerM(
 }
 
 /** Resistance per metre of wall, ohm/m. */
-export function resistancePerM(tube: Pick<HeatedTube, 'diameterM' | 'wallM'>, tubeK: number): number {
+function resistancePerM(tube: Pick<HeatedTube, 'diameterM' | 'wallM'>, tubeK: number): number {
   return steelResistivity(tubeK) / wallSection(tube)
 }
 

@@ -1,4 +1,5 @@
 /** Readings gathered into even bins of time, and the daily wave of a tube that follows its hall taken out of them. */
+import { median } from './statistics.ts'
 import type { LogSeries } from './trend.ts'
 
 export interface BinnedSeries extends LogSeries {
@@ -8,41 +9,29 @@ export interface BinnedSeries extends LogSeries {
 }
 
 /**
- * Mean of ln p and of time per bin. A bin is censored where more than half of its readings are, and then keeps the
- * loosest limit of them. Even bins, because a burst of readings in one hour knows no more of the trend than a few.
+ * Median of ln p and mean time per bin. A reading beyond its gauge's range ranks below or above all others, so a bin
+ * stays a measured value while more than half of it was measured, and a lone spike changes nothing. Even bins, because
+ * a burst of readings in one hour knows no more of the trend than a few.
  */
 export function binEvenly(data: LogSeries, endHours: number, startHours: number, most: number): BinnedSeries {
   const widthHours = (endHours - startHours) / most
-  const sums = Array.from({ length: most }, () => ({
-    n: 0,
-    t: 0,
-    y: 0,
-    marks: [0, 0],
-    limit: [-Infinity, Infinity],
-  }))
+  const members: number[][] = Array.from({ length: most }, () => [])
   for (let i = 0; i < data.x.length; i++) {
-    const hours = Math.exp(data.x[i]!)
-    const bin = sums[Math.min(most - 1, Math.max(0, Math.floor((hours - startHours) / widthHours)))]!
-    const code = data.code[i]!
-    if (code === 0) {
-      bin.n++
-      bin.t += hours
-      bin.y += data.y[i]!
-    } else if (code < 0) {
-      bin.marks[0]!++
-      bin.limit[0] = Math.max(bin.limit[0]!, data.y[i]!)
-    } else {
-      bin.marks[1]!++
-      bin.limit[1] = Math.min(bin.limit[1]!, data.y[i]!)
-    }
+    const place = Math.floor((Math.exp(data.x[i]!) - startHours) / widthHours)
+    members[Math.min(most - 1, Math.max(0, place))]!.push(i)
   }
-  const kept = sums.flatMap((bin, index) => {
-    const [below, above] = bin.marks as [number, number]
-    if (bin.n + below + above === 0) return []
-    const middle = startHours + (index + 0.5) * widthHours
-    if (below > bin.n + above) return [{ index, hours: middle, y: bin.limit[0]!, code: -1 }]
-    if (above > bin.n + below) return [{ index, hours: middle, y: bin.limit[1]!, code: 1 }]
-    return bin.n === 0 ? [] : [{ index, hours: bin.t / bin.n, y: bin.y / bin.n, code: 0 }]
+  const kept = members.flatMap((bin, index) => {
+    if (bin.length === 0) return []
+    const hours = bin.reduce((sum, i) => sum + Math.exp(data.x[i]!), 0) / bin.length
+    const ranked = bin.map((i) => (data.code[i] === 0 ? data.y[i]! : data.code[i]! * Infinity))
+    const y = median(ranked)
+    if (Number.isFinite(y)) return [{ index, hours, y, code: 0 }]
+    // Half and half has no middle to name.
+    if (Number.isNaN(y)) return []
+    const limits = bin.filter((i) => data.code[i] === Math.sign(y)).map((i) => data.y[i]!)
+    return y < 0
+      ? [{ index, hours, y: Math.max(...limits), code: -1 }]
+      : [{ index, hours, y: Math.min(...limits), code: 1 }]
   })
   return {
     x: Float64Array.from(kept, (k) => Math.log(k.hours)),
@@ -51,6 +40,26 @@ export function binEvenly(data: LogSeries, endHours: number, startHours: number,
     hasNeighbour: kept.map((k, i) => kept[i + 1]?.index === k.index + 1),
     widthHours,
   }
+}
+
+/**
+ * Hour of the largest sudden step in the residuals of a trend, or null where none stands out: medians of three bins
+ * on either side differ by over a fifth and by eight times their usual difference. Daily waves and drift are far
+ * slower than that; a pump or valve is not.
+ */
+export function suddenStep(bins: BinnedSeries, residuals: Float64Array): number | null {
+  const steps: { at: number; size: number }[] = []
+  for (let i = 2; i + 3 < bins.x.length; i++) {
+    const around = [i - 2, i - 1, i, i + 1, i + 2, i + 3]
+    if (around.some((j) => bins.code[j] !== 0)) continue
+    const size = median(residuals.subarray(i + 1, i + 4)) - median(residuals.subarray(i - 2, i + 1))
+    steps.push({ at: i, size: Math.abs(size) })
+  }
+  if (steps.length < 8) return null
+  const usual = 1.4826 * median(steps.map((s) => s.size))
+  const largest = steps.reduce((a, b) => (b.size > a.size ? b : a))
+  if (largest.size < Math.max(0.2, 8 * usual)) return null
+  return (Math.exp(bins.x[largest.at]!) + Math.exp(bins.x[largest.at + 1]!)) / 2
 }
 
 /**

@@ -98,6 +98,14 @@ describe('forecastTimeToTarget on a falling line', () => {
     expect(answer.high).toBeGreaterThan(158.4)
   })
 
+  it('is not moved by spikes of a filament', () => {
+    const series = pumpDown(66)
+    const spiked = { hours: series.hours, pa: series.pa.map((p, i) => (i % 97 === 0 ? 50 * p : p)) }
+    const clean = forecastOf(forecastTimeToTarget(series, { targetPa: 1e-5 }))
+    const answer = forecastOf(forecastTimeToTarget(spiked, { targetPa: 1e-5 }))
+    expect(Math.abs(answer.hours - clean.hours)).toBeLessThan(2)
+  })
+
   it('names the hour of the readings where the target is already met', () => {
     const answer = forecastOf(forecastTimeToTarget(pumpDown(200), { targetPa: 1e-5 }))
     expect(Math.abs(answer.hours - 158.4)).toBeLessThan(8)
@@ -127,6 +135,22 @@ describe('forecastTimeToTarget refuses', () => {
     expect(after.windowHours[0]).toBe(20)
     expect(after.low).toBeLessThan(158.4)
     expect(after.high).toBeGreaterThan(158.4)
+  })
+
+  it('a jump that nobody reported, until enough hours follow it', () => {
+    const doubled = (at: number) => {
+      const series = pumpDown(66)
+      return { hours: series.hours, pa: series.pa.map((p, i) => (series.hours[i]! >= at ? p / 2 : p)) }
+    }
+    const early = refusalOf(forecastTimeToTarget(doubled(62), { targetPa: 5e-6 }))
+    expect(early.reason).toBe('pump-change')
+    expect(early.tryAgainHours).toBeGreaterThan(73)
+    expect(early.tryAgainHours).toBeLessThan(77)
+    const later = forecastOf(forecastTimeToTarget(doubled(35), { targetPa: 5e-6 }))
+    expect(later.windowHours[0]).toBeGreaterThan(34)
+    expect(later.windowHours[0]).toBeLessThan(38)
+    expect(later.low).toBeLessThan(158.4)
+    expect(later.high).toBeGreaterThan(158.4)
   })
 
   it('a handful of readings', () => {
