@@ -77,32 +77,57 @@ export interface PartOnLine {
   kind: BakedPart
   name: string
   ownLimitC?: number
+  /**
+   * Share of the tube's rise over its surroundings that the part takes part in, 0 to 1; 1 unless given. A valve bonnet
+   * that sticks out of the insulation stays well below 1 (measure it; about 0.7 is common practice, no source).
+   */
+  riseShare?: number
 }
 
 export interface Objection {
   part: PartOnLine
   limit: PartLimit
-  /** Kelvins by which the bake exceeds the limit. */
+  /** Temperature the part would reach, degrees Celsius. */
+  reachesC: number
+  /** Kelvins by which it would exceed its limit. */
   excessK: number
 }
 
-/** Parts that a bake at `celsius` would overheat, the worst first. Parts taken off the line are not to be passed. */
-export function objectionsTo(celsius: number, parts: readonly PartOnLine[]): Objection[] {
-  requireWithin('celsius', celsius, -50, 1000)
+/**
+ * Parts that a bake of the tube at `celsius` in surroundings of `ambientC` would overheat, the worst first. Parts taken
+ * off the line are not to be passed.
+ */
+export function objectionsTo(celsius: number, ambientC: number, parts: readonly PartOnLine[]): Objection[] {
+  requireWithin('ambientC', ambientC, -50, 60)
+  requireWithin('celsius', celsius, ambientC, 1000)
   return parts
-    .map((part) => ({ part, limit: limitOf(part), excessK: celsius - limitOf(part).celsius }))
-    .filter((o) => o.excessK > 0)
+    .map((part) => {
+      const limit = limitOf(part)
+      const reachesC = ambientC + shareOf(part) * (celsius - ambientC)
+      return { part, limit, reachesC, excessK: reachesC - limit.celsius }
+    })
+    .filter((o) => o.excessK > 1e-9)
     .sort((a, b) => b.excessK - a.excessK)
 }
 
-/** Highest bake in degrees Celsius that every part stands, and the part that sets it; null without parts. */
-export function hottestBake(parts: readonly PartOnLine[]): { celsius: number; setBy: PartOnLine } | null {
+/** Hottest tube in degrees Celsius that every part stands, and the part that sets it; null without parts. */
+export function hottestBake(
+  ambientC: number,
+  parts: readonly PartOnLine[],
+): { celsius: number; setBy: PartOnLine } | null {
+  requireWithin('ambientC', ambientC, -50, 60)
   let best: { celsius: number; setBy: PartOnLine } | null = null
   for (const part of parts) {
-    const { celsius } = limitOf(part)
+    const celsius = ambientC + (limitOf(part).celsius - ambientC) / shareOf(part)
     if (!best || celsius < best.celsius) best = { celsius, setBy: part }
   }
   return best
+}
+
+function shareOf(part: PartOnLine): number {
+  const share = part.riseShare ?? 1
+  requireWithin(`rise share of ${part.name}`, share, 0.01, 1)
+  return share
 }
 
 function limitOf(part: PartOnLine): PartLimit {
