@@ -1,13 +1,15 @@
 /** Whether waiting can reach the target, and the bake that would. */
 import { Facts, Panel } from '#app/components/ui/panel.tsx'
 import { Pressure } from '#app/components/ui/pressure.tsx'
+import { SEGMENT_STATES } from '#app/domain/segment-states.ts'
 import type { SegmentPageProps } from './segment-page.tsx'
 
 /** Waiting this long is no plan. */
 const PATIENCE_HOURS = 24 * 60
 
 export function BakePanel({ bake, forecast, segment, standing }: SegmentPageProps) {
-  if (bake === null) return null
+  // While heat is on, what matters is the bake that runs, not one that could be planned.
+  if (bake === null || SEGMENT_STATES[segment.state].hot) return null
   return (
     <Panel title={`A bake at ${bake.bakeC} °C`}>
       {forecast !== null && <NeedsBake forecast={forecast} targetPa={bake.targetPa} />}

@@ -50,12 +50,12 @@ const COLUMNS: Column<Gauge>[] = [
   },
   {
     key: 'health',
-    head: 'Says something about now?',
+    head: 'Stands for now',
     cell: ({ fresh, value, newestQuality, newestAt, at }) => {
-      if (fresh) return 'yes, fresh'
+      if (fresh) return 'fresh'
       if (value === null) return 'no'
       const newer = newestAt !== null && at !== null && newestAt > at && newestQuality !== null
-      return newer ? `no: since then ${QUALITY_LABELS[newestQuality]}` : 'no: too old to stand for now'
+      return newer ? `no, since then ${QUALITY_LABELS[newestQuality]}` : 'no, too old'
     },
   },
   {
