@@ -1,13 +1,13 @@
 import type { InputHTMLAttributes } from 'react'
-import { useState } from 'react'
 import { TextField } from '../ui/field.tsx'
-import { fieldTime } from '../ui/site-time.ts'
+import { offsetLabel, typedTime } from '../ui/site-time.ts'
 
 /**
- * A date and time in site time. The browser's own field has no place for an offset, which the hour that comes twice in
- * autumn needs: once the answer asks for one, the field takes free text, and keeps taking it.
+ * A date and time in site time, as text with the year first. The browser's own field shows the day and the month in an
+ * order of its own, and has no place for the offset that the hour which comes twice in autumn needs.
  *
  * @param at what stands in it at first
+ * @param hint goes before the words about how to write it
  */
 export function SiteTimeField({
   name,
@@ -15,7 +15,7 @@ export function SiteTimeField({
   at,
   zone,
   hint,
-  errors = [],
+  errors,
   ...input
 }: {
   name: string
@@ -27,18 +27,16 @@ export function SiteTimeField({
 } & Omit<InputHTMLAttributes<HTMLInputElement>, 'type' | 'defaultValue' | 'name'> & {
     ref?: React.Ref<HTMLInputElement>
   }) {
-  const asksOffset = errors.some((error) => error.includes('offset'))
-  const [free, setFree] = useState(asksOffset)
-  if (asksOffset && !free) setFree(true)
   return (
     <TextField
       {...input}
       name={name}
       label={label}
-      type={free ? 'text' : 'datetime-local'}
-      defaultValue={fieldTime(at, zone)}
+      defaultValue={typedTime(at, zone)}
+      autoComplete="off"
+      spellCheck={false}
       required
-      hint={hint ?? `Site time (${zone}).`}
+      hint={`${hint === undefined ? '' : `${hint} `}Year-month-day hour:minute, site time (${zone}, now ${offsetLabel(at, zone)}).`}
       errors={errors}
     />
   )

@@ -12,7 +12,7 @@ import { SiteTimeField } from '../forms/site-time-field.tsx'
 import { Button } from '../ui/button.tsx'
 import { CheckField, SelectField, TextAreaField, TextField } from '../ui/field.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
-import { fieldTime } from '../ui/site-time.ts'
+import { typedTime } from '../ui/site-time.ts'
 
 type Schema = ReturnType<typeof newEntrySchema>
 type Typed = z.input<Schema>
@@ -38,7 +38,7 @@ export function NewEntryPage({
   const { register, handleSubmit, formState } = useForm<Typed, unknown, z.output<Schema>>({
     resolver: zodResolver(schema),
     mode: 'onTouched',
-    defaultValues: { segment, kind: 'note', eventAt: fieldTime(now, zone), text: '', password: '' },
+    defaultValues: { segment, kind: 'note', eventAt: typedTime(now, zone), text: '', password: '' },
   })
   const [onChart, setOnChart] = useState(ENTRY_KIND_FACTS.note.onChart)
 
@@ -93,7 +93,6 @@ export function NewEntryPage({
               label="When it happened"
               at={now}
               zone={zone}
-              hint={`Site time (${zone}). When it was written down is kept beside it.`}
               errors={errorsOf('eventAt')}
             />
             <TextAreaField

@@ -55,6 +55,11 @@ export function fieldTime(at: Date, zone: string): string {
   return `${local.getFullYear()}-${two(local.getMonth() + 1)}-${two(local.getDate())}T${timeText(at, zone)}`
 }
 
+/** An instant as a person types it, year first so that no month is taken for a day: `2026-11-09 08:00`. */
+export function typedTime(at: Date, zone: string): string {
+  return fieldTime(at, zone).replace('T', ' ')
+}
+
 /** A length of time to the size that matters: `4 min`, `9 h 50 min`, `66 h`, `12 d`. Negative lengths count as their size. */
 export function spanText(ms: number): string {
   const size = Math.abs(ms)

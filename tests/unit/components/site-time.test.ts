@@ -8,6 +8,7 @@ import {
   siteTimeText,
   spanText,
   timeText,
+  typedTime,
 } from '#app/components/ui/site-time.ts'
 import { readLocalTime } from '#app/domain/schemas/instant.ts'
 
@@ -30,6 +31,8 @@ describe('an instant in site time', () => {
   test('fills a date-time field with what the form reads back as the same instant', () => {
     expect(fieldTime(MORNING, ZONE)).toBe('2026-11-09T08:00')
     expect(readLocalTime(fieldTime(MORNING, ZONE), ZONE)).toEqual({ kind: 'instant', at: MORNING })
+    expect(typedTime(MORNING, ZONE)).toBe('2026-11-09 08:00')
+    expect(readLocalTime(typedTime(MORNING, ZONE), ZONE)).toEqual({ kind: 'instant', at: MORNING })
   })
 })
 
