@@ -1,7 +1,9 @@
 /** Makes the database of DATABASE_URL when it is missing and brings its tables up to date. */
-import { closeDb, getPool } from '../db/client.server.ts'
+import { closeDb, getDb, getPool } from '../db/client.server.ts'
 import { migrateDatabase } from '../db/migrate.server.ts'
 import { env } from '../env.server.ts'
+import { machineNow } from '../machine-time.server.ts'
+import { ensureClock } from '../services/clock.server.ts'
 
 /** One sentence for what stands between us and the database. */
 function whyNot(error: unknown, databaseUrl: string): string {
@@ -21,6 +23,8 @@ async function main(): Promise<void> {
   const databaseUrl = env().DATABASE_URL
   try {
     const { applied } = await migrateDatabase(databaseUrl)
+    // The demo's own clock comes with its data; a real site follows the machine.
+    if (!env().DEMO) await ensureClock(getDb(), { demo: false, startAt: machineNow() })
     const [rows] = await getPool().promise().query('SELECT EXISTS(SELECT 1 FROM site) AS filled')
     const filled = Array.isArray(rows) && rows.some((row) => 'filled' in row && row.filled === 1)
     // The start command reads this line. Seeding writes the site's row last, so without one it has to be done (again).

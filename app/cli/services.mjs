@@ -4,6 +4,7 @@ import { CommandFailure, sentenceForFullDisk, speaksOfFullDisk } from './failure
 import { start } from './processes.mjs'
 
 const READY_WITHIN_MS = 60_000
+const HEALTHY_WITHIN_MS = 20_000
 
 /**
  * @typedef {ReturnType<typeof start> & { name: string }} Service
@@ -57,7 +58,7 @@ export async function startService(name, { root, file, args = [], env, started }
  * @param {string} address
  */
 export async function healthy(address) {
-  const giveUpAt = performance.now() + READY_WITHIN_MS
+  const giveUpAt = performance.now() + HEALTHY_WITHIN_MS
   let found = 'no answer'
   while (performance.now() < giveUpAt) {
     try {
@@ -67,7 +68,7 @@ export async function healthy(address) {
     } catch (error) {
       found = error instanceof Error ? error.message : String(error)
     }
-    await new Promise((resolve) => setTimeout(resolve, 100))
+    await new Promise((resolve) => setTimeout(resolve, 250))
   }
   throw new CommandFailure(`The web server does not answer on ${address}/health (${found}).`)
 }
