@@ -124,7 +124,8 @@ try {
   process.exitCode = sum('failed') === 0 ? 0 : 1
   console.log(`${sum('passed')} passed, ${sum('failed')} failed`)
 } catch (error) {
-  console.error(sentenceFor(error))
-  if (error instanceof CommandFailure) console.error(error.lines.join('\n'))
+  console.error(`The tests could not be run: ${sentenceFor(error)}`)
+  if (error instanceof CommandFailure && error.lines.length > 0) console.error(error.lines.join('\n'))
   process.exitCode = 1
+  console.log('0 passed, 1 failed')
 }
