@@ -96,16 +96,50 @@ export function predictedProfile(
   }).filter(({ pa }) => Number.isFinite(pa))
 }
 
-/** Soak at a temperature that would bring an end of the segment to a target, with the pump it has in service. */
+export interface BakeAnswer {
+  /** Soak that brings the ends to the target; null when none does. */
+  soak: { hours: number; limitedBy: 'water' | 'hydrogen' } | null
+  /** How many times the register's hydrogen was taken to explain the present reading; 1 when the model explains it. */
+  hydrogenTimes: number
+}
+
+/** A reading this much above the model is no longer scatter of gauges. */
+const UNEXPLAINED = 1.3
+
+/**
+ * Soak at a temperature that would bring the ends of the segment to a target, with the pump it has in service. Where a
+ * baked segment reads above its model, hydrogen is scaled to the reading, as if it were all hydrogen; a leak would not
+ * yield to a bake.
+ *
+ * @param crossPa fresh reading at the pump, nitrogen-equivalent; null without one
+ * @returns null when the register lacks what the model needs
+ */
 export function bakeToReach(
   segment: SegmentWithState,
   everPlaced: readonly PlacedPump[],
-  targetPa: number,
-  bakeC: number,
-): { hours: number; limitedBy: 'water' | 'hydrogen' } | null {
+  crossPa: number | null,
+  target: { pa: number; bakeC: number },
+): BakeAnswer | null {
   const own = everPlaced.filter(({ kind }) => kind === 'getter-ion')
   // One pump holds a segment in service; of several placements over the years the last one counts.
   const model = coldModel(segment, (own.length > 0 ? own : everPlaced).slice(-1))
   if (model === null) return null
-  return bakeHoursToReach(model, { targetPa, bakeK: bakeC + 273.15, atM: 0 })
+  const hydrogenTimes = crossPa === null || model.water.state === 'unbaked' ? 1 : excessOver(model, crossPa)
+  const scaled = { ...model, hydrogen: scaleHydrogen(model.hydrogen, hydrogenTimes) }
+  return {
+    soak: bakeHoursToReach(scaled, { targetPa: target.pa, bakeK: target.bakeC + 273.15, atM: 0 }),
+    hydrogenTimes,
+  }
+}
+
+function excessOver(model: SegmentModel, crossPa: number): number {
+  const expected = Math.min(...steadyProfile(model).map(({ n2EquivalentPa }) => n2EquivalentPa))
+  const times = crossPa / expected
+  return times > UNEXPLAINED ? times : 1
+}
+
+function scaleHydrogen(hydrogen: SegmentModel['hydrogen'], times: number): SegmentModel['hydrogen'] {
+  return hydrogen.kind === 'diffusion'
+    ? { ...hydrogen, c0PerM3: hydrogen.c0PerM3 * times }
+    : { ...hydrogen, qPaMS: hydrogen.qPaMS * times }
 }

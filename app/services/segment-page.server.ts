@@ -12,7 +12,7 @@ import { DomainError } from '../domain/errors.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
 import { type Curves, readCurves } from './segment-curves.server.ts'
 import { forecastPumpDown, type PumpDownForecast } from './segment-forecast.server.ts'
-import { bakeToReach, predictedProfile } from './segment-model.server.ts'
+import { type BakeAnswer, bakeToReach, predictedProfile } from './segment-model.server.ts'
 import { readStandings, type StandingSegment } from './standing.server.ts'
 
 /** Temperature at which the page says how long a bake would have to be. */
@@ -31,7 +31,7 @@ export interface SegmentPageData {
   predicted: { offsetM: number; pa: number }[] | null
   curves: Curves
   forecast: PumpDownForecast | null
-  bake: { bakeC: number; targetPa: number; result: ReturnType<typeof bakeToReach> } | null
+  bake: { bakeC: number; targetPa: number; answer: BakeAnswer | null } | null
   entries: Entry[]
   states: StateSpan[]
 }
@@ -80,10 +80,19 @@ export async function readSegmentPage(
     bake:
       target === null
         ? null
-        : { bakeC: BAKE_C, targetPa: target, result: bakeToReach(segment, everPlaced, target, BAKE_C) },
+        : {
+            bakeC: BAKE_C,
+            targetPa: target,
+            answer: bakeToReach(segment, everPlaced, crossOf(own), { pa: target, bakeC: BAKE_C }),
+          },
     entries,
     states,
   }
+}
+
+/** Fresh reading at the cross of a segment in service; null otherwise. */
+function crossOf({ segment, standing: { headline } }: StandingSegment): number | null {
+  return segment.state === 'in-service' && headline?.fresh ? headline.value : null
 }
 
 /** What the page that sets a state needs. @throws DomainError not-found */

@@ -10,13 +10,14 @@ const PATIENCE_HOURS = 24 * 60
 export function BakePanel({ bake, forecast, segment, standing }: SegmentPageProps) {
   // While heat is on, what matters is the bake that runs, not one that could be planned.
   if (bake === null || SEGMENT_STATES[segment.state].hot) return null
+  const { answer } = bake
   return (
     <Panel title={`A bake at ${bake.bakeC} °C`}>
       {forecast !== null && <NeedsBake forecast={forecast} targetPa={bake.targetPa} />}
       {standing.verdict === 'at-target' && (
         <p className="mb-2 text-ink-2">The segment is at its target; no bake is called for.</p>
       )}
-      {bake.result === null ? (
+      {answer?.soak == null ? (
         <p>
           By the model no bake at {bake.bakeC} °C brings the ends to <Pressure pa={bake.targetPa} /> with the
           pump this segment has, or the register lacks what the model needs (pump speed, hydrogen content).
@@ -25,13 +26,19 @@ export function BakePanel({ bake, forecast, segment, standing }: SegmentPageProp
         <Facts
           items={[
             { name: 'Target at the ends', value: <Pressure pa={bake.targetPa} /> },
-            { name: 'Soak needed', value: soakText(bake.result.hours) },
+            { name: 'Soak needed', value: soakText(answer.soak.hours) },
             {
               name: 'What decides it',
-              value: bake.result.limitedBy === 'water' ? 'water on the wall' : 'hydrogen in the steel',
+              value: answer.soak.limitedBy === 'water' ? 'water on the wall' : 'hydrogen in the steel',
             },
           ]}
         />
+      )}
+      {answer !== null && answer.hydrogenTimes > 1 && (
+        <p className="mt-2 text-warn">
+          The cross reads {answer.hydrogenTimes.toFixed(1)} times what the register's hydrogen gives. The soak
+          above takes all of it for hydrogen; a leak would not yield to a bake. Find out which it is first.
+        </p>
       )}
       <p className="mt-2 text-sm text-ink-3">
         Closed forms from the register's steel and pump, cooled to 20 °C; hydrogen in {segment.steel}:{' '}
