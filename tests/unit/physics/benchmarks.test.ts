@@ -1,4 +1,4 @@
-import { describe, expect, test } from 'vitest'
+import { describe, expect, test, vi } from 'vitest'
 import { T20_K } from '#app/physics/constants.ts'
 import { temperatureAt } from '#app/physics/programme.ts'
 import { type GasHistory, runTransport, type TransportRun } from '#app/physics/transport.ts'
@@ -15,6 +15,9 @@ import {
   PLACES_B,
 } from '#tests/fixtures/physics/benchmark-runs.ts'
 import { checkInput, checkValue, checkValues, expectCheck } from '#tests/fixtures/physics/check-values.ts'
+
+// Runs of hundreds of steps share the machine with everything else.
+vi.setConfig({ testTimeout: 60_000 })
 
 const idsOf = (prefix: string): string[] =>
   checkValues.map((entry) => entry.id).filter((id) => id.startsWith(prefix))

@@ -1,5 +1,5 @@
 import fc from 'fast-check'
-import { describe, expect, test } from 'vitest'
+import { describe, expect, test, vi } from 'vitest'
 import { transitionalFlow, transitionalSpecific, transmission } from '#app/physics/conductance.ts'
 import { T20_K } from '#app/physics/constants.ts'
 import type { GasRun } from '#app/physics/gas-balance.ts'
@@ -11,6 +11,9 @@ import { type GasHistory, runTransport } from '#app/physics/transport.ts'
 import { buildMesh } from '#app/physics/tube.ts'
 import { bakedWater, DEFAULT_WATER, waterCoverage } from '#app/physics/water.ts'
 import { steadyPump } from '#tests/fixtures/physics/benchmark-runs.ts'
+
+// Random runs of the solver share the machine with everything else.
+vi.setConfig({ testTimeout: 60_000 })
 
 const number = (min: number, max: number) => fc.double({ min, max, noNaN: true })
 /** Spread evenly over the decades. */
