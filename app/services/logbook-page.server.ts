@@ -5,6 +5,8 @@ import { listSegmentTags } from '../db/queries/segments.server.ts'
 import { ENTRY_KINDS, type EntryKind } from '../domain/logbook.ts'
 
 const PAGE_SIZE = 50
+/** Nobody has leafed this far; a typed number beyond it must not reach the database. */
+const MOST_PAGES = 100_000
 
 export interface LogbookFilter {
   segment: string
@@ -28,7 +30,7 @@ export async function findLogbookPage(db: Db, query: URLSearchParams): Promise<L
     segment: query.get('segment') ?? '',
     kind: (ENTRY_KINDS as readonly string[]).includes(kind) ? (kind as EntryKind) : '',
     words: (query.get('words') ?? '').trim().slice(0, 200),
-    page: Math.max(1, Math.trunc(Number(query.get('page') ?? '1')) || 1),
+    page: Math.min(MOST_PAGES, Math.max(1, Math.trunc(Number(query.get('page') ?? '1')) || 1)),
   }
   const segmentId = filter.segment === '' ? null : await findSegmentId(db, filter.segment)
   const conditions = {
@@ -43,5 +45,16 @@ export async function findLogbookPage(db: Db, query: URLSearchParams): Promise<L
     countEntries(db, conditions),
     listSegmentTags(db),
   ])
-  return { filter: { ...filter, segment: segmentId === null ? '' : filter.segment }, entries, total, pageSize: PAGE_SIZE, segments }
+  return {
+    filter: { ...filter, segment: segmentId === null ? '' : filter.segment },
+    entries,
+    total,
+    pageSize: PAGE_SIZE,
+    segments,
+  }
+}
+
+/** Tags an entry can be written about, in order along the tube. */
+export async function readSegmentChoices(db: Db): Promise<string[]> {
+  return listSegmentTags(db)
 }

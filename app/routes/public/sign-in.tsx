@@ -1,6 +1,6 @@
 import { redirect } from 'react-router'
-import { authenticator } from '#app/auth/sign-in.server.ts'
 import { openSession } from '#app/auth/session.server.ts'
+import { authenticator } from '#app/auth/sign-in.server.ts'
 import { SignInPage } from '#app/components/sign-in-page.tsx'
 import { actorContext } from '#app/context.ts'
 import { getDb } from '#app/db/client.server.ts'
