@@ -179,11 +179,14 @@ export async function endGrant(
   actor: Actor,
   now: Date,
   end: { grantId: number; reason: string },
+  personId: number,
 ): Promise<void> {
   demand(actor, 'people:edit')
   await tx(db, async (inside) => {
     await lockPeople(inside)
     const grant = await grantById(inside, end.grantId)
+    // A form of one person's page takes nothing from another.
+    if (grant.personId !== personId) throw new DomainError('not-found', 'This person has no such grant.')
     if (grantStanding(grant, now) === 'ended') {
       throw new DomainError(
         'conflict',

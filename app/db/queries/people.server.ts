@@ -1,7 +1,7 @@
 import { aliasedTable, and, asc, desc, eq, isNotNull, isNull } from 'drizzle-orm'
 import type { Role } from '../../domain/roles.ts'
 import type { DbOrTx } from '../client.server.ts'
-import { person, roleGrant, session } from '../schema/index.ts'
+import { person, record, roleGrant, session } from '../schema/index.ts'
 
 export interface PersonForSignIn {
   id: number
@@ -160,4 +160,13 @@ export async function updateGrant(
   changes: Partial<Omit<typeof roleGrant.$inferInsert, 'id' | 'personId' | 'role'>>,
 ): Promise<void> {
   await tx.update(roleGrant).set(changes).where(eq(roleGrant.id, grantId))
+}
+
+/** Kinds of thing that the record speaks of, by name. */
+export async function listRecordedKinds(db: DbOrTx): Promise<string[]> {
+  const rows = await db
+    .selectDistinct({ kind: record.subjectKind })
+    .from(record)
+    .orderBy(asc(record.subjectKind))
+  return rows.map(({ kind }) => kind)
 }
