@@ -87,11 +87,33 @@ export function extremesOf(x: readonly number[], { y }: Column) {
   return { first, last, least, greatest }
 }
 
-/** Rows for a table of at most `most` places, evenly spread, the last place always among them. */
+/**
+ * What a curve says at a place that may be another curve's: its own cell nearest to it, between its ends. A gap stays a
+ * gap, and before its first and after its last place a curve says nothing.
+ */
+export function cellNear(x: readonly number[], { y }: Column, at: number): Cell {
+  const here = x[at]
+  if (y[at] !== undefined || here === undefined) return y[at]
+  let before = at - 1
+  while (before >= 0 && y[before] === undefined) before -= 1
+  let after = at + 1
+  while (after < y.length && y[after] === undefined) after += 1
+  const [left, right] = [x[before], x[after]]
+  if (left === undefined || right === undefined) return undefined
+  return here - left <= right - here ? y[before] : y[after]
+}
+
+/**
+ * Rows for a table of at most `most` places, evenly spread, the last place always among them. Rows stand where something
+ * was measured, and go on where only a curve does.
+ */
 export function tableRows({ x, columns }: Aligned, most: number): { x: number; values: Cell[] }[] {
-  const used = x.flatMap((place, at) =>
-    columns.some(({ y }) => y[at] !== undefined) ? [{ x: place, values: columns.map(({ y }) => y[at]) }] : [],
-  )
+  const measured = columns.filter(({ role }) => role === 'measured')
+  const ends = measured.map(({ y }) => y.findLastIndex((cell) => cell !== undefined))
+  const end = Math.max(-1, ...ends)
+  const used = [...x.keys()].filter((at) => at > end || measured.some(({ y }) => y[at] !== undefined))
   const every = Math.max(1, Math.ceil(used.length / most))
-  return used.filter((_, at) => (used.length - 1 - at) % every === 0)
+  return used
+    .filter((_, row) => (used.length - 1 - row) % every === 0)
+    .map((at) => ({ x: x[at] ?? 0, values: columns.map((column) => cellNear(x, column, at)) }))
 }

@@ -1,14 +1,19 @@
-import type { Column } from './chart-data.ts'
+import { type Aligned, cellNear } from './chart-data.ts'
 import { Value } from './chart-words.tsx'
 import { dashOf, ROLE_LOOKS } from './uplot.tsx'
 
 /** Which line is which, with the value of each at the read-out, or its last one. */
 export function ChartKeys({ columns, cursor }: { columns: readonly Column[]; cursor: number | null }) {
+  const { columns } = aligned
   return (
     <ul className="flex flex-wrap gap-x-5 gap-y-1 text-sm text-ink-2">
-      {columns.map(({ label, role, y, band }, at) => {
+      {columns.map((column, at) => {
+        const { label, role, y, band } = column
         const { color, width } = ROLE_LOOKS[role]
-        const shown = cursor === null ? y.findLast((cell) => cell !== null && cell !== undefined) : y[cursor]
+        const shown =
+          cursor === null
+            ? y.findLast((cell) => cell !== null && cell !== undefined)
+            : cellNear(aligned.x, column, cursor)
         return (
           <li key={label} className="flex items-center gap-1.5">
             <svg viewBox="0 0 26 12" width="26" height="12" aria-hidden="true" className="shrink-0">

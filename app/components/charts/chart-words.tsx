@@ -85,8 +85,8 @@ export function ChartTable({
 }: Texts & { aligned: Aligned; caption: string; placeHead: string; csvHref: string | undefined }) {
   const rows = tableRows(aligned, TABLE_ROWS)
   return (
-    <div className="mt-2 flex flex-wrap items-start justify-between gap-2 print:hidden">
-      <details className="min-w-0 flex-1">
+    <div className="mt-2 print:hidden">
+      <details className="mb-2">
         <summary className="py-1.5 text-sm pointer-coarse:py-3">The figures ({rows.length} rows)</summary>
         {rows.length < aligned.x.length && (
           <p className="text-sm text-ink-2">

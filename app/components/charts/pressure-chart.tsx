@@ -8,7 +8,7 @@ import { useSite } from '#app/hooks/use-site.ts'
 import { fromPascal, toPascal } from '#app/physics/units.ts'
 import { pressureWords } from '../ui/format-pressure.ts'
 import { siteTimeText } from '../ui/site-time.ts'
-import { alignSeries, axisValuesOf, type Cell, type ChartSeries, extremesOf } from './chart-data.ts'
+import { alignSeries, axisValuesOf, type Cell, type ChartSeries, cellNear, extremesOf } from './chart-data.ts'
 import { ChartKeys } from './chart-keys.tsx'
 import { ChartMarks, ChartTable, ChartWords } from './chart-words.tsx'
 import { decadesAround, decadeTicks } from './scales.ts'
@@ -86,7 +86,7 @@ export function PressureChart({
     <figure>
       <figcaption className="sr-only">{caption}</figcaption>
       <div className="mb-1 flex flex-wrap items-center justify-between gap-x-4 gap-y-2">
-        <ChartKeys columns={aligned.columns} cursor={cursor} />
+        <ChartKeys aligned={aligned} cursor={cursor} />
         {kind === 'hours' && <TimeAxisSwitch log={logTime} onChange={setLogTime} />}
       </div>
       <div className="min-h-85">
@@ -114,7 +114,7 @@ export function PressureChart({
         words={(at) =>
           [
             placeText(aligned.x[at] ?? 0),
-            ...aligned.columns.map(({ label, y }) => `${label} ${spoken(y[at])}`),
+            ...aligned.columns.map((column) => `${column.label} ${spoken(cellNear(aligned.x, column, at))}`),
           ].join('; ')
         }
         place={cursor === null ? null : placeText(aligned.x[cursor] ?? 0)}

@@ -3,6 +3,7 @@ import {
   alignSeries,
   axisValuesOf,
   type ChartSeries,
+  cellNear,
   extremesOf,
   tableRows,
 } from '#app/components/charts/chart-data.ts'
@@ -64,4 +65,32 @@ test('a table is thinned evenly and ends with the last place', () => {
   expect(rows.length).toBeLessThanOrEqual(30)
   expect(rows.at(-1)).toEqual({ x: 100, values: [100] })
   expect(new Set(rows.slice(1).map((row, at) => row.x - (rows[at]?.x ?? 0)))).toEqual(new Set([4]))
+})
+
+describe('a curve at the place of another', () => {
+  const { x, columns } = alignSeries(
+    [0, 10, 20],
+    [
+      { ...measured, y: [4e-5, null, 2e-5] },
+      { ...forecast, x: [-5, 4, 6, 11, 25], y: [1, 1, 1, 1, 1] },
+    ],
+    false,
+  )
+  const [own] = columns
+  if (own === undefined) throw new Error('no column')
+
+  test.each([
+    [4, 4e-5],
+    [6, null],
+    [11, null],
+    [20, 2e-5],
+    [-5, undefined],
+    [25, undefined],
+  ])('%d says %s', (place, cell) => {
+    expect(cellNear(x, own, x.indexOf(place))).toBe(cell)
+  })
+
+  test('has a table with a row for every measured place and for what comes after', () => {
+    expect(tableRows({ x, columns, leftOut: 0 }, 30).map((row) => row.x)).toEqual([0, 10, 20, 25])
+  })
 })
