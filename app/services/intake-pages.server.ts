@@ -11,6 +11,7 @@ import {
   listImports,
   listImportsSince,
   listSources,
+  listSourcesHeardOf,
   readOriginal,
 } from '../db/queries/imports.server.ts'
 import { type Actor, demand, may } from '../domain/actor.ts'
@@ -30,7 +31,8 @@ export interface NightRow {
   /** Day on which the night began, YYYY-MM-DD. */
   night: string
   dueAt: Date
-  state: 'taken-in' | 'waiting' | 'expected' | 'missing'
+  /** `silent`: no file of this source has ever come. */
+  state: 'taken-in' | 'waiting' | 'expected' | 'missing' | 'silent'
   /** The file that was taken in or waits, and what it brought. */
   file: { importId: number; fileName: string; by: string; at: Date } | null
 }
@@ -46,17 +48,19 @@ export interface IntakePageData {
 export async function readIntakePage(db: Db, actor: Actor, now: Date): Promise<IntakePageData> {
   demand(actor, 'facility:view')
   const since = new Date(now.getTime() - (NIGHTS + 2) * DAY_MS)
-  const [site, sources, recent, files] = await Promise.all([
+  const [site, sources, recent, files, heardOf] = await Promise.all([
     getSite(db),
     listSources(db),
     listImportsSince(db, since),
     listImports(db, LISTED),
+    listSourcesHeardOf(db),
   ])
   const nights: NightRow[] = []
   for (let back = 0; back < NIGHTS; back += 1) {
     for (const source of sources) {
       if (source.dueAt === '') continue
-      nights.push(nightOf(source, recent, new Date(now.getTime() - back * DAY_MS), back, site.timeZone))
+      const night = nightOf(source, recent, new Date(now.getTime() - back * DAY_MS), back, site.timeZone)
+      nights.push(heardOf.has(source.id) ? night : { ...night, state: 'silent' })
     }
   }
   return {

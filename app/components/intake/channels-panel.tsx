@@ -7,7 +7,6 @@ import { Sparkline } from '../charts/sparkline.tsx'
 import { type Column, DataTable } from '../ui/data-table.tsx'
 import { Panel } from '../ui/panel.tsx'
 import { Pressure } from '../ui/pressure.tsx'
-import { countText } from './file-words.ts'
 import { qualityWords } from './lines-panel.tsx'
 
 interface Row extends ChannelSummary {
@@ -38,7 +37,6 @@ const COLUMNS: Column<Row>[] = [
         </>
       ),
   },
-  { key: 'count', head: 'Readings', align: 'right', cell: ({ count }) => countText(count) },
   { key: 'first', head: 'First as written', align: 'right', cell: ({ firstText }) => firstText || '–' },
   { key: 'last', head: 'Last as written', align: 'right', cell: ({ lastText }) => lastText || '–' },
   { key: 'lastValue', head: 'Last', align: 'right', cell: (row) => <Value row={row} value={row.last} /> },
@@ -49,7 +47,7 @@ const COLUMNS: Column<Row>[] = [
     head: 'Course',
     cell: ({ name, sketch }) => <Sparkline label={name} values={courseOf(sketch)} />,
   },
-  { key: 'quality', head: 'Quality', cell: ({ byQuality }) => qualityWords(byQuality) },
+  { key: 'quality', head: 'Readings', cell: ({ byQuality }) => qualityWords(byQuality) },
 ]
 
 export function ChannelsPanel({

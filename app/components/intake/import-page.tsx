@@ -42,7 +42,7 @@ export function ImportPage({
           <>
             {file.attachmentId !== null && (
               <ButtonLink to={`/intake/${file.id}/original`} reloadDocument>
-                Original
+                Original file
               </ButtonLink>
             )}
             {waits && <TakeIn readOut={readOut} />}
@@ -65,16 +65,16 @@ export function ImportPage({
           <div className="grid gap-x-4.5 xl:grid-cols-[minmax(0,1fr)_22rem]">
             <div className="min-w-0">
               <LinesPanel readOut={readOut} importId={file.id} heldBefore={heldBefore} />
-              {readOut.channels.length > 0 && <ChannelsPanel readOut={readOut} targets={targets} />}
-              <RejectedPanel readOut={readOut} importId={file.id} />
-            </div>
-            <div className="min-w-0">
               <RemarksPanel readOut={readOut} />
-              <FilePanel file={file} readOut={readOut} />
               <NotesPanel readOut={readOut} />
               {waits && <DiscardPanel failure={failure} />}
             </div>
+            <div className="min-w-0">
+              <FilePanel file={file} readOut={readOut} />
+            </div>
           </div>
+          <RejectedPanel readOut={readOut} importId={file.id} />
+          {readOut.channels.length > 0 && <ChannelsPanel readOut={readOut} targets={targets} />}
         </>
       )}
     </>
@@ -165,8 +165,8 @@ function FilePanel({ file, readOut }: { file: ImportPageData['file']; readOut: R
             value: dialect.decimalMark === null ? '–' : MARK_WORDS[dialect.decimalMark],
           },
           { name: 'Zone of its times', value: dialect.zone ?? '–' },
-          { name: 'First reading', value: firstMs === null ? '–' : <Instant at={new Date(firstMs)} /> },
-          { name: 'Last reading', value: lastMs === null ? '–' : <Instant at={new Date(lastMs)} /> },
+          { name: 'First reading', value: <BothClocks ms={firstMs} /> },
+          { name: 'Last reading', value: <BothClocks ms={lastMs} /> },
           { name: 'Period', value: readOut.periodSeconds === null ? '–' : `${readOut.periodSeconds} s` },
           {
             name: 'Layout',
@@ -185,5 +185,17 @@ function FilePanel({ file, readOut }: { file: ImportPageData['file']; readOut: R
         SHA-256 <span className="break-all">{file.sha256}</span>
       </p>
     </Panel>
+  )
+}
+
+/** Site time, and UTC beside it: the place where a wrong zone shows. */
+function BothClocks({ ms }: { ms: number | null }) {
+  if (ms === null) return '–'
+  const at = new Date(ms)
+  return (
+    <>
+      <Instant at={at} />{' '}
+      <span className="font-normal whitespace-nowrap text-ink-3">{at.toISOString().slice(11, 16)} UTC</span>
+    </>
   )
 }

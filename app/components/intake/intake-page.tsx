@@ -105,8 +105,8 @@ export function IntakePage({
     <>
       <PageHead title="Log intake">
         {owed === 0
-          ? 'Every file of the last three nights is here'
-          : `${owed} files of the last three nights are not here yet`}
+          ? 'Every file that the last three nights owe is here'
+          : `${owed} ${owed === 1 ? 'file' : 'files'} of the last three nights ${owed === 1 ? 'is' : 'are'} not here yet`}
         {waiting > 0 && ` · ${waiting} ${waiting === 1 ? 'waits' : 'wait'} to be looked through`}
       </PageHead>
       {mayTakeIn && (

@@ -24,6 +24,7 @@ export const NIGHT_WORDS: Record<NightRow['state'], { word: string; tone: TagTon
   waiting: { word: 'read, not taken in', tone: 'warn' },
   expected: { word: 'not due yet', tone: 'plain' },
   missing: { word: 'missing', tone: 'bad' },
+  silent: { word: 'no file ever came', tone: 'plain' },
 }
 
 export const TONE_OF_STATE: Record<ImportState, TagTone> = {

@@ -219,6 +219,12 @@ export function listImportsSince(db: DbOrTx, since: Date): Promise<ImportListRow
     .orderBy(desc(importFile.id))
 }
 
+/** Sources that have sent a file at least once. */
+export async function listSourcesHeardOf(db: DbOrTx): Promise<Set<number>> {
+  const rows = await db.selectDistinct({ id: importFile.sourceId }).from(importFile)
+  return new Set(rows.flatMap(({ id }) => (id === null ? [] : [id])))
+}
+
 /** The newest import of these bytes in one of the states. */
 export async function findSameBytes(
   db: DbOrTx,
