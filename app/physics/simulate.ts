@@ -4,7 +4,7 @@
  * answer the everyday questions.
  */
 import { requireWithin } from './argument-checks.ts'
-import type { GasRun, PointPump, WallSource } from './gas-balance.ts'
+import type { GasRun, PointPump, WallSource } from './gas-run.ts'
 import { nitrogenEquivalent } from './gauges.ts'
 import { pumpSpeed, type SegmentModel } from './predict.ts'
 import { type TemperatureCorners, temperatureAt, temperatureProgramme } from './programme.ts'

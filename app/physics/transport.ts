@@ -6,7 +6,8 @@
  */
 import { requireFinite, requirePositive, requireWithin } from './argument-checks.ts'
 import { PhysicsError } from './errors.ts'
-import { type GasRun, gasBalance, type ThermalState, type ValveMotion } from './gas-balance.ts'
+import { gasBalance } from './gas-balance.ts'
+import type { GasRun, ThermalState, ValveMotion } from './gas-run.ts'
 import { factorTree, solveTree, treeMatrix } from './tree-matrix.ts'
 import type { TubeMesh } from './tube.ts'
 

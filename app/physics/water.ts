@@ -84,13 +84,13 @@ export function waterCoverage(
   }
 }
 
-/** ln(1 + e^u) without overflow. */
-export function softplus(u: number): number {
+// ln(1 + e^u) without overflow.
+function softplus(u: number): number {
   return u > 0 ? u + Math.log1p(Math.exp(-u)) : Math.log1p(Math.exp(u))
 }
 
-/** 1/(1 + e^-u) without overflow. */
-export function logistic(u: number): number {
+// 1/(1 + e^-u) without overflow.
+function logistic(u: number): number {
   if (u >= 0) return 1 / (1 + Math.exp(-u))
   const e = Math.exp(u)
   return e / (1 + e)

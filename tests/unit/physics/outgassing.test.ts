@@ -13,7 +13,13 @@ import {
   TYPE_316_DIFFUSIVITY,
   transformedTime,
 } from '#app/physics/hydrogen.ts'
-import { PUBLISHED_RATES, powerLawRate, powerLawReleased, UNBAKED_STEEL } from '#app/physics/outgassing.ts'
+import {
+  FRESH_FLUOROELASTOMER,
+  PUBLISHED_RATES,
+  powerLawRate,
+  powerLawReleased,
+  UNBAKED_STEEL,
+} from '#app/physics/outgassing.ts'
 import {
   bakedWater,
   DEFAULT_WATER,
@@ -43,6 +49,11 @@ describe('power law', () => {
   test('a lead time keeps the rate finite at the start', () => {
     expect(powerLawRate(UNBAKED_STEEL, 0, 60)).toBeCloseTo(3e-6 * 60, 12)
     expect(() => powerLawRate(UNBAKED_STEEL, 0)).toThrow('seconds is 0')
+  })
+  test('a fresh elastomer falls slower than metal', () => {
+    expectCheck('og.fkm_1h', powerLawRate(FRESH_FLUOROELASTOMER, HOUR))
+    const fall = powerLawRate(FRESH_FLUOROELASTOMER, HOUR) / powerLawRate(FRESH_FLUOROELASTOMER, 10 * HOUR)
+    expect(fall).toBeCloseTo(10 ** 0.8, 10)
   })
   test.each([
     ['og.ss304_250C', 'steel-250c-bake'],

@@ -1,7 +1,7 @@
 import { describe, expect, test } from 'vitest'
 import { crossSection, molecularSpecific } from '#app/physics/conductance.ts'
 import { BOLTZMANN, T20_K } from '#app/physics/constants.ts'
-import type { GasRun } from '#app/physics/gas-balance.ts'
+import type { GasRun } from '#app/physics/gas-run.ts'
 import { meanSpeed } from '#app/physics/gases.ts'
 import { temperatureProgramme } from '#app/physics/programme.ts'
 import { linePositions, steadyPressures } from '#app/physics/steady.ts'
