@@ -3,7 +3,7 @@ import { Value } from './chart-words.tsx'
 import { dashOf, ROLE_LOOKS } from './uplot.tsx'
 
 /** Which line is which, with the value of each at the read-out, or its last one. */
-export function ChartKeys({ columns, cursor }: { columns: readonly Column[]; cursor: number | null }) {
+export function ChartKeys({ aligned, cursor }: { aligned: Aligned; cursor: number | null }) {
   const { columns } = aligned
   return (
     <ul className="flex flex-wrap gap-x-5 gap-y-1 text-sm text-ink-2">
