@@ -18,6 +18,7 @@ const COUNTS = /\.(ts|tsx|css|svg|json|ico|png|webmanifest|woff2)$/
 
 /**
  * One hash over the names and contents of all sources.
+ * @public asked for by name in a test
  * @param {string} root
  */
 export function hashSources(root) {

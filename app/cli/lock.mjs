@@ -13,6 +13,7 @@ const LEFTOVERS_GO_WITHIN_MS = 8_000
 
 /**
  * When a process was born, in clock ticks since the machine started; undefined when there is no such process.
+ * @public asked for by name in a test
  * @param {number} pid
  */
 export function birthOf(pid) {

@@ -7,6 +7,7 @@ import { run } from './processes.mjs'
 /**
  * Whether what npm installed is what the lock file names: every locked package there (optional ones for other
  * systems aside) and of the locked version.
+ * @public asked for by name in a test
  * @param {{ packages: Record<string, { version?: string, optional?: boolean, devOptional?: boolean, peer?: boolean }> }} lock package-lock.json
  * @param {{ packages: Record<string, { version?: string }> }} installed node_modules/.package-lock.json
  */

@@ -91,7 +91,7 @@ export async function openPage(
 }
 
 /** Waits until the page's code has taken over what the server sent. */
-export async function hydrated(page: Page): Promise<void> {
+async function hydrated(page: Page): Promise<void> {
   await page.locator('html[data-hydrated]').waitFor({ state: 'attached' })
 }
 

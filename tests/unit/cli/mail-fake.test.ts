@@ -4,6 +4,7 @@ import { join } from 'node:path'
 import { createTransport } from 'nodemailer'
 import { afterEach, expect, test } from 'vitest'
 import { type MailFake, startMailFake } from '#app/mail/fake.ts'
+import { readMail, waitForMail } from '#tests/support/mail.ts'
 
 const fakes: MailFake[] = []
 const folders: string[] = []
@@ -17,10 +18,6 @@ async function started(options: Parameters<typeof startMailFake>[0] = {}): Promi
   const fake = await startMailFake(options)
   fakes.push(fake)
   return fake
-}
-
-async function messages(fake: MailFake): Promise<{ id: number; subject: string }[]> {
-  return (await (await fetch(`${fake.httpUrl}/messages`)).json()) as { id: number; subject: string }[]
 }
 
 async function mail(fake: MailFake, subject: string): Promise<void> {
@@ -37,7 +34,7 @@ async function mail(fake: MailFake, subject: string): Promise<void> {
 test('a message sent by SMTP can be read over HTTP as it was written', async () => {
   const fake = await started()
   await mail(fake, 'SG-11 über dem Ziel')
-  expect(await messages(fake)).toMatchObject([
+  expect(await readMail(fake.httpUrl)).toMatchObject([
     {
       id: 1,
       from: '"Ebbline" <log@qfl.example>',
@@ -59,12 +56,12 @@ test('messages outlive the process in their folder, and the oldest are forgotten
   for (const subject of ['one', 'two', 'three']) await mail(first, subject)
   await first.stop()
   const second = await started({ folder, keep: 2 })
-  expect((await messages(second)).map(({ id, subject }) => [id, subject])).toEqual([
+  expect((await readMail(second.httpUrl)).map(({ id, subject }) => [id, subject])).toEqual([
     [3, 'three'],
     [2, 'two'],
   ])
   await mail(second, 'four')
-  expect((await messages(second)).map(({ id }) => id)).toEqual([4, 3])
+  expect((await readMail(second.httpUrl)).map(({ id }) => id)).toEqual([4, 3])
   expect(readdirSync(folder).sort()).toEqual(['3.eml', '4.eml'])
 })
 
@@ -72,7 +69,7 @@ test('forgetting removes all, and unknown addresses are 404', async () => {
   const fake = await started()
   await mail(fake, 'one')
   await fetch(`${fake.httpUrl}/messages`, { method: 'DELETE' })
-  expect(await messages(fake)).toEqual([])
+  expect(await readMail(fake.httpUrl)).toEqual([])
   expect((await fetch(`${fake.httpUrl}/messages/1.eml`)).status).toBe(404)
 })
 
@@ -80,4 +77,14 @@ test('a taken port is told to the caller', async () => {
   const fake = await started()
   const smtpPort = Number(new URL(fake.smtpUrl).port)
   await expect(startMailFake({ smtpPort })).rejects.toMatchObject({ code: 'EADDRINUSE' })
+})
+
+test('waiting for a mail finds the one that comes later, and says what came when none does', async () => {
+  const fake = await started()
+  const waiting = waitForMail(fake.httpUrl, { to: 'bram@qfl.example', subject: /SG-11/ })
+  await mail(fake, 'SG-11 above target')
+  expect((await waiting).id).toBe(1)
+  await expect(waitForMail(fake.httpUrl, { to: 'bram@qfl.example', subject: /SG-12/ }, 50)).rejects.toThrow(
+    'SG-11 above target',
+  )
 })
