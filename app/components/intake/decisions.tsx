@@ -16,7 +16,11 @@ export function TakeIn({ readOut }: { readOut: ReadOut }) {
     <Form method="post">
       <input type="hidden" name="intent" value="accept" />
       <Button kind="primary" disabled={busy || readOut.state !== 'readable'}>
-        {busy ? 'Taking in' : `Take in ${countText(readOut.readings.total)} readings`}
+        {busy
+          ? 'Taking in'
+          : readOut.state === 'readable'
+            ? `Take in ${countText(readOut.readings.total)} readings`
+            : 'Take in'}
       </Button>
     </Form>
   )
@@ -26,7 +30,7 @@ export function DiscardPanel({ failure }: { failure: ActionFailure | undefined }
   return (
     <Panel title="Discard this file" id="discard">
       <p className="mb-3 text-ink-2">Its bytes and this report stay; none of its readings is stored.</p>
-      <Form method="post">
+      <Form method="post" className="max-w-xl">
         <input type="hidden" name="intent" value="discard" />
         <TextField
           name="reason"

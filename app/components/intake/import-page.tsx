@@ -74,7 +74,7 @@ export function ImportPage({
             </div>
           </div>
           <RejectedPanel readOut={readOut} importId={file.id} />
-          {readOut.channels.length > 0 && <ChannelsPanel readOut={readOut} targets={targets} />}
+          {readOut.readings.total > 0 && <ChannelsPanel readOut={readOut} targets={targets} />}
         </>
       )}
     </>

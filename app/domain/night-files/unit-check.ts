@@ -3,6 +3,7 @@ import type { Block } from './block.ts'
 import type { Dialect } from './dialect.ts'
 import { NumberReader } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
+import { powerText } from './text.ts'
 import type { Refusal } from './types.ts'
 import { readUnit, toSi, type Unit, unitOf } from './units.ts'
 
@@ -96,7 +97,7 @@ export function checkUnit(
             samples.map(({ line, text }) => ({
               line,
               text,
-              meaning: `${toSi(numbers.read(text), unit).toPrecision(3)} Pa`,
+              meaning: `${powerText(toSi(numbers.read(text), unit))} Pa`,
             })),
           ),
         ),

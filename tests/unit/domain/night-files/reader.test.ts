@@ -81,6 +81,12 @@ describe('the western night file', () => {
       line: 2,
       choices: [{ value: 'Torr' }, { value: 'mbar' }],
     })
+    // 7.0 × 10⁻¹⁰ Torr, at 101325/760 Pa a Torr, is 9.33 × 10⁻⁸ Pa.
+    expect(out.questions[0]?.choices[0]?.candidates[0]).toEqual({
+      line: 3,
+      text: '7,0E-10',
+      meaning: '9.33 × 10⁻⁸ Pa',
+    })
     expect(out.lines.total).toBe(countLines(text))
     const answered = await readFlat(text, NL_W, { answers: [{ id: 'unit', choice: 'mbar' }] })
     expect(answered.out.state).toBe('readable')
