@@ -4,6 +4,9 @@ import type { FieldErrors } from './errors.ts'
 export const IMPORT_STATES = ['receiving', 'read', 'refused', 'accepted', 'discarded', 'withdrawn'] as const
 export type ImportState = (typeof IMPORT_STATES)[number]
 
+/** How an import came: as a file, or as a post of live readings that nobody has to look at. */
+export const IMPORT_ARRIVALS = ['file', 'post'] as const
+
 export const IMPORT_STATE_LABELS: Record<ImportState, string> = {
   receiving: 'Being received',
   read: 'Read, not yet taken in',

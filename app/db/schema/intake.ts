@@ -1,6 +1,6 @@
 import { bigint, index, int, mysqlTable, uniqueIndex, varchar } from 'drizzle-orm/mysql-core'
 import { z } from 'zod'
-import { IMPORT_STATES } from '../../domain/imports.ts'
+import { IMPORT_ARRIVALS, IMPORT_STATES } from '../../domain/imports.ts'
 import { id, json, ref, utc } from '../columns.ts'
 import { person } from './people.ts'
 import { source } from './register.ts'
@@ -12,6 +12,8 @@ export const importFile = mysqlTable(
   {
     id: id(),
     state: varchar('state', { length: 16, enum: IMPORT_STATES }).notNull(),
+    /** A file that somebody sent, or a post of a logger's live readings. */
+    arrival: varchar('arrival', { length: 8, enum: IMPORT_ARRIVALS }).notNull().default('file'),
     sourceId: ref('source_id').references(() => source.id),
     fileName: varchar('file_name', { length: 255 }).notNull(),
     byteSize: bigint('byte_size', { mode: 'number', unsigned: true }).notNull(),
