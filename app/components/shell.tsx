@@ -2,6 +2,7 @@
 import { Form, Link, useLocation } from 'react-router'
 import type { PressureUnit } from '#app/context.ts'
 import { ROLE_LABELS, type Role } from '#app/domain/roles.ts'
+import { usePlainCopy } from '#app/hooks/use-plain-copy.ts'
 import { SiteProvider } from '#app/hooks/use-site.ts'
 import { BrandMark } from './ui/brand-mark.tsx'
 import { Menu } from './ui/menu.tsx'
@@ -48,6 +49,7 @@ function isHere(place: Place, pathname: string): boolean {
 }
 
 export function Shell({ person, site, clock, unit, places, mayAdvanceClock, notice, children }: ShellProps) {
+  usePlainCopy()
   return (
     <SiteProvider value={{ zone: site.zone, now: clock.at, unit }}>
       <a
