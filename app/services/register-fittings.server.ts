@@ -4,6 +4,7 @@ import {
   type FittingRow,
   insertFitting,
   listFittings,
+  listMaps,
   lockInstrument,
   replaceFittings,
 } from '../db/queries/register-maps.server.ts'
@@ -14,7 +15,8 @@ import { clip, nextChange, overlaps, type Span, writeOver } from '../domain/date
 import { DomainError } from '../domain/errors.ts'
 import type { FittingForm } from '../domain/schemas/register-dated.ts'
 import { writeRecord } from './record.server.ts'
-import { fieldFault, utcText } from './register-values.server.ts'
+import { fieldFault, stretchOf, utcText } from './register-values.server.ts'
+import { markOutOfDate } from './revisions.server.ts'
 
 /**
  * Puts an instrument at a position from an instant on (until the given end, or else until the next change recorded
@@ -72,6 +74,13 @@ export async function fitInstrument(
         endsAt: window.endsAt,
       })
     }
+    // What rests on the channels that belong to this position was computed with the former factor.
+    const maps = clip(await listMaps(inside, { positionId: position.id }), window)
+    await markOutOfDate(inside, {
+      stretches: maps.map((part) => stretchOf(part.of.channelId, part)),
+      now,
+      reason: `The instrument at ${position.tag} was changed from ${utcText(form.startsAt)}: ${form.reason}`,
+    })
     await writeRecord(inside, {
       at: now,
       actor,

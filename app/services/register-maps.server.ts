@@ -19,7 +19,8 @@ import { clip, nextChange, overlaps, type Span, writeOver } from '../domain/date
 import { DomainError } from '../domain/errors.ts'
 import type { ChannelMapForm } from '../domain/schemas/register-dated.ts'
 import { writeRecord } from './record.server.ts'
-import { fieldFault, utcText } from './register-values.server.ts'
+import { fieldFault, stretchOf, utcText } from './register-values.server.ts'
+import { markOutOfDate } from './revisions.server.ts'
 
 /** What a map said over a window, as it goes on record. */
 interface MapLine {
@@ -65,6 +66,7 @@ export async function mapChannel(
     }
     const rival = positionId === null ? null : rivalOf(maps, own, positionId, window, form.other)
     const writer = { inside, actor, now, reason: form.reason }
+    const touched = [stretchOf(own.id, window)]
     const change = { before: before.map((part) => lineOf(part.of, part)), after: [] as MapLine[] }
 
     await clear(writer, ownMaps, window)
@@ -85,6 +87,7 @@ export async function mapChannel(
       change.before.push(...taken.map((part) => lineOf(part.of, part)))
       // Only the time in which the two met changes hands.
       for (const part of taken) {
+        touched.push(stretchOf(rival.channelId, part))
         const others = rivalMaps.filter((row) => row.id === part.of.id)
         await clear(writer, others, part)
         const given = form.other === 'exchange' ? clip(ownMaps, part) : []
@@ -94,6 +97,11 @@ export async function mapChannel(
           change.after.push({ channel: rival.channel, position: null, from: part.startsAt, to: part.endsAt })
       }
     }
+    await markOutOfDate(inside, {
+      stretches: touched,
+      now,
+      reason: `The map of ${own.name} was changed from ${utcText(form.startsAt)}: ${form.reason}`,
+    })
     await writeRecord(inside, {
       at: now,
       actor,

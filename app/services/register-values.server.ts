@@ -1,5 +1,7 @@
 /** Between a row of the register and the values of its form: segments by tag, speeds by gas, everything else as it is. */
+import type { Stretch } from '../db/queries/derived.server.ts'
 import type { RegisterRow, SegmentPlace } from '../db/queries/register-rows.server.ts'
+import type { Span } from '../domain/dated-spans.ts'
 import { DomainError, type FieldErrors } from '../domain/errors.ts'
 import type { PumpSpeeds } from '../domain/register.ts'
 import { type EditedKind, KIND_FACTS } from '../domain/schemas/register.ts'
@@ -84,4 +86,12 @@ export function differences(before: Values, after: Values): { before: Values; af
 /** An instant inside a sentence. Services know no site zone, so it is given in UTC and says so. */
 export function utcText(at: Date): string {
   return `${at.toISOString().slice(0, 16).replace('T', ' ')} UTC`
+}
+
+/** The last instant that the database can hold: the end of what has none. */
+const LAST = new Date('9999-12-31T23:59:59.999Z')
+
+/** The time of a channel over which something changed, for marking what rests on it. */
+export function stretchOf(channelId: number, span: Span): Stretch {
+  return { channelId, from: span.startsAt, to: span.endsAt ?? LAST }
 }

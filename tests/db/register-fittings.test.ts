@@ -7,9 +7,17 @@ import { spanAt } from '#app/domain/dated-spans.ts'
 import type { DomainError } from '#app/domain/errors.ts'
 import type { FittingForm } from '#app/domain/schemas/register-dated.ts'
 import { fitInstrument } from '#app/services/register-fittings.server.ts'
+import { beginDerived, listOutOfDate } from '#app/services/revisions.server.ts'
 import { MORNING, after as shift } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
-import { createFitting, createInstrument, createPosition, createUser } from '#tests/support/factories.ts'
+import {
+  createChannel,
+  createFitting,
+  createInstrument,
+  createPosition,
+  createSource,
+  createUser,
+} from '#tests/support/factories.ts'
 
 const db = freshDatabase()
 const other = secondConnection()
@@ -75,6 +83,14 @@ describe('exchanging an instrument', () => {
       before: [{ instrument: 'Q-7741', factor: 1.08 }],
       after: [{ instrument: 'Q-8120', factor: 0.97 }],
     })
+  })
+
+  it('marks what rests on the channels of the position since then as out of date', async () => {
+    const { id } = await createChannel(db, { sourceId: (await createSource(db)).id, positionId })
+    const basis = [{ channelId: id, from: MORNING, to: shift(EXCHANGED, 60) }]
+    await beginDerived(db, { kind: 'curve', subjectId: 'SG-14', madeAt: MORNING, basis })
+    await fitInstrument(db, bram, EXCHANGED, 'HC-14A', await form({}))
+    expect((await listOutOfDate(db)).map(({ subjectId }) => subjectId)).toEqual(['SG-14'])
   })
 
   it('takes an instrument out, so that it can sit elsewhere', async () => {

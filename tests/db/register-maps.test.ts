@@ -6,6 +6,7 @@ import { overlaps, spanAt } from '#app/domain/dated-spans.ts'
 import type { DomainError } from '#app/domain/errors.ts'
 import type { ChannelMapForm } from '#app/domain/schemas/register-dated.ts'
 import { mapChannel } from '#app/services/register-maps.server.ts'
+import { beginDerived, listOutOfDate } from '#app/services/revisions.server.ts'
 import { MORNING, after as shift } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
 import { createChannel, createPosition, createSource, createUser } from '#tests/support/factories.ts'
@@ -102,6 +103,33 @@ describe('mapping a channel', () => {
       { channel: 'HC-03B', position: 'HC-04A' },
       { channel: 'HC-04A', position: 'HC-03B' },
     ])
+  })
+
+  it('marks what rests on either channel since then as out of date, and nothing older', async () => {
+    const before = shift(CROSSED, -7200)
+    const basis = (channelId: number, from: Date, to: Date) => ({
+      madeAt: MORNING,
+      basis: [{ channelId, from, to }],
+    })
+    await beginDerived(db, { kind: 'curve', subjectId: 'own', ...basis(channels['HC-03B'], before, MORNING) })
+    await beginDerived(db, {
+      kind: 'curve',
+      subjectId: 'rival',
+      ...basis(channels['HC-04A'], CROSSED, MORNING),
+    })
+    await beginDerived(db, {
+      kind: 'curve',
+      subjectId: 'older',
+      ...basis(channels['HC-03B'], before, shift(CROSSED, -1)),
+    })
+    await mapChannel(
+      db,
+      bram,
+      MORNING,
+      channels['HC-03B'],
+      await form(channels['HC-03B'], { position: 'HC-04A', other: 'exchange' }),
+    )
+    expect((await listOutOfDate(db)).map(({ subjectId }) => subjectId).sort()).toEqual(['own', 'rival'])
   })
 
   it('asks what becomes of the channel that belongs there, and can release it', async () => {

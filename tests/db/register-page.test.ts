@@ -40,16 +40,14 @@ beforeEach(async () => {
   channelId = (await createChannel(db, { sourceId: source.id, name: 'HC-14A', positionId: position.id })).id
   await db.insert(supplySet).values({ tag: 'HX-1', maxAmps: 1500, maxVolts: 60, openCircuitVolts: 75 })
   await db.insert(pump).values({ tag: 'MC-B', kind: 'turbomolecular-cart', speeds: { N2: 0.45 } })
-  await db
-    .insert(limitValue)
-    .values({
-      kind: 'target',
-      value: 2e-7,
-      unit: 'Pa',
-      startsAt: shift(MORNING, -60),
-      reason: 'Adopted',
-      recordedAt: MORNING,
-    })
+  await db.insert(limitValue).values({
+    kind: 'target',
+    value: 2e-7,
+    unit: 'Pa',
+    startsAt: shift(MORNING, -60),
+    reason: 'Adopted',
+    recordedAt: MORNING,
+  })
 })
 
 function said(cells: readonly Cell[]): string[] {
