@@ -10,7 +10,7 @@ import { DEMO_START } from './demo-time.ts'
 import { seedLogEntries } from './log-entries.ts'
 import { seedPeople } from './people.ts'
 import { loadReadings } from './readings/load.ts'
-import { readArchive, seedImports } from './readings/night-archive.ts'
+import { loadArchive, seedImports } from './readings/night-archive.ts'
 import { typedReadings } from './readings/typed.ts'
 import { seedHardware } from './register/hardware.ts'
 import { seedInstruments } from './register/instruments.ts'
@@ -41,12 +41,9 @@ export async function seedDemo(
   const began = performance.now()
   const seconds = () => `${(elapsedMs(began) / 1000).toFixed(1)} s`
   await createReadingPartitions(db, DEMO_START)
-  const archive = await readArchive()
-  log(`Demo: read ${archive.length} night files (${seconds()})`)
-  let stored = 0
-  for (const { readings } of archive) stored += await loadReadings(pool, readings)
-  stored += await loadReadings(pool, typedReadings())
-  log(`Demo: ${stored} readings stored (${seconds()})`)
+  const { archive, stored: logged } = await loadArchive(pool)
+  const stored = logged + (await loadReadings(pool, typedReadings()))
+  log(`Demo: ${stored} readings of ${archive.length} files stored (${seconds()})`)
   await tx(db, async (inside) => {
     const people = await seedPeople(inside)
     const segments = await seedSegments(inside)

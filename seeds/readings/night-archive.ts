@@ -1,55 +1,60 @@
 /**
- * Night files that had been taken in before the demo begins: read by the product's own reader, so that what the
- * database holds is what the bytes say. The west logger's last file is left for a person to take in.
+ * Files that had been taken in before the demo begins: read by the product's own reader, so that what the database
+ * holds is what the bytes say.
  */
 import { createHash } from 'node:crypto'
-import { TZDate } from '@date-fns/tz'
-import { addDays, addMinutes } from 'date-fns'
+import type mysql from 'mysql2'
 import type { DbOrTx } from '../../app/db/client.server.ts'
 import { attachment, attachmentChunk, importFile, importRange } from '../../app/db/schema/index.ts'
 import { readNightFile } from '../../app/domain/night-files/reader.ts'
 import type { ReadOut } from '../../app/domain/night-files/types.ts'
 import { MARKS, qualityWord } from '../../app/domain/readings.ts'
-import { at, DEMO_ZONE } from '../demo-time.ts'
-import { PERSON_ID } from '../people.ts'
+import { DEMO_ZONE } from '../demo-time.ts'
 import { CHANNELS, channelId, SOURCE_ID, SOURCES } from '../register/sources.ts'
-import type { StoredReading } from './load.ts'
-import { demoNights, type NightFile, nightFile } from './night-file.ts'
+import type { LoggerFile } from './files.ts'
+import { loadReadings, type StoredReading } from './load.ts'
+import { type TakenInFile, takenInFiles } from './taken-in.ts'
 
 const CHUNK_BYTES = 1024 * 1024
 
-interface TakenIn {
+interface TakenIn extends Omit<TakenInFile, 'make'> {
   id: number
-  file: NightFile
+  file: Omit<LoggerFile, 'readings'>
   readOut: ReadOut
-  readings: StoredReading[]
+  readingCount: number
+  conflictCount: number
 }
 
-/** Mornings on which the crews took the files in: the two of them by turns. */
-function takenInBy(index: number): { person: number; minutesAfterSix: number } {
-  const people = [PERSON_ID.pim, PERSON_ID.odalys, PERSON_ID.corwin, PERSON_ID.nerys]
-  return { person: people[index % people.length] as number, minutesAfterSix: 35 + ((index * 7) % 20) }
-}
+const CHANNELS_OF = Object.fromEntries(
+  SOURCES.map(({ code }) => [
+    code,
+    CHANNELS.filter(({ source }) => source === code).map(({ name, position }) => ({
+      name,
+      quantity: position.quantity,
+    })),
+  ]),
+)
 
-function takenInAt(file: NightFile, index: number): Date {
-  const morning = addDays(new TZDate(at(`${file.night} 06:00`).getTime(), DEMO_ZONE), 1)
-  return new Date(addMinutes(morning, takenInBy(index).minutesAfterSix).getTime())
-}
-
-async function takeIn(file: NightFile, id: number, nowMs: number): Promise<TakenIn> {
+async function read(
+  file: Omit<LoggerFile, 'readings'>,
+  id: number,
+  nowMs: number,
+): Promise<{ readOut: ReadOut; readings: StoredReading[] }> {
   const profile = SOURCES.find(({ code }) => code === file.source)?.profile ?? null
-  const channels = CHANNELS.filter(({ source }) => source === file.source).map(({ name, position }) => ({
-    name,
-    quantity: position.quantity,
-  }))
   const readings: StoredReading[] = []
+  const optional = (value: number) => (Number.isNaN(value) ? null : value)
   const readOut = await readNightFile(
     [file.bytes],
     profile,
-    { nowMs, siteZone: DEMO_ZONE, channels, fileName: file.fileName, statedBytes: file.bytes.length },
+    {
+      nowMs,
+      siteZone: DEMO_ZONE,
+      channels: CHANNELS_OF[file.source] ?? [],
+      fileName: file.fileName,
+      statedBytes: file.bytes.length,
+    },
     (batch, met) => {
       const ids = met.map(({ name }) => channelId(file.source, name))
-      const optional = (value: number) => (Number.isNaN(value) ? null : value)
       for (let index = 0; index < batch.count; index += 1) {
         readings.push({
           channelId: ids[batch.channel[index] as number] as number,
@@ -70,87 +75,104 @@ async function takeIn(file: NightFile, id: number, nowMs: number): Promise<Taken
       `The demo's ${file.fileName} was read as "${readOut.state}": ${readOut.refusal?.found ?? readOut.questions[0]?.text}`,
     )
   }
-  return { id, file, readOut, readings }
+  return { readOut, readings }
 }
 
-/** Reads all files of the demo but the west logger's last. */
-export async function readArchive(): Promise<TakenIn[]> {
-  const nights = demoNights()
-  const files = nights.flatMap((night, index) => {
-    const east = nightFile('NL-E', night)
-    return index === nights.length - 1 ? [east] : [nightFile('NL-W', night), east]
-  })
-  const taken: TakenIn[] = []
-  for (const [index, file] of files.entries()) {
-    taken.push(await takeIn(file, index + 1, takenInAt(file, index).getTime()))
+/**
+ * Reads every file and stores its readings; the next one is made while the database still takes in the one before.
+ *
+ * @returns what the imports' own rows are made from, and how many readings were new
+ */
+export async function loadArchive(pool: mysql.Pool): Promise<{ archive: TakenIn[]; stored: number }> {
+  const archive: TakenIn[] = []
+  let stored = 0
+  let loading: Promise<number> = Promise.resolve(0)
+  for (const [index, { make, takenInAt, takenInBy }] of takenInFiles().entries()) {
+    const { readings: _made, ...file } = make()
+    const id = index + 1
+    const { readOut, readings } = await read(file, id, takenInAt.getTime())
+    // In the order of the table's key, which the rows of a file are not in.
+    readings.sort((a, b) => a.channelId - b.channelId || a.atMs - b.atMs || a.seq - b.seq)
+    stored += await loading
+    loading = loadReadings(pool, readings)
+    archive.push({
+      id,
+      file,
+      takenInAt,
+      takenInBy,
+      readOut,
+      readingCount: readings.length,
+      conflictCount: readings.filter(({ marks }) => (marks & MARKS.conflict) !== 0).length,
+    })
   }
-  return taken
+  stored += await loading
+  return { archive, stored }
 }
 
 /** Writes the imports with their original bytes and the stretches they cover. */
 export async function seedImports(db: DbOrTx, archive: readonly TakenIn[]): Promise<number> {
-  for (const [index, { id, file, readOut, readings }] of archive.entries()) {
-    const sha256 = createHash('sha256').update(file.bytes).digest('hex')
-    const decidedAt = takenInAt(file, index)
-    const { person } = takenInBy(index)
-    await db.insert(attachment).values({
-      id,
-      fileName: file.fileName,
-      contentType: 'text/csv',
-      byteSize: file.bytes.length,
-      sha256,
-      complete: true,
-      subjectKind: 'import',
-      subjectId: String(id),
-      createdBy: person,
-      createdAt: decidedAt,
-    })
-    const chunkCount = Math.ceil(file.bytes.length / CHUNK_BYTES)
-    await db.insert(attachmentChunk).values(
-      Array.from({ length: chunkCount }, (_, chunkNo) => ({
-        attachmentId: id,
-        chunkNo,
-        data: file.bytes.subarray(chunkNo * CHUNK_BYTES, (chunkNo + 1) * CHUNK_BYTES),
-      })),
-    )
-    await db.insert(importFile).values({
-      id,
-      state: 'accepted',
-      sourceId: SOURCE_ID[file.source],
-      fileName: file.fileName,
-      byteSize: file.bytes.length,
-      sha256,
-      acceptedSha256: sha256,
-      attachmentId: id,
-      uploadedBy: person,
-      uploadedAt: decidedAt,
-      profileVersion: readOut.profileVersion,
-      readOut,
-      lineCount: readOut.lines.total,
-      readingCount: readings.length,
-      heldCount: 0,
-      conflictCount: readings.filter(({ marks }) => (marks & MARKS.conflict) !== 0).length,
-      firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
-      lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
-      decidedBy: person,
-      decidedAt: new Date(decidedAt.getTime() + 60_000),
-      revision: 2,
-    })
-    await db.insert(importRange).values(
-      readOut.channels.flatMap(({ name, count, firstMs, lastMs }) =>
-        firstMs === null || lastMs === null
-          ? []
-          : [
-              {
-                importId: id,
-                channelId: channelId(file.source, name),
-                firstAt: new Date(firstMs),
-                lastAt: new Date(lastMs),
-                readingCount: count,
-              },
-            ],
-      ),
-    )
-  }
+  for (const one of archive) await seedImport(db, one)
   return archive.length
+}
+
+async function seedImport(db: DbOrTx, one: TakenIn): Promise<void> {
+  const { id, file, readOut, takenInAt, takenInBy } = one
+  const sha256 = createHash('sha256').update(file.bytes).digest('hex')
+  await db.insert(attachment).values({
+    id,
+    fileName: file.fileName,
+    contentType: 'text/csv',
+    byteSize: file.bytes.length,
+    sha256,
+    complete: true,
+    subjectKind: 'import',
+    subjectId: String(id),
+    createdBy: takenInBy,
+    createdAt: takenInAt,
+  })
+  const chunkCount = Math.ceil(file.bytes.length / CHUNK_BYTES)
+  await db.insert(attachmentChunk).values(
+    Array.from({ length: chunkCount }, (_, chunkNo) => ({
+      attachmentId: id,
+      chunkNo,
+      data: file.bytes.subarray(chunkNo * CHUNK_BYTES, (chunkNo + 1) * CHUNK_BYTES),
+    })),
+  )
+  await db.insert(importFile).values({
+    id,
+    state: 'accepted',
+    sourceId: SOURCE_ID[file.source],
+    fileName: file.fileName,
+    byteSize: file.bytes.length,
+    sha256,
+    acceptedSha256: sha256,
+    attachmentId: id,
+    uploadedBy: takenInBy,
+    uploadedAt: takenInAt,
+    profileVersion: readOut.profileVersion,
+    readOut,
+    lineCount: readOut.lines.total,
+    readingCount: one.readingCount,
+    heldCount: 0,
+    conflictCount: one.conflictCount,
+    firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
+    lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
+    decidedBy: takenInBy,
+    decidedAt: new Date(takenInAt.getTime() + 60_000),
+    revision: 2,
+  })
+  const ranges = readOut.channels.flatMap(({ name, count, firstMs, lastMs }) =>
+    firstMs === null || lastMs === null
+      ? []
+      : [
+          {
+            importId: id,
+            channelId: channelId(file.source, name),
+            firstAt: new Date(firstMs),
+            lastAt: new Date(lastMs),
+            readingCount: count,
+          },
+        ],
+  )
+  await db.insert(importRange).values(ranges)
 }

@@ -3,6 +3,7 @@ import type { DbOrTx } from '../../app/db/client.server.ts'
 import { equipment, heaterCircuit, pump, pumpPlacement, supplySet, valve } from '../../app/db/schema/index.ts'
 import type { PumpKind, PumpSpeeds } from '../../app/domain/register.ts'
 import { at, REGISTER_BEGAN } from '../demo-time.ts'
+import { CART, GETTER_ION } from './pump-speeds.ts'
 import { BOX_CHAINAGE, type DemoSegment, SEGMENTS, segmentOf } from './segments.ts'
 
 /** Elastomer seals in the bonnet stand less heat than the metal ones. */
@@ -92,20 +93,6 @@ async function seedValves(db: DbOrTx): Promise<void> {
   await db.insert(valve).values([...mainGates, spurGate, ...ports, ...vents])
 }
 
-/** Speeds at the cross, m³/s. A getter takes no noble gas; what is left for those is the ion pump's. */
-const GETTER_ION: PumpSpeeds = { H2: 1.2, H2O: 0.5, N2: 0.4, CO: 0.6, CO2: 0.5, O2: 0.5, Ar: 0.06, He: 0.05 }
-/** A cart's speed is set by the elbow between it and the cross more than by its pump. */
-const CART: PumpSpeeds = {
-  H2: 0.4,
-  H2O: 0.4,
-  N2: 0.45,
-  CO: 0.45,
-  CO2: 0.42,
-  Ar: 0.43,
-  He: 0.5,
-  O2: 0.44,
-  CH4: 0.46,
-}
 /** 250 m³/h, whatever the gas. */
 const ROUGHING: PumpSpeeds = { N2: 0.0694, O2: 0.0694, Ar: 0.0694, H2O: 0.0694 }
 

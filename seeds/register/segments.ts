@@ -18,6 +18,12 @@ const SPUR_LENGTH = 90
 /** Resistivity of 304L at 20 °C, Ω·m; from memory, not verified. 316LN is taken to be the same. */
 const RESISTIVITY_20 = 7.2e-7
 
+/** What the register says of hydrogen: atoms/m³ in steel that was not fired, Pa·m/s at 20 °C from steel that was. */
+export const HYDROGEN_C0 = 7e23
+export const HYDROGEN_Q20 = 4e-10
+/** Molecules of water a square metre of wall can hold. */
+export const WATER_CAPACITY = 5e19
+
 export interface DemoSegment {
   id: number
   tag: string
@@ -102,13 +108,13 @@ function hydrogenFacts({ fired, lastBakeYear }: DemoSegment) {
     return {
       hydrogenModel: 'low-hydrogen' as const,
       hydrogenC0: null,
-      hydrogenQ20: 4e-10,
+      hydrogenQ20: HYDROGEN_Q20,
       hydrogenOrigin: origin,
     }
   }
   return {
     hydrogenModel: 'diffusion' as const,
-    hydrogenC0: 7e23,
+    hydrogenC0: HYDROGEN_C0,
     hydrogenQ20: null,
     hydrogenOrigin:
       lastBakeYear === null
@@ -155,7 +161,7 @@ export async function seedSegments(db: DbOrTx): Promise<number> {
         vacuumFired: one.fired,
         lastBakeYear: one.lastBakeYear,
         ...hydrogenFacts(one),
-        waterCapacity: 5e19,
+        waterCapacity: WATER_CAPACITY,
         waterOrigin: 'Assumed: about five layers of water on rolled steel; no fit yet',
         bellowsCount: one.tag === 'SP-1' ? 6 : 10,
         bellowsTravelMm: one.tag === 'SG-08' ? 36 : 34,

@@ -61,7 +61,15 @@ export const SOURCES: readonly DemoSource[] = [
     name: 'Temperature logger',
     dueAt: '07:00',
     periodSeconds: 300,
-    profile: null,
+    profile: SourceProfileSchema.parse({
+      layout: 'wide',
+      separator: '\t',
+      decimalMark: '.',
+      unit: '°C',
+      time: { format: 'iso' },
+      averaging: 'momentary',
+      expectedPeriodSeconds: 300,
+    }),
     note: 'All thermocouples; posts every five minutes while a segment is heated',
   },
   {
@@ -69,7 +77,14 @@ export const SOURCES: readonly DemoSource[] = [
     name: 'Power logger',
     dueAt: '07:00',
     periodSeconds: 300,
-    profile: null,
+    profile: SourceProfileSchema.parse({
+      layout: 'wide',
+      separator: ',',
+      decimalMark: '.',
+      time: { format: 'iso' },
+      averaging: 'momentary',
+      expectedPeriodSeconds: 300,
+    }),
     note: 'Supply sets, energy meters, ion-pump currents, bay fans',
   },
   {
@@ -116,11 +131,13 @@ export const CHANNELS: readonly DemoChannel[] = POSITIONS.flatMap((position) => 
   position,
 }))
 
+const CHANNEL_IDS = new Map(CHANNELS.map(({ id, source: code, name }) => [`${code} ${name}`, id]))
+
 /** Id of a source's channel; a channel that does not exist is a slip in the seed. */
 export function channelId(code: SourceCode, name: string): number {
-  const found = CHANNELS.find((one) => one.source === code && one.name === name)
+  const found = CHANNEL_IDS.get(`${code} ${name}`)
   if (found === undefined) throw new Error(`The demo has no channel ${name} at ${code}`)
-  return found.id
+  return found
 }
 
 /**
