@@ -74,7 +74,7 @@ export function Shell({ person, site, clock, unit, places, mayAdvanceClock, noti
               <PersonMenu person={person} />
             </div>
           </header>
-          <p className="hidden px-4 text-xs print:block">
+          <p className="hidden text-xs print:block">
             {site.name} · printed from Ebbline as of {longTimeText(clock.at, site.zone)} (
             {offsetLabel(clock.at, site.zone)}) by {person.name}
             {clock.demo && ' · demo data'}

@@ -138,12 +138,10 @@ export function StateShape({ state, className = '' }: { state: SegmentState; cla
  */
 export function StateMark({ state, detail }: { state: SegmentState; detail?: React.ReactNode }) {
   return (
-    <span className="inline-flex items-baseline gap-1.5">
-      <StateShape state={state} className="translate-y-0.5" />
-      <span>
-        {SEGMENT_STATES[state].label}
-        {detail !== undefined && <>, {detail}</>}
-      </span>
+    <span>
+      <StateShape state={state} className="mr-1.5 align-[-0.12em]" />
+      {SEGMENT_STATES[state].label}
+      {detail !== undefined && <>, {detail}</>}
     </span>
   )
 }
