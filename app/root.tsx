@@ -1,4 +1,12 @@
-import { isRouteErrorResponse, Links, Meta, Outlet, Scripts, ScrollRestoration, useRouteLoaderData } from 'react-router'
+import {
+  isRouteErrorResponse,
+  Links,
+  Meta,
+  Outlet,
+  Scripts,
+  ScrollRestoration,
+  useRouteLoaderData,
+} from 'react-router'
 import type { Route } from './+types/root'
 import './app.css'
 import { identifyRequest, secureResponse } from './auth/middleware.server.ts'
@@ -42,7 +50,8 @@ export default function Root() {
 export function ErrorBoundary({ error }: Route.ErrorBoundaryProps) {
   if (isRouteErrorResponse(error)) {
     const body: unknown = error.data
-    const message = typeof body === 'object' && body !== null && 'message' in body ? String(body.message) : undefined
+    const message =
+      typeof body === 'object' && body !== null && 'message' in body ? String(body.message) : undefined
     return <ErrorPage status={error.status} message={message} />
   }
   return <ErrorPage status={500} />

@@ -1,5 +1,5 @@
 import { DomainError } from './errors.ts'
-import { type Permission, type Role, ROLE_LABELS, rolesHave, whoMay } from './roles.ts'
+import { type Permission, ROLE_LABELS, type Role, rolesHave, whoMay } from './roles.ts'
 
 /** The person on whose behalf something is done, with the roles in force at that moment. Always a parameter, never ambient. */
 export interface Actor {

@@ -69,7 +69,8 @@ export function standingOf(input: {
 /** The cross where a high-vacuum gauge there is fresh, then any fresh gauge of the kind that can read, then the newest old one. */
 function headlineOf(gauges: readonly GaugeStanding[]): GaugeStanding | null {
   const rank = (gauge: GaugeStanding) =>
-    (gauge.fresh ? 0 : 10) + (gauge.kind === 'hot-cathode' ? (gauge.tag.endsWith('B') ? 0 : 1) : gauge.kind === 'cold-cathode' ? 2 : 3)
+    (gauge.fresh ? 0 : 10) +
+    (gauge.kind === 'hot-cathode' ? (gauge.tag.endsWith('B') ? 0 : 1) : gauge.kind === 'cold-cathode' ? 2 : 3)
   const known = gauges.filter((gauge) => gauge.value !== null)
   return [...known].sort((a, b) => rank(a) - rank(b))[0] ?? null
 }
@@ -138,7 +139,8 @@ export function facilityFigures(
   segments: readonly { tag: string; main: boolean; state: SegmentState; standing: SegmentStanding }[],
   neededAtTarget: number,
 ): FacilityFigures {
-  const tags = (test: (segment: (typeof segments)[number]) => boolean) => segments.filter(test).map(({ tag }) => tag)
+  const tags = (test: (segment: (typeof segments)[number]) => boolean) =>
+    segments.filter(test).map(({ tag }) => tag)
   const main = segments.filter((segment) => segment.main)
   const belowLimit = main.filter(({ standing }) => ['at-target', 'above-target'].includes(standing.verdict))
   const atTarget = tags(({ standing }) => standing.verdict === 'at-target')

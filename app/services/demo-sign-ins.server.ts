@@ -10,5 +10,7 @@ export interface DemoSignIn {
 
 /** The sign-ins that the sign-in page offers: the demo's people in demo mode, nothing otherwise. */
 export function listDemoSignIns(): DemoSignIn[] {
-  return env().DEMO ? DEMO_SIGN_INS.map(({ name, email, role, password }) => ({ name, email, role, password })) : []
+  return env().DEMO
+    ? DEMO_SIGN_INS.map(({ name, email, role, password }) => ({ name, email, role, password }))
+    : []
 }

@@ -6,5 +6,8 @@ import { DomainError } from '../domain/errors.ts'
 export async function getSite(db: DbOrTx): Promise<Site> {
   const found = await findSite(db)
   if (found !== null) return found
-  throw new DomainError('unavailable', 'The register is empty: seed it first (npm start does so for the demo).')
+  throw new DomainError(
+    'unavailable',
+    'The register is empty: seed it first (npm start does so for the demo).',
+  )
 }

@@ -24,8 +24,8 @@ import {
   type SegmentWithState,
 } from '../db/queries/segments.server.ts'
 import { isFresh } from '../domain/freshness.ts'
-import type { LimitKind } from '../domain/register.ts'
 import type { Quality } from '../domain/readings.ts'
+import type { LimitKind } from '../domain/register.ts'
 import { type GaugeStanding, type SegmentStanding, standingOf } from '../domain/segment-standing.ts'
 import { endToCrossRatio } from './segment-model.server.ts'
 
@@ -55,7 +55,10 @@ async function lastAtPositions(
 ): Promise<LastAtPosition[]> {
   const ids = positions.map(({ id }) => id)
   const justNow = new Date(now.getTime() + 1)
-  const [spans, fittings] = await Promise.all([listMapSpans(db, ids, now, justNow), listFittingSpans(db, ids)])
+  const [spans, fittings] = await Promise.all([
+    listMapSpans(db, ids, now, justNow),
+    listFittingSpans(db, ids),
+  ])
   const last = await lastReadings(db, [...new Set(spans.map(({ channelId }) => channelId))], now)
   const sourceById = new Map(sources.map((source) => [source.sourceId, source]))
   return positions.map((position) => {
@@ -65,17 +68,23 @@ async function lastAtPositions(
     for (const span of own) {
       const found = last.get(span.channelId)
       // A reading from before the map began belonged to another position.
-      if (found?.usable && found.usable.at >= span.from && (best === null || found.usable.at > best.reading.at)) {
+      if (
+        found?.usable &&
+        found.usable.at >= span.from &&
+        (best === null || found.usable.at > best.reading.at)
+      ) {
         best = { reading: found.usable, sourceId: span.sourceId, channelId: span.channelId }
       }
-      if (found?.any && found.any.at >= span.from && (newest === null || found.any.at > newest.at)) newest = found.any
+      if (found?.any && found.any.at >= span.from && (newest === null || found.any.at > newest.at))
+        newest = found.any
     }
     const source = best === null ? undefined : sourceById.get(best.sourceId)
     const value = best?.reading.value ?? null
     return {
       position,
       channelId: best?.channelId ?? own[0]?.channelId ?? null,
-      value: best === null || value === null ? null : value * factorAt(fittings, position.id, best.reading.at),
+      value:
+        best === null || value === null ? null : value * factorAt(fittings, position.id, best.reading.at),
       at: best?.reading.at ?? null,
       fresh: isFresh({
         lastGoodAt: best?.reading.at ?? null,
@@ -93,7 +102,11 @@ async function lastAtPositions(
 }
 
 /** The limit of a kind for a segment: its own if it has one, else the site's. */
-export function limitFor(limits: readonly LimitRow[], kind: LimitKind, segmentId: number | null): LimitRow | null {
+export function limitFor(
+  limits: readonly LimitRow[],
+  kind: LimitKind,
+  segmentId: number | null,
+): LimitRow | null {
   const ofKind = limits.filter((limit) => limit.kind === kind)
   return (
     ofKind.find((limit) => segmentId !== null && limit.segmentId === segmentId) ??
@@ -118,7 +131,8 @@ export async function readStandings(db: DbOrTx, now: Date, segmentTag?: string):
     listLimits(db, now),
     listSourceEnds(db, now),
   ])
-  const segments = segmentTag === undefined ? allSegments : allSegments.filter(({ tag }) => tag === segmentTag)
+  const segments =
+    segmentTag === undefined ? allSegments : allSegments.filter(({ tag }) => tag === segmentTag)
   const ids = new Set(segments.map(({ id }) => id))
   const positions = (await listPositions(db, { kinds: PRESSURE_KINDS })).filter(
     ({ segmentId }) => segmentId !== null && ids.has(segmentId),

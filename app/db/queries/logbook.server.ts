@@ -81,7 +81,8 @@ export async function countEntries(db: DbOrTx, filter: EntryFilter): Promise<num
 }
 
 function entryConditions(filter: EntryFilter) {
-  const pattern = filter.words === undefined ? undefined : `%${filter.words.replace(/[\\%_]/g, (mark) => `\\${mark}`)}%`
+  const pattern =
+    filter.words === undefined ? undefined : `%${filter.words.replace(/[\\%_]/g, (mark) => `\\${mark}`)}%`
   return and(
     filter.entryId === undefined ? undefined : eq(logEntry.id, filter.entryId),
     filter.segmentId === undefined ? undefined : eq(logEntry.segmentId, filter.segmentId),
@@ -133,4 +134,3 @@ export async function findSegmentId(db: DbOrTx, tag: string): Promise<number | n
   const rows = await db.select({ id: segment.id }).from(segment).where(eq(segment.tag, tag))
   return rows[0]?.id ?? null
 }
-

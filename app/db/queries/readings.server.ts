@@ -3,14 +3,25 @@
  * readings stay by raw channel; a corrected map changes what these queries return and nothing else.
  */
 import { and, asc, eq, gt, inArray, isNull, lt, or, type SQL, sql } from 'drizzle-orm'
-import { MARKS, type Quality, type Quantity, qualityCode, qualityWord, UNTIMED_MARKS, USABLE_QUALITIES } from '../../domain/readings.ts'
+import {
+  MARKS,
+  type Quality,
+  type Quantity,
+  qualityCode,
+  qualityWord,
+  UNTIMED_MARKS,
+  USABLE_QUALITIES,
+} from '../../domain/readings.ts'
 import type { PositionKind } from '../../domain/register.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { channel, channelMap, fitting, importFile, position, reading, source } from '../schema/index.ts'
 
 const USABLE_CODES = USABLE_QUALITIES.map(qualityCode)
 /** SQL for "may be used as a measured value". */
-const usable: SQL = sql`${reading.quality} IN (${sql.join(USABLE_CODES.map((code) => sql`${code}`), sql`, `)})
+const usable: SQL = sql`${reading.quality} IN (${sql.join(
+  USABLE_CODES.map((code) => sql`${code}`),
+  sql`, `,
+)})
   AND (${reading.marks} & ${UNTIMED_MARKS}) = 0 AND ${reading.value} IS NOT NULL`
 
 export interface PositionRow {
@@ -112,7 +123,8 @@ export async function listFittingSpans(db: DbOrTx, positionIds: readonly number[
 /** Factor of the instrument at a position at an instant; 1 where none is recorded. */
 export function factorAt(fittings: readonly FittingSpan[], positionId: number, at: Date): number {
   for (const span of fittings) {
-    if (span.positionId === positionId && span.from <= at && (span.to === null || span.to > at)) return span.factor
+    if (span.positionId === positionId && span.from <= at && (span.to === null || span.to > at))
+      return span.factor
   }
   return 1
 }
@@ -153,9 +165,7 @@ export async function lastReadings(
     const rows = await db
       .select(readingColumns)
       .from(reading)
-      .where(
-        and(eq(reading.channelId, channelId), gt(reading.at, since), sql`${reading.at} <= ${at}`, extra),
-      )
+      .where(and(eq(reading.channelId, channelId), gt(reading.at, since), sql`${reading.at} <= ${at}`, extra))
       .orderBy(sql`${reading.at} DESC`)
       .limit(1)
     const row = rows[0]
@@ -165,7 +175,10 @@ export async function lastReadings(
     channelIds.map(async (channelId) => {
       const any = await last(channelId, undefined)
       const usableAlready = any !== null && isUsableRow(any)
-      return [channelId, { any, usable: usableAlready ? any : any === null ? null : await last(channelId, usable) }] as const
+      return [
+        channelId,
+        { any, usable: usableAlready ? any : any === null ? null : await last(channelId, usable) },
+      ] as const
     }),
   )
   return new Map(found)
@@ -196,7 +209,9 @@ export async function binReadings(
 ): Promise<Bin[]> {
   if (input.channelIds.length === 0) return []
   const binNo = sql<number>`FLOOR(TIMESTAMPDIFF(SECOND, ${input.from}, ${reading.at}) / ${input.binSeconds})`
-  const mean = input.logarithmic ? sql<number>`EXP(AVG(LN(${reading.value})))` : sql<number>`AVG(${reading.value})`
+  const mean = input.logarithmic
+    ? sql<number>`EXP(AVG(LN(${reading.value})))`
+    : sql<number>`AVG(${reading.value})`
   const positive = input.logarithmic ? sql`${reading.value} > 0` : undefined
   const rows = await db
     .select({
@@ -219,7 +234,10 @@ export async function binReadings(
     )
     .groupBy(reading.channelId, sql`bin_no`)
     .orderBy(reading.channelId, sql`bin_no`)
-  return rows.map(({ bin, ...row }) => ({ ...row, atMs: input.from.getTime() + bin * input.binSeconds * 1000 }))
+  return rows.map(({ bin, ...row }) => ({
+    ...row,
+    atMs: input.from.getTime() + bin * input.binSeconds * 1000,
+  }))
 }
 
 /** Readings of one channel as stored, oldest first, for lists and downloads. */
@@ -230,7 +248,13 @@ export async function listChannelReadings(
   const rows = await db
     .select(readingColumns)
     .from(reading)
-    .where(and(eq(reading.channelId, input.channelId), sql`${reading.at} >= ${input.from}`, lt(reading.at, input.to)))
+    .where(
+      and(
+        eq(reading.channelId, input.channelId),
+        sql`${reading.at} >= ${input.from}`,
+        lt(reading.at, input.to),
+      ),
+    )
     .orderBy(asc(reading.at), asc(reading.seq))
     .limit(input.limit)
   return rows.map((row) => ({ ...row, quality: qualityWord(row.quality) }))
@@ -258,7 +282,11 @@ export async function listSourceEnds(db: DbOrTx, at: Date): Promise<SourceEnd[]>
     .from(source)
     .leftJoin(
       importFile,
-      and(eq(importFile.sourceId, source.id), eq(importFile.state, 'accepted'), sql`${importFile.lastAt} <= ${at}`),
+      and(
+        eq(importFile.sourceId, source.id),
+        eq(importFile.state, 'accepted'),
+        sql`${importFile.lastAt} <= ${at}`,
+      ),
     )
     .groupBy(source.id)
     .orderBy(asc(source.code))

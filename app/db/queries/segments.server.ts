@@ -21,7 +21,13 @@ export async function listLines(db: DbOrTx): Promise<LineRow[]> {
 /** Segments in order along the tube with the state each had at an instant. */
 export async function listSegments(db: DbOrTx, at: Date): Promise<SegmentWithState[]> {
   const rows = await db
-    .select({ segment, lineCode: line.code, state: segmentState.state, since: segmentState.since, reason: segmentState.reason })
+    .select({
+      segment,
+      lineCode: line.code,
+      state: segmentState.state,
+      since: segmentState.since,
+      reason: segmentState.reason,
+    })
     .from(segment)
     .innerJoin(line, eq(line.id, segment.lineId))
     .leftJoin(
@@ -100,7 +106,11 @@ export interface PlacedPump {
 }
 
 /** Pumps at work on segments, optionally only those at work at an instant. */
-export async function listPlacedPumps(db: DbOrTx, segmentIds: readonly number[], at?: Date): Promise<PlacedPump[]> {
+export async function listPlacedPumps(
+  db: DbOrTx,
+  segmentIds: readonly number[],
+  at?: Date,
+): Promise<PlacedPump[]> {
   if (segmentIds.length === 0) return []
   return db
     .select({

@@ -12,7 +12,13 @@ export interface Site {
 /** The site's own facts, or null before anything has been set up. */
 export async function findSite(db: DbOrTx): Promise<Site | null> {
   const rows = await db
-    .select({ id: site.id, code: site.code, name: site.name, timeZone: site.timeZone, ambientC: site.ambientC })
+    .select({
+      id: site.id,
+      code: site.code,
+      name: site.name,
+      timeZone: site.timeZone,
+      ambientC: site.ambientC,
+    })
     .from(site)
     .limit(1)
   return rows[0] ?? null

@@ -17,11 +17,23 @@ export type LocalTime =
 export function readLocalTime(text: string, zone: string): LocalTime {
   const match = LOCAL.exec(text.trim())
   if (match === null) return { kind: 'unreadable' }
-  const [year, month, day, hour, minute] = match.slice(1, 6).map(Number) as [number, number, number, number, number]
+  const [year, month, day, hour, minute] = match.slice(1, 6).map(Number) as [
+    number,
+    number,
+    number,
+    number,
+    number,
+  ]
   const second = Number(match[6] ?? 0)
   const wall = Date.UTC(year, month - 1, day, hour, minute, second)
   const check = new Date(wall)
-  if (check.getUTCMonth() !== month - 1 || check.getUTCDate() !== day || hour > 23 || minute > 59 || second > 59) {
+  if (
+    check.getUTCMonth() !== month - 1 ||
+    check.getUTCDate() !== day ||
+    hour > 23 ||
+    minute > 59 ||
+    second > 59
+  ) {
     return { kind: 'unreadable' }
   }
   const offset = match[7]
@@ -34,7 +46,8 @@ export function readLocalTime(text: string, zone: string): LocalTime {
     .filter((at) => tzOffset(zone, at) * 60_000 === wall - at.getTime())
     .sort((a, b) => a.getTime() - b.getTime())
   const [first, second2] = instants
-  if (first === undefined) return { kind: 'missing', offsetBefore: offsetText(tzOffset(zone, new Date(wall - 86_400_000))) }
+  if (first === undefined)
+    return { kind: 'missing', offsetBefore: offsetText(tzOffset(zone, new Date(wall - 86_400_000))) }
   if (second2 === undefined) return { kind: 'instant', at: first }
   return { kind: 'ambiguous', first, second: second2 }
 }

@@ -5,11 +5,25 @@ const now = new Date('2026-11-09T07:00:00Z')
 const at = (text: string) => new Date(text)
 
 test('the last row of a night file that ended this morning is fresh', () => {
-  expect(isFresh({ lastGoodAt: at('2026-11-09T05:00Z'), sourceEndAt: at('2026-11-09T05:00Z'), periodSeconds: 60, now })).toBe(true)
+  expect(
+    isFresh({
+      lastGoodAt: at('2026-11-09T05:00Z'),
+      sourceEndAt: at('2026-11-09T05:00Z'),
+      periodSeconds: 60,
+      now,
+    }),
+  ).toBe(true)
 })
 
 test('a channel that stops inside a file that goes on is not fresh, though its last value is only hours old', () => {
-  expect(isFresh({ lastGoodAt: at('2026-11-08T21:10Z'), sourceEndAt: at('2026-11-09T05:00Z'), periodSeconds: 60, now })).toBe(false)
+  expect(
+    isFresh({
+      lastGoodAt: at('2026-11-08T21:10Z'),
+      sourceEndAt: at('2026-11-09T05:00Z'),
+      periodSeconds: 60,
+      now,
+    }),
+  ).toBe(false)
 })
 
 test('three periods of silence at the end are still fresh, a second more is not', () => {
@@ -30,6 +44,10 @@ test('no reading at all is not fresh', () => {
 })
 
 test('a reading typed by hand counts for one shift', () => {
-  expect(isFresh({ lastGoodAt: at('2026-11-08T20:00Z'), sourceEndAt: null, periodSeconds: 0, now })).toBe(true)
-  expect(isFresh({ lastGoodAt: at('2026-11-08T19:00Z'), sourceEndAt: null, periodSeconds: 0, now })).toBe(false)
+  expect(isFresh({ lastGoodAt: at('2026-11-08T20:00Z'), sourceEndAt: null, periodSeconds: 0, now })).toBe(
+    true,
+  )
+  expect(isFresh({ lastGoodAt: at('2026-11-08T19:00Z'), sourceEndAt: null, periodSeconds: 0, now })).toBe(
+    false,
+  )
 })

@@ -34,19 +34,28 @@ describe('a site time typed by a person', () => {
   })
 
   test('in the hour that spring leaves out is said not to exist', () => {
-    expect(readLocalTime('2027-03-28T02:30', 'Europe/Vienna')).toEqual({ kind: 'missing', offsetBefore: '+01:00' })
+    expect(readLocalTime('2027-03-28T02:30', 'Europe/Vienna')).toEqual({
+      kind: 'missing',
+      offsetBefore: '+01:00',
+    })
   })
 
   test('just outside the repeated hour is one instant again', () => {
-    expect(readLocalTime('2026-10-25T01:59', 'Europe/Vienna')).toMatchObject({ at: new Date('2026-10-24T23:59:00Z') })
-    expect(readLocalTime('2026-10-25T03:00', 'Europe/Vienna')).toMatchObject({ at: new Date('2026-10-25T02:00:00Z') })
+    expect(readLocalTime('2026-10-25T01:59', 'Europe/Vienna')).toMatchObject({
+      at: new Date('2026-10-24T23:59:00Z'),
+    })
+    expect(readLocalTime('2026-10-25T03:00', 'Europe/Vienna')).toMatchObject({
+      at: new Date('2026-10-25T02:00:00Z'),
+    })
   })
 
   test('with an offset is taken at its word', () => {
     expect(readLocalTime('2026-10-25T02:30+01:00', 'Europe/Vienna')).toMatchObject({
       at: new Date('2026-10-25T01:30:00Z'),
     })
-    expect(readLocalTime('2026-11-09T07:00Z', 'Europe/Vienna')).toMatchObject({ at: new Date('2026-11-09T07:00:00Z') })
+    expect(readLocalTime('2026-11-09T07:00Z', 'Europe/Vienna')).toMatchObject({
+      at: new Date('2026-11-09T07:00:00Z'),
+    })
   })
 
   test.each(['', 'yesterday', '2026-02-30T10:00', '2026-11-09', '2026-11-09T25:00', '2026-11-09T10:61'])(

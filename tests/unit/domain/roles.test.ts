@@ -43,7 +43,12 @@ describe('permissions', () => {
   })
 
   test('being administrator gives no authority over data, limits or forecasts of record', () => {
-    for (const permission of ['intake:take-in', 'limit:edit', 'forecast:record', 'segment-state:set'] as const) {
+    for (const permission of [
+      'intake:take-in',
+      'limit:edit',
+      'forecast:record',
+      'segment-state:set',
+    ] as const) {
       expect(roleHas('administrator', permission), permission).toBe(false)
     }
   })

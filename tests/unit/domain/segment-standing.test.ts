@@ -18,7 +18,10 @@ describe('the standing of a segment in service', () => {
   test('is at target only when both hot-cathode gauges are fresh and below it', () => {
     expect(judge([gauge('HC-01A', 6.3e-8), gauge('HC-01B', 5.1e-8)]).verdict).toBe('at-target')
     expect(judge([gauge('HC-01A', 6.3e-8, false), gauge('HC-01B', 5.1e-8)]).verdict).toBe('unknown')
-    expect(judge([gauge('HC-01A', null, false), gauge('HC-01B', 5.1e-8)]).freshGauges).toEqual({ fresh: 1, of: 2 })
+    expect(judge([gauge('HC-01A', null, false), gauge('HC-01B', 5.1e-8)]).freshGauges).toEqual({
+      fresh: 1,
+      of: 2,
+    })
   })
 
   test('is above target or over the limit by the worse of the two', () => {
@@ -95,6 +98,12 @@ describe('the facility', () => {
 
   test('counts each segment once by what it is', () => {
     const figures = facilityFigures([segment('1', 5e-8), segment('2', 4e-7), segment('3', 2e-4, 'soak')], 1)
-    expect(figures).toMatchObject({ inService: ['1', '2'], atTarget: ['1'], aboveTarget: ['2'], heated: ['3'], unknown: [] })
+    expect(figures).toMatchObject({
+      inService: ['1', '2'],
+      atTarget: ['1'],
+      aboveTarget: ['2'],
+      heated: ['3'],
+      unknown: [],
+    })
   })
 })

@@ -1,5 +1,10 @@
 import { expect, test } from 'vitest'
-import { isSegmentState, isUsualChange, SEGMENT_STATE_CODES, SEGMENT_STATES } from '#app/domain/segment-states.ts'
+import {
+  isSegmentState,
+  isUsualChange,
+  SEGMENT_STATE_CODES,
+  SEGMENT_STATES,
+} from '#app/domain/segment-states.ts'
 
 test('there are fourteen states, each with a label of its own', () => {
   expect(SEGMENT_STATE_CODES).toHaveLength(14)
@@ -8,13 +13,27 @@ test('there are fourteen states, each with a label of its own', () => {
 
 test('every state can be reached and left', () => {
   for (const code of SEGMENT_STATE_CODES) {
-    expect(SEGMENT_STATE_CODES.some((from) => isUsualChange(from, code)), `into ${code}`).toBe(true)
-    expect(SEGMENT_STATE_CODES.some((to) => isUsualChange(code, to)), `out of ${code}`).toBe(true)
+    expect(
+      SEGMENT_STATE_CODES.some((from) => isUsualChange(from, code)),
+      `into ${code}`,
+    ).toBe(true)
+    expect(
+      SEGMENT_STATE_CODES.some((to) => isUsualChange(code, to)),
+      `out of ${code}`,
+    ).toBe(true)
   }
 })
 
 test('the cycle of a bake is usual in order and unusual out of order', () => {
-  const cycle = ['pumping', 'bake-prep', 'heating', 'soak', 'cooling', 'post-bake-test', 'in-service'] as const
+  const cycle = [
+    'pumping',
+    'bake-prep',
+    'heating',
+    'soak',
+    'cooling',
+    'post-bake-test',
+    'in-service',
+  ] as const
   for (let step = 1; step < cycle.length; step += 1) {
     const [from, to] = [cycle[step - 1], cycle[step]]
     if (from !== undefined && to !== undefined) expect(isUsualChange(from, to), `${from} to ${to}`).toBe(true)
@@ -25,7 +44,8 @@ test('the cycle of a bake is usual in order and unusual out of order', () => {
 })
 
 test('a hot segment is not quietly put into maintenance', () => {
-  for (const hot of ['heating', 'soak', 'cooling'] as const) expect(isUsualChange(hot, 'maintenance')).toBe(false)
+  for (const hot of ['heating', 'soak', 'cooling'] as const)
+    expect(isUsualChange(hot, 'maintenance')).toBe(false)
   expect(isUsualChange('in-service', 'maintenance')).toBe(true)
 })
 
