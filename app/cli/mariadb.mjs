@@ -2,6 +2,7 @@
 import { chownSync, existsSync, mkdirSync, readdirSync, rmSync, writeFileSync } from 'node:fs'
 import { createConnection } from 'node:net'
 import { join } from 'node:path'
+import { freeBytes } from './disk.mjs'
 import { CommandFailure, sentenceForFullDisk, speaksOfFullDisk } from './failure.mjs'
 import { findProgram } from './packages.mjs'
 import { freePort } from './ports.mjs'
@@ -10,6 +11,9 @@ import { run, start, stop } from './processes.mjs'
 const ACCOUNT = 'ebbline'
 const ANSWER_WITHIN_MS = 60_000
 const STOP_WITHIN_MS = 5_000
+/** The system's tables and logs take some 130 MiB, the demo about as much again. */
+const ROOM_TO_BEGIN = 400 * 2 ** 20
+const ROOM_TO_GO_ON = 50 * 2 ** 20
 
 export const DATABASE_PACKAGES = {
   programs: ['mariadbd', 'mariadb-install-db'],
@@ -68,10 +72,26 @@ export async function startMariadb({ folder, user, password, options = [], start
   }
 }
 
+/**
+ * Throws when a disk has too little room: the server itself would say so late and in many lines.
+ * @param {string} folder
+ * @param {number} neededBytes
+ */
+function demandRoom(folder, neededBytes) {
+  const free = freeBytes(folder)
+  if (free >= neededBytes) return
+  const mib = (/** @type {number} */ bytes) => `${Math.floor(bytes / 2 ** 20)} MiB`
+  throw new CommandFailure(
+    `The disk that holds ${folder} is full: ${mib(free)} are free, the database needs ${mib(neededBytes)} to start. Free some space and start again.`,
+  )
+}
+
 /** @param {string} folder @param {string} dataFolder @param {ServerSettings['user']} user */
 async function makeDataFolder(folder, dataFolder, user) {
   const finished = join(folder, 'made')
-  if (existsSync(finished)) return
+  mkdirSync(folder, { recursive: true })
+  if (existsSync(finished)) return demandRoom(folder, ROOM_TO_GO_ON)
+  demandRoom(folder, ROOM_TO_BEGIN)
   // Files without the mark "made" come from a first start that was cut off: nothing of value can be in them.
   if (existsSync(dataFolder) && readdirSync(dataFolder).length > 0) rmSync(dataFolder, { recursive: true })
   mkdirSync(dataFolder, { recursive: true, mode: 0o700 })

@@ -8,6 +8,7 @@ import { tmpdir } from 'node:os'
 import { dirname, join } from 'node:path'
 import { fileURLToPath } from 'node:url'
 import { databaseUser } from './database-user.mjs'
+import { freeBytes } from './disk.mjs'
 import { CommandFailure, sentenceFor } from './failure.mjs'
 import { DATABASE_PACKAGES, startMariadb } from './mariadb.mjs'
 import { ensureDebianPackages, ensureNpmPackages } from './packages.mjs'
@@ -17,6 +18,7 @@ import { step, stepLine } from './steps.mjs'
 import { SUITES } from './suites.mjs'
 
 const BROWSER_PACKAGES = { programs: ['chromium'], packages: ['chromium'], purpose: 'The browser Chromium' }
+const ROOM_IN_MEMORY = 3 * 2 ** 30
 const root = dirname(dirname(dirname(fileURLToPath(import.meta.url))))
 
 /** Suites named on the command line, or all. */
@@ -31,7 +33,9 @@ function chosenSuites(/** @type {string[]} */ names) {
 
 /** In memory where there is room, because tests write and throw away. */
 function temporaryFolder() {
-  const folder = mkdtempSync(join(existsSync('/dev/shm') ? '/dev/shm' : tmpdir(), 'ebbline-test-'))
+  // In a container /dev/shm is often there with 64 MiB only.
+  const roomy = existsSync('/dev/shm') && freeBytes('/dev/shm') > ROOM_IN_MEMORY
+  const folder = mkdtempSync(join(roomy ? '/dev/shm' : tmpdir(), 'ebbline-test-'))
   // The server's user has to get through to the folder below this one.
   chmodSync(folder, 0o711)
   return folder
