@@ -5,10 +5,12 @@ import type { SegmentState } from '../app/domain/segment-states.ts'
 import { at, REGISTER_BEGAN } from './demo-time.ts'
 import { PERSON_ID, type PersonKey } from './people.ts'
 import { SEGMENTS, segmentOf } from './register/segments.ts'
+import { bakesOf, type DemoBake } from './scenario/bakes.ts'
+import { VENTS } from './scenario/events.ts'
 
 interface Step {
   state: SegmentState
-  since: string
+  since: Date
   reason: string
   by: PersonKey
 }
@@ -19,85 +21,33 @@ const FIRST: Omit<Step, 'since'> = {
   by: 'bram',
 }
 
-/** Changes after the first state, oldest first. Segments without an entry have been in service all along. */
-const STEPS: Record<string, readonly Step[]> = {
-  'SG-05': [
-    {
-      state: 'bake-prep',
-      since: '2026-11-02 07:30',
-      reason: 'Contact bars, thermocouples and blankets for the bake',
-      by: 'pim',
-    },
-    { state: 'heating', since: '2026-11-04 20:00', reason: 'HX-1 on, ten degrees an hour', by: 'corwin' },
-    { state: 'soak', since: '2026-11-05 09:12', reason: 'All twelve thermocouples above 140 °C', by: 'pim' },
-  ],
+/** SG-11 has never been baked and so never been in service. */
+const FIRST_OF: Record<string, Omit<Step, 'since'>> = {
+  'SG-11': { state: 'pumping', reason: 'On a cart since assembly, never baked', by: 'bram' },
+}
+
+/** Changes that belong to no bake and no vent. */
+const OTHER_STEPS: Record<string, readonly Step[]> = {
   'SG-06': [
     {
-      state: 'bake-prep',
-      since: '2026-02-02 07:30',
-      reason: 'Bake before the spring timing runs',
-      by: 'bram',
-    },
-    { state: 'heating', since: '2026-02-04 18:00', reason: 'HX-2 on', by: 'corwin' },
-    { state: 'soak', since: '2026-02-05 07:40', reason: 'Inside the band', by: 'pim' },
-    { state: 'cooling', since: '2026-02-12 08:00', reason: 'A week of soak done', by: 'pim' },
-    {
-      state: 'post-bake-test',
-      since: '2026-02-13 10:00',
-      reason: 'Below 40 °C, on its own pump',
-      by: 'odalys',
-    },
-    {
-      state: 'in-service',
-      since: '2026-02-16 09:00',
-      reason: 'Three quiet nights at 5×10⁻⁸ Pa',
-      by: 'bram',
-    },
-    {
       state: 'leak-hunt',
-      since: '2026-10-31 09:15',
+      since: at('2026-10-31 09:15'),
       reason: 'Step of all three gauges in the night, the east end most; argon grows',
       by: 'odalys',
     },
   ],
-  'SG-08': [
-    { state: 'bake-prep', since: '2026-10-28 07:30', reason: 'Being fitted for the bake', by: 'pim' },
-    { state: 'heating', since: '2026-11-01 10:20', reason: 'HX-2 on; pair on call came in', by: 'corwin' },
-    { state: 'soak', since: '2026-11-01 23:30', reason: 'Inside the band along the whole tube', by: 'nerys' },
-    { state: 'cooling', since: '2026-11-08 23:30', reason: 'A week of soak done, HX-2 off', by: 'corwin' },
-  ],
   'SG-10': [
-    { state: 'bake-prep', since: '2026-09-03 07:30', reason: 'Next in the bake plan', by: 'bram' },
-    { state: 'heating', since: '2026-09-07 17:00', reason: 'HX-3 on', by: 'corwin' },
-    { state: 'soak', since: '2026-09-08 06:30', reason: 'Inside the band', by: 'nerys' },
     {
-      state: 'cooling',
-      since: '2026-09-15 09:30',
-      reason: 'Soak done, with three hours more for the stop',
+      state: 'leak-hunt',
+      since: at('2026-08-19 11:40'),
+      reason: 'All gauges of the segment above their limit within the hour',
       by: 'pim',
     },
-    { state: 'post-bake-test', since: '2026-09-16 11:00', reason: 'Cold; isolated over night', by: 'odalys' },
-    {
-      state: 'in-service',
-      since: '2026-09-18 09:00',
-      reason: 'Rise of pressure within the limit',
-      by: 'bram',
-    },
-  ],
-  'SG-11': [
-    {
-      state: 'vented',
-      since: '2026-10-26 08:10',
-      reason: 'Air, to exchange the bellows at the west end',
-      by: 'pim',
-    },
-    { state: 'roughing', since: '2026-11-06 09:40', reason: 'Closed up; RS-2 on the port', by: 'pim' },
-    { state: 'pumping', since: '2026-11-06 14:00', reason: 'Crossed over to MC-B at 4 Pa', by: 'pim' },
   ],
   'SG-12': [
     {
       state: 'bake-prep',
-      since: '2026-11-06 13:00',
+      since: at('2026-11-06 13:00'),
       reason: 'Being made ready for a series bake with SG-11',
       by: 'bram',
     },
@@ -105,45 +55,92 @@ const STEPS: Record<string, readonly Step[]> = {
   'SG-13': [
     {
       state: 'isolated-test',
-      since: '2026-11-08 20:00',
+      since: at('2026-11-08 20:00'),
       reason: 'Pump port PV-13 shut to see how fast it rises',
       by: 'corwin',
     },
   ],
-  'SG-14': [
-    {
-      state: 'vented',
-      since: '2026-11-05 07:30',
-      reason: 'Dry nitrogen, to exchange gauge HC-14A; GV-13 and GV-14 locked',
-      by: 'pim',
-    },
-  ],
-  'SP-1': [
-    {
-      state: 'vented',
-      since: '2026-10-28 08:45',
-      reason: 'Dry nitrogen, for the new window in the cellar',
-      by: 'odalys',
-    },
-    {
-      state: 'roughing',
-      since: '2026-11-09 07:40',
-      reason: 'RS-1 at the far end, because the root stands beside the hot SG-08',
-      by: 'pim',
-    },
-  ],
 }
 
-/** SG-11 has never been baked and so never been in service. */
-const FIRST_OF: Record<string, Omit<Step, 'since'>> = {
-  'SG-11': { state: 'pumping', reason: 'On a cart since assembly, never baked', by: 'bram' },
+/** What each bake was broken off for, or why its soak ended. */
+const OFF_REASON: Record<DemoBake['outcome'], string> = {
+  running: 'A week of soak done, heating off',
+  complete: 'A week of soak done',
+  'supply trip': 'Supply tripped in the ramp; bake given up',
+  spread: 'Spread of more than 30 °C; bake given up',
+}
+
+const AFTER_REASON: Record<DemoBake['outcome'], string> = {
+  running: '',
+  complete: 'Rise of pressure within the limit, three quiet nights',
+  'supply trip': 'As good as before the try; goes back to the plan',
+  spread: 'As good as before the try; insulation to be renewed first',
+}
+
+function bakeSteps(segment: string): Step[] {
+  return bakesOf(segment).flatMap((bake) => {
+    const { prepAt, rampAt, soakAt, offAt, coldAt, inServiceAt, lead, second } = bake
+    const soak = { state: 'soak' as const, reason: 'Inside the band along the whole tube', by: second }
+    const off = { state: 'cooling' as const, reason: OFF_REASON[bake.outcome], by: lead }
+    const cold = { state: 'post-bake-test' as const, reason: 'Below 40 °C, on its own pump', by: second }
+    const done = { state: 'in-service' as const, reason: AFTER_REASON[bake.outcome], by: 'bram' as const }
+    return [
+      {
+        state: 'bake-prep',
+        since: prepAt,
+        reason: 'Bars, thermocouples and blankets for the bake',
+        by: lead,
+      },
+      { state: 'heating', since: rampAt, reason: bake.rampReason, by: lead },
+      ...(soakAt === null ? [] : [{ ...soak, since: soakAt }]),
+      ...(offAt === null ? [] : [{ ...off, since: offAt }]),
+      ...(coldAt === null ? [] : [{ ...cold, since: coldAt }]),
+      ...(inServiceAt === null ? [] : [{ ...done, since: inServiceAt }]),
+    ] satisfies Step[]
+  })
+}
+
+function ventSteps(segment: string): Step[] {
+  return VENTS.filter((one) => one.segment === segment).flatMap((vent) => [
+    { state: 'vented' as const, since: vent.ventedAt, reason: vent.reason, by: vent.by },
+    ...(vent.roughingAt === null
+      ? []
+      : [
+          {
+            state: 'roughing' as const,
+            since: vent.roughingAt,
+            reason: ROUGHING_REASON[segment] ?? `Closed up; ${vent.roughingSet} on the port`,
+            by: 'pim' as const,
+          },
+        ]),
+    ...(vent.pumpingAt === null
+      ? []
+      : [
+          {
+            state: 'pumping' as const,
+            since: vent.pumpingAt,
+            reason: 'Crossed over to a cart at 4 Pa',
+            by: vent.by,
+          },
+        ]),
+  ])
+}
+
+const ROUGHING_REASON: Record<string, string> = {
+  'SP-1': 'RS-1 at the far end, because the root stands beside the hot SG-08',
+}
+
+/** States of a segment, oldest first. */
+export function stepsOf(segment: string): Step[] {
+  const later = [...bakeSteps(segment), ...ventSteps(segment), ...(OTHER_STEPS[segment] ?? [])]
+  const first = { ...(FIRST_OF[segment] ?? FIRST), since: REGISTER_BEGAN }
+  return [first, ...later.sort((a, b) => a.since.getTime() - b.since.getTime())]
 }
 
 /** Writes the states: one open row a segment, the earlier ones ended where the next begins. */
 export async function seedSegmentStates(db: DbOrTx): Promise<number> {
   const rows = SEGMENTS.flatMap(({ tag }) => {
-    const first = { ...(FIRST_OF[tag] ?? FIRST), since: REGISTER_BEGAN }
-    const steps = [first, ...(STEPS[tag] ?? []).map((step) => ({ ...step, since: at(step.since) }))]
+    const steps = stepsOf(tag)
     return steps.map(({ state, since, reason, by }, index) => ({
       segmentId: segmentOf(tag).id,
       state,

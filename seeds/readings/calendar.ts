@@ -52,9 +52,9 @@ export function everyStep(fromMs: number, toMs: number, stepMs: number): number[
   )
 }
 
-/** Months (YYYY-MM) before the whole nights, with the stretch that each one's file covers. */
-export function archiveMonths(): { month: string; span: Span }[] {
-  const end = spanOfNight(NIGHTS_SINCE).fromMs
+/** Months (YYYY-MM) before the nights that are kept whole, with the stretch that each one's file covers. */
+export function archiveMonths(firstNight = NIGHTS_SINCE): { month: string; span: Span }[] {
+  const end = spanOfNight(firstNight).fromMs
   const months: { month: string; span: Span }[] = []
   let fromMs = spanOfNight(HISTORY_SINCE).fromMs
   while (fromMs < end) {

@@ -1,13 +1,12 @@
 /** Files of the temperature, power and residual-gas loggers. */
-import { TZDate } from '@date-fns/tz'
-import { format } from 'date-fns'
-import { at, DEMO_ZONE } from '../demo-time.ts'
+import { at } from '../demo-time.ts'
 import { POSITIONS } from '../register/positions.ts'
 import { SEGMENTS } from '../register/segments.ts'
 import { everyStep, spanOfNight } from './calendar.ts'
-import { type FileReading, isoWithOffset, type LoggerCode, type LoggerFile, reading } from './files.ts'
+import { type FileReading, type LoggerCode, type LoggerFile, reading } from './files.ts'
 import { print } from './gauge-channels.ts'
 import { ionCurrentA, MASSES } from './residual-gas.ts'
+import { isoWithOffset, siteDay, siteHour } from './site-clock.ts'
 import { type Feeder, fanIsOn, ionPumpA, meterKwh, supplyOutput } from './supplies.ts'
 import { OPEN_WIRE_C, THERMOCOUPLES, type Thermocouple, thermocoupleC } from './temperatures.ts'
 
@@ -48,8 +47,6 @@ interface PowerColumn {
   text: (atMs: number) => string | null
 }
 
-const localHour = (atMs: number) => new TZDate(atMs, DEMO_ZONE).getHours()
-
 const POWER_COLUMNS: readonly PowerColumn[] = [
   ...['HX-1', 'HX-2', 'HX-3'].flatMap((tag): PowerColumn[] => [
     { tag: `${tag}-U`, unit: ' (V)', text: (atMs) => supplyOutput(tag, atMs)?.volts.toFixed(1) ?? null },
@@ -71,7 +68,7 @@ const POWER_COLUMNS: readonly PowerColumn[] = [
   ...POSITIONS.filter(({ kind }) => kind === 'bay-fan').map(({ tag, chainageM }) => ({
     tag,
     unit: '',
-    text: (atMs: number) => (fanIsOn(chainageM ?? 0, localHour(atMs), atMs) ? 'on' : 'off'),
+    text: (atMs: number) => (fanIsOn(chainageM ?? 0, siteHour(atMs), atMs) ? 'on' : 'off'),
   })),
 ]
 
@@ -101,7 +98,7 @@ const LOST_CLOCK_NIGHT = '2026-11-02'
 /** A file of the residual-gas logger: seconds since a start that stands in a note. */
 function residualGasFile(night: string): LoggerFile {
   const { fromMs, toMs } = spanOfNight(night)
-  const begins = format(new TZDate(fromMs, DEMO_ZONE), 'yyyy-MM-dd HH:mm:ss')
+  const begins = `${siteDay(fromMs)} 06:00:00`
   const start = night === LOST_CLOCK_NIGHT ? '2000-01-01 00:00:00' : begins
   const lines = [
     '# RG-A at the cross of SG-06   Unit: A',

@@ -1,23 +1,15 @@
 /** The two pressure loggers' files. West writes wide rows in site time and millibars, east long ones in epoch and pascals. */
-import { TZDate } from '@date-fns/tz'
 import { MARKS } from '../../app/domain/readings.ts'
-import { at, DEMO_ZONE } from '../demo-time.ts'
+import { at } from '../demo-time.ts'
 import { pressureRows, spanOfNight } from './calendar.ts'
 import { type FileReading, type LoggerFile, reading } from './files.ts'
 import { channelsOf, print, said, segmentOfChannel } from './gauge-channels.ts'
 import type { Said } from './pressures.ts'
+import { siteTime } from './site-clock.ts'
 
 /** Channels of each logger in the order in which they stand in its files. */
 export const WEST_CHANNELS = channelsOf(1, 8)
 export const EAST_CHANNELS = channelsOf(9, 17)
-
-const two = (value: number) => String(value).padStart(2, '0')
-
-/** "06.11.2026 14:00:00", the site's clock. */
-function siteTime(atMs: number): string {
-  const local = new TZDate(atMs, DEMO_ZONE)
-  return `${two(local.getDate())}.${two(local.getMonth() + 1)}.${local.getFullYear()} ${two(local.getHours())}:${two(local.getMinutes())}:${two(local.getSeconds())}`
-}
 
 function pressureReading(
   channel: string,

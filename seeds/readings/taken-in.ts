@@ -1,6 +1,4 @@
 /** Which files had been taken in before the demo begins, by whom and when; the newest is made last. */
-import { TZDate } from '@date-fns/tz'
-import { DEMO_ZONE } from '../demo-time.ts'
 import { PERSON_ID } from '../people.ts'
 import { SEGMENTS } from '../register/segments.ts'
 import { BAKES } from '../scenario/bakes.ts'
@@ -8,12 +6,14 @@ import { archiveMonths, demoNights, everyStep, keptInArchive, type Span, spanOfN
 import type { LoggerFile } from './files.ts'
 import { otherNightFile, powerFile, temperatureFile } from './logger-files.ts'
 import { eastFile, nightFile, westFile } from './night-file.ts'
+import { siteDay } from './site-clock.ts'
 import { THERMOCOUPLES } from './temperatures.ts'
+import { isHeated } from './wall-temperature.ts'
 
 const MINUTE_MS = 60_000
 const HOUR_MS = 60 * MINUTE_MS
-/** Temperatures and power are kept whole from here: the night before the first of the two present bakes. */
-const FIVE_MINUTES_SINCE = '2026-10-31'
+/** Temperatures and power are kept whole in the nights from here on: since the second of the present bakes soaks. */
+const FIVE_MINUTES_SINCE = '2026-11-05'
 /** The power logger's months have a row every so often. */
 const POWER_ARCHIVE_MS = 6 * HOUR_MS
 
@@ -26,8 +26,8 @@ export interface TakenInFile {
 
 const later = (ms: number, minutes: number) => new Date(ms + minutes * MINUTE_MS)
 
-/** Months of the three loggers that ran all along: thinned, but for the days on which much happened. */
-function months(): TakenInFile[] {
+/** Months of the pressure loggers: thinned to a row an hour, but for the stretches in which much happened. */
+function pressureMonths(): TakenInFile[] {
   const west = SEGMENTS.filter(({ id }) => id <= 8).map(({ tag }) => tag)
   const keptWest = keptInArchive(west)
   const keptOf = new Map(SEGMENTS.map(({ tag }) => [tag, keptInArchive([tag])]))
@@ -36,25 +36,34 @@ function months(): TakenInFile[] {
     const name = (source: string) => `${source}_${month}_archive.csv`
     const makes = [
       () => westFile(name('NL-W'), rows.filter(keptWest), span.toMs),
-      () =>
-        eastFile(name('NL-E'), rows, span.toMs, (segment, atMs) => keptOf.get(segment)?.(atMs) === true),
-      () => powerFile(name('NL-P'), everyStep(span.fromMs, span.toMs, POWER_ARCHIVE_MS), span.toMs),
+      () => eastFile(name('NL-E'), rows, span.toMs, (segment, atMs) => keptOf.get(segment)?.(atMs) === true),
     ]
-    return makes.map((make, index) => ({
-      make,
-      takenInBy: PERSON_ID.juniper,
-      takenInAt: later(span.toMs, 95 + 4 * index),
-    }))
+    return makes.map((make, index) => carriedOver(make, span, index))
   })
 }
 
-/** One file for each past bake, with the twelve thermocouples of its segment. */
+/** Months of the power logger: a row every six hours, and every hour while a segment was heated. */
+function powerMonths(): TakenInFile[] {
+  return archiveMonths(FIVE_MINUTES_SINCE).map(({ month, span }) => {
+    const rows = everyStep(span.fromMs, span.toMs, HOUR_MS).filter(
+      (atMs) => atMs % POWER_ARCHIVE_MS === 0 || SEGMENTS.some(({ tag }) => isHeated(tag, atMs)),
+    )
+    return carriedOver(() => powerFile(`NL-P_${month}_archive.csv`, rows, span.toMs), span, 2)
+  })
+}
+
+function carriedOver(make: () => LoggerFile, span: Span, turn: number): TakenInFile {
+  return { make, takenInBy: PERSON_ID.juniper, takenInAt: later(span.toMs, 95 + 4 * turn) }
+}
+
+/** One file for each bake, with the twelve thermocouples of its segment. */
 function bakeRecords(): TakenInFile[] {
   return BAKES.flatMap(({ segment, cartAt, coldAt }) => {
-    if (coldAt === null) return []
-    const span: Span = { fromMs: cartAt.getTime() - (cartAt.getTime() % HOUR_MS), toMs: coldAt.getTime() }
+    // Bakes of the present go on in the nights' own files.
+    const toMs = coldAt?.getTime() ?? spanOfNight(FIVE_MINUTES_SINCE).fromMs
+    const span: Span = { fromMs: cartAt.getTime() - (cartAt.getTime() % HOUR_MS), toMs }
     const places = THERMOCOUPLES.filter((one) => one.segment === segment)
-    const day = new TZDate(span.fromMs, DEMO_ZONE).toISOString().slice(0, 10)
+    const day = siteDay(span.fromMs)
     const make = () =>
       temperatureFile(
         `NL-T_${day}_bake_${segment}.csv`,
@@ -95,7 +104,7 @@ function nights(): TakenInFile[] {
 
 /** All of them in the order in which they were taken in. */
 export function takenInFiles(): TakenInFile[] {
-  return [...months(), ...bakeRecords(), ...nights()].sort(
+  return [...pressureMonths(), ...powerMonths(), ...bakeRecords(), ...nights()].sort(
     (a, b) => a.takenInAt.getTime() - b.takenInAt.getTime(),
   )
 }

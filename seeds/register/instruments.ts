@@ -5,6 +5,7 @@ import type { Quantity } from '../../app/domain/readings.ts'
 import type { InstrumentKind, PositionKind } from '../../app/domain/register.ts'
 import { at, REGISTER_BEGAN } from '../demo-time.ts'
 import { PERSON_ID } from '../people.ts'
+import { EXCHANGES } from '../scenario/events.ts'
 import { type DemoPosition, POSITIONS } from './positions.ts'
 
 interface Family {
@@ -33,8 +34,7 @@ const FAMILIES: Partial<Record<PositionKind, Family>> = {
   oxygen: { kind: 'oxygen-monitor', prefix: 'X-', first: 5001, rangeMin: 0, rangeMax: 25 },
 }
 
-/** Position whose instrument was exchanged while its segment was open, and when the new one took over. */
-const EXCHANGED = { tag: 'HC-14A', at: at('2026-11-05 14:20'), newSerial: 'Q-8120' }
+const EXCHANGE_AT = new Map(EXCHANGES.map((one) => [one.position, one]))
 
 interface DemoInstrument {
   id: number
@@ -69,12 +69,7 @@ function fittedFromTheStart(): Omit<DemoInstrument, 'id'>[] {
         // Gauges go to calibration in three batches a year.
         calibrationDue: hot ? at(`2027-${['02', '06', '10'][index % 3]}-15`) : null,
         certificate: hot ? `QC-2025-${String(number - family.first + 101)}` : '',
-        note:
-          position.tag === EXCHANGED.tag
-            ? 'Filament flickered from the end of October; taken out on 2026-11-05'
-            : hot
-              ? 'Two filaments'
-              : '',
+        note: EXCHANGE_AT.get(position.tag)?.oldNote ?? (hot ? 'Two filaments' : ''),
         position,
       },
     ]
@@ -93,9 +88,30 @@ const spare = (serial: string, note: string): Omit<DemoInstrument, 'id'> => ({
   position: null,
 })
 
+/** What came in for an exchanged one: of the same kind, new. */
+function replacements(fitted: readonly Omit<DemoInstrument, 'id'>[]): Omit<DemoInstrument, 'id'>[] {
+  return EXCHANGES.map((one) => {
+    const old = fitted.find(({ position }) => position?.tag === one.position)
+    if (old === undefined) throw new Error(`The demo has no instrument at ${one.position} to exchange`)
+    const hot = old.kind === 'hot-cathode'
+    return {
+      ...old,
+      serial: one.newSerial,
+      calibrationDue: hot ? new Date(one.at.getTime() + CALIBRATED_FOR_MS) : null,
+      certificate: hot ? `QC-${one.at.getUTCFullYear()}-${one.newSerial.slice(2)}` : '',
+      note: hot ? 'Two filaments; new when it was fitted' : 'New when it was fitted',
+      position: null,
+    }
+  })
+}
+
+/** A new gauge goes to calibration after two years. */
+const CALIBRATED_FOR_MS = 2 * 365 * 86_400_000
+
+const FITTED = fittedFromTheStart()
 const INSTRUMENTS: readonly DemoInstrument[] = [
-  ...fittedFromTheStart(),
-  spare(EXCHANGED.newSerial, 'Two filaments; new in October 2026'),
+  ...FITTED,
+  ...replacements(FITTED),
   spare('Q-8121', 'Spare, in the cabinet at VB-08'),
   spare('Q-8122', 'Spare, in the cabinet at VB-08'),
 ].map((draft, index) => ({ id: index + 1, ...draft }))
@@ -111,28 +127,27 @@ export async function seedInstruments(db: DbOrTx): Promise<number> {
             positionId: position.id,
             instrumentId: id,
             startsAt: REGISTER_BEGAN,
-            endsAt: position.tag === EXCHANGED.tag ? EXCHANGED.at : null,
+            endsAt: EXCHANGE_AT.get(position.tag)?.at ?? null,
             reason: 'Fitted when the register was begun',
             recordedBy: PERSON_ID.juniper,
             recordedAt: REGISTER_BEGAN,
           },
         ],
   )
-  const exchanged = POSITIONS.find(({ tag }) => tag === EXCHANGED.tag)
-  const fresh = INSTRUMENTS.find(({ serial }) => serial === EXCHANGED.newSerial)
-  if (exchanged === undefined || fresh === undefined)
-    throw new Error('The exchanged gauge is not in the demo')
-  await db.insert(fitting).values([
-    ...first,
-    {
-      positionId: exchanged.id,
-      instrumentId: fresh.id,
-      startsAt: EXCHANGED.at,
+  const fresh = EXCHANGES.map((one) => {
+    const place = POSITIONS.find(({ tag }) => tag === one.position)
+    const fitted = INSTRUMENTS.find(({ serial }) => serial === one.newSerial)
+    if (place === undefined || fitted === undefined) throw new Error(`${one.position} is not in the demo`)
+    return {
+      positionId: place.id,
+      instrumentId: fitted.id,
+      startsAt: one.at,
       endsAt: null,
-      reason: 'Old gauge flickered; exchanged while the segment was open',
-      recordedBy: PERSON_ID.odalys,
-      recordedAt: at('2026-11-05 14:45'),
-    },
-  ])
+      reason: one.reason,
+      recordedBy: PERSON_ID[one.by],
+      recordedAt: new Date(one.at.getTime() + 25 * 60_000),
+    }
+  })
+  await db.insert(fitting).values([...first, ...fresh])
   return INSTRUMENTS.length
 }
