@@ -26,7 +26,10 @@ export function linePositions(line: SteadyLine, extraM: readonly number[] = []):
   for (const leak of line.leaks ?? []) wanted.push(leak.atM)
   for (const position of wanted) requireWithin('position along the tube', position, 0, line.lengthM)
   wanted.sort((a, b) => a - b)
-  return wanted.filter((x, i) => i === 0 || x - wanted[i - 1]! > SAME_POINT * line.lengthM)
+  // Measured from the last one kept, so that a crowd of near points cannot drift away from it.
+  const kept: number[] = []
+  for (const x of wanted) if (kept.length === 0 || x - kept.at(-1)! > SAME_POINT * line.lengthM) kept.push(x)
+  return kept
 }
 
 /**
@@ -36,22 +39,20 @@ export function linePositions(line: SteadyLine, extraM: readonly number[] = []):
 export function steadyPressures(line: SteadyLine, positionsM: readonly number[]): Float64Array {
   requirePositive('specific', line.specific)
   const n = positionsM.length
-  const diagonal = new Float64Array(n)
+  const sink = new Float64Array(n)
   const right = new Float64Array(n)
   const link = new Float64Array(n)
   for (let i = 0; i + 1 < n; i++) {
     const gap = positionsM[i + 1]! - positionsM[i]!
     const half = (line.sourcePerM * gap) / 2
     link[i] = line.specific / gap
-    diagonal[i]! += link[i]!
-    diagonal[i + 1]! += link[i]!
     right[i]! += half
     right[i + 1]! += half
   }
   let speed = 0
   for (const pump of line.pumps) {
     requireWithin('speedM3S', pump.speedM3S, 0, 1e6)
-    diagonal[nodeAt(line, positionsM, pump.atM)]! += pump.speedM3S
+    sink[nodeAt(line, positionsM, pump.atM)]! += pump.speedM3S
     speed += pump.speedM3S
   }
   for (const leak of line.leaks ?? []) {
@@ -63,7 +64,7 @@ export function steadyPressures(line: SteadyLine, positionsM: readonly number[])
   if (speed === 0) {
     throw new PhysicsError('speed of all pumps for this gas', 0, 'at least one pump that takes the gas')
   }
-  return solveLine(diagonal, link, right)
+  return solveLine(sink, link, right)
 }
 
 function nodeAt(line: SteadyLine, positionsM: readonly number[], atM: number): number {
@@ -73,16 +74,17 @@ function nodeAt(line: SteadyLine, positionsM: readonly number[], atM: number): n
   return node
 }
 
-// Gauss elimination of a symmetric chain; links carry the minus sign off the diagonal.
-function solveLine(diagonal: Float64Array, link: Float64Array, right: Float64Array): Float64Array {
-  const n = diagonal.length
-  for (let i = 1; i < n; i++) {
-    const factor = link[i - 1]! / diagonal[i - 1]!
-    diagonal[i]! -= factor * link[i - 1]!
-    right[i]! += factor * right[i - 1]!
+// Gauss elimination from the near end: what a node passes on is its pumping in series with the link, so nothing is
+// ever subtracted and a pump a hair from the end costs no digits.
+function solveLine(sink: Float64Array, link: Float64Array, right: Float64Array): Float64Array {
+  const n = sink.length
+  for (let i = 0; i + 1 < n; i++) {
+    const passed = link[i]! / (link[i]! + sink[i]!)
+    sink[i + 1]! += passed * sink[i]!
+    right[i + 1]! += passed * right[i]!
   }
-  right[n - 1]! /= diagonal[n - 1]!
-  for (let i = n - 2; i >= 0; i--) right[i] = (right[i]! + link[i]! * right[i + 1]!) / diagonal[i]!
+  right[n - 1]! /= sink[n - 1]!
+  for (let i = n - 2; i >= 0; i--) right[i] = (right[i]! + link[i]! * right[i + 1]!) / (sink[i]! + link[i]!)
   return right
 }
 

@@ -173,7 +173,9 @@ function addBranch(
   const wanted = [...edges, ...(branch.pointsM ?? []), ...joints, ...valves.map((valve) => valve.atM)]
   for (const x of wanted) requireWithin(`position on branch ${branch.name}`, x, 0, lengthM)
   wanted.sort((a, b) => a - b)
-  const marks = wanted.filter((x, i) => i === 0 || x - wanted[i - 1]! > SAME_POINT_M)
+  // Measured from the last one kept, so that a crowd of near points cannot drift away from it.
+  const marks: number[] = []
+  for (const x of wanted) if (marks.length === 0 || x - marks.at(-1)! > SAME_POINT_M) marks.push(x)
 
   let node = root < 0 ? addNode(draft, -1, index, 0, branch.sections[0]!.diameterM, 0) : root
   let section = 0

@@ -99,14 +99,19 @@ describe('nodes on a line', () => {
           const line = { lengthM: 250, specific, sourcePerM: 1e-9, pumps, leaks }
           const positions = linePositions(line)
           const pressures = steadyPressures(line, positions)
-          const at = (x: number) => pressures[positions.findIndex((y) => Math.abs(x - y) < 1e-6)]!
+          const at = (x: number) => pressures[positions.findIndex((y) => Math.abs(x - y) < 2.6e-7)]!
           const out = pumps.reduce((sum, p) => sum + p.speedM3S * at(p.atM), 0)
           const into = 1e-9 * 250 + leaks.reduce((sum, l) => sum + l.loadPaM3S, 0)
-          expect(out / into).toBeCloseTo(1, 8)
+          expect(out / into).toBeCloseTo(1, 10)
           expect(Math.min(...pressures)).toBeGreaterThan(0)
         },
       ),
     )
+  })
+  test('a pump a hair from the end takes what one at the end takes', () => {
+    const near = ends([{ atM: 1e-6, speedM3S: 0.01 }])
+    expect(near.positions).toHaveLength(3)
+    expect((near.pressures[1]! * 0.01) / (stretch.sourcePerM * 250)).toBeCloseTo(1, 13)
   })
   test('a gas that no pump takes has no steady pressure, and a pump off the tube is refused', () => {
     expect(() => ends([{ atM: 0, speedM3S: 0 }])).toThrow('at least one pump that takes the gas')
