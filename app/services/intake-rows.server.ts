@@ -2,7 +2,7 @@
 
 import { DomainError } from '../domain/errors.ts'
 import { createNightFileReader } from '../domain/night-files/reader.ts'
-import type { ReadingBatch, ReadOut } from '../domain/night-files/types.ts'
+import type { BatchChannel, ReadingBatch, ReadOut } from '../domain/night-files/types.ts'
 import type { ReadingRules } from './intake-reading.server.ts'
 
 /** Filled in while the rows are drawn. */
@@ -33,6 +33,16 @@ export async function* incomingRows(
   again.readOut = reader.end()
   for (const batch of waiting) yield toRows(batch, channelIds())
   again.sent += waiting.reduce((sum, { count }) => sum + count, 0)
+}
+
+/** The same rows from readings that are at hand as a whole. */
+export async function* batchRows(
+  batches: readonly ReadingBatch[],
+  channels: readonly BatchChannel[],
+  ids: ReadonlyMap<string, number>,
+): AsyncGenerator<Buffer> {
+  const channelIds = channels.map(({ name }) => idOf(ids, name))
+  for (const batch of batches) yield toRows(batch, channelIds)
 }
 
 function idOf(ids: ReadonlyMap<string, number>, name: string): number {

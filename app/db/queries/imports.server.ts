@@ -79,7 +79,7 @@ const CHUNK_LIMIT = 1024 * 1024
 /** Begins to keep a file; it counts as nothing until `finishOriginal`. */
 export async function beginOriginal(
   db: DbOrTx,
-  input: { fileName: string; createdBy: number; createdAt: Date },
+  input: { fileName: string; createdBy: number | null; createdAt: Date },
 ): Promise<number> {
   const [result] = await db.insert(attachment).values({
     ...input,
@@ -207,21 +207,29 @@ export async function findImport(db: DbOrTx, importId: number): Promise<ImportRo
 
 export type ImportListRow = Omit<ImportRow, 'readOut'>
 
-/** Imports, the last to arrive first. */
+/** Files, the last to arrive first. Posts of live readings are no files that anybody looks for. */
 export function listImports(db: DbOrTx, limit: number): Promise<ImportListRow[]> {
-  return selectImports(db).orderBy(desc(importFile.id)).limit(limit)
+  return selectImports(db).where(eq(importFile.arrival, 'file')).orderBy(desc(importFile.id)).limit(limit)
 }
 
-/** Imports that came in or end after an instant, for the nights of the overview. */
+/** Files that came in or end after an instant, for the nights of the overview; a live post is no night's file. */
 export function listImportsSince(db: DbOrTx, since: Date): Promise<ImportListRow[]> {
   return selectImports(db)
-    .where(or(gte(importFile.lastAt, since), gte(importFile.uploadedAt, since)))
+    .where(
+      and(
+        eq(importFile.arrival, 'file'),
+        or(gte(importFile.lastAt, since), gte(importFile.uploadedAt, since)),
+      ),
+    )
     .orderBy(desc(importFile.id))
 }
 
 /** Sources that have sent a file at least once. */
 export async function listSourcesHeardOf(db: DbOrTx): Promise<Set<number>> {
-  const rows = await db.selectDistinct({ id: importFile.sourceId }).from(importFile)
+  const rows = await db
+    .selectDistinct({ id: importFile.sourceId })
+    .from(importFile)
+    .where(eq(importFile.arrival, 'file'))
   return new Set(rows.flatMap(({ id }) => (id === null ? [] : [id])))
 }
 
