@@ -86,11 +86,6 @@ export type Mark = keyof typeof MARKS
 /** Marks that make the instant untrustworthy: such readings stay out of rates, limits and fits. */
 export const UNTIMED_MARKS = MARKS['time-ambiguous'] | MARKS['time-reconstructed']
 
-/** Bits for a list of marks. */
-export function marksToBits(marks: readonly Mark[]): number {
-  return marks.reduce((bits, mark) => bits | MARKS[mark], 0)
-}
-
 /** Marks set in a stored number. */
 export function bitsToMarks(bits: number): Mark[] {
   return (Object.keys(MARKS) as Mark[]).filter((mark) => (bits & MARKS[mark]) !== 0)

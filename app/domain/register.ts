@@ -2,7 +2,6 @@
 import { z } from 'zod'
 
 export const HYDROGEN_MODELS = ['diffusion', 'low-hydrogen'] as const
-export type HydrogenModel = (typeof HYDROGEN_MODELS)[number]
 
 export const VALVE_KINDS = ['gate', 'pump-port', 'vent'] as const
 export type ValveKind = (typeof VALVE_KINDS)[number]

@@ -3,7 +3,7 @@ import type { z } from 'zod'
 import { DomainError, type FieldErrors } from '../domain/errors.ts'
 
 /** Messages per field of a zod error, keyed by dotted path. */
-export function fieldErrors(error: z.ZodError): FieldErrors {
+function fieldErrors(error: z.ZodError): FieldErrors {
   const fields: FieldErrors = {}
   for (const issue of error.issues) {
     const key = issue.path.join('.') || 'form'
@@ -20,12 +20,17 @@ export function parseValues<Schema extends z.ZodType>(schema: Schema, values: un
   const count = Object.keys(fields).length
   throw new DomainError(
     'bad-input',
-    count === 1 ? 'One field needs another look; nothing has been saved.' : `${count} fields need another look; nothing has been saved.`,
+    count === 1
+      ? 'One field needs another look; nothing has been saved.'
+      : `${count} fields need another look; nothing has been saved.`,
     { fields },
   )
 }
 
 /** Reads a request's form and parses it. Repeated names become lists only where the schema asks for one. */
-export async function parseForm<Schema extends z.ZodType>(schema: Schema, request: Request): Promise<z.infer<Schema>> {
+export async function parseForm<Schema extends z.ZodType>(
+  schema: Schema,
+  request: Request,
+): Promise<z.infer<Schema>> {
   return parseValues(schema, Object.fromEntries(await request.formData()))
 }

@@ -9,7 +9,7 @@ import { openSession } from '#app/auth/session.server.ts'
 import { testDb } from './db.ts'
 
 const BUILD = `${process.cwd()}/build/server/index.js`
-export const ORIGIN = 'http://ebbline.test'
+const ORIGIN = 'http://ebbline.test'
 
 let build: ServerBuild | undefined
 

@@ -16,7 +16,7 @@ export function CellView({ cell }: { cell: Cell }) {
   }
   if (cell.kind === 'link') {
     return (
-      <Link to={cell.to} className="link">
+      <Link to={cell.to} className="link whitespace-nowrap">
         {cell.text}
       </Link>
     )
@@ -28,10 +28,9 @@ export function CellView({ cell }: { cell: Cell }) {
 }
 
 /** A number with its unit: plain where it is readable so, otherwise with a power of ten. */
-export function Figure({ value, unit }: { value: number; unit: string }) {
-  const size = Math.abs(value)
+function Figure({ value, unit }: { value: number; unit: string }) {
   const after = unit === '' ? '' : ` ${unit}`
-  if (value === 0 || (size >= 1e-3 && size < 1e6)) {
+  if (isPlain(value)) {
     return (
       <span className="whitespace-nowrap">
         {value}
@@ -47,6 +46,12 @@ export function Figure({ value, unit }: { value: number; unit: string }) {
       {after}
     </span>
   )
+}
+
+/** Whether a number is readable without a power of ten. */
+export function isPlain(value: number): boolean {
+  const size = Math.abs(value)
+  return size === 0 || (size >= 1e-3 && size < 1e6)
 }
 
 /** Significant digits that a figure was given with, so that a limit of 2.55e-7 is not shown as 2.6e-7. */

@@ -22,7 +22,7 @@ const CONTROL =
   'block w-full min-h-10 rounded-md border border-edge bg-sheet px-2.5 py-1.5 text-ink pointer-coarse:min-h-11 aria-invalid:border-2 aria-invalid:border-bad disabled:bg-rule-2'
 
 /** The frame of a field; the control inside takes the wiring. The other fields here are made of it. */
-export function Field({
+function Field({
   name,
   label,
   hint,

@@ -4,7 +4,6 @@
  */
 import { and, asc, eq, gt, inArray, isNull, lt, or, type SQL, sql } from 'drizzle-orm'
 import {
-  MARKS,
   type Quality,
   type Quantity,
   qualityCode,
@@ -291,6 +290,3 @@ export async function listSourceEnds(db: DbOrTx, at: Date): Promise<SourceEnd[]>
     .groupBy(source.id)
     .orderBy(asc(source.code))
 }
-
-/** Bit of the conflict mark, for queries that count them. */
-export const CONFLICT_BIT = MARKS.conflict

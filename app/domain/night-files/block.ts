@@ -46,7 +46,7 @@ export interface BlockFacts {
 }
 
 /** The unit of the columns that name none: a metadata line's, else the profile's unless these files name their own. */
-export function defaultUnit(noteUnit: Unit | null, profile: SourceProfile): Unit | null {
+function defaultUnit(noteUnit: Unit | null, profile: SourceProfile): Unit | null {
   return noteUnit ?? (profile.unitInFile ? null : unitOf(profile.unit))
 }
 

@@ -34,7 +34,7 @@ const STATUS = /^(?:status|state|quality|flags?|zustand|état|etat|gauge status)
 const COMMENT = /^(?:comments?|remarks?|notes?|bemerkung(?:en)?|kommentare?|operator|remarques?|text)$/i
 
 /** Splits `P1 (mbar)`, `P1 [mbar]`, `P1 / mbar`, `P1, mbar`, `P1_mbar` into name and unit. */
-export function splitHeaderCell(cell: string): { name: string; unit: UnitReading } {
+function splitHeaderCell(cell: string): { name: string; unit: UnitReading } {
   const text = mendLabel(cell).trim()
   const bracketed = /^(.*?)\s*[[({]\s*([^\])}]*(?:\([a-z]\))?)\s*[\])}]$/.exec(text)
   if (bracketed !== null) {

@@ -17,13 +17,6 @@ export function plainWord(text: string): string {
     .toLowerCase()
 }
 
-/** Name of a separator for sentences. */
-export function separatorName(separator: string): string {
-  if (separator === '\t') return 'tab'
-  if (separator === ' ') return 'spaces'
-  return `“${separator}”`
-}
-
 /** A number as a power of ten, such as `6.81 × 10⁻⁸`, for sentences that are shown as they stand. */
 export function powerText(value: number): string {
   if (value === 0 || !Number.isFinite(value)) return String(value)

@@ -281,10 +281,6 @@ export function isTimeOfDay(text: string): boolean {
   return TIME_ONLY.test(text.trim())
 }
 
-export function isDateOnly(text: string): boolean {
-  return DATE_ONLY.test(text.trim())
-}
-
 export interface DateParts {
   first: string
   mark: '.' | '/' | '-'

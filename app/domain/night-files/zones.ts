@@ -5,7 +5,7 @@ const DAY = 86_400_000
 const STEP = 15 * MINUTE
 
 /** Offset of a fixed zone text such as +01:00 or UTC, in minutes; null for a zone that has a name. */
-export function fixedOffset(zone: string): number | null {
+function fixedOffset(zone: string): number | null {
   if (zone === 'UTC' || zone === 'Z') return 0
   const match = /^([+-])(\d{2}):(\d{2})$/.exec(zone)
   if (match === null) return null
@@ -21,9 +21,6 @@ export function offsetAt(zone: string, atMs: number): number {
 export function wallText(wallMs: number): string {
   return new Date(wallMs).toISOString().slice(0, 19).replace('T', ' ')
 }
-
-/** Instants of a wall time: one normally, two in a repeated hour (earlier first), none in a skipped one. */
-export type WallInstants = readonly [] | readonly [number] | readonly [number, number]
 
 /**
  * Wall time to instants for one zone. Offsets change on whole quarters of an hour in every zone in use, so the

@@ -36,11 +36,11 @@ function isZone(text: string): boolean {
 }
 
 /** An IANA zone such as Europe/Vienna (follows clock changes) or a fixed offset such as +01:00 (does not). */
-export const ZoneSchema = z.string().refine(isZone, {
+const ZoneSchema = z.string().refine(isZone, {
   error: 'Give an IANA zone such as Europe/Vienna, or a fixed offset such as +01:00',
 })
 
-export const ProfileColumnSchema = z.object({
+const ProfileColumnSchema = z.object({
   /** Name as the file writes it, or the position (counted from 1) of a file without a header, as text. */
   inFile: z.string().min(1).max(120),
   /** Raw channel name of the source; null leaves the column out from now on. */
