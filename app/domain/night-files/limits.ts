@@ -8,7 +8,7 @@ export const HEAD_CHARS = 512 * 1024
 export const MAX_LINE_CHARS = 1024 * 1024
 export const BATCH_SIZE = 8192
 /** Readings remembered to find duplicates and conflicts, over all channels together. */
-export const DUPLICATE_WINDOW = 1_000_000
+export const DUPLICATE_WINDOW = 300_000
 /** Differing readings of one channel at one instant; the stored sequence number ends at 255. */
 export const MAX_SEQ = 255
 export const MAX_REJECTED = 1000

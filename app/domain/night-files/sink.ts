@@ -29,7 +29,9 @@ interface Held {
 
 interface ChannelState {
   summary: ChannelSummary
+  /** Readings by instant: those remembered last, and the generation before them. */
   seen: Map<number, Held>
+  seenBefore: Map<number, Held>
   bins: SketchBins
 }
 
@@ -101,6 +103,7 @@ export class ReadingSink {
         sketch: null,
       },
       seen: new Map(),
+      seenBefore: new Map(),
       bins: new SketchBins(this.periodMs ?? 60_000),
     })
     return index
@@ -110,7 +113,10 @@ export class ReadingSink {
   emit(reading: OutReading): EmitResult {
     const state = this.#states[reading.channel]
     if (state === undefined) throw new RangeError(`No channel has the index ${reading.channel}`)
-    const held = state.seen.get(reading.atMs)
+    // Rows mostly come in order: what is later than everything before cannot have been seen.
+    const { lastMs } = state.summary
+    const later = lastMs === null || reading.atMs > lastMs
+    const held = later ? undefined : (state.seen.get(reading.atMs) ?? state.seenBefore.get(reading.atMs))
     if (held === undefined) {
       this.#remember(state, reading)
       this.#append(state, reading, 0)
@@ -151,11 +157,13 @@ export class ReadingSink {
       more: null,
     })
     this.#remembered += 1
-    if (this.#remembered <= DUPLICATE_WINDOW) return
-    const oldest = state.seen.keys().next()
-    if (oldest.done === true) return
-    state.seen.delete(oldest.value)
-    this.#remembered -= 1
+    if (this.#remembered < DUPLICATE_WINDOW / 2) return
+    // Whole generations are forgotten: taking single entries out of a large map, oldest first, is slow.
+    for (const each of this.#states) {
+      each.seenBefore = each.seen
+      each.seen = new Map()
+    }
+    this.#remembered = 0
   }
 
   #append(state: ChannelState, reading: OutReading, seq: number): void {
