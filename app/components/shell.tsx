@@ -10,7 +10,7 @@ import { Notice } from './ui/notice.tsx'
 import { longTimeText, offsetLabel } from './ui/site-time.ts'
 import { UnitSwitch } from './ui/unit-switch.tsx'
 
-export interface ShellProps {
+interface ShellProps {
   person: { name: string; roles: readonly Role[] }
   site: { name: string; zone: string }
   clock: { at: Date; demo: boolean }

@@ -2,7 +2,7 @@
 import { createContext, useContext } from 'react'
 import type { PressureUnit } from '#app/context.ts'
 
-export interface SiteFacts {
+interface SiteFacts {
   zone: string
   /** The product's time when the page was made; ages are counted from it. */
   now: Date

@@ -4,7 +4,7 @@ import { Link } from 'react-router'
 import { SEGMENT_STATES, type SegmentState } from '#app/domain/segment-states.ts'
 import { chainageScale } from './scales.ts'
 
-export interface LocatorSegment {
+interface LocatorSegment {
   tag: string
   lineCode: string
   startM: number

@@ -48,6 +48,8 @@ export function PressureChart({
 }) {
   const { unit, zone } = useSite()
   const palette = usePalette()
+  // What only a script can work is not offered before there is one.
+  const alive = palette !== null
   const [logTime, setLogTime] = useState(xLog)
   const [cursor, setCursor] = useState<number | null>(null)
   const isLog = kind === 'hours' && logTime
@@ -87,7 +89,7 @@ export function PressureChart({
       <figcaption className="sr-only">{caption}</figcaption>
       <div className="mb-1 flex flex-wrap items-center justify-between gap-x-4 gap-y-2">
         <ChartKeys aligned={aligned} cursor={cursor} />
-        {kind === 'hours' && <TimeAxisSwitch log={logTime} onChange={setLogTime} />}
+        {kind === 'hours' && alive && <TimeAxisSwitch log={logTime} onChange={setLogTime} />}
       </div>
       <div className="min-h-85">
         {palette === null ? (
@@ -108,6 +110,7 @@ export function PressureChart({
         )}
       </div>
       <ReadOut
+        alive={alive}
         count={aligned.x.length}
         cursor={cursor}
         onCursor={setCursor}
@@ -134,12 +137,14 @@ export function PressureChart({
 
 /** A slider along the curves: arrow keys, a finger or a mouse move the read-out without touching the drawing. */
 function ReadOut({
+  alive,
   count,
   cursor,
   onCursor,
   words,
   place,
 }: {
+  alive: boolean
   count: number
   cursor: number | null
   onCursor: (at: number) => void
@@ -148,7 +153,9 @@ function ReadOut({
 }) {
   const at = cursor ?? count - 1
   return (
-    <label className="mb-2 flex items-center gap-3 text-sm text-ink-2 print:hidden">
+    <label
+      className={`mb-2 flex items-center gap-3 text-sm text-ink-2 print:hidden ${alive ? '' : 'invisible'}`}
+    >
       <span className="shrink-0">Read at</span>
       <input
         type="range"

@@ -30,7 +30,7 @@ export function roundStep(length: number, wanted: number): number {
   return factor * power
 }
 
-export interface LineExtent {
+interface LineExtent {
   code: string
   lengthM: number
 }

@@ -9,7 +9,7 @@ export interface StripLine {
   lengthM: number
 }
 
-export interface StripGauge {
+interface StripGauge {
   tag: string
   kind: string
   /** Metres along its line. */

@@ -1,7 +1,7 @@
 import type { ButtonHTMLAttributes } from 'react'
 import { Link } from 'react-router'
 
-export type ButtonKind = 'plain' | 'primary' | 'danger'
+type ButtonKind = 'plain' | 'primary' | 'danger'
 
 const KINDS: Record<ButtonKind, string> = {
   plain: 'border-ink bg-sheet text-ink hover:bg-rule-2',

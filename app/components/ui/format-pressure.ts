@@ -19,7 +19,7 @@ const RAISED: Record<string, string> = {
   9: '⁹',
 }
 
-export interface PressureParts {
+interface PressureParts {
   mantissa: string
   exponent: number
   unit: PressureUnit

@@ -5,7 +5,7 @@ const TONES = {
   heat: 'border-heat bg-heat-soft',
 }
 
-export type NoticeTone = keyof typeof TONES
+type NoticeTone = keyof typeof TONES
 
 const TONE_WORDS: Record<NoticeTone, string> = {
   plain: '',

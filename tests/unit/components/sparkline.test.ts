@@ -1,5 +1,5 @@
 import { describe, expect, test } from 'vitest'
-import { sparkPath } from '#app/components/charts/sparkline.tsx'
+import { sparkPath } from '#app/components/charts/spark-path.ts'
 
 describe('a sparkline', () => {
   test('begins anew after a gap instead of bridging it', () => {
