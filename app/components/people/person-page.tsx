@@ -7,6 +7,7 @@ import { useSite } from '#app/hooks/use-site.ts'
 import type { GrantWithStanding } from '#app/services/people.server.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { SiteTimeField } from '../forms/site-time-field.tsx'
+import { typedInstant } from '../register/register-fields.tsx'
 import { ReasonField, type RegisterFailure } from '../register/thing-form.tsx'
 import { useCheckedForm } from '../register/use-checked-form.ts'
 import { Button } from '../ui/button.tsx'
@@ -145,7 +146,13 @@ function GrantForm({ failure: answered }: { failure: RegisterFailure | undefined
       <FormFailure failure={failure} />
       <input type="hidden" name="intent" value="grant" />
       <RoleField start={typed?.role ?? ''} errors={errorsOf('role')} />
-      <SiteTimeField name="startsAt" label="From" at={now} zone={zone} errors={errorsOf('startsAt')} />
+      <SiteTimeField
+        name="startsAt"
+        label="From"
+        at={typedInstant(typed, 'startsAt', zone, now)}
+        zone={zone}
+        errors={errorsOf('startsAt')}
+      />
       <TextField
         name="until"
         label="Last day"

@@ -13,7 +13,7 @@ import { FormFailure } from '../forms/form-failure.tsx'
 import { SiteTimeField } from '../forms/site-time-field.tsx'
 import { Button } from '../ui/button.tsx'
 import { SelectField, TextField } from '../ui/field.tsx'
-import { SegmentField, SuggestField, TimeField, type Typed } from './register-fields.tsx'
+import { SegmentField, SuggestField, TimeField, type Typed, typedInstant } from './register-fields.tsx'
 import { Conflict, ReasonField, type RegisterFailure } from './thing-form.tsx'
 import { type CheckedForm, useCheckedForm } from './use-checked-form.ts'
 
@@ -67,9 +67,9 @@ export function DatedRowForm({
         <SiteTimeField
           name="startsAt"
           label="From"
-          at={now}
+          at={typedInstant(typed, 'startsAt', zone, now)}
           zone={zone}
-          hint={`Site time (${zone}). What was before it stays as it is.`}
+          hint="What was before it stays as it is."
           errors={errorsOf('startsAt')}
         />
         {ends && (

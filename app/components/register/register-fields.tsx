@@ -1,8 +1,11 @@
 /** A field of the register's forms from its facts, filled with what was typed or with what is recorded. */
+import { readLocalTime } from '#app/domain/schemas/instant.ts'
 import type { FieldFact } from '#app/domain/schemas/register-fields.ts'
 import type { FieldValue } from '#app/domain/schemas/register-values.ts'
+import { useSite } from '#app/hooks/use-site.ts'
 import { CheckField, SelectField, TextAreaField, TextField } from '../ui/field.tsx'
 import { fieldTime } from '../ui/site-time.ts'
+import { isPlain } from './cell-view.tsx'
 
 /** Typed values of a form that was refused, by field. */
 export type Typed = Readonly<Record<string, string>>
@@ -15,6 +18,9 @@ function startText(field: FieldFact, value: FieldValue, zone: string): string {
     if (field.input === 'last-day') return fieldTime(new Date(value.getTime() - 1), zone).slice(0, 10)
     return timeWithSeconds(value, zone)
   }
+  // A number starts as people write it: 5e+19 and not a row of zeros.
+  if (typeof value === 'number')
+    return isPlain(value) ? String(value) : value.toExponential().replace('+', '')
   return String(value)
 }
 
@@ -22,6 +28,12 @@ function startText(field: FieldFact, value: FieldValue, zone: string): string {
 function timeWithSeconds(at: Date, zone: string): string {
   const seconds = at.getUTCSeconds()
   return seconds === 0 ? fieldTime(at, zone) : `${fieldTime(at, zone)}:${String(seconds).padStart(2, '0')}`
+}
+
+/** The instant that a time field starts with: what was typed, where it can be read, otherwise the present time. */
+export function typedInstant(typed: Typed | undefined, name: string, zone: string, now: Date): Date {
+  const read = readLocalTime(typed?.[name] ?? '', zone)
+  return read.kind === 'instant' ? read.at : now
 }
 
 export function RegisterField({
@@ -86,10 +98,18 @@ export function SegmentField({
   return <SelectField {...common} defaultValue={start} options={options} />
 }
 
-/** A site time that may stay empty. It takes free text once an answer has asked for an offset. */
-export function TimeField({ start, ...common }: Common & { start: string }) {
-  const free = common.errors?.some((error) => error.includes('offset')) ?? false
-  return <TextField {...common} type={free ? 'text' : 'datetime-local'} step={1} defaultValue={start} />
+/** A site time that may stay empty: text, because the browser's own field has no place for an offset. */
+export function TimeField({ start, hint, ...common }: Common & { start: string }) {
+  const { zone } = useSite()
+  const form = `Year-month-day hour:minute, site time (${zone}).`
+  return (
+    <TextField
+      {...common}
+      hint={hint === undefined ? form : `${hint} ${form}`}
+      autoComplete="off"
+      defaultValue={start.replace('T', ' ')}
+    />
+  )
 }
 
 /** Text with suggestions from a list; anything may be typed, and the server says when it is unknown. */

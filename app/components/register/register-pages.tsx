@@ -70,10 +70,13 @@ export function RegisterIndexPage({ counts, limitKinds, words, hits }: RegisterI
               key={kind}
               className="grid grid-cols-[minmax(0,1fr)_auto] gap-x-4 border-b border-rule-2 py-2.5 last:border-b-0 sm:grid-cols-[12rem_minmax(0,1fr)_auto]"
             >
-              <Link to={`/register/${kind}`} className="link font-medium">
+              <Link
+                to={`/register/${kind}`}
+                className="link col-start-1 row-start-1 justify-self-start font-medium"
+              >
                 {KIND_FACTS[kind].title}
               </Link>
-              <span className="col-span-2 row-start-2 text-sm text-ink-2 sm:col-span-1 sm:row-start-1 sm:text-base">
+              <span className="col-span-2 row-start-2 text-sm text-ink-2 sm:col-span-1 sm:col-start-2 sm:row-start-1 sm:text-base">
                 {KIND_FACTS[kind].about}
               </span>
               <span className="col-start-2 row-start-1 text-right sm:col-start-3">

@@ -9,7 +9,7 @@ import { FormFailure } from '../forms/form-failure.tsx'
 import { SiteTimeField } from '../forms/site-time-field.tsx'
 import { Button } from '../ui/button.tsx'
 import { TextAreaField, TextField } from '../ui/field.tsx'
-import { RegisterField, type Typed } from './register-fields.tsx'
+import { RegisterField, type Typed, typedInstant } from './register-fields.tsx'
 import { useCheckedForm } from './use-checked-form.ts'
 
 /** What an action of the register answers when it refused: also what was typed, so that it can be shown again. */
@@ -75,9 +75,9 @@ export function ThingForm({
       <SiteTimeField
         name="validFrom"
         label="Holds since"
-        at={now}
+        at={typedInstant(typed, 'validFrom', zone, now)}
         zone={zone}
-        hint={`Since when it is so, in site time (${zone}); now or earlier.`}
+        hint="Since when it is so: now or earlier."
         errors={errorsOf('validFrom')}
       />
       <ReasonField typed={typed} errors={errorsOf('reason')} />

@@ -114,6 +114,11 @@ function FieldView({ field, value }: { field: FieldFact; value: FieldValue }) {
   // The last day that counts is the one before the instant at which it no longer does.
   if (value instanceof Date && field.input === 'last-day') return dayText(new Date(value.getTime() - 1), zone)
   if (value instanceof Date) return <CellView cell={{ kind: 'instant', at: value }} />
+  if (field.input === 'segment') {
+    return (
+      <CellView cell={{ kind: 'link', to: `/register/segments/${encodeURIComponent(value)}`, text: value }} />
+    )
+  }
   return field.options.find((option) => option.value === value)?.label ?? value
 }
 
