@@ -3,6 +3,8 @@ import type { DbOrTx } from '../../app/db/client.server.ts'
 import { equipment, heaterCircuit, pump, pumpPlacement, supplySet, valve } from '../../app/db/schema/index.ts'
 import type { PumpKind, PumpSpeeds } from '../../app/domain/register.ts'
 import { at, REGISTER_BEGAN } from '../demo-time.ts'
+import { BAKES } from '../scenario/bakes.ts'
+import { LEAKS, VENTS } from '../scenario/events.ts'
 import { CART, GETTER_ION } from './pump-speeds.ts'
 import { BOX_CHAINAGE, type DemoSegment, SEGMENTS, segmentOf } from './segments.ts'
 
@@ -147,16 +149,51 @@ const CROSS_STOPPED: Record<string, string> = {
   'SP-1': '2026-10-28 08:30',
 }
 
+/** Stretches of the past in which a cart pumped instead of the pump at the cross: for a vent, a bake or both. */
+function pastCartWork() {
+  return BAKES.flatMap(({ segment, cart, cartAt, coldAt, rampAt }) => {
+    if (coldAt === null) return []
+    const vent = VENTS.find(
+      (one) => one.segment === segment && one.pumpingAt !== null && one.pumpingAt < rampAt,
+    )
+    return [
+      { segment, cart, vent, stoppedAt: vent?.ventedAt ?? cartAt, cartAt: vent?.pumpingAt ?? cartAt, coldAt },
+    ]
+  })
+}
+
+/** The pump at the cross, but for the stretches in which it was valved off. */
+function crossPump(segment: string, pumpTag: string): Placement[] {
+  const past = pastCartWork().filter((one) => one.segment === segment)
+  const ends = CROSS_STOPPED[segment]
+  const own = { pump: pumpTag, segment, reason: 'Own pump of the segment' }
+  return [
+    ...past.map(({ stoppedAt }, index) => ({
+      ...own,
+      from: past[index - 1]?.coldAt ?? REGISTER_BEGAN,
+      until: stoppedAt,
+    })),
+    { ...own, from: past.at(-1)?.coldAt ?? REGISTER_BEGAN, until: ends === undefined ? null : at(ends) },
+  ]
+}
+
+function pastPlacements(): Placement[] {
+  return pastCartWork().flatMap(({ segment, cart, vent, cartAt, coldAt }) => {
+    const reason = vent === undefined ? 'Pumps during the bake' : 'High vacuum after the vent, and the bake'
+    const onCart = { pump: cart, segment, from: cartAt, until: coldAt, reason }
+    if (vent?.roughingAt == null) return [onCart]
+    const roughing = { segment, from: vent.roughingAt, until: cartAt, reason: 'Roughing after the vent' }
+    return [{ pump: vent.roughingSet, ...roughing }, onCart]
+  })
+}
+
 function placements(): Placement[] {
-  const crosses = SEGMENTS.filter(({ tag }) => tag !== 'SG-11').map(({ tag, short }) => ({
-    pump: `PX-${short}`,
-    segment: tag,
-    from: REGISTER_BEGAN,
-    until: CROSS_STOPPED[tag] === undefined ? null : at(CROSS_STOPPED[tag]),
-    reason: 'Own pump of the segment',
-  }))
+  const crosses = SEGMENTS.filter(({ tag }) => tag !== 'SG-11').flatMap(({ tag, short }) =>
+    crossPump(tag, `PX-${short}`),
+  )
   return [
     ...crosses,
+    ...pastPlacements(),
     {
       pump: 'MC-C',
       segment: 'SG-08',
@@ -266,6 +303,18 @@ export async function seedHardware(db: DbOrTx): Promise<void> {
       facts: 'On cart MC-B, at SG-11',
       calibrationDue: at('2026-12-01'),
     },
+    ...LEAKS.flatMap((one, index) =>
+      one.temporaryUntil === null
+        ? []
+        : [
+            {
+              tag: `TS-${String(index + 1).padStart(2, '0')}`,
+              kind: 'temporary seal',
+              facts: `On ${one.segment}, ${one.place}, since ${one.mendedAt.toISOString().slice(0, 10)}; to be looked at again by ${one.temporaryUntil.toISOString().slice(0, 10)}`,
+              calibrationDue: one.temporaryUntil,
+            },
+          ],
+    ),
     ...Array.from({ length: 10 }, (_, index) => ({
       tag: `OXP-${String(index + 1).padStart(2, '0')}`,
       kind: 'personal oxygen monitor',

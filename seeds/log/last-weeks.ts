@@ -1,12 +1,11 @@
-/** What the crews wrote down in the last four weeks of the demo. */
-import type { DbOrTx } from '../app/db/client.server.ts'
-import { logAmendment, logEntry, signedAct } from '../app/db/schema/index.ts'
-import { ENTRY_KIND_FACTS, type EntryKind } from '../app/domain/logbook.ts'
-import { at } from './demo-time.ts'
-import { PERSON_ID, type PersonKey } from './people.ts'
-import { segmentOf } from './register/segments.ts'
+/** What the crews wrote down in the last four weeks of the demo, besides rounds and handovers. */
 
-interface DemoEntry {
+import type { EntryKind } from '../../app/domain/logbook.ts'
+import { at } from '../demo-time.ts'
+import type { PersonKey } from '../people.ts'
+import type { DemoEntry } from './entry.ts'
+
+interface WrittenEntry {
   segment: string | null
   kind: EntryKind
   event: string
@@ -16,7 +15,7 @@ interface DemoEntry {
   amended?: { written: string; text: string; reason: string }
 }
 
-const ENTRIES: readonly DemoEntry[] = [
+const WRITTEN: readonly WrittenEntry[] = [
   {
     segment: null,
     kind: 'note',
@@ -87,10 +86,10 @@ const ENTRIES: readonly DemoEntry[] = [
     event: '2026-11-01 23:30',
     written: '2026-11-01 23:40',
     by: 'nerys',
-    text: 'All twelve thermocouples above 140 °C, soak begins. 2.9×10⁻³ Pa at the cross.',
+    text: 'All twelve thermocouples above 140 °C, soak begins. 1.8×10⁻³ Pa at the cross.',
     amended: {
       written: '2026-11-02 06:50',
-      text: 'All twelve thermocouples above 140 °C, soak begins. 3.0×10⁻³ Pa at the cross.',
+      text: 'All twelve thermocouples above 140 °C, soak begins. 1.7×10⁻³ Pa at the cross.',
       reason: 'Looked at the wrong row of the log',
     },
   },
@@ -232,38 +231,10 @@ const ENTRIES: readonly DemoEntry[] = [
   },
 ]
 
-/** Writes the entries, each with the signature it was made with. */
-export async function seedLogEntries(db: DbOrTx): Promise<number> {
-  for (const entry of ENTRIES) {
-    const authorId = PERSON_ID[entry.by]
-    const writtenAt = at(entry.written)
-    const sign = async (meaning: string, subjectId: string, when: Date): Promise<number> => {
-      const shared = { personId: authorId, at: when, machineAt: when, usedAt: when }
-      const [result] = await db
-        .insert(signedAct)
-        .values({ ...shared, meaning, subjectKind: 'log-entry', subjectId })
-      return result.insertId
-    }
-    const [written] = await db.insert(logEntry).values({
-      segmentId: entry.segment === null ? null : segmentOf(entry.segment).id,
-      kind: entry.kind,
-      eventAt: at(entry.event),
-      writtenAt,
-      text: entry.text,
-      authorId,
-      onChart: ENTRY_KIND_FACTS[entry.kind].onChart,
-      signedActId: await sign('write a log entry', 'new', writtenAt),
-    })
-    if (entry.amended === undefined) continue
-    const amendedAt = at(entry.amended.written)
-    await db.insert(logAmendment).values({
-      entryId: written.insertId,
-      text: entry.amended.text,
-      reason: entry.amended.reason,
-      writtenAt: amendedAt,
-      authorId,
-      signedActId: await sign('amend a log entry', String(written.insertId), amendedAt),
-    })
-  }
-  return ENTRIES.length
-}
+/** Entries of the last weeks. */
+export const LAST_WEEKS: readonly DemoEntry[] = WRITTEN.map(({ event, written, amended, ...rest }) => ({
+  ...rest,
+  eventAt: at(event),
+  writtenAt: at(written),
+  ...(amended === undefined ? {} : { amended: { ...amended, writtenAt: at(amended.written) } }),
+}))
