@@ -1,5 +1,7 @@
 import { eq } from 'drizzle-orm'
+import { RouterContextProvider } from 'react-router'
 import { beforeEach, describe, expect, it } from 'vitest'
+import { actorContext, nowContext } from '#app/context.ts'
 import { apiToken, record } from '#app/db/schema/index.ts'
 import type { Actor } from '#app/domain/actor.ts'
 import { newTokenSchema } from '#app/domain/schemas/api-token.ts'
@@ -132,5 +134,45 @@ describe('the token of the demo', () => {
     await revokeToken(db, admin, MORNING, { tokenId: token?.id ?? 0, reason: 'to see what happens' })
     await ensureDemoToken(db, MORNING, demo)
     await expect(tokenFor(db, bearer(demo.token), 'NL-T', MORNING)).rejects.toMatchObject({ status: 401 })
+  })
+})
+
+describe('the page', () => {
+  async function send(form: Record<string, string | string[]>) {
+    const context = new RouterContextProvider()
+    context.set(actorContext, admin)
+    context.set(nowContext, MORNING)
+    const body = new URLSearchParams(
+      Object.entries(form).flatMap(([name, value]) =>
+        [value].flat().map((one): [string, string] => [name, one]),
+      ),
+    )
+    const request = new Request('http://ebbline.test/people/tokens', { method: 'POST', body })
+    return action({ context, request, params: {} } as Parameters<typeof action>[0])
+  }
+  const wanted = { intent: 'add', name: 'Gateway', until: '2026-11-30', reason: 'live feed' }
+
+  it('shows the token it made, for every source that was ticked', async () => {
+    const answer = await send({ ...wanted, sources: ['NL-T', 'NL-P'] })
+    if (!('token' in answer)) throw new Error(JSON.stringify(answer))
+    for (const code of ['NL-T', 'NL-P'])
+      expect(await tokenFor(db, bearer(answer.token), code, MORNING)).toMatchObject({ name: 'Gateway' })
+  })
+
+  it('says what is wrong, keeps what was typed, and revokes with a redirect', async () => {
+    expect(await send(wanted)).toMatchObject({
+      init: { status: 400 },
+      data: {
+        ok: false,
+        intent: 'add',
+        fields: { sources: [expect.any(String)] },
+        typed: { name: 'Gateway' },
+      },
+    })
+    await add()
+    const [row] = await db.select().from(apiToken)
+    const answer = await send({ intent: 'revoke', tokenId: String(row?.id), reason: 'lost laptop' })
+    expect(answer).toMatchObject({ status: 302 })
+    expect((await readTokens(db, admin, MORNING)).tokens).toMatchObject([{ standing: 'revoked' }])
   })
 })
