@@ -104,11 +104,11 @@ async function findAddresses(): Promise<Found[]> {
   const pathOf = (id: string | undefined): string => {
     const entry = id === undefined ? undefined : routes[id]
     if (entry === undefined) return ''
-    const own = entry.path === undefined ? '' : `/${entry.path}`
+    const own = entry.path === undefined || entry.path === '' ? '' : `/${entry.path}`
     return `${pathOf(entry.parentId)}${own}`
   }
   return Object.values(routes)
-    .filter((entry) => entry !== undefined && (entry.path !== undefined || entry.index === true))
+    .filter((entry) => entry !== undefined && ((entry.path ?? '') !== '' || entry.index === true))
     .filter((entry) => entry?.id !== 'root')
     .map((entry) => ({
       pattern: pathOf(entry?.id) || '/',
