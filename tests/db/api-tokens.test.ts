@@ -5,6 +5,7 @@ import { actorContext, nowContext } from '#app/context.ts'
 import { apiToken, record } from '#app/db/schema/index.ts'
 import type { Actor } from '#app/domain/actor.ts'
 import { newTokenSchema } from '#app/domain/schemas/api-token.ts'
+import { action } from '#app/routes/api/tokens.tsx'
 import {
   addToken,
   ensureDemoToken,
