@@ -65,7 +65,7 @@ function fraction(digits: string | undefined): number {
 }
 
 /** Offset text in minutes east of UTC. */
-export function offsetMinutes(text: string): number {
+function offsetMinutes(text: string): number {
   if (text === 'Z' || text === 'z') return 0
   const sign = text[0] === '-' ? -1 : 1
   const hours = Number(text.slice(1, 3))
