@@ -24,6 +24,8 @@ const HANDS: readonly Role[] = ['technician', 'engineer']
 interface Expectation {
   who: readonly Role[] | 'anyone'
   status: number
+  /** Where somebody signed in already is answered differently. */
+  signedIn?: number
 }
 interface Address {
   GET?: Expectation
@@ -33,10 +35,13 @@ interface Address {
 }
 
 const ADDRESSES: Record<string, Address> = {
-  '/sign-in': { GET: { who: 'anyone', status: 200 }, POST: { who: 'anyone', status: 400 } },
-  '/sign-out': { POST: { who: 'anyone', status: 302 } },
+  '/sign-in': {
+    GET: { who: 'anyone', status: 200, signedIn: 302 },
+    POST: { who: 'anyone', status: 400, signedIn: 302 },
+  },
+  '/sign-out': { GET: { who: 'anyone', status: 302 }, POST: { who: 'anyone', status: 302 } },
   '/health': { GET: { who: 'anyone', status: 200 } },
-  '/*': { path: '/no-such-page', GET: { who: 'anyone', status: 404 } },
+  '/*': { path: '/no-such-page', GET: { who: 'anyone', status: 404 }, POST: { who: 'anyone', status: 404 } },
   '/': { GET: { who: STAFF, status: 200 } },
   '/segments/:tag': { path: '/segments/SG-X1', GET: { who: STAFF, status: 200 } },
   '/segments/:tag/state': {
@@ -117,7 +122,12 @@ async function findAddresses(): Promise<Found[]> {
     }))
 }
 
-const cookies = new Map<Role | 'nobody', string>()
+const people = new Map<Role | 'nobody', number>()
+
+/** A session of its own for each request: one of the addresses signs out. */
+async function cookieOf(who: Role | 'nobody'): Promise<string> {
+  return signIn(people.get(who) ?? 0)
+}
 
 beforeAll(async () => {
   await cleanDatabase()
@@ -130,10 +140,10 @@ beforeAll(async () => {
   await createSource(db, { code: 'NL-X' })
   for (const role of ROLES) {
     const user = await createUser(db, { roles: [role] })
-    cookies.set(role, await signIn(user.personId))
+    people.set(role, user.personId)
   }
   const idle = await createUser(db, { roles: [] })
-  cookies.set('nobody', await signIn(idle.personId))
+  people.set('nobody', idle.personId)
 })
 
 test('every address of the application has an expectation, and every expectation an address', async () => {
@@ -156,7 +166,7 @@ const CASES = Object.entries(ADDRESSES).flatMap(([pattern, address]) =>
   }),
 )
 
-describe.each(CASES)('$method $pattern', ({ method, path, who, status }) => {
+describe.each(CASES)('$method $pattern', ({ method, path, who, status, signedIn = status }) => {
   const send = (cookie?: string) =>
     request(path, {
       method,
@@ -165,15 +175,15 @@ describe.each(CASES)('$method $pattern', ({ method, path, who, status }) => {
     })
 
   test.each([...ROLES])('%s', async (role) => {
-    const response = await send(cookies.get(role))
-    expect(response.status).toBe(who === 'anyone' || who.includes(role) ? status : 403)
+    const response = await send(await cookieOf(role))
+    expect(response.status).toBe(who === 'anyone' || who.includes(role) ? signedIn : 403)
     await response.body?.cancel()
   })
 
   test('somebody without any role in force', async () => {
     const own = path === '/account'
-    const response = await send(cookies.get('nobody'))
-    expect(response.status).toBe(who === 'anyone' || own ? status : 403)
+    const response = await send(await cookieOf('nobody'))
+    expect(response.status).toBe(who === 'anyone' || own ? signedIn : 403)
     await response.body?.cancel()
   })
 
