@@ -14,7 +14,8 @@ export default defineConfig({
     projects: [
       {
         extends: true,
-        test: { name: 'unit', include: ['tests/unit/**/*.test.{ts,tsx}'] },
+        // Long for a pure test: a shared machine may be busy, and no test here is about time.
+        test: { name: 'unit', include: ['tests/unit/**/*.test.{ts,tsx}'], testTimeout: 30_000 },
       },
       {
         extends: true,
