@@ -72,7 +72,6 @@ export async function readRegisterList(
 
 export interface RegisterDetail extends DatedPart {
   kind: RegisterKind
-  key: string
   tag: string
   /** Values of the form; null for things that have none. */
   values: Values | null
@@ -100,7 +99,6 @@ export async function readRegisterDetail(
     if (part === null) throw missing(kind, key)
     return {
       kind,
-      key,
       values: null,
       revision: 0,
       segments,
@@ -116,7 +114,6 @@ export async function readRegisterDetail(
   ])
   return {
     kind,
-    key: row.tag,
     values: valuesOf(kind, row, places),
     revision: row.revision,
     segments,

@@ -157,8 +157,7 @@ export function NewPersonPage({ failure: answered }: { failure: RegisterFailure 
               <TextField
                 name="until"
                 label="Last day"
-                type="date"
-                hint="The account and its role end with this day. Empty: open. A contributor always has one."
+                hint="Year-month-day, such as 2026-11-30: the account and its role end with this day. Empty: open. A contributor always has one."
                 defaultValue={typed?.until ?? ''}
                 errors={errorsOf('until')}
               />

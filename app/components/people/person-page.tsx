@@ -156,8 +156,7 @@ function GrantForm({ failure: answered }: { failure: RegisterFailure | undefined
       <TextField
         name="until"
         label="Last day"
-        type="date"
-        hint="Empty: open. A contributor always has one."
+        hint="Year-month-day, such as 2026-11-30. Empty: open. A contributor always has one."
         defaultValue={typed?.until ?? ''}
         errors={errorsOf('until')}
       />
@@ -221,8 +220,7 @@ function AccountEnd({
       <TextField
         name="until"
         label="Last day"
-        type="date"
-        hint="Empty: the account is open. What the person wrote stays."
+        hint="Year-month-day, such as 2026-11-30. Empty: the account is open. What the person wrote stays."
         defaultValue={typed?.until ?? lastDay}
         errors={errorsOf('until')}
       />

@@ -72,7 +72,6 @@ export function RegisterField({
   return (
     <TextField
       {...common}
-      type={field.input === 'last-day' ? 'date' : 'text'}
       // A number keypad has no "e" and no comma; text with this mode keeps both within reach.
       inputMode={field.input === 'number' ? 'decimal' : undefined}
       defaultValue={start}

@@ -198,7 +198,7 @@ export const INSTRUMENT_FIELDS: readonly FieldFact[] = [
   ),
   number('rangeMax', 'Reads up to', { min: -1e6, max: 1e9, unit: '', optional: true }),
   fact('calibrationDue', 'Calibrated up to and including', 'last-day', lastDayValue, {
-    hint: 'The last day on which the calibration holds; empty if it has none.',
+    hint: 'Year-month-day, such as 2027-03-31; empty if it has none.',
   }),
   text('certificate', 'Calibration certificate', 80, { optional: true }),
   NOTE,
