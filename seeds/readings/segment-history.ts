@@ -160,8 +160,7 @@ function sg11(gauge: Gauge, hours: number): number {
 export function bakePhases(cold: ColdSegment): Phase[] {
   const tag = cold.segment.tag
   return bakesOf(tag).map((bake) => {
-    const untilMs = bake.coldAt?.getTime() ?? NIGHT_END_MS
-    const curve = bakeCurve(bake, untilMs)
+    const curve = bakeCurve(bake)
     const atEnds = endsOverCross(cold.segment)
     const morning = bake.coldAt === null ? (MORNING[tag] as AtGauges) : null
     const steel = morning !== null && bake.offAt === null ? steelFor(curve.at, morning.B) : cold.steel
