@@ -5,33 +5,50 @@
  * Molecular flow follows the gradient of p/sqrt(T), which isothermally is Knudsen's long tube; transitional flow adds
  * Knudsen's slip factor and the laminar part.
  */
-import { requirePositive, requireWithin } from './argument-checks.ts'
+import { requireWithin } from './argument-checks.ts'
 import { slipPerPascal, viscousSpecific } from './conductance.ts'
-import { BOLTZMANN, GAS_CONSTANT, T20_K } from './constants.ts'
+import { BOLTZMANN, T20_K } from './constants.ts'
 import { PhysicsError } from './errors.ts'
-import { type GasRun, stepAt, type ThermalState, type ValveMotion, wallRate } from './gas-run.ts'
+import {
+  type GasRun,
+  requireGasRun,
+  stepAt,
+  type ThermalState,
+  type ValveMotion,
+  wallRate,
+  withUnbaked,
+} from './gas-run.ts'
 import { moleculeMass, viscosity } from './gases.ts'
+import { gettersOf } from './getters.ts'
 import { temperatureAt } from './programme.ts'
 import { type PumpCurve, pumpThroughput, pumpThroughputSlope } from './pumps.ts'
 import type { TreeMatrix } from './tree-matrix.ts'
 import type { TubeMesh } from './tube.ts'
-import { waterScalePressure } from './water.ts'
+import { addAdsorbed, wallSites } from './wall-sites.ts'
 
 export interface GasBalance {
   /** Pressures do not enter storage or flow other than linearly. */
   readonly linear: boolean
+  /** Molecules per second brought into each node by wall and leaks at the prepared time. */
+  readonly source: Float64Array
+  /** Grows whenever anything but `source` has changed: a factored matrix of a linear gas stays good until then. */
+  version(): number
   /** Take on the pumps, leaks and valves that hold from this time on. */
   enter(atS: number): void
   /** Temperatures, passages and sources at this time. */
   prepare(atS: number): void
   /** Molecules at each node, and their slope over pressure. */
   storage(pressure: Float64Array, amount: Float64Array, slope: Float64Array): void
-  /** Net molecules per second into each node; adds -scale d(rate)/dp to the matrix. */
+  /** Net molecules per second into each node; puts -scale d(rate)/dp into the matrix, on top of its excess. */
   flow(pressure: Float64Array, rate: Float64Array, matrix: TreeMatrix, scale: number): void
   /** Molecules per second brought in by wall and leaks at the prepared time. */
   sourceTotal(): number
-  /** Molecules per second taken by the pumps at the prepared time. */
+  /** Molecules per second taken by pumps and getters at the prepared time. */
   pumpTotal(pressure: Float64Array): number
+  /** Getters only: counts what these pressures give them in `seconds`, and says the largest share of a capacity. */
+  take(pressure: Float64Array, seconds: number, anew: boolean): number
+  /** Getters only: what was taken is in, and they are that much slower. */
+  settle(): void
 }
 
 /** Sets up one gas on a mesh from `fromS` on. Throws on a node or valve that the mesh does not have. */
@@ -44,12 +61,12 @@ export function gasBalance(
 ): GasBalance {
   const { count: n, parent, passageDiameterM, passageLengthM, volumeM3, wallM2 } = mesh
   requireWithin('number of temperature programmes', thermal.programmes.length, 1, n)
-  const zoneOf = thermal.zoneOfNode ?? new Int32Array(n)
   const zones = thermal.programmes.length
+  const zoneOf = thermal.zoneOfNode ?? new Int32Array(n)
+  for (const zone of zoneOf) requireWithin('zone of a node', zone, 0, zones - 1)
+  requireGasRun(run, n)
   const leaks = run.leaks ?? []
-  for (const { node } of [...run.pumps, ...leaks]) requireWithin('node', node, 0, n - 1)
-  const mass = moleculeMass(run.gas)
-  const rootOfMass = Math.sqrt(2 * Math.PI * mass * BOLTZMANN)
+  const rootOfMass = Math.sqrt(2 * Math.PI * moleculeMass(run.gas) * BOLTZMANN)
   const transitional = run.flow === 'transitional'
 
   // Passage coefficient of molecular flow times sqrt(T): (4d/3)A/(L sqrt(2 pi m k)), or A/sqrt(2 pi m k) in a valve.
@@ -65,41 +82,58 @@ export function gasBalance(
   const fromParent = new Float64Array(n)
   const viscous = new Float64Array(n)
   const slip = new Float64Array(n)
-  const temperature = new Float64Array(n)
+  const gasPerPa = new Float64Array(n)
   const source = new Float64Array(n)
   const pumpCurve: (PumpCurve | null)[] = run.pumps.map(() => null)
   const pumpFactor = new Float64Array(run.pumps.length)
   const leakRate = new Float64Array(leaks.length)
 
-  // Per zone: the wall's rate, and the isotherm's width and shifts of ln p at both ends of the energies.
+  const getters = gettersOf(run, mesh, rootOfMass)
+  const film = getters?.film ?? null
+  const filmSpeed = new Float64Array(n)
+
+  const baked = run.isotherm && wallSites(run.isotherm, mesh, zones, 1 - (run.unbaked?.share ?? 0))
+  const unbaked = run.isotherm && run.unbaked && wallSites(run.isotherm, mesh, zones, run.unbaked.share)
   const zoneK = new Float64Array(zones)
   const zoneRate = new Float64Array(zones)
-  const width = new Float64Array(zones)
-  const lowShift = new Float64Array(zones)
-  const highShift = new Float64Array(zones)
-  const wallRates = thermal.programmes.map((programme) => wallRate(run.walls ?? [], programme, fromS))
-  const isotherm = run.isotherm
-  if (isotherm) requirePositive('capacityPerM2', isotherm.capacityPerM2)
+  const zoneRoot = new Float64Array(zones)
+  const wallRates = thermal.programmes.map((programme) =>
+    withUnbaked(run.unbaked, programme, (kelvins) => wallRate(run.walls ?? [], kelvins, fromS)),
+  )
+  let changed = true
+  let version = 0
 
-  function prepareZone(zone: number, atS: number): void {
-    const kelvin = temperatureAt(thermal.programmes[zone]!, atS)
-    zoneK[zone] = kelvin
-    zoneRate[zone] = wallRates[zone]!(atS, kelvin)
-    if (!isotherm) return
-    const energy = GAS_CONSTANT * kelvin
-    const logScale = Math.log(waterScalePressure(kelvin, isotherm))
-    width[zone] = energy / (isotherm.highJMol - isotherm.lowJMol)
-    lowShift[zone] = isotherm.lowJMol / energy - logScale
-    highShift[zone] = isotherm.highJMol / energy - logScale
+  function preparePassages(): void {
+    for (let i = 0; i < n; i++) gasPerPa[i] = volumeM3[i]! / (BOLTZMANN * zoneK[zoneOf[i]!]!)
+    for (let i = 1; i < n; i++) {
+      const q = parent[i]!
+      const open = shut[i] === 1 ? 0 : passage[i]!
+      fromNode[i] = open * zoneRoot[zoneOf[i]!]!
+      fromParent[i] = open * zoneRoot[zoneOf[q]!]!
+      if (!transitional || shut[i] === 1 || passageLengthM[i] === 0) continue
+      const middle = (zoneK[zoneOf[i]!]! + zoneK[zoneOf[q]!]!) / 2
+      const eta = run.viscosityPaS ?? viscosity(run.gas, middle)
+      const d = passageDiameterM[i]!
+      viscous[i] = viscousSpecific(d, 1, eta) / (passageLengthM[i]! * BOLTZMANN * middle)
+      slip[i] = slipPerPascal(run.gas, d, middle, eta)
+    }
+    for (const [i, pump] of run.pumps.entries()) {
+      // In molecular flow p/sqrt(T) is equal in the tube and at the mouth.
+      const wallK = zoneK[zoneOf[pump.node]!]!
+      const mouth =
+        pump.mouthK === undefined ? 1 / (BOLTZMANN * wallK) : 1 / (BOLTZMANN * Math.sqrt(pump.mouthK * wallK))
+      pumpFactor[i] = getters ? mouth * Math.max(0, 1 - getters.pumpFilled[i]!) : mouth
+    }
+    if (!getters || !film) return
+    for (let i = 0; i < n; i++) {
+      filmSpeed[i] = film[i]! * zoneRoot[zoneOf[i]!]! * Math.max(0, 1 - getters.filmFilled[i]!)
+    }
   }
 
   return {
-    linear:
-      !isotherm &&
-      !transitional &&
-      run.pumps.every((p) =>
-        p.curve.every((s) => s.value?.kind !== 'turbo' && s.value?.kind !== 'displacement'),
-      ),
+    linear: !run.isotherm && !transitional && run.pumps.every(({ curve }) => curve.every(isLinear)),
+    source,
+    version: () => version,
 
     enter(atS) {
       for (const [i, pump] of run.pumps.entries()) pumpCurve[i] = stepAt(pump.curve, atS, null)
@@ -113,73 +147,56 @@ export function gasBalance(
           throw new PhysicsError(`valve ${valve.name}`, Number.NaN, 'a valve of the mesh')
         shut[node] = stepAt(valve.open, atS, true) ? 0 : 1
       }
+      changed = true
     },
 
     prepare(atS) {
-      for (let zone = 0; zone < zones; zone++) prepareZone(zone, atS)
-      for (let i = 0; i < n; i++) {
-        const zone = zoneOf[i]!
-        temperature[i] = zoneK[zone]!
-        source[i] = zoneRate[zone]! * wallM2[i]!
+      for (let zone = 0; zone < zones; zone++) {
+        const kelvin = temperatureAt(thermal.programmes[zone]!, atS)
+        zoneRate[zone] = wallRates[zone]!(atS, kelvin)
+        if (kelvin === zoneK[zone]) continue
+        changed = true
+        zoneK[zone] = kelvin
+        zoneRoot[zone] = 1 / Math.sqrt(kelvin)
+        baked?.warm(zone, kelvin)
+        if (run.unbaked) unbaked?.warm(zone, unbakedK(run.unbaked, kelvin))
       }
+      if (changed) {
+        preparePassages()
+        baked?.spread(zoneOf)
+        unbaked?.spread(zoneOf)
+        version++
+        changed = false
+      }
+      for (let i = 0; i < n; i++) source[i] = zoneRate[zoneOf[i]!]! * wallM2[i]!
       for (let i = 0; i < leaks.length; i++) source[leaks[i]!.node]! += leakRate[i]!
-      for (let i = 1; i < n; i++) {
-        const q = parent[i]!
-        const open = shut[i] === 1 ? 0 : passage[i]!
-        fromNode[i] = open / Math.sqrt(temperature[i]!)
-        fromParent[i] = open / Math.sqrt(temperature[q]!)
-        if (!transitional || shut[i] === 1 || passageLengthM[i] === 0) continue
-        const middle = (temperature[i]! + temperature[q]!) / 2
-        const eta = run.viscosityPaS ?? viscosity(run.gas, middle)
-        const d = passageDiameterM[i]!
-        viscous[i] = viscousSpecific(d, 1, eta) / (passageLengthM[i]! * BOLTZMANN * middle)
-        slip[i] = slipPerPascal(run.gas, d, middle, eta)
-      }
-      for (const [i, pump] of run.pumps.entries()) {
-        // In molecular flow p/sqrt(T) is equal in the tube and at the mouth.
-        const wallK = temperature[pump.node]!
-        pumpFactor[i] =
-          pump.mouthK === undefined
-            ? 1 / (BOLTZMANN * wallK)
-            : 1 / (BOLTZMANN * Math.sqrt(pump.mouthK * wallK))
-      }
     },
 
     storage(pressure, amount, slope) {
       for (let i = 0; i < n; i++) {
-        const gasSlope = volumeM3[i]! / (BOLTZMANN * temperature[i]!)
-        amount[i] = gasSlope * pressure[i]!
-        slope[i] = gasSlope
+        amount[i] = gasPerPa[i]! * pressure[i]!
+        slope[i] = gasPerPa[i]!
       }
-      if (!isotherm) return
-      for (let i = 0; i < n; i++) {
-        const zone = zoneOf[i]!
-        const p = pressure[i]!
-        const logP = Math.log(p)
-        const low = logP + lowShift[zone]!
-        const high = logP + highShift[zone]!
-        // ln(1 + e^u) and its slope from one exponential each, without overflow.
-        const lowTail = Math.exp(-Math.abs(low))
-        const highTail = Math.exp(-Math.abs(high))
-        const filled = Math.max(high, 0) + Math.log1p(highTail) - Math.max(low, 0) - Math.log1p(lowTail)
-        const highShare = (high > 0 ? 1 : highTail) / (1 + highTail)
-        const lowShare = (low > 0 ? 1 : lowTail) / (1 + lowTail)
-        const sites = wallM2[i]! * isotherm.capacityPerM2 * width[zone]!
-        amount[i]! += sites * filled
-        slope[i]! += (sites * (highShare - lowShare)) / p
-      }
+      if (baked) addAdsorbed(baked, pressure, amount, slope)
+      if (unbaked) addAdsorbed(unbaked, pressure, amount, slope)
     },
 
     flow(pressure, rate, matrix, scale) {
-      const { diagonal, toParent, fromParent: parentRow } = matrix
-      for (let i = 0; i < n; i++) rate[i] = source[i]!
+      const { excess, up, down } = matrix
+      rate.set(source)
+      if (film) {
+        for (let i = 0; i < n; i++) {
+          rate[i]! -= filmSpeed[i]! * pressure[i]!
+          excess[i]! += scale * filmSpeed[i]!
+        }
+      }
       for (let i = 1; i < n; i++) {
         const q = parent[i]!
         const mine = pressure[i]!
         const theirs = pressure[q]!
-        let flux = fromNode[i]! * mine - fromParent[i]! * theirs
         let byMine = fromNode[i]!
-        let byTheirs = -fromParent[i]!
+        let byTheirs = fromParent[i]!
+        let flux = byMine * mine - byTheirs * theirs
         if (transitional) {
           const x = slip[i]! * 0.5 * (mine + theirs)
           const below = 1 + 1.24 * x
@@ -187,21 +204,19 @@ export function gasBalance(
           const bend = (-0.12 * slip[i]! * flux) / (below * below)
           flux = flux * factor + 0.5 * viscous[i]! * (mine * mine - theirs * theirs)
           byMine = byMine * factor + bend + viscous[i]! * mine
-          byTheirs = byTheirs * factor + bend - viscous[i]! * theirs
+          byTheirs = byTheirs * factor - bend + viscous[i]! * theirs
         }
         rate[i]! -= flux
         rate[q]! += flux
-        diagonal[i]! += scale * byMine
-        diagonal[q]! -= scale * byTheirs
-        toParent[i] = scale * byTheirs
-        parentRow[i] = -scale * byMine
+        up[i] = scale * byMine
+        down[i] = scale * byTheirs
       }
       for (let i = 0; i < run.pumps.length; i++) {
         const curve = pumpCurve[i]
         if (!curve) continue
         const node = run.pumps[i]!.node
         rate[node]! -= pumpFactor[i]! * pumpThroughput(curve, pressure[node]!)
-        diagonal[node]! += scale * pumpFactor[i]! * pumpThroughputSlope(curve, pressure[node]!)
+        excess[node]! += scale * pumpFactor[i]! * pumpThroughputSlope(curve, pressure[node]!)
       }
     },
 
@@ -217,7 +232,40 @@ export function gasBalance(
         const curve = pumpCurve[i]
         if (curve) sum += pumpFactor[i]! * pumpThroughput(curve, pressure[run.pumps[i]!.node]!)
       }
+      if (film) for (let i = 0; i < n; i++) sum += filmSpeed[i]! * pressure[i]!
       return sum
     },
+
+    take(pressure, seconds, anew) {
+      if (!getters) return 0
+      if (anew) getters.restart()
+      let largest = 0
+      for (let i = 0; i < run.pumps.length; i++) {
+        const curve = pumpCurve[i]
+        if (!curve) continue
+        const rate = pumpFactor[i]! * pumpThroughput(curve, pressure[run.pumps[i]!.node]!)
+        largest = Math.max(largest, getters.countPump(i, rate * seconds))
+      }
+      if (!film) return largest
+      for (let i = 0; i < n; i++) {
+        largest = Math.max(largest, getters.countFilm(i, filmSpeed[i]! * pressure[i]! * seconds))
+      }
+      return largest
+    },
+
+    settle() {
+      if (!getters) return
+      getters.settle()
+      changed = true
+    },
   }
+}
+
+function isLinear(step: { readonly value: PumpCurve | null }): boolean {
+  return step.value === null || step.value.kind === 'constant'
+}
+
+/** Temperature of the unbaked area beside a tube at `tubeK`. */
+function unbakedK(area: NonNullable<GasRun['unbaked']>, tubeK: number): number {
+  return area.roomK + area.followShare * (tubeK - area.roomK)
 }

@@ -1,4 +1,5 @@
 /** What a run of one gas is made of: walls, pumps, leaks and valves that change at known times. Data only. */
+import { requirePositive, requireWithin } from './argument-checks.ts'
 import { BOLTZMANN } from './constants.ts'
 import type { Gas } from './gases.ts'
 import { lowHydrogenRate, type Sheet, slabAtomFlux } from './hydrogen.ts'
@@ -22,6 +23,30 @@ export interface PointPump {
   readonly curve: Steps<PumpCurve | null>
   /** Gas temperature at the pump, K, where it is not that of the wall. */
   readonly mouthK?: number
+  /** What a getter takes of this gas until it is full, Pa m3 at 20 degrees; its speed falls in step. None: no end. */
+  readonly capacityPaM3?: number
+}
+
+/** A getter film on the wall. Taken gas stays; noble gases and methane are not for it (sticking 0). */
+export interface WallGetter {
+  /** Chance that a molecule that strikes the film stays, 0 to 1, when it is fresh. */
+  readonly sticking: number
+  /** Molecules per m2 of film that fill it; the sticking falls in step (from memory, not verified: 5e18 to 5e19). */
+  readonly capacityPerM2: number
+  /** Share of the wall that is coated, everywhere or node by node; all of it unless given. */
+  readonly wallShare?: number | Float64Array
+}
+
+/**
+ * The part of the wall that a bake does not reach: valve bonnets, gauge stubs, the ends of spurs. It sees the pressure
+ * of the tube but stays cooler, so it keeps water and hydrogen while the rest loses them.
+ */
+export interface UnbakedArea {
+  /** Share of the wall, 1e-3 to 1e-2 on an ordinary line (common practice, no source). */
+  readonly share: number
+  /** How far it follows the tube's rise above the room: 0 not at all, 1 wholly. */
+  readonly followShare: number
+  readonly roomK: number
 }
 
 export interface PointLeak {
@@ -40,6 +65,8 @@ export interface GasRun {
   readonly viscosityPaS?: number
   /** Gas held by the wall in equilibrium with the local pressure. */
   readonly isotherm?: WaterIsotherm
+  readonly unbaked?: UnbakedArea
+  readonly getter?: WallGetter
   readonly walls?: readonly WallSource[]
   readonly pumps: readonly PointPump[]
   readonly leaks?: readonly PointLeak[]
@@ -81,4 +108,53 @@ export function wallRate(
     return (atS, kelvin) => slabAtomFlux(wall.sheet, kelvin, wall.agedTauM2 + age(atS)) / 2
   })
   return (atS, kelvin) => parts.reduce((sum, part) => sum + part(atS, kelvin), 0)
+}
+
+/**
+ * Rate of a wall of which a part stays cooler: each part gives its own, by its own history, weighted by area.
+ * `rateOf` makes the rate for one temperature programme.
+ */
+export function withUnbaked(
+  area: UnbakedArea | undefined,
+  programme: Programme,
+  rateOf: (programme: Programme) => (atS: number, kelvin: number) => number,
+): (atS: number, kelvin: number) => number {
+  const tube = rateOf(programme)
+  if (!area) return tube
+  const { share, followShare, roomK } = area
+  const cornersK = programme.cornersK.map((kelvin) => roomK + followShare * (kelvin - roomK))
+  const cooler = rateOf({ cornersS: programme.cornersS, cornersK })
+  return (atS, kelvin) =>
+    (1 - share) * tube(atS, kelvin) + share * cooler(atS, roomK + followShare * (kelvin - roomK))
+}
+
+/** Throws on a number of the run that no gas can have, naming it. `nodes` is the size of the mesh. */
+export function requireGasRun(run: GasRun, nodes: number): void {
+  const { isotherm, unbaked, getter, viscosityPaS } = run
+  for (const { node } of [...run.pumps, ...(run.leaks ?? [])]) requireWithin('node', node, 0, nodes - 1)
+  if (viscosityPaS !== undefined) requirePositive('viscosityPaS', viscosityPaS)
+  for (const { capacityPaM3, mouthK } of run.pumps) {
+    if (capacityPaM3 !== undefined) requirePositive('capacityPaM3', capacityPaM3)
+    if (mouthK !== undefined) requireWithin('mouthK', mouthK, 4, 1300)
+  }
+  for (const leak of run.leaks ?? []) {
+    if (leak.gasK !== undefined) requirePositive('gasK', leak.gasK)
+    for (const { value } of leak.loadPaM3S) requireWithin('loadPaM3S', value, 0, 1e6)
+  }
+  if (isotherm) {
+    requirePositive('capacityPerM2', isotherm.capacityPerM2)
+    requireWithin('lowJMol', isotherm.lowJMol, 0, 5e5)
+    requireWithin('highJMol', isotherm.highJMol, isotherm.lowJMol + 1, 5e5)
+  }
+  if (unbaked) {
+    requireWithin('unbaked.share', unbaked.share, 0, 1)
+    requireWithin('unbaked.followShare', unbaked.followShare, 0, 1)
+    requireWithin('unbaked.roomK', unbaked.roomK, 200, 400)
+  }
+  if (getter) {
+    requireWithin('getter.sticking', getter.sticking, 0, 1)
+    requirePositive('getter.capacityPerM2', getter.capacityPerM2)
+    const shares = typeof getter.wallShare === 'number' ? [getter.wallShare] : (getter.wallShare ?? [])
+    for (const share of shares) requireWithin('getter.wallShare', share, 0, 1)
+  }
 }

@@ -18,7 +18,11 @@ const NEWTON_LIMIT = 12
 /** Below this pressure nothing is measured or meant: errors there count against it, and a linear gas may reach 0, Pa. */
 const NO_PRESSURE_PA = 1e-20
 /** Newton stops once no pressure moved by more than this share: what is left then is about its square. */
-const NEWTON_SHARE = 1e-6
+const NEWTON_SHARE = 1e-5
+/** Share of its capacity that a getter may take up in one step, since its speed is that of the step's start. */
+const FILL_SHARE = 0.02
+/** Steps grow at most so many times at once. */
+const GROWTH = 8
 /** A guess of the next pressures goes at most this far in ln p. */
 const GUESS_LIMIT = 2
 
@@ -144,11 +148,37 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
   let rejected = 0
   let solves = 0
 
-  // Solves U(p) = base + weight * rate(p) at the prepared time, from the pressures in `p`.
+  // Solves U(p) = base + weight * rate(p) at the prepared time, from the pressures in `p`; leaves U in `amount`.
   function solveStage(p: Float64Array, base: Float64Array, weight: number): boolean {
+    return balance.linear ? solveLinear(p, base, weight) : solveNewton(p, base, weight)
+  }
+
+  // One factored matrix does for every stage of the same length while nothing but the sources changes.
+  function solveLinear(p: Float64Array, base: Float64Array, weight: number): boolean {
+    if (weight !== factoredWeight || balance.version() !== factoredVersion) {
+      balance.storage(p, amount, slope)
+      matrix.excess.set(slope)
+      balance.flow(p, rate, matrix, weight)
+      factorTree(matrix)
+      factoredWeight = weight
+      factoredVersion = balance.version()
+    }
+    const { source } = balance
+    for (let i = 0; i < n; i++) p[i] = base[i]! + weight * source[i]!
+    solveTree(matrix, p)
+    solves++
+    for (let i = 0; i < n; i++) {
+      if (p[i]! <= 0 && p[i]! > -NO_PRESSURE_PA) p[i] = 0
+      else if (!(p[i]! > 0 && p[i]! < Infinity)) return false
+      amount[i] = slope[i]! * p[i]!
+    }
+    return true
+  }
+
+  function solveNewton(p: Float64Array, base: Float64Array, weight: number): boolean {
     for (let iteration = 0; iteration < NEWTON_LIMIT; iteration++) {
       balance.storage(p, amount, slope)
-      for (let i = 0; i < n; i++) matrix.diagonal[i] = slope[i]!
+      matrix.excess.set(slope)
       balance.flow(p, rate, matrix, weight)
       for (let i = 0; i < n; i++) change[i] = base[i]! + weight * rate[i]! - amount[i]!
       factorTree(matrix)
@@ -159,12 +189,14 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
         const share = change[i]! / p[i]!
         if (Math.abs(share) > largest) largest = Math.abs(share)
         // Falling far, storage goes like ln p, so the same step is taken in ln p, at most three e-foldings at once.
-        if (balance.linear || share > -0.8) p[i]! += change[i]!
+        if (share > -0.8) p[i]! += change[i]!
         else p[i]! *= Math.exp(Math.max(share, -3))
-        if (balance.linear && p[i]! <= 0 && p[i]! > -NO_PRESSURE_PA) p[i] = 0
-        else if (!(p[i]! > 0 && p[i]! < Infinity)) return false
+        if (!(p[i]! > 0 && p[i]! < Infinity)) return false
       }
-      if (balance.linear || largest < NEWTON_SHARE) return true
+      if (largest < NEWTON_SHARE) {
+        balance.storage(p, amount, slope)
+        return true
+      }
     }
     return false
   }
@@ -184,19 +216,19 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
     balance.prepare(t + weight)
     guess(first, now, weight)
     if (!solveStage(first, before, weight)) return Infinity
-    balance.storage(first, amount, slope)
     for (let i = 0; i < n; i++) {
       firstRate[i] = (amount[i]! - before[i]!) / weight
       target[i] = before[i]! + (1 - GAMMA) * h * firstRate[i]!
     }
     stagePumped = (1 - GAMMA) * h * balance.pumpTotal(first)
     stageReleased = (1 - GAMMA) * h * balance.sourceTotal()
+    balance.take(first, (1 - GAMMA) * h, true)
     balance.prepare(t + h)
     guess(second, now, h)
     if (!solveStage(second, target, weight)) return Infinity
-    balance.storage(second, amount, slope)
     stagePumped += weight * balance.pumpTotal(second)
     stageReleased += weight * balance.sourceTotal()
+    if (balance.take(second, weight, false) > FILL_SHARE) return Infinity
     // Difference to the embedded first-order rule, damped by the factored matrix so that stiff modes do not count.
     for (let i = 0; i < n; i++) change[i] = amount[i]! - target[i]! - weight * firstRate[i]!
     solveTree(matrix, change)
@@ -205,6 +237,8 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
     return Number.isFinite(error) ? error : Infinity
   }
 
+  let factoredWeight = Number.NaN
+  let factoredVersion = -1
   let stagePumped = 0
   let stageReleased = 0
   let t = run.fromS
@@ -243,6 +277,7 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
       t = h === left ? stop.atS : t + h
       if (!balance.linear) for (let i = 0; i < n; i++) trend[i] = Math.log(second[i]! / now[i]!) / h
       now.set(second)
+      balance.settle()
       before.set(amount)
       pumped += stagePumped
       released += stageReleased
@@ -251,7 +286,7 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
         massError,
         Math.abs(held + pumped - released - initial) / Math.max(initial, pumped, released, held),
       )
-      const grown = h * Math.min(4, 0.85 * Math.sqrt(tolerance / Math.max(error, 1e-300)))
+      const grown = h * Math.min(GROWTH, 0.85 * Math.sqrt(tolerance / Math.max(error, 1e-300)))
       // A step cut short by a stop says nothing against the longer one planned.
       step = h < step ? Math.max(step, grown) : grown
       onProgress?.((t - run.fromS) / (endS - run.fromS))
