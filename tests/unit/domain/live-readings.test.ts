@@ -174,12 +174,9 @@ describe('posts that are refused', () => {
     expect(result.ok ? [] : result.faults).toHaveLength(POST_LIMITS.faults)
   })
 
-  it.each([[null], [[]], [{ readings: [] }], [{ readings: 'x' }]])(
-    'whole: %j',
-    (body) => {
-      expect(parsePost(body)).toMatchObject({ ok: false, faults: [{ index: null }] })
-    },
-  )
+  it.each([[null], [[]], [{ readings: [] }], [{ readings: 'x' }]])('whole: %j', (body) => {
+    expect(parsePost(body)).toMatchObject({ ok: false, faults: [{ index: null }] })
+  })
 
   it('with a field that does not belong there', () => {
     const result = parsePost({ readings: [{ channel: 'A', at: AT, value: 1 }], more: 1 })
