@@ -28,7 +28,7 @@ async function figure(page: Awaited<ReturnType<typeof openPage>>['page'], label:
 test('before the west logger’s last file is in, its segments are unknown', async () => {
   const view = await openPage(browser, server.url)
   await view.signIn('manager')
-  expect(await figure(view.page, 'at target with fresh data')).toMatch(/^2 of 9 in service/)
+  expect(await figure(view.page, 'at target with fresh data')).toMatch(/^2 ?of 9 in service/)
   await view.goto('/?show=unknown')
   const rows = await view.page.getByRole('region', { name: 'Segments in order along the tube' }).innerText()
   for (const tag of ['SG-01', 'SG-02', 'SG-03', 'SG-04', 'SG-07', 'SG-15']) expect(rows).toContain(tag)
@@ -41,18 +41,16 @@ test('a technician takes in the last file, and the same bytes again add nothing'
   const { page } = view
   await view.signIn('technician')
   await view.goto('/intake')
+  await page.getByLabel('Source').selectOption('NL-W')
   await page.locator('input[type="file"]').setInputFiles(LAST_WEST_FILE)
-  await page
-    .getByRole('button', { name: /^Read|^Upload|^Take in/ })
-    .first()
-    .click()
+  await page.getByRole('button', { name: 'Send and read' }).click()
   await page.waitForURL(/\/intake\/\d+/)
   const readOut = await page.locator('main').innerText()
   expect(readOut).toContain('NL-W')
   expect(readOut).toContain('mbar')
-  await page.getByRole('button', { name: /^Accept/ }).click()
+  await page.getByRole('button', { name: /^Take in/ }).click()
   await page
-    .getByText(/accepted/i)
+    .getByText(/^Taken in by/)
     .first()
     .waitFor()
   const first = new URL(page.url()).pathname
@@ -64,11 +62,9 @@ test('a technician takes in the last file, and the same bytes again add nothing'
   expect(await gauge.innerText()).toContain('fresh')
 
   await view.goto('/intake')
+  await page.getByLabel('Source').selectOption('NL-W')
   await page.locator('input[type="file"]').setInputFiles(LAST_WEST_FILE)
-  await page
-    .getByRole('button', { name: /^Read|^Upload|^Take in/ })
-    .first()
-    .click()
+  await page.getByRole('button', { name: 'Send and read' }).click()
   await page.locator(`main a[href="${first}"]`).first().waitFor()
   expect(await page.locator('main').innerText()).toMatch(/already/i)
   await view.close()
@@ -78,7 +74,7 @@ test('the manager sees the morning’s counts', async () => {
   const view = await openPage(browser, server.url)
   await view.signIn('manager')
   expect(await figure(view.page, 'at target with fresh data')).toMatch(
-    /^7 of 9 in service .*facility available: no/,
+    /^7 ?of 9 in service .*facility available: no/,
   )
   expect(await figure(view.page, 'unknown')).toMatch(/^1 .*SG-15/)
   expect(await figure(view.page, 'with a questioned reading')).toMatch(/^3 .*SG-03, SG-04, SG-07/)
@@ -141,7 +137,7 @@ test('a wrong password does not say which part was wrong', async () => {
   const answers: string[] = []
   for (const email of ['pim@qfl.example', 'nobody@qfl.example']) {
     await view.goto('/sign-in')
-    await page.locator('input[name="email"]').fill(email)
+    await page.locator('input[type="email"]').fill(email)
     await page.locator('input[name="password"]').fill('wrong')
     await page.locator('form:has(input[name="password"]) button[type="submit"]').first().click()
     answers.push(await page.getByRole('alert').first().innerText())

@@ -111,7 +111,7 @@ function Figure({
         <span className={`text-3xl font-semibold tracking-head ${tone === 'warn' ? 'text-warn' : ''}`}>
           {value}
         </span>
-        {aside !== undefined && <span className="ml-1.5 text-ink-3">{aside}</span>}
+        {aside !== undefined && <span className="text-ink-3"> {aside}</span>}
       </dd>
       <dd className="order-3 text-sm text-ink-3">{children}</dd>
     </div>
