@@ -19,8 +19,14 @@ const BLOCK = 2_000
 
 function* blocks(readings: Iterable<StoredReading>): Generator<Buffer> {
   let lines: string[] = []
+  // The same instants come back for every channel.
+  const times = new Map<number, string>()
   for (const one of readings) {
-    const time = new Date(one.atMs).toISOString().slice(0, 23).replace('T', ' ')
+    let time = times.get(one.atMs)
+    if (time === undefined) {
+      time = new Date(one.atMs).toISOString().slice(0, 23).replace('T', ' ')
+      times.set(one.atMs, time)
+    }
     const number = (value: number | null) => (value === null ? '\\N' : String(value))
     lines.push(
       `${one.channelId}\t${time}\t${one.seq}\t${number(one.value)}\t${number(one.bound)}\t${qualityCode(one.quality)}\t${one.marks}\t${one.importId}\t${one.lineNo}\n`,

@@ -131,7 +131,7 @@ export const LEAKS: readonly DemoLeak[] = [
     place: 'circumferential weld at 2 012 m',
     offsetM: 62,
     sizePaM3S: 1.2e-8,
-    opens: '2026-07-17 18:00',
+    opens: '2026-07-19 10:00',
     found: '2026-07-21 13:10',
     mended: '2026-07-21 16:20',
     remedy: 'sealed from outside for the time being',

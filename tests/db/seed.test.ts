@@ -86,7 +86,7 @@ async function acceptLastWestFile(): Promise<void> {
 beforeAll(async () => {
   await cleanDatabase()
   await seedDemo(db, getPool())
-}, 120_000)
+}, 300_000)
 afterAll(async () => {
   await cleanDatabase()
   await closeDb()
@@ -135,9 +135,9 @@ describe('the demo', () => {
     expect(open.every(({ n }) => n === 1)).toBe(true)
   })
 
-  it('keeps the original bytes of every file, and of no file the west logger wrote last', async () => {
+  it('keeps the original bytes of every file taken in, and has not taken in the west logger’s last', async () => {
     const imports = await db.select().from(importFile)
-    expect(imports).toHaveLength(59)
+    expect(imports).toHaveLength(167)
     expect(imports.some(({ fileName }) => fileName === 'NL-W_2026-11-08.csv')).toBe(false)
     const newest = imports.find(({ fileName }) => fileName === 'NL-E_2026-11-08.csv')
     const chunks = await db
@@ -169,6 +169,53 @@ describe('the demo', () => {
     const before = await tableCounts()
     expect(await seedDemo(db, getPool())).toEqual({ seeded: false })
     expect(await tableCounts()).toEqual(before)
+  })
+})
+
+describe('fourteen months of the demo', () => {
+  const one = async (query: string): Promise<Record<string, unknown>> => {
+    const [rows] = await getPool().promise().query(query)
+    return (rows as Record<string, unknown>[])[0] ?? {}
+  }
+
+  it('has readings of every pressure channel in every month, thinned to an hour before the whole nights', async () => {
+    const row = await one(`SELECT MIN(months) AS least, COUNT(*) AS channels FROM (
+      SELECT r.channel_id, COUNT(DISTINCT DATE_FORMAT(r.at, '%Y-%m')) AS months FROM reading r
+      JOIN channel c ON c.id = r.channel_id JOIN source s ON s.id = c.source_id
+      WHERE s.code IN ('NL-W', 'NL-E') GROUP BY r.channel_id) x`)
+    expect([Number(row.channels), Number(row.least)]).toEqual([51, 15])
+    const quiet = await one(`SELECT COUNT(*) AS n FROM reading r JOIN channel c ON c.id = r.channel_id
+      JOIN source s ON s.id = c.source_id WHERE s.code = 'NL-E' AND c.name = 'HC-12B'
+      AND r.at > '2026-05-01 04:00' AND r.at <= '2026-05-02 04:00'`)
+    expect(Number(quiet.n)).toBe(24)
+  })
+
+  it('counts three completed bakes, two broken off and two under way by its states', async () => {
+    const row = await one(`SELECT SUM(state = 'heating') AS heated, SUM(state = 'soak') AS soaked,
+      COUNT(DISTINCT CASE WHEN state = 'post-bake-test' THEN segment_id END) AS ended FROM segment_state`)
+    expect([Number(row.heated), Number(row.soaked), Number(row.ended)]).toEqual([7, 6, 5])
+  })
+
+  it('exchanged six gauges and keeps the old fittings with their ends', async () => {
+    const row = await one(
+      'SELECT COUNT(*) AS n, COUNT(DISTINCT position_id) AS p FROM fitting WHERE ends_at IS NOT NULL',
+    )
+    expect([Number(row.n), Number(row.p)]).toEqual([6, 6])
+  })
+
+  it('holds 860 entries, every one signed, and not the same words over and over', async () => {
+    const row = await one(
+      'SELECT COUNT(*) AS n, COUNT(signed_act_id) AS signed, COUNT(DISTINCT text) AS texts FROM log_entry',
+    )
+    expect([Number(row.n), Number(row.signed)]).toEqual([860, 860])
+    expect(Number(row.texts)).toBeGreaterThan(700)
+  })
+
+  it('has no residual gas for the last night and the two temporary seals in the register', async () => {
+    expect(
+      (await one("SELECT COUNT(*) AS n FROM import_file WHERE file_name = 'NL-R_2026-11-08.csv'")).n,
+    ).toBe(0)
+    expect(Number((await one("SELECT COUNT(*) AS n FROM equipment WHERE kind = 'temporary seal'")).n)).toBe(2)
   })
 })
 
