@@ -96,6 +96,8 @@ export function gasBalance(
   const unbaked = run.isotherm && run.unbaked && wallSites(run.isotherm, mesh, zones, run.unbaked.share)
   const zoneK = new Float64Array(zones)
   const zoneRate = new Float64Array(zones)
+  const zoneWall = new Float64Array(zones)
+  for (let i = 0; i < n; i++) zoneWall[zoneOf[i]!]! += wallM2[i]!
   const zoneRoot = new Float64Array(zones)
   const wallRates = thermal.programmes.map((programme) =>
     withUnbaked(run.unbaked, programme, (kelvins) => wallRate(run.walls ?? [], kelvins, fromS)),
@@ -222,7 +224,8 @@ export function gasBalance(
 
     sourceTotal() {
       let sum = 0
-      for (let i = 0; i < n; i++) sum += source[i]!
+      for (let zone = 0; zone < zones; zone++) sum += zoneRate[zone]! * zoneWall[zone]!
+      for (let i = 0; i < leaks.length; i++) sum += leakRate[i]!
       return sum
     },
 

@@ -13,6 +13,8 @@ import type { TubeMesh } from './tube.ts'
 
 /** Root of 2 g2 - 4 g + 1 that makes the rule L-stable. */
 const GAMMA = 1 - Math.SQRT1_2
+/** What the rest of the step makes of the first stage's gain, (1 - g)/g. */
+const REST = (1 - GAMMA) / GAMMA
 const FIRST_STEP_S = 1e-3
 const NEWTON_LIMIT = 12
 /** Below this pressure nothing is measured or meant: errors there count against it, and a linear gas may reach 0, Pa. */
@@ -22,7 +24,7 @@ const NEWTON_SHARE = 1e-5
 /** Share of its capacity that a getter may take up in one step, since its speed is that of the step's start. */
 const FILL_SHARE = 0.02
 /** Steps grow at most so many times at once. */
-const GROWTH = 8
+const GROWTH = 20
 /** A guess of the next pressures goes at most this far in ln p. */
 const GUESS_LIMIT = 2
 
@@ -126,7 +128,7 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
   const amount = new Float64Array(n)
   const slope = new Float64Array(n)
   const rate = new Float64Array(n)
-  const firstRate = new Float64Array(n)
+  const gained = new Float64Array(n)
   const change = new Float64Array(n)
   const trend = new Float64Array(n)
   for (let i = 0; i < n; i++) {
@@ -203,8 +205,8 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
 
   // Goes on in ln p as the last step did: saves Newton an iteration. A linear gas needs no guess.
   function guess(into: Float64Array, from: Float64Array, h: number): void {
-    into.set(from)
     if (balance.linear) return
+    into.set(from)
     for (let i = 0; i < n; i++) {
       into[i]! *= Math.exp(Math.min(GUESS_LIMIT, Math.max(-GUESS_LIMIT, trend[i]! * h)))
     }
@@ -217,8 +219,8 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
     guess(first, now, weight)
     if (!solveStage(first, before, weight)) return Infinity
     for (let i = 0; i < n; i++) {
-      firstRate[i] = (amount[i]! - before[i]!) / weight
-      target[i] = before[i]! + (1 - GAMMA) * h * firstRate[i]!
+      gained[i] = amount[i]! - before[i]!
+      target[i] = before[i]! + REST * gained[i]!
     }
     stagePumped = (1 - GAMMA) * h * balance.pumpTotal(first)
     stageReleased = (1 - GAMMA) * h * balance.sourceTotal()
@@ -230,11 +232,16 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
     stageReleased += weight * balance.sourceTotal()
     if (balance.take(second, weight, false) > FILL_SHARE) return Infinity
     // Difference to the embedded first-order rule, damped by the factored matrix so that stiff modes do not count.
-    for (let i = 0; i < n; i++) change[i] = amount[i]! - target[i]! - weight * firstRate[i]!
+    for (let i = 0; i < n; i++) change[i] = amount[i]! - before[i]! - gained[i]! / GAMMA
     solveTree(matrix, change)
     let error = 0
-    for (let i = 0; i < n; i++) error = Math.max(error, Math.abs(change[i]!) / (second[i]! + NO_PRESSURE_PA))
-    return Number.isFinite(error) ? error : Infinity
+    for (let i = 0; i < n; i++) {
+      const scale = second[i]! + NO_PRESSURE_PA
+      if (Math.abs(change[i]!) <= error * scale) continue
+      error = Math.abs(change[i]!) / scale
+      if (!(error < Infinity)) return Infinity
+    }
+    return error
   }
 
   let factoredWeight = Number.NaN
