@@ -20,7 +20,7 @@ export interface PumpDownForecast {
   chosen: boolean
   result: ReturnType<typeof forecastTimeToTarget>
   /** The same for the target in service, to say whether waiting can do it. */
-  target: { pa: number; result: ReturnType<typeof forecastTimeToTarget> } | null
+  target: { pa: number; result: ReturnType<typeof forecastTimeToTarget>; fastestHours: number | null } | null
   /** Model's own answer for the asked pressure, hours after the start; null when it never gets there. */
   modelHours: number | null
   model: { hours: number[]; pa: number[] } | null
@@ -51,17 +51,29 @@ export function forecastPumpDown(
   const position = standing.gauges.find(({ position: { tag } }) => tag === gauge.tag)?.position
   const atM = (position?.chainageM ?? standing.segment.startM) - standing.segment.startM
   const gone = (now.getTime() - standing.segment.since.getTime()) / HOUR_MS
+  const result = forecastTimeToTarget({ hours, pa }, { targetPa: askedPa })
   return {
     gauge: gauge.tag,
     startedAt: standing.segment.since,
     askedPa,
     chosen: ask !== null,
-    result: forecastTimeToTarget({ hours, pa }, { targetPa: askedPa }),
+    result,
     target:
-      targetPa === null ? null : { pa: targetPa, result: forecastTimeToTarget({ hours, pa }, { targetPa }) },
+      targetPa === null
+        ? null
+        : {
+            pa: targetPa,
+            result: forecastTimeToTarget({ hours, pa }, { targetPa }),
+            fastestHours: result.kind === 'forecast' ? fastest(result, gone, last / targetPa) : null,
+          },
     modelHours: model === null ? null : hoursToReach(model, askedPa, atM),
     model: model === null ? null : modelCurve(model, gone * LOOK_AHEAD, atM),
   }
+}
+
+/** Hours to a far target if the fall went on as steeply as the fit allows and no floor came: the best that waiting can do. */
+function fastest(fit: { alpha: number; alphaSe: number }, goneHours: number, factor: number): number {
+  return factor <= 1 ? goneHours : goneHours * factor ** (1 / (fit.alpha + 2 * fit.alphaSe))
 }
 
 function modelCurve(model: NonNullable<ReturnType<typeof coldModel>>, untilHours: number, atM: number) {

@@ -61,27 +61,24 @@ function NeedsBake({
   forecast: NonNullable<SegmentPageProps['forecast']>
   targetPa: number
 }) {
-  const target = forecast.target?.result
-  if (target === undefined) return null
-  if (target.kind === 'forecast' && target.hours < PATIENCE_HOURS) {
+  const { target } = forecast
+  if (target === null) return null
+  const { result, fastestHours } = target
+  const soonest = result.kind === 'forecast' ? result.hours : fastestHours
+  if (soonest === null)
+    return <p className="mb-2 text-ink-2">Whether pumping alone can do it cannot be told yet.</p>
+  const days = Math.round(soonest / 24)
+  if (soonest < PATIENCE_HOURS) {
     return (
-      <p className="mb-2">
-        Pumping alone is forecast to reach the target after {Math.round(target.hours / 24)} days; a bake would
-        be sooner.
-      </p>
+      <p className="mb-2">Pumping alone may reach the target after {days} days; a bake would be sooner.</p>
     )
   }
   return (
     <p className="mb-2">
-      <strong>The target needs a bake.</strong>{' '}
-      {target.kind === 'forecast' ? (
-        <>
-          On this course <Pressure pa={targetPa} /> would take about {Math.round(target.hours / 24)} days of
-          pumping.
-        </>
-      ) : (
-        <>Pumping alone: {target.message}</>
-      )}
+      <strong>The target needs a bake.</strong> Pumping alone would take{' '}
+      {result.kind === 'forecast' ? 'about' : 'at the very least'} {days} days to come down to{' '}
+      <Pressure pa={targetPa} />
+      {result.kind === 'forecast' ? '.' : ', if no constant part of the gas stops it before.'}
     </p>
   )
 }
