@@ -27,6 +27,12 @@ const EnvSchema = z.object({
   PUBLIC_URL: z.string().default(''),
   /** Demo mode: demo clock, demo sign-ins on the sign-in page, feeder. */
   DEMO: flag,
+  /** Where the web server answers, for the demo's feeder; empty switches the feeder off. Set by npm start. */
+  API_URL: z.union([z.literal(''), z.url({ protocol: /^https?$/ })]).default(''),
+  /** Token with which the demo's feeder posts; empty switches it off. Made by npm start. */
+  FEEDER_TOKEN: z
+    .union([z.literal(''), z.string().min(32, 'FEEDER_TOKEN needs at least 32 characters')])
+    .default(''),
   /** Largest night file taken in, in MiB. */
   MAX_NIGHT_FILE_MIB: z.coerce.number().int().min(1).default(4096),
   /** Largest attachment, in MiB. */

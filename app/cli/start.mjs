@@ -43,11 +43,15 @@ async function startUp() {
     console.log(`The last start was cut off; ${lock.cleared} process(es) of it had to be ended.`)
   await checkPort(host, port)
   env.SESSION_SECRET ??= keptSecret(join(dataFolder, 'session-secret'))
+  if (demo) env.FEEDER_TOKEN ??= keptSecret(join(dataFolder, 'feeder-token'))
 
   await step('packages', 'installing npm packages', async (say) => say(await ensureNpmPackages(root)))
   // Three things that do not wait for each other, on however many cores there are.
   await Promise.all([prepareDatabase(dataFolder, env, demo), prepareBuild(env), prepareMail(dataFolder, env)])
-  const [, facts] = await Promise.all([startWorker(env), startWeb(env, host)])
+  // The worker comes second: in the demo it posts to the web server, whose port may be any free one.
+  const facts = await startWeb(env, host)
+  env.API_URL ??= facts.address
+  await startWorker(env)
   return facts
 }
 

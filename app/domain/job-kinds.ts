@@ -6,6 +6,8 @@ export const JOB_PAYLOADS = {
   'partition-readings': z.strictObject({}),
   /** Deletes sign-in sessions that have run out. */
   'purge-sessions': z.strictObject({}),
+  /** In the demo: posts what the loggers of heated segments have to say since the last time. */
+  'feed-demo': z.strictObject({}),
   /** Deletes finished jobs, and uploads that broke off, once nobody will ask about them. */
   'purge-leftovers': z.strictObject({}),
 } as const satisfies Record<string, z.ZodType>

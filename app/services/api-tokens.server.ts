@@ -1,6 +1,7 @@
 /** Tokens for machines that send readings: made and revoked by an administrator, shown once, kept as a hash. */
 import { createHash, randomBytes } from 'node:crypto'
 import type { Db } from '../db/client.server.ts'
+import { isDuplicate } from '../db/errors.server.ts'
 import {
   findTokenByHash,
   insertToken,
@@ -184,6 +185,17 @@ export async function ensureDemoToken(
 ): Promise<void> {
   const tokenHash = hashToken(demo.token)
   if ((await findTokenByHash(db, tokenHash)) !== null) return
+  try {
+    await addDemoToken(db, now, tokenHash, demo)
+  } catch (error) {
+    // Another run was first; there is nothing left to do.
+    if (!isDuplicate(error)) throw error
+  }
+}
+
+type DemoToken = Omit<Parameters<typeof ensureDemoToken>[2], 'token'>
+
+async function addDemoToken(db: Db, now: Date, tokenHash: string, demo: DemoToken): Promise<void> {
   await tx(db, async (inside) => {
     const known = await listSources(inside)
     const sourceIds = known.filter(({ code }) => demo.sources.includes(code)).map(({ id }) => id)

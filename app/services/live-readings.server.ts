@@ -31,6 +31,7 @@ import {
   mergeIncoming,
   onOneConnection,
 } from '../db/queries/imports-merge.server.ts'
+import { listSourceEnds } from '../db/queries/readings.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import { type ReadPost, readPost } from '../domain/live-readings.ts'
@@ -159,6 +160,12 @@ export async function takeInPost(db: Db, token: TokenRow, now: Date, post: LiveP
     if (held === null) throw error
     return sameAnswer(held, source, bodySha256)
   }
+}
+
+/** Last instant that is stored of a source, by file or post; null when nothing is. */
+export async function liveEnd(db: Db, sourceCode: string, now: Date): Promise<Date | null> {
+  const ends = await listSourceEnds(db, now)
+  return ends.find(({ code }) => code === sourceCode)?.endAt ?? null
 }
 
 async function sourceOf(db: Db, code: string): Promise<SourceRow> {

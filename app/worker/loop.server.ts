@@ -6,10 +6,12 @@ import { randomUUID } from 'node:crypto'
 import { setTimeout as sleep } from 'node:timers/promises'
 import { type Db, getDb } from '../db/client.server.ts'
 import { isUnreachable } from '../db/errors.server.ts'
+import { SCHEDULED_TASKS } from '../domain/job-kinds.ts'
 import { log } from '../log.server.ts'
 import { keepClock, productNow, resumeClock } from '../services/clock.server.ts'
 import { claimJob, type JobHandlers, runJob } from '../services/jobs.server.ts'
 import { releaseSchedule, runSchedule } from '../services/schedule.server.ts'
+import { feederTasks } from './jobs/feeder.server.ts'
 import { JOB_HANDLERS } from './jobs/handlers.server.ts'
 
 const CLOCK_MS = 2_000
@@ -40,7 +42,7 @@ export async function runWorker({
       return CLOCK_MS
     }),
     repeat('look at the schedule', signal, async () => {
-      await runSchedule(db, owner, await productNow(db))
+      await runSchedule(db, owner, await productNow(db), { tasks: [...SCHEDULED_TASKS, ...feederTasks()] })
       return SCHEDULE_MS
     }),
     repeat('do jobs', signal, () => doOneJob(db, handlers, signal)),

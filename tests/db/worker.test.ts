@@ -21,6 +21,7 @@ function startWorker(handlers: Partial<JobHandlers> = {}) {
     signal: stop.signal,
     db,
     handlers: {
+      'feed-demo': quiet,
       'partition-readings': quiet,
       'purge-leftovers': quiet,
       'purge-sessions': quiet,

@@ -71,6 +71,8 @@ const LAYERS: readonly Layer[] = [
       'app/db/client.server.ts',
       'app/db/errors.server.ts',
       'app/domain/',
+      // The demo's loggers, which only the demo loads.
+      'seeds/feeder/',
       ...ENTRY,
       ...SERVER_GROUND,
     ],

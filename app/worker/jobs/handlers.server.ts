@@ -1,10 +1,12 @@
 /** Which function does which kind of job. */
 import type { JobHandlers } from '../../services/jobs.server.ts'
+import { feedDemo } from './feeder.server.ts'
 import { partitionReadings } from './partition-readings.server.ts'
 import { purgeLeftovers } from './purge-leftovers.server.ts'
 import { purgeEndedSessions } from './purge-sessions.server.ts'
 
 export const JOB_HANDLERS: JobHandlers = {
+  'feed-demo': feedDemo,
   'partition-readings': partitionReadings,
   'purge-sessions': purgeEndedSessions,
   'purge-leftovers': purgeLeftovers,
