@@ -11,6 +11,8 @@ import { WATER_FLOOR_PA } from '../physics/water.ts'
 import type { StandingSegment } from './standing.server.ts'
 
 const ROOM_K = 293.15
+/** Steel that was never baked is taken to have lain at room temperature for ten years since the mill: an assumption. */
+const STORED_S = 10 * 365.25 * 86_400
 /** The bake that a baked, unfired segment is taken to have had: 150 °C for a week, the site's usual one. */
 const USUAL_BAKE_K = 423.15
 const USUAL_BAKE_S = 168 * 3600
@@ -50,7 +52,7 @@ function hydrogenOf(segment: SegmentWithState): SegmentModel['hydrogen'] | null 
   }
   if (segment.hydrogenC0 === null) return null
   const agedTauM2 = isUnbaked(segment)
-    ? MILL_AGE_M2
+    ? MILL_AGE_M2 + hydrogenDiffusivity(ROOM_K) * STORED_S
     : MILL_AGE_M2 + hydrogenDiffusivity(USUAL_BAKE_K) * USUAL_BAKE_S
   return { kind: 'diffusion', c0PerM3: segment.hydrogenC0, agedTauM2 }
 }
