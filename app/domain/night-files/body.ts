@@ -1,8 +1,10 @@
+import { MARKS } from '../readings.ts'
 import type { SourceProfile } from '../schemas/source-profile.ts'
 import { type Block, isReordered, makeBlock } from './block.ts'
 import { channelQuestion } from './cell-faults.ts'
 import { CellReader } from './cells.ts'
 import type { ChannelBook } from './channel-names.ts'
+import { ResetStretches, resetFault } from './clock-reset.ts'
 import type { Dialect } from './dialect.ts'
 import { splitFields } from './fields.ts'
 import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
@@ -48,11 +50,12 @@ export class FileBody {
   block: Block | null = null
   noteUnit: Unit | null = null
   unitFrom: 'header' | 'note' | 'unit-row' | 'column' | 'profile' | null = null
-  /** Unit in which the first pressures of the file are written. */
+  /** Unit in which the first pressures of the file are written, or its first values when it holds no pressure. */
   unitWritten: string | null = null
   backSteps = 0
   readonly #tools: BodyTools
   readonly #times: RowTimes | null
+  readonly #resets: ResetStretches | null
   #headerColumns: HeaderColumn[] = []
   #headerLine = 0
   #noteLine = 0
@@ -83,11 +86,15 @@ export class FileBody {
     this.#times =
       dialect.timeFormat === null || dialect.zone === null
         ? null
-        : new RowTimes(dialect.timeFormat, dialect.decimalMark, dialect.zone)
+        : new RowTimes(dialect.timeFormat, dialect.decimalMark, dialect.zone, dialect.start)
+    this.#resets =
+      dialect.zone === null ? null : new ResetStretches(questions, context, dialect.zone, dialect.periodMs)
   }
 
   #settleUnit(unit: Unit): Unit {
-    return this.#override !== null && this.#override.from.factor === unit.factor ? this.#override.to : unit
+    const override = this.#override
+    if (override === null || override.from.quantity !== unit.quantity) return unit
+    return override.from.factor === unit.factor && override.from.offset === unit.offset ? override.to : unit
   }
 
   line(text: string, line: number, terminated: boolean, tooLong: boolean): void {
@@ -215,11 +222,7 @@ export class FileBody {
     else if (block.unitAt !== -1) this.unitFrom = 'column'
     else this.unitFrom = this.noteUnit === null ? 'profile' : 'note'
     for (const { name, position } of block.unknown)
-      questions.ask(
-        `unknown-channel:${name}`,
-        () => channelQuestion(name, this.#headerLine, position, book),
-        0,
-      )
+      questions.ask(`unknown-channel:${name}`, () => channelQuestion(name, this.#headerLine, position, book))
     this.#checkUnit(block)
     for (const column of block.wide) if (column.unit !== null) column.unit = this.#settleUnit(column.unit)
     if (block.unit !== null) block.unit = this.#settleUnit(block.unit)
@@ -227,14 +230,14 @@ export class FileBody {
 
   #checkUnit(block: Block): void {
     const { dialect, profile, questions } = this.#tools
-    const at =
-      block.layout === 'wide'
-        ? block.wide.find(({ unit }) => unit?.quantity === 'pressure')?.at
-        : block.unitAt
+    const column =
+      block.wide.find(({ unit }) => unit?.quantity === 'pressure') ??
+      block.wide.find(({ unit }) => unit !== null)
     const row = dialect.rows[0]
+    const at = block.layout === 'wide' ? column?.at : block.unitAt
     const written =
       block.layout === 'wide'
-        ? (block.wide.find(({ unit }) => unit?.quantity === 'pressure')?.unit ?? null)
+        ? (column?.unit ?? null)
         : (unitOf(row?.fields[block.unitAt]?.trim()) ?? block.unit)
     if (written === null) return
     this.unitWritten ??= written.token
@@ -251,10 +254,17 @@ export class FileBody {
 
   /** Whether the first block can give readings at all; asked when its first row comes. */
   #judge(): Refusal | null {
-    const { dialect, book } = this.#tools
+    const { dialect, book, profile } = this.#tools
     const block = this.block
     if (block === null) return null
     const unknown = block.unknown[0]
+    // Before anything is confirmed about a source, names that the register lacks are asked about one by one.
+    if (
+      profile.layout === null &&
+      profile.columns.length === 0 &&
+      (unknown === undefined || book.names().length > 0)
+    )
+      return refuseWithoutUnit(block, dialect)
     if (block.layout === 'wide' && block.wide.length === 0)
       return this.#noKnownChannel(unknown?.name ?? '', this.#headerLine, unknown?.position ?? 1)
     if (block.layout === 'long') {
@@ -325,9 +335,17 @@ export class FileBody {
       return
     }
     const dateText = block.dateAt === -1 ? null : (fields[block.dateAt] ?? '')
-    const time = this.#times.read(fields[block.timeAt] ?? '', dateText, block.timeAt + 1)
-    if (time.kind === 'fault') {
+    const timeText = fields[block.timeAt] ?? ''
+    const time = this.#times.read(timeText, dateText, block.timeAt + 1)
+    if (time.kind === 'fault' || time.kind === 'nonexistent') {
       tally.reject(line, text, time.fault)
+      return
+    }
+    if (time.kind === 'reset') {
+      this.#release(null)
+      const atMs = this.#resets?.read(time.atMs, line, timeText, this.#lastMs) ?? null
+      if (atMs === null) tally.reject(line, text, resetFault(timeText, block.timeAt + 1))
+      else this.rows.read(row, atMs, MARKS['time-reconstructed'])
       return
     }
     if (time.kind === 'twice') {
@@ -337,9 +355,10 @@ export class FileBody {
       return
     }
     this.#release(time.atMs)
+    this.#resets?.close(time.atMs)
     if (this.#lastMs !== null && time.atMs < this.#lastMs) this.backSteps += 1
     this.#lastMs = time.atMs
-    this.rows.read(row, time.atMs, false)
+    this.rows.read(row, time.atMs, time.marks)
   }
 
   /** Reads the rows of a repeated hour, now that all of them are there. */
@@ -355,7 +374,7 @@ export class FileBody {
       const atMs = instants[i] as number
       const ambiguous = Number.isNaN(atMs)
       if (ambiguous) doubtful += 1
-      this.rows.read(entry.row, ambiguous ? entry.first : atMs, ambiguous)
+      this.rows.read(entry.row, ambiguous ? entry.first : atMs, ambiguous ? MARKS['time-ambiguous'] : 0)
       this.#lastMs = ambiguous ? entry.second : atMs
     })
     this.remarks.push({

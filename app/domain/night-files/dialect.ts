@@ -3,14 +3,14 @@ import type { ChannelBook } from './channel-names.ts'
 import { refuseMarkup } from './content-kind.ts'
 import { splitLoosely } from './fields.ts'
 import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
-import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
+import { directiveSeparator, isComment, isFooter } from './line-kinds.ts'
 import { decimalEvidence } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
+import { settleTime } from './settle-time.ts'
 import { type HeadLine, sniffSeparator } from './sniff-separator.ts'
-import { sniffTime, type TimeSample } from './sniff-time.ts'
-import { TimeReader } from './time-text.ts'
+import type { StartTime } from './start-time.ts'
 import type { ReadContext, Refusal } from './types.ts'
-import { wallText, ZoneClock } from './zones.ts'
+import type { ZoneClock } from './zones.ts'
 
 /** How the file is written, as far as its head shows it. */
 export interface Dialect {
@@ -22,6 +22,8 @@ export interface Dialect {
   timeFormat: TimeFormat | null
   /** Zone of times that carry no offset; null while a person has to say it. */
   zone: ZoneClock | null
+  /** Start of a file that counts seconds. */
+  start: StartTime | null
   /** Rows of the head, cut into fields. */
   rows: { fields: string[]; line: number }[]
   periodMs: number | null
@@ -85,28 +87,24 @@ export function settleDialect(
       mend: 'The logger wrote nothing this night, or the file was cut. Fetch it again; this counts as no data received.',
     }
   const decimalMark = settleDecimalMark(rows, columns, layout, separator, profile, questions)
-  const samples: TimeSample[] = rows.map(({ fields, line }) => ({ text: fields[timeAt] ?? '', line }))
-  const time = sniffTime(samples, profile, decimalMark)
-  if (time.refusal !== null) return { ...time.refusal, column: timeAt + 1 }
-  let timeFormat = time.format
-  if (time.question !== null) {
-    const asked = time.question
-    const answer = questions.answer(asked.id)
-    const answered = asked.choices.find(({ value }) => value === answer)
-    if (answered === undefined) questions.ask(asked.id, () => asked, rows.length)
-    else timeFormat = answered.value as TimeFormat
-  }
-  const zone = settleZone(head, samples, timeFormat, profile, context, questions, separator)
+  const time = settleTime(
+    { lines: head, columns, rows, headerLine: headerLine.line, separator, decimalMark },
+    profile,
+    context,
+    questions,
+  )
+  if (time.refusal !== null) return time.refusal
   return {
     separator,
     decimalMark,
     layout,
     columns,
     headerLine: headerLine.line,
-    timeFormat,
-    zone,
+    timeFormat: time.format,
+    zone: time.zone,
+    start: time.start,
     rows,
-    periodMs: settlePeriod(samples, timeFormat, profile),
+    periodMs: time.periodMs,
   }
 }
 
@@ -159,75 +157,4 @@ function settleDecimalMark(
     }),
   )
   return seen ?? '.'
-}
-
-/** Zone of times without an offset; UTC for epochs, a fixed stand-in when every time carries its own offset. */
-function settleZone(
-  head: readonly HeadLine[],
-  samples: readonly TimeSample[],
-  format: TimeFormat | null,
-  profile: SourceProfile,
-  context: ReadContext,
-  questions: QuestionList,
-  separator: Separator,
-): ZoneClock | null {
-  if (format?.startsWith('epoch') === true) return new ZoneClock('UTC')
-  const answer = questions.answer('zone')
-  if (answer !== null && answer !== '') return new ZoneClock(answer)
-  if (profile.time.zone !== null) return new ZoneClock(profile.time.zone)
-  if (format === null) return null
-  const reader = new TimeReader(format)
-  const bare = samples.find(({ text }) => reader.read(text) && Number.isNaN(reader.offset))
-  if (bare === undefined) return new ZoneClock('UTC')
-  reader.read(bare.text)
-  const noted = head.find(({ text }) => isComment(text, separator) && readNote(text).zone !== null)
-  const proposed = [noted === undefined ? null : readNote(noted.text).zone, context.siteZone, 'UTC']
-  const zones = Array.from(new Set(proposed.filter((zone) => zone !== null)))
-  questions.ask(
-    'zone',
-    () =>
-      question({
-        id: 'zone',
-        kind: 'zone',
-        line: bare.line,
-        text: 'The times carry no offset and the profile of this source names no zone. On which clock did the logger run?',
-        found: `“${bare.text}”`,
-        expected: 'a zone in the profile of the source, or times with an offset such as +01:00',
-        mend: 'Choose the clock of the logger. Ask whoever set it up rather than guess.',
-        choices: zones.map((zone) =>
-          choice(zone, zone, [
-            {
-              line: bare.line,
-              text: bare.text,
-              meaning: `${wallText(new ZoneClock(zone).instants(reader.wallMs)[0] ?? reader.wallMs)} UTC`,
-            },
-          ]),
-        ),
-      }),
-    samples.length,
-  )
-  return null
-}
-
-/** Commonest step between the times of the head, unless the profile gives the period. */
-function settlePeriod(
-  samples: readonly TimeSample[],
-  format: TimeFormat | null,
-  profile: SourceProfile,
-): number | null {
-  if (profile.expectedPeriodSeconds !== null) return profile.expectedPeriodSeconds * 1000
-  if (format === null) return null
-  const reader = new TimeReader(format)
-  const steps = new Map<number, number>()
-  let before = Number.NaN
-  for (const { text } of samples) {
-    if (!reader.read(text)) continue
-    const step = reader.wallMs - before
-    if (step > 0) steps.set(step, (steps.get(step) ?? 0) + 1)
-    before = reader.wallMs
-  }
-  let commonest: number | null = null
-  for (const [step, count] of steps)
-    if (commonest === null || count > (steps.get(commonest) ?? 0)) commonest = step
-  return commonest
 }

@@ -63,6 +63,18 @@ export class QuestionList {
     return words
   }
 
+  /** Whether anything waits for an answer. */
+  isWaiting(): boolean {
+    for (const { waiting } of this.#asked.values()) if (waiting > 0) return true
+    return false
+  }
+
+  /** Makes every open question block: nothing of the file can be read before one is answered. */
+  blockAll(): void {
+    for (const asked of this.#asked.values()) asked.blocking = true
+    this.#blocked = true
+  }
+
   list(): Question[] {
     return Array.from(this.#asked.values())
   }

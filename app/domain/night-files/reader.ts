@@ -219,6 +219,8 @@ class Reader implements NightFileReader {
     this.#body?.end()
     this.#sink.flush()
     this.#refusal ??= this.#body?.refusal ?? null
+    if (this.#refusal === null && this.#sink.total === 0 && this.#questions.isWaiting())
+      this.#questions.blockAll()
     const blocked = this.#questions.isBlocked()
     if (this.#refusal === null && !blocked && this.#sink.total === 0) this.#refusal = this.#noRows()
     const counted = this.#counter?.total() ?? 0

@@ -113,6 +113,15 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
         `Left out: ${leftOut.slice(0, 8).join(', ')}${leftOut.length > 8 ? ' …' : ''}.`,
       ),
     )
+  for (const { channel, count, line } of sink.meterRestarts())
+    remarks.push(
+      remark(
+        'meter-restart',
+        count,
+        `${channel} counts less than before: the meter ran over its last figure, or was exchanged. Its figures are kept as they stand.`,
+        { channel, line },
+      ),
+    )
   remarks.push(...stoppedChannels(sink))
   return remarks
 }

@@ -1,4 +1,4 @@
-import { MARKS, type Quantity, qualityCode } from '../readings.ts'
+import { type Quantity, qualityCode } from '../readings.ts'
 import type { Block } from './block.ts'
 import { channelTarget } from './block.ts'
 import { cellFault, channelQuestion, wordQuestion } from './cell-faults.ts'
@@ -63,13 +63,13 @@ export class RowReader {
     this.#tools = tools
   }
 
-  read(row: Row, atMs: number, ambiguous: boolean): void {
+  read(row: Row, atMs: number, marks: number): void {
     this.#kept = 0
     this.#duplicates = 0
     this.#firstFault = null
-    this.#flagged = ambiguous
-    if (row.block.layout === 'wide') this.#wide(row, atMs, ambiguous)
-    else if (!this.#long(row, atMs, ambiguous)) return
+    this.#flagged = marks !== 0
+    if (row.block.layout === 'wide') this.#wide(row, atMs, marks)
+    else if (!this.#long(row, atMs, marks)) return
     const { tally } = this.#tools
     if (this.#kept > 0) tally.add(this.#flagged || this.#firstFault !== null ? 'flagged' : 'accepted')
     else if (this.#firstFault !== null) tally.skip(this.#firstFault)
@@ -77,18 +77,18 @@ export class RowReader {
     else tally.skip('left-out')
   }
 
-  #wide(row: Row, atMs: number, ambiguous: boolean): void {
+  #wide(row: Row, atMs: number, marks: number): void {
     const { cells } = this.#tools
     for (const column of row.block.wide) {
       const text = row.fields[column.at] ?? ''
       const fault = cells.read(text, column.quantity, column.unit)
       if (fault !== null) this.#fault(row, fault, text, column.at)
-      else this.#emit(column.channel, atMs, row, text, ambiguous)
+      else this.#emit(column.channel, atMs, row, text, marks)
     }
   }
 
   /** False when the row's outcome has been counted already. */
-  #long(row: Row, atMs: number, ambiguous: boolean): boolean {
+  #long(row: Row, atMs: number, marks: number): boolean {
     const { cells, sink, tally, questions, book } = this.#tools
     const { block, fields } = row
     const name = (fields[block.channelAt] ?? '').trim()
@@ -137,7 +137,7 @@ export class RowReader {
     if (fault !== null) this.#fault(row, fault, text, block.valueAt)
     else if (cells.applyStatus(status, quantity) !== null)
       this.#fault(row, 'unknown-word', status, block.statusAt)
-    else this.#emit(sink.channel(target.name, quantity), atMs, row, text, ambiguous)
+    else this.#emit(sink.channel(target.name, quantity), atMs, row, text, marks)
     return true
   }
 
@@ -158,7 +158,7 @@ export class RowReader {
       questions.ask(`unknown-word:${plainWord(text)}`, () => wordQuestion(text, row.line, at + 1))
   }
 
-  #emit(channel: number, atMs: number, row: Row, text: string, ambiguous: boolean): void {
+  #emit(channel: number, atMs: number, row: Row, text: string, marks: number): void {
     const { cells, sink, nowMs } = this.#tools
     let { quality } = cells
     if (cells.doubt !== null) {
@@ -176,7 +176,7 @@ export class RowReader {
       value: cells.value,
       bound: cells.bound,
       quality,
-      marks: ambiguous ? MARKS['time-ambiguous'] : 0,
+      marks,
       line: row.line,
       text,
     })

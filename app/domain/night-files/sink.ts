@@ -33,6 +33,9 @@ interface ChannelState {
   seen: Map<number, Held>
   seenBefore: Map<number, Held>
   bins: SketchBins
+  /** Steps back of an energy meter, and the line of the first. */
+  meterSteps: number
+  meterLine: number
 }
 
 function newBatch(): ReadingBatch {
@@ -105,6 +108,8 @@ export class ReadingSink {
       seen: new Map(),
       seenBefore: new Map(),
       bins: new SketchBins(this.periodMs ?? 60_000),
+      meterSteps: 0,
+      meterLine: 0,
     })
     return index
   }
@@ -205,6 +210,10 @@ export class ReadingSink {
       summary.firstText = detach(reading.text)
     }
     if (summary.lastMs === null || atMs >= summary.lastMs) {
+      if (summary.quantity === 'energy' && summary.last !== null && value < summary.last) {
+        state.meterSteps += 1
+        if (state.meterSteps === 1) state.meterLine = line
+      }
       summary.lastMs = atMs
       summary.lastText = reading.text
       summary.last = Number.isNaN(value) ? null : value
@@ -221,6 +230,13 @@ export class ReadingSink {
       summary.maxMs = atMs
     }
     state.bins.add(atMs, value)
+  }
+
+  /** Energy meters that went back inside the file: they counted over their last figure, or were exchanged. */
+  meterRestarts(): { channel: string; count: number; line: number }[] {
+    return this.#states.flatMap(({ summary, meterSteps, meterLine }) =>
+      meterSteps === 0 ? [] : [{ channel: summary.name, count: meterSteps, line: meterLine }],
+    )
   }
 
   flush(): void {

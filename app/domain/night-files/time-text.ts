@@ -128,6 +128,8 @@ export class TimeReader {
         return this.#serial(text, 24107)
       case 'month-name':
         return this.#monthName(text)
+      case 'elapsed-s':
+        return this.#elapsed(text)
       default:
         return this.#numeric(text)
     }
@@ -167,6 +169,15 @@ export class TimeReader {
     const number = this.#plain(text)
     if (Number.isNaN(number) || number < 1 || number > 200_000) return false
     this.wallMs = Math.round((number - epochDay) * DAY)
+    return true
+  }
+
+  /** Seconds since a start that is known elsewhere: `wallMs` holds the span. */
+  #elapsed(text: string): boolean {
+    const number = this.#plain(text)
+    if (!(number >= 0 && number < 1e9)) return false
+    this.wallMs = Math.round(number * 1000)
+    this.offset = 0
     return true
   }
 

@@ -17,8 +17,11 @@ export interface KnownChannel {
 export interface Answer {
   /** Id of the question. */
   id: string
-  /** `value` of the choice taken. */
+  /** `value` of the choice taken, or the text typed where the question allows one. */
   choice: string
+  /** Who answered, and when (ISO 8601). */
+  by?: string
+  at?: string
 }
 
 /** What the reader may know besides the file and the profile. Nothing in here is a guess about the file. */
@@ -33,6 +36,8 @@ export interface ReadContext {
   /** Size the sender announced, when it did. */
   statedBytes?: number | null
   answers?: readonly Answer[]
+  /** Last instant of the file of this source that was taken in before; proposed where a file has lost its clock. */
+  previousEndMs?: number | null
 }
 
 /**
@@ -156,6 +161,7 @@ export type QuestionKind =
   | 'zone'
   | 'unknown-channel'
   | 'unknown-word'
+  | 'start'
 
 export interface Question extends Finding {
   /** Stable for the same file: `unit`, `unknown-channel:HC99Z` … */
@@ -166,6 +172,8 @@ export interface Question extends Finding {
   /** One sentence for the screen. */
   text: string
   choices: Choice[]
+  /** `time`: besides the choices a time may be typed, `2026-11-02 06:00` on the clock of the source. */
+  typed?: 'time'
   /** Cells or lines that wait for the answer. */
   waiting: number
 }
@@ -186,6 +194,7 @@ export type RemarkKind =
   | 'short-file'
   | 'left-out-columns'
   | 'spaced-exponent'
+  | 'meter-restart'
 
 /** Something a person should look at before taking the file in. */
 export interface Remark {

@@ -1,3 +1,4 @@
+import { QUANTITIES } from '../readings.ts'
 import type { SourceProfile } from '../schemas/source-profile.ts'
 import type { Block } from './block.ts'
 import type { Dialect } from './dialect.ts'
@@ -5,7 +6,7 @@ import { NumberReader } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
 import { powerText } from './text.ts'
 import type { Refusal } from './types.ts'
-import { readUnit, toSi, type Unit, unitOf } from './units.ts'
+import { readUnit, toSi, type Unit, unitFits, unitOf } from './units.ts'
 
 export interface UnitFinding {
   unit: Unit | null
@@ -68,7 +69,10 @@ export function checkUnit(
   const answer = unitOf(questions.answer('unit'))
   if (answer !== null) return answer
   const given = found.unit
-  const at = block.layout === 'wide' ? (block.wide[0]?.at ?? 0) : block.valueAt
+  const at =
+    block.layout === 'wide'
+      ? (block.wide.find(({ quantity }) => unitFits(quantity, given))?.at ?? 0)
+      : block.valueAt
   const numbers = new NumberReader({
     decimalMark: dialect.decimalMark,
     thousandsMark: null,
@@ -97,7 +101,7 @@ export function checkUnit(
             samples.map(({ line, text }) => ({
               line,
               text,
-              meaning: `${powerText(toSi(numbers.read(text), unit))} Pa`,
+              meaning: `${powerText(toSi(numbers.read(text), unit))} ${QUANTITIES[unit.quantity].unit}`,
             })),
           ),
         ),

@@ -19,13 +19,15 @@ export const TIME_FORMATS = [
   'epoch-us',
   'serial-1900',
   'serial-1904',
+  'elapsed-s',
 ] as const
 export type TimeFormat = (typeof TIME_FORMATS)[number]
 
 export const SEPARATORS = [',', ';', '\t', '|', ' '] as const
 export type Separator = (typeof SEPARATORS)[number]
 
-function isZone(text: string): boolean {
+/** Whether a text is an IANA zone or a fixed offset. */
+export function isZone(text: string): boolean {
   if (/^[+-]\d{2}:\d{2}$/.test(text)) return true
   try {
     new Intl.DateTimeFormat('en', { timeZone: text })
@@ -68,6 +70,8 @@ export const SourceProfileSchema = z.object({
       /** Mark between day, month and year; a file that writes another one is asked about again. */
       dateMark: z.enum(['.', '/', '-']).nullable().default(null),
       zone: ZoneSchema.nullable().default(null),
+      /** How the start of files that count seconds is written in their lines of metadata. */
+      startFormat: z.enum(['iso', 'dmy', 'mdy', 'ymd', 'month-name']).nullable().default(null),
     })
     .prefault({}),
   /** Word in the file (lower case, single spaces) to its meaning; `ok` and `on` are no qualities but may stand here. */
