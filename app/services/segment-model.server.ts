@@ -98,9 +98,13 @@ export function predictedProfile(
   }).filter(({ pa }) => Number.isFinite(pa))
 }
 
+type Soak = { hours: number; limitedBy: 'water' | 'hydrogen' }
+
 export interface BakeAnswer {
-  /** Soak that brings the ends to the target; null when none does. */
-  soak: { hours: number; limitedBy: 'water' | 'hydrogen' } | null
+  /** Soak that brings the ends to the target; null when none does. Never baked steel counts as fresh from the mill. */
+  soak: Soak | null
+  /** The same for never baked steel that has lain for years, which has lost hydrogen meanwhile; null for baked steel. */
+  soakAtBest: Soak | null
   /** How many times the register's hydrogen was taken to explain the present reading; 1 when the model explains it. */
   hydrogenTimes: number
 }
@@ -127,11 +131,23 @@ export function bakeToReach(
   const model = coldModel(segment, (own.length > 0 ? own : everPlaced).slice(-1))
   if (model === null) return null
   const hydrogenTimes = crossPa === null || model.water.state === 'unbaked' ? 1 : excessOver(model, crossPa)
-  const scaled = { ...model, hydrogen: scaleHydrogen(model.hydrogen, hydrogenTimes) }
+  const soakOf = (hydrogen: SegmentModel['hydrogen']) =>
+    bakeHoursToReach(
+      { ...model, hydrogen: scaleHydrogen(hydrogen, hydrogenTimes) },
+      { targetPa: target.pa, bakeK: target.bakeC + 273.15, atM: 0 },
+    )
+  const fresh = freshFromMill(model)
   return {
-    soak: bakeHoursToReach(scaled, { targetPa: target.pa, bakeK: target.bakeC + 273.15, atM: 0 }),
+    soak: soakOf(fresh ?? model.hydrogen),
+    soakAtBest: fresh === null ? null : soakOf(model.hydrogen),
     hydrogenTimes,
   }
+}
+
+/** The hydrogen of never baked steel before it lay about; null for steel that has been baked. */
+function freshFromMill({ hydrogen, water }: SegmentModel): SegmentModel['hydrogen'] | null {
+  if (water.state !== 'unbaked' || hydrogen.kind !== 'diffusion') return null
+  return { ...hydrogen, agedTauM2: MILL_AGE_M2 }
 }
 
 function excessOver(model: SegmentModel, crossPa: number): number {

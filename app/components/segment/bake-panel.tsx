@@ -26,7 +26,7 @@ export function BakePanel({ bake, forecast, segment, standing }: SegmentPageProp
         <Facts
           items={[
             { name: 'Target at the ends', value: <Pressure pa={bake.targetPa} /> },
-            { name: 'Soak needed', value: soakText(answer.soak.hours) },
+            { name: 'Soak needed', value: <Soak {...answer} /> },
             {
               name: 'What decides it',
               value: answer.soak.limitedBy === 'water' ? 'water on the wall' : 'hydrogen in the steel',
@@ -46,6 +46,22 @@ export function BakePanel({ bake, forecast, segment, standing }: SegmentPageProp
         plan and no permit to heat.
       </p>
     </Panel>
+  )
+}
+
+/** One length, or two where it turns on how long the steel has lain since the mill. */
+function Soak({ soak, soakAtBest }: NonNullable<NonNullable<SegmentPageProps['bake']>['answer']>) {
+  if (soak === null) return null
+  const best = soakAtBest === null ? null : soakText(soakAtBest.hours)
+  return (
+    <>
+      {soakText(soak.hours)}
+      {best !== null && best !== soakText(soak.hours) && (
+        <span className="block text-sm font-normal text-ink-2">
+          {best} if the steel lay ten years since the mill
+        </span>
+      )}
+    </>
   )
 }
 
