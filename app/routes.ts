@@ -10,6 +10,7 @@ export default [
     index('routes/line/line.tsx'),
     route('segments/:tag', 'routes/segments/segment.tsx'),
     route('segments/:tag/state', 'routes/segments/state.tsx'),
+    route('segments/:tag/typed-reading', 'routes/segments/typed-reading.tsx'),
     route('intake', 'routes/intake/intake.tsx'),
     route('intake/:importId', 'routes/intake/import.tsx'),
     route('logbook', 'routes/logbook/logbook.tsx'),
@@ -23,6 +24,7 @@ export default [
     route('people/new', 'routes/people/new-person.tsx'),
     route('people/waiting', 'routes/people/waiting.tsx'),
     route('people/record', 'routes/people/record.tsx'),
+    route('people/tokens', 'routes/api/tokens.tsx'),
     route('people/:personId', 'routes/people/person.tsx'),
     route('account', 'routes/account/account.tsx'),
     route('clock', 'routes/account/clock.tsx'),
@@ -30,6 +32,7 @@ export default [
 
   // Resource routes: no page of their own.
   route('segments/:tag/readings.csv', 'routes/segments/readings-csv.tsx'),
+  route('api/v1/sources/:code/readings', 'routes/api/readings.tsx'),
   route('intake/upload', 'routes/intake/upload.tsx'),
   route('intake/:importId/original', 'routes/intake/original.tsx'),
   route('intake/:importId/rejected.csv', 'routes/intake/rejected-csv.tsx'),

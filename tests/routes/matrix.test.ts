@@ -49,6 +49,11 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: HANDS, status: 200 },
     POST: { who: HANDS, status: 400 },
   },
+  '/segments/:tag/typed-reading': {
+    path: '/segments/SG-X1/typed-reading',
+    GET: { who: HANDS, status: 200 },
+    POST: { who: HANDS, status: 400 },
+  },
   '/segments/:tag/readings.csv': { path: '/segments/SG-X1/readings.csv', GET: { who: STAFF, status: 200 } },
   '/intake': { GET: { who: STAFF, status: 200 }, POST: { who: HANDS, status: 400 } },
   '/intake/upload': { POST: { who: HANDS, status: 400 } },
@@ -88,10 +93,20 @@ const ADDRESSES: Record<string, Address> = {
     POST: { who: ['safety-officer', 'manager', 'administrator'], status: 400 },
   },
   '/people/record': { GET: { who: ['administrator'], status: 200 } },
+  '/people/tokens': {
+    GET: { who: ['administrator'], status: 200 },
+    POST: { who: ['administrator'], status: 400 },
+  },
   '/people/:personId': {
     path: '/people/999',
     GET: { who: ['administrator'], status: 404 },
     POST: { who: ['administrator'], status: 400 },
+  },
+  // A token of its own decides here; being signed in counts for nothing.
+  '/api/v1/sources/:code/readings': {
+    path: '/api/v1/sources/NL-X/readings',
+    GET: { who: 'anyone', status: 405 },
+    POST: { who: 'anyone', status: 401 },
   },
   '/account': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
   '/clock': { GET: { who: ['administrator'], status: 200 }, POST: { who: ['administrator'], status: 400 } },
