@@ -62,7 +62,13 @@ async function send(
   }
   const context = new RouterContextProvider()
   context.set(nowContext, sent.now ?? MORNING)
-  const args = { context, request: new Request(ADDRESS, init), params: { code: sent.code ?? 'NL-W' } }
+  const args = {
+    context,
+    request: new Request(ADDRESS, init),
+    url: new URL(ADDRESS),
+    pattern: '/api/v1/sources/:code/readings',
+    params: { code: sent.code ?? 'NL-W' },
+  }
   const response = await action(args as Parameters<typeof action>[0])
   return { status: response.status, headers: response.headers, body: await response.json() }
 }

@@ -149,7 +149,9 @@ describe('the page', () => {
       ),
     )
     const request = new Request('http://ebbline.test/people/tokens', { method: 'POST', body })
-    return action({ context, request, params: {} } as Parameters<typeof action>[0])
+    const { url } = request
+    const args = { context, request, url: new URL(url), pattern: '/people/tokens', params: {} }
+    return action(args as Parameters<typeof action>[0])
   }
   const wanted = { intent: 'add', name: 'Gateway', until: '2026-11-30', reason: 'live feed' }
 

@@ -60,7 +60,9 @@ beforeEach(async () => {
     })
     const context = new RouterContextProvider()
     context.set(nowContext, now)
-    const response = await action({ context, request, params: { code } } as Parameters<typeof action>[0])
+    const pattern = '/api/v1/sources/:code/readings'
+    const args = { context, request, url: new URL(request.url), pattern, params: { code } }
+    const response = await action(args as Parameters<typeof action>[0])
     outgoing.writeHead(response.status).end(await response.text())
   })
   await new Promise<void>((resolve) => server.listen(0, '127.0.0.1', resolve))

@@ -31,6 +31,7 @@ function ask(options: { runAt?: Date; uniqueKey?: string; maxAttempts?: number }
 function handlers(work: JobHandlers['purge-sessions']): JobHandlers {
   const unexpected = () => Promise.reject(new Error('not expected in this test'))
   return {
+    'feed-demo': unexpected,
     'purge-sessions': work,
     'partition-readings': unexpected,
     'purge-leftovers': unexpected,
