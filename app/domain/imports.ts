@@ -16,6 +16,10 @@ export const IMPORT_STATE_LABELS: Record<ImportState, string> = {
   withdrawn: 'Withdrawn',
 }
 
+/** States of a wish to withdraw an import. */
+export const WITHDRAWAL_STATES = ['asked', 'agreed', 'done', 'refused'] as const
+export type WithdrawalState = (typeof WITHDRAWAL_STATES)[number]
+
 /** What an upload answers when nothing new waits to be taken in. */
 export interface UploadFailure {
   ok: false
@@ -23,4 +27,6 @@ export interface UploadFailure {
   fields: FieldErrors
   /** The import that holds the refused file, or the earlier one with the same bytes. */
   importId: number | null
+  /** The source that was chosen; empty when the form did not come that far. */
+  source: string
 }
