@@ -15,7 +15,7 @@ import { dailyEntries } from './rounds.ts'
 const BLOCK = 200
 
 /** All entries, in the order in which they were written. */
-export function logEntries(): DemoEntry[] {
+function logEntries(): DemoEntry[] {
   return [
     ...eventEntries(),
     ...bakeEntries(),

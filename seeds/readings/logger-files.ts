@@ -128,9 +128,9 @@ function residualGasFile(night: string): LoggerFile {
 }
 
 /** RG-A has stood at SG-06 since this night. */
-export const RESIDUAL_GAS_SINCE = '2026-10-12'
+const RESIDUAL_GAS_SINCE = '2026-10-12'
 /** In this night the residual-gas logger delivered nothing. */
-export const RESIDUAL_GAS_MISSING = '2026-11-08'
+const RESIDUAL_GAS_MISSING = '2026-11-08'
 
 /** The file of one of these loggers for the night that began on a day; null where it delivered none. */
 export function otherNightFile(

@@ -3,11 +3,8 @@ import { at } from '../demo-time.ts'
 import type { AtGauges } from './segment-gas.ts'
 
 /** End of the last night. */
-export const NIGHT_END = at('2026-11-09 06:00')
+const NIGHT_END = at('2026-11-09 06:00')
 export const NIGHT_END_MS = NIGHT_END.getTime()
-
-/** Start of high vacuum on SG-11. */
-export const SG11_PUMPING = at('2026-11-06 14:00')
 
 /** Last row of the logger card that SG-15 hangs on. */
 export const SG15_LAST = at('2026-11-08 22:10')

@@ -8,8 +8,8 @@ import type { Said } from './pressures.ts'
 import { siteTime } from './site-clock.ts'
 
 /** Channels of each logger in the order in which they stand in its files. */
-export const WEST_CHANNELS = channelsOf(1, 8)
-export const EAST_CHANNELS = channelsOf(9, 17)
+const WEST_CHANNELS = channelsOf(1, 8)
+const EAST_CHANNELS = channelsOf(9, 17)
 
 function pressureReading(
   channel: string,

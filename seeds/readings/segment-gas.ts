@@ -58,12 +58,12 @@ function profile(
 }
 
 /** Diffusive age of the wall's hydrogen after a number of bakes, m². */
-export function hydrogenAge(bakes: number): number {
+function hydrogenAge(bakes: number): number {
   return MILL_AGE_M2 + bakes * BAKE_AGE_M2
 }
 
 /** What the cold wall gives off, Pa·m/s, if the register is right about the steel. */
-export function wallHydrogen(segment: DemoSegment, bakes: number): number {
+function wallHydrogen(segment: DemoSegment, bakes: number): number {
   if (segment.fired) return lowHydrogenRate(HYDROGEN_Q20, 293.15, ROOM_K)
   return slabRate({ c0PerM3: HYDROGEN_C0, wallM: segment.wallM }, ROOM_K, hydrogenAge(bakes), ROOM_K)
 }

@@ -71,7 +71,7 @@ export function supplyOutput(supply: string, atMs: number): SupplyOutput | null 
 
 const METERS_SINCE_MS = at('2025-09-01 00:00').getTime()
 /** Six digits: after 999 999 kWh a meter begins again. */
-export const METER_WRAPS_AT = 1_000_000
+const METER_WRAPS_AT = 1_000_000
 const METER_START = { W: 951_240, E: 412_870 } as const
 export type Feeder = keyof typeof METER_START
 const USED: Record<Feeder, number[]> = { W: [0], E: [0] }
