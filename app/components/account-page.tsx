@@ -35,7 +35,7 @@ export function AccountPage({
           <Choice
             name="pressureUnit"
             legend="Show pressures in"
-            chosen={preferences.pressureUnit}
+            chosen={failure?.typed?.pressureUnit ?? preferences.pressureUnit}
             errors={failure?.fields.pressureUnit}
             options={PRESSURE_UNITS.map((unit) => ({
               value: unit,
@@ -48,7 +48,7 @@ export function AccountPage({
           <Choice
             name="theme"
             legend="Light or dark"
-            chosen={preferences.theme}
+            chosen={failure?.typed?.theme ?? preferences.theme}
             errors={failure?.fields.theme}
             options={THEMES}
           />

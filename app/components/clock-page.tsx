@@ -42,6 +42,7 @@ export function ClockPage({
               name="to"
               label="New site time"
               at={new Date(now.getTime() + HOUR_MS)}
+              typed={failure?.typed?.to}
               zone={zone}
               hint="Only forward: what has been written keeps its time, and a clock put back would lie about it."
               errors={failure?.fields.to}
@@ -51,6 +52,7 @@ export function ClockPage({
               label="What do you want to watch?"
               required
               maxLength={500}
+              defaultValue={failure?.typed?.reason}
               hint="It stands in the record beside the move."
               errors={failure?.fields.reason}
             />

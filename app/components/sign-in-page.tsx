@@ -31,6 +31,7 @@ export function SignInPage({
             label="E-mail address"
             type="email"
             autoComplete="username"
+            defaultValue={failure?.typed?.email}
             required
             errors={failure?.fields.email}
           />

@@ -27,10 +27,9 @@ export function parseValues<Schema extends z.ZodType>(schema: Schema, values: un
   )
 }
 
-/** Reads a request's form and parses it. Repeated names become lists only where the schema asks for one. */
-export async function parseForm<Schema extends z.ZodType>(
-  schema: Schema,
-  request: Request,
-): Promise<z.infer<Schema>> {
-  return parseValues(schema, Object.fromEntries(await request.formData()))
+/** Fields of a posted form as text; a name that comes again counts as it came last. */
+export function typedOf(form: FormData): Record<string, string> {
+  return Object.fromEntries(
+    [...form].flatMap(([name, value]) => (typeof value === 'string' ? [[name, value]] : [])),
+  )
 }

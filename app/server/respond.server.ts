@@ -8,12 +8,22 @@ export interface ActionFailure {
   ok: false
   message: string
   fields: FieldErrors
+  /** What was typed, without passwords, so that a page without script can fill its form again. */
+  typed: Record<string, string>
 }
 
 /** An action's answer to a domain error; anything else is thrown on to the error page and the log. */
-export function failure(error: unknown) {
+export function failure(error: unknown, posted: Record<string, string>) {
   if (!(error instanceof DomainError)) throw error
-  return data({ ok: false, message: error.message, fields: error.fields } satisfies ActionFailure, { status: error.status })
+  const typed = withoutPasswords(posted)
+  return data({ ok: false, message: error.message, fields: error.fields, typed } satisfies ActionFailure, {
+    status: error.status,
+  })
+}
+
+/** A password goes into no answer: it is typed again. */
+export function withoutPasswords(posted: Record<string, string>): Record<string, string> {
+  return Object.fromEntries(Object.entries(posted).filter(([name]) => !/password/i.test(name)))
 }
 
 /** A loader's answer to a domain error: the plain error page with its status and sentence. */

@@ -46,9 +46,10 @@ export async function fileFromForm(request: Request, limitMib: number): Promise<
     throw error
   }
   const file = form.get('file')
-  if (!(file instanceof Blob) || (file.size === 0 && nameOf(file) === '')) throw noFile()
+  const sourceCode = String(form.get('source') ?? '')
+  if (!(file instanceof Blob) || (file.size === 0 && nameOf(file) === '')) throw noFile(sourceCode)
   return {
-    sourceCode: String(form.get('source') ?? ''),
+    sourceCode,
     fileName: nameOf(file),
     stream: piecesOf(file.stream()),
     statedBytes: null,
@@ -60,9 +61,10 @@ function nameOf(file: Blob): string {
   return file instanceof File ? file.name : ''
 }
 
-function noFile(): DomainError {
+function noFile(source: string): DomainError {
   return new DomainError('bad-input', 'One field needs another look; nothing has been saved.', {
     fields: { file: ['No file came with the form. Choose the file that the logger wrote.'] },
+    details: { source },
   })
 }
 
@@ -70,10 +72,11 @@ function noFile(): DomainError {
 export function fileFromBody(request: Request, limitMib: number): FileToReceive {
   const url = new URL(request.url)
   const body = request.body
-  if (body === null) throw noFile()
+  const sourceCode = url.searchParams.get('source') ?? ''
+  if (body === null) throw noFile(sourceCode)
   const stated = request.headers.get('Content-Length')
   return {
-    sourceCode: url.searchParams.get('source') ?? '',
+    sourceCode,
     fileName: url.searchParams.get('name') ?? '',
     stream: piecesOf(body),
     statedBytes: stated !== null && /^\d+$/.test(stated) ? Number(stated) : null,
@@ -101,8 +104,11 @@ export async function receiveFile(
   now: Date,
   take: () => FileToReceive | Promise<FileToReceive>,
 ): Promise<UploadAnswer> {
+  let source = ''
   try {
-    const staged = await stageUpload(db, actor, now, await take())
+    const file = await take()
+    source = file.sourceCode
+    const staged = await stageUpload(db, actor, now, file)
     if (staged.refusal === null) return { ok: true, importId: staged.importId, again: staged.again }
     return {
       ok: false,
@@ -112,11 +118,12 @@ export async function receiveFile(
         message: `The file could not be read. ${findingText(staged.refusal)}`,
         fields: {},
         importId: staged.importId,
+        source,
       },
     }
   } catch (error) {
     if (!(error instanceof DomainError)) throw error
-    const { importId } = error.details
+    const { importId, source: stated } = error.details
     return {
       ok: false,
       status: error.status,
@@ -125,6 +132,7 @@ export async function receiveFile(
         message: error.message,
         fields: error.fields,
         importId: typeof importId === 'number' ? importId : null,
+        source: typeof stated === 'string' ? stated : source,
       },
     }
   }

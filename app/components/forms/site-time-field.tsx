@@ -7,12 +7,14 @@ import { offsetLabel, typedTime } from '../ui/site-time.ts'
  * order of its own, and has no place for the offset that the hour which comes twice in autumn needs.
  *
  * @param at what stands in it at first
+ * @param typed what was typed before the form was refused, readable or not; it comes back as it was
  * @param hint goes before the words about how to write it
  */
 export function SiteTimeField({
   name,
   label,
   at,
+  typed,
   zone,
   hint,
   errors,
@@ -21,6 +23,7 @@ export function SiteTimeField({
   name: string
   label: string
   at: Date
+  typed?: string | undefined
   zone: string
   hint?: string
   errors?: readonly string[] | undefined
@@ -32,7 +35,7 @@ export function SiteTimeField({
       {...input}
       name={name}
       label={label}
-      defaultValue={typedTime(at, zone)}
+      defaultValue={typed ?? typedTime(at, zone)}
       autoComplete="off"
       spellCheck={false}
       required

@@ -38,6 +38,7 @@ export function DiscardPanel({ failure }: { failure: ActionFailure | undefined }
           required
           minLength={3}
           maxLength={1000}
+          defaultValue={failure?.typed?.reason}
           errors={failure?.fields.reason}
         />
         <Button kind="danger">Discard</Button>
@@ -47,7 +48,13 @@ export function DiscardPanel({ failure }: { failure: ActionFailure | undefined }
 }
 
 /** The questions that the file leaves open, those first without which nothing can be taken in. */
-export function QuestionsPanel({ readOut }: { readOut: ReadOut }) {
+export function QuestionsPanel({
+  readOut,
+  failure,
+}: {
+  readOut: ReadOut
+  failure: ActionFailure | undefined
+}) {
   const questions = [...readOut.questions].sort((a, b) => Number(b.blocking) - Number(a.blocking))
   if (questions.length === 0) return null
   return (
@@ -55,7 +62,11 @@ export function QuestionsPanel({ readOut }: { readOut: ReadOut }) {
       <Form method="post">
         <input type="hidden" name="intent" value="answer" />
         {questions.map((question) => (
-          <QuestionField key={question.id} question={question} />
+          <QuestionField
+            key={question.id}
+            question={question}
+            typed={failure?.typed?.[`${ANSWER_PREFIX}${question.id}`]}
+          />
         ))}
         <Button>Read again with these answers</Button>
       </Form>
@@ -63,7 +74,7 @@ export function QuestionsPanel({ readOut }: { readOut: ReadOut }) {
   )
 }
 
-function QuestionField({ question }: { question: Question }) {
+function QuestionField({ question, typed }: { question: Question; typed: string | undefined }) {
   const place = placeText(question)
   const { choices } = question
   return (
@@ -71,7 +82,7 @@ function QuestionField({ question }: { question: Question }) {
       <SelectField
         name={`${ANSWER_PREFIX}${question.id}`}
         label={question.text}
-        defaultValue=""
+        defaultValue={typed ?? ''}
         options={[
           {
             value: '',

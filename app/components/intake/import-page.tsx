@@ -61,7 +61,7 @@ export function ImportPage({
       ) : (
         <>
           {readOut.refusal !== null && <RefusalNotice refusal={readOut.refusal} />}
-          {waits && <QuestionsPanel readOut={readOut} />}
+          {waits && <QuestionsPanel readOut={readOut} failure={failure} />}
           <div className="grid gap-x-4.5 xl:grid-cols-[minmax(0,1fr)_22rem]">
             <div className="min-w-0">
               <LinesPanel readOut={readOut} importId={file.id} heldBefore={heldBefore} />

@@ -23,7 +23,7 @@ export function UploadForm({
 }) {
   const { state, send, stop } = useUpload()
   const posting = useNavigation().formMethod === 'POST'
-  const [source, setSource] = useState('')
+  const [source, setSource] = useState(failure?.source ?? '')
   const [tooLarge, setTooLarge] = useState<string | null>(null)
   const shown = state.kind === 'failed' ? state.failure : state.kind === 'idle' ? failure : undefined
   const busy = posting || state.kind === 'sending' || state.kind === 'reading'

@@ -15,6 +15,7 @@ const LOST: UploadFailure = {
   message: 'The connection broke while the file was being sent. Nothing has been saved; send it again.',
   fields: {},
   importId: null,
+  source: '',
 }
 
 /** State of the upload, and how to begin and to stop it. */

@@ -83,7 +83,7 @@ function AmendPanel({ entry, failure }: { entry: Entry; failure: ActionFailure |
         <TextAreaField
           name="text"
           label="Text from now on"
-          defaultValue={textInForce(entry)}
+          defaultValue={failure?.typed?.text ?? textInForce(entry)}
           required
           minLength={3}
           maxLength={8000}
@@ -95,6 +95,7 @@ function AmendPanel({ entry, failure }: { entry: Entry; failure: ActionFailure |
           required
           minLength={5}
           maxLength={500}
+          defaultValue={failure?.typed?.reason}
           errors={failure?.fields.reason}
         />
         <TextField

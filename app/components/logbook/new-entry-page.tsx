@@ -35,12 +35,22 @@ export function NewEntryPage({
   const submit = useSubmit()
   const sending = useNavigation().formMethod === 'POST'
   const schema = useMemo(() => newEntrySchema(zone), [zone])
+  // What was typed comes back after a refusal, also where no script kept it.
+  const typed = failure?.typed
+  const start = {
+    segment: typed?.segment ?? segment,
+    kind: ENTRY_KINDS.find((each) => each === typed?.kind) ?? 'note',
+    eventAt: typed?.eventAt ?? typedTime(now, zone),
+    text: typed?.text ?? '',
+  }
   const { register, handleSubmit, formState } = useForm<Typed, unknown, z.output<Schema>>({
     resolver: zodResolver(schema),
     mode: 'onTouched',
-    defaultValues: { segment, kind: 'note', eventAt: typedTime(now, zone), text: '', password: '' },
+    defaultValues: { ...start, password: '' },
   })
-  const [onChart, setOnChart] = useState(ENTRY_KIND_FACTS.note.onChart)
+  const [onChart, setOnChart] = useState(
+    typed === undefined ? ENTRY_KIND_FACTS[start.kind].onChart : typed.onChart === 'on',
+  )
 
   // What the form finds here comes first; otherwise what the server found.
   const errorsOf = (name: keyof Typed): readonly string[] | undefined => {
@@ -76,14 +86,14 @@ export function NewEntryPage({
               <SelectField
                 {...register('segment')}
                 label="Where"
-                defaultValue={segment}
+                defaultValue={start.segment}
                 options={[WHOLE_FACILITY, ...segments.map((tag) => ({ value: tag, label: tag }))]}
                 errors={errorsOf('segment')}
               />
               <SelectField
                 {...kind}
                 label="Kind"
-                defaultValue="note"
+                defaultValue={start.kind}
                 options={ENTRY_KINDS.map((each) => ({ value: each, label: ENTRY_KIND_FACTS[each].label }))}
                 errors={errorsOf('kind')}
               />
@@ -92,6 +102,7 @@ export function NewEntryPage({
               {...register('eventAt')}
               label="When it happened"
               at={now}
+              typed={start.eventAt}
               zone={zone}
               errors={errorsOf('eventAt')}
             />
@@ -101,6 +112,7 @@ export function NewEntryPage({
               required
               minLength={3}
               maxLength={8000}
+              defaultValue={start.text}
               errors={errorsOf('text')}
             />
             <CheckField

@@ -7,7 +7,6 @@ import { useSite } from '#app/hooks/use-site.ts'
 import type { GrantWithStanding } from '#app/services/people.server.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { SiteTimeField } from '../forms/site-time-field.tsx'
-import { typedInstant } from '../register/register-fields.tsx'
 import { ReasonField, type RegisterFailure } from '../register/thing-form.tsx'
 import { useCheckedForm } from '../register/use-checked-form.ts'
 import { Button } from '../ui/button.tsx'
@@ -149,7 +148,8 @@ function GrantForm({ failure: answered }: { failure: RegisterFailure | undefined
       <SiteTimeField
         name="startsAt"
         label="From"
-        at={typedInstant(typed, 'startsAt', zone, now)}
+        at={now}
+        typed={typed?.startsAt}
         zone={zone}
         errors={errorsOf('startsAt')}
       />

@@ -9,11 +9,12 @@ import {
 } from '#app/domain/schemas/register-dated.ts'
 import { useSite } from '#app/hooks/use-site.ts'
 import type { DatedForm } from '#app/services/register-dated.server.ts'
+import type { Typed } from '../forms/failure.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { SiteTimeField } from '../forms/site-time-field.tsx'
 import { Button } from '../ui/button.tsx'
 import { SelectField, TextField } from '../ui/field.tsx'
-import { SegmentField, SuggestField, TimeField, type Typed, typedInstant } from './register-fields.tsx'
+import { SegmentField, SuggestField, TimeField } from './register-fields.tsx'
 import { Conflict, ReasonField, type RegisterFailure } from './thing-form.tsx'
 import { type CheckedForm, useCheckedForm } from './use-checked-form.ts'
 
@@ -67,7 +68,8 @@ export function DatedRowForm({
         <SiteTimeField
           name="startsAt"
           label="From"
-          at={typedInstant(typed, 'startsAt', zone, now)}
+          at={now}
+          typed={typed?.startsAt}
           zone={zone}
           hint="What was before it stays as it is."
           errors={errorsOf('startsAt')}

@@ -1,14 +1,11 @@
 /** A field of the register's forms from its facts, filled with what was typed or with what is recorded. */
-import { readLocalTime } from '#app/domain/schemas/instant.ts'
 import type { FieldFact } from '#app/domain/schemas/register-fields.ts'
 import type { FieldValue } from '#app/domain/schemas/register-values.ts'
 import { useSite } from '#app/hooks/use-site.ts'
+import type { Typed } from '../forms/failure.ts'
 import { CheckField, SelectField, TextAreaField, TextField } from '../ui/field.tsx'
 import { fieldTime } from '../ui/site-time.ts'
 import { isPlain } from './cell-view.tsx'
-
-/** Typed values of a form that was refused, by field. */
-export type Typed = Readonly<Record<string, string>>
 
 /** What a field starts with: a recorded value as a form would send it. */
 function startText(field: FieldFact, value: FieldValue, zone: string): string {
@@ -28,12 +25,6 @@ function startText(field: FieldFact, value: FieldValue, zone: string): string {
 function timeWithSeconds(at: Date, zone: string): string {
   const seconds = at.getUTCSeconds()
   return seconds === 0 ? fieldTime(at, zone) : `${fieldTime(at, zone)}:${String(seconds).padStart(2, '0')}`
-}
-
-/** The instant that a time field starts with: what was typed, where it can be read, otherwise the present time. */
-export function typedInstant(typed: Typed | undefined, name: string, zone: string, now: Date): Date {
-  const read = readLocalTime(typed?.[name] ?? '', zone)
-  return read.kind === 'instant' ? read.at : now
 }
 
 export function RegisterField({

@@ -4,20 +4,21 @@ import { Form, Link, useNavigation } from 'react-router'
 import { type EditedKind, editedSchema, KIND_FACTS } from '#app/domain/schemas/register.ts'
 import type { FieldValue } from '#app/domain/schemas/register-values.ts'
 import { useSite } from '#app/hooks/use-site.ts'
-import type { ActionFailure } from '../forms/failure.ts'
+import type { ActionFailure, Typed } from '../forms/failure.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { SiteTimeField } from '../forms/site-time-field.tsx'
 import { Button } from '../ui/button.tsx'
 import { TextAreaField, TextField } from '../ui/field.tsx'
-import { RegisterField, type Typed, typedInstant } from './register-fields.tsx'
+import { RegisterField } from './register-fields.tsx'
 import { useCheckedForm } from './use-checked-form.ts'
 
-/** What an action of the register answers when it refused: also what was typed, so that it can be shown again. */
+/**
+ * What an action of the register answers when it refused. After a conflict it holds nothing that was typed: there the
+ * present values have to be looked at first.
+ */
 export interface RegisterFailure extends ActionFailure {
   /** The form that was sent. */
   intent: string
-  /** Absent after a conflict: there the present values have to be looked at first. */
-  typed?: Typed | undefined
 }
 
 /**
@@ -75,7 +76,8 @@ export function ThingForm({
       <SiteTimeField
         name="validFrom"
         label="Holds since"
-        at={typedInstant(typed, 'validFrom', zone, now)}
+        at={now}
+        typed={typed?.validFrom}
         zone={zone}
         hint="Since when it is so: now or earlier."
         errors={errorsOf('validFrom')}

@@ -73,8 +73,13 @@ export function SegmentStatePage({
           <FormFailure failure={failure} />
           <Form method="post" className="group">
             <input type="hidden" name="from" value={state} />
-            <StateChoice legend="Usually follows" codes={usual} />
-            <StateChoice legend="Out of the usual order" codes={unusual} unusual />
+            <StateChoice legend="Usually follows" codes={usual} chosen={failure?.typed?.state} />
+            <StateChoice
+              legend="Out of the usual order"
+              codes={unusual}
+              chosen={failure?.typed?.state}
+              unusual
+            />
             {(failure?.fields.state ?? []).map((error) => (
               <p key={error} className="mb-3 text-sm text-bad">
                 {error}
@@ -86,10 +91,18 @@ export function SegmentStatePage({
                 name="unusual"
                 label="This is not the usual way, and it is what happened"
                 hint="Say in the reason how it came about."
+                defaultChecked={failure?.typed?.unusual === 'on'}
                 errors={failure?.fields.unusual}
               />
             </div>
-            <SiteTimeField name="since" label="Since" at={now} zone={zone} errors={failure?.fields.since} />
+            <SiteTimeField
+              name="since"
+              label="Since"
+              at={now}
+              typed={failure?.typed?.since}
+              zone={zone}
+              errors={failure?.fields.since}
+            />
             <TextAreaField
               name="reason"
               label="What was done or seen"
@@ -97,6 +110,7 @@ export function SegmentStatePage({
               required
               minLength={5}
               maxLength={1000}
+              defaultValue={failure?.typed?.reason}
               errors={failure?.fields.reason}
             />
             <div className="flex flex-wrap gap-2">
@@ -115,10 +129,13 @@ export function SegmentStatePage({
 function StateChoice({
   legend,
   codes,
+  chosen,
   unusual = false,
 }: {
   legend: string
   codes: readonly SegmentState[]
+  /** The one that was chosen before the form was refused. */
+  chosen: string | undefined
   unusual?: boolean
 }) {
   if (codes.length === 0) return null
@@ -134,6 +151,7 @@ function StateChoice({
             type="radio"
             name="state"
             value={code}
+            defaultChecked={code === chosen}
             required
             data-unusual={unusual ? '' : undefined}
             className="size-5 shrink-0 accent-ink"

@@ -76,6 +76,8 @@ export const SourceProfileSchema = z.object({
     .prefault({}),
   /** Word in the file (lower case, single spaces) to its meaning; `ok` and `on` are no qualities but may stand here. */
   words: z.record(z.string(), z.enum([...QUALITIES, 'ok', 'on'])).default({}),
+  /** Unit as these files write it to the unit that is meant, or `leave-out`. */
+  units: z.record(z.string().min(1).max(40), z.string().min(1).max(24)).default({}),
   /** Numbers that this source uses as words. */
   sentinels: z.array(z.object({ value: z.number(), quality: z.enum(QUALITIES) })).default([]),
   basis: z

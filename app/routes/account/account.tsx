@@ -3,7 +3,7 @@ import { AccountPage } from '#app/components/account-page.tsx'
 import { preferencesContext } from '#app/context.ts'
 import { getDb } from '#app/db/client.server.ts'
 import { PreferencesSchema } from '#app/domain/schemas/preferences.ts'
-import { parseForm } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure } from '#app/server/respond.server.ts'
 import { savePreferences } from '#app/services/preferences.server.ts'
@@ -21,12 +21,13 @@ export function loader({ context, request }: Route.LoaderArgs) {
 /** Unit and theme are each a small form of their own, here and in the rail; the answer leads back to where it was sent from. */
 export async function action({ context, request }: Route.ActionArgs) {
   const actor = signedIn(context, request)
+  const typed = typedOf(await request.formData())
   try {
-    const { from, ...preferences } = await parseForm(PreferencesSchema, request)
+    const { from, ...preferences } = parseValues(PreferencesSchema, typed)
     await savePreferences(getDb(), actor, preferences)
     return redirectWithNotice(from, 'Settings saved.')
   } catch (error) {
-    return failure(error)
+    return failure(error, typed)
   }
 }
 

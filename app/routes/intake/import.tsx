@@ -2,7 +2,7 @@ import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { ImportPage } from '#app/components/intake/import-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
 import { ANSWER_PREFIX, ImportDecisionSchema } from '#app/domain/schemas/import-decision.ts'
-import { parseForm } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure, orRefuse } from '#app/server/respond.server.ts'
 import { acceptImport, answerQuestions, discardImport } from '#app/services/intake-decisions.server.ts'
@@ -21,8 +21,9 @@ export async function loader({ context, request, params }: Route.LoaderArgs) {
 export async function action({ context, request, params }: Route.ActionArgs) {
   const actor = permitted(context, request, 'intake:take-in')
   const importId = Number(params.importId)
+  const typed = typedOf(await request.formData())
   try {
-    const decision = await parseForm(ImportDecisionSchema, request)
+    const decision = parseValues(ImportDecisionSchema, typed)
     if (decision.intent === 'accept') {
       const { stored, held, conflicting } = await acceptImport(getDb(), actor, nowOf(context), importId)
       const beside = conflicting === 0 ? '' : `, ${conflicting} of them beside a different reading`
@@ -43,7 +44,7 @@ export async function action({ context, request, params }: Route.ActionArgs) {
     await answerQuestions(getDb(), actor, nowOf(context), importId, answers)
     return redirectWithNotice(`/intake/${importId}`, 'Read again with the answers.')
   } catch (error) {
-    return failure(error)
+    return failure(error, typed)
   }
 }
 

@@ -2,7 +2,7 @@ import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { EntryPage } from '#app/components/logbook/entry-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
 import { AmendmentSchema } from '#app/domain/schemas/logbook.ts'
-import { parseForm } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure, orRefuse } from '#app/server/respond.server.ts'
 import { amendEntry, readEntry } from '#app/services/logbook.server.ts'
@@ -24,12 +24,13 @@ export async function loader({ context, request, params }: Route.LoaderArgs) {
 
 export async function action({ context, request, params }: Route.ActionArgs) {
   const actor = permitted(context, request, 'entry:write')
+  const typed = typedOf(await request.formData())
   try {
-    const amendment = await parseForm(AmendmentSchema, request)
+    const amendment = parseValues(AmendmentSchema, typed)
     await amendEntry(getDb(), actor, nowOf(context), Number(params.entryId), amendment)
     return redirectWithNotice(`/logbook/${params.entryId}`, 'Amendment written and signed.')
   } catch (error) {
-    return failure(error)
+    return failure(error, typed)
   }
 }
 

@@ -2,7 +2,7 @@ import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { NewEntryPage } from '#app/components/logbook/new-entry-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
 import { newEntrySchema } from '#app/domain/schemas/logbook.ts'
-import { parseForm } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure } from '#app/server/respond.server.ts'
 import { writeEntry } from '#app/services/logbook.server.ts'
@@ -27,16 +27,17 @@ export async function loader({ context, request, url }: Route.LoaderArgs) {
 
 export async function action({ context, request }: Route.ActionArgs) {
   const actor = permitted(context, request, 'entry:write')
+  const typed = typedOf(await request.formData())
   try {
     const site = await getSite(getDb())
-    const entry = await parseForm(newEntrySchema(site.timeZone), request)
+    const entry = parseValues(newEntrySchema(site.timeZone), typed)
     await writeEntry(getDb(), actor, nowOf(context), entry)
     return redirectWithNotice(
       entry.segment === '' ? '/logbook' : `/segments/${entry.segment}`,
       'Entry written and signed.',
     )
   } catch (error) {
-    return failure(error)
+    return failure(error, typed)
   }
 }
 

@@ -1,12 +1,12 @@
 import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { PersonPage } from '#app/components/people/person-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
-import { parseValues } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
 import { readPerson } from '#app/services/people.server.ts'
 import { changePerson } from '#app/services/people-change.server.ts'
-import { refused, typedOf } from '../register/refused.server.ts'
+import { refused } from '../register/refused.server.ts'
 import type { Route } from './+types/person'
 
 export function meta({ loaderData }: Route.MetaArgs) {

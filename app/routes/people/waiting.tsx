@@ -2,11 +2,11 @@ import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { WaitingPage } from '#app/components/people/waiting-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
 import { DecideGrantSchema } from '#app/domain/schemas/people.ts'
-import { parseValues } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { decideGrant } from '#app/services/grants.server.ts'
 import { readWaiting } from '#app/services/people.server.ts'
-import { refused, typedOf } from '../register/refused.server.ts'
+import { refused } from '../register/refused.server.ts'
 import type { Route } from './+types/waiting'
 
 export function meta() {

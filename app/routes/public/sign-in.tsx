@@ -4,8 +4,8 @@ import { authenticator } from '#app/auth/sign-in.server.ts'
 import { SignInPage } from '#app/components/sign-in-page.tsx'
 import { actorContext } from '#app/context.ts'
 import { getDb } from '#app/db/client.server.ts'
-import { DomainError } from '#app/domain/errors.ts'
 import { safePath } from '#app/domain/safe-path.ts'
+import { typedOf } from '#app/server/form.server.ts'
 import { failure } from '#app/server/respond.server.ts'
 import { listDemoSignIns } from '#app/services/demo-sign-ins.server.ts'
 import type { Route } from './+types/sign-in'
@@ -20,13 +20,14 @@ export async function loader({ context, url }: Route.LoaderArgs) {
 }
 
 export async function action({ request, url }: Route.ActionArgs) {
+  // The strategy reads the request itself; this copy is for the answer to a refusal.
+  const typed = typedOf(await request.clone().formData())
   try {
     const { personId } = await authenticator.authenticate('form', request)
     const cookie = await openSession(getDb(), personId, request.headers.get('User-Agent') ?? '')
     return redirect(safePath(url.searchParams.get('next')), { headers: { 'Set-Cookie': cookie } })
   } catch (error) {
-    if (error instanceof DomainError) return failure(error)
-    throw error
+    return failure(error, typed)
   }
 }
 

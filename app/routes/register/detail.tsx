@@ -3,13 +3,13 @@ import { ThingPage } from '#app/components/register/thing-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
 import { may } from '#app/domain/actor.ts'
 import { KIND_FACTS } from '#app/domain/schemas/register.ts'
-import { parseValues } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
 import { changeThing } from '#app/services/register-change.server.ts'
 import { readRegisterDetail } from '#app/services/register-page.server.ts'
 import type { Route } from './+types/detail'
-import { kindOf, refused, typedOf } from './refused.server.ts'
+import { kindOf, refused } from './refused.server.ts'
 
 export function meta({ loaderData }: Route.MetaArgs) {
   return [{ title: `${loaderData?.tag ?? 'Register'} · Ebbline` }]

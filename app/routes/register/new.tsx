@@ -2,14 +2,14 @@ import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { NewThingPage } from '#app/components/register/thing-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
 import { editedSchema, KIND_FACTS } from '#app/domain/schemas/register.ts'
-import { parseValues } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
 import { addThing } from '#app/services/register-edit.server.ts'
 import { readNewThing } from '#app/services/register-page.server.ts'
 import { getSite } from '#app/services/site.server.ts'
 import type { Route } from './+types/new'
-import { kindOf, refused, typedOf } from './refused.server.ts'
+import { kindOf, refused } from './refused.server.ts'
 
 export function meta({ loaderData }: Route.MetaArgs) {
   return [{ title: `Add ${loaderData === undefined ? '' : KIND_FACTS[loaderData.kind].one} · Ebbline` }]

@@ -2,20 +2,13 @@
 import { data } from 'react-router'
 import { DomainError } from '#app/domain/errors.ts'
 import { isRegisterKind, type RegisterKind } from '#app/domain/schemas/register.ts'
-import { refuse } from '#app/server/respond.server.ts'
+import { refuse, withoutPasswords } from '#app/server/respond.server.ts'
 
 /** The kind that an address names; otherwise the plain 404 page. */
 export function kindOf(text: string): RegisterKind {
   if (isRegisterKind(text)) return text
   return refuse(
     new DomainError('not-found', `The register has no kind "${text}". Its first page lists what it has.`),
-  )
-}
-
-/** Fields of a form as text. */
-export function typedOf(form: FormData): Record<string, string> {
-  return Object.fromEntries(
-    [...form].flatMap(([name, value]) => (typeof value === 'string' ? [[name, value]] : [])),
   )
 }
 
@@ -31,7 +24,7 @@ export function refused(error: unknown, typed: Record<string, string>) {
       message: error.message,
       fields: error.fields,
       intent: typed.intent ?? '',
-      typed: error.code === 'conflict' ? undefined : typed,
+      typed: error.code === 'conflict' ? undefined : withoutPasswords(typed),
     },
     { status: error.status },
   )

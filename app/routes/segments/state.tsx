@@ -2,7 +2,7 @@ import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { SegmentStatePage } from '#app/components/segment/segment-state-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
 import { segmentStateSchema } from '#app/domain/schemas/segment-state.ts'
-import { parseForm } from '#app/server/form.server.ts'
+import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure, orRefuse } from '#app/server/respond.server.ts'
 import { readSegmentStates } from '#app/services/segment-page.server.ts'
@@ -26,13 +26,14 @@ export async function loader({ context, request, params }: Route.LoaderArgs) {
 
 export async function action({ context, request, params }: Route.ActionArgs) {
   const actor = permitted(context, request, 'segment-state:set')
+  const typed = typedOf(await request.formData())
   try {
     const site = await getSite(getDb())
-    const change = await parseForm(segmentStateSchema(site.timeZone), request)
+    const change = parseValues(segmentStateSchema(site.timeZone), typed)
     await setSegmentState(getDb(), actor, nowOf(context), { tag: params.tag, ...change })
     return redirectWithNotice(`/segments/${params.tag}`, `State of ${params.tag} set.`)
   } catch (error) {
-    return failure(error)
+    return failure(error, typed)
   }
 }
 
