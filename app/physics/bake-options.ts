@@ -2,7 +2,7 @@
 import { requirePositive, requireWithin } from './argument-checks.ts'
 import { type BakeOutcome, holdToMeet } from './bake.ts'
 import { ZERO_CELSIUS_K } from './constants.ts'
-import type { SegmentModel } from './predict.ts'
+import type { SegmentModel } from './segment-gas.ts'
 import { bakeEnergyPerM, type HeatedTube, holdPower, rampPower } from './thermal.ts'
 
 const HOUR_S = 3600

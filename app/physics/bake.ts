@@ -3,20 +3,20 @@
  * energy. Pressures in Pa after cooling; water by the emptying front, hydrogen by the age of the sheet, ramps counted.
  */
 import { requirePositive, requireWithin } from './argument-checks.ts'
-import { molecularSpecific } from './conductance.ts'
-import { BOLTZMANN, GAS_CONSTANT } from './constants.ts'
+import { GAS_CONSTANT } from './constants.ts'
 import { nitrogenEquivalent } from './gauges.ts'
-import { AUSTENITIC_DIFFUSIVITY, lowHydrogenRate, slabAtomFlux, transformedTime } from './hydrogen.ts'
-import type { SegmentModel } from './predict.ts'
-import { linePositions, steadyPressures } from './steady.ts'
+import { AUSTENITIC_DIFFUSIVITY, transformedTime } from './hydrogen.ts'
 import {
-  DEFAULT_WATER,
-  emptyingFront,
-  WATER_FLOOR_PA,
-  type WaterIsotherm,
-  waterRateTime,
-  waterScalePressure,
-} from './water.ts'
+  airPressure,
+  hydrogenRate,
+  isothermOf,
+  requireModel,
+  type SegmentModel,
+  unbakedTemperature,
+  unitPressure,
+  waterAfterHold,
+} from './segment-gas.ts'
+import { emptyingFront, WATER_FLOOR_PA, waterRateTime, waterScalePressure } from './water.ts'
 
 const HOUR_S = 3600
 /** Nobody holds a bake longer than a year, h. */
@@ -113,7 +113,7 @@ function rampsOf(programme: Omit<BakeProgramme, 'holdHours'>): Ramps {
 }
 
 function requireProgramme(model: SegmentModel, programme: BakeProgramme): void {
-  requireWithin('temperatureK', model.temperatureK, 200, 700)
+  requireModel(model)
   requireWithin('bakeK', programme.bakeK, model.temperatureK, 1300)
   requireWithin('holdHours', programme.holdHours, 0, 1e6)
   requireWithin('upKH', programme.upKH, 0.1, 1000)
@@ -129,7 +129,7 @@ function outcomeAt(
 ): (holdHours: number) => BakeOutcome {
   const water = waterAfter(model, atM, bakeK, ramps)
   const hydrogen = hydrogenAfter(model, atM, bakeK, ramps)
-  const airPa = leakPressure(model, atM)
+  const airPa = airPressure(model, atM)
   return (holdHours) => {
     const { waterPa, waterAtFloor } = water(holdHours)
     const hydrogenPa = hydrogen(holdHours)
@@ -160,10 +160,8 @@ function waterAfter(
 ): (holdHours: number) => { waterPa: number; waterAtFloor: boolean } {
   const { water, temperatureK } = model
   if (water.state === 'baked') return () => ({ waterPa: water.floorPa, waterAtFloor: true })
-  const isotherm: WaterIsotherm = { ...DEFAULT_WATER, capacityPerM2: water.capacityPerM2 }
-  const perRate = unitPressure(model, 'H2O', atM, bakeK)
-  const hotScale = waterScalePressure(bakeK, isotherm)
-  const rateTime = waterRateTime(bakeK, isotherm)
+  const isotherm = isothermOf(water.capacityPerM2)
+  const held = waterAfterHold(model, water.capacityPerM2, bakeK, atM)
   const coldRateTime = unitPressure(model, 'H2O', atM, temperatureK) * waterRateTime(temperatureK, isotherm)
   return (holdHours) => {
     // Near the top of a ramp the release falls by e every RT2/E: so many kelvins of each ramp work like the hold.
@@ -172,13 +170,11 @@ function waterAfter(
     for (let round = 0; round < 6; round++) {
       const near = (GAS_CONSTANT * bakeK ** 2) / energy
       seconds = (holdHours + near / ramps.upKH + near / ramps.downKH) * HOUR_S
-      const found = emptyingFront((perRate * rateTime) / seconds, bakeK, isotherm)
+      const found = emptyingFront(held.hotPa(seconds), bakeK, isotherm)
       energy = Math.min(isotherm.highJMol, Math.max(isotherm.lowJMol, found))
     }
-    const share = Math.min(1, (perRate * rateTime) / seconds / hotScale)
-    const coldPa = waterScalePressure(temperatureK, isotherm) * share ** (bakeK / temperatureK)
     // Cold pumping goes on along the 1/t line from the time that would have brought the unbaked wall here.
-    const sameAsSeconds = coldRateTime / coldPa
+    const sameAsSeconds = coldRateTime / held.coldPa(seconds)
     const waterPa = coldRateTime / (sameAsSeconds + ramps.coldHours * HOUR_S)
     return { waterPa: Math.max(WATER_FLOOR_PA, waterPa), waterAtFloor: waterPa <= WATER_FLOOR_PA }
   }
@@ -190,60 +186,22 @@ function hydrogenAfter(
   bakeK: number,
   ramps: Ramps,
 ): (holdHours: number) => number {
-  const { hydrogen, temperatureK, wallM } = model
+  const { temperatureK } = model
   const perRate = unitPressure(model, 'H2', atM, temperatureK)
-  if (hydrogen.kind === 'low-hydrogen') {
-    const rate = lowHydrogenRate(hydrogen.qPaMS, hydrogen.atK, temperatureK) * (temperatureK / hydrogen.atK)
-    return () => perRate * rate
+  const rampsTo = (topK: number): number => {
+    const rise = bakeK - temperatureK
+    return transformedTime([
+      { seconds: (rise / ramps.upKH) * HOUR_S, fromK: temperatureK, toK: topK },
+      { seconds: (rise / ramps.downKH) * HOUR_S, fromK: topK, toK: temperatureK },
+      { seconds: ramps.coldHours * HOUR_S, fromK: temperatureK, toK: temperatureK },
+    ])
   }
-  const rise = bakeK - temperatureK
-  const ramped = transformedTime([
-    { seconds: (rise / ramps.upKH) * HOUR_S, fromK: temperatureK, toK: bakeK },
-    { seconds: (rise / ramps.downKH) * HOUR_S, fromK: bakeK, toK: temperatureK },
-    { seconds: ramps.coldHours * HOUR_S, fromK: temperatureK, toK: temperatureK },
-  ])
+  const unbakedK = unbakedTemperature(model, bakeK)
+  const ramped = rampsTo(bakeK)
+  const cooler = rampsTo(unbakedK)
   return (holdHours) => {
-    const held = transformedTime([{ seconds: holdHours * HOUR_S, fromK: bakeK, toK: bakeK }])
-    const age = hydrogen.agedTauM2 + ramped + held
-    const atoms = slabAtomFlux({ c0PerM3: hydrogen.c0PerM3, wallM }, temperatureK, age)
-    return perRate * (atoms / 2) * BOLTZMANN * temperatureK
+    const heldAt = (kelvin: number): number =>
+      transformedTime([{ seconds: holdHours * HOUR_S, fromK: kelvin, toK: kelvin }])
+    return perRate * hydrogenRate(model, ramped + heldAt(bakeK), cooler + heldAt(unbakedK))
   }
-}
-
-/** Steady pressure at `atM` for a wall that gives 1 Pa m/s everywhere. */
-function unitPressure(model: SegmentModel, gas: 'H2O' | 'H2', atM: number, kelvin: number): number {
-  const line = {
-    lengthM: model.lengthM,
-    specific: molecularSpecific(gas, model.diameterM, kelvin),
-    sourcePerM: Math.PI * model.diameterM,
-    // A pump whose water speed is not given takes water as it takes nitrogen.
-    pumps: model.pumps.map((p) => ({
-      atM: p.atM,
-      speedM3S: p.speedM3S[gas] ?? (gas === 'H2O' ? (p.speedM3S.N2 ?? 0) : 0),
-    })),
-  }
-  const positions = linePositions(line, [atM])
-  return steadyPressures(line, positions)[nodeOf(positions, atM)]!
-}
-
-function leakPressure(model: SegmentModel, atM: number): number {
-  const leaks = (model.airLeaks ?? []).map((leak) => ({ atM: leak.atM, loadPaM3S: leak.qPaM3S }))
-  if (leaks.length === 0) return 0
-  const line = {
-    lengthM: model.lengthM,
-    specific: molecularSpecific('N2', model.diameterM, model.temperatureK),
-    sourcePerM: 0,
-    pumps: model.pumps.map((p) => ({ atM: p.atM, speedM3S: p.speedM3S.N2 ?? 0 })),
-    leaks,
-  }
-  const positions = linePositions(line, [atM])
-  return steadyPressures(line, positions)[nodeOf(positions, atM)]!
-}
-
-function nodeOf(positions: readonly number[], atM: number): number {
-  let best = 0
-  for (let i = 1; i < positions.length; i++) {
-    if (Math.abs(positions[i]! - atM) < Math.abs(positions[best]! - atM)) best = i
-  }
-  return best
 }

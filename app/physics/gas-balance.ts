@@ -14,9 +14,9 @@ import {
   requireGasRun,
   stepAt,
   type ThermalState,
+  unbakedKelvin,
   type ValveMotion,
-  wallRate,
-  withUnbaked,
+  wholeWallRate,
 } from './gas-run.ts'
 import { moleculeMass, viscosity } from './gases.ts'
 import { gettersOf } from './getters.ts'
@@ -99,9 +99,7 @@ export function gasBalance(
   const zoneWall = new Float64Array(zones)
   for (let i = 0; i < n; i++) zoneWall[zoneOf[i]!]! += wallM2[i]!
   const zoneRoot = new Float64Array(zones)
-  const wallRates = thermal.programmes.map((programme) =>
-    withUnbaked(run.unbaked, programme, (kelvins) => wallRate(run.walls ?? [], kelvins, fromS)),
-  )
+  const wallRates = thermal.programmes.map((programme) => wholeWallRate(run, programme, fromS))
   let changed = true
   let version = 0
 
@@ -161,7 +159,7 @@ export function gasBalance(
         zoneK[zone] = kelvin
         zoneRoot[zone] = 1 / Math.sqrt(kelvin)
         baked?.warm(zone, kelvin)
-        if (run.unbaked) unbaked?.warm(zone, unbakedK(run.unbaked, kelvin))
+        if (run.unbaked) unbaked?.warm(zone, unbakedKelvin(run.unbaked, kelvin))
       }
       if (changed) {
         preparePassages()
@@ -266,9 +264,4 @@ export function gasBalance(
 
 function isLinear(step: { readonly value: PumpCurve | null }): boolean {
   return step.value === null || step.value.kind === 'constant'
-}
-
-/** Temperature of the unbaked area beside a tube at `tubeK`. */
-function unbakedK(area: NonNullable<GasRun['unbaked']>, tubeK: number): number {
-  return area.roomK + area.followShare * (tubeK - area.roomK)
 }

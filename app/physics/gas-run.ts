@@ -47,6 +47,8 @@ export interface UnbakedArea {
   /** How far it follows the tube's rise above the room: 0 not at all, 1 wholly. */
   readonly followShare: number
   readonly roomK: number
+  /** Age of its hydrogen at the start where it differs from that of the tube, m2. */
+  readonly agedTauM2?: number
 }
 
 export interface PointLeak {
@@ -91,8 +93,8 @@ export function stepAt<Value>(steps: Steps<Value>, atS: number, before: Value): 
   return value
 }
 
-/** Molecules per m2 and s from the wall, as a function of time and the temperature then. */
-export function wallRate(
+// Molecules per m2 and s from the wall, as a function of time and the temperature then.
+function wallRate(
   walls: readonly WallSource[],
   programme: Programme,
   fromS: number,
@@ -111,21 +113,33 @@ export function wallRate(
 }
 
 /**
- * Rate of a wall of which a part stays cooler: each part gives its own, by its own history, weighted by area.
- * `rateOf` makes the rate for one temperature programme.
+ * Rate of a wall of which a part may stay cooler: each part gives its own, by its own history, weighted by area.
+ * Molecules per m2 and s as a function of time and the temperature of the tube.
  */
-export function withUnbaked(
-  area: UnbakedArea | undefined,
+export function wholeWallRate(
+  run: GasRun,
   programme: Programme,
-  rateOf: (programme: Programme) => (atS: number, kelvin: number) => number,
+  fromS: number,
 ): (atS: number, kelvin: number) => number {
-  const tube = rateOf(programme)
+  const walls = run.walls ?? []
+  const tube = wallRate(walls, programme, fromS)
+  const area = run.unbaked
   if (!area) return tube
-  const { share, followShare, roomK } = area
-  const cornersK = programme.cornersK.map((kelvin) => roomK + followShare * (kelvin - roomK))
-  const cooler = rateOf({ cornersS: programme.cornersS, cornersK })
-  return (atS, kelvin) =>
-    (1 - share) * tube(atS, kelvin) + share * cooler(atS, roomK + followShare * (kelvin - roomK))
+  const cooler = (kelvin: number): number => unbakedKelvin(area, kelvin)
+  const ownAge = area.agedTauM2
+  const own = wallRate(
+    walls.map((wall) =>
+      wall.kind === 'sheet' && ownAge !== undefined ? { ...wall, agedTauM2: ownAge } : wall,
+    ),
+    { cornersS: programme.cornersS, cornersK: programme.cornersK.map(cooler) },
+    fromS,
+  )
+  return (atS, kelvin) => (1 - area.share) * tube(atS, kelvin) + area.share * own(atS, cooler(kelvin))
+}
+
+/** Temperature of the unbaked area beside a tube at `tubeK`, K. */
+export function unbakedKelvin(area: UnbakedArea, tubeK: number): number {
+  return area.roomK + area.followShare * (tubeK - area.roomK)
 }
 
 /** Throws on a number of the run that no gas can have, naming it. `nodes` is the size of the mesh. */
@@ -150,6 +164,7 @@ export function requireGasRun(run: GasRun, nodes: number): void {
     requireWithin('unbaked.share', unbaked.share, 0, 1)
     requireWithin('unbaked.followShare', unbaked.followShare, 0, 1)
     requireWithin('unbaked.roomK', unbaked.roomK, 200, 400)
+    if (unbaked.agedTauM2 !== undefined) requirePositive('unbaked.agedTauM2', unbaked.agedTauM2)
   }
   if (getter) {
     requireWithin('getter.sticking', getter.sticking, 0, 1)

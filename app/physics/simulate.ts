@@ -4,10 +4,11 @@
  * answer the everyday questions.
  */
 import { requireWithin } from './argument-checks.ts'
-import type { GasRun, PointPump, WallSource } from './gas-run.ts'
+import type { GasRun, PointPump, UnbakedArea, WallSource } from './gas-run.ts'
 import { nitrogenEquivalent } from './gauges.ts'
-import { pumpSpeed, type SegmentModel } from './predict.ts'
+import { MILL_AGE_M2 } from './hydrogen.ts'
 import { type TemperatureCorners, temperatureAt, temperatureProgramme } from './programme.ts'
+import { pumpSpeed, type SegmentModel } from './segment-gas.ts'
 import { runTransport } from './transport.ts'
 import { buildMesh, meshNode, type TubeMesh } from './tube.ts'
 import { DEFAULT_WATER, WATER_FLOOR_PA } from './water.ts'
@@ -105,6 +106,7 @@ function waterRun(model: SegmentModel, mesh: TubeMesh, roomK: number): GasRun {
     gas: 'H2O',
     startPa: baked ? Math.max(floorPa, WATER_FLOOR_PA) : WATER_START_PA,
     isotherm: { ...DEFAULT_WATER, ...(baked ? {} : { capacityPerM2: water.capacityPerM2 }) },
+    ...unbakedOf(model),
     walls: [{ kind: 'power-law', law: { oneHourPaMS, exponent: 0 }, leadS: 1, gasK: roomK }],
     pumps,
   }
@@ -116,7 +118,13 @@ function hydrogenRun(model: SegmentModel, mesh: TubeMesh, roomK: number): GasRun
     hydrogen.kind === 'diffusion'
       ? { kind: 'sheet', sheet: { c0PerM3: hydrogen.c0PerM3, wallM }, agedTauM2: hydrogen.agedTauM2 }
       : hydrogen
-  return { gas: 'H2', startPa: GAS_START_PA, walls: [wall], pumps: pumpsFor(model, mesh, 'H2', roomK) }
+  return {
+    gas: 'H2',
+    startPa: GAS_START_PA,
+    walls: [wall],
+    ...unbakedOf(model),
+    pumps: pumpsFor(model, mesh, 'H2', roomK),
+  }
 }
 
 function airRun(model: SegmentModel, mesh: TubeMesh, roomK: number): GasRun {
@@ -134,4 +142,9 @@ function pumpsFor(model: SegmentModel, mesh: TubeMesh, gas: 'H2O' | 'H2' | 'N2',
     mouthK: roomK,
     curve: [{ fromS: 0, value: { kind: 'constant', speedM3S: pumpSpeed(pump, gas) } }],
   }))
+}
+
+function unbakedOf(model: SegmentModel): { unbaked?: UnbakedArea } {
+  const area = model.unbakedArea
+  return area ? { unbaked: { agedTauM2: MILL_AGE_M2, ...area, roomK: model.temperatureK } } : {}
 }

@@ -24,7 +24,7 @@ const NEWTON_SHARE = 1e-5
 /** Share of its capacity that a getter may take up in one step, since its speed is that of the step's start. */
 const FILL_SHARE = 0.02
 /** Steps grow at most so many times at once. */
-const GROWTH = 20
+const GROWTH = 8
 /** A guess of the next pressures goes at most this far in ln p. */
 const GUESS_LIMIT = 2
 

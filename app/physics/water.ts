@@ -152,3 +152,37 @@ export function bakedWater(
   const frontJMol = emptyingFront(hotPa, hotK, isotherm)
   return { hotPa, coldPa, frontJMol, emptied: frontJMol >= isotherm.highJMol }
 }
+
+/**
+ * Water pressure in Pa after cooling from `hotK` to `coldK` with what was on the wall at `hotPa`. A share of the wall
+ * may have been cooler (`atK`) and so have kept more: cold, it shares that with the rest. Gas phase and pumping while
+ * it cools are left out, both small beside the wall.
+ */
+export function cooledWater(
+  hotPa: number,
+  hotK: number,
+  coldK: number,
+  isotherm: WaterIsotherm = DEFAULT_WATER,
+  cooler: { share: number; atK: number } = { share: 0, atK: coldK },
+): number {
+  requirePositive('hotPa', hotPa)
+  requireWithin('hotK', hotK, coldK, 2000)
+  requireWithin('cooler.share', cooler.share, 0, 1)
+  requireWithin('cooler.atK', cooler.atK, 100, hotK)
+  const coldScale = waterScalePressure(coldK, isotherm)
+  const alone = coldScale * Math.min(1, hotPa / waterScalePressure(hotK, isotherm)) ** (hotK / coldK)
+  if (cooler.share === 0) return alone
+  const held =
+    (1 - cooler.share) * waterCoverage(hotPa, hotK, isotherm).theta +
+    cooler.share * waterCoverage(hotPa, cooler.atK, isotherm).theta
+  // Coverage rises with ln p, so the pressure at which the cold wall holds as much is found by halving.
+  let low = Math.log(Number.MIN_VALUE)
+  let high = Math.log(coldScale)
+  while (high - low > 1e-12 * Math.abs(high)) {
+    const middle = (low + high) / 2
+    if (middle === low || middle === high) break
+    if (waterCoverage(Math.exp(middle), coldK, isotherm).theta < held) low = middle
+    else high = middle
+  }
+  return Math.exp(high)
+}
