@@ -68,6 +68,7 @@ export function PeoplePage({ people, waiting }: { people: readonly PersonWithRol
         title="People"
         actions={
           <>
+            <ButtonLink to="/people/tokens">Tokens</ButtonLink>
             <ButtonLink to="/people/record">Record of who did what</ButtonLink>
             <ButtonLink kind="primary" to="/people/new">
               Make an account

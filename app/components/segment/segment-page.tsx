@@ -20,7 +20,7 @@ export interface SegmentPageProps extends SegmentPageData {
   now: Date
   zone: string
   asked: AskedPressure
-  may: { setState: boolean; takeIn: boolean; writeEntry: boolean }
+  may: { setState: boolean; takeIn: boolean; typeReading: boolean; writeEntry: boolean }
 }
 
 export function SegmentPage(props: SegmentPageProps) {
@@ -49,6 +49,7 @@ export function SegmentPage(props: SegmentPageProps) {
         actions={
           <>
             {may.writeEntry && <ButtonLink to={`/logbook/new?segment=${tag}`}>Write entry</ButtonLink>}
+            {may.typeReading && <ButtonLink to={`/segments/${tag}/typed-reading`}>Type a reading</ButtonLink>}
             {may.setState && <ButtonLink to={`/segments/${tag}/state`}>Set state</ButtonLink>}
             {may.takeIn && (
               <ButtonLink to="/intake" kind="primary">

@@ -28,6 +28,7 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
     may: {
       setState: rolesHave(actor.roles, 'segment-state:set'),
       takeIn: rolesHave(actor.roles, 'intake:take-in'),
+      typeReading: rolesHave(actor.roles, 'reading:type'),
       writeEntry: rolesHave(actor.roles, 'entry:write'),
     },
   }
