@@ -25,7 +25,7 @@ CREATE TABLE `reading_aside` (
 	`quality` tinyint unsigned NOT NULL,
 	`marks` tinyint unsigned NOT NULL,
 	`line_no` int unsigned NOT NULL,
-	CONSTRAINT `reading_aside_pk` PRIMARY KEY(`import_id`,`channel_id`,`at`,`seq`)
+	CONSTRAINT `reading_aside_pk` PRIMARY KEY(`import_id`,`channel_id`,`at`,`line_no`)
 );
 --> statement-breakpoint
 CREATE TABLE `rollup` (

@@ -96,7 +96,8 @@ export async function loadIncoming(
   return loaded
 }
 
-async function affected(tx: DbOrTx, statement: ReturnType<typeof sql>): Promise<number> {
+/** Runs a statement and says how many rows it changed. */
+export async function affected(tx: DbOrTx, statement: ReturnType<typeof sql>): Promise<number> {
   const [result] = await tx.execute(statement)
   return (result as unknown as mysql.ResultSetHeader).affectedRows
 }
@@ -112,11 +113,20 @@ export interface MergeCounts {
 
 /** Moves `incoming` into `reading` under the number of the import. */
 export async function mergeIncoming(tx: DbOrTx, importId: number): Promise<MergeCounts> {
+  // What is held goes aside and not away: should the import that holds it be withdrawn, it takes its place.
   const held = await affected(
     tx,
-    sql`DELETE incoming FROM incoming JOIN reading ON reading.channel_id = incoming.channel_id AND reading.at = incoming.at
+    sql`INSERT INTO reading_aside (import_id, channel_id, at, seq, value, bound, quality, marks, line_no)
+      SELECT DISTINCT ${importId}, incoming.channel_id, incoming.at, incoming.seq, incoming.value, incoming.bound,
+        incoming.quality, incoming.marks, incoming.line_no
+      FROM incoming JOIN reading ON reading.channel_id = incoming.channel_id AND reading.at = incoming.at
       WHERE reading.value <=> incoming.value AND reading.bound <=> incoming.bound AND reading.quality = incoming.quality`,
   )
+  if (held > 0) {
+    await tx.execute(sql`DELETE incoming FROM incoming JOIN reading_aside AS aside
+      ON aside.import_id = ${importId} AND aside.channel_id = incoming.channel_id AND aside.at = incoming.at
+        AND aside.line_no = incoming.line_no`)
+  }
   await tx.execute(sql`CREATE TEMPORARY TABLE clash (PRIMARY KEY (channel_id, at)) ENGINE=InnoDB
     SELECT reading.channel_id, reading.at, MAX(reading.seq) AS top FROM incoming
     JOIN reading ON reading.channel_id = incoming.channel_id AND reading.at = incoming.at
@@ -143,6 +153,8 @@ export async function mergeIncoming(tx: DbOrTx, importId: number): Promise<Merge
   )
   await tx.execute(sql`INSERT INTO import_range (import_id, channel_id, first_at, last_at, reading_count)
     SELECT ${importId}, channel_id, MIN(at), MAX(at), COUNT(*) FROM incoming GROUP BY channel_id`)
+  await tx.execute(sql`INSERT INTO rollup_due (channel_id, from_at, to_at)
+    SELECT channel_id, first_at, last_at FROM import_range WHERE import_id = ${importId}`)
   await tx.execute(sql`DROP TEMPORARY TABLE IF EXISTS incoming, clash`)
   return { stored, held, conflicting }
 }

@@ -112,7 +112,7 @@ export const readingAside = mysqlTable(
     lineNo: int('line_no', { unsigned: true }).notNull(),
   },
   (t) => [
-    primaryKey({ name: 'reading_aside_pk', columns: [t.importId, t.channelId, t.at, t.seq] }),
+    primaryKey({ name: 'reading_aside_pk', columns: [t.importId, t.channelId, t.at, t.lineNo] }),
     index('reading_aside_instant_ix').on(t.channelId, t.at),
   ],
 )
