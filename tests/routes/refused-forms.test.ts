@@ -118,14 +118,14 @@ describe('a segment', () => {
   test('its state: choice, confirmation, since and reason', async () => {
     const { status, html } = await post('technician', '/segments/SG-X1/state', {
       from: 'in-service',
-      state: 'venting',
+      state: 'heating',
       unusual: 'on',
       since: 'this morning',
       reason: TYPED,
     })
     expect(status).toBe(400)
-    expect(tagOf(html, 'state', 'venting')).toContain('checked=""')
-    expect(tagOf(html, 'state', 'warm-up')).not.toContain('checked')
+    expect(tagOf(html, 'state', 'heating')).toContain('checked=""')
+    expect(tagOf(html, 'state', 'cooling')).not.toContain('checked')
     expect(tagOf(html, 'unusual')).toContain('checked=""')
     expect(tagOf(html, 'since')).toContain('value="this morning"')
     expect(html).toContain(`>${TYPED}</textarea>`)
