@@ -173,7 +173,7 @@ export function cooledWater(
   const alone = coldScale * Math.min(1, hotPa / waterScalePressure(hotK, isotherm)) ** (hotK / coldK)
   if (cooler.share === 0) return alone
   const held =
-    (1 - cooler.share) * waterCoverage(hotPa, hotK, isotherm).theta +
+    (1 - cooler.share) * waterCoverage(alone, coldK, isotherm).theta +
     cooler.share * waterCoverage(hotPa, cooler.atK, isotherm).theta
   // Coverage rises with ln p, so the pressure at which the cold wall holds as much is found by halving.
   let low = Math.log(Number.MIN_VALUE)

