@@ -17,7 +17,7 @@ import {
 } from '../schema/index.ts'
 
 /** Code of the source under which typed readings stand. */
-export const HAND = 'HAND'
+const HAND = 'HAND'
 
 export interface TypedSegment {
   id: number
