@@ -4,9 +4,10 @@ import { join } from 'node:path'
 import { pathToFileURL } from 'node:url'
 import type { ServerBuild } from 'react-router'
 import { endWithin, reportReady, untilStopped } from '../cli/until-stopped.ts'
-import { closeDb } from '../db/client.server.ts'
+import { closeDb, getDb } from '../db/client.server.ts'
 import { env } from '../env.server.ts'
 import { log } from '../log.server.ts'
+import { keepClockGoing, resumeClockWhenAble } from '../services/clock-keeping.server.ts'
 import { listDemoSignIns } from '../services/demo-sign-ins.server.ts'
 import { close, createApp, listen } from './http.ts'
 
@@ -16,6 +17,9 @@ const END_WITHIN_MS = 4_000
 
 async function main(): Promise<void> {
   const told = untilStopped()
+  const ending = new AbortController()
+  // Not waited for: without a database the server still answers, with a plain error page.
+  const clock = tendClock(ending.signal)
   const { HOST, PORT, TRUST_PROXY } = env()
   const folder = join(process.cwd(), 'build')
   const build = (await import(pathToFileURL(join(folder, 'server', 'index.js')).href)) as ServerBuild
@@ -28,8 +32,15 @@ async function main(): Promise<void> {
   const reason = await told
   log.debug('Web server ends', { reason })
   endWithin(END_WITHIN_MS)
+  ending.abort()
   await close(server, GRACE_MS)
+  await clock
   await closeDb()
+}
+
+/** The worker keeps the clock as well; with either of them running it is never set back. */
+async function tendClock(signal: AbortSignal): Promise<void> {
+  if (await resumeClockWhenAble(getDb(), signal)) await keepClockGoing(getDb(), signal)
 }
 
 /** One sentence for what keeps the server from starting. */

@@ -3,7 +3,7 @@
  *
  * On a real site it is the machine's clock. In the demo it starts at a fixed instant, runs at the pace of real time only
  * while the product runs, and can be moved forward. The row holds a pair of instants (product, machine) that belong
- * together; the worker notes the product's time every other second, so that a stop or a crash loses no more than that.
+ * together; web server and worker note the product's time every other second, so that a stop or a crash loses no more than that.
  */
 import { sql } from 'drizzle-orm'
 import type { Db, DbOrTx } from '../db/client.server.ts'
@@ -86,12 +86,12 @@ export async function ensureClock(db: Db, options: { demo: boolean; startAt: Dat
   cache.delete(db)
 }
 
-/** The worker notes the time every other second; when the last note is older than this, the product was not running. */
+/** The time is noted every other second; when the last note is older than this, the product was not running. */
 const STOPPED_AFTER_MS = 10_000
 
 /**
- * Called when the product or its worker starts: a demo clock goes on from where it was last seen, if the product stood
- * still since then. A worker that comes back at once, beside a web server that went on, changes nothing.
+ * Called when one of the product's processes starts: a demo clock goes on from where it was last seen, if the product stood
+ * still since then. One that comes back beside another that went on changes nothing.
  *
  * @returns whether the clock was set back to where it was last seen
  */
@@ -109,7 +109,7 @@ export async function resumeClock(db: Db): Promise<boolean> {
   return resumed
 }
 
-/** Notes the product's time; the worker calls this every other second while the product runs. Never goes back. */
+/** Notes the product's time; called every other second while the product runs. Never goes back. */
 export async function keepClock(db: Db): Promise<void> {
   const row = await loadRow(db)
   const now = timeBy(row, machineNow())

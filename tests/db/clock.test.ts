@@ -1,4 +1,5 @@
-import { expect, test } from 'vitest'
+import { setTimeout as sleep } from 'node:timers/promises'
+import { afterEach, expect, test, vi } from 'vitest'
 import { productClock, record } from '#app/db/schema/index.ts'
 import {
   advanceClock,
@@ -8,6 +9,7 @@ import {
   readClock,
   resumeClock,
 } from '#app/services/clock.server.ts'
+import { keepClockGoing } from '#app/services/clock-keeping.server.ts'
 import { after, MORNING } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
 import { createClock, createUser } from '#tests/support/factories.ts'
@@ -15,6 +17,10 @@ import { createClock, createUser } from '#tests/support/factories.ts'
 const db = freshDatabase()
 // Every handle caches the clock for a second: a handle of its own reads what stands in the table now.
 const other = secondConnection()
+
+afterEach(() => {
+  vi.useRealTimers()
+})
 
 /** Slack for the time that passes while a test runs on a busy machine. */
 const SLACK_MS = 20_000
@@ -77,6 +83,24 @@ test('a worker that comes back while the product runs does not set the clock bac
   const before = await row()
   expect(await resumeClock(db)).toBe(false)
   expect(await row()).toEqual(before)
+})
+
+test('a worker gone for a minute does not set the clock back when it returns: the web server noted the time', async () => {
+  await createClock(db, { baseMachineAt: new Date() })
+  const web = new AbortController()
+  const kept = keepClockGoing(db, web.signal)
+  try {
+    // A minute passes for the product, and the web server comes round to its next note.
+    vi.useFakeTimers({ toFake: ['Date'], now: Date.now() + 60_000 })
+    while ((await row()).seenAt < after(MORNING, 60)) await sleep(100)
+    const before = await row()
+    expect(await resumeClock(other)).toBe(false)
+    expect((await row()).baseAt).toEqual(before.baseAt)
+    expectNear(await productNow(other), after(MORNING, 60))
+  } finally {
+    web.abort()
+    await kept
+  }
 })
 
 test("a real site's clock has nothing to resume", async () => {
