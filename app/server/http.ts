@@ -1,6 +1,6 @@
 /** The web server around the router: proxies, compression, static files, request ids, and bodies that stop half-way. */
 import { randomUUID } from 'node:crypto'
-import { createServer, type Server } from 'node:http'
+import { createServer, type Server, type ServerResponse } from 'node:http'
 import { join } from 'node:path'
 import { createRequestHandler } from '@react-router/express'
 import compression from 'compression'
@@ -33,6 +33,7 @@ export function createApp({ build, trustProxy, clientFolder }: AppOptions): Expr
     express.static(join(clientFolder, 'assets'), { ...STATIC, immutable: true, maxAge: '1y' }),
   )
   app.use('/assets', (_request, response) => {
+    asNamed(response)
     response.status(404).type('text').send('There is no such file.\n')
   })
   app.use(express.static(clientFolder, { ...STATIC, maxAge: '1h' }))
@@ -41,7 +42,12 @@ export function createApp({ build, trustProxy, clientFolder }: AppOptions): Expr
   return app
 }
 
-const STATIC = { index: false, redirect: false }
+/** What the router answers has this header from the router's own middleware; set here too, it would be sent twice. */
+function asNamed(response: ServerResponse): void {
+  response.setHeader('X-Content-Type-Options', 'nosniff')
+}
+
+const STATIC = { index: false, redirect: false, setHeaders: asNamed }
 
 export interface ListenOptions {
   host: string
@@ -90,7 +96,6 @@ const identify: RequestHandler = (request, response, next) => {
   const started = performance.now()
   response.locals.requestId = id
   response.setHeader('X-Request-Id', id)
-  response.setHeader('X-Content-Type-Options', 'nosniff')
   response.on('close', () => {
     const facts = {
       id,
@@ -148,6 +153,7 @@ const answerFault: ErrorRequestHandler = (error: unknown, request, response, _ne
     status >= 500
       ? `Something went wrong on our side. Tell your administrator this number: ${String(id)}.`
       : 'The host name or address of this request cannot be read. Type it again without stray characters.'
+  asNamed(response)
   response.status(status).type('text').send(`${sentence}\n`)
 }
 

@@ -100,6 +100,7 @@ describe('files', () => {
     const response = await supertest(app()).get('/assets/gone-1234.js')
     expect(response.status).toBe(404)
     expect(response.type).toBe('text/plain')
+    expect(response.headers['x-content-type-options']).toBe('nosniff')
   })
 
   test('no path leads out of the folder', async () => {
@@ -118,6 +119,12 @@ describe('answers', () => {
     expect(ids[0]).toMatch(/^[0-9a-f-]{36}$/)
     expect(ids[1]).not.toBe(ids[0])
     expect((await agent.get('/upload')).headers['x-powered-by']).toBeUndefined()
+  })
+
+  test('a header that the router sets is sent once', async () => {
+    const port = await started()
+    const answer = await raw(port, 'GET /upload HTTP/1.1\r\nHost: a\r\nConnection: close\r\n\r\n')
+    expect(answer.match(/^x-content-type-options:.*$/gim)).toEqual(['x-content-type-options: nosniff'])
   })
 
   test('a host that cannot be read is 400', async () => {
@@ -260,7 +267,8 @@ function smallBuild(): ServerBuild {
     },
   }
   const upload = {
-    loader: () => new Response('ready'),
+    // As the product's own middleware answers.
+    loader: () => new Response('ready', { headers: { 'X-Content-Type-Options': 'nosniff' } }),
     async action({ request }: { request: Request }) {
       if (new URL(request.url).search === '?refuse') return new Response('too large', { status: 413 })
       try {
