@@ -104,13 +104,13 @@ const PEOPLE = [
     name: 'Tove Brindlemark',
     email: 'tove@qfl.example',
     note: 'Contractor for insulation',
-    endsAt: '2026-11-30 00:00',
+    endsAt: '2026-12-01 00:00',
     password: 'moss and mineral wool',
     grants: [
       {
         role: 'contributor',
         from: '2026-09-01 08:00',
-        until: '2026-11-30 00:00',
+        until: '2026-12-01 00:00',
         reason: 'Insulation of the 0.60 m tube, by contract until the end of November',
       },
     ],

@@ -120,7 +120,11 @@ describe('the demo', () => {
       .from(roleGrant)
       .where(eq(roleGrant.personId, tove?.id ?? 0))
     expect(rolesAt(grants, MORNING)).toEqual(['contributor'])
-    expect(rolesAt(grants, new Date('2026-11-30T00:00:00Z'))).toEqual([])
+    // 30 November counts to its midnight on site, an hour ahead of UTC in winter.
+    const end = new Date('2026-11-30T23:00:00Z')
+    expect(tove?.endsAt).toEqual(end)
+    expect(rolesAt(grants, new Date(end.getTime() - 1))).toEqual(['contributor'])
+    expect(rolesAt(grants, end)).toEqual([])
     const [wendel] = await db.select().from(person).where(eq(person.name, 'Wendel Quarrie'))
     expect(wendel?.passwordHash).toBeNull()
   })
