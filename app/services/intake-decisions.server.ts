@@ -17,6 +17,7 @@ import {
   mergeIncoming,
   onOneConnection,
 } from '../db/queries/imports-merge.server.ts'
+import { importStretches } from '../db/queries/imports-withdraw.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
@@ -27,6 +28,7 @@ import { heldAlready } from './intake.server.ts'
 import { readingRules, siteMinute, storedReport } from './intake-reading.server.ts'
 import { incomingRows, type ReadAgain } from './intake-rows.server.ts'
 import { writeRecord } from './record.server.ts'
+import { markOutOfDate } from './revisions.server.ts'
 import { getSite } from './site.server.ts'
 
 export interface Accepted {
@@ -83,6 +85,12 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
         if (warnings > 0)
           throw new Error(`Import ${importId}: the database had ${warnings} warnings while loading`)
         const counts = await mergeIncoming(inside, importId)
+        // Late data: what was computed for these stretches did not know of it.
+        const marked = await markOutOfDate(inside, {
+          stretches: await importStretches(inside, importId),
+          now,
+          reason: `Import ${importId} (${found.fileName}) brought readings for a time already computed.`,
+        })
         await updateImport(inside, importId, {
           state: 'accepted',
           acceptedSha256: found.sha256,
@@ -101,7 +109,13 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
           subjectKind: 'import',
           subjectId: String(importId),
           before: { state: 'read' },
-          after: { state: 'accepted', fileName: found.fileName, source: found.sourceCode, ...counts },
+          after: {
+            state: 'accepted',
+            fileName: found.fileName,
+            source: found.sourceCode,
+            ...counts,
+            outOfDate: marked.map(({ kind, subjectId }) => `${kind} ${subjectId}`),
+          },
         })
         return { importId, ...counts }
       }),
