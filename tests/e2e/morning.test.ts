@@ -45,6 +45,7 @@ test('a technician takes in the last file, and the same bytes again add nothing'
   await page.locator('input[type="file"]').setInputFiles(LAST_WEST_FILE)
   await page.getByRole('button', { name: 'Send and read' }).click()
   await page.waitForURL(/\/intake\/\d+/)
+  await page.getByRole('heading', { name: 'What was found' }).waitFor()
   const readOut = await page.locator('main').innerText()
   expect(readOut).toContain('NL-W')
   expect(readOut).toContain('mbar')
@@ -138,8 +139,8 @@ test('a wrong password does not say which part was wrong', async () => {
   for (const email of ['pim@qfl.example', 'nobody@qfl.example']) {
     await view.goto('/sign-in')
     await page.locator('input[type="email"]').fill(email)
-    await page.locator('input[name="password"]').fill('wrong')
-    await page.locator('form:has(input[name="password"]) button[type="submit"]').first().click()
+    await page.locator('input[type="password"]').fill('wrong')
+    await page.getByRole('button', { name: 'Sign in', exact: true }).click()
     answers.push(await page.getByRole('alert').first().innerText())
   }
   expect(answers[0]).toBe(answers[1])
