@@ -5,7 +5,7 @@ import type { Gas } from './gases.ts'
 import { lowHydrogenRate, type Sheet, slabAtomFlux } from './hydrogen.ts'
 import { type PowerLaw, powerLawRate } from './outgassing.ts'
 import { hydrogenAge, type Programme } from './programme.ts'
-import type { PumpCurve } from './pumps.ts'
+import { type PumpCurve, requirePumpCurve } from './pumps.ts'
 import type { WaterIsotherm } from './water.ts'
 
 /** What the wall gives off, per geometric area. */
@@ -147,7 +147,8 @@ export function requireGasRun(run: GasRun, nodes: number): void {
   const { isotherm, unbaked, getter, viscosityPaS } = run
   for (const { node } of [...run.pumps, ...(run.leaks ?? [])]) requireWithin('node', node, 0, nodes - 1)
   if (viscosityPaS !== undefined) requirePositive('viscosityPaS', viscosityPaS)
-  for (const { capacityPaM3, mouthK } of run.pumps) {
+  for (const { capacityPaM3, mouthK, curve } of run.pumps) {
+    for (const { value } of curve) if (value) requirePumpCurve(value)
     if (capacityPaM3 !== undefined) requirePositive('capacityPaM3', capacityPaM3)
     if (mouthK !== undefined) requireWithin('mouthK', mouthK, 4, 1300)
   }

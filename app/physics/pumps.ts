@@ -1,6 +1,7 @@
 /** Pumps: speed against pressure and gas, what gets away, and how long the simplest volume takes. */
 import { requirePositive, requireWithin } from './argument-checks.ts'
 import { crossSection } from './conductance.ts'
+import { PhysicsError } from './errors.ts'
 import { type Gas, meanSpeed } from './gases.ts'
 
 /** Seconds to pump a volume from one pressure to another at constant speed towards an ultimate pressure. */
@@ -27,25 +28,126 @@ export function steadyPressure(loadPaM3S: number, speedM3S: number, ultimatePa =
 
 /**
  * How a pump takes gas at the pressure of its mouth. `displacement` pumps (rotary vane, scroll, screw) approach an
- * ultimate pressure; `turbo` loses speed above p_t as its blades leave molecular flow.
+ * ultimate pressure; `roots` is a blower before one of them; `turbo` loses speed above p_t as its blades leave
+ * molecular flow; `ion` is a saturated sputter pump of a nominal speed.
  */
 export type PumpCurve =
   | { readonly kind: 'constant'; readonly speedM3S: number }
   | { readonly kind: 'displacement'; readonly speedM3S: number; readonly ultimatePa: number }
-  | { readonly kind: 'turbo'; readonly speedM3S: number; readonly halfSpeedPa: number }
+  | RootsCurve
+  | {
+      readonly kind: 'turbo'
+      readonly speedM3S: number
+      readonly halfSpeedPa: number
+      /** Backing pressure over the compression for this gas, see `turboUltimate`; 0 unless given. */
+      readonly ultimatePa?: number
+    }
+  | { readonly kind: 'ion'; readonly speedM3S: number }
+
+/**
+ * A Roots blower. Gas slips back, so it compresses at most K0 times (10 to 50) and has S/(1 + S/(K0 S_b)) left at low
+ * pressure; its bypass opens at a difference of about 5 kPa, and then the backing pump decides (both from memory, not
+ * verified).
+ */
+export interface RootsCurve {
+  readonly kind: 'roots'
+  readonly speedM3S: number
+  readonly backingM3S: number
+  readonly compression: number
+  readonly bypassPa: number
+  /** Ultimate pressure of the backing pump, Pa; behind the blower it is K0 times lower. */
+  readonly backingUltimatePa: number
+}
+
+/** Throws on a curve that no pump has, naming the number. */
+export function requirePumpCurve(curve: PumpCurve): void {
+  requireWithin('speedM3S', curve.speedM3S, 0, 1e6)
+  if (curve.kind === 'displacement') requireWithin('ultimatePa', curve.ultimatePa, 0, 1e5)
+  if (curve.kind === 'turbo') {
+    requirePositive('halfSpeedPa', curve.halfSpeedPa)
+    requireWithin('ultimatePa', curve.ultimatePa ?? 0, 0, 1e5)
+  }
+  if (curve.kind !== 'roots') return
+  requirePositive('backingM3S', curve.backingM3S)
+  requireWithin('compression', curve.compression, 1, 1e4)
+  requireWithin('bypassPa', curve.bypassPa, 0, 1e5)
+  requireWithin('backingUltimatePa', curve.backingUltimatePa, 0, 1e5)
+}
 
 /** Throughput S(p) p at the mouth, Pa m3/s at the gas temperature there. Never negative: no gas comes back. */
 export function pumpThroughput(curve: PumpCurve, pressurePa: number): number {
-  if (curve.kind === 'constant') return curve.speedM3S * pressurePa
-  if (curve.kind === 'displacement') return curve.speedM3S * Math.max(0, pressurePa - curve.ultimatePa)
-  return (curve.speedM3S * pressurePa) / (1 + pressurePa / curve.halfSpeedPa)
+  switch (curve.kind) {
+    case 'constant':
+      return curve.speedM3S * pressurePa
+    case 'displacement':
+      return curve.speedM3S * Math.max(0, pressurePa - curve.ultimatePa)
+    case 'roots': {
+      const above = pressurePa - curve.backingUltimatePa / curve.compression
+      return above <= 0 ? 0 : Math.min(blownSpeed(curve) * above, bypassed(curve, pressurePa))
+    }
+    case 'turbo':
+      return (
+        (curve.speedM3S * Math.max(0, pressurePa - (curve.ultimatePa ?? 0))) /
+        (1 + pressurePa / curve.halfSpeedPa)
+      )
+    case 'ion':
+      return curve.speedM3S * saturatedIonPumpShare(pressurePa) * pressurePa
+  }
 }
 
 /** Slope of `pumpThroughput` over the pressure, m3/s. */
 export function pumpThroughputSlope(curve: PumpCurve, pressurePa: number): number {
-  if (curve.kind === 'constant') return curve.speedM3S
-  if (curve.kind === 'displacement') return pressurePa > curve.ultimatePa ? curve.speedM3S : 0
-  return curve.speedM3S / (1 + pressurePa / curve.halfSpeedPa) ** 2
+  switch (curve.kind) {
+    case 'constant':
+      return curve.speedM3S
+    case 'displacement':
+      return pressurePa > curve.ultimatePa ? curve.speedM3S : 0
+    case 'roots': {
+      const above = pressurePa - curve.backingUltimatePa / curve.compression
+      if (above <= 0) return 0
+      const speed = blownSpeed(curve)
+      return speed * above < bypassed(curve, pressurePa) ? speed : curve.backingM3S
+    }
+    case 'turbo': {
+      const ultimatePa = curve.ultimatePa ?? 0
+      if (pressurePa < ultimatePa) return 0
+      const slower = 1 + pressurePa / curve.halfSpeedPa
+      return (curve.speedM3S * (1 + ultimatePa / curve.halfSpeedPa)) / slower ** 2
+    }
+    case 'ion':
+      return curve.speedM3S * (saturatedIonPumpShare(pressurePa) + ionPumpShareSlope(pressurePa))
+  }
+}
+
+function blownSpeed({ speedM3S, backingM3S, compression }: RootsCurve): number {
+  return speedM3S / (1 + speedM3S / (compression * backingM3S))
+}
+
+// With the bypass open the backing pump sees the mouth's pressure and the difference on top.
+function bypassed({ backingM3S, bypassPa }: RootsCurve, pressurePa: number): number {
+  return backingM3S * (pressurePa + bypassPa)
+}
+
+/** Pressure in Pa at which a turbo pump gains no more on a gas: its backing pressure over the compression for it. */
+export function turboUltimate(backingPa: number, compression: number): number {
+  requireWithin('backingPa', backingPa, 0, 1e5)
+  requireWithin('compression', compression, 1, 1e15)
+  return backingPa / compression
+}
+
+/** Speed for a gas over the speed for nitrogen; the middle of what is usual (from memory, not verified). */
+export const GAS_SHARE: Readonly<Record<'turbo' | 'ion', Readonly<Partial<Record<Gas, number>>>>> = {
+  turbo: { H2: 0.85, He: 0.95, H2O: 1, N2: 1, CO: 1, Ar: 0.95 },
+  ion: { H2: 2, He: 0.2, CH4: 0.9, H2O: 1, N2: 1, CO: 1, O2: 0.75, Ar: 0.03, CO2: 1 },
+}
+
+/** Speed for a gas of a pump that has `nitrogenM3S` for nitrogen, m3/s. Throws on a gas without a known share. */
+export function speedFor(kind: 'turbo' | 'ion', gas: Gas, nitrogenM3S: number): number {
+  requireWithin('nitrogenM3S', nitrogenM3S, 0, 1e6)
+  const share = GAS_SHARE[kind][gas]
+  if (share === undefined)
+    throw new PhysicsError(`share of ${gas} for a ${kind} pump`, Number.NaN, 'a gas with a known share')
+  return share * nitrogenM3S
 }
 
 /**
@@ -74,6 +176,18 @@ export function saturatedIonPumpShare(pressurePa: number): number {
     const [low, before] = points[i - 1]!
     if (pressurePa <= high)
       return before + ((share - before) * Math.log(pressurePa / low)) / Math.log(high / low)
+  }
+  return 0
+}
+
+// Slope of the share over ln p, which is zero outside the known points.
+function ionPumpShareSlope(pressurePa: number): number {
+  const points = SATURATED_ION_PUMP
+  if (pressurePa <= points[0]![0]) return 0
+  for (let i = 1; i < points.length; i++) {
+    const [high, share] = points[i]!
+    const [low, before] = points[i - 1]!
+    if (pressurePa <= high) return (share - before) / Math.log(high / low)
   }
   return 0
 }
