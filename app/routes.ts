@@ -13,6 +13,7 @@ export default [
     route('segments/:tag/typed-reading', 'routes/segments/typed-reading.tsx'),
     route('intake', 'routes/intake/intake.tsx'),
     route('intake/:importId', 'routes/intake/import.tsx'),
+    route('intake/:importId/withdrawal', 'routes/intake/withdrawal.tsx'),
     route('logbook', 'routes/logbook/logbook.tsx'),
     route('logbook/new', 'routes/logbook/new-entry.tsx'),
     route('logbook/:entryId', 'routes/logbook/entry.tsx'),

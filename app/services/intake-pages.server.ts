@@ -14,9 +14,11 @@ import {
   listSourcesHeardOf,
   readOriginal,
 } from '../db/queries/imports.server.ts'
+import { findOpenWish, listOpenWishes } from '../db/queries/imports-wishes.server.ts'
 import { type Actor, demand, may } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
 import { expectedNight } from '../domain/expected-files.ts'
+import type { WithdrawalState } from '../domain/imports.ts'
 import type { ReadOut } from '../domain/night-files/types.ts'
 import { storedReport } from './intake-reading.server.ts'
 import { getSite } from './site.server.ts'
@@ -40,7 +42,8 @@ export interface NightRow {
 export interface IntakePageData {
   sources: { code: string; name: string }[]
   nights: NightRow[]
-  files: ImportListRow[]
+  /** With how far a withdrawal is that somebody asked for. */
+  files: (ImportListRow & { wish: WithdrawalState | null })[]
   mayTakeIn: boolean
 }
 
@@ -48,12 +51,13 @@ export interface IntakePageData {
 export async function readIntakePage(db: Db, actor: Actor, now: Date): Promise<IntakePageData> {
   demand(actor, 'facility:view')
   const since = new Date(now.getTime() - (NIGHTS + 2) * DAY_MS)
-  const [site, sources, recent, files, heardOf] = await Promise.all([
+  const [site, sources, recent, files, heardOf, wishes] = await Promise.all([
     getSite(db),
     listSources(db),
     listImportsSince(db, since),
     listImports(db, LISTED),
     listSourcesHeardOf(db),
+    listOpenWishes(db),
   ])
   const nights: NightRow[] = []
   for (let back = 0; back < NIGHTS; back += 1) {
@@ -66,7 +70,7 @@ export async function readIntakePage(db: Db, actor: Actor, now: Date): Promise<I
   return {
     sources: sources.map(({ code, name }) => ({ code, name })),
     nights,
-    files,
+    files: files.map((file) => ({ ...file, wish: wishes.get(file.id) ?? null })),
     mayTakeIn: may(actor, 'intake:take-in'),
   }
 }
@@ -126,6 +130,8 @@ export interface ImportPageData {
   /** Readings of this source that are stored already for the stretch of the file. */
   heldBefore: number
   mayTakeIn: boolean
+  /** Whether somebody wants it withdrawn, and how far that is. */
+  wish: 'asked' | 'agreed' | null
 }
 
 /**
@@ -138,13 +144,21 @@ export async function readImportPage(db: Db, actor: Actor, importId: number): Pr
   const { readOut: value, ...file } = await importOf(db, importId)
   const readOut = storedReport(value)
   const waits = file.state === 'read' && file.firstAt !== null && file.lastAt !== null
-  const [targets, heldBefore] = await Promise.all([
+  const [targets, heldBefore, wish] = await Promise.all([
     listChannelTargets(db, file.sourceId, file.lastAt ?? file.uploadedAt),
     waits && file.firstAt !== null && file.lastAt !== null
       ? countHeld(db, file.sourceId, file.firstAt, file.lastAt)
       : Promise.resolve(0),
+    findOpenWish(db, importId),
   ])
-  return { file, readOut, targets, heldBefore, mayTakeIn: may(actor, 'intake:take-in') }
+  return {
+    file,
+    readOut,
+    targets,
+    heldBefore,
+    mayTakeIn: may(actor, 'intake:take-in'),
+    wish: wish?.state === 'asked' || wish?.state === 'agreed' ? wish.state : null,
+  }
 }
 
 async function importOf(db: Db, importId: number): Promise<ImportRow> {

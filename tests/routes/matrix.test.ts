@@ -62,6 +62,11 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: STAFF, status: 404 },
     POST: { who: HANDS, status: 400 },
   },
+  '/intake/:importId/withdrawal': {
+    path: '/intake/999/withdrawal',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: ['technician', 'engineer', 'administrator'], status: 400 },
+  },
   '/intake/:importId/original': { path: '/intake/999/original', GET: { who: STAFF, status: 404 } },
   '/intake/:importId/rejected.csv': { path: '/intake/999/rejected.csv', GET: { who: STAFF, status: 404 } },
   '/logbook': { GET: { who: ROLES, status: 200 } },

@@ -17,12 +17,15 @@ import { LinesPanel } from './lines-panel.tsx'
 import { NotesPanel, RejectedPanel } from './rejected-panel.tsx'
 import { StateTag, TONE_OF_STATE } from './state-tag.tsx'
 
+const WISH_LINKS = { asked: 'Withdrawal asked for', agreed: 'Withdrawal agreed to' } as const
+
 export function ImportPage({
   file,
   readOut,
   targets,
   heldBefore,
   mayTakeIn,
+  wish,
   failure,
 }: ImportPageData & { failure: ActionFailure | undefined }) {
   const waits = file.state === 'read' && mayTakeIn && readOut !== null
@@ -43,6 +46,11 @@ export function ImportPage({
             {file.attachmentId !== null && (
               <ButtonLink to={`/intake/${file.id}/original`} reloadDocument>
                 Original file
+              </ButtonLink>
+            )}
+            {file.state === 'accepted' && (
+              <ButtonLink to={`/intake/${file.id}/withdrawal`}>
+                {wish === null ? 'Withdraw' : WISH_LINKS[wish]}
               </ButtonLink>
             )}
             {waits && <TakeIn readOut={readOut} />}
@@ -82,6 +90,16 @@ export function ImportPage({
 }
 
 function Outcome({ file }: { file: ImportPageData['file'] }) {
+  if (file.state === 'withdrawn') {
+    return (
+      <Notice tone="warn" lead="Withdrawn. ">
+        None of its readings counts any more; they stay with this import.{' '}
+        <Link to={`/intake/${file.id}/withdrawal`} className="link inline-block py-0.5">
+          Who asked, agreed and did it
+        </Link>
+      </Notice>
+    )
+  }
   if (file.decidedAt === null) return null
   const who = file.decidedBy === null ? '' : ` by ${file.decidedBy}`
   return (

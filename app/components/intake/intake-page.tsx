@@ -58,7 +58,16 @@ const FILE_COLUMNS: Column<FileRow>[] = [
     key: 'state',
     head: 'State',
     nowrap: true,
-    cell: ({ state }) => <StateTag word={IMPORT_STATE_LABELS[state]} tone={TONE_OF_STATE[state]} />,
+    cell: ({ id, state, wish }) => (
+      <>
+        <StateTag word={IMPORT_STATE_LABELS[state]} tone={TONE_OF_STATE[state]} />
+        {wish !== null && (
+          <Link to={`/intake/${id}/withdrawal`} className="link ml-2 inline-block py-0.5">
+            {wish === 'asked' ? 'withdrawal asked for' : 'withdrawal agreed to'}
+          </Link>
+        )}
+      </>
+    ),
   },
   {
     key: 'from',
