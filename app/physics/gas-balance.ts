@@ -45,9 +45,11 @@ export interface GasBalance {
   sourceTotal(): number
   /** Molecules per second taken by pumps and getters at the prepared time. */
   pumpTotal(pressure: Float64Array): number
+  /** Getters only: a step of `seconds` begins at these pressures. */
+  begin(pressure: Float64Array, seconds: number): void
   /** Getters only: counts what these pressures give them in `seconds`, and says the largest share of a capacity. */
-  take(pressure: Float64Array, seconds: number, anew: boolean): number
-  /** Getters only: what was taken is in, and they are that much slower. */
+  take(pressure: Float64Array, seconds: number): number
+  /** Getters only: the step is taken, and what was counted is in them. */
   settle(): void
 }
 
@@ -86,6 +88,7 @@ export function gasBalance(
   const source = new Float64Array(n)
   const pumpCurve: (PumpCurve | null)[] = run.pumps.map(() => null)
   const pumpFactor = new Float64Array(run.pumps.length)
+  const pumpMouth = new Float64Array(run.pumps.length)
   const leakRate = new Float64Array(leaks.length)
 
   const getters = gettersOf(run, mesh, rootOfMass)
@@ -122,11 +125,12 @@ export function gasBalance(
       const wallK = zoneK[zoneOf[pump.node]!]!
       const mouth =
         pump.mouthK === undefined ? 1 / (BOLTZMANN * wallK) : 1 / (BOLTZMANN * Math.sqrt(pump.mouthK * wallK))
-      pumpFactor[i] = getters ? mouth * Math.max(0, 1 - getters.pumpFilled[i]!) : mouth
+      pumpMouth[i] = mouth
+      pumpFactor[i] = getters ? mouth * getters.pumpShare[i]! : mouth
     }
     if (!getters || !film) return
     for (let i = 0; i < n; i++) {
-      filmSpeed[i] = film[i]! * zoneRoot[zoneOf[i]!]! * Math.max(0, 1 - getters.filmFilled[i]!)
+      filmSpeed[i] = film[i]! * zoneRoot[zoneOf[i]!]! * getters.filmShare[i]!
     }
   }
 
@@ -237,9 +241,23 @@ export function gasBalance(
       return sum
     },
 
-    take(pressure, seconds, anew) {
+    begin(pressure, seconds) {
+      if (!getters) return
+      for (let i = 0; i < run.pumps.length; i++) {
+        const curve = pumpCurve[i]
+        const taken = curve ? pumpMouth[i]! * pumpThroughput(curve, pressure[run.pumps[i]!.node]!) : 0
+        getters.beginPump(i, taken, seconds)
+      }
+      if (film) {
+        for (let i = 0; i < n; i++) {
+          getters.beginFilm(i, film[i]! * zoneRoot[zoneOf[i]!]! * pressure[i]!, seconds)
+        }
+      }
+      changed = true
+    },
+
+    take(pressure, seconds) {
       if (!getters) return 0
-      if (anew) getters.restart()
       let largest = 0
       for (let i = 0; i < run.pumps.length; i++) {
         const curve = pumpCurve[i]
@@ -255,9 +273,7 @@ export function gasBalance(
     },
 
     settle() {
-      if (!getters) return
-      getters.settle()
-      changed = true
+      getters?.settle()
     },
   }
 }

@@ -3,18 +3,24 @@ import { BOLTZMANN, T20_K } from './constants.ts'
 import type { GasRun } from './gas-run.ts'
 import type { TubeMesh } from './tube.ts'
 
+/**
+ * Places that fill up. In a step each works at its mean share of the fresh speed, r (1 - e^(-k h))/(k h) with r the
+ * room left and k the rate at which it would fill at the present pressure: exact while the pressure stands, and no step
+ * can overfill a place by more than the pressure rises in it.
+ */
 export interface Getters {
-  /** Molecules per second and pascal that the film takes, times sqrt(T), when fresh; by node. Null without a film. */
+  /** Molecules per second and pascal that the fresh film takes, times sqrt(T); by node. Null without a film. */
   readonly film: Float64Array | null
-  /** Share of its capacity that is used up: of the film by node, of the pumps by their order. */
-  readonly filmFilled: Float64Array
-  readonly pumpFilled: Float64Array
-  /** Forgets what was counted since the last `settle`. */
-  restart(): void
-  /** Counts molecules given to the film of a node or to a pump; answers the share of the capacity counted so far. */
+  /** Share of the fresh speed that holds in this step: of the film by node, of the pumps by their order. */
+  readonly filmShare: Float64Array
+  readonly pumpShare: Float64Array
+  /** Sets the share of a place for a step of `seconds` from the molecules per second that it would take fresh. */
+  beginFilm(node: number, freshRate: number, seconds: number): void
+  beginPump(pump: number, freshRate: number, seconds: number): void
+  /** Counts molecules given in the running step; answers the share of the capacity they take. */
   countFilm(node: number, molecules: number): number
   countPump(pump: number, molecules: number): number
-  /** What was counted is in the getters now. */
+  /** The step is taken: what was counted is in the getters now. */
   settle(): void
 }
 
@@ -26,31 +32,42 @@ export function gettersOf(run: GasRun, mesh: TubeMesh, rootOfMass: number): Gett
   const coated = mesh.wallM2.map((area, i) =>
     getter ? area * (typeof share === 'number' ? share : share[i]!) : 0,
   )
-  const filmFilled = new Float64Array(mesh.count)
-  const filmPending = new Float64Array(mesh.count)
-  const pumpFilled = new Float64Array(pumps.length)
-  const pumpPending = new Float64Array(pumps.length)
-  const pumpRoom = pumps.map((pump) => (pump.capacityPaM3 ?? Infinity) / (BOLTZMANN * T20_K))
+  const film = fillers(Array.from(coated, (area) => area * (getter?.capacityPerM2 ?? 0)))
+  const pump = fillers(pumps.map(({ capacityPaM3 = Infinity }) => capacityPaM3 / (BOLTZMANN * T20_K)))
   return {
     film: getter ? coated.map((area) => (getter.sticking * area) / rootOfMass) : null,
-    filmFilled,
-    pumpFilled,
-    restart() {
-      filmPending.fill(0)
-      pumpPending.fill(0)
-    },
-    countFilm(node, molecules) {
-      if (!getter || coated[node] === 0) return 0
-      filmPending[node]! += molecules / (getter.capacityPerM2 * coated[node]!)
-      return filmPending[node]!
-    },
-    countPump(pump, molecules) {
-      pumpPending[pump]! += molecules / pumpRoom[pump]!
-      return pumpPending[pump]!
-    },
+    filmShare: film.share,
+    pumpShare: pump.share,
+    beginFilm: film.begin,
+    beginPump: pump.begin,
+    countFilm: film.count,
+    countPump: pump.count,
     settle() {
-      for (let i = 0; i < filmFilled.length; i++) filmFilled[i]! += filmPending[i]!
-      for (let i = 0; i < pumpFilled.length; i++) pumpFilled[i]! += pumpPending[i]!
+      film.settle()
+      pump.settle()
+    },
+  }
+}
+
+function fillers(capacity: readonly number[]) {
+  const filled = new Float64Array(capacity.length)
+  const pending = new Float64Array(capacity.length)
+  const share = new Float64Array(capacity.length).fill(1)
+  return {
+    share,
+    begin(i: number, freshRate: number, seconds: number): void {
+      pending[i] = 0
+      const room = Math.max(0, 1 - filled[i]!)
+      const turns = (freshRate * seconds) / capacity[i]!
+      share[i] = turns > 1e-9 ? (-room * Math.expm1(-turns)) / turns : room
+    },
+    count(i: number, molecules: number): number {
+      if (capacity[i] === 0) return 0
+      pending[i]! += molecules / capacity[i]!
+      return pending[i]!
+    },
+    settle(): void {
+      for (let i = 0; i < filled.length; i++) filled[i]! += pending[i]!
     },
   }
 }

@@ -215,6 +215,7 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
   // One step of length h from t; leaves the new pressures in `second` and gives the error as a share.
   function tryStep(t: number, h: number): number {
     const weight = GAMMA * h
+    balance.begin(now, h)
     balance.prepare(t + weight)
     guess(first, now, weight)
     if (!solveStage(first, before, weight)) return Infinity
@@ -224,13 +225,13 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
     }
     stagePumped = (1 - GAMMA) * h * balance.pumpTotal(first)
     stageReleased = (1 - GAMMA) * h * balance.sourceTotal()
-    balance.take(first, (1 - GAMMA) * h, true)
+    balance.take(first, (1 - GAMMA) * h)
     balance.prepare(t + h)
     guess(second, now, h)
     if (!solveStage(second, target, weight)) return Infinity
     stagePumped += weight * balance.pumpTotal(second)
     stageReleased += weight * balance.sourceTotal()
-    if (balance.take(second, weight, false) > FILL_SHARE) return Infinity
+    if (balance.take(second, weight) > FILL_SHARE) return Infinity
     // Difference to the embedded first-order rule, damped by the factored matrix so that stiff modes do not count.
     for (let i = 0; i < n; i++) change[i] = amount[i]! - before[i]! - gained[i]! / GAMMA
     solveTree(matrix, change)
