@@ -37,31 +37,49 @@ export interface BlockFacts {
   book: ChannelBook
   profile: SourceProfile
   sink: ReadingSink
-  /** Unit of a metadata line, or of an answer. */
+  /** Unit of a metadata line. */
   noteUnit: Unit | null
+  /** Units that a person chose for columns without one. */
+  answeredUnits: readonly Unit[]
+  /** What a doubtful unit of a header stands for; null leaves the column without a unit, and asks. */
+  doubtful: (token: string, column: number, quantity: Quantity | null) => Unit | 'leave-out' | null
+  /** A column whose unit does not measure what its channel measures. True: it is to be left out. */
+  unfit: (name: string, column: number, unit: Unit, quantity: Quantity) => void
   /** Units of a second header row, by column. */
   unitRow: readonly (Unit | null)[] | null
   /** Where an unknown name goes by answer: a registered name, `leave-out`, or null while nobody has said. */
   answerFor: (name: string) => string | null
 }
 
-/** The unit of the columns that name none: a metadata line's, else the profile's unless these files name their own. */
-function defaultUnit(noteUnit: Unit | null, profile: SourceProfile): Unit | null {
-  return noteUnit ?? (profile.unitInFile ? null : unitOf(profile.unit))
+/** Units of the columns that name none, by rank: a metadata line's, an answer's, the profile's. */
+function defaultUnits({ noteUnit, answeredUnits, profile }: BlockFacts): Unit[] {
+  const own = profile.unitInFile ? null : unitOf(profile.unit)
+  return [noteUnit, ...answeredUnits, own].filter((unit) => unit !== null)
 }
 
+/** Unit of a column; `leave-out` where its own unit tells nothing, null where there is none. */
 function columnUnit(
   column: HeaderColumn,
   i: number,
   quantity: Quantity | null,
   facts: BlockFacts,
-): Unit | null {
-  const own =
-    column.unit.kind === 'unit' ? column.unit.unit : (facts.unitRow?.[i] ?? unitOf(column.profileUnit))
-  const unit = own ?? defaultUnit(facts.noteUnit, facts.profile)
-  if (unit === null || quantity === null) return unit
+): Unit | 'leave-out' | null {
+  const { unit } = column
+  let own: Unit | 'leave-out' | null = facts.unitRow?.[i] ?? unitOf(column.profileUnit)
+  if (unit.kind === 'unit') own = unit.unit
+  else if (unit.kind !== 'none') {
+    own = facts.doubtful(unit.token, i + 1, quantity)
+    // What the file says about its unit is not to be replaced by what others of its kind say.
+    if (own === null) return null
+  }
+  if (own === 'leave-out') return own
+  if (own !== null && quantity !== null && !unitFits(quantity, own)) {
+    facts.unfit(column.name, i + 1, own, quantity)
+    return 'leave-out'
+  }
+  if (own !== null) return own
   // A line "unit: mbar" says nothing about a temperature column beside the pressures.
-  return unitFits(quantity, unit) ? unit : null
+  return defaultUnits(facts).find((one) => quantity === null || unitFits(quantity, one)) ?? null
 }
 
 /** Maps the columns of a header to what the rows under it hold. */
@@ -87,7 +105,7 @@ export function makeBlock(
   }
   const valueColumn = columns[block.valueAt]
   if (layout === 'long' && valueColumn !== undefined)
-    block.unit = columnUnit(valueColumn, block.valueAt, null, facts)
+    block.unit = usable(columnUnit(valueColumn, block.valueAt, null, facts))
   columns.forEach((column, i) => {
     const shown: ColumnReadOut = {
       position: i + 1,
@@ -110,6 +128,10 @@ export function makeBlock(
       return
     }
     const unit = columnUnit(column, i, target.quantity, facts)
+    if (unit === 'leave-out') {
+      shown.role = 'left-out'
+      return
+    }
     const quantity = target.quantity ?? column.quantity ?? unit?.quantity ?? 'pressure'
     const channel = facts.sink.channel(target.name, quantity)
     block.wide.push({ at: i, channel, quantity, unit })
@@ -117,6 +139,10 @@ export function makeBlock(
     shown.unit = unit?.token ?? null
   })
   return block
+}
+
+function usable(unit: Unit | 'leave-out' | null): Unit | null {
+  return unit === 'leave-out' ? null : unit
 }
 
 type Target = { name: string; quantity: Quantity | null } | 'leave-out' | null

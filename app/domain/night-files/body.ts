@@ -1,4 +1,4 @@
-import { MARKS } from '../readings.ts'
+import { MARKS, QUANTITIES, type Quantity } from '../readings.ts'
 import type { SourceProfile } from '../schemas/source-profile.ts'
 import { type Block, isReordered, makeBlock } from './block.ts'
 import { channelQuestion } from './cell-faults.ts'
@@ -11,7 +11,7 @@ import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from
 import { MAX_HELD_ROWS } from './limits.ts'
 import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
 import { NumberReader } from './numbers.ts'
-import type { QuestionList } from './questions.ts'
+import { choice, type QuestionList, question } from './questions.ts'
 import { resolveRepeatedHour } from './repeated-hour.ts'
 import { isCutRow, type Row, RowReader } from './row-reader.ts'
 import { RowTimes } from './row-times.ts'
@@ -19,7 +19,8 @@ import type { ReadingSink } from './sink.ts'
 import type { LineTally } from './tally.ts'
 import type { ReadContext, Refusal, Remark, Restart } from './types.ts'
 import { checkUnit, refuseWithoutUnit } from './unit-check.ts'
-import { readUnit, type Unit, unitOf } from './units.ts'
+import { UnitWords, unitSamples } from './unit-words.ts'
+import { readUnit, type Unit, unitOf, unitsOf } from './units.ts'
 import { WordBook } from './words.ts'
 
 export interface BodyTools {
@@ -55,6 +56,8 @@ export class FileBody {
   backSteps = 0
   readonly #tools: BodyTools
   readonly #times: RowTimes | null
+  readonly #numbers: NumberReader
+  readonly #unitWords: UnitWords
   readonly #resets: ResetStretches | null
   #headerColumns: HeaderColumn[] = []
   #headerLine = 0
@@ -72,9 +75,14 @@ export class FileBody {
       thousandsMark: profile.thousandsMark,
       bareExponent: profile.bareExponent,
     })
+    const unitWords = new UnitWords(questions, profile.units, context)
+    this.#numbers = numbers
+    this.#unitWords = unitWords
     const words = new WordBook({ ...profile.words, ...questions.words() })
     this.rows = new RowReader({
-      cells: new CellReader(numbers, words, profile.sentinels),
+      cells: new CellReader(numbers, words, profile.sentinels, (token) => unitWords.meaning(token)),
+      unitWords,
+      numbers,
       sink,
       tally,
       questions,
@@ -167,11 +175,33 @@ export class FileBody {
 
   #note(text: string, line: number): void {
     this.#tools.tally.note(line, text)
-    const unit = unitOf(readNote(text).unit)
+    const unit = this.#noteUnit(readNote(text).unit, line)
     if (unit === null) return
+    const before = this.noteUnit
     this.noteUnit = unit
     this.#noteLine = line
-    if (this.block !== null) this.#makeBlock(null)
+    if (this.block === null) return
+    this.#makeBlock(null)
+    if (!this.#sawRow || before === null || before.factor === unit.factor) return
+    this.remarks.push({
+      kind: 'unit-change',
+      text: `From line ${line} on the values are in ${unit.token}, before it in ${before.token}. Each is read in its own.`,
+      line,
+      channel: null,
+      atMs: this.#lastMs,
+      count: 1,
+    })
+  }
+
+  /** Unit of a line of metadata. One that tells no absolute quantity is asked about. */
+  #noteUnit(token: string | null, line: number): Unit | null {
+    if (token === null) return null
+    const reading = readUnit(token)
+    if (reading.kind === 'unit') return reading.unit
+    if (reading.kind === 'none') return null
+    const said = this.#unitWords.meaning(token)
+    if (said === null) this.#unitWords.ask(token, 'pressure', { line, column: 1 }, [])
+    return said === 'leave-out' ? null : said
   }
 
   #header(fields: string[], line: number): void {
@@ -213,6 +243,10 @@ export class FileBody {
       profile,
       sink,
       noteUnit: this.noteUnit,
+      answeredUnits:
+        profile.unit === null ? [unitOf(questions.answer('unit'))].filter((unit) => unit !== null) : [],
+      doubtful: (token, column, quantity) => this.#doubtfulUnit(token, column, quantity ?? 'pressure'),
+      unfit: (name, column, unit, quantity) => this.#unfitUnit(name, column, unit, quantity),
       unitRow,
       answerFor: (name) => questions.answer(`unknown-channel:${name}`),
     })
@@ -226,6 +260,35 @@ export class FileBody {
     this.#checkUnit(block)
     for (const column of block.wide) if (column.unit !== null) column.unit = this.#settleUnit(column.unit)
     if (block.unit !== null) block.unit = this.#settleUnit(block.unit)
+  }
+
+  #doubtfulUnit(token: string, column: number, quantity: Quantity): Unit | 'leave-out' | null {
+    const said = this.#unitWords.meaning(token)
+    if (said !== null) return said
+    const name = this.#headerColumns[column - 1]?.name ?? ''
+    const samples = unitSamples(this.#tools.dialect.rows, column - 1, () => name, this.#numbers)
+    this.#unitWords.ask(token, quantity, { line: this.#headerLine, column }, samples)
+    return null
+  }
+
+  #unfitUnit(name: string, column: number, unit: Unit, quantity: Quantity): void {
+    const { questions } = this.#tools
+    const id = `unfit-unit:${name}`
+    if (questions.answer(id) === 'leave-out') return
+    questions.ask(id, () =>
+      question({
+        id,
+        kind: 'unit',
+        blocking: false,
+        line: this.#headerLine,
+        column,
+        text: `“${name}” is written in ${unit.token}, and its channel measures ${QUANTITIES[quantity].label.toLowerCase()}. The column is left out: how one follows from the other is not known here.`,
+        found: `the unit “${unit.token}”`,
+        expected: `a unit of ${QUANTITIES[quantity].label.toLowerCase()} such as ${unitsOf(quantity)[0]?.token ?? 'none'}`,
+        mend: 'Let the logger write the converted value, or have an engineer register a channel that measures what is written.',
+        choices: [choice('leave-out', 'leave the column out')],
+      }),
+    )
   }
 
   #checkUnit(block: Block): void {
@@ -248,7 +311,7 @@ export class FileBody {
           ? (row?.line ?? 0)
           : this.#headerLine
     const place = { unit: written, line, column: this.unitFrom === 'note' ? 1 : (at ?? 0) + 1 }
-    const to = checkUnit(place, dialect, block, profile, questions)
+    const to = checkUnit(place, dialect, block, profile, questions, this.#tools.context)
     this.#override = to === null ? null : { from: written, to }
   }
 
@@ -264,7 +327,7 @@ export class FileBody {
       profile.columns.length === 0 &&
       (unknown === undefined || book.names().length > 0)
     )
-      return refuseWithoutUnit(block, dialect)
+      return refuseWithoutUnit(block, dialect, this.#tools)
     if (block.layout === 'wide' && block.wide.length === 0)
       return this.#noKnownChannel(unknown?.name ?? '', this.#headerLine, unknown?.position ?? 1)
     if (block.layout === 'long') {
@@ -282,7 +345,7 @@ export class FileBody {
       if (!known && first !== undefined)
         return this.#noKnownChannel(first.name, first.line, block.channelAt + 1)
     }
-    return refuseWithoutUnit(block, dialect)
+    return refuseWithoutUnit(block, dialect, this.#tools)
   }
 
   #noKnownChannel(name: string, line: number, column: number): Refusal {

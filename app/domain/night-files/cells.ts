@@ -35,7 +35,16 @@ export class CellReader {
   readonly #words: WordBook
   readonly #sentinels: readonly { value: number; code: number }[]
 
-  constructor(numbers: NumberReader, words: WordBook, sentinels: SourceProfile['sentinels']) {
+  readonly #unitWord: (token: string) => Unit | 'leave-out' | null
+
+  /** `unitWord` says what a unit stands for that only this source writes. */
+  constructor(
+    numbers: NumberReader,
+    words: WordBook,
+    sentinels: SourceProfile['sentinels'],
+    unitWord: (token: string) => Unit | 'leave-out' | null = () => null,
+  ) {
+    this.#unitWord = unitWord
     this.#numbers = numbers
     this.#words = words
     this.#sentinels = sentinels.map(({ value, quality }) => ({ value, code: qualityCode(quality) }))
@@ -151,12 +160,14 @@ export class CellReader {
     if (match === null) return null
     const number = this.#numbers.read(match[1] as string)
     if (Number.isNaN(number)) return null
-    const reading = readUnit(match[2] as string)
-    if (reading.kind !== 'unit' || !unitFits(quantity, reading.unit)) {
-      this.badUnit = match[2] as string
+    const token = (match[2] as string).trim()
+    const reading = readUnit(token)
+    const unit = reading.kind === 'unit' ? reading.unit : this.#unitWord(token)
+    if (unit === null || unit === 'leave-out' || !unitFits(quantity, unit)) {
+      this.badUnit = token
       return 'unknown-unit'
     }
-    this.cellUnit = reading.unit
-    return this.#number(number, quantity, reading.unit) === null ? 'read' : null
+    this.cellUnit = unit
+    return this.#number(number, quantity, unit) === null ? 'read' : null
   }
 }

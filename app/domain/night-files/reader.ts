@@ -6,7 +6,7 @@ import { type Dialect, settleDialect } from './dialect.ts'
 import { type SniffedEncoding, StreamDecoder, sniffEncoding } from './encoding.ts'
 import { HEAD_CHARS, HEAD_LINES, MAX_LINE_CHARS } from './limits.ts'
 import { LineCounter, LineSplitter, NulScanner } from './lines.ts'
-import { QuestionList } from './questions.ts'
+import { choice, QuestionList, question } from './questions.ts'
 import { collectRemarks } from './remarks.ts'
 import { ReadingSink } from './sink.ts'
 import { LineTally } from './tally.ts'
@@ -19,6 +19,9 @@ import {
   type ReadOut,
   type Refusal,
 } from './types.ts'
+
+/** Gases that controllers of long tubes are set to (common practice, no source). */
+const CORRECTION_GASES = ['H2', 'H2O', 'Ar', 'He'] as const
 
 /** Bytes looked at before encoding and kind of content are settled. */
 const SNIFF_BYTES = 4096
@@ -221,12 +224,38 @@ class Reader implements NightFileReader {
     this.#refusal ??= this.#body?.refusal ?? null
     if (this.#refusal === null && this.#sink.total === 0 && this.#questions.isWaiting())
       this.#questions.blockAll()
+    this.#askBasis()
     const blocked = this.#questions.isBlocked()
     if (this.#refusal === null && !blocked && this.#sink.total === 0) this.#refusal = this.#noRows()
     const counted = this.#counter?.total() ?? 0
     if (this.#tally.total() !== counted)
       throw new Error(`The reader gave ${this.#tally.total()} lines an outcome, the file has ${counted}`)
     return this.#report(counted, blocked)
+  }
+
+  /** Whether a controller corrected its pressures for a gas is said nowhere in a file, and changes every one of them. */
+  #askBasis(): void {
+    const pressures = this.#sink
+      .summaries()
+      .filter(({ quantity, count }) => quantity === 'pressure' && count > 0)
+    const first = pressures[0]
+    if (first === undefined || this.#profile.basis !== null || this.#questions.answer('basis') !== null)
+      return
+    this.#questions.ask('basis', () =>
+      question({
+        id: 'basis',
+        kind: 'basis',
+        blocking: false,
+        text: 'Are the pressures of this source nitrogen-equivalent, or already corrected for a gas? They are stored as written either way, and never corrected twice.',
+        found: `“${first.firstText.trim()}” from ${first.name}, and nothing in the profile about the gas`,
+        expected: 'nitrogen-equivalent, or the gas that the controller was set to',
+        mend: 'Look at the setting of the gauge controller, or ask whoever set it up.',
+        choices: [
+          choice('nitrogen-equivalent', 'nitrogen-equivalent, as gauges are calibrated'),
+          ...CORRECTION_GASES.map((gas) => choice(`corrected:${gas}`, `corrected for ${gas}`)),
+        ],
+      }),
+    )
   }
 
   #noRows(): Refusal {

@@ -113,6 +113,16 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
         `Left out: ${leftOut.slice(0, 8).join(', ')}${leftOut.length > 8 ? ' …' : ''}.`,
       ),
     )
+  const change = body.rows.unitChange
+  if (change !== null)
+    remarks.push(
+      remark(
+        'unit-change',
+        1,
+        `The unit changes from ${change.from} to ${change.to} at line ${change.line}. Each row is read in its own.`,
+        { line: change.line },
+      ),
+    )
   for (const { channel, count, line } of sink.meterRestarts())
     remarks.push(
       remark(

@@ -5,11 +5,12 @@ import { cellFault, channelQuestion, wordQuestion } from './cell-faults.ts'
 import type { CellFault, CellReader } from './cells.ts'
 import type { ChannelBook } from './channel-names.ts'
 import { FUTURE_MS } from './limits.ts'
-import { isCutNumber } from './numbers.ts'
+import { isCutNumber, type NumberReader } from './numbers.ts'
 import type { QuestionList } from './questions.ts'
 import type { ReadingSink } from './sink.ts'
 import type { LineTally } from './tally.ts'
 import { plainWord } from './text.ts'
+import type { UnitWords } from './unit-words.ts'
 import { readUnit, type Unit } from './units.ts'
 
 const SUSPECT = qualityCode('suspect')
@@ -36,6 +37,8 @@ export interface RowTools {
   book: ChannelBook
   decimalMark: '.' | ','
   nowMs: number
+  unitWords: UnitWords
+  numbers: NumberReader
   /** Replaces a unit that the file names by the one a person said. */
   settleUnit: (unit: Unit) => Unit
 }
@@ -52,6 +55,9 @@ export class RowReader {
     conflict: 0,
   }
   leftOut = 0
+  /** First row of a long file whose unit is another than that of the row before. */
+  unitChange: { line: number; from: string; to: string } | null = null
+  #rowUnitBefore: Unit | null = null
   readonly #tools: RowTools
   /** Results of the row at hand. */
   #kept = 0
@@ -82,7 +88,7 @@ export class RowReader {
     for (const column of row.block.wide) {
       const text = row.fields[column.at] ?? ''
       const fault = cells.read(text, column.quantity, column.unit)
-      if (fault !== null) this.#fault(row, fault, text, column.at)
+      if (fault !== null) this.#fault(row, fault, text, column.at, column.quantity, column.channel)
       else this.#emit(column.channel, atMs, row, text, marks)
     }
   }
@@ -116,28 +122,28 @@ export class RowReader {
     }
     const unit = this.#rowUnit(row)
     if (unit === 'unknown') {
-      const text = (fields[block.unitAt] ?? '').trim()
+      const token = (fields[block.unitAt] ?? '').trim()
+      const valueText = fields[block.valueAt] ?? ''
       tally.reject(
         row.line,
         row.text,
-        cellFault(
-          'unknown-unit',
-          fields[block.valueAt] ?? '',
-          text,
-          block.unitAt + 1,
-          this.#tools.decimalMark,
-        ),
+        cellFault('unknown-unit', valueText, token, block.unitAt + 1, this.#tools.decimalMark),
       )
+      this.#meetUnit(row, token, valueText, block.unitAt, target.quantity ?? 'pressure', target.name)
       return false
     }
     const quantity: Quantity = target.quantity ?? unit?.quantity ?? 'pressure'
     const text = fields[block.valueAt] ?? ''
     const status = block.statusAt === -1 ? '' : (fields[block.statusAt] ?? '')
     const fault = cells.read(text, quantity, unit)
-    if (fault !== null) this.#fault(row, fault, text, block.valueAt)
+    if (fault !== null)
+      this.#fault(row, fault, text, block.valueAt, quantity, sink.channel(target.name, quantity))
     else if (cells.applyStatus(status, quantity) !== null)
-      this.#fault(row, 'unknown-word', status, block.statusAt)
-    else this.#emit(sink.channel(target.name, quantity), atMs, row, text, marks)
+      this.#fault(row, 'unknown-word', status, block.statusAt, quantity, sink.channel(target.name, quantity))
+    else {
+      this.#noteUnitChange(row, unit)
+      this.#emit(sink.channel(target.name, quantity), atMs, row, text, marks)
+    }
     return true
   }
 
@@ -147,13 +153,42 @@ export class RowReader {
     const token = (row.fields[block.unitAt] ?? '').trim()
     if (token === '') return block.unit
     const reading = readUnit(token)
-    return reading.kind === 'unit' ? this.#tools.settleUnit(reading.unit) : 'unknown'
+    if (reading.kind === 'unit') return this.#tools.settleUnit(reading.unit)
+    const said = this.#tools.unitWords.meaning(token)
+    return said === null || said === 'leave-out' ? 'unknown' : said
   }
 
-  #fault(row: Row, fault: CellFault, text: string, at: number): void {
+  /** Flags the first row of a long file whose values are in another unit of the same quantity. */
+  #noteUnitChange({ line }: Row, unit: Unit | null): void {
+    const before = this.#rowUnitBefore
+    if (unit === null) return
+    this.#rowUnitBefore = unit
+    if (this.unitChange !== null || before === null || before.quantity !== unit.quantity) return
+    if (before.factor === unit.factor && before.offset === unit.offset) return
+    this.unitChange = { line, from: before.token, to: unit.token }
+    this.#flagged = true
+  }
+
+  #meetUnit(
+    { line, fields, block }: Row,
+    token: string,
+    text: string,
+    at: number,
+    quantity: Quantity,
+    channel: string,
+  ): void {
+    const { numbers, unitWords } = this.#tools
+    const figure = /^[<>]?=?\s*([+-]?[\d.,]+(?:[eEdD][+-]?\d+)?)/.exec(text.trim())?.[1] ?? ''
+    const sample = { line, text: (fields[at === block.unitAt ? block.valueAt : at] ?? '').trim(), channel }
+    unitWords.meet(token, quantity, { line, column: at + 1 }, { ...sample, number: numbers.read(figure) })
+  }
+
+  #fault(row: Row, fault: CellFault, text: string, at: number, quantity: Quantity, channel: number): void {
     const { tally, questions, cells, decimalMark } = this.#tools
     this.#firstFault ??= fault
     tally.rejectCell(row.line, row.text, cellFault(fault, text, cells.badUnit, at + 1, decimalMark))
+    if (fault === 'unknown-unit')
+      this.#meetUnit(row, cells.badUnit, text, at, quantity, this.#tools.sink.channels[channel]?.name ?? '')
     if (fault === 'unknown-word')
       questions.ask(`unknown-word:${plainWord(text)}`, () => wordQuestion(text, row.line, at + 1))
   }

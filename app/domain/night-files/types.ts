@@ -38,6 +38,8 @@ export interface ReadContext {
   answers?: readonly Answer[]
   /** Last instant of the file of this source that was taken in before; proposed where a file has lost its clock. */
   previousEndMs?: number | null
+  /** What channels showed last, in the unit of their quantity; shown beside the readings of a doubtful unit. */
+  lastKnown?: Readonly<Record<string, { value: number; atMs: number }>>
 }
 
 /**
@@ -162,6 +164,7 @@ export type QuestionKind =
   | 'unknown-channel'
   | 'unknown-word'
   | 'start'
+  | 'basis'
 
 export interface Question extends Finding {
   /** Stable for the same file: `unit`, `unknown-channel:HC99Z` … */
@@ -195,6 +198,7 @@ export type RemarkKind =
   | 'left-out-columns'
   | 'spaced-exponent'
   | 'meter-restart'
+  | 'unit-change'
 
 /** Something a person should look at before taking the file in. */
 export interface Remark {

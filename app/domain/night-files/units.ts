@@ -167,6 +167,11 @@ export function unitOf(token: string | null | undefined): Unit | null {
   return reading.kind === 'unit' ? reading.unit : null
 }
 
+/** Units that a column of this quantity may be written in. */
+export function unitsOf(quantity: Quantity): Unit[] {
+  return Array.from(BY_TOKEN.values()).filter((unit) => unitFits(quantity, unit))
+}
+
 /** Whether a column of this quantity may be written in a unit of that quantity. */
 export function unitFits(quantity: Quantity, unit: Unit): boolean {
   if (quantity === unit.quantity) return true
