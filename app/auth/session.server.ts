@@ -19,6 +19,8 @@ import { machineNow } from '../machine-time.server.ts'
 const SESSION_DAYS = 14
 /** A browser that asks for nothing for so long is signed out. */
 const IDLE_MS = 12 * 3_600_000
+/** The same on a device that several people use, where the next one must not write under the last one's name. */
+const SHARED_IDLE_MS = 30 * 60_000
 /** A request within this time of the last one does not write to the database again. */
 const TOUCH_EVERY_MS = 60_000
 
@@ -41,8 +43,16 @@ function hashToken(token: string): string {
   return createHash('sha256').update(token).digest('hex')
 }
 
-/** Opens a session and returns the Set-Cookie header value. */
-export async function openSession(db: Db, personId: number, userAgent: string): Promise<string> {
+/**
+ * Opens a session and returns the Set-Cookie header value.
+ *
+ * @param options.shared the device is used by several people: a short idle time, and the cookie goes with the browser
+ */
+export async function openSession(
+  db: Db,
+  personId: number,
+  { userAgent, shared = false }: { userAgent: string; shared?: boolean },
+): Promise<string> {
   const token = randomBytes(32).toString('base64url')
   const now = machineNow()
   await insertSession(db, {
@@ -52,8 +62,9 @@ export async function openSession(db: Db, personId: number, userAgent: string): 
     lastSeenAt: now,
     expiresAt: new Date(now.getTime() + SESSION_DAYS * 86_400_000),
     userAgent: userAgent.slice(0, 255),
+    shared,
   })
-  return sessionCookie().serialize(token)
+  return sessionCookie().serialize(token, shared ? { maxAge: undefined } : {})
 }
 
 async function tokenOf(request: Request): Promise<string | null> {
@@ -69,7 +80,7 @@ export async function readSession(db: Db, request: Request, productNow: Date): P
   const found = await findSession(db, hashToken(token))
   if (found === null) return null
   const idle = now.getTime() - found.lastSeenAt.getTime()
-  if (found.expiresAt <= now || idle > IDLE_MS) return null
+  if (found.expiresAt <= now || idle > (found.shared ? SHARED_IDLE_MS : IDLE_MS)) return null
   if (found.person.endsAt !== null && found.person.endsAt <= productNow) return null
   if (idle > TOUCH_EVERY_MS) await touchSession(db, found.tokenHash, now)
   return found.person
@@ -85,5 +96,8 @@ export async function closeSession(db: Db, request: Request): Promise<string> {
 /** Deletes the rows of sessions that have ended; nobody could have used them any more. Returns how many. */
 export function purgeSessions(db: Db): Promise<number> {
   const now = machineNow()
-  return deleteEndedSessions(db, now, new Date(now.getTime() - IDLE_MS))
+  return deleteEndedSessions(db, now, {
+    idleSince: new Date(now.getTime() - IDLE_MS),
+    sharedIdleSince: new Date(now.getTime() - SHARED_IDLE_MS),
+  })
 }

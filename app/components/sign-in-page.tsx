@@ -6,7 +6,7 @@ import type { ActionFailure } from './forms/failure.ts'
 import { FormFailure } from './forms/form-failure.tsx'
 import { BrandMark } from './ui/brand-mark.tsx'
 import { Button } from './ui/button.tsx'
-import { TextField } from './ui/field.tsx'
+import { CheckField, TextField } from './ui/field.tsx'
 
 export function SignInPage({
   demoSignIns,
@@ -42,6 +42,12 @@ export function SignInPage({
             autoComplete="current-password"
             required
             errors={failure?.fields.password}
+          />
+          <CheckField
+            name="shared"
+            label="This is a shared device"
+            hint="You are signed out after 30 minutes without a request, and when the browser is closed; otherwise after 12 hours."
+            defaultChecked={failure?.typed?.shared === 'on'}
           />
           <Button kind="primary" disabled={sending}>
             {sending ? 'Signing in' : 'Sign in'}

@@ -1,6 +1,12 @@
 import { eq } from 'drizzle-orm'
 import { beforeEach, expect, test } from 'vitest'
-import { closeSession, openSession, readSession, sessionCookie } from '#app/auth/session.server.ts'
+import {
+  closeSession,
+  openSession,
+  purgeSessions,
+  readSession,
+  sessionCookie,
+} from '#app/auth/session.server.ts'
 import { authenticator } from '#app/auth/sign-in.server.ts'
 import { roleGrant, session } from '#app/db/schema/index.ts'
 import { type Role, rolesAt } from '#app/domain/roles.ts'
@@ -85,7 +91,7 @@ test('empty fields are named', async () => {
 
 test('a session brings the person back, with a cookie scripts and other sites cannot use', async () => {
   const user = await createUser(db, { roles: ['engineer'] })
-  const setCookie = await openSession(db, user.personId, 'a browser')
+  const setCookie = await openSession(db, user.personId, { userAgent: 'a browser' })
   expect(setCookie).toMatch(/; HttpOnly/)
   expect(setCookie).toMatch(/; SameSite=Lax/)
   expect(await readSession(db, requestWith(setCookie), MORNING)).toMatchObject({
@@ -99,7 +105,7 @@ test('a session brings the person back, with a cookie scripts and other sites ca
 
 test('the table holds no token that could be put into a cookie', async () => {
   const user = await createUser(db)
-  const setCookie = await openSession(db, user.personId, '')
+  const setCookie = await openSession(db, user.personId, { userAgent: '' })
   const token: unknown = await sessionCookie().parse(setCookie.split(';')[0] ?? '')
   const [row] = await db.select().from(session)
   expect(row?.tokenHash).toMatch(/^[0-9a-f]{64}$/)
@@ -108,7 +114,7 @@ test('the table holds no token that could be put into a cookie', async () => {
 
 test('a cookie that is changed, forged or missing is nobody', async () => {
   const user = await createUser(db)
-  const setCookie = await openSession(db, user.personId, '')
+  const setCookie = await openSession(db, user.personId, { userAgent: '' })
   const [pair = ''] = setCookie.split(';')
   const changed = pair.slice(0, -3) + (pair.endsWith('AAA') ? 'BBB' : 'AAA')
   for (const cookie of [changed, 'ebbline_session=abc', '']) {
@@ -121,8 +127,8 @@ test('a cookie that is changed, forged or missing is nobody', async () => {
 
 test('signing out ends the session itself, not only the cookie', async () => {
   const user = await createUser(db)
-  const setCookie = await openSession(db, user.personId, '')
-  const elsewhere = await openSession(db, user.personId, '')
+  const setCookie = await openSession(db, user.personId, { userAgent: '' })
+  const elsewhere = await openSession(db, user.personId, { userAgent: '' })
   expect(await closeSession(db, requestWith(setCookie))).toMatch(/Max-Age=0/)
   expect(await readSession(db, requestWith(setCookie), MORNING)).toBeNull()
   expect(await readSession(db, requestWith(elsewhere), MORNING)).not.toBeNull()
@@ -134,7 +140,7 @@ test.each([
   ['at its end', { idleMinutes: 0, leftMinutes: 0 }, false],
 ])('a session %s', async (_what, { idleMinutes, leftMinutes }, alive) => {
   const user = await createUser(db)
-  const setCookie = await openSession(db, user.personId, '')
+  const setCookie = await openSession(db, user.personId, { userAgent: '' })
   const machine = new Date()
   await db.update(session).set({
     lastSeenAt: after(machine, -idleMinutes * 60),
@@ -144,9 +150,23 @@ test.each([
   expect(person !== null).toBe(alive)
 })
 
+test.each([
+  ['used 29 min ago', 29, true],
+  ['not used for 31 min', 31, false],
+])('a session on a shared device %s', async (_what, idleMinutes, alive) => {
+  const user = await createUser(db)
+  const setCookie = await openSession(db, user.personId, { userAgent: '', shared: true })
+  // Without a lifetime of its own the cookie goes when the browser is closed.
+  expect(setCookie).not.toMatch(/Max-Age|Expires/i)
+  await db.update(session).set({ lastSeenAt: after(new Date(), -idleMinutes * 60) })
+  expect((await readSession(db, requestWith(setCookie), MORNING)) !== null).toBe(alive)
+  // The leftovers of the one are cleared away, those of the other are not.
+  expect(await purgeSessions(db)).toBe(alive ? 0 : 1)
+})
+
 test('a used session is noted as seen, at most once a minute', async () => {
   const user = await createUser(db)
-  const setCookie = await openSession(db, user.personId, '')
+  const setCookie = await openSession(db, user.personId, { userAgent: '' })
   const seenAt = async () => (await db.select().from(session))[0]?.lastSeenAt as Date
   const first = await seenAt()
   await readSession(db, requestWith(setCookie), MORNING)
@@ -158,7 +178,7 @@ test('a used session is noted as seen, at most once a minute', async () => {
 
 test('an account that ends is signed out at that instant of the product clock', async () => {
   const user = await createUser(db, { endsAt: after(MORNING, 60) })
-  const setCookie = await openSession(db, user.personId, '')
+  const setCookie = await openSession(db, user.personId, { userAgent: '' })
   expect(await readSession(db, requestWith(setCookie), after(MORNING, 59))).not.toBeNull()
   expect(await readSession(db, requestWith(setCookie), after(MORNING, 60))).toBeNull()
 })
@@ -171,7 +191,7 @@ test('roles follow their dates: granted later, ended, revoked, and several at on
       .values({ personId: user.personId, role, startsAt, endsAt, grantedAt: MORNING, reason: 'for a test' })
   await grant('engineer', after(MORNING, 100), after(MORNING, 200))
   await grant('manager', after(MORNING, 150))
-  const setCookie = await openSession(db, user.personId, '')
+  const setCookie = await openSession(db, user.personId, { userAgent: '' })
   const rolesAfter = async (seconds: number) => {
     const at = after(MORNING, seconds)
     const person = await readSession(db, requestWith(setCookie), at)

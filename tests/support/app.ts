@@ -43,6 +43,6 @@ export async function request(path: string, options: AppRequest = {}): Promise<R
 
 /** Opens a session for a person and returns the Cookie header to send with requests. */
 export async function signIn(personId: number): Promise<string> {
-  const setCookie = await openSession(testDb(), personId, 'test')
+  const setCookie = await openSession(testDb(), personId, { userAgent: 'test' })
   return setCookie.split(';')[0] ?? ''
 }

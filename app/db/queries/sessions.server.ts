@@ -1,4 +1,4 @@
-import { eq, lt, lte, or } from 'drizzle-orm'
+import { and, eq, lt, lte, or } from 'drizzle-orm'
 import type { Grant } from '../../domain/roles.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { person, roleGrant, session } from '../schema/index.ts'
@@ -16,6 +16,7 @@ export interface FoundSession {
   tokenHash: string
   lastSeenAt: Date
   expiresAt: Date
+  shared: boolean
   person: SessionPerson
 }
 
@@ -26,6 +27,7 @@ export async function findSession(db: DbOrTx, tokenHash: string): Promise<FoundS
       tokenHash: session.tokenHash,
       lastSeenAt: session.lastSeenAt,
       expiresAt: session.expiresAt,
+      shared: session.shared,
       id: person.id,
       name: person.name,
       endsAt: person.endsAt,
@@ -51,6 +53,7 @@ export async function findSession(db: DbOrTx, tokenHash: string): Promise<FoundS
     tokenHash: first.tokenHash,
     lastSeenAt: first.lastSeenAt,
     expiresAt: first.expiresAt,
+    shared: first.shared,
     person: {
       id: first.id,
       name: first.name,
@@ -62,10 +65,7 @@ export async function findSession(db: DbOrTx, tokenHash: string): Promise<FoundS
   }
 }
 
-export async function insertSession(
-  db: DbOrTx,
-  row: Omit<typeof session.$inferInsert, 'shared'>,
-): Promise<void> {
+export async function insertSession(db: DbOrTx, row: typeof session.$inferInsert): Promise<void> {
   await db.insert(session).values(row)
 }
 
@@ -77,10 +77,20 @@ export async function deleteSession(db: DbOrTx, tokenHash: string): Promise<void
   await db.delete(session).where(eq(session.tokenHash, tokenHash))
 }
 
-/** Deletes sessions past their end, and those last used before an instant. */
-export async function deleteEndedSessions(db: DbOrTx, now: Date, idleSince: Date): Promise<number> {
+/** Deletes sessions past their end, and those last used before an instant: a later one on shared devices. */
+export async function deleteEndedSessions(
+  db: DbOrTx,
+  now: Date,
+  { idleSince, sharedIdleSince }: { idleSince: Date; sharedIdleSince: Date },
+): Promise<number> {
   const [result] = await db
     .delete(session)
-    .where(or(lte(session.expiresAt, now), lt(session.lastSeenAt, idleSince)))
+    .where(
+      or(
+        lte(session.expiresAt, now),
+        lt(session.lastSeenAt, idleSince),
+        and(session.shared, lt(session.lastSeenAt, sharedIdleSince)),
+      ),
+    )
   return result.affectedRows
 }

@@ -24,7 +24,10 @@ export async function action({ request, url }: Route.ActionArgs) {
   const typed = typedOf(await request.clone().formData())
   try {
     const { personId } = await authenticator.authenticate('form', request)
-    const cookie = await openSession(getDb(), personId, request.headers.get('User-Agent') ?? '')
+    const cookie = await openSession(getDb(), personId, {
+      userAgent: request.headers.get('User-Agent') ?? '',
+      shared: typed.shared === 'on',
+    })
     return redirect(safePath(url.searchParams.get('next')), { headers: { 'Set-Cookie': cookie } })
   } catch (error) {
     return failure(error, typed)
