@@ -50,6 +50,14 @@ export type Permission = keyof typeof ROLES_BY_PERMISSION
 
 export const PERMISSIONS = Object.keys(ROLES_BY_PERMISSION) as Permission[]
 
+/** A role that approves what others plan. Its holder by their own grant is kept waiting for a day, for others to object. */
+const APPROVING_ROLES: readonly Role[] = ['safety-officer']
+
+/** Hours that pass between the confirmation of a role that somebody gave to themselves and its beginning. */
+export function hoursAfterConfirmation(role: Role): number {
+  return APPROVING_ROLES.includes(role) ? 24 : 0
+}
+
 /** A role held by a person from one instant until another (open when null). */
 export interface Grant {
   role: Role

@@ -18,13 +18,14 @@ import {
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
-import { ROLE_LABELS, rolesAt } from '../domain/roles.ts'
+import { hoursAfterConfirmation, ROLE_LABELS, rolesAt } from '../domain/roles.ts'
 import type { GrantForm } from '../domain/schemas/people.ts'
 import { writeRecord } from './record.server.ts'
 import { fieldFault } from './register-values.server.ts'
 
 /** A form that was opened a while ago still counts as "from now on". */
 const BACK_MS = 60 * 60_000
+const HOUR_MS = 3_600_000
 
 export type GrantStanding = 'waiting' | 'coming' | 'in-force' | 'ended'
 
@@ -112,7 +113,8 @@ export async function grantRole(
 }
 
 /**
- * Confirms or refuses a role that somebody has given to themselves. It begins with the confirmation, never before.
+ * Confirms or refuses a role that somebody has given to themselves. It begins with the confirmation, never before; one
+ * that approves what others plan begins a day after it, so that there is time to object.
  *
  * @throws DomainError forbidden (also for the person concerned), not-found, conflict (it no longer waits)
  */
@@ -140,8 +142,13 @@ export async function decideGrant(
       )
     }
     const confirmed = decision.decision === 'confirm'
-    if (confirmed && grant.endsAt !== null && grant.endsAt <= now) {
-      throw new DomainError('conflict', 'Its last day is over. Refuse it; it can be asked for again.')
+    const earliest = new Date(now.getTime() + hoursAfterConfirmation(grant.role) * HOUR_MS)
+    const startsAt = grant.startsAt > earliest ? grant.startsAt : earliest
+    if (confirmed && grant.endsAt !== null && grant.endsAt <= startsAt) {
+      throw new DomainError(
+        'conflict',
+        'Its last day would be over before it began. Refuse it; it can be asked for again.',
+      )
     }
     await updateGrant(
       inside,
@@ -150,7 +157,7 @@ export async function decideGrant(
         ? {
             confirmedBy: actor.personId,
             confirmedAt: now,
-            startsAt: grant.startsAt > now ? grant.startsAt : now,
+            startsAt,
             revokedAt: null,
             revokeReason: null,
           }
@@ -162,6 +169,7 @@ export async function decideGrant(
       act: confirmed ? 'role confirmed' : 'role refused',
       subjectKind: 'person',
       subjectId: String(grant.personId),
+      effectiveAt: confirmed ? startsAt : null,
       before: { person: grant.person, role: grant.role, standing: 'waiting' },
       after: { person: grant.person, role: grant.role, standing: confirmed ? 'granted' : 'refused' },
       reason: decision.reason,

@@ -130,13 +130,59 @@ describe('a role that somebody gives to themselves', () => {
     decideGrant(db, actor, at, { grantId, decision, reason: 'Talked it over' })
 
   it('is not held until another person has confirmed it, and never before that', async () => {
+    await grantRole(db, juniper, MORNING, juniper.personId, grant('manager'))
+    const asked = (await readWaiting(db, ione)).find(({ role }) => role === 'manager')
     const later = shift(MORNING, DAY)
     expect(await rolesOf(juniper, later)).toEqual(['administrator'])
-    await decide(ione, 'confirm', later)
+    await decideGrant(db, ione, later, { grantId: asked?.id ?? 0, decision: 'confirm', reason: 'Covers' })
     expect(await rolesOf(juniper, shift(later, -1))).toEqual(['administrator'])
-    expect(await rolesOf(juniper, later)).toEqual(['safety-officer', 'administrator'])
+    expect(await rolesOf(juniper, later)).toEqual(['manager', 'administrator'])
     const { grants } = await readPerson(db, juniper, juniper.personId, later)
-    expect(grants[0]).toMatchObject({ standing: 'in-force', confirmedBy: 'Ione', grantedBy: 'Juniper' })
+    expect(grants.find(({ role }) => role === 'manager')).toMatchObject({
+      standing: 'in-force',
+      confirmedBy: 'Ione',
+      grantedBy: 'Juniper',
+    })
+  })
+
+  it('that approves what others plan begins a day after it was confirmed', async () => {
+    const confirmed = shift(MORNING, DAY)
+    const begins = shift(confirmed, DAY)
+    await decide(ione, 'confirm', confirmed)
+    expect(await rolesOf(juniper, shift(begins, -1))).toEqual(['administrator'])
+    expect(await rolesOf(juniper, begins)).toEqual(['safety-officer', 'administrator'])
+    const standingAt = async (at: Date) =>
+      (await readPerson(db, juniper, juniper.personId, at)).grants.map(({ standing }) => standing)
+    expect(await standingAt(confirmed)).toEqual(['coming'])
+    expect(await standingAt(begins)).toEqual(['in-force'])
+  })
+
+  it('that asks for a later beginning keeps it', async () => {
+    await decide(ione, 'refuse', MORNING)
+    const begins = shift(MORNING, 5 * DAY)
+    await grantRole(db, juniper, MORNING, juniper.personId, {
+      ...grant('safety-officer'),
+      startsAt: begins,
+    })
+    const [waiting] = await readWaiting(db, ione)
+    await decideGrant(db, ione, MORNING, {
+      grantId: waiting?.id ?? 0,
+      decision: 'confirm',
+      reason: 'For the holidays',
+    })
+    expect(await rolesOf(juniper, shift(begins, -1))).toEqual(['administrator'])
+    expect(await rolesOf(juniper, begins)).toEqual(['safety-officer', 'administrator'])
+  })
+
+  it('is not confirmed when its last day would be over before it began', async () => {
+    await decide(ione, 'refuse', MORNING)
+    await grantRole(db, juniper, MORNING, juniper.personId, {
+      ...grant('safety-officer'),
+      until: shift(MORNING, DAY),
+    })
+    const [waiting] = await readWaiting(db, ione)
+    const decision = { grantId: waiting?.id ?? 0, decision: 'confirm', reason: 'For today' } as const
+    expect(await refusal(decideGrant(db, ione, MORNING, decision))).toMatchObject({ code: 'conflict' })
   })
 
   it('cannot be confirmed by herself, nor by somebody without a say', async () => {

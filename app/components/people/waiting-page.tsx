@@ -1,6 +1,6 @@
 /** Roles that people gave themselves: another person confirms or refuses each. */
 import { Form, useNavigation } from 'react-router'
-import { ROLE_LABELS, type Role } from '#app/domain/roles.ts'
+import { hoursAfterConfirmation, ROLE_LABELS, type Role } from '#app/domain/roles.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { ReasonField, type RegisterFailure } from '../register/thing-form.tsx'
 import { Button } from '../ui/button.tsx'
@@ -51,6 +51,12 @@ export function WaitingPage({
               )}
               . Reason: {grant.reason}
             </p>
+            {hoursAfterConfirmation(grant.role) > 0 && (
+              <p className="mb-2">
+                Whoever holds this role approves what others plan: once confirmed it begins{' '}
+                {hoursAfterConfirmation(grant.role)} hours later.
+              </p>
+            )}
             {grant.own ? (
               <p className="text-ink-2">You asked for this yourself; another person decides.</p>
             ) : (
