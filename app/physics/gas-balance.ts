@@ -24,6 +24,7 @@ import { temperatureAt } from './programme.ts'
 import { type PumpCurve, pumpThroughput, pumpThroughputSlope } from './pumps.ts'
 import type { TreeMatrix } from './tree-matrix.ts'
 import type { TubeMesh } from './tube.ts'
+import { valvePassages } from './valve-passages.ts'
 import { addAdsorbed, wallSites } from './wall-sites.ts'
 
 export interface GasBalance {
@@ -84,6 +85,7 @@ export function gasBalance(
   const fromParent = new Float64Array(n)
   const viscous = new Float64Array(n)
   const slip = new Float64Array(n)
+  const valveFlow = valvePassages()
   const gasPerPa = new Float64Array(n)
   const source = new Float64Array(n)
   const pumpCurve: (PumpCurve | null)[] = run.pumps.map(() => null)
@@ -107,16 +109,21 @@ export function gasBalance(
   let version = 0
 
   function preparePassages(): void {
+    valveFlow.clear()
     for (let i = 0; i < n; i++) gasPerPa[i] = volumeM3[i]! / (BOLTZMANN * zoneK[zoneOf[i]!]!)
     for (let i = 1; i < n; i++) {
       const q = parent[i]!
       const open = shut[i] === 1 ? 0 : passage[i]!
       fromNode[i] = open * zoneRoot[zoneOf[i]!]!
       fromParent[i] = open * zoneRoot[zoneOf[q]!]!
-      if (!transitional || shut[i] === 1 || passageLengthM[i] === 0) continue
+      if (!transitional || shut[i] === 1) continue
       const middle = (zoneK[zoneOf[i]!]! + zoneK[zoneOf[q]!]!) / 2
       const eta = run.viscosityPaS ?? viscosity(run.gas, middle)
       const d = passageDiameterM[i]!
+      if (passageLengthM[i] === 0) {
+        valveFlow.open(i, run.gas, d, middle, eta)
+        continue
+      }
       viscous[i] = viscousSpecific(d, 1, eta) / (passageLengthM[i]! * BOLTZMANN * middle)
       slip[i] = slipPerPascal(run.gas, d, middle, eta)
     }
@@ -201,7 +208,7 @@ export function gasBalance(
         let byMine = fromNode[i]!
         let byTheirs = fromParent[i]!
         let flux = byMine * mine - byTheirs * theirs
-        if (transitional) {
+        if (transitional && passageLengthM[i]! > 0) {
           const x = slip[i]! * 0.5 * (mine + theirs)
           const below = 1 + 1.24 * x
           const factor = (1 + x) / below
@@ -215,6 +222,7 @@ export function gasBalance(
         up[i] = scale * byMine
         down[i] = scale * byTheirs
       }
+      valveFlow.replaceFlow(pressure, rate, matrix, scale)
       for (let i = 0; i < run.pumps.length; i++) {
         const curve = pumpCurve[i]
         if (!curve) continue

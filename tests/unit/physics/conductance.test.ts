@@ -2,6 +2,8 @@ import { describe, expect, test } from 'vitest'
 import {
   apertureConductance,
   apertureContinuumFlow,
+  apertureFlow,
+  apertureThroughput,
   chokedRatio,
   crossSection,
   effectiveSpeed,
@@ -121,6 +123,41 @@ describe('choked flow', () => {
     expect(apertureContinuumFlow('air', 1, T20_K, 0.1)).toBe(apertureContinuumFlow('air', 1, T20_K, 0.5))
     expect(apertureContinuumFlow('air', 1, T20_K, 0)).toBeCloseTo(198.6, 1)
     expect(apertureContinuumFlow('air', 1, T20_K, 1)).toBe(0)
+  })
+})
+
+describe('the bore of a valve', () => {
+  const flow = apertureFlow('air', 0.1, T20_K)
+  const area = crossSection(0.1)
+
+  test('far below a pascal passes molecular flow, into vacuum from an atmosphere the choked flow', () => {
+    const thin = apertureThroughput(flow, 1e-6, 4e-7)
+    expect(thin / (apertureConductance('air', area, T20_K) * 6e-7)).toBeCloseTo(1, 3)
+    expect(
+      apertureThroughput(flow, 1e5, 0) / (1e5 * apertureContinuumFlow('air', area, T20_K, 0)),
+    ).toBeCloseTo(1, 2)
+    expect(apertureThroughput(flow, 5, 5)).toBe(0)
+  })
+  test('between, it rises from 1 to 1.7 times molecular flow and never falls with the pressure', () => {
+    const over = (p: number) => apertureThroughput(flow, p, 0) / (flow.molecular * p)
+    const pressures = Array.from({ length: 90 }, (_, i) => 10 ** (-4 + i / 10))
+    for (const [i, p] of pressures.entries()) {
+      expect(over(p)).toBeGreaterThanOrEqual(1)
+      expect(over(p)).toBeLessThan(1.72)
+      if (i > 0) expect(over(p)).toBeGreaterThan(over(pressures[i - 1]!))
+    }
+  })
+  test('subcritical flow is within 1 % of de Saint-Venant and Wantzel', () => {
+    for (let ratio = 0.5; ratio < 0.975; ratio += 0.025) {
+      const exact = 1e6 * apertureContinuumFlow('air', area, T20_K, ratio)
+      expect(Math.abs(apertureThroughput(flow, 1e6, 1e6 * ratio) / exact - 1)).toBeLessThan(0.01)
+    }
+  })
+  test('more pressure behind means less flow', () => {
+    for (const up of [1e-3, 1, 1e3, 1e5]) {
+      const flows = [0, 0.3, 0.6, 0.9, 0.999, 1].map((ratio) => apertureThroughput(flow, up, up * ratio))
+      for (let i = 1; i < flows.length; i++) expect(flows[i]!).toBeLessThanOrEqual(flows[i - 1]!)
+    }
   })
 })
 

@@ -169,6 +169,40 @@ describe('valves and spurs', () => {
     expect(across / (1e-7 / ((crossSection(0.5) * meanSpeed('N2', T20_K)) / 4))).toBeCloseTo(1, 6)
   })
 
+  test('from an atmosphere a valve chokes: 1.7 times what it would pass in molecular flow', () => {
+    // Two vessels of 3 m3 and a valve of 20 mm between; the pump keeps the near one near vacuum.
+    const sections = [{ lengthM: 10, diameterM: 0.618 }]
+    const tube: TubeBranch = {
+      name: 'line',
+      sections: [...sections, ...sections],
+      valves: [{ name: 'GV', atM: 10, boreM: 0.02 }],
+    }
+    const { base, mesh, node } = run([tube], 5, (at) => ({
+      gas: 'air',
+      startPa: 1e5,
+      flow: 'transitional',
+      pumps: [steadyPump(at(0), 2)],
+    }))
+    // Shut until the near side is empty.
+    const valves = [
+      {
+        name: 'GV',
+        open: [
+          { fromS: 0, value: false },
+          { fromS: 60, value: true },
+        ],
+      },
+    ]
+    const history = only({ ...base, valves, outputsS: [60, 70, 100], tolerance: 1e-3 })
+    const far = history.pressurePa.map((p) => p[node(20)]!)
+    expect(history.pressurePa[1]![mesh.valveNodes.get('GV')! - 1]!).toBeLessThan(0.1 * far[1]!)
+    // Choked flow empties a volume as a constant speed of A 198.6 m/s does.
+    const volume = crossSection(0.618) * 10
+    const speed = (volume / 30) * Math.log(far[1]! / far[2]!)
+    expect(speed / (crossSection(0.02) * 198.6)).toBeCloseTo(1, 2)
+    expect(history.massError).toBeLessThan(1e-7)
+  })
+
   test('a leak at the end of a spur shows there by Q L/c of the spur more than at its joint', () => {
     const { base, node } = leakAtSpurEnd
     const p = only({ ...base, outputsS: [1e5] }).pressurePa[0]!
