@@ -1,7 +1,7 @@
 /** A person's own settings. Each is a small form that saves by itself. */
-import { Form } from 'react-router'
+import { Form, Link } from 'react-router'
 import type { Preferences } from '#app/context.ts'
-import { ROLE_LABELS, type Role } from '#app/domain/roles.ts'
+import { ROLE_LABELS, type Role, rolesHave } from '#app/domain/roles.ts'
 import type { ActionFailure } from './forms/failure.ts'
 import { FormFailure } from './forms/form-failure.tsx'
 import { Button } from './ui/button.tsx'
@@ -61,6 +61,13 @@ export function AccountPage({
             ]}
           />
           <p className="mt-2 text-sm text-ink-2">Roles are granted, dated and ended by the administrator.</p>
+          {rolesHave(roles, 'grant:confirm') && (
+            <p className="mt-2">
+              <Link to="/people/waiting" className="link inline-block py-0.5">
+                Roles that wait for a second person
+              </Link>
+            </p>
+          )}
         </Panel>
       </div>
     </>

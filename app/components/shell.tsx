@@ -11,7 +11,8 @@ import { longTimeText, offsetLabel } from './ui/site-time.ts'
 import { UnitSwitch } from './ui/unit-switch.tsx'
 
 interface ShellProps {
-  person: { name: string; roles: readonly Role[] }
+  /** `waiting`: how many roles wait for this person to confirm or refuse them. */
+  person: { name: string; roles: readonly Role[]; waiting: number }
   site: { name: string; zone: string }
   clock: { at: Date; demo: boolean }
   unit: PressureUnit
@@ -159,12 +160,20 @@ function Clock({
 function PersonMenu({ person }: { person: ShellProps['person'] }) {
   const item =
     'flex min-h-10 w-full items-center rounded-sm px-2.5 text-left text-ink hover:bg-rule-2 pointer-coarse:min-h-11'
+  const waits = person.waiting === 1 ? 'One role waits for you' : `${person.waiting} roles wait for you`
   return (
-    <Menu label={person.name}>
+    <Menu label={person.name} note={person.waiting > 0 ? waits : undefined}>
       <p className="px-2.5 pb-1.5 text-sm text-ink-3">
         {person.roles.map((role) => ROLE_LABELS[role]).join(', ') || 'No role in force'}
       </p>
       <ul className="border-t pt-1">
+        {person.waiting > 0 && (
+          <li>
+            <Link to="/people/waiting" className={`${item} font-medium`}>
+              {waits}
+            </Link>
+          </li>
+        )}
         <li>
           <Link to="/account" className={item}>
             Your settings

@@ -7,19 +7,21 @@ import { rolesHave } from '#app/domain/roles.ts'
 import { takeNotice } from '#app/server/notice.server.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
 import { readClock } from '#app/services/clock.server.ts'
+import { countWaitingFor } from '#app/services/people.server.ts'
 import { getSite } from '#app/services/site.server.ts'
 import type { Route } from './+types/layout'
 
 export async function loader({ context, request }: Route.LoaderArgs) {
   const actor = signedIn(context, request)
-  const [site, clock, { notice, clear }] = await Promise.all([
+  const [site, clock, waiting, { notice, clear }] = await Promise.all([
     orRefuse(getSite(getDb())),
     readClock(getDb()),
+    countWaitingFor(getDb(), actor),
     takeNotice(request),
   ])
   return data(
     {
-      person: { name: actor.name, roles: actor.roles },
+      person: { name: actor.name, roles: actor.roles, waiting },
       site: { name: site.name, zone: site.timeZone },
       clock: { at: nowOf(context), demo: clock.demo },
       unit: context.get(preferencesContext).pressureUnit,

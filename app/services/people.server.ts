@@ -15,7 +15,7 @@ import {
   updatePersonEnd,
 } from '../db/queries/people.server.ts'
 import { tx } from '../db/transaction.server.ts'
-import { type Actor, demand } from '../domain/actor.ts'
+import { type Actor, demand, may } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
 import { type Role, rolesAt } from '../domain/roles.ts'
 import type { AccountEndForm, NewPersonForm } from '../domain/schemas/people.ts'
@@ -80,6 +80,12 @@ export async function readWaiting(db: Db, actor: Actor): Promise<(GrantRow & { o
     ...grant,
     own: grant.personId === actor.personId || grant.grantedById === actor.personId,
   }))
+}
+
+/** How many grants wait that this person may decide: none for somebody without a say, and never their own. */
+export async function countWaitingFor(db: Db, actor: Actor): Promise<number> {
+  if (!may(actor, 'grant:confirm')) return 0
+  return (await readWaiting(db, actor)).filter(({ own }) => !own).length
 }
 
 /**

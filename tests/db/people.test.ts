@@ -8,7 +8,14 @@ import type { DomainError } from '#app/domain/errors.ts'
 import { type Role, rolesAt } from '#app/domain/roles.ts'
 import type { GrantForm, NewPersonForm } from '#app/domain/schemas/people.ts'
 import { decideGrant, endGrant, grantRole } from '#app/services/grants.server.ts'
-import { addPerson, readPeople, readPerson, readWaiting, setAccountEnd } from '#app/services/people.server.ts'
+import {
+  addPerson,
+  countWaitingFor,
+  readPeople,
+  readPerson,
+  readWaiting,
+  setAccountEnd,
+} from '#app/services/people.server.ts'
 import { readRecordPage } from '#app/services/people-record.server.ts'
 import { MORNING, after as shift } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
@@ -206,6 +213,10 @@ describe('a role that somebody gives to themselves', () => {
     expect(await readWaiting(db, juniper)).toMatchObject([
       { person: 'Juniper', role: 'safety-officer', own: true },
     ])
+    // Those who may decide it are told; she and those without a say are not.
+    expect(await countWaitingFor(db, ione)).toBe(1)
+    expect(await countWaitingFor(db, juniper)).toBe(0)
+    expect(await countWaitingFor(db, await createUser(db, { roles: ['engineer'] }))).toBe(0)
     const twice = await refusal(grantRole(db, juniper, MORNING, juniper.personId, grant('safety-officer')))
     expect(twice.fields.role?.[0]).toContain('waits for')
   })

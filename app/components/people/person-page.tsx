@@ -105,7 +105,7 @@ export function PersonPage({ person, grants, own, failure }: PersonPageProps) {
             {own && (
               <Notice lead="Your own account. ">
                 A role that you give yourself waits until a safety officer, the facility manager or another
-                administrator confirms it.
+                administrator confirms it. That of a safety officer begins a day after.
               </Notice>
             )}
             <GrantForm key={grants.length} failure={failureOf('grant')} />

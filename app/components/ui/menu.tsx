@@ -1,8 +1,20 @@
 import { useEffect, useRef } from 'react'
 import { useLocation } from 'react-router'
 
-/** A button that opens a short list over the page. It is a `details` element, so it opens without any script too. */
-export function Menu({ label, children }: { label: string; children: React.ReactNode }) {
+/**
+ * A button that opens a short list over the page. It is a `details` element, so it opens without any script too.
+ *
+ * @param note something inside that wants to be seen; the button then carries a dot, and says it
+ */
+export function Menu({
+  label,
+  note,
+  children,
+}: {
+  label: string
+  note?: string | undefined
+  children: React.ReactNode
+}) {
   const ref = useRef<HTMLDetailsElement>(null)
   const { key } = useLocation()
 
@@ -35,6 +47,11 @@ export function Menu({ label, children }: { label: string; children: React.React
     <details ref={ref} className="group relative">
       <summary className="flex min-h-8 list-none items-center gap-1.5 rounded-md border bg-sheet px-2.5 text-ink pointer-coarse:min-h-11 [&::-webkit-details-marker]:hidden">
         {label}
+        {note !== undefined && (
+          <span title={note} className="size-2 rounded-full bg-warn">
+            <span className="sr-only">, {note}</span>
+          </span>
+        )}
         <svg
           viewBox="0 0 10 6"
           width="10"
