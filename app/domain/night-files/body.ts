@@ -5,6 +5,7 @@ import { channelQuestion } from './cell-faults.ts'
 import { CellReader } from './cells.ts'
 import type { ChannelBook } from './channel-names.ts'
 import { ResetStretches, resetFault } from './clock-reset.ts'
+import { joinDecimalCommas, twoWays } from './comma-pairs.ts'
 import type { Dialect } from './dialect.ts'
 import { splitFields } from './fields.ts'
 import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
@@ -56,7 +57,7 @@ export class FileBody {
   backSteps = 0
   readonly #tools: BodyTools
   readonly #times: RowTimes | null
-  readonly #numbers: NumberReader
+  readonly numbers: NumberReader
   readonly #unitWords: UnitWords
   readonly #resets: ResetStretches | null
   #headerColumns: HeaderColumn[] = []
@@ -76,11 +77,13 @@ export class FileBody {
       bareExponent: profile.bareExponent,
     })
     const unitWords = new UnitWords(questions, profile.units, context)
-    this.#numbers = numbers
+    this.numbers = numbers
     this.#unitWords = unitWords
     const words = new WordBook({ ...profile.words, ...questions.words() })
     this.rows = new RowReader({
-      cells: new CellReader(numbers, words, profile.sentinels, (token) => unitWords.meaning(token)),
+      cells: new CellReader(numbers, words, [...profile.sentinels, ...questions.floors()], (token) =>
+        unitWords.meaning(token),
+      ),
       unitWords,
       numbers,
       sink,
@@ -266,7 +269,7 @@ export class FileBody {
     const said = this.#unitWords.meaning(token)
     if (said !== null) return said
     const name = this.#headerColumns[column - 1]?.name ?? ''
-    const samples = unitSamples(this.#tools.dialect.rows, column - 1, () => name, this.#numbers)
+    const samples = unitSamples(this.#tools.dialect.rows, column - 1, () => name, this.numbers)
     this.#unitWords.ask(token, quantity, { line: this.#headerLine, column }, samples)
     return null
   }
@@ -364,8 +367,8 @@ export class FileBody {
   }
 
   #row(row: Row, terminated: boolean): void {
-    const { tally } = this.#tools
-    const { block, fields, line, text } = row
+    const { tally, dialect } = this.#tools
+    const { block, line, text } = row
     if (!this.#sawRow) this.refusal = this.#judge()
     this.#sawRow = true
     if (this.refusal !== null) {
@@ -376,7 +379,7 @@ export class FileBody {
       tally.skip('unanswered')
       return
     }
-    if (!terminated && isCutRow(fields, block)) {
+    if (!terminated && isCutRow(row.fields, block)) {
       this.#reject(
         line,
         text,
@@ -386,6 +389,8 @@ export class FileBody {
       )
       return
     }
+    if (dialect.joinsCommas && row.fields.length > block.fieldCount && !this.#joinCommas(row)) return
+    const { fields } = row
     const extra = fields.slice(block.fieldCount)
     if (fields.length < block.fieldCount || extra.some((field) => field.trim() !== '')) {
       this.#reject(
@@ -422,6 +427,19 @@ export class FileBody {
     if (this.#lastMs !== null && time.atMs < this.#lastMs) this.backSteps += 1
     this.#lastMs = time.atMs
     this.rows.read(row, time.atMs, time.marks)
+  }
+
+  /** Joins the halves of decimal commas. False when the row is turned away. */
+  #joinCommas(row: Row): boolean {
+    const joined = joinDecimalCommas(row.fields, row.block.fieldCount)
+    if (joined?.kind === 'one') {
+      row.fields = joined.fields
+      return true
+    }
+    const found = joined === null ? `${row.fields.length} fields` : twoWays(joined.ways)
+    const expected = `${row.block.fieldCount} fields in one way only: decimal points, quoted numbers, or semicolons between the fields`
+    this.#reject(row.line, row.text, 'field-count', found, expected)
+    return false
   }
 
   /** Reads the rows of a repeated hour, now that all of them are there. */

@@ -65,9 +65,13 @@ export function wordQuestion(text: string, line: number, column: number): Questi
     found: `“${text.trim().slice(0, 60)}”`,
     expected: 'a number, or one of the words that gauges of this source are known to write',
     mend: 'Choose the meaning that the manual of the logger gives.',
-    choices: QUALITIES.filter(
-      (quality) => quality !== 'withdrawn' && quality !== 'manual' && quality !== 'good',
-    ).map((quality) => choice(quality, quality)),
+    choices: [
+      ...QUALITIES.filter(
+        (quality) => quality !== 'withdrawn' && quality !== 'manual' && quality !== 'good',
+      ).map((quality) => choice(quality, quality)),
+      choice('ok', 'nothing is wrong: the number beside it counts'),
+      choice('on', 'switched on'),
+    ],
   })
 }
 

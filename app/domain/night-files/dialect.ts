@@ -1,5 +1,6 @@
 import type { Separator, SourceProfile, TimeFormat } from '../schemas/source-profile.ts'
 import type { ChannelBook } from './channel-names.ts'
+import { hasDecimalCommas, joinDecimalCommas } from './comma-pairs.ts'
 import { refuseMarkup } from './content-kind.ts'
 import { splitLoosely } from './fields.ts'
 import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
@@ -16,6 +17,8 @@ import type { ZoneClock } from './zones.ts'
 export interface Dialect {
   separator: Separator
   decimalMark: '.' | ','
+  /** Fields are cut at commas and numbers hold commas too: cells have to be joined. */
+  joinsCommas: boolean
   layout: 'wide' | 'long'
   columns: HeaderColumn[]
   headerLine: number
@@ -86,7 +89,13 @@ export function settleDialect(
       expected: 'at least one row of readings under the header',
       mend: 'The logger wrote nothing this night, or the file was cut. Fetch it again; this counts as no data received.',
     }
-  const decimalMark = settleDecimalMark(rows, columns, layout, separator, profile, questions)
+  const joinsCommas = separator === ',' && hasDecimalCommas(rows, columns.length)
+  if (joinsCommas)
+    for (const row of rows) {
+      const joined = joinDecimalCommas(row.fields, columns.length)
+      if (joined?.kind === 'one') row.fields = joined.fields
+    }
+  const decimalMark = settleDecimalMark(joinsCommas, rows, columns, layout, separator, profile, questions)
   const time = settleTime(
     { lines: head, columns, rows, headerLine: headerLine.line, separator, decimalMark },
     profile,
@@ -97,6 +106,7 @@ export function settleDialect(
   return {
     separator,
     decimalMark,
+    joinsCommas,
     layout,
     columns,
     headerLine: headerLine.line,
@@ -109,6 +119,7 @@ export function settleDialect(
 }
 
 function settleDecimalMark(
+  joinsCommas: boolean,
   rows: Dialect['rows'],
   columns: readonly HeaderColumn[],
   layout: 'wide' | 'long',
@@ -117,7 +128,7 @@ function settleDecimalMark(
   questions: QuestionList,
 ): '.' | ',' {
   // In a file cut at commas no unquoted number can hold one.
-  if (separator === ',' && profile.decimalMark !== ',') return '.'
+  if (separator === ',' && profile.decimalMark !== ',' && !joinsCommas) return '.'
   const value = layout === 'long' ? columns.findIndex(({ role }) => role === 'value') : -1
   const sure: Record<'.' | ',', number> = { '.': 0, ',': 0 }
   let doubtful: { text: string; line: number; column: number } | null = null

@@ -26,3 +26,5 @@ export const EARLIEST_MS = Date.UTC(2011, 0, 1)
 export const GAP_PERIODS = 3
 /** Steps of a small plot at most; the steps double in width when a file needs more. */
 export const SKETCH_STEPS = 96
+/** Equal figures in a row after which a gauge is pointed out as perhaps stuck: vacuum gauges are noisier than that. */
+export const STUCK_ROWS = 60

@@ -1,6 +1,7 @@
 import { QUALITIES, type Quality } from '../readings.ts'
 import { MAX_QUESTIONS } from './limits.ts'
 import type { Answer, Candidate, Choice, Question } from './types.ts'
+import type { WordMeaning } from './words.ts'
 
 export function choice(value: string, label: string, candidates: Candidate[] = []): Choice {
   return { value, label, candidates }
@@ -53,10 +54,10 @@ export class QuestionList {
   }
 
   /** Meanings of words that came as answers. */
-  words(): Record<string, Quality> {
-    const words: Record<string, Quality> = {}
+  words(): Record<string, WordMeaning> {
+    const words: Record<string, WordMeaning> = {}
     for (const [id, choice] of this.#answers) {
-      const quality = QUALITIES.find((known) => known === choice)
+      const quality = [...QUALITIES, 'ok' as const, 'on' as const].find((known) => known === choice)
       if (id.startsWith('unknown-word:') && quality !== undefined)
         words[id.slice('unknown-word:'.length)] = quality
     }
@@ -75,7 +76,28 @@ export class QuestionList {
     this.#blocked = true
   }
 
+  /** Numbers that a person said are no measured values. */
+  floors(): { value: number; quality: Quality }[] {
+    return Array.from(this.#answers).flatMap(([id, choice]) =>
+      id.startsWith('floor:') ? (floorOf(choice) ?? []) : [],
+    )
+  }
+
   list(): Question[] {
     return Array.from(this.#asked.values())
   }
+}
+
+const FLOOR = 'under-range:'
+
+/** The answer that a number in a file is its lowest figure and no measured value. */
+export function floorChoice(value: number): string {
+  return `${FLOOR}${value}`
+}
+
+/** The number of such an answer as a sentinel; null for another answer. */
+export function floorOf(choice: string): { value: number; quality: Quality } | null {
+  if (!choice.startsWith(FLOOR)) return null
+  const value = Number(choice.slice(FLOOR.length))
+  return Number.isFinite(value) ? { value, quality: 'under-range' } : null
 }

@@ -4,6 +4,7 @@ import { ChannelBook } from './channel-names.ts'
 import { refuseBinary } from './content-kind.ts'
 import { type Dialect, settleDialect } from './dialect.ts'
 import { type SniffedEncoding, StreamDecoder, sniffEncoding } from './encoding.ts'
+import { askFloors } from './floors.ts'
 import { HEAD_CHARS, HEAD_LINES, MAX_LINE_CHARS } from './limits.ts'
 import { LineCounter, LineSplitter, NulScanner } from './lines.ts'
 import { choice, QuestionList, question } from './questions.ts'
@@ -225,6 +226,7 @@ class Reader implements NightFileReader {
     if (this.#refusal === null && this.#sink.total === 0 && this.#questions.isWaiting())
       this.#questions.blockAll()
     this.#askBasis()
+    if (this.#body !== null) askFloors(this.#sink.stuck(), this.#body.numbers, this.#questions)
     const blocked = this.#questions.isBlocked()
     if (this.#refusal === null && !blocked && this.#sink.total === 0) this.#refusal = this.#noRows()
     const counted = this.#counter?.total() ?? 0

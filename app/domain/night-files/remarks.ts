@@ -132,6 +132,13 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
         { channel, line },
       ),
     )
+  for (const { channel, count, line, text } of sink.stuck())
+    remarks.push(
+      remark('stuck', count, `${channel} shows ${text} in ${count} rows one after the other. Is it stuck?`, {
+        channel,
+        line,
+      }),
+    )
   remarks.push(...stoppedChannels(sink))
   return remarks
 }

@@ -1,5 +1,5 @@
-import { isUsable, MARKS, type Quantity, qualityWord } from '../readings.ts'
-import { BATCH_SIZE, DUPLICATE_WINDOW, GAP_PERIODS, MAX_GAPS, MAX_SEQ } from './limits.ts'
+import { isUsable, MARKS, QUANTITIES, type Quantity, qualityWord } from '../readings.ts'
+import { BATCH_SIZE, DUPLICATE_WINDOW, GAP_PERIODS, MAX_GAPS, MAX_SEQ, STUCK_ROWS } from './limits.ts'
 import { SketchBins } from './sketch.ts'
 import { detach } from './text.ts'
 import type { BatchChannel, ChannelSummary, Gap, ReadingBatch } from './types.ts'
@@ -36,6 +36,27 @@ interface ChannelState {
   /** Steps back of an energy meter, and the line of the first. */
   meterSteps: number
   meterLine: number
+  run: EqualRun
+}
+
+/** Equal good values one after the other. */
+interface EqualRun {
+  value: number
+  count: number
+  line: number
+  /** The longest so far that is worth pointing out. */
+  longest: StuckRun | null
+}
+
+/** A channel that showed one and the same figure for long. */
+export interface StuckRun {
+  channel: string
+  value: number
+  text: string
+  count: number
+  line: number
+  /** Nothing lower stands in the file. */
+  lowest: boolean
 }
 
 function newBatch(): ReadingBatch {
@@ -110,6 +131,7 @@ export class ReadingSink {
       bins: new SketchBins(this.periodMs ?? 60_000),
       meterSteps: 0,
       meterLine: 0,
+      run: { value: Number.NaN, count: 0, line: 0, longest: null },
     })
     return index
   }
@@ -230,6 +252,35 @@ export class ReadingSink {
       summary.maxMs = atMs
     }
     state.bins.add(atMs, value)
+    if (QUANTITIES[summary.quantity].logarithmic) this.#followRun(state, reading)
+  }
+
+  #followRun({ run, summary }: ChannelState, { value, line, text }: OutReading): void {
+    if (value !== run.value) {
+      run.value = value
+      run.count = 1
+      run.line = line
+      return
+    }
+    run.count += 1
+    if (run.count < STUCK_ROWS || run.count <= (run.longest?.count ?? 0)) return
+    if (run.longest?.line === run.line) run.longest.count = run.count
+    else
+      run.longest = {
+        channel: summary.name,
+        value,
+        text: detach(text.trim()),
+        count: run.count,
+        line: run.line,
+        lowest: false,
+      }
+  }
+
+  /** Channels that showed one and the same figure for long. */
+  stuck(): StuckRun[] {
+    return this.#states.flatMap(({ run, summary }) =>
+      run.longest === null ? [] : [{ ...run.longest, lowest: run.longest.value === summary.min }],
+    )
   }
 
   /** Energy meters that went back inside the file: they counted over their last figure, or were exchanged. */

@@ -165,6 +165,7 @@ export type QuestionKind =
   | 'unknown-word'
   | 'start'
   | 'basis'
+  | 'floor'
 
 export interface Question extends Finding {
   /** Stable for the same file: `unit`, `unknown-channel:HC99Z` … */
@@ -199,6 +200,7 @@ export type RemarkKind =
   | 'spaced-exponent'
   | 'meter-restart'
   | 'unit-change'
+  | 'stuck'
 
 /** Something a person should look at before taking the file in. */
 export interface Remark {
