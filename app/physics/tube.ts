@@ -50,11 +50,20 @@ export interface TubeMesh {
 const SAME_POINT_M = 1e-6
 
 /**
- * Builds the mesh with cells of at most `cellM`. Cells much shorter than the diameter say nothing more: diffusion
- * along a tube is itself a picture with a resolution of about one diameter.
+ * Builds the mesh with cells of at most `cellM`. Diffusion along a tube is itself a picture with a resolution of about
+ * one diameter, so shorter cells are refused (points that stand closer still get their nodes). `finerThanBore` lifts
+ * that, to show how a solution converges.
  */
-export function buildMesh(branches: readonly TubeBranch[], cellM: number): TubeMesh {
+export function buildMesh(
+  branches: readonly TubeBranch[],
+  cellM: number,
+  options: { readonly finerThanBore?: boolean } = {},
+): TubeMesh {
   requirePositive('cellM', cellM)
+  const widestM = Math.max(0, ...branches.flatMap(({ sections }) => sections.map((one) => one.diameterM)))
+  if (!options.finerThanBore && cellM < widestM) {
+    throw new PhysicsError('cellM', cellM, `a length of at least the diameter, ${widestM} m`)
+  }
   requireWithin('number of branches', branches.length, 1, 10_000)
   const draft = newDraft()
   const names = new Map<string, number>()

@@ -93,5 +93,11 @@ function seeded(seed: number): () => number {
 }
 
 if (process.argv[1]?.endsWith('forecast-coverage.ts')) {
-  console.log(JSON.stringify(forecastCoverage(500, 20261109), null, 2))
+  const coverage = forecastCoverage(500, 20261109)
+  const share = coverage.inside / coverage.forecasts
+  console.log(JSON.stringify(coverage, null, 2))
+  console.log(
+    `The 80 % range held in ${(100 * share).toFixed(1)} % of ${coverage.forecasts} forecasts; 75 to 85 wanted`,
+  )
+  if (share < 0.75 || share > 0.85 || coverage.forecasts < 450) process.exitCode = 1
 }

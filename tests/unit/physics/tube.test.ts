@@ -69,5 +69,12 @@ describe('mesh', () => {
       'tube on both sides of every valve',
     )
     expect(() => buildMesh([line, { ...spur, name: 'line' }], 10)).toThrow('a name used once')
+    expect(() => buildMesh([line], 0.3)).toThrow(
+      'cellM is 0.3; expected a length of at least the diameter, 0.6 m',
+    )
+    expect(buildMesh([line], 0.3, { finerThanBore: true }).count).toBeGreaterThan(1000)
+    expect(() => buildMesh([{ name: 'bent', sections: [{ lengthM: 10, diameterM: -1 }] }], 10)).toThrow(
+      'diameterM is -1',
+    )
   })
 })
