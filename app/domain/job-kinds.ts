@@ -8,6 +8,8 @@ export const JOB_PAYLOADS = {
   'purge-sessions': z.strictObject({}),
   /** In the demo: posts what the loggers of heated segments have to say since the last time. */
   'feed-demo': z.strictObject({}),
+  /** Makes rollups anew where readings have changed. */
+  'roll-up': z.strictObject({}),
   /** Deletes finished jobs, and uploads that broke off, once nobody will ask about them. */
   'purge-leftovers': z.strictObject({}),
 } as const satisfies Record<string, z.ZodType>
@@ -29,6 +31,8 @@ export interface ScheduledTask {
 
 export const SCHEDULED_TASKS: readonly ScheduledTask[] = [
   { name: 'partition-readings', kind: 'partition-readings', everySeconds: 6 * 3600 },
+  // Whoever takes a file in asks for it at once; this is for live posts, typed readings and what a stop has left.
+  { name: 'roll-up', kind: 'roll-up', everySeconds: 300 },
   { name: 'purge-sessions', kind: 'purge-sessions', everySeconds: 3600 },
   { name: 'purge-leftovers', kind: 'purge-leftovers', everySeconds: 24 * 3600 },
 ]

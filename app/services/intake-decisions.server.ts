@@ -27,6 +27,7 @@ import type { Answer, ReadOut } from '../domain/night-files/types.ts'
 import { heldAlready } from './intake.server.ts'
 import { readingRules, siteMinute, storedReport } from './intake-reading.server.ts'
 import { incomingRows, type ReadAgain } from './intake-rows.server.ts'
+import { enqueue } from './jobs.server.ts'
 import { writeRecord } from './record.server.ts'
 import { markOutOfDate } from './revisions.server.ts'
 import { getSite } from './site.server.ts'
@@ -102,6 +103,7 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
           decidedBy: actor.personId,
           decidedAt: now,
         })
+        await enqueue(inside, { kind: 'roll-up', payload: {} })
         await writeRecord(inside, {
           at: now,
           actor,

@@ -24,6 +24,7 @@ import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand, may } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
 import { IMPORT_STATE_LABELS } from '../domain/imports.ts'
+import { enqueue } from './jobs.server.ts'
 import { writeRecord } from './record.server.ts'
 import { markOutOfDate } from './revisions.server.ts'
 
@@ -189,6 +190,7 @@ export async function withdrawImport(db: Db, actor: Actor, now: Date, importId: 
       now,
       reason: `Import ${importId} (${seen.fileName}) was withdrawn: ${wish.reason}`,
     })
+    await enqueue(inside, { kind: 'roll-up', payload: {} })
     await updateWish(inside, wish.id, {
       state: 'done',
       openImportId: null,

@@ -34,6 +34,7 @@ function handlers(work: JobHandlers['purge-sessions']): JobHandlers {
     'feed-demo': unexpected,
     'purge-sessions': work,
     'partition-readings': unexpected,
+    'roll-up': unexpected,
     'purge-leftovers': unexpected,
   }
 }

@@ -25,6 +25,7 @@ function startWorker(handlers: Partial<JobHandlers> = {}) {
       'partition-readings': quiet,
       'purge-leftovers': quiet,
       'purge-sessions': quiet,
+      'roll-up': quiet,
       ...handlers,
     },
   })
@@ -41,7 +42,7 @@ test('the worker does what the schedule asks for, keeps the clock and hands the 
   await vi.waitFor(
     async () => {
       const rows = await db.select({ state: job.state }).from(job)
-      expect(rows.map(({ state }) => state)).toEqual(['done', 'done', 'done'])
+      expect(rows.map(({ state }) => state)).toEqual(['done', 'done', 'done', 'done'])
     },
     { timeout: 10_000 },
   )
@@ -56,7 +57,7 @@ test('the worker does what the schedule asks for, keeps the clock and hands the 
 test('a worker that starts after a night off goes on from the time last seen', async () => {
   await createClock(db, { baseMachineAt: after(new Date(), -43_200) })
   const worker = startWorker()
-  await vi.waitFor(async () => expect(await db.select().from(job)).toHaveLength(3), { timeout: 10_000 })
+  await vi.waitFor(async () => expect(await db.select().from(job)).toHaveLength(4), { timeout: 10_000 })
   worker.stop()
   await worker.running
   const [clock] = await db.select().from(productClock)
@@ -130,7 +131,7 @@ test('the real handlers do every job of the schedule', async () => {
     { ...row, tokenHash: 'idle', lastSeenAt: after(machine, -13 * 3600), expiresAt: after(machine, 3600) },
   ])
   await runSchedule(db, 'test', MORNING, { machine })
-  expect(await drainJobs(db, JOB_HANDLERS)).toEqual({ done: 3, again: 0, failed: 0, lost: 0 })
+  expect(await drainJobs(db, JOB_HANDLERS)).toEqual({ done: 4, again: 0, failed: 0, lost: 0 })
   const left = await db.select({ tokenHash: session.tokenHash }).from(session)
   expect(left).toEqual([{ tokenHash: 'live' }])
 })

@@ -6,22 +6,16 @@ import { and, asc, eq, gt, inArray, isNull, lt, or, type SQL, sql } from 'drizzl
 import {
   type Quality,
   type Quantity,
-  qualityCode,
   qualityWord,
   UNTIMED_MARKS,
   USABLE_QUALITIES,
 } from '../../domain/readings.ts'
 import type { PositionKind } from '../../domain/register.ts'
+import { bucketStart, levelFor, wholeBuckets } from '../../domain/rollups.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { channel, channelMap, fitting, importFile, position, reading, source } from '../schema/index.ts'
-
-const USABLE_CODES = USABLE_QUALITIES.map(qualityCode)
-/** SQL for "may be used as a measured value". */
-const usable: SQL = sql`${reading.quality} IN (${sql.join(
-  USABLE_CODES.map((code) => sql`${code}`),
-  sql`, `,
-)})
-  AND (${reading.marks} & ${UNTIMED_MARKS}) = 0 AND ${reading.value} IS NOT NULL`
+import { listDue } from './rollups.server.ts'
+import { usable } from './usable.server.ts'
 
 export interface PositionRow {
   id: number
@@ -198,45 +192,84 @@ export interface Bin {
   count: number
 }
 
+interface BinsAsked {
+  channelIds: readonly number[]
+  from: Date
+  to: Date
+  binSeconds: number
+  /** Geometric means, of positive values only. */
+  logarithmic: boolean
+}
+
+/** Stretches of changed readings beyond which it is simpler to read all from the readings. */
+const MOST_DUE = 300
+
 /**
  * Usable readings of channels in equal bins over [from, to): minimum, maximum, mean and count. Bins without usable
- * readings are absent: a gap stays a gap.
+ * readings are absent: a gap stays a gap. Where bins are whole multiples of a rollup's length, counted from 1970 in
+ * UTC, they are made of rollups, which is what makes long stretches fast; what has changed since they were made, and
+ * the rest behind the last whole one, is read from the readings.
  */
-export async function binReadings(
-  db: DbOrTx,
-  input: { channelIds: readonly number[]; from: Date; to: Date; binSeconds: number; logarithmic: boolean },
-): Promise<Bin[]> {
+export async function binReadings(db: DbOrTx, input: BinsAsked): Promise<Bin[]> {
   if (input.channelIds.length === 0) return []
-  const binNo = sql<number>`FLOOR(TIMESTAMPDIFF(SECOND, ${input.from}, ${reading.at}) / ${input.binSeconds})`
-  const mean = input.logarithmic
-    ? sql<number>`EXP(AVG(LN(${reading.value})))`
-    : sql<number>`AVG(${reading.value})`
-  const positive = input.logarithmic ? sql`${reading.value} > 0` : undefined
-  const rows = await db
-    .select({
-      channelId: reading.channelId,
-      bin: binNo.mapWith(Number).as('bin_no'),
-      min: sql`MIN(${reading.value})`.mapWith(Number),
-      max: sql`MAX(${reading.value})`.mapWith(Number),
-      mean: mean.mapWith(Number),
-      count: sql`COUNT(*)`.mapWith(Number),
-    })
-    .from(reading)
-    .where(
-      and(
-        inArray(reading.channelId, [...input.channelIds]),
-        sql`${reading.at} >= ${input.from}`,
-        lt(reading.at, input.to),
-        usable,
-        positive,
-      ),
+  const { binSeconds, from, to } = input
+  const level = levelFor(from.getTime(), binSeconds)
+  const parts = level === null ? null : await rollupParts(db, input, level)
+  const rows = sql`SELECT channel_id, at, value AS low, value AS high, ${input.logarithmic ? sql`LN(value)` : sql`value`} AS total, 1 AS n
+    FROM reading WHERE ${usable}${input.logarithmic ? sql` AND value > 0` : sql``} AND channel_id IN ${input.channelIds}`
+  const source =
+    parts === null
+      ? sql`${rows} AND at >= ${from} AND at < ${to}`
+      : sql.join([parts.rolled, ...parts.direct.map((where) => sql`${rows} AND ${where}`)], sql` UNION ALL `)
+  const [found] =
+    await db.execute(sql`SELECT channel_id, FLOOR(TIMESTAMPDIFF(SECOND, ${from}, at) / ${binSeconds}) AS bin,
+      MIN(low) AS low, MAX(high) AS high, SUM(total) AS total, SUM(n) AS n
+    FROM (${source}) AS pieces GROUP BY channel_id, bin ORDER BY channel_id, bin`)
+  return (
+    found as unknown as Record<'channel_id' | 'bin' | 'low' | 'high' | 'total' | 'n', string | number>[]
+  ).map((row) => {
+    const mean = Number(row.total) / Number(row.n)
+    return {
+      channelId: row.channel_id as number,
+      atMs: from.getTime() + Number(row.bin) * binSeconds * 1000,
+      min: row.low as number,
+      max: row.high as number,
+      mean: input.logarithmic ? Math.exp(mean) : mean,
+      count: Number(row.n),
+    }
+  })
+}
+
+/** What is read from rollups and what from readings; null when too much has changed for that to be worth while. */
+async function rollupParts(
+  db: DbOrTx,
+  { channelIds, from, to, logarithmic }: BinsAsked,
+  level: number,
+): Promise<{ rolled: SQL; direct: SQL[] } | null> {
+  const end = new Date(Math.max(from.getTime(), bucketStart(to.getTime(), level)))
+  // First what is due, then the rollups: one that is made anew in between is left out, and none is taken that is old.
+  const due = await listDue(db, channelIds, from, end)
+  const changed = channelIds.flatMap((channelId) => {
+    const own = due.filter((one) => one.channelId === channelId)
+    return wholeBuckets(
+      own.map((one) => ({ fromMs: one.from.getTime(), lastMs: one.last.getTime() })),
+      level,
+    ).map(
+      (span) =>
+        sql`(channel_id = ${channelId} AND at >= ${new Date(Math.max(span.fromMs, from.getTime()))} AND at < ${new Date(Math.min(span.toMs, end.getTime()))})`,
     )
-    .groupBy(reading.channelId, sql`bin_no`)
-    .orderBy(reading.channelId, sql`bin_no`)
-  return rows.map(({ bin, ...row }) => ({
-    ...row,
-    atMs: input.from.getTime() + bin * input.binSeconds * 1000,
-  }))
+  })
+  if (changed.length > MOST_DUE) return null
+  const figures = logarithmic
+    ? sql`min_positive AS low, max_value AS high, sum_ln AS total, positive AS n`
+    : sql`min_value AS low, max_value AS high, sum_value AS total, usable AS n`
+  const some = logarithmic ? sql`positive > 0` : sql`usable > 0`
+  const anyOf = sql`(${sql.join(changed, sql` OR `)})`
+  return {
+    rolled: sql`SELECT channel_id, at, ${figures} FROM rollup WHERE channel_id IN ${channelIds} AND level_seconds = ${level}
+      AND at >= ${from} AND at < ${end} AND ${some}${changed.length === 0 ? sql`` : sql` AND NOT ${anyOf}`}`,
+    direct: [sql`at >= ${end} AND at < ${to}`, ...(changed.length === 0 ? [] : [anyOf])],
+  }
 }
 
 /** Readings of one channel as stored, oldest first, for lists and downloads. */

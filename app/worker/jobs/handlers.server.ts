@@ -4,10 +4,12 @@ import { feedDemo } from './feeder.server.ts'
 import { partitionReadings } from './partition-readings.server.ts'
 import { purgeLeftovers } from './purge-leftovers.server.ts'
 import { purgeEndedSessions } from './purge-sessions.server.ts'
+import { rollUp } from './rollup.server.ts'
 
 export const JOB_HANDLERS: JobHandlers = {
   'feed-demo': feedDemo,
   'partition-readings': partitionReadings,
   'purge-sessions': purgeEndedSessions,
   'purge-leftovers': purgeLeftovers,
+  'roll-up': rollUp,
 }

@@ -1,0 +1,143 @@
+/** Rollups of readings: made anew where readings have changed, and read in place of them. */
+import { and, asc, eq, gte, inArray, lt, type SQL, sql } from 'drizzle-orm'
+import { QUALITIES, qualityCode } from '../../domain/readings.ts'
+import { ROLLUP_LEVELS, type Span } from '../../domain/rollups.ts'
+import type { DbOrTx } from '../client.server.ts'
+import { channel, reading, rollup, rollupDue } from '../schema/index.ts'
+import { usable } from './usable.server.ts'
+
+/** Qualities that a stored reading may have: withdrawn ones are not among the readings any more. */
+const COUNTED = QUALITIES.filter((quality) => quality !== 'withdrawn').map((quality) => ({
+  code: qualityCode(quality),
+  column: sql.raw(`n_${quality.replaceAll('-', '_')}`),
+}))
+const QUALITY_COLUMNS = sql.join(
+  COUNTED.map(({ column }) => column),
+  sql`, `,
+)
+
+export interface DueStretch {
+  id: number
+  channelId: number
+  from: Date
+  /** The last instant that has changed. */
+  last: Date
+}
+
+const dueColumns = {
+  id: rollupDue.id,
+  channelId: rollupDue.channelId,
+  from: rollupDue.fromAt,
+  last: rollupDue.toAt,
+}
+
+/** A channel whose rollups are due, that for longest; null when all are made. */
+export async function findDueChannel(db: DbOrTx): Promise<number | null> {
+  const [row] = await db
+    .select({ channelId: rollupDue.channelId })
+    .from(rollupDue)
+    .orderBy(asc(rollupDue.id))
+    .limit(1)
+  return row?.channelId ?? null
+}
+
+/** What is due of some channels and touches [from, to). */
+export function listDue(
+  db: DbOrTx,
+  channelIds: readonly number[],
+  from: Date,
+  to: Date,
+): Promise<DueStretch[]> {
+  return db
+    .select(dueColumns)
+    .from(rollupDue)
+    .where(
+      and(inArray(rollupDue.channelId, [...channelIds]), lt(rollupDue.fromAt, to), gte(rollupDue.toAt, from)),
+    )
+}
+
+/**
+ * Locks what is due of a channel, oldest first. The channel itself is locked before that: of two that make rollups of
+ * one channel, the second begins with what the first has left.
+ */
+export async function lockDue(tx: DbOrTx, channelId: number, limit: number): Promise<DueStretch[]> {
+  await tx.select({ id: channel.id }).from(channel).where(eq(channel.id, channelId)).for('update')
+  return tx
+    .select(dueColumns)
+    .from(rollupDue)
+    .where(eq(rollupDue.channelId, channelId))
+    .orderBy(asc(rollupDue.id))
+    .limit(limit)
+    .for('update')
+}
+
+export async function deleteDue(tx: DbOrTx, ids: readonly number[]): Promise<void> {
+  await tx.delete(rollupDue).where(inArray(rollupDue.id, [...ids]))
+}
+
+export async function insertDue(
+  tx: DbOrTx,
+  rows: readonly { channelId: number; from: Date; last: Date }[],
+): Promise<void> {
+  if (rows.length === 0) return
+  await tx
+    .insert(rollupDue)
+    .values(rows.map(({ channelId, from, last }) => ({ channelId, fromAt: from, toAt: last })))
+}
+
+/** Start of the bucket that an instant falls in. */
+function bucket(at: SQL | typeof reading.at, levelSeconds: number): SQL {
+  return sql`'1970-01-01' + INTERVAL FLOOR(TIMESTAMPDIFF(SECOND, '1970-01-01', ${at}) / ${levelSeconds}) * ${levelSeconds} SECOND`
+}
+
+/** Makes the rollups of the shortest level over whole buckets of it from the readings. */
+export async function rollUpReadings(tx: DbOrTx, channelId: number, span: Span): Promise<void> {
+  const [level] = ROLLUP_LEVELS
+  const [from, to] = [new Date(span.fromMs), new Date(span.toMs)]
+  await deleteSpan(tx, channelId, level, span)
+  const counts = sql.join(
+    COUNTED.map(({ code }) => sql`SUM(${reading.quality} = ${code})`),
+    sql`, `,
+  )
+  await tx.execute(sql`INSERT INTO rollup (channel_id, level_seconds, at, usable, min_value, max_value, sum_value,
+      positive, min_positive, sum_ln, ${QUALITY_COLUMNS})
+    SELECT channel_id, ${level}, ${bucket(reading.at, level)} AS bucket, SUM(${usable}),
+      MIN(IF(${usable}, value, NULL)), MAX(IF(${usable}, value, NULL)), SUM(IF(${usable}, value, 0)),
+      SUM(${usable} AND value > 0), MIN(IF(${usable} AND value > 0, value, NULL)),
+      SUM(IF(${usable} AND value > 0, LN(value), 0)), ${counts}
+    FROM reading WHERE channel_id = ${channelId} AND at >= ${from} AND at < ${to} GROUP BY bucket`)
+}
+
+/** Makes the rollups of a longer level over whole buckets of it from those of the shortest. */
+export async function rollUpRollups(
+  tx: DbOrTx,
+  channelId: number,
+  levelSeconds: number,
+  span: Span,
+): Promise<void> {
+  const [shortest] = ROLLUP_LEVELS
+  await deleteSpan(tx, channelId, levelSeconds, span)
+  const counts = sql.join(
+    COUNTED.map(({ column }) => sql`SUM(${column})`),
+    sql`, `,
+  )
+  await tx.execute(sql`INSERT INTO rollup (channel_id, level_seconds, at, usable, min_value, max_value, sum_value,
+      positive, min_positive, sum_ln, ${QUALITY_COLUMNS})
+    SELECT channel_id, ${levelSeconds}, ${bucket(sql`at`, levelSeconds)} AS bucket, SUM(usable), MIN(min_value),
+      MAX(max_value), SUM(sum_value), SUM(positive), MIN(min_positive), SUM(sum_ln), ${counts}
+    FROM rollup WHERE channel_id = ${channelId} AND level_seconds = ${shortest} AND at >= ${new Date(span.fromMs)}
+      AND at < ${new Date(span.toMs)} GROUP BY bucket`)
+}
+
+async function deleteSpan(tx: DbOrTx, channelId: number, levelSeconds: number, span: Span): Promise<void> {
+  await tx
+    .delete(rollup)
+    .where(
+      and(
+        eq(rollup.channelId, channelId),
+        eq(rollup.levelSeconds, levelSeconds),
+        gte(rollup.at, new Date(span.fromMs)),
+        lt(rollup.at, new Date(span.toMs)),
+      ),
+    )
+}

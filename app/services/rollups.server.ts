@@ -1,0 +1,63 @@
+/**
+ * Keeps the rollups of readings. Whatever changes readings says in the same transaction which stretch it has changed;
+ * the worker makes the rollups of such stretches anew, and until it has, they are read from the readings themselves.
+ */
+import type { Db } from '../db/client.server.ts'
+import {
+  deleteDue,
+  findDueChannel,
+  insertDue,
+  lockDue,
+  rollUpReadings,
+  rollUpRollups,
+} from '../db/queries/rollups.server.ts'
+import { tx } from '../db/transaction.server.ts'
+import { ROLLUP_LEVELS, wholeBuckets } from '../domain/rollups.ts'
+
+/** Stretches of one channel that are taken in one transaction. */
+const AT_ONCE = 500
+/** As much of a channel as one transaction reads; the rest stays due. */
+const LONGEST_MS = 31 * 86_400_000
+
+/**
+ * Makes the rollups of everything that is due, channel by channel, until nothing is or the signal comes.
+ *
+ * @returns how many transactions that took
+ */
+export async function makeRollups(db: Db, signal: AbortSignal): Promise<number> {
+  for (let count = 0; ; count += 1) {
+    if (signal.aborted) return count
+    const channelId = await findDueChannel(db)
+    if (channelId === null) return count
+    await rollUpChannel(db, channelId)
+  }
+}
+
+async function rollUpChannel(db: Db, channelId: number): Promise<void> {
+  const [shortest, ...longer] = ROLLUP_LEVELS
+  await tx(db, async (inside) => {
+    const due = await lockDue(inside, channelId, AT_ONCE)
+    if (due.length === 0) return
+    const now: { fromMs: number; lastMs: number }[] = []
+    const later: { channelId: number; from: Date; last: Date }[] = []
+    for (const { from, last } of due) {
+      const end = Math.min(last.getTime(), from.getTime() + LONGEST_MS)
+      now.push({ fromMs: from.getTime(), lastMs: end })
+      if (end < last.getTime()) later.push({ channelId, from: new Date(end), last })
+    }
+    const spans = wholeBuckets(now, shortest)
+    for (const span of spans) await rollUpReadings(inside, channelId, span)
+    for (const level of longer) {
+      const wider = wholeBuckets(
+        spans.map(({ fromMs, toMs }) => ({ fromMs, lastMs: toMs - 1 })),
+        level,
+      )
+      for (const span of wider) await rollUpRollups(inside, channelId, level, span)
+    }
+    await deleteDue(
+      inside,
+      due.map(({ id }) => id),
+    )
+    await insertDue(inside, later)
+  })
+}
