@@ -4,6 +4,7 @@ import { binReadings, listMapSpans, listSourceEnds } from '../db/queries/reading
 import { listLimits, listLines } from '../db/queries/segments.server.ts'
 import { expectedNight, type NightFileStatus } from '../domain/expected-files.ts'
 import type { Quality } from '../domain/readings.ts'
+import type { PumpKind } from '../domain/register.ts'
 import {
   type FacilityFigures,
   facilityFigures,
@@ -42,6 +43,8 @@ export interface LineSegment {
   limitPa: number | null
   questions: Question[]
   gauges: LineGauge[]
+  /** Pumps at work on the segment, in order along it. */
+  pumps: { tag: string; kind: PumpKind; chainageM: number }[]
   /** Pressure the model expects along the segment now (nitrogen-equivalent), by metres from the segment's start; null without a model for this state. */
   predicted: { offsetM: number; pa: number }[] | null
 }
@@ -97,7 +100,7 @@ export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
 }
 
 function toLineSegment(entry: StandingSegment, at: Date): LineSegment {
-  const { segment, standing, gauges, target, limit } = entry
+  const { segment, standing, gauges, pumps, target, limit } = entry
   return {
     tag: segment.tag,
     lineCode: segment.lineCode,
@@ -121,6 +124,9 @@ function toLineSegment(entry: StandingSegment, at: Date): LineSegment {
     limitPa: limit?.value ?? null,
     questions: standing.questions,
     gauges: gauges.map(toLineGauge),
+    pumps: pumps
+      .map(({ tag, kind, offsetM }) => ({ tag, kind, chainageM: segment.startM + offsetM }))
+      .sort((a, b) => a.chainageM - b.chainageM),
     predicted: predictedProfile(entry, at),
   }
 }
@@ -169,7 +175,10 @@ export async function readTrends(db: Db, at: Date): Promise<Trend[]> {
     const cross = gauges.find(({ position }) => position.kind === 'hot-cathode' && position.tag.endsWith('B'))
     return cross === undefined ? [] : [{ tag: segment.tag, positionId: cross.position.id }]
   })
-  const from = new Date(at.getTime() - TREND_DAYS * 86_400_000)
+  const steps = (TREND_DAYS * 86_400) / TREND_BIN_SECONDS
+  // Whole half days of UTC, which is what rollups are kept for; the last one is not over yet.
+  const stepMs = TREND_BIN_SECONDS * 1000
+  const from = new Date((Math.floor(at.getTime() / stepMs) + 1 - steps) * stepMs)
   const spans = await listMapSpans(
     db,
     crosses.map(({ positionId }) => positionId),
@@ -183,7 +192,6 @@ export async function readTrends(db: Db, at: Date): Promise<Trend[]> {
     binSeconds: TREND_BIN_SECONDS,
     logarithmic: true,
   })
-  const steps = (TREND_DAYS * 86_400) / TREND_BIN_SECONDS
   return crosses.map(({ tag, positionId }) => {
     const values = new Array<number | null>(steps).fill(null)
     for (const span of spans.filter((candidate) => candidate.positionId === positionId)) {

@@ -13,6 +13,7 @@ import {
   axisValues,
   drawnReadings,
   isOverTarget,
+  pumpWords,
   type StripLine,
   type StripSegment,
   segmentWords,
@@ -250,6 +251,29 @@ function ChainageAxis({ line, x, main }: { line: StripLine; x: Scene['x']; main:
   )
 }
 
+/** Hangs below the tube where the pump sits; inside the link, so that it can be pointed at and is no hole in it. */
+function PumpMark({
+  pump,
+  segment,
+  scene,
+}: {
+  pump: StripSegment['pumps'][number]
+  segment: StripSegment
+  scene: Scene
+}) {
+  const x = scene.x(segment.lineCode, pump.chainageM)
+  const y = TUBE_TOP + TUBE
+  const mobile = pump.kind !== 'getter-ion'
+  return (
+    <path
+      d={`M${x} ${y}v3M${x - 3.5} ${y + 3}h7v6h-7z`}
+      className={mobile ? 'fill-sheet stroke-ink-2' : 'fill-ink-2 stroke-ink-2'}
+    >
+      <title>{pumpWords(pump)}</title>
+    </path>
+  )
+}
+
 function SegmentLink({ segment, scene, to }: { segment: StripSegment; scene: Scene; to: string }) {
   const [x1, x2] = [scene.x(segment.lineCode, segment.startM), scene.x(segment.lineCode, segment.endM)]
   const plain = segment.state === 'in-service'
@@ -262,6 +286,9 @@ function SegmentLink({ segment, scene, to }: { segment: StripSegment; scene: Sce
         height={TAG_Y + 6 - TOP}
         className="fill-transparent group-hover:fill-ink/5 group-focus-visible:fill-ink/10"
       />
+      {segment.pumps.map((pump) => (
+        <PumpMark key={pump.tag} pump={pump} segment={segment} scene={scene} />
+      ))}
       <text
         x={(x1 + x2) / 2}
         y={TAG_Y}

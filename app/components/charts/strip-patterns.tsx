@@ -82,6 +82,18 @@ export function StripKeys() {
         </KeyShape>
         target
       </li>
+      <li className={key}>
+        <KeyShape>
+          <path d="M9 0v3M5.5 3h7v6h-7z" className="fill-ink-2 stroke-ink-2" />
+        </KeyShape>
+        pump
+      </li>
+      <li className={key}>
+        <KeyShape>
+          <path d="M9 0v3M5.5 3h7v6h-7z" className="fill-sheet stroke-ink-2" />
+        </KeyShape>
+        mobile pump
+      </li>
       {(
         [
           ['soak', 'heated'],

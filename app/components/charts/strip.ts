@@ -1,5 +1,6 @@
 /** What the drawing of the tube says, in words and in choices, apart from how it is drawn. */
 import type { PressureUnit } from '#app/context.ts'
+import { PUMP_KIND_LABELS, type PumpKind } from '#app/domain/register.ts'
 import { SEGMENT_STATES, type SegmentState } from '#app/domain/segment-states.ts'
 import { pressureWords } from '../ui/format-pressure.ts'
 
@@ -19,6 +20,13 @@ interface StripGauge {
   fresh: boolean
 }
 
+interface StripPump {
+  tag: string
+  kind: PumpKind
+  /** Metres along its line. */
+  chainageM: number
+}
+
 export interface StripSegment {
   tag: string
   lineCode: string
@@ -27,6 +35,8 @@ export interface StripSegment {
   state: SegmentState
   targetPa: number | null
   gauges: readonly StripGauge[]
+  /** Pumps at work on it. */
+  pumps: readonly StripPump[]
   /** Expected pressure by metres from the segment's start; null without a model for this state. */
   predicted: readonly { offsetM: number; pa: number }[] | null
 }
@@ -65,7 +75,12 @@ export function isOverTarget({ state, targetPa }: StripSegment, reading: Drawn):
   return reading.fresh && state === 'in-service' && targetPa !== null && reading.pa > targetPa
 }
 
-/** A segment as it is read out: tag, state and each reading. */
+/** A pump as it is named beside its mark. */
+export function pumpWords({ tag, kind }: StripPump): string {
+  return `${tag}, ${PUMP_KIND_LABELS[kind].toLowerCase()}`
+}
+
+/** A segment as it is read out: tag, state, each reading and each pump. */
 export function segmentWords(segment: StripSegment, unit: PressureUnit): string {
   const readings = drawnReadings(segment).map(
     (reading) =>
@@ -75,5 +90,6 @@ export function segmentWords(segment: StripSegment, unit: PressureUnit): string 
     segment.tag,
     SEGMENT_STATES[segment.state].label,
     ...(readings.length === 0 ? ['no reading'] : readings),
+    ...segment.pumps.map((pump) => `pumped by ${pumpWords(pump)}`),
   ].join('; ')
 }

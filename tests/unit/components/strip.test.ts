@@ -10,6 +10,7 @@ function segment(facts: Partial<StripSegment>): StripSegment {
     state: 'in-service',
     targetPa: 2e-7,
     gauges: [],
+    pumps: [],
     predicted: null,
     ...facts,
   }
@@ -49,6 +50,11 @@ describe('a segment in words', () => {
     expect(segmentWords(silent, 'Pa')).toBe(
       'SG-15; In service; HC-15A 3.9 times ten to the minus 8 pascal, old',
     )
+  })
+
+  test('names the pumps at work', () => {
+    const pumps = [{ tag: 'NP-15', kind: 'getter-ion', chainageM: 2300 }] as const
+    expect(segmentWords({ ...silent, pumps }, 'Pa')).toMatch(/, old; pumped by NP-15, getter and ion pump$/)
   })
 
   test('holds the target against segments in service alone', () => {
