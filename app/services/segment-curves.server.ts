@@ -2,6 +2,7 @@
 import type { Db } from '../db/client.server.ts'
 import { listEntries } from '../db/queries/logbook.server.ts'
 import { binReadings, factorAt, listFittingSpans, listMapSpans } from '../db/queries/readings.server.ts'
+import { bucketStart } from '../domain/rollups.ts'
 import { weeklyChange } from '../domain/trend.ts'
 import type { StandingSegment } from './standing.server.ts'
 
@@ -10,6 +11,7 @@ const HISTORY_DAYS = 30
 /** About as many steps as a chart has columns to spare. */
 const STEPS = 360
 const SHORTEST_STEP_S = 60
+const HISTORY_STEP_S = (HISTORY_DAYS * 86_400) / STEPS
 const MARKS_SHOWN = 20
 
 export interface GaugeCurve {
@@ -35,10 +37,15 @@ export interface Curves {
 /** The pump-down since it began while the segment is pumping, else the last thirty days. */
 export async function readCurves(db: Db, { segment, gauges }: StandingSegment, now: Date): Promise<Curves> {
   const pumpDown = segment.state === 'pumping' && segment.since !== null
+  // Thirty days in whole steps of UTC, which is what rollups are kept for.
   const from =
-    pumpDown && segment.since !== null ? segment.since : new Date(now.getTime() - HISTORY_DAYS * DAY_MS)
+    pumpDown && segment.since !== null
+      ? segment.since
+      : new Date(bucketStart(now.getTime() - HISTORY_DAYS * DAY_MS, HISTORY_STEP_S))
   const to = new Date(now.getTime() + 1)
-  const stepSeconds = Math.max(SHORTEST_STEP_S, Math.ceil((to.getTime() - from.getTime()) / 1000 / STEPS))
+  const stepSeconds = pumpDown
+    ? Math.max(SHORTEST_STEP_S, Math.ceil((to.getTime() - from.getTime()) / 1000 / STEPS))
+    : HISTORY_STEP_S
   const steps = Math.ceil((to.getTime() - from.getTime()) / 1000 / stepSeconds)
   const shown = gauges.filter(({ position }) => position.kind !== 'thermal-conductivity')
   const ids = shown.map(({ position }) => position.id)

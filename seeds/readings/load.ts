@@ -17,11 +17,20 @@ export interface StoredReading {
 
 const BLOCK = 2_000
 
-function* blocks(readings: Iterable<StoredReading>): Generator<Buffer> {
+/** First and last instant of each channel, ms. */
+type Stretches = Map<number, { firstMs: number; lastMs: number }>
+
+function* blocks(readings: Iterable<StoredReading>, seen: Stretches): Generator<Buffer> {
   let lines: string[] = []
   // The same instants come back for every channel.
   const times = new Map<number, string>()
   for (const one of readings) {
+    const stretch = seen.get(one.channelId)
+    if (stretch === undefined) seen.set(one.channelId, { firstMs: one.atMs, lastMs: one.atMs })
+    else {
+      stretch.firstMs = Math.min(stretch.firstMs, one.atMs)
+      stretch.lastMs = Math.max(stretch.lastMs, one.atMs)
+    }
     let time = times.get(one.atMs)
     if (time === undefined) {
       time = new Date(one.atMs).toISOString().slice(0, 23).replace('T', ' ')
@@ -45,13 +54,14 @@ function* blocks(readings: Iterable<StoredReading>): Generator<Buffer> {
  *
  * @returns how many rows were new
  */
-export function loadReadings(pool: mysql.Pool, readings: Iterable<StoredReading>): Promise<number> {
-  return new Promise((resolve, reject) => {
+export async function loadReadings(pool: mysql.Pool, readings: Iterable<StoredReading>): Promise<number> {
+  const seen: Stretches = new Map()
+  const stored = await new Promise<number>((resolve, reject) => {
     pool.query<mysql.ResultSetHeader>(
       {
         sql: `LOAD DATA LOCAL INFILE 'readings' IGNORE INTO TABLE reading CHARACTER SET latin1
           (channel_id, at, seq, value, bound, quality, marks, import_id, line_no)`,
-        infileStreamFactory: () => Readable.from(blocks(readings)),
+        infileStreamFactory: () => Readable.from(blocks(readings, seen)),
       },
       (error, result) => {
         if (error !== null) reject(error)
@@ -59,4 +69,9 @@ export function loadReadings(pool: mysql.Pool, readings: Iterable<StoredReading>
       },
     )
   })
+  // The worker makes rollups of these stretches.
+  const due = [...seen].map(([id, { firstMs, lastMs }]) => [id, new Date(firstMs), new Date(lastMs)])
+  if (due.length > 0)
+    await pool.promise().query('INSERT INTO rollup_due (channel_id, from_at, to_at) VALUES ?', [due])
+  return stored
 }

@@ -15,6 +15,7 @@ import {
   source,
   typedReading,
 } from '../schema/index.ts'
+import { insertDue } from './rollups.server.ts'
 
 /** Code of the source under which typed readings stand. */
 const HAND = 'HAND'
@@ -181,6 +182,7 @@ export function listReadingsAt(
 
 export async function insertReading(tx: DbOrTx, row: typeof reading.$inferInsert): Promise<void> {
   await tx.insert(reading).values(row)
+  await insertDue(tx, [{ channelId: row.channelId, from: row.at, last: row.at }])
 }
 
 /** Adds marks to everything stored for a channel at an instant. */
