@@ -5,11 +5,12 @@ import { channelQuestion } from './cell-faults.ts'
 import { CellReader } from './cells.ts'
 import type { ChannelBook } from './channel-names.ts'
 import { ResetStretches, resetFault } from './clock-reset.ts'
+import { ClockWatch } from './clock-watch.ts'
 import { joinDecimalCommas, twoWays } from './comma-pairs.ts'
 import type { Dialect } from './dialect.ts'
 import { splitFields } from './fields.ts'
 import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
-import { MAX_HELD_ROWS } from './limits.ts'
+import { EARLIEST_MS, MAX_HELD_ROWS } from './limits.ts'
 import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
 import { NumberReader } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
@@ -17,12 +18,14 @@ import { resolveRepeatedHour } from './repeated-hour.ts'
 import { isCutRow, type Row, RowReader } from './row-reader.ts'
 import { RowTimes } from './row-times.ts'
 import type { ReadingSink } from './sink.ts'
-import type { LineTally } from './tally.ts'
+import { startInstant } from './start-time.ts'
+import type { Fault, LineTally } from './tally.ts'
 import type { ReadContext, Refusal, Remark, Restart } from './types.ts'
 import { checkUnit, refuseWithoutUnit } from './unit-check.ts'
 import { UnitWords, unitSamples } from './unit-words.ts'
 import { readUnit, type Unit, unitOf, unitsOf } from './units.ts'
 import { WordBook } from './words.ts'
+import { offsetAt, offsetText } from './zones.ts'
 
 export interface BodyTools {
   dialect: Dialect
@@ -54,7 +57,9 @@ export class FileBody {
   unitFrom: 'header' | 'note' | 'unit-row' | 'column' | 'profile' | null = null
   /** Unit in which the first pressures of the file are written, or its first values when it holds no pressure. */
   unitWritten: string | null = null
-  backSteps = 0
+  get backSteps(): number {
+    return this.#watch.backSteps
+  }
   readonly #tools: BodyTools
   readonly #times: RowTimes | null
   readonly numbers: NumberReader
@@ -67,9 +72,13 @@ export class FileBody {
   #override: { from: Unit; to: Unit } | null = null
   #held: HeldRow[] = []
   #lastMs: number | null = null
+  #offset = Number.NaN
+  #coarseRows = 0
+  readonly #watch: ClockWatch
 
   constructor(tools: BodyTools) {
     this.#tools = tools
+    this.#watch = new ClockWatch(tools.questions)
     const { dialect, profile, context, questions, sink, tally, book } = tools
     const numbers = new NumberReader({
       decimalMark: dialect.decimalMark,
@@ -178,7 +187,10 @@ export class FileBody {
 
   #note(text: string, line: number): void {
     this.#tools.tally.note(line, text)
-    const unit = this.#noteUnit(readNote(text).unit, line)
+    const { unit: token, date, start } = readNote(text)
+    if (date !== null) this.#times?.setDay(date)
+    if (start !== null && this.#sawRow) this.#restart(start)
+    const unit = this.#noteUnit(token, line)
     if (unit === null) return
     const before = this.noteUnit
     this.noteUnit = unit
@@ -194,6 +206,14 @@ export class FileBody {
       atMs: this.#lastMs,
       count: 1,
     })
+  }
+
+  /** A new start inside a file that counts seconds. One that cannot be is asked about with its first row. */
+  #restart(text: string): void {
+    const { startFormat, zone } = this.#tools.dialect
+    if (this.#tools.dialect.timeFormat !== 'elapsed-s' || startFormat === null || zone === null) return
+    const atMs = startInstant(text, startFormat, zone)
+    this.#times?.restart(atMs >= EARLIEST_MS ? { atMs, reconstructed: false } : null)
   }
 
   /** Unit of a line of metadata. One that tells no absolute quantity is asked about. */
@@ -406,6 +426,7 @@ export class FileBody {
     const timeText = fields[block.timeAt] ?? ''
     const time = this.#times.read(timeText, dateText, block.timeAt + 1)
     if (time.kind === 'fault' || time.kind === 'nonexistent') {
+      if (time.kind === 'nonexistent') this.#askClockChanges(time.wallMs, time.fault, line)
       tally.reject(line, text, time.fault)
       return
     }
@@ -424,9 +445,58 @@ export class FileBody {
     }
     this.#release(time.atMs)
     this.#resets?.close(time.atMs)
-    if (this.#lastMs !== null && time.atMs < this.#lastMs) this.backSteps += 1
+    const track = block.layout === 'long' ? (fields[block.channelAt] ?? '') : ''
+    const watched = this.#watch.see(track, time.atMs, line)
+    const coarse = dialect.coarse ? MARKS['time-coarse'] | MARKS['order-kept'] : 0
+    if (dialect.coarse) this.#coarseRows += 1
+    const flagged = this.#times.rounded || this.#offsetChanges(this.#times.offset, time.atMs, line)
     this.#lastMs = time.atMs
-    this.rows.read(row, time.atMs, time.marks)
+    this.rows.read(row, time.atMs, time.marks | watched | coarse, flagged)
+  }
+
+  /** Whether the offset written in the times changes here, other than the clocks of the site do. Said once. */
+  #offsetChanges(offset: number, atMs: number, line: number): boolean {
+    const before = this.#offset
+    this.#offset = offset
+    if (Number.isNaN(before) || Number.isNaN(offset) || offset === before || this.#lastMs === null)
+      return false
+    const zone = this.#tools.context.siteZone
+    if (zone !== null && offsetAt(zone, this.#lastMs) === before && offsetAt(zone, atMs) === offset)
+      return false
+    if (this.remarks.some(({ kind }) => kind === 'offset-change')) return true
+    this.remarks.push({
+      kind: 'offset-change',
+      text: `The offset from UTC in the times changes at line ${line}. Each time counts as it is written.`,
+      line,
+      channel: null,
+      atMs,
+      count: 1,
+    })
+    return true
+  }
+
+  /** A time that the clocks of the zone leave out: the clock of the logger probably does not change. */
+  #askClockChanges(wallMs: number, fault: Fault, line: number): void {
+    const { questions, dialect } = this.#tools
+    const zone = dialect.zone?.zone ?? 'UTC'
+    if (questions.answer('clock-changes') !== null) return
+    const winter = offsetText(offsetAt(zone, wallMs - 86_400_000))
+    questions.ask('clock-changes', () =>
+      question({
+        ...fault,
+        code: 'clock-changes',
+        id: 'clock-changes',
+        kind: 'zone',
+        blocking: false,
+        line,
+        text: `The file has times that ${zone} leaves out when its clocks go forward. Does the clock of this source follow the clock changes?`,
+        mend: 'Ask whoever set the logger up. Until it is said, rows of that hour are left out.',
+        choices: [
+          choice(winter, `it does not: it stays at ${winter} all year`),
+          choice('leave-out', 'it does; leave the rows of that hour out'),
+        ],
+      }),
+    )
   }
 
   /** Joins the halves of decimal commas. False when the row is turned away. */
@@ -487,5 +557,15 @@ export class FileBody {
 
   end(): void {
     this.#release(null)
+    this.#watch.end(this.#times?.fullDay === false)
+    if (this.#coarseRows > 0)
+      this.remarks.push({
+        kind: 'coarse-time',
+        text: 'Several rows stand under one time. They keep their order and are marked; no time between them is made up.',
+        line: null,
+        channel: null,
+        atMs: null,
+        count: this.#coarseRows,
+      })
   }
 }

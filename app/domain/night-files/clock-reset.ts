@@ -50,16 +50,10 @@ export class ResetStretches {
     if (stretch === null) return
     this.#open = null
     if (stretch.question === null) return
-    const period = this.#periodMs ?? 0
-    stretch.question.choices.splice(
-      -1,
-      0,
-      instantChoice(
-        nextMs - period - (stretch.lastMs - stretch.firstMs),
-        this.#zone,
-        'the stretch runs on into the row after it',
-      ),
-    )
+    const { choices } = stretch.question
+    const firstMs = nextMs - (this.#periodMs ?? 0) - (stretch.lastMs - stretch.firstMs)
+    const proposal = instantChoice(firstMs, this.#zone, 'the stretch runs on into the row after it')
+    if (!choices.some(({ value }) => value === proposal.value)) choices.splice(-1, 0, proposal)
   }
 
   #begin(atMs: number, line: number, text: string, beforeMs: number | null): Stretch {

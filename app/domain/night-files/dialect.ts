@@ -27,6 +27,9 @@ export interface Dialect {
   zone: ZoneClock | null
   /** Start of a file that counts seconds. */
   start: StartTime | null
+  startFormat: TimeFormat | null
+  /** Rows share their times: only their order tells them apart. */
+  coarse: boolean
   /** Rows of the head, cut into fields. */
   rows: { fields: string[]; line: number }[]
   periodMs: number | null
@@ -97,7 +100,7 @@ export function settleDialect(
     }
   const decimalMark = settleDecimalMark(joinsCommas, rows, columns, layout, separator, profile, questions)
   const time = settleTime(
-    { lines: head, columns, rows, headerLine: headerLine.line, separator, decimalMark },
+    { lines: head, columns, rows, headerLine: headerLine.line, separator, decimalMark, layout },
     profile,
     context,
     questions,
@@ -113,6 +116,8 @@ export function settleDialect(
     timeFormat: time.format,
     zone: time.zone,
     start: time.start,
+    startFormat: time.startFormat,
+    coarse: time.coarse,
     rows,
     periodMs: time.periodMs,
   }

@@ -30,6 +30,8 @@ export interface NoteFacts {
   /** Text of a start time. */
   start: string | null
   zone: string | null
+  /** Text of a date that stands alone. */
+  date: string | null
 }
 
 /** Facts that metadata lines may carry. Only plainly labelled ones are taken. */
@@ -46,7 +48,11 @@ export function readNote(line: string): NoteFacts {
     /\b(?:time\s*zone|zeitzone|tz|fuseau)\s*[:=]\s*"?([A-Za-z]+(?:\/[A-Za-z_/+-]+)?|[+-]\d{2}:\d{2})/i.exec(
       line,
     )?.[1] ?? null
-  return { unit: unit ?? null, start: start === null ? null : start.trim(), zone }
+  const date =
+    /\b(?:date|datum|day|tag|jour|fecha)\s*[:=]\s*"?(\d{1,4}[./-]\d{1,2}[./-]\d{1,4})"?\s*$/i.exec(
+      line,
+    )?.[1] ?? null
+  return { date, unit: unit ?? null, start: start === null ? null : start.trim(), zone }
 }
 
 function inUnit(line: string): string | undefined {

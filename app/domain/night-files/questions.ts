@@ -76,11 +76,16 @@ export class QuestionList {
     this.#blocked = true
   }
 
+  /** Answers to questions whose id begins so, with the rest of the id. */
+  answersTo(prefix: string): { rest: string; choice: string }[] {
+    return Array.from(this.#answers).flatMap(([id, choice]) =>
+      id.startsWith(prefix) ? [{ rest: id.slice(prefix.length), choice }] : [],
+    )
+  }
+
   /** Numbers that a person said are no measured values. */
   floors(): { value: number; quality: Quality }[] {
-    return Array.from(this.#answers).flatMap(([id, choice]) =>
-      id.startsWith('floor:') ? (floorOf(choice) ?? []) : [],
-    )
+    return this.answersTo('floor:').flatMap(({ choice }) => floorOf(choice) ?? [])
   }
 
   list(): Question[] {

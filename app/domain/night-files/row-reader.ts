@@ -69,11 +69,12 @@ export class RowReader {
     this.#tools = tools
   }
 
-  read(row: Row, atMs: number, marks: number): void {
+  /** `flagged`: its time needs a look, though it earns no mark. */
+  read(row: Row, atMs: number, marks: number, flagged = false): void {
     this.#kept = 0
     this.#duplicates = 0
     this.#firstFault = null
-    this.#flagged = marks !== 0
+    this.#flagged = marks !== 0 || flagged
     if (row.block.layout === 'wide') this.#wide(row, atMs, marks)
     else if (!this.#long(row, atMs, marks)) return
     const { tally } = this.#tools

@@ -14,7 +14,7 @@ export type RowTime =
   /** A time of years in which no logger ran: its clock had lost its setting, only spans count. */
   | { kind: 'reset'; atMs: number }
   /** A time of the hour that the spring clock change leaves out. */
-  | { kind: 'nonexistent'; fault: Fault }
+  | { kind: 'nonexistent'; wallMs: number; fault: Fault }
   | { kind: 'fault'; fault: Fault }
 
 const HALF_DAY_MS = 43_200_000
@@ -25,8 +25,6 @@ export class RowTimes {
   rounded = false
   /** Offset written in the last time read, in minutes; NaN when it carried none. */
   offset = Number.NaN
-  /** Whether the last time named no seconds. */
-  noSeconds = false
   /** Whether any time of the file passed noon or named its half of the day: then its clock counts 24 hours. */
   fullDay = false
   readonly #reader: TimeReader
@@ -41,10 +39,18 @@ export class RowTimes {
     this.#reader = new TimeReader(format, decimalMark)
     this.#zone = zone
     this.#start = start
+    // Only times that people write count to twelve and begin anew.
+    this.fullDay = /^(?:epoch|serial|elapsed)/.test(format)
+  }
+
+  /** Takes the day of the rows that name none from a line of its own. */
+  setDay(text: string): void {
+    const dayMs = this.#reader.readDate(text)
+    if (!Number.isNaN(dayMs)) this.#dayMs = dayMs
   }
 
   /** Counts seconds from another start from here on: the logger began anew inside the file. */
-  restart(start: StartTime): void {
+  restart(start: StartTime | null): void {
     this.#start = start
   }
 
@@ -53,7 +59,6 @@ export class RowTimes {
     const carried = dateText === null ? isTimeOfDay(text) : dateText.trim() === ''
     if (!this.#readWall(text, dateText, carried)) return this.#unreadable(text, dateText, column)
     this.rounded = reader.rounded
-    this.noSeconds = reader.noSeconds
     const { wallMs, offset } = reader
     this.offset = offset
     if (reader.half || (wallMs % (2 * HALF_DAY_MS)) - HALF_DAY_MS >= 3_600_000) this.fullDay = true
@@ -67,7 +72,7 @@ export class RowTimes {
       }
     if (!Number.isNaN(offset)) return instant(wallMs - offset * 60_000)
     const [first, second] = this.#zone.instants(wallMs)
-    if (first === undefined) return { kind: 'nonexistent', fault: this.#nonexistent(wallMs, column) }
+    if (first === undefined) return { kind: 'nonexistent', wallMs, fault: this.#nonexistent(wallMs, column) }
     if (second !== undefined && first >= EARLIEST_MS) return { kind: 'twice', wallMs, first, second }
     return instant(first)
   }

@@ -17,6 +17,10 @@ export interface TimeSettlement {
   start: StartTime | null
   /** Commonest step between rows, or the profile's. */
   periodMs: number | null
+  /** How the start is written; only in files that count seconds. */
+  startFormat: TimeFormat | null
+  /** Rows share their times because the times are cut to the minute or second: only their order tells them apart. */
+  coarse: boolean
   refusal: Refusal | null
 }
 
@@ -27,6 +31,7 @@ export interface TimeHead {
   headerLine: number
   separator: string
   decimalMark: '.' | ','
+  layout: 'wide' | 'long'
 }
 
 /** Names of columns that count seconds since the start of the file. */
@@ -44,25 +49,35 @@ export function settleTime(
   if (countsSeconds(head, samples, profile, timeAt))
     return settleElapsed(head, samples, profile, context, questions)
   const sniffed = settleFormat(samples, profile, head.decimalMark, questions)
-  if (sniffed.refusal !== null)
-    return { ...nothing, refusal: { ...sniffed.refusal, column: timeAt + 1 }, periodMs: null }
+  if (sniffed.refusal !== null) return { ...nothing, refusal: { ...sniffed.refusal, column: timeAt + 1 } }
   const { format } = sniffed
   return {
     format,
     zone: settleZone(head, samples, format, profile, context, questions),
     start: null,
+    startFormat: null,
     periodMs: settlePeriod(samples, format, profile),
+    coarse: isCoarse(head, samples),
     refusal: null,
   }
 }
 
-const nothing: TimeSettlement = { format: null, zone: null, start: null, periodMs: null, refusal: null }
+const nothing: TimeSettlement = {
+  format: null,
+  zone: null,
+  start: null,
+  periodMs: null,
+  startFormat: null,
+  coarse: false,
+  refusal: null,
+}
 
 /** Times of the rows as one text each: a date of its own, or of a row before, stands in front. */
-export function timeSamples({ columns, rows }: Pick<TimeHead, 'columns' | 'rows'>): TimeSample[] {
+function timeSamples({ columns, rows, lines }: TimeHead): TimeSample[] {
   const timeAt = columns.findIndex(({ role }) => role === 'time')
   const dateAt = columns.findIndex(({ role }) => role === 'date')
   let date = ''
+  for (const { text } of lines) date ||= readNote(text).date ?? ''
   return rows.map(({ fields, line }) => {
     const text = (fields[timeAt] ?? '').trim()
     if (dateAt !== -1) {
@@ -73,6 +88,24 @@ export function timeSamples({ columns, rows }: Pick<TimeHead, 'columns' | 'rows'
     date = /^(\S+(?:[./-]\S+)?)[T ]\d{1,2}:\d{2}/.exec(text)?.[1] ?? date
     return { text, line }
   })
+}
+
+/** Share of rows from which on rows under one time are the rule and no accident. */
+const COARSE_SHARE = 0.2
+
+/** Whether different rows of one track often stand under the same time. */
+function isCoarse({ rows, columns, layout }: TimeHead, samples: readonly TimeSample[]): boolean {
+  const channelAt = layout === 'long' ? columns.findIndex(({ role }) => role === 'channel') : -1
+  const last = new Map<string, { time: string; row: string }>()
+  let repeats = 0
+  rows.forEach(({ fields }, i) => {
+    const track = fields[channelAt] ?? ''
+    const now = { time: samples[i]?.text ?? '', row: fields.join('\u0000') }
+    const before = last.get(track)
+    if (before?.time === now.time && before.row !== now.row) repeats += 1
+    last.set(track, now)
+  })
+  return rows.length >= 5 && repeats > COARSE_SHARE * rows.length
 }
 
 function countsSeconds(
@@ -120,7 +153,9 @@ function settleElapsed(
     format: 'elapsed-s',
     zone: start === null ? null : zone,
     start,
+    startFormat: sniffed.format,
     periodMs: settlePeriod(samples, 'elapsed-s', profile),
+    coarse: false,
     refusal: null,
   }
 }

@@ -149,6 +149,11 @@ export class ReadingSink {
       this.#append(state, reading, 0)
       return 'new'
     }
+    if ((reading.marks & MARKS['order-kept']) !== 0 && held.seq < MAX_SEQ) {
+      held.seq += 1
+      this.#append(state, reading, held.seq)
+      return 'new'
+    }
     const ambiguous = (reading.marks & MARKS['time-ambiguous']) !== 0
     const repeats = same(held, reading) || (held.more?.some((other) => same(other, reading)) ?? false)
     if ((repeats && !ambiguous) || held.seq >= MAX_SEQ) {

@@ -85,7 +85,38 @@ function sniffNumeric(samples: readonly TimeSample[]): TimeFinding {
   if (mostly(samples, (sample) => digits(sample) === 13 || digits(sample) === 12)) return settled('epoch-ms')
   if (mostly(samples, (sample) => digits(sample) === 16 || digits(sample) === 15)) return settled('epoch-us')
   if (mostly(samples, (sample) => digits(sample) === 10 || digits(sample) === 9)) return settled('epoch-s')
+  // Whole days since 1900 or 1904: these figures lie between 1982 and 2064.
+  if (mostly(samples, ({ text }) => Number(text) >= 30_000 && Number(text) < 60_000))
+    return serialQuestion(samples)
   return { format: null, question: null, refusal: unreadable(samples) }
+}
+
+function serialQuestion(samples: readonly TimeSample[]): TimeFinding {
+  const first = samples[0] as TimeSample
+  const shown = samples.slice(0, 3)
+  const asked = question({
+    id: 'date-order',
+    kind: 'date-order',
+    line: first.line,
+    column: 1,
+    text: 'The times are day numbers of a spreadsheet. From which day does it count?',
+    found: `“${first.text}”`,
+    expected: 'a base in the profile of the source, or times with a date',
+    mend: 'Choose the base under which the dates are right; it is kept in the source’s profile.',
+    choices: [
+      choice(
+        'serial-1900',
+        'from the year 1900',
+        shown.map((sample) => timeCandidate(sample, 'serial-1900')),
+      ),
+      choice(
+        'serial-1904',
+        'from the year 1904',
+        shown.map((sample) => timeCandidate(sample, 'serial-1904')),
+      ),
+    ],
+  })
+  return { format: null, question: asked, refusal: null }
 }
 
 /** Orders allowed by every sample; one must remain, else a person decides. */

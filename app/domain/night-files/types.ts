@@ -166,6 +166,7 @@ export type QuestionKind =
   | 'start'
   | 'basis'
   | 'floor'
+  | 'clock-jump'
 
 export interface Question extends Finding {
   /** Stable for the same file: `unit`, `unknown-channel:HC99Z` … */
@@ -201,6 +202,8 @@ export type RemarkKind =
   | 'meter-restart'
   | 'unit-change'
   | 'stuck'
+  | 'offset-change'
+  | 'coarse-time'
 
 /** Something a person should look at before taking the file in. */
 export interface Remark {

@@ -17,6 +17,13 @@ export function offsetAt(zone: string, atMs: number): number {
   return fixedOffset(zone) ?? tzOffset(zone, new Date(atMs))
 }
 
+/** An offset as text, `+01:00`. */
+export function offsetText(minutes: number): string {
+  const two = (value: number) => String(value).padStart(2, '0')
+  const size = Math.abs(minutes)
+  return `${minutes < 0 ? '-' : '+'}${two(Math.floor(size / 60))}:${two(size % 60)}`
+}
+
 /** Wall time (as if UTC) in text, `2026-10-25 02:59:30`. */
 export function wallText(wallMs: number): string {
   return new Date(wallMs).toISOString().slice(0, 19).replace('T', ' ')
