@@ -28,7 +28,7 @@ function isUnbaked(segment: SegmentWithState): boolean {
  */
 export function coldModel(segment: SegmentWithState, pumps: readonly PlacedPump[]): SegmentModel | null {
   const working = pumps.filter(({ kind }) => kind !== 'roughing-set')
-  if (working.length === 0) return null
+  if (working.length === 0 || !takesEveryGas(segment, working)) return null
   const hydrogen = hydrogenOf(segment)
   if (hydrogen === null) return null
   return {
@@ -42,6 +42,12 @@ export function coldModel(segment: SegmentWithState, pumps: readonly PlacedPump[
       ? { state: 'unbaked', capacityPerM2: segment.waterCapacity }
       : { state: 'baked', floorPa: WATER_FLOOR_PA },
   }
+}
+
+/** Whether the pumps take all that the wall gives; without a speed for a gas the register does not say what becomes of it. */
+function takesEveryGas(segment: SegmentWithState, pumps: readonly PlacedPump[]): boolean {
+  const gases = isUnbaked(segment) ? (['H2', 'H2O'] as const) : (['H2'] as const)
+  return gases.every((gas) => pumps.some(({ speeds }) => (speeds[gas] ?? 0) > 0))
 }
 
 function hydrogenOf(segment: SegmentWithState): SegmentModel['hydrogen'] | null {
