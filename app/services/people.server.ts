@@ -22,6 +22,7 @@ import type { AccountEndForm, NewPersonForm } from '../domain/schemas/people.ts'
 import { type GrantStanding, grantStanding, refuseNoAdministrator } from './grants.server.ts'
 import { writeRecord } from './record.server.ts'
 import { fieldFault } from './register-values.server.ts'
+import { instantWriter } from './site.server.ts'
 
 export interface PersonWithRoles extends PersonRow {
   roles: Role[]
@@ -175,9 +176,10 @@ export async function setAccountEnd(
     if (person === null) throw new DomainError('not-found', `There is no account ${personId}.`)
     const before = person.endsAt?.toISOString() ?? ''
     if (before !== form.seen) {
+      const ends = person.endsAt === null ? 'open' : (await instantWriter(inside))(person.endsAt)
       throw new DomainError(
         'conflict',
-        `The end of this account has been changed since you opened this form: it is now ${before === '' ? 'open' : before}. Nothing of yours has been saved; look again and do it anew.`,
+        `The end of this account has been changed since you opened this form: it is now ${ends}. Nothing of yours has been saved; look again and do it anew.`,
       )
     }
     if (before === (endsAt?.toISOString() ?? ''))

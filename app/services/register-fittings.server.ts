@@ -15,8 +15,9 @@ import { clip, nextChange, overlaps, type Span, writeOver } from '../domain/date
 import { DomainError } from '../domain/errors.ts'
 import type { FittingForm } from '../domain/schemas/register-dated.ts'
 import { writeRecord } from './record.server.ts'
-import { fieldFault, stretchOf, utcText } from './register-values.server.ts'
+import { fieldFault, stretchOf } from './register-values.server.ts'
 import { markOutOfDate } from './revisions.server.ts'
+import { instantWriter } from './site.server.ts'
 
 /**
  * Puts an instrument at a position from an instant on (until the given end, or else until the next change recorded
@@ -37,7 +38,8 @@ export async function fitInstrument(
     const position = await lockRegisterRow(inside, 'positions', tag)
     if (position === null) throw new DomainError('not-found', `The register has no position ${tag}.`)
     const fittings = await listFittings(inside, { positionId: position.id })
-    refuseStale(fittings, form.seen, position.tag)
+    const written = await instantWriter(inside)
+    refuseStale(fittings, form.seen, position.tag, written)
     const window: Span = {
       startsAt: form.startsAt,
       endsAt: form.endsAt ?? nextChange(fittings, form.startsAt),
@@ -79,7 +81,7 @@ export async function fitInstrument(
     await markOutOfDate(inside, {
       stretches: maps.map((part) => stretchOf(part.of.channelId, part)),
       now,
-      reason: `The instrument at ${position.tag} was changed from ${utcText(form.startsAt)}: ${form.reason}`,
+      reason: `The instrument at ${position.tag} was changed from ${written(form.startsAt)}: ${form.reason}`,
     })
     await writeRecord(inside, {
       at: now,
@@ -103,14 +105,19 @@ export async function fitInstrument(
   })
 }
 
-function refuseStale(fittings: readonly FittingRow[], seen: number, tag: string): void {
+function refuseStale(
+  fittings: readonly FittingRow[],
+  seen: number,
+  tag: string,
+  written: (at: Date) => string,
+): void {
   const newest = fittings.reduce((highest, { id }) => Math.max(highest, id), 0)
   if (newest === seen) return
   const row = fittings.find(({ id }) => id === newest)
   const told =
     row === undefined
       ? ''
-      : ` ${row.recordedBy ?? 'The product'} put ${row.serial} there from ${utcText(row.startsAt)}.`
+      : ` ${row.recordedBy ?? 'The product'} put ${row.serial} there from ${written(row.startsAt)}.`
   throw new DomainError(
     'conflict',
     `What sits at ${tag} has been changed since you opened this form.${told} Nothing of yours has been saved: look at the present state and do it again.`,
@@ -141,9 +148,10 @@ async function refuseElsewhere(
     (row) => row.positionId !== position.id && overlaps(row, window),
   )
   if (elsewhere === undefined) return
-  const until = elsewhere.endsAt === null ? 'and still does' : `until ${utcText(elsewhere.endsAt)}`
+  const written = await instantWriter(inside)
+  const until = elsewhere.endsAt === null ? 'and still does' : `until ${written(elsewhere.endsAt)}`
   throw fieldFault({
-    serial: `${instrument.tag} sits at ${elsewhere.position} from ${utcText(elsewhere.startsAt)} ${until}. Take it out there first.`,
+    serial: `${instrument.tag} sits at ${elsewhere.position} from ${written(elsewhere.startsAt)} ${until}. Take it out there first.`,
   })
 }
 

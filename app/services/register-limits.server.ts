@@ -15,7 +15,8 @@ import { DomainError } from '../domain/errors.ts'
 import { LIMIT_KIND_FACTS, type LimitKind } from '../domain/register.ts'
 import type { LimitForm } from '../domain/schemas/register-dated.ts'
 import { writeRecord } from './record.server.ts'
-import { fieldFault, segmentByTag, utcText } from './register-values.server.ts'
+import { fieldFault, segmentByTag } from './register-values.server.ts'
+import { instantWriter } from './site.server.ts'
 
 /** A form that was opened a while ago still counts as "from now on". */
 const BACK_MS = 60 * 60_000
@@ -45,7 +46,7 @@ export async function setLimit(
     await lockLimits(inside)
     const place = form.segment === '' ? null : segmentByTag(form.segment, await listSegmentPlaces(inside))
     const all = await listDatedLimits(inside, { kind })
-    refuseStale(all, form.seen, kind)
+    refuseStale(all, form.seen, kind, await instantWriter(inside))
     const limits = all.filter(({ segmentId }) => segmentId === (place?.id ?? null))
     const window: Span = { startsAt: form.startsAt, endsAt: nextChange(limits, form.startsAt) }
     const former = spanAt(limits, form.startsAt) ?? null
@@ -105,14 +106,19 @@ export async function setLimit(
   })
 }
 
-function refuseStale(limits: readonly DatedLimit[], seen: number, kind: LimitKind): void {
+function refuseStale(
+  limits: readonly DatedLimit[],
+  seen: number,
+  kind: LimitKind,
+  written: (at: Date) => string,
+): void {
   const newest = limits.reduce((highest, { id }) => Math.max(highest, id), 0)
   if (newest === seen) return
   const row = limits.find(({ id }) => id === newest)
   const told =
     row === undefined
       ? ''
-      : ` ${row.setBy ?? 'The product'} set ${row.value} ${row.unit} for ${row.segment ?? 'the site'} from ${utcText(row.startsAt)}.`
+      : ` ${row.setBy ?? 'The product'} set ${row.value} ${row.unit} for ${row.segment ?? 'the site'} from ${written(row.startsAt)}.`
   throw new DomainError(
     'conflict',
     `"${LIMIT_KIND_FACTS[kind].label}" has been changed since you opened this form.${told} Nothing of yours has been saved: look at the present value and do it again.`,

@@ -19,8 +19,9 @@ import { clip, nextChange, overlaps, type Span, writeOver } from '../domain/date
 import { DomainError } from '../domain/errors.ts'
 import type { ChannelMapForm } from '../domain/schemas/register-dated.ts'
 import { writeRecord } from './record.server.ts'
-import { fieldFault, stretchOf, utcText } from './register-values.server.ts'
+import { fieldFault, stretchOf } from './register-values.server.ts'
 import { markOutOfDate } from './revisions.server.ts'
+import { instantWriter } from './site.server.ts'
 
 /** What a map said over a window, as it goes on record. */
 interface MapLine {
@@ -53,7 +54,8 @@ export async function mapChannel(
     await lockSource(inside, own.sourceId)
     const maps = await listMaps(inside, { sourceId: own.sourceId })
     const ownMaps = maps.filter((row) => row.channelId === own.id)
-    refuseStale(ownMaps, form.seen, own)
+    const written = await instantWriter(inside)
+    refuseStale(ownMaps, form.seen, own, written)
 
     const positionId = form.position === '' ? null : await positionFor(inside, own, form.position)
     const window: Span = {
@@ -100,7 +102,7 @@ export async function mapChannel(
     await markOutOfDate(inside, {
       stretches: touched,
       now,
-      reason: `The map of ${own.name} was changed from ${utcText(form.startsAt)}: ${form.reason}`,
+      reason: `The map of ${own.name} was changed from ${written(form.startsAt)}: ${form.reason}`,
     })
     await writeRecord(inside, {
       at: now,
@@ -116,14 +118,19 @@ export async function mapChannel(
   })
 }
 
-function refuseStale(ownMaps: readonly MapRow[], seen: number, own: ChannelFacts): void {
+function refuseStale(
+  ownMaps: readonly MapRow[],
+  seen: number,
+  own: ChannelFacts,
+  written: (at: Date) => string,
+): void {
   const newest = ownMaps.reduce((highest, { id }) => Math.max(highest, id), 0)
   if (newest === seen) return
   const row = ownMaps.find(({ id }) => id === newest)
   const told =
     row === undefined
       ? ''
-      : ` ${row.recordedBy ?? 'The product'} mapped it to ${row.position} from ${utcText(row.startsAt)}.`
+      : ` ${row.recordedBy ?? 'The product'} mapped it to ${row.position} from ${written(row.startsAt)}.`
   throw new DomainError(
     'conflict',
     `The map of ${own.name} has been changed since you opened this form.${told} Nothing of yours has been saved: look at the present map and do it again.`,

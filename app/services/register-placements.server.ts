@@ -8,7 +8,8 @@ import { DomainError } from '../domain/errors.ts'
 import type { PlacementForm } from '../domain/schemas/register-dated.ts'
 import { writeRecord } from './record.server.ts'
 import { changedMeanwhile, MOVED } from './register-edit.server.ts'
-import { fieldFault, segmentByTag, utcText } from './register-values.server.ts'
+import { fieldFault, segmentByTag } from './register-values.server.ts'
+import { instantWriter } from './site.server.ts'
 
 /**
  * Puts a pump to work at a place from an instant on, or, without a segment, lets it stand idle. `seen` is the pump's
@@ -38,8 +39,9 @@ export async function placePump(
     }
     const [last] = await listPlacements(inside, { pumpId: pump.id })
     if (last !== undefined && form.startsAt <= last.startsAt) {
+      const written = await instantWriter(inside)
       throw fieldFault({
-        startsAt: `A later place is recorded: ${last.segment} from ${utcText(last.startsAt)}. Give a time after it.`,
+        startsAt: `A later place is recorded: ${last.segment} from ${written(last.startsAt)}. Give a time after it.`,
       })
     }
     const before = last !== undefined && (last.endsAt === null || last.endsAt > form.startsAt) ? last : null

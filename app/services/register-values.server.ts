@@ -83,11 +83,6 @@ export function differences(before: Values, after: Values): { before: Values; af
   }
 }
 
-/** An instant inside a sentence. Services know no site zone, so it is given in UTC and says so. */
-export function utcText(at: Date): string {
-  return `${at.toISOString().slice(0, 16).replace('T', ' ')} UTC`
-}
-
 /** The last instant that the database can hold: the end of what has none. */
 const LAST = new Date('9999-12-31T23:59:59.999Z')
 

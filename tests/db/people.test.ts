@@ -19,7 +19,7 @@ import {
 import { readRecordPage } from '#app/services/people-record.server.ts'
 import { MORNING, after as shift } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
-import { createUser } from '#tests/support/factories.ts'
+import { createSite, createUser } from '#tests/support/factories.ts'
 
 const db = freshDatabase()
 const other = secondConnection()
@@ -29,6 +29,7 @@ let ione: Actor
 let tove: Actor
 
 beforeEach(async () => {
+  await createSite(db)
   juniper = await createUser(db, { roles: ['administrator'], name: 'Juniper' })
   ione = await createUser(db, { roles: ['safety-officer'], name: 'Ione' })
   tove = await createUser(db, { name: 'Tove' })

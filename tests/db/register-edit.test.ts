@@ -15,6 +15,7 @@ import {
   createLine,
   createPosition,
   createSegment,
+  createSite,
   createSource,
   createUser,
 } from '#tests/support/factories.ts'
@@ -24,6 +25,7 @@ const other = secondConnection()
 let bram: Actor
 
 beforeEach(async () => {
+  await createSite(db)
   bram = await createUser(db, { roles: ['engineer'], name: 'Bram' })
 })
 

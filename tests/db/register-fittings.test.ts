@@ -15,6 +15,7 @@ import {
   createFitting,
   createInstrument,
   createPosition,
+  createSite,
   createSource,
   createUser,
 } from '#tests/support/factories.ts'
@@ -26,6 +27,7 @@ let bram: Actor
 let positionId: number
 
 beforeEach(async () => {
+  await createSite(db)
   bram = await createUser(db, { roles: ['engineer'], name: 'Bram' })
   positionId = (await createPosition(db, { tag: 'HC-14A' })).id
   const instrumentId = await createInstrument(db, { serial: 'Q-7741' })
@@ -97,7 +99,9 @@ describe('exchanging an instrument', () => {
     await createPosition(db, { tag: 'HC-15A' })
     const seat = await form({ serial: 'Q-7741', seen: 0 })
     const taken = await refusal(fitInstrument(db, bram, EXCHANGED, 'HC-15A', seat))
-    expect(taken.fields.serial?.[0]).toContain('Q-7741 sits at HC-14A')
+    expect(taken.fields.serial?.[0]).toContain(
+      'Q-7741 sits at HC-14A from 2025-01-01 01:00 (UTC+01:00) and still does',
+    )
     await fitInstrument(db, bram, EXCHANGED, 'HC-14A', await form({ serial: '' }))
     await fitInstrument(db, bram, EXCHANGED, 'HC-15A', seat)
     expect(await sitsAt(EXCHANGED)).toBeUndefined()

@@ -9,7 +9,13 @@ import { mapChannel } from '#app/services/register-maps.server.ts'
 import { beginDerived, listOutOfDate } from '#app/services/revisions.server.ts'
 import { MORNING, after as shift } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
-import { createChannel, createPosition, createSource, createUser } from '#tests/support/factories.ts'
+import {
+  createChannel,
+  createPosition,
+  createSite,
+  createSource,
+  createUser,
+} from '#tests/support/factories.ts'
 
 const db = freshDatabase()
 const other = secondConnection()
@@ -20,6 +26,7 @@ let sourceId: number
 let channels: Record<'HC-03B' | 'HC-04A', number>
 
 beforeEach(async () => {
+  await createSite(db)
   bram = await createUser(db, { roles: ['engineer'], name: 'Bram' })
   sourceId = (await createSource(db)).id
   const make = async (name: string) => {

@@ -18,6 +18,7 @@ import {
   createInstrument,
   createPosition,
   createSegment,
+  createSite,
   createSource,
   createUser,
 } from '#tests/support/factories.ts'
@@ -28,6 +29,7 @@ let bram: Actor
 let channelId: number
 
 beforeEach(async () => {
+  await createSite(db)
   bram = await createUser(db, { roles: ['engineer'], name: 'Bram' })
   const place = await createSegment(db, { tag: 'SG-14' })
   const position = await createPosition(db, { tag: 'HC-14A', segmentId: place.id, label: 'west end' })
