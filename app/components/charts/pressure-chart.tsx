@@ -94,7 +94,9 @@ export function PressureChart({
       <div className="min-h-85">
         {palette === null ? (
           <noscript>
-            <p className="text-ink-2">The drawing needs JavaScript. The figures stand below.</p>
+            <p className="text-ink-2">
+              Without a script there is no drawing here: the table below holds the curve.
+            </p>
           </noscript>
         ) : (
           <UplotCanvas
