@@ -37,6 +37,11 @@ export function createApp({ build, trustProxy, clientFolder }: AppOptions): Expr
     response.status(404).type('text').send('There is no such file.\n')
   })
   app.use(express.static(clientFolder, { ...STATIC, maxAge: '1h' }))
+  app.use('/__manifest', (_request, response, next) => {
+    // The router answers this one itself, past its middleware.
+    asNamed(response)
+    next()
+  })
   app.use(createRequestHandler({ build, getLoadContext: () => new RouterContextProvider() }))
   app.use(answerFault)
   return app
