@@ -31,6 +31,8 @@ export interface Block {
   columns: ColumnReadOut[]
   /** Columns whose name the register does not know, with their position counted from 1. */
   unknown: { name: string; position: number }[]
+  /** Channels that several columns name. */
+  repeated: string[]
 }
 
 export interface BlockFacts {
@@ -47,6 +49,8 @@ export interface BlockFacts {
   unfit: (name: string, column: number, unit: Unit, quantity: Quantity) => void
   /** Units of a second header row, by column. */
   unitRow: readonly (Unit | null)[] | null
+  /** The column (from 1) that counts of several with one name; null for none of them, and asks. */
+  oneOf: (name: string, positions: readonly number[]) => number | null
   /** Where an unknown name goes by answer: a registered name, `leave-out`, or null while nobody has said. */
   answerFor: (name: string) => string | null
 }
@@ -102,8 +106,10 @@ export function makeBlock(
     wide: [],
     columns: [],
     unknown: [],
+    repeated: [],
   }
   const valueColumn = columns[block.valueAt]
+  const sameName = layout === 'wide' ? repeatedNames(columns, facts) : new Map<string, number[]>()
   if (layout === 'long' && valueColumn !== undefined)
     block.unit = usable(columnUnit(valueColumn, block.valueAt, null, facts))
   columns.forEach((column, i) => {
@@ -127,6 +133,14 @@ export function makeBlock(
       shown.role = 'left-out'
       return
     }
+    const positions = sameName.get(target.name) ?? []
+    if (positions.length > 1) {
+      if (positions[0] === i + 1) block.repeated.push(target.name)
+      if (facts.oneOf(target.name, positions) !== i + 1) {
+        shown.role = 'left-out'
+        return
+      }
+    }
     const unit = columnUnit(column, i, target.quantity, facts)
     if (unit === 'leave-out') {
       shown.role = 'left-out'
@@ -146,6 +160,17 @@ function usable(unit: Unit | 'leave-out' | null): Unit | null {
 }
 
 type Target = { name: string; quantity: Quantity | null } | 'leave-out' | null
+
+/** Positions (from 1) of the columns of each channel. */
+function repeatedNames(columns: readonly HeaderColumn[], facts: BlockFacts): Map<string, number[]> {
+  const positions = new Map<string, number[]>()
+  columns.forEach((column, i) => {
+    const target = column.role === 'channel' ? wideTarget(column, facts) : null
+    if (target === null || target === 'leave-out') return
+    positions.set(target.name, [...(positions.get(target.name) ?? []), i + 1])
+  })
+  return positions
+}
 
 function wideTarget(column: HeaderColumn, facts: BlockFacts): Target {
   if (column.profileChannel === null) return 'leave-out'

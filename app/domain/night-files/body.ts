@@ -9,11 +9,12 @@ import { ClockWatch } from './clock-watch.ts'
 import { joinDecimalCommas, twoWays } from './comma-pairs.ts'
 import type { Dialect } from './dialect.ts'
 import { splitFields } from './fields.ts'
-import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
+import { type HeaderColumn, joinHeaders, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
 import { EARLIEST_MS, MAX_HELD_ROWS } from './limits.ts'
 import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
 import { NumberReader } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
+import { OpenRecord } from './quoted-lines.ts'
 import { resolveRepeatedHour } from './repeated-hour.ts'
 import { isCutRow, type Row, RowReader } from './row-reader.ts'
 import { RowTimes } from './row-times.ts'
@@ -69,6 +70,10 @@ export class FileBody {
   #headerLine = 0
   #noteLine = 0
   #sawRow = false
+  #open: OpenRecord | null = null
+  #unitRowUnits: readonly (Unit | null)[] | null = null
+  /** Names under the header at hand that nobody knows have yet to be asked about. */
+  #namesPending = false
   #override: { from: Unit; to: Unit } | null = null
   #held: HeldRow[] = []
   #lastMs: number | null = null
@@ -107,6 +112,8 @@ export class FileBody {
       dialect.timeFormat === null || dialect.zone === null
         ? null
         : new RowTimes(dialect.timeFormat, dialect.decimalMark, dialect.zone, dialect.start)
+    this.#headerColumns = dialect.columns
+    if (dialect.headerLine === 0) this.#makeBlock()
     this.#resets =
       dialect.zone === null ? null : new ResetStretches(questions, context, dialect.zone, dialect.periodMs)
   }
@@ -119,6 +126,7 @@ export class FileBody {
 
   line(text: string, line: number, terminated: boolean, tooLong: boolean): void {
     const { tally, dialect, book } = this.#tools
+    if (this.#open !== null && this.#continueQuoted(text, line, terminated, tooLong)) return
     if (tooLong) {
       this.#reject(
         line,
@@ -152,14 +160,12 @@ export class FileBody {
       return
     }
     const split = splitFields(text, dialect.separator)
+    if (split.kind === 'open-quote' && this.block !== null && terminated) {
+      this.#open = new OpenRecord({ text, line, terminated })
+      return
+    }
     if (split.kind !== 'fields') {
-      this.#reject(
-        line,
-        text,
-        'broken-quote',
-        'a quotation mark that is not closed on its line',
-        'quotation marks in pairs',
-      )
+      this.#rejectQuote(text, line)
       return
     }
     const { fields } = split
@@ -185,6 +191,44 @@ export class FileBody {
     this.#row({ fields, text, line, block: this.block }, terminated)
   }
 
+  #rejectQuote(text: string, line: number): void {
+    const found = 'a quotation mark that is not closed'
+    this.#reject(line, text, 'broken-quote', found, 'quotation marks in pairs')
+  }
+
+  /** Adds a line to the record whose quoted cell is open. False when the line stands for itself. */
+  #continueQuoted(text: string, line: number, terminated: boolean, tooLong: boolean): boolean {
+    const open = this.#open
+    const block = this.block
+    if (open === null || block === null) return false
+    const whole = !tooLong && !text.includes('\u0000')
+    const result = whole
+      ? open.add({ text, line, terminated }, this.#tools.dialect.separator, block.fieldCount)
+      : 'broken'
+    if (result === 'open') return true
+    if (result === 'broken') {
+      this.#closeQuoted()
+      // Replaying may have opened another record that this line goes on with.
+      return this.#open !== null && this.#continueQuoted(text, line, terminated, tooLong)
+    }
+    this.#open = null
+    const [first, ...others] = open.lines
+    if (first === undefined) return false
+    this.#row({ fields: result, text: first.text, line: first.line, block }, terminated)
+    for (const other of others) this.#tools.tally.note(other.line, other.text)
+    return true
+  }
+
+  /** Gives up on an open record: its first line is turned away, the others are read on their own. */
+  #closeQuoted(): void {
+    const open = this.#open
+    this.#open = null
+    if (open === null) return
+    const [first, ...others] = open.lines
+    if (first !== undefined) this.#rejectQuote(first.text, first.line)
+    for (const other of others) this.line(other.text, other.line, other.terminated, false)
+  }
+
   #note(text: string, line: number): void {
     this.#tools.tally.note(line, text)
     const { unit: token, date, start } = readNote(text)
@@ -196,7 +240,7 @@ export class FileBody {
     this.noteUnit = unit
     this.#noteLine = line
     if (this.block === null) return
-    this.#makeBlock(null)
+    this.#makeBlock()
     if (!this.#sawRow || before === null || before.factor === unit.factor) return
     this.remarks.push({
       kind: 'unit-change',
@@ -231,10 +275,13 @@ export class FileBody {
     const { tally, book, profile, sink } = this.#tools
     tally.add('header')
     const before = this.block
-    this.#headerColumns = readHeader(fields, book, profile).columns
+    const { columns } = readHeader(fields, book, profile)
+    const further = before !== null && !this.#sawRow
+    this.#headerColumns = further ? joinHeaders(this.#headerColumns, columns) : columns
+    if (!further) this.#unitRowUnits = null
     this.#headerLine = line
-    this.#makeBlock(null)
-    if (before === null || this.block === null) return
+    this.#makeBlock()
+    if (further || before === null || this.block === null) return
     const reordered = isReordered(before, this.block)
     this.restarts.push({ line, reordered })
     this.remarks.push({
@@ -251,15 +298,15 @@ export class FileBody {
 
   #unitRow(fields: string[]): void {
     this.#tools.tally.add('header')
-    this.#makeBlock(
-      fields.map((field) => {
-        const reading = readUnit(field.trim().replace(/^[[(](.*)[\])]$/, '$1'))
-        return reading.kind === 'unit' ? reading.unit : null
-      }),
-    )
+    this.#unitRowUnits = fields.map((field) => {
+      const reading = readUnit(field.trim().replace(/^[[(](.*)[\])]$/, '$1'))
+      return reading.kind === 'unit' ? reading.unit : null
+    })
+    this.#makeBlock()
   }
 
-  #makeBlock(unitRow: readonly (Unit | null)[] | null): void {
+  #makeBlock(): void {
+    const unitRow = this.#unitRowUnits
     const { book, profile, sink, questions, dialect } = this.#tools
     const block = makeBlock(dialect.layout, this.#headerColumns, {
       book,
@@ -271,6 +318,7 @@ export class FileBody {
       doubtful: (token, column, quantity) => this.#doubtfulUnit(token, column, quantity ?? 'pressure'),
       unfit: (name, column, unit, quantity) => this.#unfitUnit(name, column, unit, quantity),
       unitRow,
+      oneOf: (name, positions) => this.#oneOf(name, positions),
       answerFor: (name) => questions.answer(`unknown-channel:${name}`),
     })
     this.block = block
@@ -278,11 +326,45 @@ export class FileBody {
     else if (this.#headerColumns.some(({ unit }) => unit.kind === 'unit')) this.unitFrom = 'header'
     else if (block.unitAt !== -1) this.unitFrom = 'column'
     else this.unitFrom = this.noteUnit === null ? 'profile' : 'note'
-    for (const { name, position } of block.unknown)
-      questions.ask(`unknown-channel:${name}`, () => channelQuestion(name, this.#headerLine, position, book))
+    this.#namesPending = true
     this.#checkUnit(block)
     for (const column of block.wide) if (column.unit !== null) column.unit = this.#settleUnit(column.unit)
     if (block.unit !== null) block.unit = this.#settleUnit(block.unit)
+  }
+
+  /** Asks about names that the register lacks; only when rows come, since a further header row may say more. */
+  #askNames(block: Block): void {
+    this.#namesPending = false
+    const { questions, book } = this.#tools
+    for (const { name, position } of block.unknown)
+      questions.ask(`unknown-channel:${name}`, () => channelQuestion(name, this.#headerLine, position, book))
+  }
+
+  /** Which of several columns of one name counts. */
+  #oneOf(name: string, positions: readonly number[]): number | null {
+    const { questions } = this.#tools
+    const id = `same-name:${name}`
+    const answer = questions.answer(id)
+    if (answer !== null) return positions.find((position) => String(position) === answer) ?? null
+    const column = positions[1] ?? null
+    questions.ask(id, () =>
+      question({
+        id,
+        kind: 'same-name',
+        blocking: false,
+        line: this.#headerLine,
+        column,
+        text: `Columns ${positions.join(' and ')} are all called “${name}”. All of them are left out until it is said which one is the channel.`,
+        found: `“${name}” ${positions.length} times`,
+        expected: 'a name of its own for every column',
+        mend: 'Choose by the values that the gauge showed last, and correct the name at the logger.',
+        choices: [
+          ...positions.map((position) => choice(String(position), `column ${position}`)),
+          choice('leave-out', 'leave all of them out'),
+        ],
+      }),
+    )
+    return null
   }
 
   #doubtfulUnit(token: string, column: number, quantity: Quantity): Unit | 'leave-out' | null {
@@ -344,6 +426,7 @@ export class FileBody {
     const block = this.block
     if (block === null) return null
     const unknown = block.unknown[0]
+    if (block.wide.length === 0 && block.repeated.length > 0) return null
     // Before anything is confirmed about a source, names that the register lacks are asked about one by one.
     if (
       profile.layout === null &&
@@ -389,6 +472,7 @@ export class FileBody {
   #row(row: Row, terminated: boolean): void {
     const { tally, dialect } = this.#tools
     const { block, line, text } = row
+    if (this.#namesPending) this.#askNames(block)
     if (!this.#sawRow) this.refusal = this.#judge()
     this.#sawRow = true
     if (this.refusal !== null) {
@@ -556,6 +640,7 @@ export class FileBody {
   }
 
   end(): void {
+    while (this.#open !== null) this.#closeQuoted()
     this.#release(null)
     this.#watch.end(this.#times?.fullDay === false)
     if (this.#coarseRows > 0)

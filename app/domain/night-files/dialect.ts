@@ -5,6 +5,7 @@ import { refuseMarkup } from './content-kind.ts'
 import { splitLoosely } from './fields.ts'
 import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
 import { directiveSeparator, isComment, isFooter } from './line-kinds.ts'
+import { columnsWithoutHeader } from './no-header.ts'
 import { decimalEvidence } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
 import { settleTime } from './settle-time.ts'
@@ -21,6 +22,7 @@ export interface Dialect {
   joinsCommas: boolean
   layout: 'wide' | 'long'
   columns: HeaderColumn[]
+  /** 0 when the file has none. */
   headerLine: number
   timeFormat: TimeFormat | null
   /** Zone of times that carry no offset; null while a person has to say it. */
@@ -71,22 +73,28 @@ export function settleDialect(
     !text.includes('\u0000')
   const plain = head.filter(isPlain)
   const headerLine = plain.find(({ text }) => looksLikeHeader(splitLoosely(text, separator), book))
-  if (headerLine === undefined) {
+  const bare =
+    headerLine === undefined ? columnsWithoutHeader(plain, separator, profile, book, questions) : null
+  if (headerLine === undefined && bare === null) {
     const at = plain[0] ?? first
     return notLog(`${excerpt(at.text)} and no line with the names of the columns`, at.line)
   }
-  const { layout, columns } = readHeader(splitLoosely(headerLine.text, separator), book, profile)
+  const { layout, columns } =
+    bare !== null || headerLine === undefined
+      ? { layout: 'wide' as const, columns: bare ?? [] }
+      : readHeader(splitLoosely(headerLine.text, separator), book, profile)
+  const headerAt = headerLine?.line ?? 0
   const timeAt = columns.findIndex(({ role }) => role === 'time')
   if (timeAt === -1)
-    return notLog(`a header without a column for the time: ${excerpt(headerLine.text)}`, headerLine.line)
+    return notLog(`no column for the time in ${excerpt((headerLine ?? first).text)}`, headerAt || first.line)
   const rows = plain
-    .filter(({ line, text }) => line > headerLine.line && !isFooter(text))
+    .filter(({ line, text }) => line > headerAt && !isFooter(text))
     .map(({ line, text }) => ({ fields: splitLoosely(text, separator), line }))
     .filter(({ fields }) => fields.length > 1 && !looksLikeUnitRow(fields) && !looksLikeHeader(fields, book))
   if (rows.length === 0)
     return {
       code: 'header-only',
-      line: headerLine.line,
+      line: headerAt,
       column: null,
       found: 'a header and no row under it',
       expected: 'at least one row of readings under the header',
@@ -100,7 +108,15 @@ export function settleDialect(
     }
   const decimalMark = settleDecimalMark(joinsCommas, rows, columns, layout, separator, profile, questions)
   const time = settleTime(
-    { lines: head, columns, rows, headerLine: headerLine.line, separator, decimalMark, layout },
+    {
+      lines: head,
+      columns,
+      rows,
+      headerLine: headerAt || (rows[0]?.line ?? 1),
+      separator,
+      decimalMark,
+      layout,
+    },
     profile,
     context,
     questions,
@@ -112,7 +128,7 @@ export function settleDialect(
     joinsCommas,
     layout,
     columns,
-    headerLine: headerLine.line,
+    headerLine: headerAt,
     timeFormat: time.format,
     zone: time.zone,
     start: time.start,

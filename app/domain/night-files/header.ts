@@ -147,6 +147,32 @@ export function readHeader(
   return { layout, columns }
 }
 
+/** Lays a further header row over the one above it: names that the register knows count, the others stay. */
+export function joinHeaders(above: readonly HeaderColumn[], below: readonly HeaderColumn[]): HeaderColumn[] {
+  return above.map((column, i) => {
+    const other = below[i]
+    if (other === undefined || other.inFile === '' || other.role !== 'channel') return column
+    return { ...other, unit: other.unit.kind === 'none' ? column.unit : other.unit }
+  })
+}
+
+/** Columns of a file without a header, in the order that the profile or a person gives. */
+export function columnsInOrder(order: readonly string[], profile: SourceProfile): HeaderColumn[] {
+  return order.map((name, i): HeaderColumn => {
+    const own = profile.columns.find(({ inFile }) => inFile === String(i + 1))
+    const role = name === 'time' || name === 'date' ? name : name === '-' ? 'left-out' : 'channel'
+    return {
+      role,
+      inFile: `column ${i + 1}`,
+      name,
+      unit: { kind: 'none' },
+      profileUnit: own?.unit ?? null,
+      profileChannel: role === 'channel' ? name : undefined,
+      quantity: own?.quantity ?? null,
+    }
+  })
+}
+
 /** Several columns may sound like a time (time, elapsed, UTC): the first counts, a date column joins it. */
 function settleTimeColumns(columns: HeaderColumn[]): void {
   const times = columns.filter((column) => column.role === 'time')

@@ -86,6 +86,14 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
         `${many(doubts['open-sensor'], 'One temperature is', 'temperatures are')} at full scale, as an open sensor reads, and will be stored as fault.`,
       ),
     )
+  if (doubts.dates > 0)
+    remarks.push(
+      remark(
+        'outside-dates',
+        doubts.dates,
+        `${many(doubts.dates, 'One reading lies', 'readings lie')} outside the dates of the channel in the register and will be stored as suspect.`,
+      ),
+    )
   if (doubts.spaced > 0)
     remarks.push(
       remark(

@@ -25,7 +25,7 @@ export interface Row {
 }
 
 export type DoubtCounts = Record<
-  'zero' | 'negative' | 'ceiling' | 'open-sensor' | 'spaced' | 'future' | 'conflict',
+  'zero' | 'negative' | 'ceiling' | 'open-sensor' | 'spaced' | 'future' | 'conflict' | 'dates',
   number
 >
 
@@ -53,12 +53,15 @@ export class RowReader {
     spaced: 0,
     future: 0,
     conflict: 0,
+    dates: 0,
   }
   leftOut = 0
   /** First row of a long file whose unit is another than that of the row before. */
   unitChange: { line: number; from: string; to: string } | null = null
   #rowUnitBefore: Unit | null = null
   readonly #tools: RowTools
+  /** Dates of the channels, by their index. */
+  readonly #dates: { fromMs: number; untilMs: number }[] = []
   /** Results of the row at hand. */
   #kept = 0
   #duplicates = 0
@@ -194,6 +197,21 @@ export class RowReader {
       questions.ask(`unknown-word:${plainWord(text)}`, () => wordQuestion(text, row.line, at + 1))
   }
 
+  /** Whether the register says that the channel did not exist at this time. */
+  #isOutsideDates(channel: number, atMs: number): boolean {
+    let dates = this.#dates[channel]
+    if (dates === undefined) {
+      const match = this.#tools.book.match(this.#tools.sink.channels[channel]?.name ?? '')
+      const known = match.kind === 'known' ? match.channel : null
+      dates = {
+        fromMs: known?.fromMs ?? Number.NEGATIVE_INFINITY,
+        untilMs: known?.untilMs ?? Number.POSITIVE_INFINITY,
+      }
+      this.#dates[channel] = dates
+    }
+    return atMs < dates.fromMs || atMs >= dates.untilMs
+  }
+
   #emit(channel: number, atMs: number, row: Row, text: string, marks: number): void {
     const { cells, sink, nowMs } = this.#tools
     let { quality } = cells
@@ -203,6 +221,11 @@ export class RowReader {
     }
     if (atMs > nowMs + FUTURE_MS) {
       this.doubts.future += 1
+      this.#flagged = true
+      if (quality === GOOD) quality = SUSPECT
+    }
+    if (this.#isOutsideDates(channel, atMs)) {
+      this.doubts.dates += 1
       this.#flagged = true
       if (quality === GOOD) quality = SUSPECT
     }

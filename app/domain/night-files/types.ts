@@ -11,6 +11,9 @@ export interface KnownChannel {
   quantity: Quantity | null
   /** Left out of every file from now on. */
   ignored?: boolean
+  /** Readings before or from these instants on do not belong to the channel. */
+  fromMs?: number | null
+  untilMs?: number | null
 }
 
 /** An answer to a question; it holds for this file. */
@@ -167,6 +170,8 @@ export type QuestionKind =
   | 'basis'
   | 'floor'
   | 'clock-jump'
+  | 'same-name'
+  | 'column'
 
 export interface Question extends Finding {
   /** Stable for the same file: `unit`, `unknown-channel:HC99Z` … */
@@ -204,6 +209,7 @@ export type RemarkKind =
   | 'stuck'
   | 'offset-change'
   | 'coarse-time'
+  | 'outside-dates'
 
 /** Something a person should look at before taking the file in. */
 export interface Remark {
