@@ -55,6 +55,8 @@ export interface LinePageData {
   figures: FacilityFigures
   worst: { tag: string; ratio: number; pa: number } | null
   nightFiles: NightFileStatus[]
+  /** Sources that owe night files and have never sent one, which is not the same as being late. */
+  silentSources: string[]
   at: Date
   zone: string
 }
@@ -69,6 +71,7 @@ export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
     listSourceEnds(db, at),
   ])
   const mainCodes = new Set(lines.filter(({ joinsLineId }) => joinsLineId === null).map(({ code }) => code))
+  const owing = sources.filter(({ dueAt }) => dueAt !== '')
   const needed = limitFor(limits, 'available-at-target', null)?.value ?? standings.length
   return {
     lines: lines.map(({ code, name, lengthM, joinsAtM }) => ({ code, name, lengthM, joinsAtM })),
@@ -83,8 +86,8 @@ export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
       needed,
     ),
     worst: worstInService(standings),
-    nightFiles: sources
-      .filter(({ dueAt }) => dueAt !== '')
+    nightFiles: owing
+      .filter(({ endAt }) => endAt !== null)
       .map((source) =>
         expectedNight({
           code: source.code,
@@ -94,6 +97,7 @@ export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
           zone: site.timeZone,
         }),
       ),
+    silentSources: owing.filter(({ endAt }) => endAt === null).map(({ code }) => code),
     at,
     zone: site.timeZone,
   }

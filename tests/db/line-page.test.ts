@@ -4,7 +4,7 @@ import type { PumpSpeeds } from '#app/domain/register.ts'
 import { readLinePage } from '#app/services/line-page.server.ts'
 import { after, MORNING } from '#tests/support/clock.ts'
 import { freshDatabase } from '#tests/support/db.ts'
-import { createSegment, createSite, createState, createUser } from '#tests/support/factories.ts'
+import { createSegment, createSite, createSource, createState, createUser } from '#tests/support/factories.ts'
 
 const db = freshDatabase()
 const HOUR = 3600
@@ -41,6 +41,13 @@ test('Line shows the pumps at work at its instant, in order along the line', asy
   ])
   const before = await pumpsAt(after(MORNING, -2 * HOUR))
   expect(before?.map(({ tag }) => tag)).toEqual(['NP-1', 'TC-9'])
+})
+
+test('a source that never sent a file is named as such, not as late', async () => {
+  await createSource(db, { code: 'NL-X', dueAt: '07:00' })
+  const { nightFiles, silentSources } = await readLinePage(db, MORNING)
+  expect(nightFiles).toEqual([])
+  expect(silentSources).toEqual(['NL-X'])
 })
 
 test('a pump whose speeds leave out a gas of the wall has its mark, and the segment no prediction', async () => {

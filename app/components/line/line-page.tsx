@@ -15,6 +15,7 @@ export function LinePage({
   figures,
   worst,
   nightFiles,
+  silentSources,
   trends,
   at,
   dayBefore,
@@ -36,6 +37,7 @@ export function LinePage({
         figures={figures}
         worst={worst}
         nightFiles={nightFiles}
+        silentSources={silentSources}
         perWeekOfWorst={worst === null ? null : (trendOf(trends, worst.tag)?.perWeek ?? null)}
       />
       {!figures.available && figures.unavailableBecause !== '' && (

@@ -15,11 +15,13 @@ export function MorningFigures({
   figures,
   worst,
   nightFiles,
+  silentSources,
   perWeekOfWorst,
 }: {
   figures: FacilityFigures
   worst: Worst | null
   nightFiles: readonly NightFileStatus[]
+  silentSources: readonly string[]
   perWeekOfWorst: number | null
 }) {
   const takenIn = nightFiles.filter(({ state }) => state === 'taken-in').length
@@ -80,6 +82,7 @@ export function MorningFigures({
           : expected.length > 0
             ? `still to come: ${shortList(expected.map(({ code }) => code))}`
             : 'all in'}
+        {silentSources.length > 0 && `; never sent one: ${shortList(silentSources)}`}
       </Figure>
     </dl>
   )
