@@ -100,7 +100,7 @@ function Choice({
               defaultChecked={value === chosen}
               className="size-5 shrink-0 accent-ink"
             />
-            <span className="font-medium">{label}</span>
+            <span className="font-medium whitespace-nowrap">{label}</span>
             <span className="text-sm text-ink-2">{hint}</span>
           </label>
         ))}

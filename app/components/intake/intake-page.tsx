@@ -18,8 +18,8 @@ const NIGHT_COLUMNS: Column<NightRow>[] = [
     head: 'Source',
     cell: ({ sourceCode, sourceName }) => <span title={sourceName}>{sourceCode}</span>,
   },
-  { key: 'due', head: 'Due', nowrap: true, cell: ({ dueAt }) => <Instant at={dueAt} /> },
   { key: 'state', head: 'State', nowrap: true, cell: ({ state }) => <StateTag {...NIGHT_WORDS[state]} /> },
+  { key: 'due', head: 'Due', nowrap: true, cell: ({ dueAt }) => <Instant at={dueAt} /> },
   {
     key: 'file',
     head: 'File',

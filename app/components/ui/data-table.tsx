@@ -44,33 +44,36 @@ export function DataTable<Row>({
       tabIndex={0}
       className="relative -mx-1 overflow-x-auto px-1 print:overflow-visible"
     >
-      <table className="w-full border-collapse">
-        <caption className={captionShown ? 'pb-1 text-left text-sm text-ink-2' : 'sr-only'}>
-          {caption}
-        </caption>
-        <thead>
-          <tr>
-            {columns.map(({ key, head, align }) => (
-              <th
-                key={key}
-                scope="col"
-                className={`border-b px-2.5 py-1.5 align-bottom text-sm font-medium text-ink-3 first:pl-0 last:pr-0 ${align === 'right' ? 'text-right' : 'text-left'}`}
-              >
-                {head}
-              </th>
-            ))}
-          </tr>
-        </thead>
-        <tbody>
-          {rows.map((row) => (
-            <tr key={rowKey(row)} className={rowClass?.(row)}>
-              {columns.map((column) => (
-                <Cell key={column.key} column={column} row={row} />
+      {/* As wide as its text wants, up to a limit: squeezed to the screen, a sentence would stand one word a line. */}
+      <div className="w-max max-w-[46rem] min-w-full print:w-full">
+        <table className="w-full border-collapse">
+          <caption className={captionShown ? 'pb-1 text-left text-sm text-ink-2' : 'sr-only'}>
+            {caption}
+          </caption>
+          <thead>
+            <tr>
+              {columns.map(({ key, head, align }) => (
+                <th
+                  key={key}
+                  scope="col"
+                  className={`border-b px-2.5 py-1.5 align-bottom text-sm font-medium text-ink-3 first:pl-0 last:pr-0 ${align === 'right' ? 'text-right' : 'text-left'}`}
+                >
+                  {head}
+                </th>
               ))}
             </tr>
-          ))}
-        </tbody>
-      </table>
+          </thead>
+          <tbody>
+            {rows.map((row) => (
+              <tr key={rowKey(row)} className={rowClass?.(row)}>
+                {columns.map((column) => (
+                  <Cell key={column.key} column={column} row={row} />
+                ))}
+              </tr>
+            ))}
+          </tbody>
+        </table>
+      </div>
     </div>
   )
 }

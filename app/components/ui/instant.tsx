@@ -28,7 +28,7 @@ export function Instant({
       title={`${siteTimeText(at, zone, true)} (${offsetLabel(at, zone)})`}
       className={className}
     >
-      {text}
+      <span className="whitespace-nowrap">{text}</span>
       {age && <span className="text-ink-3"> · {ageText(at, now)}</span>}
     </time>
   )
