@@ -57,8 +57,8 @@ describe('a typed value', () => {
   })
 
   it('takes every unit that is offered', () => {
+    // 20 K would be colder than any tube here.
     for (const quantity of TYPED_QUANTITIES)
-      // 20 K would be colder than any tube here.
       for (const unit of TYPED_UNITS[quantity])
         expect(readTypedValue(unit === 'K' ? '293' : '20', unit, quantity), unit).toMatchObject({ ok: true })
   })
