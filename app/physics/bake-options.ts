@@ -49,6 +49,9 @@ export interface BakeChoice {
 export function bakeChoice(question: BakeQuestion): BakeChoice {
   const { coolestC, hottestC, stepC = 5, powerCapW = Infinity } = question
   requirePositive('stepC', stepC)
+  requireWithin('hottestC', hottestC, coolestC, 1000)
+  requireWithin('number of temperatures', (hottestC - coolestC) / stepC, 0, 10_000)
+  if (question.powerCapW !== undefined) requirePositive('powerCapW', powerCapW)
   requireWithin('coolestC', coolestC, question.model.temperatureK - ZERO_CELSIUS_K, hottestC)
   const met: BakeOption[] = []
   const left: BakeChoice['left'] = []

@@ -57,6 +57,8 @@ export function molecularSpecific(gas: Gas, diameterM: number, temperatureK: num
 
 /** Specific laminar conductance pi d4 p/(128 eta) at the mean pressure (Hagen and Poiseuille), m4/s. */
 export function viscousSpecific(diameterM: number, meanPressurePa: number, viscosityPaS: number): number {
+  requirePositive('diameterM', diameterM)
+  requireWithin('meanPressurePa', meanPressurePa, 0, 1e9)
   requirePositive('viscosityPaS', viscosityPaS)
   return (Math.PI * diameterM ** 4 * meanPressurePa) / (128 * viscosityPaS)
 }
@@ -81,6 +83,9 @@ export function slipPerPascal(
   temperatureK: number,
   viscosityPaS: number,
 ): number {
+  requirePositive('diameterM', diameterM)
+  requirePositive('temperatureK', temperatureK)
+  requirePositive('viscosityPaS', viscosityPaS)
   return (diameterM * Math.sqrt(GAS_DATA[gas].molarMass / (GAS_CONSTANT * temperatureK))) / viscosityPaS
 }
 
@@ -103,12 +108,14 @@ export function transitionalFlow(
  * X = d p sqrt(M/RT)/eta (Knudsen 1909). Continuous and positive from molecular to laminar flow.
  */
 export function transitionalSpecific(flow: TransitionalFlow, meanPressurePa: number): number {
+  requireWithin('meanPressurePa', meanPressurePa, 0, 1e9)
   const x = flow.slipPerPa * meanPressurePa
   return flow.viscousPerPa * meanPressurePa + (flow.molecular * (1 + x)) / (1 + 1.24 * x)
 }
 
 /** Slope of `transitionalSpecific` over the mean pressure, m4/(s Pa). */
 export function transitionalSlope(flow: TransitionalFlow, meanPressurePa: number): number {
+  requireWithin('meanPressurePa', meanPressurePa, 0, 1e9)
   const x = flow.slipPerPa * meanPressurePa
   return flow.viscousPerPa - (0.24 * flow.molecular * flow.slipPerPa) / (1 + 1.24 * x) ** 2
 }
@@ -129,6 +136,7 @@ export function apertureContinuumFlow(
   temperatureK: number,
   downOverUp: number,
 ): number {
+  requirePositive('temperatureK', temperatureK)
   requirePositive('areaM2', areaM2)
   requireWithin('downOverUp', downOverUp, 0, 1)
   const { molarMass, heatRatio: g } = GAS_DATA[gas]
@@ -178,7 +186,9 @@ export function apertureFlow(
  * 10 %). The short pipe that a real valve is would lower continuum flow by some 10 to 20 %.
  */
 export function apertureThroughput(flow: ApertureFlow, upPa: number, downPa: number): number {
-  if (!(upPa > downPa)) return 0
+  requireWithin('upPa', upPa, 0, 1e9)
+  requireWithin('downPa', downPa, 0, 1e9)
+  if (upPa <= downPa) return 0
   const x = flow.continuumPerPa * upPa
   const fromChoked = Math.max(0, (downPa / upPa - flow.chokedRatio) / (1 - flow.chokedRatio))
   const drop = 1 - fromChoked * fromChoked
@@ -198,6 +208,7 @@ export function inSeries(...conductances: readonly number[]): number {
 
 /** Conductance of parts side by side. */
 export function inParallel(...conductances: readonly number[]): number {
+  for (const value of conductances) requireWithin('conductance', value, 0, 1e12)
   return conductances.reduce((sum, value) => sum + value, 0)
 }
 

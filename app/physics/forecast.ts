@@ -3,7 +3,7 @@
  * refusal with its reason. Many floors from none up to the last reading are tried; each counts by how well it explains
  * the readings, so the range carries the doubt about a floor as well as the errors of level and exponent.
  */
-import { requirePositive, requireWithin } from './argument-checks.ts'
+import { requireFinite, requirePositive, requireWithin } from './argument-checks.ts'
 import { tryAgainAfter, weighFloors } from './forecast-doubt.ts'
 import { normalQuantile, variancePenalty, weightedQuantile } from './statistics.ts'
 import { fitTrend, logSeries, type PressureSeries, residualsOf } from './trend.ts'
@@ -59,6 +59,7 @@ export function forecastTimeToTarget(series: PressureSeries, options: ForecastOp
   const { targetPa, windowStartHours, minimumHours = 12 } = options
   requirePositive('targetPa', targetPa)
   requireWithin('minimumHours', minimumHours, 1, 1e5)
+  if (windowStartHours !== undefined) requireFinite('windowStartHours', windowStartHours)
   const goodFrom = Math.max(FIRST_GOOD_HOUR, windowStartHours ?? 0)
   const all = logSeries(series, goodFrom)
   let end = goodFrom

@@ -1,12 +1,13 @@
 /** What a run of one gas is made of: walls, pumps, leaks and valves that change at known times. Data only. */
 import { requirePositive, requireWithin } from './argument-checks.ts'
 import { BOLTZMANN } from './constants.ts'
+import { PhysicsError } from './errors.ts'
 import type { Gas } from './gases.ts'
 import { lowHydrogenRate, type Sheet, slabAtomFlux } from './hydrogen.ts'
 import { type PowerLaw, powerLawRate } from './outgassing.ts'
 import { hydrogenAge, type Programme } from './programme.ts'
 import { type PumpCurve, requirePumpCurve } from './pumps.ts'
-import type { WaterIsotherm } from './water.ts'
+import { requireIsotherm, type WaterIsotherm } from './water.ts'
 
 /** What the wall gives off, per geometric area. */
 export type WallSource =
@@ -147,19 +148,24 @@ export function requireGasRun(run: GasRun, nodes: number): void {
   const { isotherm, unbaked, getter, viscosityPaS } = run
   for (const { node } of [...run.pumps, ...(run.leaks ?? [])]) requireWithin('node', node, 0, nodes - 1)
   if (viscosityPaS !== undefined) requirePositive('viscosityPaS', viscosityPaS)
+  for (const wall of run.walls ?? []) requireWall(wall)
   for (const { capacityPaM3, mouthK, curve } of run.pumps) {
-    for (const { value } of curve) if (value) requirePumpCurve(value)
+    for (const { value, fromS } of curve) {
+      requireStart(fromS)
+      if (value) requirePumpCurve(value)
+    }
     if (capacityPaM3 !== undefined) requirePositive('capacityPaM3', capacityPaM3)
     if (mouthK !== undefined) requireWithin('mouthK', mouthK, 4, 1300)
   }
   for (const leak of run.leaks ?? []) {
     if (leak.gasK !== undefined) requirePositive('gasK', leak.gasK)
-    for (const { value } of leak.loadPaM3S) requireWithin('loadPaM3S', value, 0, 1e6)
+    for (const { value, fromS } of leak.loadPaM3S) {
+      requireStart(fromS)
+      requireWithin('loadPaM3S', value, 0, 1e6)
+    }
   }
   if (isotherm) {
-    requirePositive('capacityPerM2', isotherm.capacityPerM2)
-    requireWithin('lowJMol', isotherm.lowJMol, 0, 5e5)
-    requireWithin('highJMol', isotherm.highJMol, isotherm.lowJMol + 1, 5e5)
+    requireIsotherm(isotherm)
   }
   if (unbaked) {
     requireWithin('unbaked.share', unbaked.share, 0, 1)
@@ -172,5 +178,26 @@ export function requireGasRun(run: GasRun, nodes: number): void {
     requirePositive('getter.capacityPerM2', getter.capacityPerM2)
     const shares = typeof getter.wallShare === 'number' ? [getter.wallShare] : (getter.wallShare ?? [])
     for (const share of shares) requireWithin('getter.wallShare', share, 0, 1)
+  }
+}
+
+// Minus infinity is as good a start as any: it has always been so.
+function requireStart(fromS: number): void {
+  if (!(fromS < Infinity)) throw new PhysicsError('fromS', fromS, 'a time, or -Infinity for always')
+}
+
+function requireWall(wall: WallSource): void {
+  if (wall.kind === 'power-law') {
+    requirePositive('oneHourPaMS', wall.law.oneHourPaMS)
+    requireWithin('exponent', wall.law.exponent, 0, 10)
+    requireWithin('leadS', wall.leadS, 0, 1e12)
+    requirePositive('gasK', wall.gasK)
+  } else if (wall.kind === 'sheet') {
+    requireWithin('c0PerM3', wall.sheet.c0PerM3, 0, 1e30)
+    requirePositive('wallM', wall.sheet.wallM)
+    requirePositive('agedTauM2', wall.agedTauM2)
+  } else {
+    requireWithin('qPaMS', wall.qPaMS, 0, 1e3)
+    requirePositive('atK', wall.atK)
   }
 }

@@ -3,7 +3,7 @@
  * 300 K values of the CRC Handbook table "Viscosity of Gases" (Huber and Harvey); molar masses follow the IUPAC
  * weights. Diameter and mean free path are derived from the viscosity, so the three never disagree.
  */
-import { requirePositive } from './argument-checks.ts'
+import { requireFinite, requirePositive, requireWithin } from './argument-checks.ts'
 import { AVOGADRO, BOLTZMANN, GAS_CONSTANT, T20_K } from './constants.ts'
 
 export const GASES = ['H2', 'He', 'CH4', 'H2O', 'N2', 'CO', 'Ar', 'O2', 'CO2', 'air'] as const
@@ -57,12 +57,14 @@ export function viscosity(gas: Gas, temperatureK: number): number {
 
 /** Number density p/(kT), 1/m3. */
 export function numberDensity(pressurePa: number, temperatureK: number): number {
+  requireWithin('pressurePa', pressurePa, 0, 1e9)
   requirePositive('temperatureK', temperatureK)
   return pressurePa / (BOLTZMANN * temperatureK)
 }
 
 /** Impingement rate p/sqrt(2 pi m k T), molecules per m2 and s (Hertz and Knudsen). */
 export function impingementRate(gas: Gas, pressurePa: number, temperatureK: number): number {
+  requireWithin('pressurePa', pressurePa, 0, 1e9)
   requirePositive('temperatureK', temperatureK)
   return pressurePa / Math.sqrt(2 * Math.PI * moleculeMass(gas) * BOLTZMANN * temperatureK)
 }
@@ -75,6 +77,7 @@ export function monolayerTime(
   sitesPerM2 = 1e19,
   sticking = 1,
 ): number {
+  requirePositive('sitesPerM2', sitesPerM2)
   requirePositive('pressurePa', pressurePa)
   requirePositive('sticking', sticking)
   return sitesPerM2 / (sticking * impingementRate(gas, pressurePa, temperatureK))
@@ -112,6 +115,8 @@ export function flowRegime(
   knudsen: number,
   limits: RegimeLimits = { molecularAbove: 0.5, viscousBelow: 0.01 },
 ): FlowRegime {
+  requirePositive('molecularAbove', limits.molecularAbove)
+  requirePositive('viscousBelow', limits.viscousBelow)
   requirePositive('knudsen', knudsen)
   if (knudsen > limits.molecularAbove) return 'molecular'
   return knudsen < limits.viscousBelow ? 'viscous' : 'transitional'
@@ -124,6 +129,8 @@ export function reynoldsNumber(
   diameterM: number,
   temperatureK: number,
 ): number {
+  requireFinite('throughputPaM3S', throughputPaM3S)
+  requirePositive('temperatureK', temperatureK)
   requirePositive('diameterM', diameterM)
   const massFlow = (GAS_DATA[gas].molarMass * throughputPaM3S) / (GAS_CONSTANT * temperatureK)
   return (4 * massFlow) / (Math.PI * diameterM * viscosity(gas, temperatureK))

@@ -86,6 +86,8 @@ export function thermalTruePressure(readingPa: number, gas: GaugedGas): number {
 
 /** Ion current K I_e p in A, with the sensitivity K per Pa and the emission current in A. */
 export function ionCurrent(pressurePa: number, sensitivityPerPa: number, emissionA: number): number {
+  requirePositive('sensitivityPerPa', sensitivityPerPa)
+  requireWithin('emissionA', emissionA, 0, 10)
   requireWithin('pressurePa', pressurePa, 0, 1e3)
   return sensitivityPerPa * emissionA * pressurePa
 }
@@ -133,6 +135,7 @@ export function ionGaugeReading(
  * (Knudsen 1910).
  */
 export function tubePressureBehindGauge(gaugePa: number, gaugeK: number, tubeK: number): number {
+  requireWithin('gaugePa', gaugePa, 0, 1e6)
   requirePositive('gaugeK', gaugeK)
   requirePositive('tubeK', tubeK)
   return gaugePa * Math.sqrt(tubeK / gaugeK)

@@ -37,6 +37,8 @@ const HYDROGEN_ATOM_MASS = 1.00794e-3
 
 /** Diffusivity of hydrogen at a wall temperature, m2/s. */
 export function hydrogenDiffusivity(temperatureK: number, law: Diffusivity = AUSTENITIC_DIFFUSIVITY): number {
+  requireWithin('d0M2S', law.d0M2S, 0, 1)
+  requireWithin('energyJMol', law.energyJMol, 0, 1e6)
   requirePositive('temperatureK', temperatureK)
   return law.d0M2S * Math.exp(-law.energyJMol / (GAS_CONSTANT * temperatureK))
 }
@@ -95,6 +97,7 @@ export interface Sheet {
  * (Calder and Lewin, Br. J. Appl. Phys. 18 (1967) 1459).
  */
 export function slabAtomFlux(sheet: Sheet, temperatureK: number, tauM2: number): number {
+  requireWithin('c0PerM3', sheet.c0PerM3, 0, 1e30)
   requirePositive('tauM2', tauM2)
   requirePositive('wallM', sheet.wallM)
   const thickness = sheet.openFaces === 1 ? 2 * sheet.wallM : sheet.wallM
@@ -104,6 +107,7 @@ export function slabAtomFlux(sheet: Sheet, temperatureK: number, tauM2: number):
 
 /** Outgassing rate of the sheet in Pa m/s of hydrogen gas at `gasK` (20 degrees unless given). */
 export function slabRate(sheet: Sheet, temperatureK: number, tauM2: number, gasK: number = T20_K): number {
+  requirePositive('gasK', gasK)
   return (slabAtomFlux(sheet, temperatureK, tauM2) / 2) * BOLTZMANN * gasK
 }
 
@@ -125,6 +129,8 @@ export function transformedTime(pieces: readonly TemperaturePiece[], law?: Diffu
   let tau = 0
   for (const { seconds, fromK, toK } of pieces) {
     requireWithin('seconds', seconds, 0, 1e11)
+    requireWithin('fromK', fromK, 1, 3000)
+    requireWithin('toK', toK, 1, 3000)
     const parts = Math.max(1, Math.ceil(Math.abs(toK - fromK) / RAMP_PART_K))
     for (let part = 0; part < parts; part++) {
       const middle = (part + 0.5) / parts
@@ -149,6 +155,7 @@ export function lowHydrogenRate(
   temperatureK: number,
   energyJMol: number = LOW_HYDROGEN_ENERGY,
 ): number {
+  requireWithin('energyJMol', energyJMol, 0, 1e6)
   requirePositive('measuredPaMS', measuredPaMS)
   requirePositive('atK', atK)
   requirePositive('temperatureK', temperatureK)
@@ -165,6 +172,8 @@ export function recombinedContent(
   wallM: number,
   seconds: number,
 ): number {
+  requireWithin('c0PerM3', c0PerM3, 0, 1e30)
+  requireWithin('recombinationM4S', recombinationM4S, 0, 1)
   requirePositive('wallM', wallM)
   requireWithin('seconds', seconds, 0, 1e12)
   return c0PerM3 / (1 + (2 * recombinationM4S * c0PerM3 * seconds) / wallM)

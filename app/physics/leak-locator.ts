@@ -173,7 +173,7 @@ function requireSegment(segment: LeakedSegment, gauges: readonly GaugeRise[], er
   }
   for (const [i, gauge] of gauges.entries()) {
     requireWithin(`gauges[${i}].atM`, gauge.atM, 0, segment.lengthM)
-    requirePositive(`gauges[${i}].beforePa`, gauge.beforePa)
-    requirePositive(`gauges[${i}].afterPa`, gauge.afterPa)
+    requireWithin(`gauges[${i}].beforePa`, gauge.beforePa, Number.MIN_VALUE, 1e6)
+    requireWithin(`gauges[${i}].afterPa`, gauge.afterPa, Number.MIN_VALUE, 1e6)
   }
 }

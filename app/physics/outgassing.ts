@@ -23,6 +23,7 @@ export const FRESH_FLUOROELASTOMER: PowerLaw = { oneHourPaMS: 1.52e-4, exponent:
  * Rate at `seconds` after the start, Pa m/s. `leadS` keeps it finite at the start: the law is q1 (1 h/(t + lead))^a.
  */
 export function powerLawRate(law: PowerLaw, seconds: number, leadS = 0): number {
+  requireWithin('exponent', law.exponent, 0, 10)
   requirePositive('seconds', seconds + leadS)
   requirePositive('oneHourPaMS', law.oneHourPaMS)
   return law.oneHourPaMS * (HOUR_S / (seconds + leadS)) ** law.exponent
@@ -30,6 +31,8 @@ export function powerLawRate(law: PowerLaw, seconds: number, leadS = 0): number 
 
 /** Gas released per area between two times after the start, Pa m. */
 export function powerLawReleased(law: PowerLaw, fromS: number, toS: number): number {
+  requirePositive('oneHourPaMS', law.oneHourPaMS)
+  requireWithin('exponent', law.exponent, 0, 10)
   requirePositive('fromS', fromS)
   requireWithin('toS', toS, fromS, 1e12)
   const { oneHourPaMS, exponent } = law

@@ -12,6 +12,7 @@ export function pumpDownSeconds(
   toPa: number,
   ultimatePa = 0,
 ): number {
+  requirePositive('fromPa', fromPa)
   requirePositive('volumeM3', volumeM3)
   requirePositive('speedM3S', speedM3S)
   requireWithin('ultimatePa', ultimatePa, 0, fromPa)
@@ -21,6 +22,7 @@ export function pumpDownSeconds(
 
 /** Steady pressure over a pump with this gas load, Pa: p_u + Q/S. */
 export function steadyPressure(loadPaM3S: number, speedM3S: number, ultimatePa = 0): number {
+  requireWithin('ultimatePa', ultimatePa, 0, 1e6)
   requirePositive('speedM3S', speedM3S)
   requireWithin('loadPaM3S', loadPaM3S, 0, 1e9)
   return ultimatePa + loadPaM3S / speedM3S

@@ -2,7 +2,7 @@
  * Steady pressure along a tube in molecular flow. With a uniform source per metre the pressure is a parabola between
  * pumps, so balances over cells that meet half way between nodes are exact: a handful of nodes needs no finer mesh.
  */
-import { requirePositive, requireWithin } from './argument-checks.ts'
+import { requireFinite, requirePositive, requireWithin } from './argument-checks.ts'
 import { PhysicsError } from './errors.ts'
 
 export interface SteadyLine {
@@ -37,6 +37,7 @@ export function linePositions(line: SteadyLine, extraM: readonly number[] = []):
  * `linePositions`). A gas that comes in but is pumped nowhere has no steady pressure: that throws.
  */
 export function steadyPressures(line: SteadyLine, positionsM: readonly number[]): Float64Array {
+  requireFinite('sourcePerM', line.sourcePerM)
   requirePositive('specific', line.specific)
   const n = positionsM.length
   const sink = new Float64Array(n)
@@ -97,8 +98,17 @@ export interface PumpedStretch {
   readonly speedM3S: number
 }
 
+// Refuses a stretch that cannot be.
+function requireStretch({ sourcePerM, specific, lengthM, speedM3S }: PumpedStretch): void {
+  requireWithin('sourcePerM', sourcePerM, 0, 1e9)
+  requirePositive('specific', specific)
+  requirePositive('lengthM', lengthM)
+  requirePositive('speedM3S', speedM3S)
+}
+
 /** Pressure at `xM` from a pump when equal pumps stand every `lengthM`, q B (x (L - x)/(2c) + L/S), Pa. */
 export function periodicPressure(stretch: PumpedStretch, xM: number): number {
+  requireStretch(stretch)
   const { sourcePerM, specific, lengthM, speedM3S } = stretch
   requireWithin('xM', xM, 0, lengthM)
   return sourcePerM * ((xM * (lengthM - xM)) / (2 * specific) + lengthM / speedM3S)
@@ -106,12 +116,14 @@ export function periodicPressure(stretch: PumpedStretch, xM: number): number {
 
 /** Mean pressure with equal pumps every `lengthM`, Pa. */
 export function periodicMean(stretch: PumpedStretch): number {
+  requireStretch(stretch)
   const { sourcePerM, specific, lengthM, speedM3S } = stretch
   return sourcePerM * (lengthM ** 2 / (12 * specific) + lengthM / speedM3S)
 }
 
 /** Pressure at `xM` from the pump of a stretch pumped at one end and closed at the other, Pa. */
 export function endPumpedPressure(stretch: PumpedStretch, xM: number): number {
+  requireStretch(stretch)
   const { sourcePerM, specific, lengthM, speedM3S } = stretch
   requireWithin('xM', xM, 0, lengthM)
   return sourcePerM * ((lengthM * xM - xM ** 2 / 2) / specific + lengthM / speedM3S)
@@ -119,12 +131,14 @@ export function endPumpedPressure(stretch: PumpedStretch, xM: number): number {
 
 /** Mean pressure of a stretch pumped at one end and closed at the other, Pa. */
 export function endPumpedMean(stretch: PumpedStretch): number {
+  requireStretch(stretch)
   const { sourcePerM, specific, lengthM, speedM3S } = stretch
   return sourcePerM * (lengthM ** 2 / (3 * specific) + lengthM / speedM3S)
 }
 
 /** Pressure at `xM` of a stretch with the same pump at both ends, Pa. */
 export function bothEndsPressure(stretch: PumpedStretch, xM: number): number {
+  requireStretch(stretch)
   const { sourcePerM, specific, lengthM, speedM3S } = stretch
   requireWithin('xM', xM, 0, lengthM)
   return sourcePerM * ((xM * (lengthM - xM)) / (2 * specific) + lengthM / (2 * speedM3S))
@@ -135,14 +149,17 @@ export function bothEndsPressure(stretch: PumpedStretch, xM: number): number {
  * closed end at `lengthM`, Pa.
  */
 export function wallPumpedPressure(stretch: PumpedStretch, wallSpeed: number, xM: number): number {
+  requireStretch(stretch)
   const { sourcePerM, specific, lengthM, speedM3S } = stretch
   requirePositive('wallSpeed', wallSpeed)
   requireWithin('xM', xM, 0, lengthM)
   const kappa = Math.sqrt(wallSpeed / specific)
   const far = sourcePerM / wallSpeed
-  const flow = specific * kappa * Math.sinh(kappa * lengthM)
-  const amplitude = (speedM3S * far) / (flow + speedM3S * Math.cosh(kappa * lengthM))
-  return far - amplitude * Math.cosh(kappa * (lengthM - xM))
+  // Both sides of the fraction over e^(kappa L), or a long line would overflow.
+  const twice = Math.exp(-2 * kappa * lengthM)
+  const back = specific * kappa * (1 - twice) + speedM3S * (1 + twice)
+  const here = Math.exp(-kappa * xM) + Math.exp(-kappa * (2 * lengthM - xM))
+  return far - (speedM3S * far * here) / back
 }
 
 /**

@@ -2,7 +2,7 @@
  * Austenitic steel 304L between -20 and 650 degrees Celsius. Heat capacity, conductivity and expansion follow the
  * stainless formulas of EN 1993-1-2 annex C (from memory, not verified; data sheets agree at room temperature to 5-10 %).
  */
-import { requireWithin } from './argument-checks.ts'
+import { requireFinite, requireWithin } from './argument-checks.ts'
 import { ZERO_CELSIUS_K } from './constants.ts'
 
 /** Density, kg/m3 (data sheets give 7930 to 8000). */
@@ -39,5 +39,6 @@ export function steelStrain(fromK: number, toK: number): number {
 
 /** Stress in Pa where an expansion `strain` is blocked, elastic: past about 2e8 Pa the steel has long since yielded. */
 export function blockedStress(strain: number): number {
+  requireFinite('strain', strain)
   return STEEL_MODULUS_PA * strain
 }

@@ -38,6 +38,7 @@ export function marchLine(
   outputSeconds: readonly number[],
   stepSeconds = 600,
 ): LineHistory {
+  requireWithin('startK', line.startK, 200, 1300)
   requirePositive('lengthM', line.lengthM)
   requireWithin('intervals', line.intervals, 2, 20_000)
   requirePositive('stepSeconds', stepSeconds)

@@ -1,5 +1,5 @@
 /** Heat of one metre of insulated tube: what it stores and loses, what holds it and what brings it up. SI units. */
-import { requirePositive, requireWithin } from './argument-checks.ts'
+import { requireFinite, requirePositive, requireWithin } from './argument-checks.ts'
 import { GAS_CONSTANT, STEFAN_BOLTZMANN } from './constants.ts'
 import { PhysicsError } from './errors.ts'
 import { GAS_DATA, type Gas, viscosity } from './gases.ts'
@@ -15,6 +15,15 @@ export interface HeatedTube {
   specificHeatJKgK?: number
 }
 
+// Refuses a tube that cannot be, or surroundings where none stands.
+function requireTube(tube: HeatedTube): void {
+  requirePositive('diameterM', tube.diameterM)
+  requirePositive('wallM', tube.wallM)
+  requirePositive('lossWM2K', tube.lossWM2K)
+  requireWithin('ambientK', tube.ambientK, 100, 1300)
+  if (tube.specificHeatJKgK !== undefined) requirePositive('specificHeatJKgK', tube.specificHeatJKgK)
+}
+
 /** Cross-section of the wall (thin), m2. */
 export function wallSection(tube: Pick<HeatedTube, 'diameterM' | 'wallM'>): number {
   requirePositive('diameterM', tube.diameterM)
@@ -24,6 +33,7 @@ export function wallSection(tube: Pick<HeatedTube, 'diameterM' | 'wallM'>): numb
 
 /** Heat to warm one metre by one kelvin at `tubeK`, J/(m K). */
 export function heatCapacityPerM(tube: HeatedTube, tubeK: number): number {
+  requireTube(tube)
   return STEEL_DENSITY_KG_M3 * wallSection(tube) * (tube.specificHeatJKgK ?? steelHeatCapacity(tubeK))
 }
 
@@ -35,17 +45,19 @@ export function storedHeatPerM(tube: HeatedTube, fromK: number, toK: number): nu
 
 /** Loss per metre and kelvin, W/(m K). */
 export function lossPerMK(tube: HeatedTube): number {
-  requirePositive('lossWM2K', tube.lossWM2K)
+  requireTube(tube)
   return tube.lossWM2K * Math.PI * tube.diameterM
 }
 
 /** Power per metre that holds the tube at `tubeK`, W/m. */
 export function holdPower(tube: HeatedTube, tubeK: number): number {
+  requireWithin('tubeK', tubeK, 100, 1300)
   return lossPerMK(tube) * (tubeK - tube.ambientK)
 }
 
 /** Power per metre at `tubeK` while the temperature climbs `rateKS` K/s, W/m; negative where cooling must be helped. */
 export function rampPower(tube: HeatedTube, tubeK: number, rateKS: number): number {
+  requireFinite('rateKS', rateKS)
   return holdPower(tube, tubeK) + heatCapacityPerM(tube, tubeK) * rateKS
 }
 
@@ -59,6 +71,9 @@ export function thermalTime(tube: HeatedTube, tubeK: number): number {
  * between. Throws where the power would not even hold `toK`.
  */
 export function heatUpSeconds(tube: HeatedTube, powerWM: number, fromK: number, toK: number): number {
+  requireFinite('powerWM', powerWM)
+  requireWithin('ambientK', tube.ambientK, 100, 1300)
+  requireWithin('fromK', fromK, 100, 1300)
   requireWithin('toK', toK, fromK, 1300)
   const needed = holdPower(tube, toK)
   if (!(powerWM > needed))
@@ -68,6 +83,7 @@ export function heatUpSeconds(tube: HeatedTube, powerWM: number, fromK: number, 
 
 /** Seconds to cool from `fromK` to `toK` with the heating off. Throws where `toK` is not above the surroundings. */
 export function coolSeconds(tube: HeatedTube, fromK: number, toK: number): number {
+  requireWithin('ambientK', tube.ambientK, 100, 1300)
   if (!(toK > tube.ambientK)) {
     throw new PhysicsError('toK', toK, `a temperature above the surroundings (${tube.ambientK} K)`)
   }
@@ -91,6 +107,7 @@ export function bakeEnergyPerM(
   tube: HeatedTube,
   ramp: { fromK: number; toK: number; rateKS: number; holdSeconds: number },
 ): number {
+  requireWithin('fromK', ramp.fromK, 100, 1300)
   requirePositive('rateKS', ramp.rateKS)
   requireWithin('holdSeconds', ramp.holdSeconds, 0, 1e9)
   requireWithin('toK', ramp.toK, ramp.fromK, 1300)
@@ -111,6 +128,7 @@ export function joulePower(
   currentA: number,
   tubeK: number,
 ): number {
+  requireWithin('currentA', currentA, 0, 1e6)
   return currentA ** 2 * resistancePerM(tube, tubeK)
 }
 
@@ -132,6 +150,8 @@ export function seriesVolts(
   lengthM: number,
   tubes = 2,
 ): number {
+  requireWithin('currentA', currentA, 0, 1e6)
+  requirePositive('tubes', tubes)
   requirePositive('lengthM', lengthM)
   return currentA * resistancePerM(tube, tubeK) * lengthM * tubes
 }
@@ -141,6 +161,9 @@ export function insulationLoss(
   diameterM: number,
   layer: { thicknessM: number; conductivityWMK: number; filmWM2K: number },
 ): number {
+  requirePositive('thicknessM', layer.thicknessM)
+  requirePositive('conductivityWMK', layer.conductivityWMK)
+  requirePositive('filmWM2K', layer.filmWM2K)
   requirePositive('diameterM', diameterM)
   const outer = diameterM / 2 + layer.thicknessM
   const wool = Math.log((2 * outer) / diameterM) / (2 * Math.PI * layer.conductivityWMK)
@@ -150,24 +173,32 @@ export function insulationLoss(
 
 /** Radiation of a bare surface to its surroundings, W/m2. */
 export function radiationLoss(emissivity: number, surfaceK: number, ambientK: number): number {
+  requireWithin('surfaceK', surfaceK, 0, 5000)
+  requireWithin('ambientK', ambientK, 0, 5000)
   requireWithin('emissivity', emissivity, 0, 1)
   return emissivity * STEFAN_BOLTZMANN * (surfaceK ** 4 - ambientK ** 4)
 }
 
 /** Length over which a cold flange draws the wall down, sqrt(k w / U), m. */
 export function finLength(conductivityWMK: number, wallM: number, lossWM2K: number): number {
+  requirePositive('conductivityWMK', conductivityWMK)
+  requirePositive('wallM', wallM)
   requirePositive('lossWM2K', lossWM2K)
   return Math.sqrt((conductivityWMK * wallM) / lossWM2K)
 }
 
 /** Temperature at `fromEndM` from an end held at `endK` on a long, evenly heated tube at `farK`. */
 export function finTemperature(fromEndM: number, finM: number, endK: number, farK: number): number {
+  requireWithin('fromEndM', fromEndM, 0, 1e6)
+  requirePositive('endK', endK)
+  requirePositive('farK', farK)
   requirePositive('finM', finM)
   return farK + (endK - farK) * Math.exp(-fromEndM / finM)
 }
 
 /** Free expansion of a length between two temperatures, m: the stroke its bellows must take. */
 export function expansionM(lengthM: number, fromK: number, toK: number): number {
+  requireWithin('lengthM', lengthM, 0, 1e6)
   return lengthM * steelStrain(fromK, toK)
 }
 
@@ -181,6 +212,7 @@ export function transpirationRatio(
   gaugeK: number,
   line: { gas: Gas; diameterM: number; pressurePa: number },
 ): number {
+  requirePositive('diameterM', line.diameterM)
   requirePositive('tubeK', tubeK)
   requirePositive('gaugeK', gaugeK)
   requireWithin('pressurePa', line.pressurePa, 0, 1e6)

@@ -193,6 +193,7 @@ function addBranch(
       while (edges[section + 1]! < mark - SAME_POINT_M) section++
       const start = marks[i - 1]!
       const cells = Math.max(1, Math.ceil((mark - start) / cellM - 1e-9))
+      requireWithin('number of cells', cells, 1, 1e6)
       const step = (mark - start) / cells
       for (let cell = 1; cell <= cells; cell++) {
         const x = cell === cells ? mark : start + cell * step

@@ -44,21 +44,25 @@ export type OutgassingUnit = keyof typeof OUTGASSING_PA_M_S
 
 /** Pressure in Pa of `value` in `unit`. */
 export function toPascal(value: number, unit: PressureUnit): number {
+  requireFinite('value', value)
   return value * PRESSURE_PA[unit]
 }
 
 /** Value in `unit` of a pressure in Pa. */
 export function fromPascal(pressurePa: number, unit: PressureUnit): number {
+  requireFinite('pressurePa', pressurePa)
   return pressurePa / PRESSURE_PA[unit]
 }
 
 /** Throughput in Pa m3/s of `value` in `unit`. */
 export function toPaM3S(value: number, unit: ThroughputUnit): number {
+  requireFinite('value', value)
   return value * THROUGHPUT_PA_M3_S[unit]
 }
 
 /** Outgassing rate in Pa m/s of `value` in `unit`. */
 export function toPaMS(value: number, unit: OutgassingUnit): number {
+  requireFinite('value', value)
   return value * OUTGASSING_PA_M_S[unit]
 }
 
@@ -86,6 +90,7 @@ export function fahrenheitToCelsius(fahrenheit: number): number {
  * without its temperature is not an amount: the same flow reads 44 % higher in gas at 423 K.
  */
 export function moleculesPerSecond(throughputPaM3S: number, gasK: number = T20_K): number {
+  requireFinite('throughputPaM3S', throughputPaM3S)
   requirePositive('gasK', gasK)
   return throughputPaM3S / (BOLTZMANN * gasK)
 }

@@ -40,10 +40,20 @@ export const DEFAULT_WATER: WaterIsotherm = {
  */
 export const WATER_FLOOR_PA = 1e-11
 
+/** Throws on an isotherm that no wall has, naming the number. */
+export function requireIsotherm(isotherm: WaterIsotherm): void {
+  requireWithin('lowJMol', isotherm.lowJMol, 0, 5e5)
+  requireWithin('highJMol', isotherm.highJMol, isotherm.lowJMol + 1, 5e5)
+  requirePositive('capacityPerM2', isotherm.capacityPerM2)
+  requirePositive('layerPerM2', isotherm.layerPerM2)
+  requirePositive('attemptPerS', isotherm.attemptPerS)
+  requireWithin('sticking', isotherm.sticking, 1e-6, 1)
+}
+
 /** Pressure scale p00 = N_m nu sqrt(2 pi m k T)/s of the isotherm, Pa. */
 export function waterScalePressure(temperatureK: number, isotherm: WaterIsotherm = DEFAULT_WATER): number {
+  requireIsotherm(isotherm)
   requirePositive('temperatureK', temperatureK)
-  requireWithin('sticking', isotherm.sticking, 1e-6, 1)
   const thermal = Math.sqrt(2 * Math.PI * moleculeMass('H2O') * BOLTZMANN * temperatureK)
   return (isotherm.layerPerM2 * isotherm.attemptPerS * thermal) / isotherm.sticking
 }
@@ -65,7 +75,7 @@ export function waterCoverage(
 ): Coverage {
   requirePositive('pressurePa', pressurePa)
   const { lowJMol, highJMol } = isotherm
-  requireWithin('highJMol', highJMol, lowJMol + 1, 1e6)
+  requireWithin('temperatureK', temperatureK, 50, 5000)
   const thermal = GAS_CONSTANT * temperatureK
   const logRatio = Math.log(pressurePa / waterScalePressure(temperatureK, isotherm))
   const width = thermal / (highJMol - lowJMol)
@@ -101,8 +111,8 @@ function logistic(u: number): number {
  * q = (this)/t whatever its speed and area.
  */
 export function waterRateTime(temperatureK: number, isotherm: WaterIsotherm = DEFAULT_WATER): number {
+  requireIsotherm(isotherm)
   requirePositive('temperatureK', temperatureK)
-  requirePositive('capacityPerM2', isotherm.capacityPerM2)
   const width = (GAS_CONSTANT * temperatureK) / (isotherm.highJMol - isotherm.lowJMol)
   return BOLTZMANN * temperatureK * isotherm.capacityPerM2 * width
 }
@@ -143,6 +153,7 @@ export function bakedWater(
   areaOverSpeed: number,
   isotherm: WaterIsotherm = DEFAULT_WATER,
 ): BakedWater {
+  requirePositive('coldK', coldK)
   requirePositive('seconds', seconds)
   requirePositive('areaOverSpeed', areaOverSpeed)
   requireWithin('hotK', hotK, coldK, 2000)
@@ -165,6 +176,7 @@ export function cooledWater(
   isotherm: WaterIsotherm = DEFAULT_WATER,
   cooler: { share: number; atK: number } = { share: 0, atK: coldK },
 ): number {
+  requirePositive('coldK', coldK)
   requirePositive('hotPa', hotPa)
   requireWithin('hotK', hotK, coldK, 2000)
   requireWithin('cooler.share', cooler.share, 0, 1)

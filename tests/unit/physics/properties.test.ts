@@ -192,8 +192,8 @@ describe('predictions', () => {
         number(1.1, 5),
         (model, unbakedArea, bakeK, holdHours, factor) => {
           const asked = unbakedArea ? { ...model, unbakedArea } : model
-          const after = (hours: number) => afterBake(asked, { bakeK, holdHours: hours, upKH: 10 }, 0)
-          const [short, long] = [after(holdHours), after(holdHours * factor)]
+          const cold = (hours: number) => afterBake(asked, { bakeK, holdHours: hours, upKH: 10 }, 0)
+          const [short, long] = [cold(holdHours), cold(holdHours * factor)]
           expect(long.waterPa).toBeLessThanOrEqual(short.waterPa * (1 + 1e-9))
           expect(long.hydrogenPa).toBeLessThanOrEqual(short.hydrogenPa * (1 + 1e-9))
           expect(long.n2EquivalentPa).toBeLessThanOrEqual(short.n2EquivalentPa * (1 + 1e-9))
