@@ -1,14 +1,17 @@
 import type { FieldErrors } from './errors.ts'
 
+/** Above this size the worker reads a file and takes it in; below it both are done while the sender waits. */
+export const LARGE_FILE_BYTES = 16 * 1024 * 1024
+
 /** States of a night file on its way in. */
-export const IMPORT_STATES = ['receiving', 'read', 'refused', 'accepted', 'discarded', 'withdrawn'] as const
+export const IMPORT_STATES = ['reading', 'read', 'refused', 'accepted', 'discarded', 'withdrawn'] as const
 export type ImportState = (typeof IMPORT_STATES)[number]
 
 /** How an import came: as a file, or as a post of live readings that nobody has to look at. */
 export const IMPORT_ARRIVALS = ['file', 'post'] as const
 
 export const IMPORT_STATE_LABELS: Record<ImportState, string> = {
-  receiving: 'Being received',
+  reading: 'Being read',
   read: 'Read, not yet taken in',
   refused: 'Could not be read',
   accepted: 'Taken in',

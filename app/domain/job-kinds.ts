@@ -1,5 +1,6 @@
 /** Every kind of work the worker does, what it needs to be told, and which of it recurs. */
 import { z } from 'zod'
+import { ROLES } from './roles.ts'
 
 export const JOB_PAYLOADS = {
   /** Makes the months ahead of the readings table. */
@@ -8,6 +9,23 @@ export const JOB_PAYLOADS = {
   'purge-sessions': z.strictObject({}),
   /** In the demo: posts what the loggers of heated segments have to say since the last time. */
   'feed-demo': z.strictObject({}),
+  /** Reads a large file that has been kept, with a person's answers to its questions. */
+  'read-night-file': z.strictObject({
+    importId: z.int().positive(),
+    answers: z.array(
+      z.strictObject({
+        id: z.string(),
+        choice: z.string(),
+        by: z.string().optional(),
+        at: z.string().optional(),
+      }),
+    ),
+  }),
+  /** Takes a large file in for the person who asked, with the roles they had when they did. */
+  'take-in-night-file': z.strictObject({
+    importId: z.int().positive(),
+    actor: z.strictObject({ personId: z.int().positive(), name: z.string(), roles: z.array(z.enum(ROLES)) }),
+  }),
   /** Makes rollups anew where readings have changed. */
   'roll-up': z.strictObject({}),
   /** Deletes finished jobs, and uploads that broke off, once nobody will ask about them. */

@@ -21,10 +21,10 @@ import { importStretches } from '../db/queries/imports-withdraw.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
-import { IMPORT_STATE_LABELS } from '../domain/imports.ts'
+import { IMPORT_STATE_LABELS, type ImportState, LARGE_FILE_BYTES } from '../domain/imports.ts'
 import { readNightFile } from '../domain/night-files/reader.ts'
 import type { Answer, ReadOut } from '../domain/night-files/types.ts'
-import { heldAlready } from './intake.server.ts'
+import { askToRead, heldAlready } from './intake.server.ts'
 import { readingRules, siteMinute, storedReport } from './intake-reading.server.ts'
 import { incomingRows, type ReadAgain } from './intake-rows.server.ts'
 import { enqueue } from './jobs.server.ts'
@@ -132,6 +132,40 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
 }
 
 /**
+ * Takes a file in now, or has the worker do it when the file is large: what stands in the way then is found on the
+ * import's page.
+ *
+ * @returns null when the worker does it
+ * @throws as acceptImport, for what is known already
+ */
+export async function acceptNowOrLater(
+  db: Db,
+  actor: Actor,
+  now: Date,
+  importId: number,
+  largeBytes = LARGE_FILE_BYTES,
+): Promise<Accepted | null> {
+  demand(actor, 'intake:take-in')
+  const seen = await importOr404(db, importId)
+  if (seen.byteSize <= largeBytes) return acceptImport(db, actor, now, importId)
+  await tx(db, async (inside) => {
+    await demandWaiting(inside, importId)
+    const found = await importOr404(inside, importId)
+    demandReadable(storedReport(found.readOut))
+    // With a fault beside it the worker has stumbled, and asking again does no harm.
+    if (found.takingInBy !== null && found.fault === '')
+      throw new DomainError('conflict', `Import ${importId} is being taken in already. Nothing was changed.`)
+    await updateImport(inside, importId, { takingInBy: actor.personId, fault: '' })
+    const { personId, name, roles } = actor
+    await enqueue(inside, {
+      kind: 'take-in-night-file',
+      payload: { importId, actor: { personId, name, roles: [...roles] } },
+    })
+  })
+  return null
+}
+
+/**
  * Discards a file that is not taken in. Bytes and report stay, the file is simply not wanted.
  *
  * @throws DomainError forbidden; not-found; conflict when somebody has decided about it meanwhile
@@ -146,7 +180,7 @@ export async function discardImport(
   demand(actor, 'intake:take-in')
   await importOr404(db, importId)
   await tx(db, async (inside) => {
-    await demandWaiting(inside, importId)
+    await demandWaiting(inside, importId, ['read', 'reading'])
     await updateImport(inside, importId, {
       state: 'discarded',
       decidedBy: actor.personId,
@@ -177,6 +211,7 @@ export async function answerQuestions(
   now: Date,
   importId: number,
   answers: readonly Answer[],
+  largeBytes = LARGE_FILE_BYTES,
 ): Promise<void> {
   demand(actor, 'intake:take-in')
   const found = await importOr404(db, importId)
@@ -202,15 +237,24 @@ export async function answerQuestions(
     statedBytes: null,
     answers: all,
   })
-  const readOut = await readNightFile(originalOf(db, found), rules.profile, rules.context, () => {})
+  // A large file takes the worker a while; its report stays as it was until then.
+  const large = found.byteSize > largeBytes
+  const readOut = large
+    ? null
+    : await readNightFile(originalOf(db, found), rules.profile, rules.context, () => {})
   await tx(db, async (inside) => {
     await demandWaiting(inside, importId)
-    await updateImport(inside, importId, {
-      readOut,
-      readingCount: readOut.readings.total,
-      firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
-      lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
-    })
+    if (readOut === null) {
+      await updateImport(inside, importId, { state: 'reading', bytesDone: 0, fault: '' })
+      await askToRead(inside, importId, all)
+    } else {
+      await updateImport(inside, importId, {
+        readOut,
+        readingCount: readOut.readings.total,
+        firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
+        lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
+      })
+    }
     await writeRecord(inside, {
       at: now,
       actor,
@@ -236,9 +280,13 @@ async function importOr404(db: DbOrTx, importId: number): Promise<ImportRow> {
 }
 
 /** Locks the import and makes sure that nobody has decided about it yet. */
-async function demandWaiting(inside: DbOrTx, importId: number): Promise<void> {
+async function demandWaiting(
+  inside: DbOrTx,
+  importId: number,
+  states: readonly ImportState[] = ['read'],
+): Promise<void> {
   const state = await lockImport(inside, importId)
-  if (state === 'read') return
+  if (state !== null && states.includes(state)) return
   const found = await importOr404(inside, importId)
   const site = await getSite(inside)
   const when = found.decidedAt === null ? '' : ` on ${siteMinute(found.decidedAt, site.timeZone)}`

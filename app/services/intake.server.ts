@@ -1,6 +1,6 @@
 /** Receiving a night file: its bytes are kept as they came, read, and the report is put in front of a person. */
 import { createHash } from 'node:crypto'
-import type { Db } from '../db/client.server.ts'
+import type { Db, DbOrTx } from '../db/client.server.ts'
 import {
   beginOriginal,
   dropOriginal,
@@ -14,12 +14,16 @@ import {
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError, type ErrorCode } from '../domain/errors.ts'
+import { LARGE_FILE_BYTES } from '../domain/imports.ts'
 import { createNightFileReader } from '../domain/night-files/reader.ts'
-import type { ReadOut, Refusal } from '../domain/night-files/types.ts'
+import type { Answer, NightFileReader, ReadOut, Refusal } from '../domain/night-files/types.ts'
 import { readingRules, siteMinute } from './intake-reading.server.ts'
+import { enqueue } from './jobs.server.ts'
 import { writeRecord } from './record.server.ts'
 
 const PIECE_BYTES = 1024 * 1024
+/** A stop of the product counts as an attempt, so more of them than other jobs have. */
+const READ_ATTEMPTS = 20
 
 export interface Upload {
   sourceCode: string
@@ -30,19 +34,25 @@ export interface Upload {
   /** Largest file taken, in bytes. */
   limitBytes: number
   onProgress?: (seen: { bytes: number; lines: number }) => void
+  /** From this size on the file is kept now and read by the worker. */
+  largeBytes?: number
 }
 
 export interface Staged {
   importId: number
-  /** The report is there and waits for a person, or the file was refused (and kept, without readings). */
-  state: 'read' | 'refused'
+  /**
+   * The report is there and waits for a person; or the file was refused (and kept, without readings); or it is large
+   * and the worker will read it.
+   */
+  state: 'read' | 'refused' | 'reading'
   refusal: Refusal | null
   /** Whether the same bytes were waiting already; nothing was added then. */
   again: boolean
 }
 
 /**
- * Takes a file's bytes in 1 MiB pieces, reads them on the way, and stores bytes and report. No reading is stored.
+ * Takes a file's bytes in 1 MiB pieces, reads them on the way, and stores bytes and report. No reading is stored. A
+ * large file is only kept, and the worker reads it.
  *
  * @throws DomainError forbidden; bad-input (no such source, nothing sent); too-large; conflict, when the same bytes
  *   have been taken in before (nothing is kept then, and the message names that import)
@@ -61,20 +71,27 @@ export async function stageUpload(db: Db, actor: Actor, now: Date, upload: Uploa
   const rules = await readingRules(db, source, { uploadedAt: now, fileName, statedBytes, answers: [] })
   const attachmentId = await beginOriginal(db, { fileName, createdBy: actor.personId, createdAt: now })
   try {
-    const reader = createNightFileReader(rules.profile, rules.context, () => {})
+    const largeBytes = upload.largeBytes ?? LARGE_FILE_BYTES
+    let reader: NightFileReader | null =
+      statedBytes !== null && statedBytes > largeBytes
+        ? null
+        : createNightFileReader(rules.profile, rules.context, () => {})
+    let bytes = 0
     const { byteSize, sha256 } = await keepBytes(db, attachmentId, upload, (piece) => {
-      reader.push(piece)
-      upload.onProgress?.({ bytes: reader.bytesSeen, lines: reader.linesSeen })
+      bytes += piece.length
+      if (bytes > largeBytes) reader = null
+      reader?.push(piece)
+      upload.onProgress?.({ bytes, lines: reader?.linesSeen ?? 0 })
     })
-    const readOut = reader.end()
+    const readOut = reader?.end() ?? null
     const held = await findSameBytes(db, sha256, ['accepted'])
     if (held !== null) throw heldAlready(held, rules.zone)
-    const waiting = await findSameBytes(db, sha256, ['read'])
+    const waiting = await findSameBytes(db, sha256, ['read', 'reading'])
     if (waiting !== null && waiting.sourceId === source.id) {
       await dropOriginal(db, attachmentId)
-      return { importId: waiting.id, state: 'read', refusal: null, again: true }
+      const state = waiting.state === 'reading' ? 'reading' : 'read'
+      return { importId: waiting.id, state, refusal: null, again: true }
     }
-    const state = readOut.state === 'refused' ? 'refused' : 'read'
     const importId = await storeReport(db, actor, now, {
       sourceId: source.id,
       sourceCode: source.code,
@@ -83,9 +100,9 @@ export async function stageUpload(db: Db, actor: Actor, now: Date, upload: Uploa
       sha256,
       attachmentId,
       readOut,
-      state,
     })
-    return { importId, state, refusal: readOut.refusal, again: false }
+    const state = readOut === null ? 'reading' : readState(readOut)
+    return { importId, state, refusal: readOut?.refusal ?? null, again: false }
   } catch (error) {
     await dropOriginal(db, attachmentId)
     throw error
@@ -164,15 +181,33 @@ interface ReportToStore {
   byteSize: number
   sha256: string
   attachmentId: number
-  readOut: ReadOut
-  state: 'read' | 'refused'
+  /** Null for a large file, which the worker has yet to read. */
+  readOut: ReadOut | null
+}
+
+/** State of a file that has been read. */
+export function readState(readOut: ReadOut): 'read' | 'refused' {
+  return readOut.state === 'refused' ? 'refused' : 'read'
+}
+
+/** What the row of an import says of its report. */
+export function reportColumns(readOut: ReadOut) {
+  return {
+    state: readState(readOut),
+    readOut,
+    profileVersion: readOut.profileVersion,
+    lineCount: readOut.lines.total,
+    readingCount: readOut.readings.total,
+    firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
+    lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
+  }
 }
 
 function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Promise<number> {
-  const { readOut, state } = report
+  const { readOut } = report
   return tx(db, async (inside) => {
     const importId = await insertImport(inside, {
-      state,
+      state: 'reading',
       sourceId: report.sourceId,
       fileName: report.fileName,
       byteSize: report.byteSize,
@@ -180,12 +215,7 @@ function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Pr
       attachmentId: report.attachmentId,
       uploadedBy: actor.personId,
       uploadedAt: now,
-      profileVersion: readOut.profileVersion,
-      readOut,
-      lineCount: readOut.lines.total,
-      readingCount: readOut.readings.total,
-      firstAt: readOut.firstMs === null ? null : new Date(readOut.firstMs),
-      lastAt: readOut.lastMs === null ? null : new Date(readOut.lastMs),
+      ...(readOut === null ? {} : reportColumns(readOut)),
     })
     await finishOriginal(inside, report.attachmentId, {
       byteSize: report.byteSize,
@@ -195,7 +225,7 @@ function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Pr
     await writeRecord(inside, {
       at: now,
       actor,
-      act: state === 'refused' ? 'night file refused' : 'night file received',
+      act: readOut?.state === 'refused' ? 'night file refused' : 'night file received',
       subjectKind: 'import',
       subjectId: String(importId),
       after: {
@@ -203,10 +233,20 @@ function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Pr
         fileName: report.fileName,
         byteSize: report.byteSize,
         sha256: report.sha256,
-        lines: readOut.lines.total,
-        refusal: readOut.refusal?.code ?? null,
+        lines: readOut?.lines.total ?? null,
+        refusal: readOut?.refusal?.code ?? null,
       },
     })
+    if (readOut === null) await askToRead(inside, importId, [])
     return importId
+  })
+}
+
+/** Has the worker read a kept file, inside the transaction that sets its state to `reading`. */
+export async function askToRead(inside: DbOrTx, importId: number, answers: readonly Answer[]): Promise<void> {
+  await enqueue(inside, {
+    kind: 'read-night-file',
+    payload: { importId, answers: [...answers] },
+    maxAttempts: READ_ATTEMPTS,
   })
 }

@@ -183,9 +183,19 @@ class BadJob extends Error {}
 
 async function dispatch(db: Db, held: ClaimedJob, handlers: JobHandlers, signal: AbortSignal): Promise<void> {
   if (!isJobKind(held.kind)) throw new BadJob(`This version knows no job of the kind "${held.kind}".`)
-  const parsed = JOB_PAYLOADS[held.kind].safeParse(held.payload)
+  await handle(held.kind, held.payload, handlers, { db, signal })
+}
+
+/** For one kind, so that its payload and its handler are known to belong together. */
+async function handle<Kind extends JobKind>(
+  kind: Kind,
+  payload: unknown,
+  handlers: JobHandlers,
+  context: { db: Db; signal: AbortSignal },
+): Promise<void> {
+  const parsed = JOB_PAYLOADS[kind].safeParse(payload)
   if (!parsed.success) throw new BadJob(`The job's payload does not fit its kind: ${parsed.error.message}`)
-  await handlers[held.kind]({ db, payload: parsed.data, signal })
+  await handlers[kind]({ ...context, payload: parsed.data as JobPayload<Kind> })
 }
 
 function describe(error: unknown): string {

@@ -34,7 +34,9 @@ function handlers(work: JobHandlers['purge-sessions']): JobHandlers {
     'feed-demo': unexpected,
     'purge-sessions': work,
     'partition-readings': unexpected,
+    'read-night-file': unexpected,
     'roll-up': unexpected,
+    'take-in-night-file': unexpected,
     'purge-leftovers': unexpected,
   }
 }

@@ -25,7 +25,9 @@ function startWorker(handlers: Partial<JobHandlers> = {}) {
       'partition-readings': quiet,
       'purge-leftovers': quiet,
       'purge-sessions': quiet,
+      'read-night-file': quiet,
       'roll-up': quiet,
+      'take-in-night-file': quiet,
       ...handlers,
     },
   })

@@ -28,7 +28,7 @@ export const NIGHT_WORDS: Record<NightRow['state'], { word: string; tone: TagTon
 }
 
 export const TONE_OF_STATE: Record<ImportState, TagTone> = {
-  receiving: 'plain',
+  reading: 'plain',
   read: 'warn',
   refused: 'bad',
   accepted: 'good',

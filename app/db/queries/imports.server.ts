@@ -157,6 +157,12 @@ export interface ImportRow {
   decidedBy: string | null
   decidedAt: Date | null
   reason: string
+  /** Bytes that the worker has read of a large file. */
+  bytesDone: number
+  /** Who asked the worker to take it in, while it has not. */
+  takingInBy: number | null
+  /** Why the worker could not do what it was asked. */
+  fault: string
 }
 
 const uploader = alias(person, 'uploader')
@@ -183,6 +189,9 @@ const importColumns = {
   decidedBy: decider.name,
   decidedAt: importFile.decidedAt,
   reason: importFile.reason,
+  bytesDone: importFile.bytesDone,
+  takingInBy: importFile.takingInBy,
+  fault: importFile.fault,
 }
 
 function selectImports(db: DbOrTx) {

@@ -5,7 +5,7 @@ import { ANSWER_PREFIX, ImportDecisionSchema } from '#app/domain/schemas/import-
 import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure, orRefuse } from '#app/server/respond.server.ts'
-import { acceptImport, answerQuestions, discardImport } from '#app/services/intake-decisions.server.ts'
+import { acceptNowOrLater, answerQuestions, discardImport } from '#app/services/intake-decisions.server.ts'
 import { readImportPage } from '#app/services/intake-pages.server.ts'
 import type { Route } from './+types/import'
 
@@ -25,7 +25,13 @@ export async function action({ context, request, params }: Route.ActionArgs) {
   try {
     const decision = parseValues(ImportDecisionSchema, typed)
     if (decision.intent === 'accept') {
-      const { stored, held, conflicting } = await acceptImport(getDb(), actor, nowOf(context), importId)
+      const accepted = await acceptNowOrLater(getDb(), actor, nowOf(context), importId)
+      if (accepted === null)
+        return redirectWithNotice(
+          `/intake/${importId}`,
+          'The worker takes the file in; this page shows when it has.',
+        )
+      const { stored, held, conflicting } = accepted
       const beside = conflicting === 0 ? '' : `, ${conflicting} of them beside a different reading`
       return redirectWithNotice(
         `/intake/${importId}`,

@@ -4,6 +4,7 @@ import { feedDemo } from './feeder.server.ts'
 import { partitionReadings } from './partition-readings.server.ts'
 import { purgeLeftovers } from './purge-leftovers.server.ts'
 import { purgeEndedSessions } from './purge-sessions.server.ts'
+import { readNightFile, takeInNightFile } from './read-night-file.server.ts'
 import { rollUp } from './rollup.server.ts'
 
 export const JOB_HANDLERS: JobHandlers = {
@@ -11,5 +12,7 @@ export const JOB_HANDLERS: JobHandlers = {
   'partition-readings': partitionReadings,
   'purge-sessions': purgeEndedSessions,
   'purge-leftovers': purgeLeftovers,
+  'read-night-file': readNightFile,
   'roll-up': rollUp,
+  'take-in-night-file': takeInNightFile,
 }
