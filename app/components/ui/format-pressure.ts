@@ -33,9 +33,8 @@ interface PressureParts {
  * @throws RangeError for a value that cannot be written as a power of ten
  */
 export function pressureParts(pa: number, unit: PressureUnit, digits = 2): PressureParts {
+  if (!Number.isFinite(pa) || pa === 0) throw new RangeError(`${pa} Pa cannot be written as a power of ten`)
   const value = fromPascal(pa, unit)
-  if (!Number.isFinite(value) || value === 0)
-    throw new RangeError(`${pa} Pa cannot be written as a power of ten`)
   const [mantissa = '', exponent = ''] = value.toExponential(digits - 1).split('e')
   return { mantissa: mantissa.replace('-', '−'), exponent: Number(exponent), unit }
 }
