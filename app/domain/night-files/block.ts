@@ -1,7 +1,9 @@
 import type { Quantity } from '../readings.ts'
+import { channelKey } from '../register.ts'
 import type { SourceProfile } from '../schemas/source-profile.ts'
 import type { ChannelBook } from './channel-names.ts'
 import { channelColumn, type HeaderColumn } from './header.ts'
+import type { QuestionList } from './questions.ts'
 import type { ReadingSink } from './sink.ts'
 import type { ColumnReadOut } from './types.ts'
 import { type Unit, unitFits, unitOf } from './units.ts'
@@ -198,4 +200,18 @@ export function isReordered(before: Block, after: Block): boolean {
   const a = names(before)
   const b = names(after)
   return a.join('\u0000') !== b.join('\u0000')
+}
+
+/** Where names that the register lacks go: by an answer about this file, else by the profile of the source. */
+export function namedTargets(
+  questions: QuestionList,
+  profile: SourceProfile,
+): (name: string) => string | null {
+  const columns = new Map(profile.columns.map(({ inFile, channel }) => [channelKey(inFile), channel]))
+  return (name) => {
+    const answer = questions.answer(`unknown-channel:${name}`)
+    if (answer !== null) return answer
+    const channel = columns.get(channelKey(name))
+    return channel === undefined ? null : (channel ?? 'leave-out')
+  }
 }

@@ -1,6 +1,6 @@
 import { MARKS, QUANTITIES, type Quantity } from '../readings.ts'
 import type { SourceProfile } from '../schemas/source-profile.ts'
-import { type Block, isReordered, makeBlock } from './block.ts'
+import { type Block, isReordered, makeBlock, namedTargets } from './block.ts'
 import { channelQuestion } from './cell-faults.ts'
 import { CellReader } from './cells.ts'
 import type { ChannelBook } from './channel-names.ts'
@@ -80,9 +80,11 @@ export class FileBody {
   #offset = Number.NaN
   #coarseRows = 0
   readonly #watch: ClockWatch
+  readonly #targets: (name: string) => string | null
 
   constructor(tools: BodyTools) {
     this.#tools = tools
+    this.#targets = namedTargets(tools.questions, tools.profile)
     this.#watch = new ClockWatch(tools.questions)
     const { dialect, profile, context, questions, sink, tally, book } = tools
     const numbers = new NumberReader({
@@ -100,6 +102,7 @@ export class FileBody {
       ),
       unitWords,
       numbers,
+      targetFor: this.#targets,
       sink,
       tally,
       questions,
@@ -319,13 +322,14 @@ export class FileBody {
       unfit: (name, column, unit, quantity) => this.#unfitUnit(name, column, unit, quantity),
       unitRow,
       oneOf: (name, positions) => this.#oneOf(name, positions),
-      answerFor: (name) => questions.answer(`unknown-channel:${name}`),
+      answerFor: this.#targets,
     })
     this.block = block
     if (unitRow !== null) this.unitFrom = 'unit-row'
     else if (this.#headerColumns.some(({ unit }) => unit.kind === 'unit')) this.unitFrom = 'header'
     else if (block.unitAt !== -1) this.unitFrom = 'column'
-    else this.unitFrom = this.noteUnit === null ? 'profile' : 'note'
+    else if (this.noteUnit !== null) this.unitFrom = 'note'
+    else this.unitFrom = profile.unit === null ? null : 'profile'
     this.#namesPending = true
     this.#checkUnit(block)
     for (const column of block.wide) if (column.unit !== null) column.unit = this.#settleUnit(column.unit)
@@ -409,6 +413,8 @@ export class FileBody {
         : (unitOf(row?.fields[block.unitAt]?.trim()) ?? block.unit)
     if (written === null) return
     this.unitWritten ??= written.token
+    // A person or the profile has said what this column is written in: nothing is left to compare.
+    if (block.layout === 'wide' && !isPlainUnit(this.#headerColumns[at ?? -1])) return
     const line =
       this.unitFrom === 'note'
         ? this.#noteLine
@@ -442,10 +448,7 @@ export class FileBody {
         line,
       }))
       const known = names.some(
-        ({ name }) =>
-          !book.closed ||
-          book.isKnown(name) ||
-          this.#tools.questions.answer(`unknown-channel:${name}`) !== null,
+        ({ name }) => !book.closed || book.isKnown(name) || this.#targets(name) !== null,
       )
       const first = names[0]
       if (!known && first !== undefined)
@@ -653,4 +656,8 @@ export class FileBody {
         count: this.#coarseRows,
       })
   }
+}
+
+function isPlainUnit(column: HeaderColumn | undefined): boolean {
+  return column === undefined || column.unit.kind === 'unit' || column.unit.kind === 'none'
 }

@@ -38,6 +38,8 @@ export interface RowTools {
   decimalMark: '.' | ','
   nowMs: number
   unitWords: UnitWords
+  /** Where a name goes that the register lacks. */
+  targetFor: (name: string) => string | null
   numbers: NumberReader
   /** Replaces a unit that the file names by the one a person said. */
   settleUnit: (unit: Unit) => Unit
@@ -102,10 +104,7 @@ export class RowReader {
     const { cells, sink, tally, questions, book } = this.#tools
     const { block, fields } = row
     const name = (fields[block.channelAt] ?? '').trim()
-    const target = channelTarget(name, {
-      book,
-      answerFor: (asked) => questions.answer(`unknown-channel:${asked}`),
-    })
+    const target = channelTarget(name, { book, answerFor: this.#tools.targetFor })
     if (target === 'leave-out') {
       this.leftOut += 1
       tally.skip('left-out')

@@ -22,6 +22,9 @@ export interface Answer {
   id: string
   /** `value` of the choice taken, or the text typed where the question allows one. */
   choice: string
+  /** The question as it was asked, since an answered one is asked no more. */
+  text?: string
+  found?: string
   /** Who answered, and when (ISO 8601). */
   by?: string
   at?: string
