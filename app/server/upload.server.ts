@@ -17,7 +17,7 @@ const MIB = 1024 * 1024
 export const FORM_LIMIT_MIB = 64
 
 export type UploadAnswer =
-  | { ok: true; importId: number; again: boolean }
+  | { ok: true; importId: number; again: boolean; reading: boolean }
   | { ok: false; status: number; failure: UploadFailure }
 
 export interface FileToReceive {
@@ -109,7 +109,8 @@ export async function receiveFile(
     const file = await take()
     source = file.sourceCode
     const staged = await stageUpload(db, actor, now, file)
-    if (staged.refusal === null) return { ok: true, importId: staged.importId, again: staged.again }
+    if (staged.refusal === null)
+      return { ok: true, importId: staged.importId, again: staged.again, reading: staged.state === 'reading' }
     return {
       ok: false,
       status: ERROR_STATUS[refusalErrorCode(staged.refusal)],

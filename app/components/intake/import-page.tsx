@@ -16,6 +16,7 @@ import { countOf, countText, sizeText } from './file-words.ts'
 import { LinesPanel } from './lines-panel.tsx'
 import { NotesPanel, RejectedPanel } from './rejected-panel.tsx'
 import { StateTag, TONE_OF_STATE } from './state-tag.tsx'
+import { WorkerProgress } from './worker-progress.tsx'
 
 const WISH_LINKS = { asked: 'Withdrawal asked for', agreed: 'Withdrawal agreed to' } as const
 
@@ -28,7 +29,7 @@ export function ImportPage({
   wish,
   failure,
 }: ImportPageData & { failure: ActionFailure | undefined }) {
-  const waits = file.state === 'read' && mayTakeIn && readOut !== null
+  const waits = file.state === 'read' && file.takingInBy === null && mayTakeIn && readOut !== null
   return (
     <>
       <PageHead
@@ -64,7 +65,9 @@ export function ImportPage({
       </PageHead>
       <FormFailure failure={failure} />
       <Outcome file={file} />
-      {readOut === null ? (
+      <WorkerProgress file={file} />
+      {file.state === 'reading' && mayTakeIn && <DiscardPanel failure={failure} />}
+      {file.state === 'reading' ? null : readOut === null ? (
         <Notice>These readings were typed by hand, so there is no file to look at.</Notice>
       ) : (
         <>

@@ -28,7 +28,9 @@ export async function action({ context, request }: Route.ActionArgs) {
     `/intake/${answer.importId}`,
     answer.again
       ? 'These bytes were waiting here already. Nothing was added.'
-      : 'File received and read. Look through it before you take it in.',
+      : answer.reading
+        ? 'File received; the worker reads it now.'
+        : 'File received and read. Look through it before you take it in.',
   )
 }
 
