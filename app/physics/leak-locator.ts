@@ -15,6 +15,11 @@ export interface LeakedSegment {
   temperatureK: number
   /** Speeds for the gas that leaks in, at the tube. */
   pumps: readonly { atM: number; speedM3S: number }[]
+  /**
+   * Segments open to each other, one behind the other, where their diameters differ; they make up `lengthM`. Open gate
+   * valves between them count as tube.
+   */
+  sections?: readonly { lengthM: number; diameterM: number }[]
   /** Nitrogen stands for air; helium when the rises are those of a helium trial. */
   gas?: Gas
 }
@@ -109,6 +114,12 @@ function responses(segment: LeakedSegment, gauges: readonly GaugeRise[], atM: nu
     sourcePerM: 0,
     pumps: segment.pumps,
     leaks: [{ atM, loadPaM3S: 1 }],
+    ...(segment.sections && {
+      pieces: segment.sections.map(({ lengthM, diameterM }) => ({
+        lengthM,
+        specific: molecularSpecific(segment.gas ?? 'N2', diameterM, segment.temperatureK),
+      })),
+    }),
   }
   const positions = linePositions(
     line,

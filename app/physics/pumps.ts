@@ -138,7 +138,7 @@ export function turboUltimate(backingPa: number, compression: number): number {
 }
 
 /** Speed for a gas over the speed for nitrogen; the middle of what is usual (from memory, not verified). */
-export const GAS_SHARE: Readonly<Record<'turbo' | 'ion', Readonly<Partial<Record<Gas, number>>>>> = {
+const GAS_SHARE: Readonly<Record<'turbo' | 'ion', Readonly<Partial<Record<Gas, number>>>>> = {
   turbo: { H2: 0.85, He: 0.95, H2O: 1, N2: 1, CO: 1, Ar: 0.95 },
   ion: { H2: 2, He: 0.2, CH4: 0.9, H2O: 1, N2: 1, CO: 1, O2: 0.75, Ar: 0.03, CO2: 1 },
 }

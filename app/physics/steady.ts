@@ -13,6 +13,8 @@ export interface SteadyLine {
   readonly sourcePerM: number
   readonly pumps: readonly { readonly atM: number; readonly speedM3S: number }[]
   readonly leaks?: readonly { readonly atM: number; readonly loadPaM3S: number }[]
+  /** Pieces one behind the other where the tube is not the same all along; they make up `lengthM`. */
+  readonly pieces?: readonly { readonly lengthM: number; readonly specific: number }[]
 }
 
 /** Relative distance below which two positions along a tube are the same point. */
@@ -46,7 +48,7 @@ export function steadyPressures(line: SteadyLine, positionsM: readonly number[])
   for (let i = 0; i + 1 < n; i++) {
     const gap = positionsM[i + 1]! - positionsM[i]!
     const half = (line.sourcePerM * gap) / 2
-    link[i] = line.specific / gap
+    link[i] = 1 / resistanceBetween(line, positionsM[i]!, positionsM[i + 1]!)
     right[i]! += half
     right[i + 1]! += half
   }
@@ -66,6 +68,24 @@ export function steadyPressures(line: SteadyLine, positionsM: readonly number[])
     throw new PhysicsError('speed of all pumps for this gas', 0, 'at least one pump that takes the gas')
   }
   return solveLine(sink, link, right)
+}
+
+// Integral of dx/c: between two points without a source the pressure falls by this times the flow, wherever pieces meet.
+function resistanceBetween(line: SteadyLine, fromM: number, toM: number): number {
+  if (!line.pieces) return (toM - fromM) / line.specific
+  let sum = 0
+  let start = 0
+  for (const [i, piece] of line.pieces.entries()) {
+    requirePositive(`pieces[${i}].specific`, piece.specific)
+    requirePositive(`pieces[${i}].lengthM`, piece.lengthM)
+    const end = start + piece.lengthM
+    sum += Math.max(0, Math.min(toM, end) - Math.max(fromM, start)) / piece.specific
+    start = end
+  }
+  if (Math.abs(start - line.lengthM) > SAME_POINT * line.lengthM) {
+    throw new PhysicsError('sum of the pieces, m', start, `the length of the line, ${line.lengthM} m`)
+  }
+  return sum
 }
 
 function nodeAt(line: SteadyLine, positionsM: readonly number[], atM: number): number {

@@ -69,6 +69,30 @@ describe('locateLeak', () => {
     expect(held / answers).toBeLessThan(0.97)
   })
 
+  it('looks through segments open to each other, wide and narrow', () => {
+    // 150 m of 0.6 m and 100 m of 0.3 m behind it, one pump in the wide one: a leak in the narrow one stands out.
+    const sections = [
+      { lengthM: 150, diameterM: 0.6 },
+      { lengthM: 100, diameterM: 0.3 },
+    ]
+    const two = { ...SEGMENT, lengthM: 250, sections }
+    const narrow = molecularSpecific('N2', 0.3, 293.15)
+    const leakM = 200
+    const rise = (atM: number) =>
+      1e-7 *
+      (1 / 0.45 + Math.max(0, Math.min(atM, 150) - 75) / C + Math.max(0, Math.min(atM, leakM) - 150) / narrow)
+    const gauges = [0, 75, 150, 180, 250].map((atM) => ({ atM, beforePa: CALM, afterPa: CALM + rise(atM) }))
+    const errors = { repeat: 0.01, scale: 0.1 }
+    const answer = located(locateLeak(two, gauges, errors))
+    expect(Math.abs(answer.atM - leakM)).toBeLessThan(1)
+    expect(answer.throughputPaM3S / 1e-7).toBeCloseTo(1, 2)
+    expect(holds(answer, leakM)).toBe(true)
+    // Taken for one wide tube, the same rises point elsewhere or fit nothing.
+    const wrong = locateLeak({ ...two, sections: [{ lengthM: 250, diameterM: 0.6 }] }, gauges, errors)
+    expect(wrong.kind === 'refused' || !holds(wrong, leakM)).toBe(true)
+    expect(() => locateLeak({ ...two, sections: sections.slice(1) }, gauges)).toThrow('sum of the pieces')
+  })
+
   it('narrows with better gauges', () => {
     const width = (scale: number) => {
       const { stretches } = located(locateLeak(SEGMENT, readings(130, 2e-7), { repeat: 0.01, scale }))
