@@ -34,6 +34,7 @@ export default [
   // Resource routes: no page of their own.
   route('segments/:tag/readings.csv', 'routes/segments/readings-csv.tsx'),
   route('api/v1/sources/:code/readings', 'routes/api/readings.tsx'),
+  route('api/v1/sources/:code/files/:name', 'routes/api/files.tsx'),
   route('intake/upload', 'routes/intake/upload.tsx'),
   route('intake/:importId/original', 'routes/intake/original.tsx'),
   route('intake/:importId/rejected.csv', 'routes/intake/rejected-csv.tsx'),

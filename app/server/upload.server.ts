@@ -74,14 +74,45 @@ export function fileFromBody(request: Request, limitMib: number): FileToReceive 
   const body = request.body
   const sourceCode = url.searchParams.get('source') ?? ''
   if (body === null) throw noFile(sourceCode)
-  const stated = request.headers.get('Content-Length')
   return {
     sourceCode,
     fileName: url.searchParams.get('name') ?? '',
     stream: piecesOf(body),
-    statedBytes: stated !== null && /^\d+$/.test(stated) ? Number(stated) : null,
+    statedBytes: statedLength(request.headers),
     limitBytes: limitMib * MIB,
   }
+}
+
+/**
+ * A file that a machine sends: source and name stand in the path.
+ *
+ * @throws DomainError bad-input (no body), wrong-type (compressed)
+ */
+export function fileFromPut(
+  request: Request,
+  sent: { sourceCode: string; fileName: string; limitMib: number },
+): FileToReceive {
+  const coding = request.headers.get('Content-Encoding') ?? 'identity'
+  if (coding !== 'identity') {
+    throw new DomainError(
+      'wrong-type',
+      `Found the content coding “${coding.slice(0, 80)}”. Send the file's bytes as the logger wrote them.`,
+    )
+  }
+  if (request.body === null)
+    throw new DomainError('bad-input', 'The request has no body. Send the bytes of the file as its body.')
+  return {
+    sourceCode: sent.sourceCode,
+    fileName: sent.fileName,
+    stream: piecesOf(request.body),
+    statedBytes: statedLength(request.headers),
+    limitBytes: sent.limitMib * MIB,
+  }
+}
+
+function statedLength(headers: Headers): number | null {
+  const stated = headers.get('Content-Length')
+  return stated !== null && /^\d+$/.test(stated) ? Number(stated) : null
 }
 
 async function* piecesOf(stream: ReadableStream<Uint8Array>): AsyncGenerator<Uint8Array> {

@@ -34,6 +34,8 @@ export interface Upload {
   /** Largest file taken, in bytes. */
   limitBytes: number
   onProgress?: (seen: { bytes: number; lines: number }) => void
+  /** Name of the token that a machine sent it with, for the record. */
+  sentWith?: string
   /** From this size on the file is kept now and read by the worker. */
   largeBytes?: number
 }
@@ -59,6 +61,15 @@ export interface Staged {
  */
 export async function stageUpload(db: Db, actor: Actor, now: Date, upload: Upload): Promise<Staged> {
   demand(actor, 'intake:take-in')
+  return stageFile(db, actor, now, upload)
+}
+
+/**
+ * The same for a sender that has been let in otherwise: a machine with a token (`actor` is null then).
+ *
+ * @throws as stageUpload, but for forbidden
+ */
+export async function stageFile(db: Db, actor: Actor | null, now: Date, upload: Upload): Promise<Staged> {
   const fileName = plainFileName(upload.fileName)
   const source = await findSource(db, upload.sourceCode)
   if (source === null) {
@@ -68,8 +79,18 @@ export async function stageUpload(db: Db, actor: Actor, now: Date, upload: Uploa
   }
   const statedBytes = upload.statedBytes
   if (statedBytes !== null && statedBytes > upload.limitBytes) throw tooLarge(upload.limitBytes)
-  const rules = await readingRules(db, source, { uploadedAt: now, fileName, statedBytes, answers: [] })
-  const attachmentId = await beginOriginal(db, { fileName, createdBy: actor.personId, createdAt: now })
+  const rules = await readingRules(db, source, {
+    uploadedAt: now,
+    fileName,
+    statedBytes,
+    answers: [],
+    history: true,
+  })
+  const attachmentId = await beginOriginal(db, {
+    fileName,
+    createdBy: actor?.personId ?? null,
+    createdAt: now,
+  })
   try {
     const largeBytes = upload.largeBytes ?? LARGE_FILE_BYTES
     let reader: NightFileReader | null =
@@ -100,6 +121,7 @@ export async function stageUpload(db: Db, actor: Actor, now: Date, upload: Uploa
       sha256,
       attachmentId,
       readOut,
+      sentWith: upload.sentWith,
     })
     const state = readOut === null ? 'reading' : readState(readOut)
     return { importId, state, refusal: readOut?.refusal ?? null, again: false }
@@ -183,6 +205,7 @@ interface ReportToStore {
   attachmentId: number
   /** Null for a large file, which the worker has yet to read. */
   readOut: ReadOut | null
+  sentWith: string | undefined
 }
 
 /** State of a file that has been read. */
@@ -203,7 +226,7 @@ export function reportColumns(readOut: ReadOut) {
   }
 }
 
-function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Promise<number> {
+function storeReport(db: Db, actor: Actor | null, now: Date, report: ReportToStore): Promise<number> {
   const { readOut } = report
   return tx(db, async (inside) => {
     const importId = await insertImport(inside, {
@@ -213,7 +236,7 @@ function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Pr
       byteSize: report.byteSize,
       sha256: report.sha256,
       attachmentId: report.attachmentId,
-      uploadedBy: actor.personId,
+      uploadedBy: actor?.personId ?? null,
       uploadedAt: now,
       ...(readOut === null ? {} : reportColumns(readOut)),
     })
@@ -235,6 +258,7 @@ function storeReport(db: Db, actor: Actor, now: Date, report: ReportToStore): Pr
         sha256: report.sha256,
         lines: readOut?.lines.total ?? null,
         refusal: readOut?.refusal?.code ?? null,
+        ...(report.sentWith === undefined ? {} : { token: report.sentWith }),
       },
     })
     if (readOut === null) await askToRead(inside, importId, [])

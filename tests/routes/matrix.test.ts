@@ -113,6 +113,11 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: 'anyone', status: 405 },
     POST: { who: 'anyone', status: 401 },
   },
+  '/api/v1/sources/:code/files/:name': {
+    path: '/api/v1/sources/NL-X/files/night.csv',
+    GET: { who: 'anyone', status: 405 },
+    POST: { who: 'anyone', status: 405 },
+  },
   '/account': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
   '/clock': { GET: { who: ['administrator'], status: 200 }, POST: { who: ['administrator'], status: 400 } },
 }

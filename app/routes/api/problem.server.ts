@@ -1,5 +1,6 @@
 /** Errors of the API as RFC 9457 problem details, with what was found, expected and how to mend it. */
 import { DomainError } from '#app/domain/errors.ts'
+import { FileRefused } from '#app/services/api-files.server.ts'
 import { PostRefused } from '#app/services/live-readings.server.ts'
 
 /** Reason phrases of RFC 9110 (429: RFC 6585) for the statuses that domain errors have. */
@@ -38,6 +39,13 @@ export function problemOf(error: unknown): Response {
   if (error.status === 401) headers['WWW-Authenticate'] = 'Bearer realm="Ebbline"'
   const { retryAfterSeconds } = error.details
   if (typeof retryAfterSeconds === 'number') headers['Retry-After'] = String(retryAfterSeconds)
-  const members = error instanceof PostRefused ? { errorTotal: error.total, errors: error.faults } : undefined
-  return problem(error.status, error.code, error.message, { headers, members })
+  return problem(error.status, error.code, error.message, { headers, members: membersOf(error) })
+}
+
+/** What a program is told beyond the sentence: which readings, or which line of which file. */
+function membersOf(error: DomainError): Record<string, unknown> | undefined {
+  if (error instanceof PostRefused) return { errorTotal: error.total, errors: error.faults }
+  if (!(error instanceof FileRefused)) return undefined
+  const { code, line, column, found, expected, mend } = error.refusal
+  return { importId: error.importId, errors: [{ code, line, column, found, expected, mend }] }
 }
