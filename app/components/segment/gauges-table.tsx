@@ -23,13 +23,6 @@ const COLUMNS: Column<Gauge>[] = [
     ),
   },
   {
-    key: 'at',
-    head: 'Chainage',
-    align: 'right',
-    cell: ({ position }) => (position.chainageM === null ? '–' : `${position.chainageM} m`),
-  },
-  { key: 'kind', head: 'Kind', nowrap: true, cell: ({ position }) => POSITION_KIND_LABELS[position.kind] },
-  {
     key: 'value',
     head: 'Last good reading, N₂-equivalent',
     align: 'right',
@@ -58,6 +51,13 @@ const COLUMNS: Column<Gauge>[] = [
       return newer ? `no, since then ${QUALITY_LABELS[newestQuality]}` : 'no, too old'
     },
   },
+  {
+    key: 'at',
+    head: 'Chainage',
+    align: 'right',
+    cell: ({ position }) => (position.chainageM === null ? '–' : `${position.chainageM} m`),
+  },
+  { key: 'kind', head: 'Kind', nowrap: true, cell: ({ position }) => POSITION_KIND_LABELS[position.kind] },
   {
     key: 'origin',
     head: 'From',

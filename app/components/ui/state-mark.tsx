@@ -139,8 +139,11 @@ export function StateShape({ state, className = '' }: { state: SegmentState; cla
 export function StateMark({ state, detail }: { state: SegmentState; detail?: React.ReactNode }) {
   return (
     <span>
-      <StateShape state={state} className="mr-1.5 align-[-0.12em]" />
-      {SEGMENT_STATES[state].label}
+      {/* Shape and word stay together, also where a table on paper squeezes its columns. */}
+      <span className="whitespace-nowrap">
+        <StateShape state={state} className="mr-1.5 align-[-0.12em]" />
+        {SEGMENT_STATES[state].label}
+      </span>
       {detail !== undefined && <>, {detail}</>}
     </span>
   )
