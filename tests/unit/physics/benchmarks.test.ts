@@ -36,7 +36,11 @@ describe('A: from one atmosphere through all regimes', () => {
   const run = caseA(times, 5e-4)
   const [history] = runTransport(run) as [GasHistory]
   test.each(times)('at %d s', (atS) => {
-    expectCheck(`bench.A.${atS}`, pressuresAt(run, history, times.indexOf(atS), [0, 30, 60]))
+    const found = pressuresAt(run, history, times.indexOf(atS), [0, 30, 60])
+    expectCheck(`bench.A.${atS}`, found)
+    // One entry allows more; half a percent is what the solver promises.
+    const listed = checkValue(`bench.A.${atS}`).expected as number[]
+    for (const [i, p] of found.entries()) expect(Math.abs(p / listed[i]! - 1)).toBeLessThan(0.005)
   })
   test('molecules add up', () => expect(history.massError).toBeLessThan(1e-9))
 })

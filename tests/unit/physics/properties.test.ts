@@ -1,7 +1,13 @@
 import fc from 'fast-check'
 import { describe, expect, test, vi } from 'vitest'
 import { afterBake } from '#app/physics/bake.ts'
-import { transitionalFlow, transitionalSpecific, transmission } from '#app/physics/conductance.ts'
+import {
+  inParallel,
+  inSeries,
+  transitionalFlow,
+  transitionalSpecific,
+  transmission,
+} from '#app/physics/conductance.ts'
 import { T20_K } from '#app/physics/constants.ts'
 import type { GasRun } from '#app/physics/gas-run.ts'
 import { GASES } from '#app/physics/gases.ts'
@@ -41,6 +47,19 @@ describe('conductance', () => {
           expect(transitionalSpecific(flow, p) / flow.molecular).toBeGreaterThan(0.945)
         },
       ),
+    )
+  })
+})
+
+describe('parts one behind the other', () => {
+  test('pass less than each of them, and side by side more', () => {
+    fc.assert(
+      fc.property(fc.array(decades(1e-6, 1e4), { minLength: 2, maxLength: 6 }), (parts) => {
+        for (const part of parts) {
+          expect(inSeries(...parts)).toBeLessThan(part)
+          expect(inParallel(...parts)).toBeGreaterThan(part)
+        }
+      }),
     )
   })
 })
