@@ -25,7 +25,13 @@ import { IMPORT_STATE_LABELS, type ImportState, LARGE_FILE_BYTES } from '../doma
 import { readNightFile } from '../domain/night-files/reader.ts'
 import type { Answer, ReadOut } from '../domain/night-files/types.ts'
 import { askToRead, heldAlready } from './intake.server.ts'
-import { readingRules, siteMinute, storedReport } from './intake-reading.server.ts'
+import {
+  keepProfile,
+  readingRules,
+  signedAnswers,
+  siteMinute,
+  storedReport,
+} from './intake-reading.server.ts'
 import { incomingRows, type ReadAgain } from './intake-rows.server.ts'
 import { enqueue } from './jobs.server.ts'
 import { writeRecord } from './record.server.ts'
@@ -86,6 +92,7 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
         if (warnings > 0)
           throw new Error(`Import ${importId}: the database had ${warnings} warnings while loading`)
         const counts = await mergeIncoming(inside, importId)
+        const learnt = await keepProfile(inside, actor, now, source, rules.profile, readOut)
         // Late data: what was computed for these stretches did not know of it.
         const marked = await markOutOfDate(inside, {
           stretches: await importStretches(inside, importId),
@@ -116,6 +123,7 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
             fileName: found.fileName,
             source: found.sourceCode,
             ...counts,
+            ...(learnt === null ? {} : { profileVersion: learnt }),
             outOfDate: marked.map(({ kind, subjectId }) => `${kind} ${subjectId}`),
           },
         })
@@ -218,16 +226,7 @@ export async function answerQuestions(
   const before = storedReport(found.readOut)
   if (before === null)
     throw new DomainError('not-found', 'This import holds no file, so there is nothing to answer.')
-  const given = answers.filter(({ choice }) => choice !== '')
-  for (const { id, choice } of given) {
-    const asked = before.questions.find((question) => question.id === id)
-    if (asked?.choices.some(({ value }) => value === choice) !== true) {
-      throw new DomainError(
-        'bad-input',
-        `“${choice}” is no answer to a question of this file. Choose from the list.`,
-      )
-    }
-  }
+  const given = signedAnswers(answers, before.questions, actor, now)
   const source = await findSource(db, found.sourceCode)
   if (source === null) throw new DomainError('not-found', `The register has no source ${found.sourceCode}.`)
   const all = [...before.answers.filter(({ id }) => !given.some((other) => other.id === id)), ...given]
@@ -236,6 +235,7 @@ export async function answerQuestions(
     fileName: found.fileName,
     statedBytes: null,
     answers: all,
+    history: true,
   })
   // A large file takes the worker a while; its report stays as it was until then.
   const large = found.byteSize > largeBytes

@@ -79,6 +79,7 @@ async function readKept(
     fileName: found.fileName,
     statedBytes: null,
     answers,
+    history: true,
   })
   // Batches are let go as they come: readings are stored when the file is taken in, from its bytes.
   const reader = createNightFileReader(rules.profile, rules.context, () => {})
