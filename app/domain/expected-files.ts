@@ -12,6 +12,8 @@ export interface NightFileStatus {
   code: string
   /** Name of the day on which the night began, YYYY-MM-DD. */
   night: string
+  /** When the night was over: nothing that came before is its file. */
+  endsAt: Date
   /** When the file is due. */
   dueAt: Date
   state: 'taken-in' | 'expected' | 'missing'
@@ -43,6 +45,7 @@ export function expectedNight(input: {
   return {
     code: input.code,
     night,
+    endsAt: new Date(endOfNight.getTime()),
     dueAt: new Date(due.getTime()),
     state: complete ? 'taken-in' : input.now < due ? 'expected' : 'missing',
   }

@@ -33,9 +33,12 @@ export interface NightRow {
   /** Day on which the night began, YYYY-MM-DD. */
   night: string
   dueAt: Date
-  /** `silent`: no file of this source has ever come. */
-  state: 'taken-in' | 'waiting' | 'expected' | 'missing' | 'silent'
-  /** The file that was taken in or waits, and what it brought. */
+  /**
+   * `refused`: something came that is no log, such as the sign-in page of the logger, which is as good as nothing;
+   * `silent`: no file of this source has ever come.
+   */
+  state: 'taken-in' | 'waiting' | 'reading' | 'refused' | 'expected' | 'missing' | 'silent'
+  /** The file that was taken in, waits, is being read, or was refused. */
   file: { importId: number; fileName: string; by: string; at: Date } | null
 }
 
@@ -93,30 +96,38 @@ function nightOf(
           expectedNight({ code: source.code, dueAt: source.dueAt, endAt: lastAt, now: at, zone }).state ===
           'taken-in',
       )
-  const accepted = ofNight(['accepted'])
-  const waiting = accepted === undefined ? ofNight(['read']) : undefined
-  const file = accepted ?? waiting
+  // Nothing is known of when these begin or end: they count for the night that was over last when they came.
+  const cameAfter = (states: readonly string[]) =>
+    own.find(
+      ({ state, uploadedAt }) =>
+        states.includes(state) &&
+        uploadedAt >= bare.endsAt &&
+        uploadedAt.getTime() < bare.endsAt.getTime() + DAY_MS,
+    )
   const overdue = back > 0 || bare.state === 'missing'
+  const candidates: [NightRow['state'], ImportListRow | undefined][] = [
+    ['taken-in', ofNight(['accepted'])],
+    ['waiting', ofNight(['read'])],
+    ['reading', cameAfter(['reading'])],
+    ['refused', cameAfter(['refused'])],
+  ]
+  const [state, file] = candidates.find(([, found]) => found !== undefined) ?? [
+    overdue ? ('missing' as const) : ('expected' as const),
+    undefined,
+  ]
   return {
     sourceCode: source.code,
     sourceName: source.name,
     night: bare.night,
     dueAt: bare.dueAt,
-    state:
-      accepted !== undefined
-        ? 'taken-in'
-        : waiting !== undefined
-          ? 'waiting'
-          : overdue
-            ? 'missing'
-            : 'expected',
+    state,
     file:
       file === undefined
         ? null
         : {
             importId: file.id,
             fileName: file.fileName,
-            by: accepted === undefined ? file.uploadedBy : (file.decidedBy ?? ''),
+            by: state === 'taken-in' ? (file.decidedBy ?? '') : file.uploadedBy,
             at: file.decidedAt ?? file.uploadedAt,
           },
   }

@@ -9,6 +9,9 @@ import { countText } from './file-words.ts'
 import { NIGHT_WORDS, StateTag, TONE_OF_STATE } from './state-tag.tsx'
 import { UploadForm } from './upload-form.tsx'
 
+/** A refused file brought no data, so its night still owes one. */
+const OWED: readonly NightRow['state'][] = ['missing', 'expected', 'refused']
+
 type FileRow = IntakePageData['files'][number]
 
 const NIGHT_COLUMNS: Column<NightRow>[] = [
@@ -108,7 +111,7 @@ export function IntakePage({
   formLimitMib,
   failure,
 }: IntakePageData & { limitMib: number; formLimitMib: number; failure: UploadFailure | undefined }) {
-  const owed = nights.filter(({ state }) => state === 'missing' || state === 'expected').length
+  const owed = nights.filter(({ state }) => OWED.includes(state)).length
   const waiting = files.filter(({ state }) => state === 'read').length
   return (
     <>

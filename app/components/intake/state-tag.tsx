@@ -22,6 +22,8 @@ export function StateTag({ word, tone }: { word: string; tone: TagTone }) {
 export const NIGHT_WORDS: Record<NightRow['state'], { word: string; tone: TagTone }> = {
   'taken-in': { word: 'taken in', tone: 'good' },
   waiting: { word: 'read, not taken in', tone: 'warn' },
+  reading: { word: 'being read', tone: 'plain' },
+  refused: { word: 'came, refused', tone: 'bad' },
   expected: { word: 'not due yet', tone: 'plain' },
   missing: { word: 'missing', tone: 'bad' },
   silent: { word: 'no file ever came', tone: 'plain' },

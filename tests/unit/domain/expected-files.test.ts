@@ -8,6 +8,7 @@ test('at 08:00 the night that ended at 06:00 is missing until its file is in', (
   expect(expectedNight({ ...vienna, now, endAt: new Date('2026-11-08T05:00:00Z') })).toEqual({
     code: 'NL-W',
     night: '2026-11-08',
+    endsAt: new Date('2026-11-09T05:00:00Z'),
     dueAt: new Date('2026-11-09T06:00:00Z'),
     state: 'missing',
   })
