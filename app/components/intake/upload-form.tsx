@@ -1,12 +1,16 @@
-/** Sending a night file: a plain form, which with a script shows how far the file is and takes larger ones. */
-import { type FormEvent, useState } from 'react'
-import { Form, Link, useNavigation } from 'react-router'
+/**
+ * Sending night files: a plain form for one file, which with a script takes several and larger ones, also dropped on
+ * it, and shows how far each is.
+ */
+import { type DragEvent, type FormEvent, useEffect, useState } from 'react'
+import { Form, Link, useNavigate, useNavigation, useRevalidator } from 'react-router'
 import type { UploadFailure } from '#app/domain/imports.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { Button } from '../ui/button.tsx'
 import { SelectField, TextField } from '../ui/field.tsx'
+import { ChosenFiles, SendingBar, type SourceChoice, sourceOfName } from './chosen-files.tsx'
 import { sizeText } from './file-words.ts'
-import { type UploadState, useUpload } from './use-upload.ts'
+import { type FileToSend, useUploads } from './use-upload.ts'
 
 const MIB = 1024 * 1024
 
@@ -16,34 +20,61 @@ export function UploadForm({
   formLimitMib,
   failure,
 }: {
-  sources: readonly { code: string; name: string }[]
+  sources: readonly SourceChoice[]
   limitMib: number
   formLimitMib: number
   failure: UploadFailure | undefined
 }) {
-  const { state, send, stop } = useUpload()
+  const uploads = useUploads()
+  const navigate = useNavigate()
+  const { revalidate } = useRevalidator()
   const posting = useNavigation().formMethod === 'POST'
+  // Only a script can send several: without one the field takes one file.
+  const [scripted, setScripted] = useState(false)
+  useEffect(() => setScripted(true), [])
+  const [files, setFiles] = useState<FileToSend[]>([])
   const [source, setSource] = useState(failure?.source ?? '')
-  const [tooLarge, setTooLarge] = useState<string | null>(null)
-  const shown = state.kind === 'failed' ? state.failure : state.kind === 'idle' ? failure : undefined
-  const busy = posting || state.kind === 'sending' || state.kind === 'reading'
+  const [dropping, setDropping] = useState(false)
+  const several = files.length > 1
+  const only = several ? undefined : files[0]
+  const state = only === undefined ? undefined : uploads.states.get(only.key)
+  const shown = state?.kind === 'failed' ? state.failure : state === undefined ? failure : undefined
+  const busy = posting || uploads.busy
+  const tooLarge = files.filter(({ file }) => file.size > limitMib * MIB)
 
-  function submit(event: FormEvent<HTMLFormElement>): void {
-    const file = new FormData(event.currentTarget).get('file')
-    // Without a file the server says what is missing; with one, the bytes go on their own.
-    if (!(file instanceof File) || file.name === '' || source === '') return
-    event.preventDefault()
-    if (file.size > limitMib * MIB) {
-      setTooLarge(
-        `${file.name} has ${sizeText(file.size)}; at most ${limitMib} MiB are taken. Split it at a line end.`,
-      )
-      return
-    }
-    setTooLarge(null)
-    send(source, file)
+  function choose(list: FileList | null): void {
+    const chosen = [...(list ?? [])].map((file, index) => ({
+      key: `${index} ${file.name}`,
+      file,
+      source: sourceOfName(file.name, sources),
+    }))
+    uploads.clear()
+    setFiles(chosen)
+    const [first] = chosen
+    if (chosen.length === 1 && first !== undefined && first.source !== '') setSource(first.source)
   }
 
-  const fileErrors = [...(tooLarge === null ? [] : [tooLarge]), ...(shown?.fields.file ?? [])]
+  async function submit(event: FormEvent<HTMLFormElement>): Promise<void> {
+    // Without a file or a source the server says what is missing; with them, the bytes go on their own.
+    if (files.length === 0 || (!several && source === '')) return
+    event.preventDefault()
+    if (tooLarge.length > 0) return
+    const answered = uploads.states
+    const toSend = several
+      ? files.filter(({ key }) => answered.get(key)?.kind !== 'received')
+      : files.map((file) => ({ ...file, source }))
+    const states = await uploads.send(toSend)
+    const [first] = states.values()
+    if (!several && first?.kind === 'received') await navigate(first.href)
+    else await revalidate()
+  }
+
+  function drop(event: DragEvent): void {
+    event.preventDefault()
+    setDropping(false)
+    if (!busy && event.dataTransfer.files.length > 0) choose(event.dataTransfer.files)
+  }
+
   return (
     <>
       <FormFailure failure={shown} />
@@ -54,66 +85,86 @@ export function UploadForm({
           </Link>
         </p>
       )}
-      <Form method="post" encType="multipart/form-data" onSubmit={submit}>
+      <Form
+        method="post"
+        encType="multipart/form-data"
+        onSubmit={(event) => void submit(event)}
+        onDragOver={(event) => {
+          event.preventDefault()
+          setDropping(true)
+        }}
+        onDragLeave={() => setDropping(false)}
+        onDrop={drop}
+        className={dropping ? 'outline-2 outline-offset-4 outline-vac outline-dashed' : ''}
+      >
         <div className="grid gap-x-4 sm:grid-cols-2">
-          <SelectField
-            name="source"
-            label="Source"
-            required
-            value={source}
-            onChange={(event) => setSource(event.target.value)}
-            options={[
-              { value: '', label: 'Choose the logger' },
-              ...sources.map(({ code, name }) => ({ value: code, label: `${code}, ${name}` })),
-            ]}
-            errors={shown?.fields.source}
-          />
+          {!several && (
+            <SelectField
+              name="source"
+              label="Source"
+              required
+              value={source}
+              onChange={(event) => setSource(event.target.value)}
+              options={[
+                { value: '', label: 'Choose the logger' },
+                ...sources.map(({ code, name }) => ({ value: code, label: `${code}, ${name}` })),
+              ]}
+              errors={shown?.fields.source}
+            />
+          )}
           <TextField
             name="file"
-            label="File"
+            label={scripted ? 'Files' : 'File'}
             type="file"
-            required
+            multiple={scripted}
+            // A file that was dropped does not stand in the field.
+            required={files.length === 0}
             hint={
               <>
                 As the logger wrote it, up to {limitMib} MiB
                 {formLimitMib < limitMib && <> ({formLimitMib} MiB where scripts are switched off)</>}.
+                {scripted && ' Several can be chosen, or dropped here.'}
               </>
             }
-            errors={fileErrors}
-            onChange={(event) => {
-              const name = event.target.files?.[0]?.name ?? ''
-              const named = sources.find(({ code }) => name.startsWith(`${code}_`))
-              if (named !== undefined) setSource(named.code)
-            }}
+            errors={[
+              ...tooLarge.map(
+                ({ file }) =>
+                  `${file.name} has ${sizeText(file.size)}; at most ${limitMib} MiB are taken. Split it at a line end.`,
+              ),
+              ...(shown?.fields.file ?? []),
+            ]}
+            onChange={(event) => choose(event.target.files)}
           />
         </div>
+        {several ? (
+          <ChosenFiles
+            files={files}
+            sources={sources}
+            states={uploads.states}
+            busy={busy}
+            onSource={(key, chosen) =>
+              setFiles(files.map((one) => (one.key === key ? { ...one, source: chosen } : one)))
+            }
+          />
+        ) : (
+          only !== undefined && <p className="mb-3 text-sm text-ink-2">{only.file.name}</p>
+        )}
         <div className="flex flex-wrap items-center gap-3">
           <Button kind="primary" disabled={busy}>
-            Send and read
+            {several ? `Send and read ${files.length} files` : 'Send and read'}
           </Button>
-          {state.kind === 'sending' && (
-            <Button type="button" onClick={stop}>
+          {uploads.busy && (
+            <Button type="button" onClick={uploads.stop}>
               Stop
             </Button>
           )}
         </div>
-        <Progress state={state} />
+        {(state?.kind === 'sending' || state?.kind === 'reading') && (
+          <div className="mt-3" role="status">
+            <SendingBar state={state} />
+          </div>
+        )}
       </Form>
     </>
-  )
-}
-
-function Progress({ state }: { state: UploadState }) {
-  if (state.kind !== 'sending' && state.kind !== 'reading') return null
-  const share = state.kind === 'reading' ? 1 : state.sent / Math.max(1, state.total)
-  return (
-    <div className="mt-3 max-w-md">
-      <progress value={share} max={1} aria-label="Sent" className="block h-2 w-full accent-vac" />
-      <p className="mt-1 text-sm text-ink-2" role="status">
-        {state.kind === 'reading'
-          ? 'All bytes have arrived; the last lines are being read.'
-          : `${Math.floor(share * 100)} % of ${sizeText(state.total)} sent`}
-      </p>
-    </div>
   )
 }

@@ -1,14 +1,21 @@
-/** Sends a file as bare bytes and says how far it is. Without a script the form around it does the work. */
+/** Sends files as bare bytes, one after the other, and says how far each is. Without a script the form does the work. */
 import { useEffect, useRef, useState } from 'react'
-import { useNavigate } from 'react-router'
 import type { UploadFailure } from '#app/domain/imports.ts'
 
 export type UploadState =
-  | { kind: 'idle' }
+  | { kind: 'waiting' }
   | { kind: 'sending'; sent: number; total: number }
   /** All bytes are there; the server reads the last of them. */
   | { kind: 'reading' }
+  | { kind: 'received'; href: string }
   | { kind: 'failed'; failure: UploadFailure }
+
+export interface FileToSend {
+  /** Tells it from the others. */
+  key: string
+  source: string
+  file: File
+}
 
 const LOST: UploadFailure = {
   ok: false,
@@ -18,39 +25,85 @@ const LOST: UploadFailure = {
   source: '',
 }
 
-/** State of the upload, and how to begin and to stop it. */
-export function useUpload(): {
-  state: UploadState
-  send: (source: string, file: File) => void
-  stop: () => void
-} {
-  const [state, setState] = useState<UploadState>({ kind: 'idle' })
-  const running = useRef<XMLHttpRequest | null>(null)
-  const navigate = useNavigate()
-  useEffect(() => () => running.current?.abort(), [])
+const STOPPED: UploadFailure = { ...LOST, message: 'Stopped. Nothing of this file has been saved.' }
 
-  function send(source: string, file: File): void {
+export interface Uploads {
+  /** By the keys of the files; empty before the first is sent. */
+  states: ReadonlyMap<string, UploadState>
+  busy: boolean
+  /** Sends files; resolves when the last has been answered, with what became of each. */
+  send: (files: readonly FileToSend[]) => Promise<ReadonlyMap<string, UploadState>>
+  /** Breaks off the one being sent and leaves out those that wait. */
+  stop: () => void
+  clear: () => void
+}
+
+/** States of the uploads, and how to begin and to stop them. */
+export function useUploads(): Uploads {
+  const [states, setStates] = useState<ReadonlyMap<string, UploadState>>(new Map())
+  const [busy, setBusy] = useState(false)
+  const running = useRef<XMLHttpRequest | null>(null)
+  const stopped = useRef(false)
+  useEffect(
+    () => () => {
+      stopped.current = true
+      running.current?.abort()
+    },
+    [],
+  )
+
+  async function send(files: readonly FileToSend[]): Promise<ReadonlyMap<string, UploadState>> {
+    stopped.current = false
+    let current = new Map<string, UploadState>(states)
+    for (const { key } of files) current.set(key, { kind: 'waiting' })
+    const put = (key: string, state: UploadState) => {
+      current = new Map(current).set(key, state)
+      setStates(current)
+    }
+    setStates(current)
+    setBusy(true)
+    for (const one of files) {
+      if (stopped.current) put(one.key, { kind: 'failed', failure: STOPPED })
+      else put(one.key, await sendOne(one, running, (state) => put(one.key, state)))
+    }
+    setBusy(false)
+    return current
+  }
+
+  function stop(): void {
+    stopped.current = true
+    running.current?.abort()
+  }
+
+  return { states, busy, send, stop, clear: () => setStates(new Map()) }
+}
+
+function sendOne(
+  { source, file }: FileToSend,
+  running: { current: XMLHttpRequest | null },
+  onState: (state: UploadState) => void,
+): Promise<UploadState> {
+  return new Promise((resolve) => {
     const request = new XMLHttpRequest()
     running.current = request
-    setState({ kind: 'sending', sent: 0, total: file.size })
+    onState({ kind: 'sending', sent: 0, total: file.size })
     request.upload.addEventListener('progress', ({ loaded }) => {
-      setState(loaded < file.size ? { kind: 'sending', sent: loaded, total: file.size } : { kind: 'reading' })
+      onState(loaded < file.size ? { kind: 'sending', sent: loaded, total: file.size } : { kind: 'reading' })
     })
     request.addEventListener('load', () => {
       const href = addressIn(request.response)
-      if (href !== null) void navigate(href)
-      else setState({ kind: 'failed', failure: failureIn(request.response) })
+      resolve(
+        href === null ? { kind: 'failed', failure: failureIn(request.response) } : { kind: 'received', href },
+      )
     })
-    request.addEventListener('error', () => setState({ kind: 'failed', failure: LOST }))
-    request.addEventListener('abort', () => setState({ kind: 'idle' }))
+    request.addEventListener('error', () => resolve({ kind: 'failed', failure: LOST }))
+    request.addEventListener('abort', () => resolve({ kind: 'failed', failure: STOPPED }))
     const address = new URLSearchParams({ source, name: file.name })
     request.open('PUT', `/intake/upload?${address}`)
     request.responseType = 'json'
     request.setRequestHeader('Content-Type', 'application/octet-stream')
     request.send(file)
-  }
-
-  return { state, send, stop: () => running.current?.abort() }
+  })
 }
 
 function addressIn(response: unknown): string | null {
