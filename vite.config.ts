@@ -44,6 +44,7 @@ export default defineConfig({
         test: {
           name: 'e2e',
           include: ['tests/e2e/**/*.test.ts'],
+          globalSetup: ['tests/support/one-demo.ts'],
           fileParallelism: false,
           testTimeout: 120_000,
           hookTimeout: 180_000,

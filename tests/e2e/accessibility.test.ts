@@ -1,20 +1,16 @@
 /** No page of the product has a serious or critical fault by axe, at a desk, on a tablet and on a phone; none scrolls sideways. */
 import type { Browser } from 'playwright-core'
-import { afterAll, beforeAll, describe, expect, test } from 'vitest'
+import { afterAll, beforeAll, describe, expect, inject, test } from 'vitest'
 import { type DemoRole, expectAccessible, launchBrowser, openPage } from '#tests/support/browser.ts'
-import { startTestServer, type TestServer } from '#tests/support/server.ts'
 
-let server: TestServer
 let browser: Browser
 
 beforeAll(async () => {
-  server = await startTestServer({ database: 'ebbline_e2e_accessibility' })
   browser = await launchBrowser()
 })
 
 afterAll(async () => {
   await browser?.close()
-  await server?.stop()
 })
 
 const WIDTHS = [1440, 820, 390]
@@ -58,7 +54,7 @@ const PAGES: { role: DemoRole; paths: string[] }[] = [
 ]
 
 test.each(WIDTHS)('the sign-in page at %d px', async (width) => {
-  const view = await openPage(browser, server.url, { viewport: { width, height: 900 } })
+  const view = await openPage(browser, inject('demoUrl'), { viewport: { width, height: 900 } })
   await view.goto('/sign-in')
   await expectAccessible(view.page)
   await view.close()
@@ -66,7 +62,7 @@ test.each(WIDTHS)('the sign-in page at %d px', async (width) => {
 
 describe.each(PAGES)('pages of the $role', ({ role, paths }) => {
   test.each(WIDTHS)('at %d px', async (width) => {
-    const view = await openPage(browser, server.url, { viewport: { width, height: 900 } })
+    const view = await openPage(browser, inject('demoUrl'), { viewport: { width, height: 900 } })
     await view.signIn(role)
     for (const path of paths) {
       await view.goto(path)
