@@ -1,7 +1,7 @@
 /** Rollups: figures of a channel over fixed stretches of UTC, so that a year is read as fast as a day. */
 
 /** Lengths in seconds, each a multiple of the one before. */
-export const ROLLUP_LEVELS = [600, 7_200, 86_400] as const
+export const ROLLUP_LEVELS = [600, 7_200, 28_800, 86_400] as const
 
 export interface Span {
   /** Milliseconds UTC, included. */

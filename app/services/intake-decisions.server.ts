@@ -11,12 +11,7 @@ import {
   readOriginal,
   updateImport,
 } from '../db/queries/imports.server.ts'
-import {
-  createIncoming,
-  loadIncoming,
-  mergeIncoming,
-  onOneConnection,
-} from '../db/queries/imports-merge.server.ts'
+import { onOneConnection } from '../db/queries/imports-merge.server.ts'
 import { importStretches } from '../db/queries/imports-withdraw.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
@@ -32,7 +27,7 @@ import {
   siteMinute,
   storedReport,
 } from './intake-reading.server.ts'
-import { incomingRows, type ReadAgain } from './intake-rows.server.ts'
+import { OtherThanReported, storeReadings } from './intake-store.server.ts'
 import { enqueue } from './jobs.server.ts'
 import { writeRecord } from './record.server.ts'
 import { markOutOfDate } from './revisions.server.ts'
@@ -56,87 +51,90 @@ export async function acceptImport(db: Db, actor: Actor, now: Date, importId: nu
   demand(actor, 'intake:take-in')
   const seen = await importOr404(db, importId)
   try {
-    return await onOneConnection(db, ({ db: one, raw }) =>
-      tx(one, async (inside) => {
-        // Files of one source come in one after the other: two of them may hold the same instants.
-        const source = await lockSource(inside, seen.sourceId)
-        if (source === null)
-          throw new DomainError('not-found', `The register has no source ${seen.sourceCode}.`)
-        await demandWaiting(inside, importId)
-        const found = await importOr404(inside, importId)
-        const site = await getSite(inside)
-        const held = await findSameBytes(inside, found.sha256, ['accepted'])
-        if (held !== null) throw heldAlready(held, site.timeZone)
-        const report = demandReadable(storedReport(found.readOut))
-        const rules = await readingRules(inside, source, {
-          uploadedAt: found.uploadedAt,
-          fileName: found.fileName,
-          statedBytes: null,
-          answers: report.answers,
-        })
-        await createIncoming(inside)
-        const again: ReadAgain = { sent: 0, readOut: null }
-        const { loaded, warnings } = await loadIncoming(
-          raw,
-          incomingRows(originalOf(db, found), rules, again),
-        )
-        const readOut = again.readOut
-        if (readOut === null || loaded > again.sent)
-          throw new Error(`Import ${importId}: ${loaded} rows of ${again.sent} loaded`)
-        if (loaded < again.sent) {
-          throw new DomainError(
-            'not-acceptable-now',
-            'The file holds readings of one channel and instant very far apart, too far to compare them. Split it where it begins anew and send the parts.',
-          )
-        }
-        if (warnings > 0)
-          throw new Error(`Import ${importId}: the database had ${warnings} warnings while loading`)
-        const counts = await mergeIncoming(inside, importId)
-        const learnt = await keepProfile(inside, actor, now, source, rules.profile, readOut)
-        // Late data: what was computed for these stretches did not know of it.
-        const marked = await markOutOfDate(inside, {
-          stretches: await importStretches(inside, importId),
-          now,
-          reason: `Import ${importId} (${found.fileName}) brought readings for a time already computed.`,
-        })
-        await updateImport(inside, importId, {
-          state: 'accepted',
-          acceptedSha256: found.sha256,
-          readOut,
-          profileVersion: readOut.profileVersion,
-          readingCount: counts.stored,
-          heldCount: counts.held,
-          conflictCount: counts.conflicting,
-          decidedBy: actor.personId,
-          decidedAt: now,
-        })
-        await enqueue(inside, { kind: 'roll-up', payload: {} })
-        await writeRecord(inside, {
-          at: now,
-          actor,
-          act: 'night file taken in',
-          subjectKind: 'import',
-          subjectId: String(importId),
-          before: { state: 'read' },
-          after: {
-            state: 'accepted',
-            fileName: found.fileName,
-            source: found.sourceCode,
-            ...counts,
-            ...(learnt === null ? {} : { profileVersion: learnt }),
-            outOfDate: marked.map(({ kind, subjectId }) => `${kind} ${subjectId}`),
-          },
-        })
-        return { importId, ...counts }
-      }),
-    )
+    return await acceptOnce(db, actor, now, seen, true)
   } catch (error) {
+    if (error instanceof OtherThanReported) return await acceptOnce(db, actor, now, seen, false)
     // Two files with the same bytes, of two sources, at once: the unique key lets one through.
     if (!isDuplicate(error)) throw error
     const held = await findSameBytes(db, seen.sha256, ['accepted'])
     if (held === null) throw error
     throw heldAlready(held, (await getSite(db)).timeZone)
   }
+}
+
+/** @param mayGoStraight load straight into the stored readings where the report says that the file meets none */
+function acceptOnce(
+  db: Db,
+  actor: Actor,
+  now: Date,
+  seen: ImportRow,
+  mayGoStraight: boolean,
+): Promise<Accepted> {
+  const importId = seen.id
+  return onOneConnection(db, ({ db: one, raw }) =>
+    tx(one, async (inside) => {
+      // Files of one source come in one after the other: two of them may hold the same instants.
+      const source = await lockSource(inside, seen.sourceId)
+      if (source === null)
+        throw new DomainError('not-found', `The register has no source ${seen.sourceCode}.`)
+      await demandWaiting(inside, importId)
+      const found = await importOr404(inside, importId)
+      const site = await getSite(inside)
+      const held = await findSameBytes(inside, found.sha256, ['accepted'])
+      if (held !== null) throw heldAlready(held, site.timeZone)
+      const report = demandReadable(storedReport(found.readOut))
+      const rules = await readingRules(inside, source, {
+        uploadedAt: found.uploadedAt,
+        fileName: found.fileName,
+        statedBytes: null,
+        answers: report.answers,
+      })
+      const { readOut, counts } = await storeReadings(
+        { inside, raw },
+        importId,
+        report,
+        rules,
+        originalOf(db, found),
+        mayGoStraight,
+      )
+      const learnt = await keepProfile(inside, actor, now, source, rules.profile, readOut)
+      // Late data: what was computed for these stretches did not know of it.
+      const marked = await markOutOfDate(inside, {
+        stretches: await importStretches(inside, importId),
+        now,
+        reason: `Import ${importId} (${found.fileName}) brought readings for a time already computed.`,
+      })
+      await updateImport(inside, importId, {
+        state: 'accepted',
+        acceptedSha256: found.sha256,
+        readOut,
+        profileVersion: readOut.profileVersion,
+        readingCount: counts.stored,
+        heldCount: counts.held,
+        conflictCount: counts.conflicting,
+        decidedBy: actor.personId,
+        decidedAt: now,
+      })
+      await enqueue(inside, { kind: 'roll-up', payload: {} })
+      await writeRecord(inside, {
+        at: now,
+        actor,
+        act: 'night file taken in',
+        subjectKind: 'import',
+        subjectId: String(importId),
+        before: { state: 'read' },
+        after: {
+          state: 'accepted',
+          fileName: found.fileName,
+          source: found.sourceCode,
+          ...counts,
+          ...(learnt === null ? {} : { profileVersion: learnt }),
+          outOfDate: marked.map(({ kind, subjectId }) => `${kind} ${subjectId}`),
+        },
+      })
+      return { importId, ...counts }
+    }),
+  )
 }
 
 /**

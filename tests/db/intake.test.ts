@@ -9,6 +9,7 @@ import {
   importRange,
   reading,
   record,
+  source,
 } from '#app/db/schema/index.ts'
 import type { Actor } from '#app/domain/actor.ts'
 import { MARKS, qualityCode } from '#app/domain/readings.ts'
@@ -241,6 +242,20 @@ describe('taking a file in', () => {
     await acceptImport(db, technician, MORNING, importId)
     // 1 Torr is 101325/760 Pa by definition.
     expect((await stored('HC-01B')).at(-1)?.value).toBeCloseTo((5.1e-10 * 101325) / 760, 18)
+  })
+
+  it('goes by the file and not by its report where the profile has changed in between', async () => {
+    const { importId } = await upload(night())
+    await db
+      .update(source)
+      .set({ profile: { ...NL_W, time: { ...NL_W.time, zone: 'Asia/Tokyo' } }, profileVersion: 2 })
+    expect(await acceptImport(db, technician, MORNING, importId)).toMatchObject({ stored: 435, held: 0 })
+    // 06:00 in Tokyo is 21:00 UTC the day before.
+    expect((await stored('HC-01B')).at(-1)?.at).toEqual(new Date('2026-11-08T21:00:00.000Z'))
+    const ranges = await db.select().from(importRange)
+    expect(ranges.map(({ lastAt }) => lastAt.toISOString())).toEqual(
+      Array.from({ length: 3 }, () => '2026-11-08T21:00:00.000Z'),
+    )
   })
 
   it('discards a file once, with a reason, and keeps its bytes', async () => {

@@ -5,6 +5,7 @@ import { insertDue, lockDue } from '#app/db/queries/rollups.server.ts'
 import { reading, rollup, rollupDue } from '#app/db/schema/index.ts'
 import { tx } from '#app/db/transaction.server.ts'
 import { MARKS, QUALITIES, qualityCode } from '#app/domain/readings.ts'
+import { ROLLUP_LEVELS } from '#app/domain/rollups.ts'
 import { makeRollups } from '#app/services/rollups.server.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
 import { createChannel, createSource } from '#tests/support/factories.ts'
@@ -176,7 +177,7 @@ describe('rollups', () => {
   it('count every reading once by its quality, at every level', async () => {
     await makeRollups(db, signal)
     const all = await db.select().from(reading)
-    for (const level of [600, 7_200, 86_400]) {
+    for (const level of ROLLUP_LEVELS) {
       const rows = await db.select().from(rollup).where(eq(rollup.levelSeconds, level))
       const sum = (pick: (row: (typeof rows)[number]) => number) => rows.reduce((n, row) => n + pick(row), 0)
       const count = (word: (typeof QUALITIES)[number]) =>

@@ -8,6 +8,7 @@ import { drizzle } from 'drizzle-orm/mysql2'
 import type mysql from 'mysql2'
 import { MARKS } from '../../domain/readings.ts'
 import type { Db, DbOrTx } from '../client.server.ts'
+import { importRange, rollupDue } from '../schema/index.ts'
 
 /** A handle and the connection under it: whatever both do is one session, and one transaction. */
 export interface OneConnection {
@@ -64,11 +65,33 @@ export async function createIncoming(tx: DbOrTx): Promise<void> {
   ) ENGINE=InnoDB`)
 }
 
+interface Loaded {
+  loaded: number
+  warnings: number
+}
+
+const LOADED_COLUMNS = 'channel_id, at, seq, value, bound, quality, marks, line_no'
+
 /** Streams tab-separated rows into `incoming`; says how many arrived and how many warnings the server had. */
-export async function loadIncoming(
+export function loadIncoming(raw: mysql.PoolConnection, rows: AsyncIterable<Buffer>): Promise<Loaded> {
+  return loadRows(raw, rows, `INTO TABLE incoming`, '')
+}
+
+/** The same, straight into `reading` under the number of an import: for stretches where nothing is stored. */
+export function loadStraight(
   raw: mysql.PoolConnection,
   rows: AsyncIterable<Buffer>,
-): Promise<{ loaded: number; warnings: number }> {
+  importId: number,
+): Promise<Loaded> {
+  return loadRows(raw, rows, 'INTO TABLE reading', ` SET import_id = ${raw.escape(importId)}`)
+}
+
+async function loadRows(
+  raw: mysql.PoolConnection,
+  rows: AsyncIterable<Buffer>,
+  into: string,
+  also: string,
+): Promise<Loaded> {
   const faults: unknown[] = []
   // A stream that breaks would leave the server waiting for its end, so a fault ends it and is thrown afterwards.
   async function* guarded(): AsyncGenerator<Buffer> {
@@ -78,10 +101,10 @@ export async function loadIncoming(
       faults.push(error)
     }
   }
-  const loaded = await new Promise<{ loaded: number; warnings: number }>((resolve, reject) => {
+  const loaded = await new Promise<Loaded>((resolve, reject) => {
     raw.query<mysql.ResultSetHeader>(
       {
-        sql: "LOAD DATA LOCAL INFILE 'readings' INTO TABLE incoming CHARACTER SET ascii FIELDS TERMINATED BY '\\t' LINES TERMINATED BY '\\n' (channel_id, at, seq, value, bound, quality, marks, line_no)",
+        sql: `LOAD DATA LOCAL INFILE 'readings' ${into} CHARACTER SET ascii FIELDS TERMINATED BY '\\t' LINES TERMINATED BY '\\n' (${LOADED_COLUMNS})${also}`,
         // The server names a path; it is never opened. These rows are all it gets.
         infileStreamFactory: () => Readable.from(guarded(), { objectMode: true }),
       },
@@ -94,6 +117,37 @@ export async function loadIncoming(
   })
   if (faults.length > 0) throw faults[0]
   return loaded
+}
+
+export interface LoadedStretch {
+  channelId: number
+  firstAt: Date
+  lastAt: Date
+  readingCount: number
+}
+
+/** Whether no reading at all is stored for these stretches of channels, ends included. */
+export async function areFree(tx: DbOrTx, stretches: readonly LoadedStretch[]): Promise<boolean> {
+  if (stretches.length === 0) return true
+  const any = stretches.map(
+    ({ channelId, firstAt, lastAt }) =>
+      sql`(channel_id = ${channelId} AND at BETWEEN ${firstAt} AND ${lastAt})`,
+  )
+  const [rows] = await tx.execute(sql`SELECT 1 FROM reading WHERE ${sql.join(any, sql` OR `)} LIMIT 1`)
+  return (rows as unknown as unknown[]).length === 0
+}
+
+/** Notes which stretches an import has been loaded straight into. */
+export async function noteStretches(
+  tx: DbOrTx,
+  importId: number,
+  stretches: readonly LoadedStretch[],
+): Promise<void> {
+  if (stretches.length === 0) return
+  await tx.insert(importRange).values(stretches.map((stretch) => ({ importId, ...stretch })))
+  await tx
+    .insert(rollupDue)
+    .values(stretches.map(({ channelId, firstAt, lastAt }) => ({ channelId, fromAt: firstAt, toAt: lastAt })))
 }
 
 /** Runs a statement and says how many rows it changed. */
