@@ -2,6 +2,9 @@ import type { TimeFormat } from '../schemas/source-profile.ts'
 
 const MINUTE = 60_000
 const DAY = 86_400_000
+/** No date beyond this year is read as one. */
+const LATEST_YEAR = 2200
+const LATEST_MS = Date.UTC(LATEST_YEAR + 1, 0, 1)
 
 /** A numeric date, optionally a time of day, AM or PM, and an offset. Part order is decided by the format. */
 const NUMERIC =
@@ -162,7 +165,8 @@ export class TimeReader {
     // Sub-millisecond parts fall away: the stored instant is whole milliseconds.
     this.wallMs = Math.round(Number(text.replace(',', '.')) * factor)
     this.offset = 0
-    return true
+    // A digit too many makes a time that no calendar reaches.
+    return this.wallMs < LATEST_MS
   }
 
   #serial(text: string, epochDay: number): boolean {
@@ -269,7 +273,8 @@ export class TimeReader {
 
 /** Start of a calendar day as if in UTC; NaN for a day that does not exist. */
 function dayStart(year: number, month: number, day: number): number {
-  if (!(month >= 1 && month <= 12 && day >= 1 && day <= 31) || year < 1900 || year > 2200) return Number.NaN
+  if (!(month >= 1 && month <= 12 && day >= 1 && day <= 31) || year < 1900 || year > LATEST_YEAR)
+    return Number.NaN
   const ms = Date.UTC(year, month - 1, day)
   const date = new Date(ms)
   return date.getUTCDate() === day ? ms : Number.NaN

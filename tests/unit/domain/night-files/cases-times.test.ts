@@ -240,6 +240,13 @@ const CASES: Record<string, Case[]> = {
       }),
     ),
     {
+      name: 'with digits too many cost their line',
+      file: at('1794204000000', '17942040000000000', '1794204060000'),
+      profile: { ...PLAIN, time: { ...PLAIN.time, format: 'epoch-ms' } },
+      state: 'readable',
+      rejected: ['3:unreadable-time'],
+    },
+    {
       name: 'rounded by a spreadsheet are refused: the seconds are gone',
       file: at('1.7941E+09', '1.7941E+09'),
       profile: PLAIN,
