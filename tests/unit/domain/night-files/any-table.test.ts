@@ -21,7 +21,7 @@ function clock(at: Date): string {
 }
 
 /** A number as text, with whatever blanks stand in its exponent. */
-const FIGURE = /\d*\.?\d+(?:\s*[eEdD]\s*[+-]?\s*\d+)?/g
+const FIGURE = /(?:\d+\.?\d*|\.\d+)(?:\s*[eEdD]\s*[+-]?\s*\d+)?/g
 
 const UNITS: Record<string, number> = { Pa: 1, mbar: 100, Torr: 101325 / 760, kPa: 1000 }
 
