@@ -46,7 +46,7 @@ export default defineConfig({
           include: ['tests/e2e/**/*.test.ts'],
           globalSetup: ['tests/support/one-demo.ts'],
           fileParallelism: false,
-          testTimeout: 120_000,
+          testTimeout: 400_000,
           hookTimeout: 180_000,
         },
       },
