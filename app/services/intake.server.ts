@@ -209,7 +209,7 @@ interface ReportToStore {
 }
 
 /** State of a file that has been read. */
-export function readState(readOut: ReadOut): 'read' | 'refused' {
+function readState(readOut: ReadOut): 'read' | 'refused' {
   return readOut.state === 'refused' ? 'refused' : 'read'
 }
 
