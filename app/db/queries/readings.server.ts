@@ -222,7 +222,7 @@ export async function binReadings(db: DbOrTx, input: BinsAsked): Promise<Bin[]> 
       ? sql`${rows} AND at >= ${from} AND at < ${to}`
       : sql.join([parts.rolled, ...parts.direct.map((where) => sql`${rows} AND ${where}`)], sql` UNION ALL `)
   const [found] =
-    await db.execute(sql`SELECT channel_id, FLOOR(TIMESTAMPDIFF(SECOND, ${from}, at) / ${binSeconds}) AS bin,
+    await db.execute(sql`SELECT channel_id, TIMESTAMPDIFF(SECOND, ${from}, at) DIV ${binSeconds} AS bin,
       MIN(low) AS low, MAX(high) AS high, SUM(total) AS total, SUM(n) AS n
     FROM (${source}) AS pieces GROUP BY channel_id, bin ORDER BY channel_id, bin`)
   return (

@@ -85,9 +85,12 @@ export async function insertDue(
     .values(rows.map(({ channelId, from, last }) => ({ channelId, fromAt: from, toAt: last })))
 }
 
-/** Start of the bucket that an instant falls in. */
+/**
+ * Start of the bucket that an instant falls in. Counted from 1900, a whole number of days before 1970, in whole numbers:
+ * rounding down is then the same as cutting off, which is many times faster than dividing.
+ */
 function bucket(at: SQL | typeof reading.at, levelSeconds: number): SQL {
-  return sql`'1970-01-01' + INTERVAL FLOOR(TIMESTAMPDIFF(SECOND, '1970-01-01', ${at}) / ${levelSeconds}) * ${levelSeconds} SECOND`
+  return sql`'1900-01-01' + INTERVAL (TIMESTAMPDIFF(SECOND, '1900-01-01', ${at}) DIV ${levelSeconds}) * ${levelSeconds} SECOND`
 }
 
 /** Makes the rollups of the shortest level over whole buckets of it from the readings. */
@@ -96,16 +99,20 @@ export async function rollUpReadings(tx: DbOrTx, channelId: number, span: Span):
   const [from, to] = [new Date(span.fromMs), new Date(span.toMs)]
   await deleteSpan(tx, channelId, level, span)
   const counts = sql.join(
-    COUNTED.map(({ code }) => sql`SUM(${reading.quality} = ${code})`),
+    COUNTED.map(({ code }) => sql`SUM(IF(quality = ${code}, n, 0))`),
     sql`, `,
   )
+  // First by bucket, quality and use, which leaves few rows for the many sums.
   await tx.execute(sql`INSERT INTO rollup (channel_id, level_seconds, at, usable, min_value, max_value, sum_value,
       positive, min_positive, sum_ln, ${QUALITY_COLUMNS})
-    SELECT channel_id, ${level}, ${bucket(reading.at, level)} AS bucket, SUM(${usable}),
-      MIN(IF(${usable}, value, NULL)), MAX(IF(${usable}, value, NULL)), SUM(IF(${usable}, value, 0)),
-      SUM(${usable} AND value > 0), MIN(IF(${usable} AND value > 0, value, NULL)),
-      SUM(IF(${usable} AND value > 0, LN(value), 0)), ${counts}
-    FROM reading WHERE channel_id = ${channelId} AND at >= ${from} AND at < ${to} GROUP BY bucket`)
+    SELECT ${channelId}, ${level}, bucket, SUM(IF(good, n, 0)), MIN(IF(good, low, NULL)), MAX(IF(good, high, NULL)),
+      SUM(IF(good, total, 0)), SUM(IF(good, above, 0)), MIN(IF(good, low_above, NULL)), SUM(IF(good, total_ln, 0)), ${counts}
+    FROM (
+      SELECT ${bucket(reading.at, level)} AS bucket, quality, ${usable} AS good, COUNT(*) AS n, MIN(value) AS low,
+        MAX(value) AS high, COALESCE(SUM(value), 0) AS total, COALESCE(SUM(value > 0), 0) AS above,
+        MIN(IF(value > 0, value, NULL)) AS low_above, SUM(IF(value > 0, LN(value), 0)) AS total_ln
+      FROM reading WHERE channel_id = ${channelId} AND at >= ${from} AND at < ${to} GROUP BY bucket, quality, good
+    ) AS parts GROUP BY bucket`)
 }
 
 /** Makes the rollups of a longer level over whole buckets of it from those of the shortest. */
