@@ -1,5 +1,6 @@
 import { MARKS } from '../readings.ts'
 import { choice, type QuestionList, question } from './questions.ts'
+import { detach } from './text.ts'
 
 /** A clock that is set by the network steps back by no more than this; the order of rows counts then. */
 const SMALL_STEP_MS = 5000
@@ -8,6 +9,7 @@ const JUMP_ROWS = 3
 /** More jumps than these in one file are rows of several files put together. */
 const MAX_JUMPS = 3
 const HOUR_MS = 3_600_000
+const MAX_TRACKS = 10_000
 
 interface Jump {
   line: number
@@ -48,7 +50,9 @@ export class ClockWatch {
     for (const { from, to } of this.#doubted) if (line >= from && line <= to) marks |= MARKS['time-ambiguous']
     const track = this.#tracks.get(trackName)
     if (track === undefined) {
-      this.#tracks.set(trackName, { lastMs: atMs, topMs: atMs, jump: null })
+      // Garbage in the column of names must not fill the memory; its rows are turned away later.
+      if (this.#tracks.size < MAX_TRACKS)
+        this.#tracks.set(detach(trackName), { lastMs: atMs, topMs: atMs, jump: null })
       return marks
     }
     const step = atMs - track.lastMs

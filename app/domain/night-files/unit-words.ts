@@ -1,7 +1,7 @@
 import { QUANTITIES, type Quantity } from '../readings.ts'
 import type { NumberReader } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
-import { powerText } from './text.ts'
+import { detach, powerText } from './text.ts'
 import type { Candidate, Question, ReadContext } from './types.ts'
 import { toSi, type Unit, unitOf, unitsOf } from './units.ts'
 
@@ -86,7 +86,8 @@ export class UnitWords {
   /** Counts a cell or row whose unit nobody knows; from the third on it is asked about. */
   meet(token: string, quantity: Quantity, place: { line: number; column: number }, sample: UnitSample): void {
     const times = (this.#seen.get(token) ?? 0) + 1
-    if (this.#seen.size < 1000 || this.#seen.has(token)) this.#seen.set(token, times)
+    if (this.#seen.size < 1000 || this.#seen.has(token))
+      this.#seen.set(times === 1 ? detach(token) : token, times)
     if (times < COLUMN_OF_CELLS) return
     this.#questions.ask(
       `${PREFIX}${token}`,
