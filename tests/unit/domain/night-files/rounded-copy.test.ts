@@ -1,6 +1,10 @@
+import { readFileSync } from 'node:fs'
 import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
+import { copyTrials } from '#app/domain/night-files/copy-trials.ts'
 import { compareWithStored, copyText, type StoredPair } from '#app/domain/night-files/rounded-copy.ts'
+import { NL_W } from '#tests/fixtures/night-files/profiles.ts'
+import { readFlat } from '#tests/fixtures/night-files/read.ts'
 
 const START = Date.UTC(2026, 10, 6, 5)
 
@@ -88,5 +92,28 @@ describe('a file beside what is stored', () => {
       ),
       { seed: 6 },
     )
+  })
+})
+
+describe('the hand export of the demo', () => {
+  const bytes = (name: string) =>
+    readFileSync(new URL(`../../../../seeds/night-files/${name}`, import.meta.url))
+
+  it('is told to be a copy of the night it was made from, although its unit is gone and its dates are turned', async () => {
+    const original = await readFlat(bytes('NL-W_2026-11-06.csv'), NL_W)
+    const stored = new Map(original.readings.map((one) => [`${one.channel} ${one.at}`, one.value]))
+    const copy = await readFlat(bytes('NL-W_2026-11-06_copy.csv'), NL_W)
+    expect(copy.out.state).toBe('refused')
+    const kinds: string[] = []
+    for (const { profile, answers } of copyTrials(NL_W, copy.out)) {
+      const { readings } = await readFlat(bytes('NL-W_2026-11-06_copy.csv'), profile, { answers })
+      const found: StoredPair[] = readings.flatMap(({ channel, at, value }) => {
+        const held = stored.get(`${channel} ${at}`)
+        if (value === null || held === undefined || held === null) return []
+        return [{ channel, quantity: 'pressure', atMs: Date.parse(at), inFile: value, stored: held }]
+      })
+      kinds.push(compareWithStored(found).kind)
+    }
+    expect(kinds.sort()).toEqual(['no-overlap', 'rounded-copy'])
   })
 })
