@@ -1,7 +1,7 @@
-import { MARKS, QUANTITIES, type Quantity } from '../readings.ts'
+import { MARKS } from '../readings.ts'
 import type { SourceProfile } from '../schemas/source-profile.ts'
-import { type Block, isReordered, makeBlock, namedTargets } from './block.ts'
-import { channelQuestion } from './cell-faults.ts'
+import { type Block, namedTargets } from './block.ts'
+import { BlockMaker, type UnitOrigin } from './block-maker.ts'
 import { CellReader } from './cells.ts'
 import type { ChannelBook } from './channel-names.ts'
 import { ResetStretches, resetFault } from './clock-reset.ts'
@@ -9,24 +9,22 @@ import { ClockWatch } from './clock-watch.ts'
 import { joinDecimalCommas, twoWays } from './comma-pairs.ts'
 import type { Dialect } from './dialect.ts'
 import { splitFields } from './fields.ts'
-import { type HeaderColumn, joinHeaders, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
+import { looksLikeHeader, looksLikeUnitRow } from './header.ts'
 import { EARLIEST_MS, MAX_HELD_ROWS } from './limits.ts'
 import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
 import { NumberReader } from './numbers.ts'
-import { choice, type QuestionList, question } from './questions.ts'
+import { askClockChanges, OffsetWatch, offsetRemark } from './offsets.ts'
+import type { QuestionList } from './questions.ts'
 import { OpenRecord } from './quoted-lines.ts'
 import { resolveRepeatedHour } from './repeated-hour.ts'
 import { isCutRow, type Row, RowReader } from './row-reader.ts'
 import { RowTimes } from './row-times.ts'
 import type { ReadingSink } from './sink.ts'
 import { startInstant } from './start-time.ts'
-import type { Fault, LineTally } from './tally.ts'
+import type { LineTally } from './tally.ts'
 import type { ReadContext, Refusal, Remark, Restart } from './types.ts'
-import { checkUnit, refuseWithoutUnit } from './unit-check.ts'
-import { UnitWords, unitSamples } from './unit-words.ts'
-import { readUnit, type Unit, unitOf, unitsOf } from './units.ts'
+import { UnitWords } from './unit-words.ts'
 import { WordBook } from './words.ts'
-import { offsetAt, offsetText } from './zones.ts'
 
 export interface BodyTools {
   dialect: Dialect
@@ -53,39 +51,35 @@ export class FileBody {
   readonly rows: RowReader
   /** Set when the header shows that nothing of the file can be read. */
   refusal: Refusal | null = null
-  block: Block | null = null
-  noteUnit: Unit | null = null
-  unitFrom: 'header' | 'note' | 'unit-row' | 'column' | 'profile' | null = null
-  /** Unit in which the first pressures of the file are written, or its first values when it holds no pressure. */
-  unitWritten: string | null = null
+  get block(): Block | null {
+    return this.#blocks.block
+  }
+  get unitFrom(): UnitOrigin {
+    return this.#blocks.unitFrom
+  }
+  get unitWritten(): string | null {
+    return this.#blocks.unitWritten
+  }
   get backSteps(): number {
     return this.#watch.backSteps
   }
   readonly #tools: BodyTools
   readonly #times: RowTimes | null
   readonly numbers: NumberReader
-  readonly #unitWords: UnitWords
   readonly #resets: ResetStretches | null
-  #headerColumns: HeaderColumn[] = []
-  #headerLine = 0
-  #noteLine = 0
   #sawRow = false
   #open: OpenRecord | null = null
-  #unitRowUnits: readonly (Unit | null)[] | null = null
-  /** Names under the header at hand that nobody knows have yet to be asked about. */
-  #namesPending = false
-  #override: { from: Unit; to: Unit } | null = null
   #held: HeldRow[] = []
   #lastMs: number | null = null
-  #offset = Number.NaN
   #coarseRows = 0
   readonly #watch: ClockWatch
-  readonly #targets: (name: string) => string | null
+  readonly #blocks: BlockMaker
+  readonly #offsets: OffsetWatch
 
   constructor(tools: BodyTools) {
     this.#tools = tools
-    this.#targets = namedTargets(tools.questions, tools.profile)
     this.#watch = new ClockWatch(tools.questions)
+    this.#offsets = new OffsetWatch(tools.context.siteZone)
     const { dialect, profile, context, questions, sink, tally, book } = tools
     const numbers = new NumberReader({
       decimalMark: dialect.decimalMark,
@@ -94,7 +88,8 @@ export class FileBody {
     })
     const unitWords = new UnitWords(questions, profile.units, context)
     this.numbers = numbers
-    this.#unitWords = unitWords
+    const targets = namedTargets(questions, profile)
+    this.#blocks = new BlockMaker({ ...tools, numbers, unitWords, targets })
     const words = new WordBook({ ...profile.words, ...questions.words() })
     this.rows = new RowReader({
       cells: new CellReader(numbers, words, [...profile.sentinels, ...questions.floors()], (token) =>
@@ -102,29 +97,21 @@ export class FileBody {
       ),
       unitWords,
       numbers,
-      targetFor: this.#targets,
+      targetFor: targets,
       sink,
       tally,
       questions,
       book,
       decimalMark: dialect.decimalMark,
       nowMs: context.nowMs,
-      settleUnit: (unit) => this.#settleUnit(unit),
+      settleUnit: (unit) => this.#blocks.settleUnit(unit),
     })
     this.#times =
       dialect.timeFormat === null || dialect.zone === null
         ? null
         : new RowTimes(dialect.timeFormat, dialect.decimalMark, dialect.zone, dialect.start)
-    this.#headerColumns = dialect.columns
-    if (dialect.headerLine === 0) this.#makeBlock()
     this.#resets =
       dialect.zone === null ? null : new ResetStretches(questions, context, dialect.zone, dialect.periodMs)
-  }
-
-  #settleUnit(unit: Unit): Unit {
-    const override = this.#override
-    if (override === null || override.from.quantity !== unit.quantity) return unit
-    return override.from.factor === unit.factor && override.from.offset === unit.offset ? override.to : unit
   }
 
   line(text: string, line: number, terminated: boolean, tooLong: boolean): void {
@@ -183,7 +170,8 @@ export class FileBody {
         return
       }
       if (this.block !== null && !this.#sawRow && looksLikeUnitRow(fields)) {
-        this.#unitRow(fields)
+        tally.add('header')
+        this.#blocks.unitRow(fields)
         return
       }
     }
@@ -237,17 +225,11 @@ export class FileBody {
     const { unit: token, date, start } = readNote(text)
     if (date !== null) this.#times?.setDay(date)
     if (start !== null && this.#sawRow) this.#restart(start)
-    const unit = this.#noteUnit(token, line)
-    if (unit === null) return
-    const before = this.noteUnit
-    this.noteUnit = unit
-    this.#noteLine = line
-    if (this.block === null) return
-    this.#makeBlock()
-    if (!this.#sawRow || before === null || before.factor === unit.factor) return
+    const change = this.#blocks.noteUnit(token, line)
+    if (!this.#sawRow || change === null) return
     this.remarks.push({
       kind: 'unit-change',
-      text: `From line ${line} on the values are in ${unit.token}, before it in ${before.token}. Each is read in its own.`,
+      text: `From line ${line} on the values are in ${change.to.token}, before it in ${change.from.token}. Each is read in its own.`,
       line,
       channel: null,
       atMs: this.#lastMs,
@@ -263,33 +245,15 @@ export class FileBody {
     this.#times?.restart(atMs >= EARLIEST_MS ? { atMs, reconstructed: false } : null)
   }
 
-  /** Unit of a line of metadata. One that tells no absolute quantity is asked about. */
-  #noteUnit(token: string | null, line: number): Unit | null {
-    if (token === null) return null
-    const reading = readUnit(token)
-    if (reading.kind === 'unit') return reading.unit
-    if (reading.kind === 'none') return null
-    const said = this.#unitWords.meaning(token)
-    if (said === null) this.#unitWords.ask(token, 'pressure', { line, column: 1 }, [])
-    return said === 'leave-out' ? null : said
-  }
-
   #header(fields: string[], line: number): void {
-    const { tally, book, profile, sink } = this.#tools
+    const { tally, sink } = this.#tools
     tally.add('header')
-    const before = this.block
-    const { columns } = readHeader(fields, book, profile)
-    const further = before !== null && !this.#sawRow
-    this.#headerColumns = further ? joinHeaders(this.#headerColumns, columns) : columns
-    if (!further) this.#unitRowUnits = null
-    this.#headerLine = line
-    this.#makeBlock()
-    if (further || before === null || this.block === null) return
-    const reordered = isReordered(before, this.block)
-    this.restarts.push({ line, reordered })
+    const restart = this.#blocks.header(fields, line, this.#sawRow)
+    if (restart === null) return
+    this.restarts.push(restart)
     this.remarks.push({
       kind: 'restart',
-      text: reordered
+      text: restart.reordered
         ? `The logger started again at line ${line} and writes its columns in another order since. They are taken by name.`
         : `The logger started again at line ${line}.`,
       line,
@@ -299,190 +263,17 @@ export class FileBody {
     })
   }
 
-  #unitRow(fields: string[]): void {
-    this.#tools.tally.add('header')
-    this.#unitRowUnits = fields.map((field) => {
-      const reading = readUnit(field.trim().replace(/^[[(](.*)[\])]$/, '$1'))
-      return reading.kind === 'unit' ? reading.unit : null
-    })
-    this.#makeBlock()
-  }
-
-  #makeBlock(): void {
-    const unitRow = this.#unitRowUnits
-    const { book, profile, sink, questions, dialect } = this.#tools
-    const block = makeBlock(dialect.layout, this.#headerColumns, {
-      book,
-      profile,
-      sink,
-      noteUnit: this.noteUnit,
-      answeredUnits:
-        profile.unit === null ? [unitOf(questions.answer('unit'))].filter((unit) => unit !== null) : [],
-      doubtful: (token, column, quantity) => this.#doubtfulUnit(token, column, quantity ?? 'pressure'),
-      unfit: (name, column, unit, quantity) => this.#unfitUnit(name, column, unit, quantity),
-      unitRow,
-      oneOf: (name, positions) => this.#oneOf(name, positions),
-      answerFor: this.#targets,
-    })
-    this.block = block
-    if (unitRow !== null) this.unitFrom = 'unit-row'
-    else if (this.#headerColumns.some(({ unit }) => unit.kind === 'unit')) this.unitFrom = 'header'
-    else if (block.unitAt !== -1) this.unitFrom = 'column'
-    else if (this.noteUnit !== null) this.unitFrom = 'note'
-    else this.unitFrom = profile.unit === null ? null : 'profile'
-    this.#namesPending = true
-    this.#checkUnit(block)
-    for (const column of block.wide) if (column.unit !== null) column.unit = this.#settleUnit(column.unit)
-    if (block.unit !== null) block.unit = this.#settleUnit(block.unit)
-  }
-
-  /** Asks about names that the register lacks; only when rows come, since a further header row may say more. */
-  #askNames(block: Block): void {
-    this.#namesPending = false
-    const { questions, book } = this.#tools
-    for (const { name, position } of block.unknown)
-      questions.ask(`unknown-channel:${name}`, () => channelQuestion(name, this.#headerLine, position, book))
-  }
-
-  /** Which of several columns of one name counts. */
-  #oneOf(name: string, positions: readonly number[]): number | null {
-    const { questions } = this.#tools
-    const id = `same-name:${name}`
-    const answer = questions.answer(id)
-    if (answer !== null) return positions.find((position) => String(position) === answer) ?? null
-    const column = positions[1] ?? null
-    questions.ask(id, () =>
-      question({
-        id,
-        kind: 'same-name',
-        blocking: false,
-        line: this.#headerLine,
-        column,
-        text: `Columns ${positions.join(' and ')} are all called “${name}”. All of them are left out until it is said which one is the channel.`,
-        found: `“${name}” ${positions.length} times`,
-        expected: 'a name of its own for every column',
-        mend: 'Choose by the values that the gauge showed last, and correct the name at the logger.',
-        choices: [
-          ...positions.map((position) => choice(String(position), `column ${position}`)),
-          choice('leave-out', 'leave all of them out'),
-        ],
-      }),
-    )
-    return null
-  }
-
-  #doubtfulUnit(token: string, column: number, quantity: Quantity): Unit | 'leave-out' | null {
-    const said = this.#unitWords.meaning(token)
-    if (said !== null) return said
-    const name = this.#headerColumns[column - 1]?.name ?? ''
-    const samples = unitSamples(this.#tools.dialect.rows, column - 1, () => name, this.numbers)
-    this.#unitWords.ask(token, quantity, { line: this.#headerLine, column }, samples)
-    return null
-  }
-
-  #unfitUnit(name: string, column: number, unit: Unit, quantity: Quantity): void {
-    const { questions } = this.#tools
-    const id = `unfit-unit:${name}`
-    if (questions.answer(id) === 'leave-out') return
-    questions.ask(id, () =>
-      question({
-        id,
-        kind: 'unit',
-        blocking: false,
-        line: this.#headerLine,
-        column,
-        text: `“${name}” is written in ${unit.token}, and its channel measures ${QUANTITIES[quantity].label.toLowerCase()}. The column is left out: how one follows from the other is not known here.`,
-        found: `the unit “${unit.token}”`,
-        expected: `a unit of ${QUANTITIES[quantity].label.toLowerCase()} such as ${unitsOf(quantity)[0]?.token ?? 'none'}`,
-        mend: 'Let the logger write the converted value, or have an engineer register a channel that measures what is written.',
-        choices: [choice('leave-out', 'leave the column out')],
-      }),
-    )
-  }
-
-  #checkUnit(block: Block): void {
-    const { dialect, profile, questions } = this.#tools
-    const column =
-      block.wide.find(({ unit }) => unit?.quantity === 'pressure') ??
-      block.wide.find(({ unit }) => unit !== null)
-    const row = dialect.rows[0]
-    const at = block.layout === 'wide' ? column?.at : block.unitAt
-    const written =
-      block.layout === 'wide'
-        ? (column?.unit ?? null)
-        : (unitOf(row?.fields[block.unitAt]?.trim()) ?? block.unit)
-    if (written === null) return
-    this.unitWritten ??= written.token
-    // A person or the profile has said what this column is written in: nothing is left to compare.
-    if (block.layout === 'wide' && !isPlainUnit(this.#headerColumns[at ?? -1])) return
-    const line =
-      this.unitFrom === 'note'
-        ? this.#noteLine
-        : this.unitFrom === 'column'
-          ? (row?.line ?? 0)
-          : this.#headerLine
-    const place = { unit: written, line, column: this.unitFrom === 'note' ? 1 : (at ?? 0) + 1 }
-    const to = checkUnit(place, dialect, block, profile, questions, this.#tools.context)
-    this.#override = to === null ? null : { from: written, to }
-  }
-
-  /** Whether the first block can give readings at all; asked when its first row comes. */
-  #judge(): Refusal | null {
-    const { dialect, book, profile } = this.#tools
-    const block = this.block
-    if (block === null) return null
-    const unknown = block.unknown[0]
-    if (block.wide.length === 0 && block.repeated.length > 0) return null
-    // Before anything is confirmed about a source, names that the register lacks are asked about one by one.
-    if (
-      profile.layout === null &&
-      profile.columns.length === 0 &&
-      (unknown === undefined || book.names().length > 0)
-    )
-      return refuseWithoutUnit(block, dialect, this.#tools)
-    if (block.layout === 'wide' && block.wide.length === 0)
-      return this.#noKnownChannel(unknown?.name ?? '', this.#headerLine, unknown?.position ?? 1)
-    if (block.layout === 'long') {
-      const names = dialect.rows.map(({ fields, line }) => ({
-        name: (fields[block.channelAt] ?? '').trim(),
-        line,
-      }))
-      const known = names.some(
-        ({ name }) => !book.closed || book.isKnown(name) || this.#targets(name) !== null,
-      )
-      const first = names[0]
-      if (!known && first !== undefined)
-        return this.#noKnownChannel(first.name, first.line, block.channelAt + 1)
-    }
-    return refuseWithoutUnit(block, dialect, this.#tools)
-  }
-
-  #noKnownChannel(name: string, line: number, column: number): Refusal {
-    const names = this.#tools.book.names()
-    return {
-      code: 'no-known-channel',
-      line,
-      column,
-      found: name === '' ? 'no column with a channel' : `“${name}” and no other channel of this source`,
-      expected:
-        names.length === 0
-          ? 'channels of this source, but the register has none'
-          : `channels such as ${names.slice(0, 4).join(', ')}`,
-      mend: 'Check that the right source was chosen. New channels are added in the register first.',
-    }
-  }
-
   #row(row: Row, terminated: boolean): void {
-    const { tally, dialect } = this.#tools
+    const { tally, dialect, questions } = this.#tools
     const { block, line, text } = row
-    if (this.#namesPending) this.#askNames(block)
-    if (!this.#sawRow) this.refusal = this.#judge()
+    this.#blocks.askNames()
+    if (!this.#sawRow) this.refusal = this.#blocks.judge()
     this.#sawRow = true
     if (this.refusal !== null) {
       tally.skip('refused')
       return
     }
-    if (this.#times === null || this.#tools.questions.isBlocked()) {
+    if (this.#times === null || questions.isBlocked()) {
       tally.skip('unanswered')
       return
     }
@@ -513,7 +304,7 @@ export class FileBody {
     const timeText = fields[block.timeAt] ?? ''
     const time = this.#times.read(timeText, dateText, block.timeAt + 1)
     if (time.kind === 'fault' || time.kind === 'nonexistent') {
-      if (time.kind === 'nonexistent') this.#askClockChanges(time.wallMs, time.fault, line)
+      if (time.kind === 'nonexistent') askClockChanges(time.wallMs, time.fault, line, dialect.zone, questions)
       tally.reject(line, text, time.fault)
       return
     }
@@ -536,54 +327,11 @@ export class FileBody {
     const watched = this.#watch.see(track, time.atMs, line)
     const coarse = dialect.coarse ? MARKS['time-coarse'] | MARKS['order-kept'] : 0
     if (dialect.coarse) this.#coarseRows += 1
-    const flagged = this.#times.rounded || this.#offsetChanges(this.#times.offset, time.atMs, line)
+    const change = this.#offsets.see(this.#times.offset, time.atMs)
+    if (change === 'first') this.remarks.push(offsetRemark(line, time.atMs))
+    const flagged = this.#times.rounded || change !== null
     this.#lastMs = time.atMs
     this.rows.read(row, time.atMs, time.marks | watched | coarse, flagged)
-  }
-
-  /** Whether the offset written in the times changes here, other than the clocks of the site do. Said once. */
-  #offsetChanges(offset: number, atMs: number, line: number): boolean {
-    const before = this.#offset
-    this.#offset = offset
-    if (Number.isNaN(before) || Number.isNaN(offset) || offset === before || this.#lastMs === null)
-      return false
-    const zone = this.#tools.context.siteZone
-    if (zone !== null && offsetAt(zone, this.#lastMs) === before && offsetAt(zone, atMs) === offset)
-      return false
-    if (this.remarks.some(({ kind }) => kind === 'offset-change')) return true
-    this.remarks.push({
-      kind: 'offset-change',
-      text: `The offset from UTC in the times changes at line ${line}. Each time counts as it is written.`,
-      line,
-      channel: null,
-      atMs,
-      count: 1,
-    })
-    return true
-  }
-
-  /** A time that the clocks of the zone leave out: the clock of the logger probably does not change. */
-  #askClockChanges(wallMs: number, fault: Fault, line: number): void {
-    const { questions, dialect } = this.#tools
-    const zone = dialect.zone?.zone ?? 'UTC'
-    if (questions.answer('clock-changes') !== null) return
-    const winter = offsetText(offsetAt(zone, wallMs - 86_400_000))
-    questions.ask('clock-changes', () =>
-      question({
-        ...fault,
-        code: 'clock-changes',
-        id: 'clock-changes',
-        kind: 'zone',
-        blocking: false,
-        line,
-        text: `The file has times that ${zone} leaves out when its clocks go forward. Does the clock of this source follow the clock changes?`,
-        mend: 'Ask whoever set the logger up. Until it is said, rows of that hour are left out.',
-        choices: [
-          choice(winter, `it does not: it stays at ${winter} all year`),
-          choice('leave-out', 'it does; leave the rows of that hour out'),
-        ],
-      }),
-    )
   }
 
   /** Joins the halves of decimal commas. False when the row is turned away. */
@@ -656,8 +404,4 @@ export class FileBody {
         count: this.#coarseRows,
       })
   }
-}
-
-function isPlainUnit(column: HeaderColumn | undefined): boolean {
-  return column === undefined || column.unit.kind === 'unit' || column.unit.kind === 'none'
 }
