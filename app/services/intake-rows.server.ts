@@ -56,8 +56,14 @@ function idOf(ids: ReadonlyMap<string, number>, name: string): number {
 
 function toRows(batch: ReadingBatch, channelIds: readonly number[]): Buffer {
   const lines: string[] = []
+  // The channels of a line share its instant, whose text is dear.
+  let atMs = Number.NaN
+  let at = ''
   for (let i = 0; i < batch.count; i += 1) {
-    const at = new Date(batch.atMs[i] as number).toISOString().replace('T', ' ').slice(0, 23)
+    if (batch.atMs[i] !== atMs) {
+      atMs = batch.atMs[i] as number
+      at = new Date(atMs).toISOString().replace('T', ' ').slice(0, 23)
+    }
     lines.push(
       `${channelIds[batch.channel[i] as number]}\t${at}\t${batch.seq[i]}\t${orNull(batch.value[i])}\t${orNull(batch.bound[i])}\t${batch.quality[i]}\t${batch.marks[i]}\t${batch.line[i]}\n`,
     )
