@@ -16,6 +16,8 @@ export const JOB_PAYLOADS = {
       z.strictObject({
         id: z.string(),
         choice: z.string(),
+        text: z.string().optional(),
+        found: z.string().optional(),
         by: z.string().optional(),
         at: z.string().optional(),
       }),
