@@ -244,7 +244,9 @@ export async function answerQuestions(
     await demandWaiting(inside, importId)
     if (readOut === null) {
       await updateImport(inside, importId, { state: 'reading', bytesDone: 0, fault: '' })
-      await askToRead(inside, importId, all)
+      // A job's payload holds the answers alone; what was asked stays in the record below.
+      const bare = all.map(({ text: _text, found: _found, ...answer }) => answer)
+      await askToRead(inside, importId, bare)
     } else {
       await updateImport(inside, importId, {
         readOut,
