@@ -2,7 +2,7 @@ import type { Quality, Quantity } from '../readings.ts'
 import type { Separator, TimeFormat } from '../schemas/source-profile.ts'
 
 /** Version of the reading rules; kept with every import, since a later version may read the same bytes otherwise. */
-export const READER_VERSION = 1
+export const READER_VERSION = 2
 
 /** One channel of the source as the register knows it. */
 export interface KnownChannel {
