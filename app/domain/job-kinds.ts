@@ -1,6 +1,13 @@
 /** Every kind of work the worker does, what it needs to be told, and which of it recurs. */
 import { z } from 'zod'
+import type { Answer } from './night-files/types.ts'
 import { ROLES } from './roles.ts'
+
+/** Passed on as it was given; only what every answer has is looked at. */
+const AnswerSchema = z.custom<Answer>(
+  (value) => z.looseObject({ id: z.string(), choice: z.string() }).safeParse(value).success,
+  'An answer has at least an id and a choice.',
+)
 
 export const JOB_PAYLOADS = {
   /** Makes the months ahead of the readings table. */
@@ -12,16 +19,7 @@ export const JOB_PAYLOADS = {
   /** Reads a large file that has been kept, with a person's answers to its questions. */
   'read-night-file': z.strictObject({
     importId: z.int().positive(),
-    answers: z.array(
-      z.strictObject({
-        id: z.string(),
-        choice: z.string(),
-        text: z.string().optional(),
-        found: z.string().optional(),
-        by: z.string().optional(),
-        at: z.string().optional(),
-      }),
-    ),
+    answers: z.array(AnswerSchema),
   }),
   /** Takes a large file in for the person who asked, with the roles they had when they did. */
   'take-in-night-file': z.strictObject({
