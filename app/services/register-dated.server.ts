@@ -229,20 +229,24 @@ async function sourcePart(db: DbOrTx, part: DatedPart, row: RegisterRow): Promis
   }
 }
 
+/** What fittings and channel maps say alike: since when, until when, why, by whom, and whether it was replaced. */
+const DATED_COLUMNS = ['From', 'Until', 'Reason', 'Recorded by', 'Recorded', 'Replaced'] as const
+
+function datedCells(row: FittingRow | MapRow): Cell[] {
+  return [
+    instant(row.startsAt),
+    instant(row.endsAt),
+    text(row.reason),
+    text(row.recordedBy),
+    instant(row.recordedAt),
+    instant(row.replacedAt),
+  ]
+}
+
 function fittingTable(title: string, fittings: readonly FittingRow[]): RegisterTable {
   return {
     title,
-    columns: columns(
-      'Instrument',
-      'Position',
-      'Factor>',
-      'From',
-      'Until',
-      'Reason',
-      'Recorded by',
-      'Recorded',
-      'Replaced',
-    ),
+    columns: columns('Instrument', 'Position', 'Factor>', ...DATED_COLUMNS),
     rows: fittings.map((row) => ({
       key: String(row.id),
       replaced: row.replacedAt !== null,
@@ -250,12 +254,7 @@ function fittingTable(title: string, fittings: readonly FittingRow[]): RegisterT
         link('instruments', row.serial),
         link('positions', row.position),
         figure(row.factor),
-        instant(row.startsAt),
-        instant(row.endsAt),
-        text(row.reason),
-        text(row.recordedBy),
-        instant(row.recordedAt),
-        instant(row.replacedAt),
+        ...datedCells(row),
       ],
     })),
     empty: 'Nothing is recorded.',
@@ -265,17 +264,7 @@ function fittingTable(title: string, fittings: readonly FittingRow[]): RegisterT
 function mapTable(title: string, maps: readonly MapRow[]): RegisterTable {
   return {
     title,
-    columns: columns(
-      'Channel',
-      'Source',
-      'Position',
-      'From',
-      'Until',
-      'Reason',
-      'Recorded by',
-      'Recorded',
-      'Replaced',
-    ),
+    columns: columns('Channel', 'Source', 'Position', ...DATED_COLUMNS),
     rows: maps.map((row) => ({
       key: String(row.id),
       replaced: row.replacedAt !== null,
@@ -283,12 +272,7 @@ function mapTable(title: string, maps: readonly MapRow[]): RegisterTable {
         link('channels', row.channel, row.channelId),
         link('sources', row.sourceCode),
         link('positions', row.position),
-        instant(row.startsAt),
-        instant(row.endsAt),
-        text(row.reason),
-        text(row.recordedBy),
-        instant(row.recordedAt),
-        instant(row.replacedAt),
+        ...datedCells(row),
       ],
     })),
     empty: 'Nothing is recorded.',
