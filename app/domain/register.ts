@@ -78,6 +78,10 @@ export const HEATER_KIND_LABELS: Record<HeaterKind, string> = {
   blanket: 'Blanket heater',
 }
 
+/** Cables that feed bakes; each has a limit of its own (limit kinds feeder-west and feeder-east). */
+export const FEEDERS = ['west', 'east'] as const
+export type Feeder = (typeof FEEDERS)[number]
+
 export const LIMIT_KINDS = [
   'target',
   'operating-limit',

@@ -14,6 +14,8 @@ export const BOX_CHAINAGE = [
 /** Chainage of box VB-08, where the spur leaves. */
 const SPUR_LEAVES_AT = 1200
 const SPUR_LENGTH = 90
+/** West of here bakes draw from the west feeder; the rest and the spur from the east one. */
+const FEEDERS_MEET_AT = 1200
 
 /** Resistivity of 304L at 20 °C, Ω·m; from memory, not verified. 316LN is taken to be the same. */
 const RESISTIVITY_20 = 7.2e-7
@@ -169,6 +171,7 @@ export async function seedSegments(db: DbOrTx): Promise<number> {
         insulationM: 0.1,
         insulationWPerMK: 0.045,
         resistance20Ohm: Number(((RESISTIVITY_20 * length) / steelArea).toPrecision(3)),
+        feeder: one.lineId === MAIN_LINE_ID && one.startM < FEEDERS_MEET_AT ? 'west' : 'east',
         sortOrder: one.id,
       }
     }),

@@ -11,6 +11,7 @@ import {
 import { z } from 'zod'
 import { QUANTITY_NAMES } from '../../domain/readings.ts'
 import {
+  FEEDERS,
   HEATER_KINDS,
   HYDROGEN_MODELS,
   INSTRUMENT_KINDS,
@@ -82,6 +83,8 @@ export const segment = mysqlTable(
     insulationWPerMK: double('insulation_w_per_m_k').notNull(),
     /** End-to-end electrical resistance at 20 °C, ohm. */
     resistance20Ohm: double('resistance_20_ohm').notNull(),
+    /** The feeder that a bake of this segment draws from; null where nobody has said. */
+    feeder: varchar('feeder', { length: 12, enum: FEEDERS }),
     sortOrder: smallint('sort_order').notNull(),
     /** Counts edits, so that a stale form is noticed. */
     revision: int('revision').notNull().default(1),
