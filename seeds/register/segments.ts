@@ -1,6 +1,7 @@
 /** The main line of sixteen segments and the spur. Lengths in metres. */
 import type { DbOrTx } from '../../app/db/client.server.ts'
 import { line, segment, site } from '../../app/db/schema/index.ts'
+import type { Feeder } from '../../app/domain/register.ts'
 import { DEMO_ZONE } from '../demo-time.ts'
 
 const MAIN_LINE_ID = 1
@@ -171,7 +172,7 @@ export async function seedSegments(db: DbOrTx): Promise<number> {
         insulationM: 0.1,
         insulationWPerMK: 0.045,
         resistance20Ohm: Number(((RESISTIVITY_20 * length) / steelArea).toPrecision(3)),
-        feeder: one.lineId === MAIN_LINE_ID && one.startM < FEEDERS_MEET_AT ? 'west' : 'east',
+        feeder: (one.lineId === MAIN_LINE_ID && one.startM < FEEDERS_MEET_AT ? 'west' : 'east') as Feeder,
         sortOrder: one.id,
       }
     }),
