@@ -15,7 +15,14 @@ export default defineConfig({
       {
         extends: true,
         // Long for a pure test: a shared machine may be busy, and no test here is about time.
-        test: { name: 'unit', include: ['tests/unit/**/*.test.{ts,tsx}'], testTimeout: 30_000 },
+        // Pure tests have nothing to keep apart, and loading every module anew for each file takes most of their time.
+        test: {
+          name: 'unit',
+          include: ['tests/unit/**/*.test.{ts,tsx}'],
+          testTimeout: 30_000,
+          isolate: false,
+          maxWorkers: 2,
+        },
       },
       {
         extends: true,
@@ -45,7 +52,8 @@ export default defineConfig({
           name: 'e2e',
           include: ['tests/e2e/**/*.test.ts'],
           globalSetup: ['tests/support/one-demo.ts'],
-          fileParallelism: false,
+          // The files share one demo: none may change what another one looks at.
+          maxWorkers: 2,
           testTimeout: 400_000,
           hookTimeout: 180_000,
         },
