@@ -9,11 +9,12 @@ import { nitrogenEquivalent } from './gauges.ts'
 import { MILL_AGE_M2 } from './hydrogen.ts'
 import { type TemperatureCorners, temperatureAt, temperatureProgramme } from './programme.ts'
 import { pumpSpeed, type SegmentModel } from './segment-gas.ts'
-import { runTransport } from './transport.ts'
+import { transportSlices } from './transport.ts'
 import { buildMesh, meshNode, type TubeMesh } from './tube.ts'
 import { DEFAULT_WATER, WATER_FLOOR_PA } from './water.ts'
 
 const HOUR_S = 3600
+/** Cells along the segment unless asked otherwise; the curve at a gauge moves by far less than a gauge can tell. */
 const CELLS = 60
 /** Water over the wall when high vacuum starts, Pa: the answer forgets it within the first hour (own choice). */
 const WATER_START_PA = 1
@@ -28,6 +29,8 @@ export interface SimulationOptions {
   atM: number
   /** Gas temperature at gauges and pumps, K; that of the model unless given. */
   roomK?: number
+  /** Cells along the segment, 60 unless given; never shorter than the bore. */
+  cells?: number
   tolerance?: number
   cancelled?: () => boolean
   onProgress?: (share: number) => void
@@ -49,19 +52,32 @@ export interface Simulation {
  * at the start. A wall already baked starts in equilibrium with its floor. Throws `TransportError` when cancelled.
  */
 export function simulateSegment(model: SegmentModel, options: SimulationOptions): Simulation {
+  const slices = simulationSlices(model, options)
+  let slice = slices.next()
+  while (!slice.done) slice = slices.next()
+  return slice.value
+}
+
+/** The same handed over in slices, as `transportSlices` does: a thread that must not be held up takes one at a time. */
+export function* simulationSlices(
+  model: SegmentModel,
+  options: SimulationOptions,
+): Generator<undefined, Simulation, undefined> {
   const roomK = options.roomK ?? model.temperatureK
   requireWithin('roomK', roomK, 200, 400)
+  const cells = options.cells ?? CELLS
+  requireWithin('cells', cells, 1, 10_000)
   const leaks = model.airLeaks ?? []
   const pointsM = [options.atM, ...model.pumps.map((pump) => pump.atM), ...leaks.map((leak) => leak.atM)]
   const sections = [{ lengthM: model.lengthM, diameterM: model.diameterM }]
   const mesh = buildMesh(
     [{ name: 'segment', sections, pointsM }],
-    Math.max(model.diameterM, model.lengthM / CELLS),
+    Math.max(model.diameterM, model.lengthM / cells),
   )
   const programme = temperatureProgramme(options.corners)
   const gases: GasRun[] = [waterRun(model, mesh, roomK), hydrogenRun(model, mesh, roomK)]
   if (leaks.length > 0) gases.push(airRun(model, mesh, roomK))
-  const histories = runTransport({
+  const histories = yield* transportSlices({
     mesh,
     thermal: { programmes: [programme] },
     gases,

@@ -80,11 +80,24 @@ export interface GasHistory {
  * enough, and `PhysicsError` for arguments that cannot be used.
  */
 export function runTransport(run: TransportRun): GasHistory[] {
+  const slices = transportSlices(run)
+  let slice = slices.next()
+  while (!slice.done) slice = slices.next()
+  return slice.value
+}
+
+/**
+ * The same run handed over in slices of a few steps each, for a thread that must hear messages between them: take the
+ * next slice to go on, take none to give the run up. The histories are what the last slice returns.
+ */
+export function* transportSlices(run: TransportRun): Generator<undefined, GasHistory[], undefined> {
   requireRun(run)
-  return run.gases.map((gas, index) => {
+  const histories: GasHistory[] = []
+  for (const [index, gas] of run.gases.entries()) {
     const report = run.onProgress
-    return runGas(run, gas, report && ((share) => report((index + share) / run.gases.length)))
-  })
+    histories.push(yield* runGas(run, gas, report && ((share) => report((index + share) / run.gases.length))))
+  }
+  return histories
 }
 
 function requireRun(run: TransportRun): void {
@@ -113,7 +126,11 @@ function stops(run: TransportRun, gas: GasRun): { atS: number; restart: boolean 
     .map((atS) => ({ atS, restart: switches.has(atS) }))
 }
 
-function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => void): GasHistory {
+function* runGas(
+  run: TransportRun,
+  gas: GasRun,
+  onProgress?: (share: number) => void,
+): Generator<undefined, GasHistory, undefined> {
   const { mesh } = run
   const n = mesh.count
   const tolerance = run.tolerance ?? 1e-3
@@ -262,8 +279,11 @@ function runGas(run: TransportRun, gas: GasRun, onProgress?: (share: number) => 
     while (t < stop.atS) {
       const left = stop.atS - t
       const h = step >= left ? left : left < 2 * step ? left / 2 : step
-      if (run.cancelled && (steps + rejected) % 16 === 0 && run.cancelled()) {
-        throw new TransportError('cancelled', t, `The run was cancelled ${t} s into the programme`)
+      if ((steps + rejected) % 16 === 0) {
+        yield
+        if (run.cancelled?.()) {
+          throw new TransportError('cancelled', t, `The run was cancelled ${t} s into the programme`)
+        }
       }
       if (steps + rejected >= maxSteps) {
         throw new TransportError('too-many-steps', t, `More than ${maxSteps} steps were needed by ${t} s`)
