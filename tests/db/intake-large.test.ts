@@ -1,20 +1,17 @@
-import { type ChildProcess, spawn } from 'node:child_process'
-import { createHash } from 'node:crypto'
-import { once } from 'node:events'
 import { asc, count, eq } from 'drizzle-orm'
-import { beforeEach, describe, expect, it, onTestFinished } from 'vitest'
-import { importFile, importRange, job, reading, record } from '#app/db/schema/index.ts'
+import { beforeEach, describe, expect, it } from 'vitest'
+import { importFile, reading, record } from '#app/db/schema/index.ts'
 import type { Actor } from '#app/domain/actor.ts'
 import { machineNow } from '#app/machine-time.server.ts'
 import { stageUpload } from '#app/services/intake.server.ts'
 import { acceptNowOrLater, answerQuestions, discardImport } from '#app/services/intake-decisions.server.ts'
 import { readLargeFile } from '#app/services/intake-large.server.ts'
-import { claimJob, drainJobs, LEASE_MS, runJob } from '#app/services/jobs.server.ts'
+import { drainJobs } from '#app/services/jobs.server.ts'
 import { JOB_HANDLERS } from '#app/worker/jobs/handlers.server.ts'
 import { NL_E, NL_W } from '#tests/fixtures/night-files/profiles.ts'
 import { fixture } from '#tests/fixtures/night-files/read.ts'
 import { MORNING } from '#tests/support/clock.ts'
-import { currentTestDatabaseUrl, freshDatabase } from '#tests/support/db.ts'
+import { freshDatabase } from '#tests/support/db.ts'
 import { createChannel, createClock, createSite, createSource, createUser } from '#tests/support/factories.ts'
 
 const db = freshDatabase()
@@ -153,104 +150,3 @@ describe('a large file', () => {
     expect(await rowOf(importId)).toMatchObject({ state: 'read' })
   })
 })
-
-/** A file of the long layout, some megabytes, of which every line is known. */
-function longFile(rows: number): string {
-  const lines = Array.from(
-    { length: rows },
-    (_, i) => `${1_794_204_000_000 + i * 1_000},HC-16A,${1 + (i % 7)}.${i % 10}e-07,Pa,OK`,
-  )
-  return `epoch_ms,channel,value,unit,status\n${lines.join('\n')}\n`
-}
-
-/** Starts the process of a worker that does one job. */
-async function startWorker(): Promise<ChildProcess> {
-  const child = spawn(process.execPath, ['--import', 'tsx', 'tests/support/read-file-process.ts'], {
-    env: { ...process.env, DATABASE_URL: currentTestDatabaseUrl() },
-    stdio: ['ignore', 'pipe', 'inherit'],
-  })
-  onTestFinished(() => {
-    child.kill('SIGKILL')
-  })
-  let seen = ''
-  for await (const piece of child.stdout ?? []) {
-    seen += String(piece)
-    if (seen.includes('begun')) break
-  }
-  return child
-}
-
-async function killAfter(child: ChildProcess, ms: number): Promise<void> {
-  await new Promise((resolve) => setTimeout(resolve, ms))
-  const gone = child.exitCode !== null ? Promise.resolve() : once(child, 'exit')
-  child.kill('SIGKILL')
-  await gone
-}
-
-/** What a worker does that comes after the lease of the dead one. */
-async function takeOver(): Promise<void> {
-  const later = new Date(machineNow().getTime() + LEASE_MS + 1_000)
-  const held = await claimJob(db, later)
-  if (held === null) return
-  const { signal } = new AbortController()
-  expect(await runJob(db, held, JOB_HANDLERS, { signal })).toBe('done')
-}
-
-const digest = async () => {
-  const rows = await db
-    .select()
-    .from(reading)
-    .orderBy(asc(reading.channelId), asc(reading.at), asc(reading.seq))
-  return createHash('sha256')
-    .update(rows.map(({ at, value, lineNo }) => `${at.getTime()} ${value} ${lineNo}`).join('\n'))
-    .digest('hex')
-}
-
-describe('a worker that is killed', () => {
-  const ROWS = 20_000
-  // Each starts two processes, which a busy machine takes its time over.
-  const WITHIN_MS = 120_000
-
-  it.each([1, 2, 3, 4, 5])(
-    'while it reads and takes in leaves nothing half done (seed %i)',
-    async (seed) => {
-      // Moments spread over what reading and taking in take here; a death after the end is one of them.
-      const moment = (from: number) => from + ((seed * 7_919) % 5) * 90
-      const { importId } = await send(longFile(ROWS), 'NL-E')
-      await killAfter(await startWorker(), moment(20))
-      const between = await rowOf(importId)
-      expect(['reading', 'read']).toContain(between?.state)
-      if (between?.state === 'reading') {
-        expect(between).toMatchObject({ readOut: null })
-        await takeOver()
-      }
-      expect(await rowOf(importId)).toMatchObject({ state: 'read', lineCount: ROWS + 1, readingCount: ROWS })
-      expect(await readings()).toBe(0)
-
-      await db.delete(job)
-      await acceptNowOrLater(db, technician, MORNING, importId, LARGE)
-      await killAfter(await startWorker(), moment(150))
-      // The database may still be undoing or finishing what the dead one had begun.
-      const row = await rowOf(importId)
-      expect([0, ROWS]).toContain(await readings())
-      if (row?.state === 'read') await takeOver()
-      expect(await rowOf(importId)).toMatchObject({ state: 'accepted', readingCount: ROWS, heldCount: 0 })
-      expect(await readings()).toBe(ROWS)
-      const ranges = await db.select().from(importRange)
-      expect(ranges.map(({ readingCount }) => readingCount)).toEqual([ROWS])
-      const whole = await digest()
-      await drainJobs(db, JOB_HANDLERS, new Date(machineNow().getTime() + LEASE_MS + 1_000))
-      expect(await digest()).toBe(whole)
-      expect(whole).toBe(expectedDigest(ROWS))
-    },
-    WITHIN_MS,
-  )
-})
-
-function expectedDigest(rows: number): string {
-  const lines = Array.from(
-    { length: rows },
-    (_, i) => `${1_794_204_000_000 + i * 1_000} ${Number(`${1 + (i % 7)}.${i % 10}e-07`)} ${i + 2}`,
-  )
-  return createHash('sha256').update(lines.join('\n')).digest('hex')
-}
