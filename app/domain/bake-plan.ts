@@ -5,9 +5,10 @@
 import { z } from 'zod'
 import { coolSeconds, type HeatedTube } from '../physics/thermal.ts'
 import { celsiusToKelvin } from '../physics/units.ts'
+import type { BakePlanState, PlanPriority } from './planning.ts'
 
 /** A permit is issued for at most so many days; a longer bake is handed over from one permit to the next. */
-export const PERMIT_DAYS = 10
+const PERMIT_DAYS = 10
 const PERMIT_HOURS = PERMIT_DAYS * 24
 /** Hours during which two permits of a chain are both in force, so that the handover leaves no gap (own choice). */
 const PERMIT_OVERLAP_HOURS = 12
@@ -54,6 +55,20 @@ export const BakePlanContentSchema = z.object({
 
 /** See the fields above for units. */
 export type BakePlanContent = z.infer<typeof BakePlanContentSchema>
+
+export const BAKE_PLAN_STATE_LABELS: Record<BakePlanState, string> = {
+  draft: 'Draft',
+  ready: 'Ready',
+  'under-way': 'Under way',
+  done: 'Done',
+  withdrawn: 'Withdrawn',
+}
+
+export const PLAN_PRIORITY_LABELS: Record<PlanPriority, string> = {
+  normal: 'Normal',
+  urgent: 'Urgent',
+  'can-wait': 'Can wait',
+}
 
 export const PLAN_STEP_LABELS = {
   preparation: 'Preparation',

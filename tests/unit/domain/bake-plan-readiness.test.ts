@@ -4,6 +4,7 @@ import type { BakePlanContent } from '#app/domain/bake-plan.ts'
 import { differences } from '#app/domain/bake-plan-differences.ts'
 import {
   blockingItems,
+  licenceIn,
   type PlanFacts,
   readiness,
   TICKED_ITEM_KEYS,
@@ -163,3 +164,21 @@ test('equal versions differ in nothing, and a difference says both values', () =
   expect(differences(content, { ...content })).toEqual([])
   expect(differences(content, { ...content, celsius: 140 })).toEqual(['Bake temperature: 150 °C → 140 °C'])
 })
+
+test.each([
+  [
+    'Licensed electrician, licence QE-1187, which runs out on 2026-11-20. Does not sign in',
+    'QE-1187',
+    '2026-11-20',
+  ],
+  ['Licensed electrician, licence QE-12', 'QE-12', null],
+])('a licence is read from "%s"', (note, licence, endsOn) => {
+  expect(licenceIn(note)).toEqual({ licence, endsOn })
+})
+
+test.each(['Crane licence K-7 until 2027-01-01', 'electrician, licence to be renewed', ''])(
+  '"%s" speaks of no electrician\'s licence',
+  (note) => {
+    expect(licenceIn(note)).toBeNull()
+  },
+)
