@@ -1,6 +1,6 @@
 /** Bake plans with their versions and ticks, and what the register knows that a plan rests on. */
 import { and, asc, desc, eq, gte, inArray, like, ne, or } from 'drizzle-orm'
-import type { BakePlanState, IsolationTestState, PlanPriority } from '../../domain/planning.ts'
+import type { BakePlanState, PlanPriority } from '../../domain/planning.ts'
 import type { DbOrTx } from '../client.server.ts'
 import {
   bakePlan,
@@ -8,7 +8,6 @@ import {
   bakePlanSegment,
   bakePlanVersion,
   heaterCircuit,
-  isolationTest,
   logEntry,
   person,
   pump,
@@ -231,20 +230,6 @@ export async function lastLeakCheck(db: DbOrTx, segmentId: number, since: Date |
     .orderBy(desc(logEntry.eventAt))
     .limit(1)
   return row?.at ?? null
-}
-
-/** Isolation tests whose valve was shut after an instant, newest first. */
-export function listIsolationTestsSince(
-  db: DbOrTx,
-  segmentId: number,
-  since: Date | null,
-): Promise<{ state: IsolationTestState; acceptedAt: Date | null; voidRemark: string }[]> {
-  const { state, acceptedAt, voidRemark, closedAt } = isolationTest
-  return db
-    .select({ state, acceptedAt, voidRemark })
-    .from(isolationTest)
-    .where(and(eq(isolationTest.segmentId, segmentId), since === null ? undefined : gte(closedAt, since)))
-    .orderBy(desc(closedAt), desc(isolationTest.id))
 }
 
 /** Notes of people that speak of a licence. */
