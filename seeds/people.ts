@@ -125,6 +125,13 @@ export const PERSON_ID = Object.fromEntries(PEOPLE.map(({ key }, index) => [key,
   number
 >
 
+/** Name of a person of the demo, by id. */
+export function nameOf(id: number): string {
+  const found = PEOPLE[id - 1]
+  if (found === undefined) throw new Error(`The demo has no person ${id}`)
+  return found.name
+}
+
 /** People who sign in without standing on the sign-in page share the password of the person offered for their role. */
 function passwordOf({ email, grants, password }: DemoPerson): string | null {
   if (password !== undefined) return password

@@ -41,7 +41,12 @@ export function spanOfNight(night: string): Span {
 /** Instants of a pressure logger's rows in a night. */
 export function pressureRows(night: string): number[] {
   const { fromMs, toMs } = spanOfNight(night)
-  return everyStep(fromMs, toMs, night >= MINUTES_SINCE ? MINUTE_MS : 10 * MINUTE_MS)
+  return everyStep(fromMs, toMs, pressurePeriodMs(night))
+}
+
+/** Time between the rows of a pressure logger in a night. */
+export function pressurePeriodMs(night: string): number {
+  return night >= MINUTES_SINCE ? MINUTE_MS : 10 * MINUTE_MS
 }
 
 /** Instants after `fromMs` up to `toMs`, a step apart. */

@@ -1,4 +1,5 @@
 /** Files of the temperature, power and residual-gas loggers. */
+import { MARKS } from '../../app/domain/readings.ts'
 import { at } from '../demo-time.ts'
 import { POSITIONS } from '../register/positions.ts'
 import { SEGMENTS } from '../register/segments.ts'
@@ -31,7 +32,8 @@ export function temperatureFile(
     const lineNo = lines.length + 1
     const cells = places.map((place) => {
       const celsius = thermocoupleC(place, atMs)
-      readings.push(reading(place.tag, atMs, lineNo, celsius, celsius === OPEN_WIRE_C ? 'fault' : 'good'))
+      const broken = celsius === OPEN_WIRE_C
+      readings.push(reading(place.tag, atMs, lineNo, broken ? null : celsius, broken ? 'fault' : 'good'))
       return celsius.toFixed(1)
     })
     lines.push([isoWithOffset(atMs), ...cells].join('\t'))
@@ -94,12 +96,17 @@ export function powerFile(fileName: string, rows: readonly number[], endsMs: num
 
 /** The residual-gas logger lost its clock in this night and began at the turn of the century. */
 const LOST_CLOCK_NIGHT = '2026-11-02'
+/** What was answered when the file without a clock came in: its first second, on the clock of the site. */
+export const LOST_CLOCK_ANSWER = { night: LOST_CLOCK_NIGHT, start: `${LOST_CLOCK_NIGHT} 06:00` } as const
 
 /** A file of the residual-gas logger: seconds since a start that stands in a note. */
 function residualGasFile(night: string): LoggerFile {
   const { fromMs, toMs } = spanOfNight(night)
   const begins = `${siteDay(fromMs)} 06:00:00`
-  const start = night === LOST_CLOCK_NIGHT ? '2000-01-01 00:00:00' : begins
+  const lost = night === LOST_CLOCK_NIGHT
+  const start = lost ? '2000-01-01 00:00:00' : begins
+  // Times that hang on somebody's answer are marked as such.
+  const marks = lost ? MARKS['time-reconstructed'] : 0
   const lines = [
     '# RG-A at the cross of SG-06   Unit: A',
     `# Start: ${start}`,
@@ -111,7 +118,7 @@ function residualGasFile(night: string): LoggerFile {
     const cells = MASSES.map((mass) => {
       const text = print(ionCurrentA(mass, atMs))
       const channel = `RG-A-${String(mass).padStart(2, '0')}`
-      readings.push(reading(channel, atMs, lineNo, Number(text)))
+      readings.push({ ...reading(channel, atMs, lineNo, Number(text)), marks })
       return text
     })
     lines.push([(atMs - fromMs) / 1000, ...cells].join(','))
@@ -128,9 +135,9 @@ function residualGasFile(night: string): LoggerFile {
 }
 
 /** RG-A has stood at SG-06 since this night. */
-const RESIDUAL_GAS_SINCE = '2026-10-12'
+export const RESIDUAL_GAS_SINCE = '2026-10-12'
 /** In this night the residual-gas logger delivered nothing. */
-const RESIDUAL_GAS_MISSING = '2026-11-08'
+export const RESIDUAL_GAS_MISSING = '2026-11-08'
 
 /** The file of one of these loggers for the night that began on a day; null where it delivered none. */
 export function otherNightFile(

@@ -7,9 +7,11 @@ import type mysql from 'mysql2'
 import type { DbOrTx } from '../../app/db/client.server.ts'
 import { attachment, attachmentChunk, importFile, importRange } from '../../app/db/schema/index.ts'
 import { readNightFile } from '../../app/domain/night-files/reader.ts'
-import type { ReadOut } from '../../app/domain/night-files/types.ts'
+import type { Answer, ReadContext, ReadOut } from '../../app/domain/night-files/types.ts'
 import { MARKS, qualityWord } from '../../app/domain/readings.ts'
+import type { SourceProfile } from '../../app/domain/schemas/source-profile.ts'
 import { DEMO_ZONE } from '../demo-time.ts'
+import { nameOf } from '../people.ts'
 import { CHANNELS, channelId, SOURCE_ID, SOURCES } from '../register/sources.ts'
 import type { LoggerFile } from './files.ts'
 import { loadReadings, type StoredReading } from './load.ts'
@@ -17,7 +19,7 @@ import { type TakenInFile, takenInFiles } from './taken-in.ts'
 
 const CHUNK_BYTES = 1024 * 1024
 
-interface TakenIn extends Omit<TakenInFile, 'make'> {
+interface TakenIn extends Omit<TakenInFile, 'make' | 'answer' | 'periodSeconds'> {
   id: number
   file: Omit<LoggerFile, 'readings'>
   readOut: ReadOut
@@ -35,24 +37,47 @@ const CHANNELS_OF = Object.fromEntries(
   ]),
 )
 
+/** Context in which a file of a source was read when it came in. */
+function contextOf(file: Omit<LoggerFile, 'readings'>, takenInAt: Date): ReadContext {
+  return {
+    nowMs: takenInAt.getTime(),
+    siteZone: DEMO_ZONE,
+    channels: CHANNELS_OF[file.source] ?? [],
+    fileName: file.fileName,
+    statedBytes: file.bytes.length,
+  }
+}
+
+/** The answer to a question that a file raises, with the question as the reader puts it. */
+async function answered(
+  file: Omit<LoggerFile, 'readings'>,
+  { answer, takenInAt, takenInBy }: Omit<TakenInFile, 'make'>,
+  profile: SourceProfile | null,
+): Promise<Answer[]> {
+  if (answer === undefined) return []
+  const { questions } = await readNightFile([file.bytes], profile, contextOf(file, takenInAt), () => {})
+  const asked = questions.find(({ id }) => id === answer.id)
+  if (asked === undefined) throw new Error(`${file.fileName} raises no question "${answer.id}"`)
+  const { text, found } = asked
+  return [{ ...answer, text, found, by: nameOf(takenInBy), at: takenInAt.toISOString() }]
+}
+
 async function read(
   file: Omit<LoggerFile, 'readings'>,
   id: number,
-  nowMs: number,
+  taking: Omit<TakenInFile, 'make'>,
 ): Promise<{ readOut: ReadOut; readings: StoredReading[] }> {
-  const profile = SOURCES.find(({ code }) => code === file.source)?.profile ?? null
+  const now = SOURCES.find(({ code }) => code === file.source)?.profile ?? null
+  const { periodSeconds } = taking
+  const profile =
+    now === null || periodSeconds === undefined ? now : { ...now, expectedPeriodSeconds: periodSeconds }
+  const answers = await answered(file, taking, profile)
   const readings: StoredReading[] = []
   const optional = (value: number) => (Number.isNaN(value) ? null : value)
   const readOut = await readNightFile(
     [file.bytes],
     profile,
-    {
-      nowMs,
-      siteZone: DEMO_ZONE,
-      channels: CHANNELS_OF[file.source] ?? [],
-      fileName: file.fileName,
-      statedBytes: file.bytes.length,
-    },
+    { ...contextOf(file, taking.takenInAt), answers },
     (batch, met) => {
       const ids = met.map(({ name }) => channelId(file.source, name))
       for (let index = 0; index < batch.count; index += 1) {
@@ -87,10 +112,10 @@ export async function loadArchive(pool: mysql.Pool): Promise<{ archive: TakenIn[
   const archive: TakenIn[] = []
   let stored = 0
   let loading: Promise<number> = Promise.resolve(0)
-  for (const [index, { make, takenInAt, takenInBy }] of takenInFiles().entries()) {
+  for (const [index, { make, ...taking }] of takenInFiles().entries()) {
     const { readings: _made, ...file } = make()
     const id = index + 1
-    const { readOut, readings } = await read(file, id, takenInAt.getTime())
+    const { readOut, readings } = await read(file, id, taking)
     // In the order of the table's key, which the rows of a file are not in.
     readings.sort((a, b) => a.channelId - b.channelId || a.atMs - b.atMs || a.seq - b.seq)
     stored += await loading
@@ -98,8 +123,8 @@ export async function loadArchive(pool: mysql.Pool): Promise<{ archive: TakenIn[
     archive.push({
       id,
       file,
-      takenInAt,
-      takenInBy,
+      takenInAt: taking.takenInAt,
+      takenInBy: taking.takenInBy,
       readOut,
       readingCount: readings.length,
       conflictCount: readings.filter(({ marks }) => (marks & MARKS.conflict) !== 0).length,

@@ -1,10 +1,26 @@
 /** Which files had been taken in before the demo begins, by whom and when; the newest is made last. */
+import type { Answer } from '../../app/domain/night-files/types.ts'
 import { PERSON_ID } from '../people.ts'
 import { SEGMENTS } from '../register/segments.ts'
 import { BAKES } from '../scenario/bakes.ts'
-import { archiveMonths, demoNights, everyStep, keptInArchive, type Span, spanOfNight } from './calendar.ts'
+import {
+  archiveMonths,
+  demoNights,
+  everyStep,
+  keptInArchive,
+  pressurePeriodMs,
+  type Span,
+  spanOfNight,
+} from './calendar.ts'
 import type { LoggerFile } from './files.ts'
-import { otherNightFile, powerFile, temperatureFile } from './logger-files.ts'
+import {
+  LOST_CLOCK_ANSWER,
+  otherNightFile,
+  powerFile,
+  RESIDUAL_GAS_MISSING,
+  RESIDUAL_GAS_SINCE,
+  temperatureFile,
+} from './logger-files.ts'
 import { eastFile, nightFile, westFile } from './night-file.ts'
 import { siteDay } from './site-clock.ts'
 import { THERMOCOUPLES } from './temperatures.ts'
@@ -20,6 +36,10 @@ const POWER_ARCHIVE_MS = 6 * HOUR_MS
 /** Made only when its turn comes: all of them together are too much to hold. */
 export interface TakenInFile {
   make: () => LoggerFile
+  /** Time between its rows where that is not what the source's profile says now; the longest of a thinned file. */
+  periodSeconds?: number
+  /** What the person who took it in answered when the reader asked. */
+  answer?: Pick<Answer, 'id' | 'choice'>
   takenInBy: number
   takenInAt: Date
 }
@@ -38,7 +58,7 @@ function pressureMonths(): TakenInFile[] {
       () => westFile(name('NL-W'), rows.filter(keptWest), span.toMs),
       () => eastFile(name('NL-E'), rows, span.toMs, (segment, atMs) => keptOf.get(segment)?.(atMs) === true),
     ]
-    return makes.map((make, index) => carriedOver(make, span, index))
+    return makes.map((make, index) => carriedOver(make, span, index, HOUR_MS))
   })
 }
 
@@ -48,12 +68,22 @@ function powerMonths(): TakenInFile[] {
     const rows = everyStep(span.fromMs, span.toMs, HOUR_MS).filter(
       (atMs) => atMs % POWER_ARCHIVE_MS === 0 || SEGMENTS.some(({ tag }) => isHeated(tag, atMs)),
     )
-    return carriedOver(() => powerFile(`NL-P_${month}_archive.csv`, rows, span.toMs), span, 2)
+    return carriedOver(
+      () => powerFile(`NL-P_${month}_archive.csv`, rows, span.toMs),
+      span,
+      2,
+      POWER_ARCHIVE_MS,
+    )
   })
 }
 
-function carriedOver(make: () => LoggerFile, span: Span, turn: number): TakenInFile {
-  return { make, takenInBy: PERSON_ID.juniper, takenInAt: later(span.toMs, 95 + 4 * turn) }
+function carriedOver(make: () => LoggerFile, span: Span, turn: number, periodMs: number): TakenInFile {
+  return {
+    make,
+    periodSeconds: periodMs / 1000,
+    takenInBy: PERSON_ID.juniper,
+    takenInAt: later(span.toMs, 95 + 4 * turn),
+  }
 }
 
 /** One file for each bake, with the twelve thermocouples of its segment. */
@@ -71,7 +101,7 @@ function bakeRecords(): TakenInFile[] {
         span.toMs,
         places,
       )
-    return [{ make, takenInBy: PERSON_ID.bram, takenInAt: later(span.toMs, 150) }]
+    return [{ make, periodSeconds: 600, takenInBy: PERSON_ID.bram, takenInAt: later(span.toMs, 150) }]
   })
 }
 
@@ -82,20 +112,26 @@ function nights(): TakenInFile[] {
   const all = demoNights()
   return all.flatMap((night, index) => {
     const endsMs = spanOfNight(night).toMs
-    const makes: (() => LoggerFile)[] = [() => nightFile('NL-E', night)]
+    const periodSeconds = pressurePeriodMs(night) / 1000
+    const makes: Omit<TakenInFile, 'takenInBy' | 'takenInAt'>[] = [
+      { make: () => nightFile('NL-E', night), periodSeconds },
+    ]
     // The west logger's last file is left for a person to take in.
-    if (index < all.length - 1) makes.unshift(() => nightFile('NL-W', night))
-    if (night >= FIVE_MINUTES_SINCE) {
-      for (const source of ['NL-T', 'NL-P'] as const) {
-        makes.push(() => {
-          const file = otherNightFile(source, night)
-          if (file === null) throw new Error(`${source} delivered nothing for ${night}`)
-          return file
-        })
+    if (index < all.length - 1) makes.unshift({ make: () => nightFile('NL-W', night), periodSeconds })
+    const others = night >= FIVE_MINUTES_SINCE ? (['NL-T', 'NL-P', 'NL-R'] as const) : (['NL-R'] as const)
+    for (const source of others) {
+      const delivered = source !== 'NL-R' || (night >= RESIDUAL_GAS_SINCE && night !== RESIDUAL_GAS_MISSING)
+      if (!delivered) continue
+      const make = () => {
+        const file = otherNightFile(source, night)
+        if (file === null) throw new Error(`${source} delivered nothing for ${night}`)
+        return file
       }
+      const lost = source === 'NL-R' && night === LOST_CLOCK_ANSWER.night
+      makes.push(lost ? { make, answer: { id: 'start', choice: LOST_CLOCK_ANSWER.start } } : { make })
     }
-    return makes.map((make, turn) => ({
-      make,
+    return makes.map((one, turn) => ({
+      ...one,
       takenInBy: CREW[(index + turn) % CREW.length] as number,
       takenInAt: later(endsMs, 35 + ((index * 7) % 17) + turn),
     }))

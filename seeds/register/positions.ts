@@ -27,7 +27,8 @@ type Draft = Omit<DemoPosition, 'id'>
 
 /** Gauges stand this far inside the end flanges, metres. */
 const GAUGE_INSET = 1
-const GASES_WATCHED = [2, 4, 18, 28, 32, 40, 44]
+/** Mass numbers that the analyser RG-A follows. */
+export const GASES_WATCHED = [2, 4, 18, 28, 32, 40, 44] as const
 
 function gauges(): Draft[] {
   return SEGMENTS.flatMap((one) => {

@@ -5,10 +5,11 @@ import { channelKey } from '../../app/domain/register.ts'
 import { type SourceProfile, SourceProfileSchema } from '../../app/domain/schemas/source-profile.ts'
 import { DEMO_ZONE, REGISTER_BEGAN } from '../demo-time.ts'
 import { PERSON_ID } from '../people.ts'
-import { type DemoPosition, POSITIONS, type SourceCode } from './positions.ts'
+import { OPEN_WIRE_C } from '../readings/temperatures.ts'
+import { type DemoPosition, GASES_WATCHED, POSITIONS, type SourceCode } from './positions.ts'
 
-/** Loggers write a row every ten minutes; tests and pump-downs of NL-E every minute besides. */
-const LOGGER_PERIOD_S = 600
+/** The pressure loggers write a row a minute; before the end of October they wrote one every ten. */
+const LOGGER_PERIOD_S = 60
 
 const NITROGEN_EQUIVALENT = { kind: 'nitrogen-equivalent', gas: null } as const
 
@@ -67,6 +68,8 @@ export const SOURCES: readonly DemoSource[] = [
       decimalMark: '.',
       unit: '°C',
       time: { format: 'iso' },
+      // A broken wire reads as the top of the amplifier's range.
+      sentinels: [{ value: OPEN_WIRE_C, quality: 'fault' }],
       averaging: 'momentary',
       expectedPeriodSeconds: 300,
     }),
@@ -92,8 +95,23 @@ export const SOURCES: readonly DemoSource[] = [
     name: 'Residual-gas logger',
     dueAt: '07:00',
     periodSeconds: 600,
-    profile: null,
-    note: 'RG-A, ion currents by mass',
+    profile: SourceProfileSchema.parse({
+      layout: 'wide',
+      separator: ',',
+      decimalMark: '.',
+      unit: 'A',
+      time: { format: 'elapsed-s', startFormat: 'iso', zone: DEMO_ZONE },
+      averaging: 'momentary',
+      expectedPeriodSeconds: 600,
+      // The analyser heads its columns with bare mass numbers.
+      columns: GASES_WATCHED.map((mass) => ({
+        inFile: String(mass),
+        channel: `RG-A-${String(mass).padStart(2, '0')}`,
+        unit: 'A',
+        quantity: 'ion-current',
+      })),
+    }),
+    note: 'RG-A, ion currents by mass; counts seconds from a start that stands in its first lines',
   },
   {
     code: 'HAND',

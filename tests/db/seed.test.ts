@@ -141,7 +141,7 @@ describe('the demo', () => {
 
   it('keeps the original bytes of every file taken in, and has not taken in the west logger’s last', async () => {
     const imports = await db.select().from(importFile)
-    expect(imports).toHaveLength(167)
+    expect(imports).toHaveLength(194)
     expect(imports.some(({ fileName }) => fileName === 'NL-W_2026-11-08.csv')).toBe(false)
     const newest = imports.find(({ fileName }) => fileName === 'NL-E_2026-11-08.csv')
     const chunks = await db
@@ -213,6 +213,46 @@ describe('fourteen months of the demo', () => {
     )
     expect([Number(row.n), Number(row.signed)]).toEqual([860, 860])
     expect(Number(row.texts)).toBeGreaterThan(700)
+  })
+
+  it('says of no file that rows are missing: each is measured against the time between its own rows', async () => {
+    const row = await one(`SELECT COUNT(*) AS files, SUM(JSON_VALUE(read_out, '$.gapTotal')) AS gaps,
+      SUM(file_name LIKE 'NL-W%archive%' AND JSON_VALUE(read_out, '$.periodSeconds') = 3600) AS hourly,
+      SUM(file_name = 'NL-W_2026-11-07.csv' AND JSON_VALUE(read_out, '$.periodSeconds') = 60) AS minutes
+      FROM import_file`)
+    expect([Number(row.files), Number(row.gaps), Number(row.hourly), Number(row.minutes)]).toEqual([
+      194, 0, 13, 1,
+    ])
+  })
+
+  it('has ion currents of 27 nights, those of the night without a clock marked and with the answer that was given', async () => {
+    const row = await one(`SELECT COUNT(*) AS n, COUNT(DISTINCT r.import_id) AS files,
+      SUM(r.marks = 2) AS marked FROM reading r JOIN channel c ON c.id = r.channel_id
+      JOIN source s ON s.id = c.source_id WHERE s.code = 'NL-R'`)
+    // 27 nights of 144 rows, one of them with the repeated hour's 150, of seven masses.
+    expect([Number(row.n), Number(row.files), Number(row.marked)]).toEqual([
+      7 * (26 * 144 + 150),
+      27,
+      7 * 144,
+    ])
+    const asked = await one(`SELECT JSON_VALUE(read_out, '$.answers[0].id') AS id,
+      JSON_VALUE(read_out, '$.answers[0].found') AS found, JSON_VALUE(read_out, '$.answers[0].by') AS who
+      FROM import_file WHERE file_name = 'NL-R_2026-11-02.csv'`)
+    expect(asked.id).toBe('start')
+    expect(asked.found).toContain('2000-01-01')
+    expect(asked.who).toMatch(/^(Pim|Odalys|Corwin|Nerys) /)
+  })
+
+  it('shows argon at SG-06 growing a hundredfold when the leak opens, and water staying as it was', async () => {
+    const mean = async (mass: string, day: string) =>
+      Number(
+        (
+          await one(`SELECT AVG(r.value) AS a FROM reading r JOIN channel c ON c.id = r.channel_id
+            WHERE c.name = 'RG-A-${mass}' AND r.quality = 0 AND DATE(r.at) = '${day}'`)
+        ).a,
+      )
+    expect((await mean('40', '2026-11-05')) / (await mean('40', '2026-10-25'))).toBeGreaterThan(100)
+    expect((await mean('18', '2026-11-05')) / (await mean('18', '2026-10-25'))).toBeCloseTo(1, 0)
   })
 
   it('has no residual gas for the last night and the two temporary seals in the register', async () => {

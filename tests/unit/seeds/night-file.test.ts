@@ -2,11 +2,13 @@ import { readdirSync, readFileSync, statSync } from 'node:fs'
 import { fileURLToPath } from 'node:url'
 import { describe, expect, it } from 'vitest'
 import { readNightFile } from '#app/domain/night-files/reader.ts'
+import type { Answer } from '#app/domain/night-files/types.ts'
 import { qualityWord } from '#app/domain/readings.ts'
 import { anyNightFile, LOGGER_CODES } from '#seeds/readings/any-night.ts'
 import { demoNights } from '#seeds/readings/calendar.ts'
 import type { FileReading, LoggerCode, LoggerFile } from '#seeds/readings/files.ts'
 import { handExport } from '#seeds/readings/hand-export.ts'
+import { LOST_CLOCK_ANSWER } from '#seeds/readings/logger-files.ts'
 import { nightFile } from '#seeds/readings/night-file.ts'
 import { CHANNELS, SOURCES } from '#seeds/register/sources.ts'
 
@@ -19,7 +21,7 @@ function made(source: LoggerCode, night: string): LoggerFile {
   return file
 }
 
-async function readBack(file: LoggerFile) {
+async function readBack(file: LoggerFile, answers: readonly Answer[] = []) {
   const rows: FileReading[] = []
   const nullable = (value: number) => (Number.isNaN(value) ? null : value)
   const readOut = await readNightFile(
@@ -33,6 +35,7 @@ async function readBack(file: LoggerFile) {
         quantity: position.quantity,
       })),
       fileName: file.fileName,
+      answers,
     },
     (batch, channels) => {
       for (let index = 0; index < batch.count; index += 1) {
@@ -96,6 +99,8 @@ describe('night files of the demo', () => {
     ['NL-E', '2026-11-08'],
     ['NL-T', '2026-11-08'],
     ['NL-P', '2026-11-08'],
+    ['NL-R', '2026-10-24'],
+    ['NL-R', '2026-11-07'],
   ] as const)('%s of %s says what was written into it', async (source, night) => {
     const file = made(source, night)
     const { readOut, rows } = await readBack(file)
@@ -194,6 +199,18 @@ describe('quirks of the loggers', () => {
     expect(text('2026-11-02')).toContain('# Start: 2000-01-01 00:00:00')
     expect(text('2026-11-07').split('\r\n')[3]).toMatch(/^600,/)
     expect(anyNightFile('NL-R', '2026-11-08')).toBeNull()
+  })
+
+  it('residual gas with a lost clock waits for its start, and takes its times from the answer, marked', async () => {
+    const file = made('NL-R', LOST_CLOCK_ANSWER.night)
+    const asked = await readBack(file)
+    expect(asked.readOut.state).toBe('needs-answers')
+    expect(asked.readOut.questions.map(({ id }) => id)).toEqual(['start'])
+    expect(asked.rows).toHaveLength(0)
+    const { readOut, rows } = await readBack(file, [{ id: 'start', choice: LOST_CLOCK_ANSWER.start }])
+    expect(readOut.state).toBe('readable')
+    expect(sameReadings(rows, file)).toBe(true)
+    expect(readOut.readings.marked).toBe(rows.length)
   })
 
   it('a copy saved by hand is not taken as it stands', async () => {
