@@ -244,8 +244,8 @@ export async function answerQuestions(
     await demandWaiting(inside, importId)
     if (readOut === null) {
       await updateImport(inside, importId, { state: 'reading', bytesDone: 0, fault: '' })
-      // A job's payload holds the answers alone; what was asked stays in the record below.
-      const bare = all.map(({ text: _text, found: _found, ...answer }) => answer)
+      // A job's payload holds the answers alone; what was asked is found again in the report that stays until then.
+      const bare = all.map(({ text: _text, found: _found, label: _label, ...answer }) => answer)
       await askToRead(inside, importId, bare)
     } else {
       await updateImport(inside, importId, {

@@ -18,7 +18,7 @@ import { createNightFileReader } from '../domain/night-files/reader.ts'
 import type { Answer, ReadOut } from '../domain/night-files/types.ts'
 import { reportColumns } from './intake.server.ts'
 import { acceptImport } from './intake-decisions.server.ts'
-import { readingRules } from './intake-reading.server.ts'
+import { readingRules, storedReport } from './intake-reading.server.ts'
 import { writeRecord } from './record.server.ts'
 
 /** How often the page can see that the worker is further. */
@@ -78,7 +78,7 @@ async function readKept(
     uploadedAt: found.uploadedAt,
     fileName: found.fileName,
     statedBytes: null,
-    answers,
+    answers: withQuestions(answers, storedReport(found.readOut)),
     history: true,
   })
   // Batches are let go as they come: readings are stored when the file is taken in, from its bytes.
@@ -94,6 +94,18 @@ async function readKept(
   if (reader.bytesSeen !== found.byteSize)
     throw new Error(`Import ${found.id}: ${reader.bytesSeen} bytes are kept of ${found.byteSize}`)
   return reader.end()
+}
+
+/** Answers with what was asked, which the report before them still says. */
+function withQuestions(answers: readonly Answer[], before: ReadOut | null): Answer[] {
+  return answers.map((answer) => {
+    const known = before?.answers.find(({ id, choice }) => id === answer.id && choice === answer.choice)
+    if (known !== undefined) return known
+    const asked = before?.questions.find(({ id }) => id === answer.id)
+    if (asked === undefined) return answer
+    const label = asked.choices.find(({ value }) => value === answer.choice)?.label
+    return { ...answer, text: asked.text, found: asked.found, ...(label === undefined ? {} : { label }) }
+  })
 }
 
 /**

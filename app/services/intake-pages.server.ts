@@ -18,8 +18,10 @@ import { findOpenWish, listOpenWishes } from '../db/queries/imports-wishes.serve
 import { type Actor, demand, may } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
 import { expectedNight } from '../domain/expected-files.ts'
-import type { WithdrawalState } from '../domain/imports.ts'
+import { LARGE_FILE_BYTES, type WithdrawalState } from '../domain/imports.ts'
+import { copyText } from '../domain/night-files/rounded-copy.ts'
 import type { ReadOut } from '../domain/night-files/types.ts'
+import { findRoundedCopy } from './intake-copy.server.ts'
 import { storedReport } from './intake-reading.server.ts'
 import { getSite } from './site.server.ts'
 
@@ -143,6 +145,8 @@ export interface ImportPageData {
   mayTakeIn: boolean
   /** Whether somebody wants it withdrawn, and how far that is. */
   wish: 'asked' | 'agreed' | null
+  /** What to say when the file holds only what is stored already, with fewer digits; null for any other. */
+  copy: string | null
 }
 
 /**
@@ -155,12 +159,15 @@ export async function readImportPage(db: Db, actor: Actor, importId: number): Pr
   const { readOut: value, ...file } = await importOf(db, importId)
   const readOut = storedReport(value)
   const waits = file.state === 'read' && file.firstAt !== null && file.lastAt !== null
-  const [targets, heldBefore, wish] = await Promise.all([
+  // A large file would have to be read whole for one page.
+  const mayBeCopy = (file.state === 'read' || file.state === 'refused') && file.byteSize <= LARGE_FILE_BYTES
+  const [targets, heldBefore, wish, copy] = await Promise.all([
     listChannelTargets(db, file.sourceId, file.lastAt ?? file.uploadedAt),
     waits && file.firstAt !== null && file.lastAt !== null
       ? countHeld(db, file.sourceId, file.firstAt, file.lastAt)
       : Promise.resolve(0),
     findOpenWish(db, importId),
+    mayBeCopy ? findRoundedCopy(db, importId) : Promise.resolve(null),
   ])
   return {
     file,
@@ -169,6 +176,7 @@ export async function readImportPage(db: Db, actor: Actor, importId: number): Pr
     heldBefore,
     mayTakeIn: may(actor, 'intake:take-in'),
     wish: wish?.state === 'asked' || wish?.state === 'agreed' ? wish.state : null,
+    copy: copy === null ? null : copyText(copy),
   }
 }
 

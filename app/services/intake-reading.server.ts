@@ -106,9 +106,9 @@ export function signedAnswers(
     .filter(({ choice }) => choice.trim() !== '')
     .map(({ id, choice }) => {
       const asked = questions.find((question) => question.id === id)
-      const offered = asked?.choices.some(({ value }) => value === choice) === true
+      const offered = asked?.choices.find(({ value }) => value === choice)
       const typed = asked?.typed === 'time' && TYPED_TIME.test(choice.trim())
-      if (asked === undefined || !(offered || typed)) {
+      if (asked === undefined || (offered === undefined && !typed)) {
         throw new DomainError(
           'bad-input',
           asked?.typed === 'time'
@@ -117,7 +117,15 @@ export function signedAnswers(
         )
       }
       const { text, found } = asked
-      return { id, choice: choice.trim(), text, found, by: actor.name, at: now.toISOString() }
+      return {
+        id,
+        choice: choice.trim(),
+        text,
+        found,
+        ...(offered === undefined ? {} : { label: offered.label }),
+        by: actor.name,
+        at: now.toISOString(),
+      }
     })
 }
 

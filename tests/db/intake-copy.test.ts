@@ -5,6 +5,7 @@ import type { Actor } from '#app/domain/actor.ts'
 import { stageUpload } from '#app/services/intake.server.ts'
 import { findRoundedCopy } from '#app/services/intake-copy.server.ts'
 import { acceptImport } from '#app/services/intake-decisions.server.ts'
+import { readImportPage } from '#app/services/intake-pages.server.ts'
 import { NL_W } from '#tests/fixtures/night-files/profiles.ts'
 import { fixture } from '#tests/fixtures/night-files/read.ts'
 import { MORNING } from '#tests/support/clock.ts'
@@ -69,6 +70,16 @@ describe('a file that holds stored readings with fewer digits', () => {
     const { importId, state } = await upload(spreadsheet(night()))
     expect(state).toBe('refused')
     expect(await findRoundedCopy(db, importId)).toMatchObject({ kind: 'rounded-copy' })
+  })
+
+  it('is said on its page, whether it could be read or not', async () => {
+    for (const text of [rounded(night()), spreadsheet(night())]) {
+      const { importId } = await upload(text)
+      const { copy } = await readImportPage(db, technician, importId)
+      expect(copy).toContain('fewer digits')
+    }
+    const finer = await upload(night().replace(/7E/g, '71E'))
+    expect((await readImportPage(db, technician, finer.importId)).copy).toBeNull()
   })
 
   it('is none when the values are others', async () => {

@@ -59,6 +59,7 @@ describe('answers', () => {
       {
         id: 'unit',
         choice: 'Torr',
+        label: expect.stringContaining('Torr'),
         text: expect.stringContaining('Torr'),
         found: 'the unit “Torr”',
         by: 'Tilda Weir',

@@ -2,7 +2,7 @@
 import { Form, useNavigation } from 'react-router'
 import { placeText } from '#app/domain/night-files/refusal-text.ts'
 import type { Question, ReadOut } from '#app/domain/night-files/types.ts'
-import { ANSWER_PREFIX } from '#app/domain/schemas/import-decision.ts'
+import { ANSWER_PREFIX, TYPED_PREFIX } from '#app/domain/schemas/import-decision.ts'
 import type { ActionFailure } from '../forms/failure.ts'
 import { Button } from '../ui/button.tsx'
 import { SelectField, TextField } from '../ui/field.tsx'
@@ -26,7 +26,8 @@ export function TakeIn({ readOut }: { readOut: ReadOut }) {
   )
 }
 
-export function DiscardPanel({ failure }: { failure: ActionFailure | undefined }) {
+/** @param reason proposed where the product knows one */
+export function DiscardPanel({ failure, reason }: { failure: ActionFailure | undefined; reason?: string }) {
   return (
     <Panel title="Discard this file" id="discard">
       <p className="mb-3 text-ink-2">Its bytes and this report stay; none of its readings is stored.</p>
@@ -38,7 +39,7 @@ export function DiscardPanel({ failure }: { failure: ActionFailure | undefined }
           required
           minLength={3}
           maxLength={1000}
-          defaultValue={failure?.typed?.reason}
+          defaultValue={failure?.typed?.reason ?? reason}
           errors={failure?.fields.reason}
         />
         <Button kind="danger">Discard</Button>
@@ -65,7 +66,8 @@ export function QuestionsPanel({
           <QuestionField
             key={question.id}
             question={question}
-            typed={failure?.typed?.[`${ANSWER_PREFIX}${question.id}`]}
+            chosen={failure?.typed?.[`${ANSWER_PREFIX}${question.id}`]}
+            typed={failure?.typed?.[`${TYPED_PREFIX}${question.id}`]}
           />
         ))}
         <Button>Read again with these answers</Button>
@@ -74,24 +76,48 @@ export function QuestionsPanel({
   )
 }
 
-function QuestionField({ question, typed }: { question: Question; typed: string | undefined }) {
+/** What becomes of a file while a question stands open. */
+function openWords({ blocking, kind }: Question): string {
+  if (blocking) return 'Not answered: nothing can be taken in'
+  if (kind === 'floor') return 'Not answered: counts as measured'
+  if (kind === 'basis') return 'Not answered: stored as written'
+  return 'Not answered: left out'
+}
+
+function QuestionField({
+  question,
+  chosen,
+  typed,
+}: {
+  question: Question
+  chosen: string | undefined
+  typed: string | undefined
+}) {
   const place = placeText(question)
   const { choices } = question
+  const mayType = question.typed === 'time'
+  const hint = `${place === '' ? '' : `In ${place}: `}${question.found}. ${question.mend}`
   return (
     <div className="mb-2">
-      <SelectField
-        name={`${ANSWER_PREFIX}${question.id}`}
-        label={question.text}
-        defaultValue={typed ?? ''}
-        options={[
-          {
-            value: '',
-            label: question.blocking ? 'Not answered: nothing can be taken in' : 'Not answered: left out',
-          },
-          ...choices,
-        ]}
-        hint={`${place === '' ? '' : `In ${place}: `}${question.found}. ${question.mend}`}
-      />
+      {(choices.length > 0 || !mayType) && (
+        <SelectField
+          name={`${ANSWER_PREFIX}${question.id}`}
+          label={question.text}
+          defaultValue={chosen ?? ''}
+          options={[{ value: '', label: openWords(question) }, ...choices]}
+          hint={hint}
+        />
+      )}
+      {mayType && (
+        <TextField
+          name={`${TYPED_PREFIX}${question.id}`}
+          label={choices.length > 0 ? 'Or another time, on the clock of the logger' : question.text}
+          defaultValue={typed}
+          autoComplete="off"
+          maxLength={40}
+          hint={`${choices.length > 0 ? '' : `${hint} `}Year first, on the clock of the logger, such as 2026-11-02 06:00. ${choices.length > 0 ? 'It counts instead of the choice above.' : `${openWords(question)}.`}`}
+        />
+      )}
       {choices.some(({ candidates }) => candidates.length > 0) && (
         <ul className="mb-3 text-sm text-ink-2">
           {choices.map(({ value, label, candidates }) => (

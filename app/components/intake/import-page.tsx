@@ -10,6 +10,7 @@ import { ButtonLink } from '../ui/button.tsx'
 import { Instant } from '../ui/instant.tsx'
 import { Notice } from '../ui/notice.tsx'
 import { Facts, PageHead, Panel } from '../ui/panel.tsx'
+import { AnswersPanel } from './answers-panel.tsx'
 import { ChannelsPanel } from './channels-panel.tsx'
 import { DiscardPanel, QuestionsPanel, TakeIn } from './decisions.tsx'
 import { countOf, countText, sizeText } from './file-words.ts'
@@ -27,6 +28,7 @@ export function ImportPage({
   heldBefore,
   mayTakeIn,
   wish,
+  copy,
   failure,
 }: ImportPageData & { failure: ActionFailure | undefined }) {
   const waits = file.state === 'read' && file.takingInBy === null && mayTakeIn && readOut !== null
@@ -71,14 +73,17 @@ export function ImportPage({
         <Notice>These readings were typed by hand, so there is no file to look at.</Notice>
       ) : (
         <>
+          {copy !== null && <CopyNotice text={copy} />}
           {readOut.refusal !== null && <RefusalNotice refusal={readOut.refusal} />}
           {waits && <QuestionsPanel readOut={readOut} failure={failure} />}
           <div className="grid gap-x-4.5 xl:grid-cols-[minmax(0,1fr)_22rem]">
             <div className="min-w-0">
+              {waits && copy !== null && <DiscardPanel failure={failure} reason={COPY_REASON} />}
               <LinesPanel readOut={readOut} importId={file.id} heldBefore={heldBefore} />
               <RemarksPanel readOut={readOut} />
               <NotesPanel readOut={readOut} />
-              {waits && <DiscardPanel failure={failure} />}
+              <AnswersPanel readOut={readOut} />
+              {waits && copy === null && <DiscardPanel failure={failure} />}
             </div>
             <div className="min-w-0">
               <FilePanel file={file} readOut={readOut} />
@@ -112,6 +117,16 @@ function Outcome({ file }: { file: ImportPageData['file'] }) {
       {file.state === 'accepted' &&
         `: ${countOf(file.readingCount ?? 0, 'reading', 'readings')} stored, ${countText(file.heldCount ?? 0)} held already, ${countText(file.conflictCount ?? 0)} beside a different one`}
       .{file.reason !== '' && ` Reason: ${file.reason}`}
+    </Notice>
+  )
+}
+
+const COPY_REASON = 'A copy with fewer digits of readings that are held in full.'
+
+function CopyNotice({ text }: { text: string }) {
+  return (
+    <Notice tone="bad" lead="A rounded copy. ">
+      {text}
     </Notice>
   )
 }

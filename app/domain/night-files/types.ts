@@ -25,6 +25,8 @@ export interface Answer {
   /** The question as it was asked, since an answered one is asked no more. */
   text?: string
   found?: string
+  /** The choice in the words of the list; absent where a time was typed. */
+  label?: string
   /** Who answered, and when (ISO 8601). */
   by?: string
   at?: string

@@ -16,3 +16,18 @@ export const ImportDecisionSchema = z.discriminatedUnion(
 
 /** Prefix of the fields that answer questions, before the question's id. */
 export const ANSWER_PREFIX = 'answer:'
+
+/** Prefix of the fields in which an answer is typed; what stands there counts instead of the choice. */
+export const TYPED_PREFIX = 'typed-answer:'
+
+/** The answers of a sent form, one per question; empty fields are none. */
+export function sentAnswers(form: Readonly<Record<string, unknown>>): { id: string; choice: string }[] {
+  const answers = new Map<string, string>()
+  for (const prefix of [ANSWER_PREFIX, TYPED_PREFIX]) {
+    for (const [name, value] of Object.entries(form)) {
+      if (!name.startsWith(prefix) || typeof value !== 'string' || value.trim() === '') continue
+      answers.set(name.slice(prefix.length), value.trim())
+    }
+  }
+  return Array.from(answers, ([id, choice]) => ({ id, choice }))
+}

@@ -1,7 +1,7 @@
 import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { ImportPage } from '#app/components/intake/import-page.tsx'
 import { getDb } from '#app/db/client.server.ts'
-import { ANSWER_PREFIX, ImportDecisionSchema } from '#app/domain/schemas/import-decision.ts'
+import { ImportDecisionSchema, sentAnswers } from '#app/domain/schemas/import-decision.ts'
 import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure, orRefuse } from '#app/server/respond.server.ts'
@@ -42,12 +42,7 @@ export async function action({ context, request, params }: Route.ActionArgs) {
       await discardImport(getDb(), actor, nowOf(context), importId, decision.reason)
       return redirectWithNotice('/intake', `Import ${importId} discarded.`)
     }
-    const answers = Object.entries(decision).flatMap(([name, choice]) =>
-      name.startsWith(ANSWER_PREFIX) && typeof choice === 'string'
-        ? [{ id: name.slice(ANSWER_PREFIX.length), choice }]
-        : [],
-    )
-    await answerQuestions(getDb(), actor, nowOf(context), importId, answers)
+    await answerQuestions(getDb(), actor, nowOf(context), importId, sentAnswers(decision))
     return redirectWithNotice(`/intake/${importId}`, 'Read again with the answers.')
   } catch (error) {
     return failure(error, typed)
