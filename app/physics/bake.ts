@@ -30,6 +30,8 @@ export interface BakeProgramme {
   downKH?: number
   /** Hours of pumping at the cold temperature that count too, before the bake or after it; none unless given. */
   coldHours?: number
+  /** Pumps that take over once the segment is cold; those of the model stay unless given. */
+  afterPumps?: SegmentModel['pumps']
 }
 
 export interface BakeOutcome {
@@ -105,11 +107,12 @@ interface Ramps {
   upKH: number
   downKH: number
   coldHours: number
+  afterPumps: SegmentModel['pumps'] | undefined
 }
 
 function rampsOf(programme: Omit<BakeProgramme, 'holdHours'>): Ramps {
-  const { upKH, downKH = upKH, coldHours = 0 } = programme
-  return { upKH, downKH, coldHours }
+  const { upKH, downKH = upKH, coldHours = 0, afterPumps } = programme
+  return { upKH, downKH, coldHours, afterPumps }
 }
 
 function requireProgramme(model: SegmentModel, programme: BakeProgramme): void {
@@ -119,6 +122,7 @@ function requireProgramme(model: SegmentModel, programme: BakeProgramme): void {
   requireWithin('upKH', programme.upKH, 0.1, 1000)
   if (programme.downKH !== undefined) requireWithin('downKH', programme.downKH, 0.1, 1000)
   if (programme.coldHours !== undefined) requireWithin('coldHours', programme.coldHours, 0, 1e6)
+  if (programme.afterPumps !== undefined) requireModel({ ...model, pumps: programme.afterPumps })
 }
 
 function outcomeAt(
@@ -127,9 +131,11 @@ function outcomeAt(
   bakeK: number,
   ramps: Ramps,
 ): (holdHours: number) => BakeOutcome {
-  const water = waterAfter(model, atM, bakeK, ramps)
-  const hydrogen = hydrogenAfter(model, atM, bakeK, ramps)
-  const airPa = airPressure(model, atM)
+  // What the wall still holds sets the water when the pumps change; hydrogen and air follow the new pumps at once.
+  const later = ramps.afterPumps === undefined ? model : { ...model, pumps: ramps.afterPumps }
+  const water = waterAfter(model, later, atM, bakeK, ramps)
+  const hydrogen = hydrogenAfter(later, atM, bakeK, ramps)
+  const airPa = airPressure(later, atM)
   return (holdHours) => {
     const { waterPa, waterAtFloor } = water(holdHours)
     const hydrogenPa = hydrogen(holdHours)
@@ -154,6 +160,7 @@ function outcomeAt(
 
 function waterAfter(
   model: SegmentModel,
+  later: SegmentModel,
   atM: number,
   bakeK: number,
   ramps: Ramps,
@@ -162,7 +169,7 @@ function waterAfter(
   if (water.state === 'baked') return () => ({ waterPa: water.floorPa, waterAtFloor: true })
   const isotherm = isothermOf(water.capacityPerM2)
   const held = waterAfterHold(model, water.capacityPerM2, bakeK, atM)
-  const coldRateTime = unitPressure(model, 'H2O', atM, temperatureK) * waterRateTime(temperatureK, isotherm)
+  const coldRateTime = unitPressure(later, 'H2O', atM, temperatureK) * waterRateTime(temperatureK, isotherm)
   return (holdHours) => {
     // Near the top of a ramp the release falls by e every RT2/E: so many kelvins of each ramp work like the hold.
     let seconds = Math.max(holdHours, 0) * HOUR_S

@@ -69,6 +69,27 @@ describe('afterBake', () => {
   })
 })
 
+describe('pumps that take over after the bake', () => {
+  const programme = { bakeK: 353.15, holdHours: 48, upKH: 10 }
+  const getter = [{ atM: 0, speedM3S: { H2: 4, H2O: 8, N2: 4 } }]
+
+  it('lower hydrogen as they pump it, and leave the water that the wall still holds', () => {
+    const stay = afterBake(TUBE, programme, 0)
+    const change = afterBake(TUBE, { ...programme, afterPumps: getter }, 0)
+    // At the pump itself the pressure is the whole load over the speed.
+    expect(change.hydrogenPa / stay.hydrogenPa).toBeCloseTo(1 / 4, 6)
+    expect(change.waterPa / stay.waterPa).toBeCloseTo(1, 6)
+    const muchLater = afterBake(TUBE, { ...programme, coldHours: 87_660, afterPumps: getter }, 0)
+    expect(muchLater.waterPa).toBeLessThan(
+      0.9 * afterBake(TUBE, { ...programme, coldHours: 87_660 }, 0).waterPa,
+    )
+  })
+
+  it('must be pumps', () => {
+    expect(() => afterBake(TUBE, { ...programme, afterPumps: [] }, 0)).toThrow(/number of pumps/)
+  })
+})
+
 describe('holdToMeet', () => {
   it('meets the holds found by bisection on the transport solution', () => {
     // Target for water alone: hydrogen set to nothing, the gauge factor of water (0.93) taken off.
