@@ -21,8 +21,12 @@ import { IsolationDataError } from '../physics/isolation.ts'
 import { readGaugeSeries, stepSecondsFor } from './forecasts-series.server.ts'
 import { limitFor } from './standing.server.ts'
 
-/** Steps of a fit and of a drawn curve at most. */
-const FIT_STEPS = 720
+/**
+ * Steps of a fit, of the search for an opening, and of a drawn curve at most. Fits take fewer: the scatter of a gauge
+ * wanders over an hour or so, and only steps long enough for neighbours to agree let the fit count that in.
+ */
+const FIT_STEPS = 72
+const SEARCH_STEPS = 720
 const CURVE_STEPS = 360
 const HOUR_MS = 3_600_000
 
@@ -79,24 +83,30 @@ export async function fitWindow(
   const pumps = await listPlacedPumps(db, [segment.id])
   const [opening] = openingsOf(closedAt, fitTo, { states, pumps })
   if (opening !== undefined) return refusedAcross(opening, window)
-  const stepSeconds = stepSecondsFor(fitFrom, fitTo, FIT_STEPS)
-  const [points, temperatureC] = await Promise.all([
-    readGaugeSeries(db, gauge.id, { from: fitFrom, to: fitTo, stepSeconds }),
+  const searchSeconds = stepSecondsFor(fitFrom, fitTo, SEARCH_STEPS)
+  const fitSeconds = stepSecondsFor(fitFrom, fitTo, FIT_STEPS)
+  const series = (stepSeconds: number) =>
+    readGaugeSeries(db, gauge.id, { from: fitFrom, to: fitTo, stepSeconds })
+  const [fine, coarse, temperatureC] = await Promise.all([
+    series(searchSeconds),
+    series(fitSeconds),
     temperaturesWithin(db, segment.id, fitFrom, fitTo),
   ])
+  const about = { gauge: gauge.tag, volumeM3, temperatureC }
   try {
-    const at = { gauge: gauge.tag, volumeM3, binSeconds: stepSeconds, temperatureC }
-    return { kind: 'fitted', finding: fitIsolation(points, at) }
+    // Only fine steps show the minute of an opening; a fall is an error of the fit.
+    fitIsolation(fine, { ...about, binSeconds: searchSeconds })
+    return { kind: 'fitted', finding: fitIsolation(coarse, { ...about, binSeconds: fitSeconds }) }
   } catch (error) {
     if (!(error instanceof IsolationDataError)) throw error
-    const first = points[0]
+    const first = fine[0]
     if (error.reason === 'valve-reopened' && error.atSeconds !== null && first !== undefined) {
       // The median over three steps sees the fall one step late.
-      const fell = new Date(first.at.getTime() + error.atSeconds * 1000 - 1.5 * stepSeconds * 1000)
+      const fell = new Date(first.at.getTime() + error.atSeconds * 1000 - 1.5 * searchSeconds * 1000)
       return refusedAcross({ at: fell, what: 'pressure fell, as it does when a valve is opened' }, window)
     }
     return refusal(
-      `${gauge.tag} has ${points.length} usable readings in this window; at least 8 are needed. Choose another gauge or a longer window.`,
+      `${gauge.tag} has ${fine.length} usable readings in this window; at least 8 are needed. Choose another gauge or a longer window.`,
     )
   }
 }
