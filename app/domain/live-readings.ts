@@ -54,7 +54,7 @@ export function readPost(readings: readonly LiveReading[], rules: PostRules, byt
     new WordBook(rules.profile.words),
     rules.profile.sentinels,
   )
-  const counts = { flagged: 0, duplicates: 0, leftOut: 0, future: 0, implausible: 0, conflicts: 0 }
+  const counts = { flagged: 0, duplicates: 0, leftOut: 0, future: 0, implausible: 0, dates: 0, conflicts: 0 }
 
   function read(one: LiveReading, index: number): PostFault | null {
     const match = book.match(one.channel)
@@ -74,7 +74,9 @@ export function readPost(readings: readonly LiveReading[], rules: PostRules, byt
     let { quality } = cells
     const { doubt } = cells
     const future = one.at > rules.nowMs + FUTURE_MS
-    if (future && quality === GOOD) quality = SUSPECT
+    const { fromMs, untilMs } = match.channel
+    const outside = one.at < (fromMs ?? -Infinity) || one.at >= (untilMs ?? Infinity)
+    if ((future || outside) && quality === GOOD) quality = SUSPECT
     const { value, bound } = cells
     const channel = sink.channel(match.channel.name, quantity)
     const result = sink.emit({
@@ -92,9 +94,10 @@ export function readPost(readings: readonly LiveReading[], rules: PostRules, byt
       return null
     }
     if (future) counts.future += 1
+    if (outside) counts.dates += 1
     if (doubt !== null) counts.implausible += 1
     if (result === 'conflict') counts.conflicts += 1
-    if (future || doubt !== null || result === 'conflict') counts.flagged += 1
+    if (future || outside || doubt !== null || result === 'conflict') counts.flagged += 1
     return null
   }
 
@@ -185,6 +188,7 @@ interface Counts {
   leftOut: number
   future: number
   implausible: number
+  dates: number
   conflicts: number
 }
 
@@ -254,6 +258,11 @@ function remarks(counts: Counts): Remark[] {
       'future-times',
       counts.future,
       `${many(counts.future)} dated ahead of the clock, stored as suspect.`,
+    ),
+    ...remark(
+      'outside-dates',
+      counts.dates,
+      `${many(counts.dates)} outside the dates of the channel in the register, stored as suspect.`,
     ),
     ...remark(
       'outside-ceiling',

@@ -59,7 +59,13 @@ export async function readingRules(
     context: {
       nowMs: file.uploadedAt.getTime(),
       siteZone: site.timeZone,
-      channels: channels.map(({ name, quantity, ignored }) => ({ name, quantity, ignored })),
+      channels: channels.map(({ name, quantity, ignored, fromAt, untilAt }) => ({
+        name,
+        quantity,
+        ignored,
+        fromMs: fromAt?.getTime() ?? null,
+        untilMs: untilAt?.getTime() ?? null,
+      })),
       fileName: file.fileName,
       statedBytes: file.statedBytes,
       answers: file.answers,

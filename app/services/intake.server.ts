@@ -4,6 +4,7 @@ import type { Db, DbOrTx } from '../db/client.server.ts'
 import {
   beginOriginal,
   dropOriginal,
+  findImport,
   findSameBytes,
   findSource,
   finishOriginal,
@@ -17,11 +18,12 @@ import { DomainError, type ErrorCode } from '../domain/errors.ts'
 import { LARGE_FILE_BYTES } from '../domain/imports.ts'
 import { createNightFileReader } from '../domain/night-files/reader.ts'
 import type { Answer, NightFileReader, ReadOut, Refusal } from '../domain/night-files/types.ts'
-import { readingRules, siteMinute } from './intake-reading.server.ts'
+import { readingRules, siteMinute, storedReport } from './intake-reading.server.ts'
 import { enqueue } from './jobs.server.ts'
 import { writeRecord } from './record.server.ts'
 
 const PIECE_BYTES = 1024 * 1024
+const DAY_MS = 86_400_000
 /** A stop of the product counts as an attempt, so more of them than other jobs have. */
 const READ_ATTEMPTS = 20
 
@@ -48,7 +50,7 @@ export interface Staged {
    */
   state: 'read' | 'refused' | 'reading'
   refusal: Refusal | null
-  /** Whether the same bytes were waiting already; nothing was added then. */
+  /** Whether the same bytes were waiting already, or were refused for the same reason; nothing was added then. */
   again: boolean
 }
 
@@ -113,6 +115,11 @@ export async function stageFile(db: Db, actor: Actor | null, now: Date, upload: 
       const state = waiting.state === 'reading' ? 'reading' : 'read'
       return { importId: waiting.id, state, refusal: null, again: true }
     }
+    const refused = await sameRefusal(db, now, source.id, sha256, readOut)
+    if (refused !== null) {
+      await dropOriginal(db, attachmentId)
+      return { importId: refused.importId, state: 'refused', refusal: refused.refusal, again: true }
+    }
     const importId = await storeReport(db, actor, now, {
       sourceId: source.id,
       sourceCode: source.code,
@@ -129,6 +136,28 @@ export async function stageFile(db: Db, actor: Actor | null, now: Date, upload: 
     await dropOriginal(db, attachmentId)
     throw error
   }
+}
+
+/**
+ * The import that refused these bytes for the same reason within the last day. What is refused for another reason, or
+ * a night later, is something new: the register has changed, or the logger has.
+ */
+async function sameRefusal(
+  db: Db,
+  now: Date,
+  sourceId: number,
+  sha256: string,
+  readOut: ReadOut | null,
+): Promise<{ importId: number; refusal: Refusal } | null> {
+  const refusal = readOut?.refusal ?? null
+  if (refusal === null) return null
+  const held = await findSameBytes(db, sha256, ['refused'])
+  if (held === null || held.sourceId !== sourceId || held.uploadedAt.getTime() <= now.getTime() - DAY_MS)
+    return null
+  const before = storedReport((await findImport(db, held.id))?.readOut)?.refusal
+  return before?.code === refusal.code && before.found === refusal.found
+    ? { importId: held.id, refusal }
+    : null
 }
 
 /** Status of a refused file: the wrong kind of file, or one that nothing can be taken from. */

@@ -31,13 +31,17 @@ import {
   mergeIncoming,
   onOneConnection,
 } from '../db/queries/imports-merge.server.ts'
+import { importStretches } from '../db/queries/imports-withdraw.server.ts'
 import { listSourceEnds } from '../db/queries/readings.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import { type ReadPost, readPost } from '../domain/live-readings.ts'
+import type { KnownChannel } from '../domain/night-files/types.ts'
+import type { Quantity } from '../domain/readings.ts'
 import { type PostFault, parsePost } from '../domain/schemas/live-readings.ts'
-import { readingRules } from './intake-reading.server.ts'
+import { type ReadingRules, readingRules } from './intake-reading.server.ts'
 import { batchRows } from './intake-rows.server.ts'
+import { markOutOfDate } from './revisions.server.ts'
 
 const PIECE_BYTES = 1024 * 1024
 /** The note of a token's last use need not be finer. */
@@ -123,7 +127,7 @@ export async function takeInPost(db: Db, token: TokenRow, now: Date, post: LiveP
         })
         const read = readPost(
           parsed.readings,
-          { channels: rules.channels, profile: rules.profile, nowMs: now.getTime() },
+          { channels: datedChannels(rules), profile: rules.profile, nowMs: now.getTime() },
           post.bytes.length,
         )
         if (!read.ok) throw new PostRefused(read.faults, read.total)
@@ -142,6 +146,12 @@ export async function takeInPost(db: Db, token: TokenRow, now: Date, post: LiveP
             `Import ${importId}: ${loaded} of ${read.readOut.readings.total} rows, ${warnings} warnings`,
           )
         const counts = await mergeIncoming(inside, importId)
+        // What was held back and comes late did not stand in what was computed meanwhile.
+        await markOutOfDate(inside, {
+          stretches: await importStretches(inside, importId),
+          now,
+          reason: `Import ${importId} (posted by ${token.name}) brought readings for a time already computed.`,
+        })
         const answer: PostAnswer = {
           importId,
           ...counts,
@@ -241,6 +251,17 @@ async function keepImport(
     subjectId: String(importId),
   })
   return importId
+}
+
+/** Channels with their dates, and a quantity for each. */
+function datedChannels({ channels }: ReadingRules): (KnownChannel & { quantity: Quantity })[] {
+  return channels.map(({ name, quantity, ignored, fromAt, untilAt }) => ({
+    name,
+    quantity,
+    ignored,
+    fromMs: fromAt?.getTime() ?? null,
+    untilMs: untilAt?.getTime() ?? null,
+  }))
 }
 
 async function settle(inside: DbOrTx, postId: number, answer: PostAnswer): Promise<void> {

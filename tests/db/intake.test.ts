@@ -12,6 +12,7 @@ import {
   source,
 } from '#app/db/schema/index.ts'
 import type { Actor } from '#app/domain/actor.ts'
+import type { ReadOut } from '#app/domain/night-files/types.ts'
 import { MARKS, qualityCode } from '#app/domain/readings.ts'
 import { stageUpload } from '#app/services/intake.server.ts'
 import { acceptImport, answerQuestions, discardImport } from '#app/services/intake-decisions.server.ts'
@@ -19,7 +20,14 @@ import { NL_E, NL_W } from '#tests/fixtures/night-files/profiles.ts'
 import { fixture } from '#tests/fixtures/night-files/read.ts'
 import { MORNING, after as secondsAfter } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
-import { createChannel, createSite, createSource, createUser } from '#tests/support/factories.ts'
+import {
+  createChannel,
+  createPosition,
+  createSegment,
+  createSite,
+  createSource,
+  createUser,
+} from '#tests/support/factories.ts'
 
 const db = freshDatabase()
 const other = secondConnection()
@@ -41,14 +49,20 @@ beforeEach(async () => {
 
 function upload(
   bytes: Uint8Array | string,
-  options: { fileName?: string; sourceCode?: string; limitBytes?: number; pieceBytes?: number } = {},
+  options: {
+    fileName?: string
+    sourceCode?: string
+    limitBytes?: number
+    pieceBytes?: number
+    now?: Date
+  } = {},
 ) {
   const data = typeof bytes === 'string' ? new TextEncoder().encode(bytes) : bytes
   const size = options.pieceBytes ?? 65536
   async function* stream() {
     for (let at = 0; at < data.length; at += size) yield data.subarray(at, at + size)
   }
-  return stageUpload(db, technician, MORNING, {
+  return stageUpload(db, technician, options.now ?? MORNING, {
     sourceCode: options.sourceCode ?? 'NL-W',
     fileName: options.fileName ?? 'NL-W_2026-11-08.csv',
     stream: stream(),
@@ -108,6 +122,51 @@ describe('receiving a file', () => {
       code: 'conflict',
     })
     expect(await rowCount(reading)).toBe(0)
+  })
+
+  it('shows the same refusal again for the same bytes, and a new one once something has changed', async () => {
+    const text = night().replaceAll('-01', '-77')
+    const first = await upload(text)
+    const again = await upload(text, { fileName: 'again.csv' })
+    expect(again).toEqual({ ...first, again: true })
+    expect(await rowCount(importFile)).toBe(1)
+    expect(await rowCount(attachment)).toBe(1)
+    const nextDay = await upload(text, { now: secondsAfter(MORNING, 86_400) })
+    expect(nextDay).toMatchObject({ state: 'refused', again: false })
+    const [west] = await db.select().from(source).where(eq(source.code, 'NL-W'))
+    for (const name of ['HC-77A', 'HC-77B', 'CC-77'])
+      await createChannel(db, { sourceId: west?.id ?? 0, name })
+    expect(await upload(text)).toMatchObject({ state: 'read', again: false })
+  })
+
+  it('stores what a gauge says after it was removed as suspect', async () => {
+    const segment = await createSegment(db, { tag: 'SG-01' })
+    const position = await createPosition(db, {
+      tag: 'HC-01C',
+      segmentId: segment.id,
+      lineId: segment.lineId,
+    })
+    const [west] = await db.select().from(source).where(eq(source.code, 'NL-W'))
+    const removed = new Date('2026-11-08T18:00:00Z')
+    const { id } = await createChannel(db, {
+      sourceId: west?.id ?? 0,
+      name: 'HC-01C',
+      positionId: position.id,
+      mappedTo: removed,
+    })
+    const { importId } = await upload(night().replaceAll('HC-01A', 'HC-01C'))
+    const [row] = await db.select().from(importFile)
+    const readOut = row?.readOut as ReadOut | undefined
+    expect(readOut?.remarks.map(({ kind }) => kind)).toContain('outside-dates')
+    await acceptImport(db, technician, MORNING, importId)
+    const rows = await db.select().from(reading).where(eq(reading.channelId, id))
+    // The file has a few words and outliers of its own, before and after.
+    const share = (quality: 'good' | 'suspect', side: (at: Date) => boolean) =>
+      rows.filter((one) => side(one.at) && one.quality === qualityCode(quality)).length
+    expect(share('good', (at) => at < removed)).toBeGreaterThan(20)
+    expect(share('suspect', (at) => at < removed)).toBe(0)
+    expect(share('good', (at) => at >= removed)).toBe(0)
+    expect(share('suspect', (at) => at >= removed)).toBeGreaterThan(20)
   })
 
   it('refuses a file over the limit and keeps nothing of it', async () => {

@@ -7,6 +7,7 @@ import {
   apiToken,
   attachment,
   channel,
+  channelMap,
   importFile,
   importRange,
   reading,
@@ -14,9 +15,17 @@ import {
 import { MARKS, qualityCode } from '#app/domain/readings.ts'
 import { addToken, tokenFor } from '#app/services/api-tokens.server.ts'
 import { takeInPost } from '#app/services/live-readings.server.ts'
+import { beginDerived, readDerived } from '#app/services/revisions.server.ts'
 import { after, MORNING } from '#tests/support/clock.ts'
 import { freshDatabase, secondConnection } from '#tests/support/db.ts'
-import { createChannel, createSite, createSource, createUser } from '#tests/support/factories.ts'
+import {
+  createChannel,
+  createPosition,
+  createSegment,
+  createSite,
+  createSource,
+  createUser,
+} from '#tests/support/factories.ts'
 
 const db = freshDatabase()
 const other = secondConnection()
@@ -101,6 +110,47 @@ describe('a post', () => {
     expect(Buffer.concat(pieces).toString()).toBe(JSON.stringify({ readings: items }))
     const [range] = await db.select().from(importRange)
     expect(range).toMatchObject({ channelId: wallId, readingCount: 3, lastAt: new Date(AT) })
+  })
+
+  it('marks what was computed without a reading that was held back', async () => {
+    const thing = (subjectId: string, from: string, to: string) =>
+      beginDerived(db, {
+        kind: 'curve',
+        subjectId,
+        madeAt: MORNING,
+        basis: [{ channelId: wallId, from: new Date(from), to: new Date(to) }],
+      })
+    await thing('this morning', '2026-11-09T06:00:00Z', '2026-11-09T07:00:00Z')
+    await thing('the day before', '2026-11-08T06:00:00Z', '2026-11-08T07:00:00Z')
+    const { answer } = await take([wall(151.2)])
+    expect(await readDerived(db, 'curve', 'this morning')).toMatchObject({
+      staleSince: MORNING,
+      staleReason: expect.stringContaining(`Import ${answer.importId} (posted by Gateway)`),
+    })
+    expect((await readDerived(db, 'curve', 'the day before'))?.staleSince).toBeNull()
+  })
+
+  it('stores what comes after the sensor was removed as suspect', async () => {
+    const segment = await createSegment(db, { tag: 'SG-05' })
+    const position = await createPosition(db, {
+      tag: 'TH-05-09',
+      segmentId: segment.id,
+      lineId: segment.lineId,
+    })
+    await db.insert(channelMap).values({
+      channelId: wallId,
+      positionId: position.id,
+      startsAt: new Date('2026-01-01T00:00:00Z'),
+      endsAt: new Date('2026-11-09T06:54:00Z'),
+      reason: 'removed',
+      recordedAt: MORNING,
+    })
+    const { answer } = await take([wall(151, '2026-11-09T07:53:00+01:00'), wall(152)])
+    expect(answer).toMatchObject({ stored: 2, flagged: 1 })
+    expect((await stored()).map(({ quality }) => quality)).toEqual([
+      qualityCode('good'),
+      qualityCode('suspect'),
+    ])
   })
 
   it('leaves out what is held and keeps what differs beside it, both marked', async () => {

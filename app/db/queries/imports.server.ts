@@ -57,6 +57,10 @@ export interface SourceChannel {
   name: string
   quantity: Quantity
   ignored: boolean
+  /** First instant that a map of the channel covers; null without a map. */
+  fromAt: Date | null
+  /** End of its last map; null without a map, and while one is open. */
+  untilAt: Date | null
 }
 
 /** Raw channels of a source as the register has them. */
@@ -67,9 +71,16 @@ export async function listSourceChannels(db: DbOrTx, sourceId: number): Promise<
       name: channel.name,
       quantity: channel.quantity,
       ignoredSince: channel.ignoredSince,
+      fromAt: sql<Date | null>`min(${channelMap.startsAt})`.mapWith(channelMap.startsAt),
+      untilAt:
+        sql<Date | null>`if(count(*) = count(${channelMap.endsAt}), max(${channelMap.endsAt}), null)`.mapWith(
+          channelMap.startsAt,
+        ),
     })
     .from(channel)
+    .leftJoin(channelMap, and(eq(channelMap.channelId, channel.id), isNull(channelMap.replacedAt)))
     .where(eq(channel.sourceId, sourceId))
+    .groupBy(channel.id)
     .orderBy(asc(channel.name))
   return rows.map(({ ignoredSince, ...row }) => ({ ...row, ignored: ignoredSince !== null }))
 }
