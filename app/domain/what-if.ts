@@ -41,8 +41,13 @@ export interface WhatIfGround {
   waterCapacityPerM2: number
   /** Place of the gauge that is read unless another is asked for, m from the start of the segment. */
   gaugeM: number
-  /** Where each number of the register comes from, in words. */
-  sources: Partial<Record<WhatIfKey, string>>
+  sources: Partial<Record<WhatIfKey, WhatIfSource>>
+}
+
+/** Where a number comes from, in words, and the page that holds it. */
+export interface WhatIfSource {
+  text: string
+  to?: string
 }
 
 export interface WhatIfField {
@@ -59,7 +64,7 @@ export interface WhatIfField {
   slider: Slider
   /** What the number is taken to be and do. */
   basis: string
-  source: string
+  source: WhatIfSource
 }
 
 /** How a slider lies over values; `zero` puts a nought below the logarithmic range. */
@@ -87,7 +92,7 @@ export function wallAreaOf({ diameterM, lengthM }: SegmentModel): number {
   return Math.PI * diameterM * lengthM
 }
 
-const PLANNED = 'chosen for the trial; the register has no such number'
+const PLANNED: WhatIfSource = { text: 'A usual value to start from; the register has no such number.' }
 
 /** Every number of a trial with its limits, its slider and its grounds. */
 export function whatIfFields(ground: WhatIfGround): WhatIfField[] {
