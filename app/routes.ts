@@ -11,9 +11,13 @@ export default [
     route('segments/:tag', 'routes/segments/segment.tsx'),
     route('segments/:tag/state', 'routes/segments/state.tsx'),
     route('segments/:tag/typed-reading', 'routes/segments/typed-reading.tsx'),
+    route('forecasts/:tag/what-if', 'routes/forecasts/what-if.tsx'),
     route('intake', 'routes/intake/intake.tsx'),
     route('intake/:importId', 'routes/intake/import.tsx'),
     route('intake/:importId/withdrawal', 'routes/intake/withdrawal.tsx'),
+    route('bakes', 'routes/bakes/bakes.tsx'),
+    route('bakes/plans/new', 'routes/bakes/new-plan.tsx'),
+    route('bakes/plans/:planId', 'routes/bakes/plan.tsx'),
     route('logbook', 'routes/logbook/logbook.tsx'),
     route('logbook/new', 'routes/logbook/new-entry.tsx'),
     route('logbook/:entryId', 'routes/logbook/entry.tsx'),
@@ -33,6 +37,8 @@ export default [
 
   // Resource routes: no page of their own.
   route('segments/:tag/readings.csv', 'routes/segments/readings-csv.tsx'),
+  route('bakes/plans/:planId/plan.csv', 'routes/bakes/plan-csv.tsx'),
+  route('bakes/plans/:planId/plan.ics', 'routes/bakes/plan-ics.tsx'),
   route('api/v1/sources/:code/readings', 'routes/api/readings.tsx'),
   route('api/v1/sources/:code/files/:name', 'routes/api/files.tsx'),
   route('intake/upload', 'routes/intake/upload.tsx'),

@@ -34,6 +34,7 @@ function placesFor(places: ShellProps['places']): Place[] {
     ...(places.facility
       ? [
           { to: '/', label: 'Line', roots: ['/segments'] },
+          { to: '/bakes', label: 'Bakes', roots: ['/bakes'] },
           { to: '/intake', label: 'Log intake', roots: ['/intake'] },
         ]
       : []),

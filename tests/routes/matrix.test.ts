@@ -55,6 +55,7 @@ const ADDRESSES: Record<string, Address> = {
     POST: { who: HANDS, status: 400 },
   },
   '/segments/:tag/readings.csv': { path: '/segments/SG-X1/readings.csv', GET: { who: STAFF, status: 200 } },
+  '/forecasts/:tag/what-if': { path: '/forecasts/SG-X1/what-if', GET: { who: STAFF, status: 200 } },
   '/intake': { GET: { who: STAFF, status: 200 }, POST: { who: HANDS, status: 400 } },
   '/intake/upload': { POST: { who: HANDS, status: 400 } },
   '/intake/:importId': {
@@ -69,6 +70,18 @@ const ADDRESSES: Record<string, Address> = {
   },
   '/intake/:importId/original': { path: '/intake/999/original', GET: { who: STAFF, status: 404 } },
   '/intake/:importId/rejected.csv': { path: '/intake/999/rejected.csv', GET: { who: STAFF, status: 404 } },
+  '/bakes': { GET: { who: STAFF, status: 200 } },
+  '/bakes/plans/new': {
+    GET: { who: ['engineer'], status: 200 },
+    POST: { who: ['engineer'], status: 400 },
+  },
+  '/bakes/plans/:planId': {
+    path: '/bakes/plans/999',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: STAFF, status: 400 },
+  },
+  '/bakes/plans/:planId/plan.csv': { path: '/bakes/plans/999/plan.csv', GET: { who: STAFF, status: 404 } },
+  '/bakes/plans/:planId/plan.ics': { path: '/bakes/plans/999/plan.ics', GET: { who: STAFF, status: 404 } },
   '/logbook': { GET: { who: ROLES, status: 200 } },
   '/logbook/new': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
   '/logbook/:entryId': {
