@@ -8,6 +8,7 @@ import {
   listFittingSpans,
   listMapSpans,
   listPositions,
+  type PositionRow,
 } from '../db/queries/readings.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import { bitsToMarks } from '../domain/readings.ts'
@@ -17,7 +18,27 @@ const PAGE = 5000
 const DEFAULT_DAYS = 7
 const MAX_DAYS = 450
 
-/** CSV text of a segment's pressure readings between `from` and `to` (ISO instants in the query; the last week by default). */
+/** What may be asked for, with the heads of its value and bound. */
+const ASKABLE = {
+  pressure: {
+    value: 'value_pa_nitrogen_equivalent',
+    bound: 'bound_pa',
+    has: ({ kind }: PositionRow) => (PRESSURE_KINDS as readonly string[]).includes(kind),
+  },
+  'ion-current': {
+    value: 'value_a',
+    bound: 'bound_a',
+    has: ({ quantity }: PositionRow) => quantity === 'ion-current',
+  },
+} as const
+type Asked = (typeof ASKABLE)[keyof typeof ASKABLE]
+
+/**
+ * CSV text of a segment's readings between `from` and `to` (ISO instants in the query; the last week by default).
+ * `quantity` in the query is pressure, which is also meant without it, or ion-current.
+ *
+ * @throws DomainError not-found, bad-input
+ */
 export async function segmentReadingsCsv(
   db: Db,
   tag: string,
@@ -31,7 +52,7 @@ export async function segmentReadingsCsv(
   if (to.getTime() - from.getTime() > MAX_DAYS * 86_400_000) {
     throw new DomainError('bad-input', `At most ${MAX_DAYS} days at a time.`)
   }
-  const lines = csvLines(db, segmentId, from, to)
+  const lines = csvLines(db, segmentId, readAsked(query.get('quantity') ?? 'pressure'), { from, to })
   const encoder = new TextEncoder()
   return new ReadableStream({
     async pull(controller) {
@@ -45,6 +66,15 @@ export async function segmentReadingsCsv(
   })
 }
 
+function readAsked(quantity: string): Asked {
+  const known = Object.entries(ASKABLE).find(([name]) => name === quantity)
+  if (known !== undefined) return known[1]
+  throw new DomainError(
+    'bad-input',
+    `Found the quantity “${quantity}”; expected ${Object.keys(ASKABLE).join(' or ')}. Leave it out for pressures.`,
+  )
+}
+
 function readInstant(text: string | null): Date | null {
   if (text === null) return null
   const at = new Date(text)
@@ -54,11 +84,11 @@ function readInstant(text: string | null): Date | null {
 async function* csvLines(
   db: Db,
   segmentId: number,
-  from: Date,
-  to: Date,
+  asked: Asked,
+  { from, to }: { from: Date; to: Date },
 ): AsyncGenerator<string, void, undefined> {
-  yield 'position,utc,value_pa_nitrogen_equivalent,quality,marks,bound_pa,import,line\r\n'
-  const positions = await listPositions(db, { segmentId, kinds: PRESSURE_KINDS })
+  yield `position,utc,${asked.value},quality,marks,${asked.bound},import,line\r\n`
+  const positions = (await listPositions(db, { segmentId })).filter(asked.has)
   const ids = positions.map(({ id }) => id)
   const [spans, fittings] = await Promise.all([listMapSpans(db, ids, from, to), listFittingSpans(db, ids)])
   for (const position of positions) {

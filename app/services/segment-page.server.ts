@@ -10,6 +10,7 @@ import {
 } from '../db/queries/segments.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
+import { type IonCurrent, readIonCurrents } from './ion-currents.server.ts'
 import { type Curves, readCurves } from './segment-curves.server.ts'
 import { forecastPumpDown, type PumpDownForecast } from './segment-forecast.server.ts'
 import { type BakeAnswer, bakeToReach, predictedProfile } from './segment-model.server.ts'
@@ -30,6 +31,7 @@ export interface SegmentPageData {
   limit: number | null
   predicted: { offsetM: number; pa: number }[] | null
   curves: Curves
+  ionCurrents: IonCurrent[]
   forecast: PumpDownForecast | null
   bake: { bakeC: number; targetPa: number; answer: BakeAnswer | null } | null
   entries: Entry[]
@@ -52,12 +54,13 @@ export async function readSegmentPage(
   const own = standings[0]
   if (own === undefined) throw new DomainError('not-found', `The register has no segment ${tag}.`)
   const { segment } = own
-  const [all, everPlaced, entries, states, curves] = await Promise.all([
+  const [all, everPlaced, entries, states, curves, ionCurrents] = await Promise.all([
     listSegments(db, now),
     listPlacedPumps(db, [segment.id]),
     listEntries(db, { segmentId: segment.id, limit: ENTRIES_SHOWN }),
     listStates(db, segment.id),
     readCurves(db, own, now),
+    readIonCurrents(db, segment.id, now),
   ])
   const target = own.target?.value ?? null
   return {
@@ -76,6 +79,7 @@ export async function readSegmentPage(
     limit: own.limit?.value ?? null,
     predicted: predictedProfile(own, now),
     curves,
+    ionCurrents,
     forecast: segment.state === 'pumping' ? forecastPumpDown(own, curves, now, ask) : null,
     bake:
       target === null

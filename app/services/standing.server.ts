@@ -47,7 +47,7 @@ export interface LastAtPosition {
 }
 
 /** Last readings of positions at an instant, through the maps and factors in force. */
-async function lastAtPositions(
+export async function lastAtPositions(
   db: DbOrTx,
   positions: readonly PositionRow[],
   now: Date,

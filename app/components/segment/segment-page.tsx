@@ -12,6 +12,7 @@ import type { SegmentPageData } from '#app/services/segment-page.server.ts'
 import { BakePanel } from './bake-panel.tsx'
 import { ForecastPanel } from './forecast-panel.tsx'
 import { GaugesTable } from './gauges-table.tsx'
+import { IonCurrentsPanel } from './ion-currents-panel.tsx'
 import { SegmentChart } from './segment-chart.tsx'
 import { SegmentEntries } from './segment-entries.tsx'
 import { StateHistory } from './state-history.tsx'
@@ -105,6 +106,7 @@ export function SegmentPage(props: SegmentPageProps) {
           <Panel title="Gauges">
             <GaugesTable gauges={props.gauges} />
           </Panel>
+          <IonCurrentsPanel tag={tag} currents={props.ionCurrents} from={props.curves.from} />
         </div>
         <div className="grid min-w-0 items-start gap-x-4.5 md:grid-cols-2 xl:grid-cols-1">
           <ForecastPanel {...props} />
