@@ -6,16 +6,24 @@ import { start } from './processes.mjs'
 const READY_WITHIN_MS = 60_000
 const HEALTHY_WITHIN_MS = 20_000
 
+const WORKER = 'app/worker/main.ts'
+/**
+ * The worker reads files of any size, of which next to nothing outlives a line. With the usual 16 MiB for young objects
+ * the engine lets its memory grow to twice of what this needs, and gains no speed by it.
+ */
+const WORKER_FLAGS = ['--max-semi-space-size=2', '--max-old-space-size=512']
+
 /**
  * @typedef {ReturnType<typeof start> & { name: string }} Service
  */
 
 /**
- * Runs one of our TypeScript commands to its end.
+ * How one of our TypeScript programs is run.
  * @param {string} file relative to the project
  */
 export function typescript(file) {
-  return /** @type {const} */ ({ command: process.execPath, args: ['--import', 'tsx', file] })
+  const flags = file.replaceAll('\\', '/').endsWith(WORKER) ? WORKER_FLAGS : []
+  return { command: process.execPath, args: [...flags, '--import', 'tsx', file] }
 }
 
 /**

@@ -202,7 +202,8 @@ async function keepBytes(
   const hash = createHash('sha256')
   let byteSize = 0
   let chunkNo = 0
-  let buffer = new Uint8Array(PIECE_BYTES)
+  // One for all pieces: it is free again when the database has its copy.
+  const buffer = new Uint8Array(PIECE_BYTES)
   let filled = 0
   for await (const piece of upload.stream) {
     byteSize += piece.length
@@ -217,7 +218,6 @@ async function keepBytes(
       if (filled < PIECE_BYTES) continue
       await writeOriginalChunk(db, attachmentId, chunkNo, buffer)
       chunkNo += 1
-      buffer = new Uint8Array(PIECE_BYTES)
       filled = 0
     }
   }

@@ -2,8 +2,10 @@
  * How fast is the transport solver? Against scipy's BDF on the same nodes, each side at its loosest tolerance that
  * stays within half a percent wherever there is pressure worth the name; and by itself on a long line with six gases.
  * Pairs are interleaved, so that a busy machine slows both alike, and the table shows medians. Run with
- * `npm run bench`; the comparison needs python3 with scipy (python3-scipy on Debian).
+ * `npm run bench`, which goes on with the log intake (intake.ts); the comparison needs python3 with scipy
+ * (python3-scipy on Debian).
  */
+import { spawnSync } from 'node:child_process'
 import { type GasHistory, runTransport, type TransportRun } from '#app/physics/transport.ts'
 import { caseB, caseC, DAY_S, HOUR_S, longLine } from '#tests/fixtures/physics/benchmark-runs.ts'
 import { type Reference, type ReferenceAsk, startReference } from './reference-process.ts'
@@ -207,3 +209,7 @@ try {
 } finally {
   reference?.close()
 }
+
+// In a process of its own, so that neither bench leaves the other its memory.
+const intake = spawnSync(process.execPath, ['--import', 'tsx', 'tests/bench/intake.ts'], { stdio: 'inherit' })
+if (intake.status !== 0) process.exitCode = 1

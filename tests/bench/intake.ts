@@ -3,35 +3,36 @@
  * large file against a small one, by line and by memory; a year of one channel on a screen against a day. Pairs are
  * interleaved, so that a busy machine slows both alike, and medians are shown.
  *
- * Run with `npx tsx tests/bench/intake.ts`, with TEST_DATABASE_URL as for the tests: it works in a database of its own
- * beside that one and drops it at the end. BENCH_LARGE_MIB (1024) is the size of the large file.
+ * Part of `npm run bench`; alone `npx tsx tests/bench/intake.ts`, and with the word `large` only the large file. With
+ * TEST_DATABASE_URL, as for the tests, it works in a database of its own beside that one and drops it at the end;
+ * otherwise it starts a server. BENCH_LARGE_MIB (128) is the size of the large file; 1024 takes some minutes more.
  */
-import { spawnSync } from 'node:child_process'
+import { randomBytes } from 'node:crypto'
+import { mkdtempSync, rmSync } from 'node:fs'
+import { tmpdir } from 'node:os'
+import { join } from 'node:path'
 import { Readable } from 'node:stream'
-import { fileURLToPath } from 'node:url'
 import mysql from 'mysql2'
+import { databaseUser } from '#app/cli/database-user.mjs'
+import { startMariadb } from '#app/cli/mariadb.mjs'
 import { closeDb, getDb, getPool } from '#app/db/client.server.ts'
 import { migrateDatabase } from '#app/db/migrate.server.ts'
 import { binReadings } from '#app/db/queries/readings.server.ts'
 import type { Actor } from '#app/domain/actor.ts'
 import { emptyProfile } from '#app/domain/schemas/source-profile.ts'
+import { machineNow } from '#app/machine-time.server.ts'
 import { stageUpload } from '#app/services/intake.server.ts'
 import { acceptImport } from '#app/services/intake-decisions.server.ts'
-import { readLargeFile } from '#app/services/intake-large.server.ts'
 import { makeRollups } from '#app/services/rollups.server.ts'
-import { createChannel, createSite, createSource, createUser } from '#tests/support/factories.ts'
+import { createChannel, createClock, createSite, createSource, createUser } from '#tests/support/factories.ts'
 import { testDatabaseUrl } from '#tests/support/test-database-url.ts'
+import { benchLarge } from './intake-large.ts'
+import { CHANNEL_NAMES, CHANNELS, cell, NOW, nightFile, START_MS, STEP_MS } from './night-file.ts'
 
 const PAIRS = 7
-const CHANNELS = 60
 const LINES = 8_640
-const STEP_MS = 10_000
-const START_MS = Date.UTC(2026, 9, 1)
-const NOW = new Date(Date.UTC(2027, 11, 1))
-const MIB = 1024 * 1024
 const signal = new AbortController().signal
 
-process.env.DATABASE_URL = testDatabaseUrl(0).replace(/_test_0$/, '_bench')
 process.env.SESSION_SECRET ??= 'a secret for the bench only, 32 or more'
 process.env.LOG_LEVEL ??= 'silent'
 
@@ -43,27 +44,6 @@ async function seconds(work: () => Promise<unknown>): Promise<number> {
   const started = performance.now()
   await work()
   return (performance.now() - started) / 1000
-}
-
-/** A value of its own for every channel and line, as text. */
-function cell(line: number, channel: number): string {
-  return `${1 + ((line * 7 + channel * 13) % 9)}.${String((line * 31 + channel) % 1000).padStart(3, '0')}e-08`
-}
-
-const names = Array.from({ length: CHANNELS }, (_, i) => `HC-${String(i + 1).padStart(2, '0')}A`)
-const HEADER = `time,${names.map((name) => `${name} (Pa)`).join(',')}\n`
-
-/** Lines of a wide night file, in pieces of about 64 KiB. */
-function* nightFile(startMs: number, lines: number): Generator<Uint8Array> {
-  let text = HEADER
-  for (let line = 0; line < lines; line += 1) {
-    const cells = names.map((_, channel) => cell(line, channel)).join(',')
-    text += `${new Date(startMs + line * STEP_MS).toISOString()},${cells}\n`
-    if (text.length < 65_536) continue
-    yield Buffer.from(text)
-    text = ''
-  }
-  yield Buffer.from(text)
 }
 
 async function* asStream(pieces: Iterable<Uint8Array>): AsyncGenerator<Uint8Array> {
@@ -104,11 +84,12 @@ interface Site {
 async function prepare(): Promise<Site> {
   const db = getDb()
   await createSite(db)
+  await createClock(db, { baseAt: NOW, baseMachineAt: machineNow() })
   const actor = await createUser(db, { roles: ['technician'] })
   const [source, other] = [await createSource(db, { code: 'NL-B' }), await createSource(db)]
   const ids: number[] = []
   const otherIds: number[] = []
-  for (const name of names) {
+  for (const name of CHANNEL_NAMES) {
     ids.push((await createChannel(db, { sourceId: source.id, name })).id)
     otherIds.push((await createChannel(db, { sourceId: other.id, name })).id)
   }
@@ -210,66 +191,24 @@ async function benchScreen({ otherIds }: Site): Promise<void> {
   console.log(`  ratio ${ratio.toFixed(2)}, asked for at most 2: ${ratio <= 2 ? 'met' : 'MISSED'}`)
 }
 
-interface LargeRun {
-  lines: number
-  cpuSeconds: number
-  peakMib: number
-}
-
-/** In a process of its own: receives and reads a file of some size, and prints what that cost. */
-async function readOne(mib: number, actor: Actor): Promise<void> {
-  const line = cell(1, 1).length + 1
-  const lines = Math.floor((mib * MIB) / (CHANNELS * line + 25))
-  const staged = await stage(actor, nightFile(START_MS - 86_400_000 * 365, lines), {
-    name: `${mib}.csv`,
-    largeBytes: 1,
+/** A server for the bench, set as the product's own is. */
+async function ownServer(): Promise<{ url: string; end: () => Promise<void> }> {
+  const folder = mkdtempSync(join(tmpdir(), 'ebbline-bench-'))
+  const server = await startMariadb({
+    folder,
+    user: databaseUser(),
+    password: randomBytes(16).toString('hex'),
+    options: ['--innodb-buffer-pool-size=256M'],
   })
-  const { user, system } = process.cpuUsage()
-  if (!(await readLargeFile(getDb(), { importId: staged.importId, answers: [] }, NOW, signal)))
-    throw new Error('The large file was not read')
-  const after = process.cpuUsage()
-  const result: LargeRun = {
-    lines,
-    cpuSeconds: (after.user + after.system - user - system) / 1e6,
-    peakMib: process.resourceUsage().maxRSS / 1024,
+  const end = async () => {
+    await server.stop()
+    rmSync(folder, { recursive: true, force: true })
   }
-  process.stdout.write(`${JSON.stringify(result)}\n`)
+  return { url: server.url('ebbline_bench'), end }
 }
 
-function runLarge(mib: number, personId: number): LargeRun {
-  const { stdout, status, stderr } = spawnSync(
-    process.execPath,
-    ['--import', 'tsx', fileURLToPath(import.meta.url), 'read', String(mib), String(personId)],
-    { encoding: 'utf8' },
-  )
-  if (status !== 0) throw new Error(stderr)
-  return JSON.parse(stdout) as LargeRun
-}
-
-function benchLarge({ actor }: Site): void {
-  const large = Number(process.env.BENCH_LARGE_MIB ?? '1024')
-  const small = Array.from({ length: 3 }, () => runLarge(5 + Math.random() * 0.1, actor.personId))
-  const run = runLarge(large, actor.personId)
-  const perLine = median(small.map(({ lines, cpuSeconds }) => cpuSeconds / lines))
-  const ratio = run.cpuSeconds / run.lines / perLine
-  console.log(`\nA file of ${large} MiB (${run.lines} lines) against one of 5 MiB, processor time of reading`)
-  console.log(
-    `  by line ${(1e6 * perLine).toFixed(1)} µs small (peak memory ${median(small.map(({ peakMib }) => peakMib)).toFixed(0)} MiB), ${((1e6 * run.cpuSeconds) / run.lines).toFixed(1)} µs large`,
-  )
-  console.log(`  ratio ${ratio.toFixed(2)}, asked for at most 1.5: ${ratio <= 1.5 ? 'met' : 'MISSED'}`)
-  console.log(
-    `  peak memory ${run.peakMib.toFixed(0)} MiB, asked for at most 300 MB: ${run.peakMib * MIB <= 300e6 ? 'met' : 'MISSED'}`,
-  )
-}
-
-async function main(): Promise<void> {
-  const [, , mode, mib, personId] = process.argv
-  if (mode === 'read') {
-    await readOne(Number(mib), { personId: Number(personId), name: 'bench', roles: ['technician'] })
-    return
-  }
-  const url = new URL(process.env.DATABASE_URL ?? '')
-  const drop = `DROP DATABASE IF EXISTS \`${url.pathname.slice(1)}\``
+async function dropDatabase(address: string): Promise<void> {
+  const url = new URL(address)
   const admin = mysql
     .createConnection({
       host: url.hostname,
@@ -278,21 +217,34 @@ async function main(): Promise<void> {
       password: decodeURIComponent(url.password),
     })
     .promise()
-  await admin.query(drop)
+  await admin.query(`DROP DATABASE IF EXISTS \`${url.pathname.slice(1)}\``)
+  await admin.end()
+}
+
+async function main(): Promise<void> {
+  const given = process.env.TEST_DATABASE_URL
+  const server =
+    given === undefined || given === ''
+      ? await ownServer()
+      : { url: testDatabaseUrl(0).replace(/_test_0$/, '_bench'), end: async () => {} }
+  process.env.DATABASE_URL = server.url
   try {
-    await migrateDatabase(url.href)
+    await dropDatabase(server.url)
+    await migrateDatabase(server.url)
     const site = await prepare()
     await getPool()
       .promise()
       .query('UPDATE source SET profile = ?', [JSON.stringify(emptyProfile())])
-    await benchAccept(site)
-    await benchScreen(site)
-    benchLarge(site)
+    if (process.argv[2] !== 'large') {
+      await benchAccept(site)
+      await benchScreen(site)
+    }
+    await benchLarge(site.actor.personId, Number(process.env.BENCH_LARGE_MIB ?? '128'))
   } finally {
-    await admin.query(drop)
-    await admin.end()
+    await closeDb()
+    await dropDatabase(server.url)
+    await server.end()
   }
 }
 
 await main()
-await closeDb()
