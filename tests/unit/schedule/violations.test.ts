@@ -101,7 +101,9 @@ test('a day with a clock change is avoided, and hours pass by the sun and not by
   const [fault] = violations(october, placed({ 'SG-01+SG-02': 12 })).filter(
     ({ kind }) => kind === 'clock-change',
   )
-  expect(fault?.text).toBe()
+  expect(fault?.text).toBe(
+    'SG-01+SG-02: end of ramp 25 Oct 07:00 is on the day the clocks change; take another day.',
+  )
   expect(violations(october, placed({ 'SG-01+SG-02': 48 }))).toEqual([])
 })
 
