@@ -28,6 +28,8 @@ export const JOB_PAYLOADS = {
   }),
   /** Makes rollups anew where readings have changed. */
   'roll-up': z.strictObject({}),
+  /** Notes where the bakes under way have left their plans or limits. */
+  'note-deviations': z.strictObject({}),
   /** Deletes finished jobs, and uploads that broke off, once nobody will ask about them. */
   'purge-leftovers': z.strictObject({}),
 } as const satisfies Record<string, z.ZodType>
@@ -51,6 +53,7 @@ export const SCHEDULED_TASKS: readonly ScheduledTask[] = [
   { name: 'partition-readings', kind: 'partition-readings', everySeconds: 6 * 3600 },
   // Whoever takes a file in asks for it at once; this is for live posts, typed readings and what a stop has left.
   { name: 'roll-up', kind: 'roll-up', everySeconds: 300 },
+  { name: 'note-deviations', kind: 'note-deviations', everySeconds: 600 },
   { name: 'purge-sessions', kind: 'purge-sessions', everySeconds: 3600 },
   { name: 'purge-leftovers', kind: 'purge-leftovers', everySeconds: 24 * 3600 },
 ]

@@ -80,6 +80,11 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: STAFF, status: 404 },
     POST: { who: STAFF, status: 400 },
   },
+  '/bakes/runs/:tag': {
+    path: '/bakes/runs/SG-99',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: ['technician', 'engineer'], status: 400 },
+  },
   '/bakes/plans/:planId/plan.csv': { path: '/bakes/plans/999/plan.csv', GET: { who: STAFF, status: 404 } },
   '/bakes/plans/:planId/plan.ics': { path: '/bakes/plans/999/plan.ics', GET: { who: STAFF, status: 404 } },
   '/logbook': { GET: { who: ROLES, status: 200 } },
@@ -120,6 +125,7 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: ['administrator'], status: 404 },
     POST: { who: ['administrator'], status: 400 },
   },
+  '/api/v1/openapi.json': { GET: { who: 'anyone', status: 200 } },
   // A token of its own decides here; being signed in counts for nothing.
   '/api/v1/sources/:code/readings': {
     path: '/api/v1/sources/NL-X/readings',
