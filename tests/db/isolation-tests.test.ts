@@ -1,5 +1,6 @@
 import { eq } from 'drizzle-orm'
 import { beforeEach, expect, test } from 'vitest'
+import { insertDue } from '#app/db/queries/rollups.server.ts'
 import { isolationTest, limitValue, reading, segmentState } from '#app/db/schema/index.ts'
 import { qualityCode } from '#app/domain/readings.ts'
 import {
@@ -80,6 +81,8 @@ async function readings(from: Date, seconds: number, pa: (hours: number) => numb
       lineNo: index,
     })),
   )
+  // Written past the product, so it is said by hand that no rollup holds them yet.
+  await insertDue(db, [{ channelId, from, last: after(from, seconds) }])
 }
 
 const window = (from = 1, to = 12) => ({
