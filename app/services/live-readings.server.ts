@@ -38,6 +38,7 @@ import { DomainError } from '../domain/errors.ts'
 import { type ReadPost, readPost } from '../domain/live-readings.ts'
 import type { KnownChannel } from '../domain/night-files/types.ts'
 import type { Quantity } from '../domain/readings.ts'
+import type { PostAnswer } from '../domain/schemas/api-answers.ts'
 import { type PostFault, parsePost } from '../domain/schemas/live-readings.ts'
 import { type ReadingRules, readingRules } from './intake-reading.server.ts'
 import { batchRows } from './intake-rows.server.ts'
@@ -53,20 +54,6 @@ export interface LivePost {
   requestKey: string
   /** The body as it came. */
   bytes: Uint8Array
-}
-
-export interface PostAnswer {
-  importId: number
-  /** Readings stored. */
-  stored: number
-  /** Held already with the same value. */
-  held: number
-  /** Stored beside a different reading of the same channel and instant; both are marked. */
-  conflicting: number
-  /** Stored, but not as a measured value: dated ahead, implausible, or unlike another of the post. */
-  flagged: number
-  /** Left out: repeats within the post, and channels that the register says to ignore. */
-  skipped: number
 }
 
 export interface TakenPost {

@@ -66,23 +66,46 @@ const MEND: Record<keyof typeof EXPECTED, string> = {
   status: 'Leave the status out, or send a shorter word.',
 }
 
+/** What is expected of a field, as a sentence. */
+function described(field: keyof typeof EXPECTED): string {
+  const text = EXPECTED[field]
+  return `${text.charAt(0).toUpperCase()}${text.slice(1)}.`
+}
+
 const LiveReadingSchema = z.strictObject({
-  channel: z.string().trim().min(1).max(80),
-  at: z.string().transform((text, context): number => {
-    const atMs = readDateTime(text)
-    if (atMs !== null && atMs >= EARLIEST_MS) return atMs
-    context.addIssue({ code: 'custom' })
-    return z.NEVER
-  }),
-  value: z.union([z.number(), z.string().max(40), z.null()]),
-  unit: z.string().max(24).optional(),
-  status: z.string().max(40).optional(),
+  channel: z
+    .string()
+    .trim()
+    .min(1)
+    .max(80)
+    .meta({ description: described('channel') }),
+  at: z
+    .string()
+    .meta({ format: 'date-time', description: described('at') })
+    .transform((text, context): number => {
+      const atMs = readDateTime(text)
+      if (atMs !== null && atMs >= EARLIEST_MS) return atMs
+      context.addIssue({ code: 'custom' })
+      return z.NEVER
+    }),
+  value: z.union([z.number(), z.string().max(40), z.null()]).meta({ description: described('value') }),
+  unit: z
+    .string()
+    .max(24)
+    .optional()
+    .meta({ description: described('unit') }),
+  status: z
+    .string()
+    .max(40)
+    .optional()
+    .meta({ description: described('status') }),
 })
 
 /** A reading as posted; `at` in milliseconds since 1970 UTC. */
 export type LiveReading = z.infer<typeof LiveReadingSchema>
 
-const PostSchema = z.strictObject({
+/** Body of a post. */
+export const PostSchema = z.strictObject({
   readings: z.array(LiveReadingSchema).min(1).max(POST_LIMITS.readings),
 })
 

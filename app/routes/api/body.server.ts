@@ -1,13 +1,13 @@
 /** The head and the body of a post to the API, checked before anything is made of them. */
 import { DomainError } from '#app/domain/errors.ts'
+import { RequestKeySchema } from '#app/domain/schemas/api-answers.ts'
 import { POST_LIMITS } from '#app/domain/schemas/live-readings.ts'
-
-const KEY = /^[\x21-\x7e]{1,120}$/
 
 /** The header Idempotency-Key. @throws DomainError bad-input */
 export function requestKeyOf(headers: Headers): string {
   const given = headers.get('Idempotency-Key')?.trim()
-  if (given !== undefined && KEY.test(given)) return given
+  const key = RequestKeySchema.safeParse(given)
+  if (key.success) return key.data
   const found = given === undefined || given === '' ? 'none' : `one of ${given.length} characters`
   throw new DomainError(
     'bad-input',

@@ -1,5 +1,6 @@
 import { nowOf } from '#app/auth/guard.server.ts'
 import { getDb } from '#app/db/client.server.ts'
+import type { FileAnswer } from '#app/domain/schemas/api-answers.ts'
 import { env } from '#app/env.server.ts'
 import { machineNow } from '#app/machine-time.server.ts'
 import { fileFromPut } from '#app/server/upload.server.ts'
@@ -26,10 +27,8 @@ export async function action({ context, request, params }: Route.ActionArgs) {
     })
     const { importId, state, again } = await receiveSentFile(getDb(), token, now, file)
     const href = `/intake/${importId}`
-    return Response.json(
-      { importId, state, again, href },
-      { status: again ? 200 : 201, headers: { Location: href } },
-    )
+    const answer: FileAnswer = { importId, state, again, href }
+    return Response.json(answer, { status: again ? 200 : 201, headers: { Location: href } })
   } catch (error) {
     return problemOf(error)
   }

@@ -1,5 +1,6 @@
 /** Errors of the API as RFC 9457 problem details, with what was found, expected and how to mend it. */
 import { DomainError } from '#app/domain/errors.ts'
+import type { Problem } from '#app/domain/schemas/api-answers.ts'
 import { FileRefused } from '#app/services/api-files.server.ts'
 import { PostRefused } from '#app/services/live-readings.server.ts'
 
@@ -25,7 +26,8 @@ export function problem(
   detail: string,
   extra: { headers?: Record<string, string>; members?: Record<string, unknown> } = {},
 ): Response {
-  const body = { type: 'about:blank', title: TITLES[status], status, code, detail, ...extra.members }
+  const plain: Problem = { type: 'about:blank', title: TITLES[status] ?? 'Error', status, code, detail }
+  const body = { ...plain, ...extra.members }
   return new Response(JSON.stringify(body), {
     status,
     headers: { 'Content-Type': 'application/problem+json', ...extra.headers },
