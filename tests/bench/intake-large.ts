@@ -6,10 +6,9 @@ import { tmpdir } from 'node:os'
 import { join } from 'node:path'
 import { pipeline } from 'node:stream/promises'
 import { eq } from 'drizzle-orm'
-import { start, stop } from '#app/cli/processes.mjs'
-import { typescript } from '#app/cli/services.mjs'
 import { getDb } from '#app/db/client.server.ts'
 import { importFile } from '#app/db/schema/index.ts'
+import { processes, services } from '#tests/support/programs.ts'
 import { linesFor, nightFile, START_MS } from './night-file.ts'
 import { cpuSecondsOf, peakMibOf } from './process-cost.ts'
 
@@ -31,6 +30,8 @@ function median(values: readonly number[]): number {
 /** Reads the files one after another in one worker, and prints what each cost. */
 export async function benchLarge(personId: number, largeMib: number): Promise<void> {
   const folder = mkdtempSync(join(tmpdir(), 'ebbline-bench-'))
+  const { start, stop } = await processes()
+  const { typescript } = await services()
   const { command, args } = typescript('app/worker/main.ts')
   const worker = start(command, args, { channel: true })
   try {
@@ -40,12 +41,12 @@ export async function benchLarge(personId: number, largeMib: number): Promise<vo
     const small: Run[] = []
     for (let run = 0; run < SMALL_RUNS; run += 1) {
       const { path, lines } = await write(folder, SMALL, START_MS - (2 + run) * YEAR_MS)
-      receive(path, `small-${run}.csv`, personId)
+      await receive(path, `small-${run}.csv`, personId)
       small.push({ lines, cpuSeconds: await readByWorker(pid, `small-${run}.csv`, lines) })
     }
     const smallPeak = peakMibOf(pid)
     const { path, lines } = await write(folder, largeMib * MIB, START_MS - YEAR_MS)
-    const receiving = receive(path, 'large.csv', personId)
+    const receiving = await receive(path, 'large.csv', personId)
     const cpuSeconds = await readByWorker(pid, 'large.csv', lines)
     report(small.slice(1), { lines, cpuSeconds }, { idle, smallPeak, receiving, peak: peakMibOf(pid) })
   } finally {
@@ -66,8 +67,8 @@ async function write(
 }
 
 /** @returns the peak memory of the process that received it, MiB */
-function receive(path: string, fileName: string, personId: number): number {
-  const { command, args } = typescript('tests/bench/receive-process.ts')
+async function receive(path: string, fileName: string, personId: number): Promise<number> {
+  const { command, args } = (await services()).typescript('tests/bench/receive-process.ts')
   const { stdout, status, stderr } = spawnSync(command, [...args, path, fileName, String(personId)], {
     encoding: 'utf8',
   })

@@ -7,14 +7,8 @@
  * TEST_DATABASE_URL, as for the tests, it works in a database of its own beside that one and drops it at the end;
  * otherwise it starts a server. BENCH_LARGE_MIB (128) is the size of the large file; 1024 takes some minutes more.
  */
-import { randomBytes } from 'node:crypto'
-import { mkdtempSync, rmSync } from 'node:fs'
-import { tmpdir } from 'node:os'
-import { join } from 'node:path'
 import { Readable } from 'node:stream'
 import mysql from 'mysql2'
-import { databaseUser } from '#app/cli/database-user.mjs'
-import { startMariadb } from '#app/cli/mariadb.mjs'
 import { closeDb, getDb, getPool } from '#app/db/client.server.ts'
 import { migrateDatabase } from '#app/db/migrate.server.ts'
 import { binReadings } from '#app/db/queries/readings.server.ts'
@@ -25,6 +19,7 @@ import { stageUpload } from '#app/services/intake.server.ts'
 import { acceptImport } from '#app/services/intake-decisions.server.ts'
 import { makeRollups } from '#app/services/rollups.server.ts'
 import { createChannel, createClock, createSite, createSource, createUser } from '#tests/support/factories.ts'
+import { startOwnMariadb } from '#tests/support/own-mariadb.ts'
 import { testDatabaseUrl } from '#tests/support/test-database-url.ts'
 import { benchLarge } from './intake-large.ts'
 import { CHANNEL_NAMES, CHANNELS, cell, NOW, nightFile, START_MS, STEP_MS } from './night-file.ts'
@@ -191,22 +186,6 @@ async function benchScreen({ otherIds }: Site): Promise<void> {
   console.log(`  ratio ${ratio.toFixed(2)}, asked for at most 2: ${ratio <= 2 ? 'met' : 'MISSED'}`)
 }
 
-/** A server for the bench, set as the product's own is. */
-async function ownServer(): Promise<{ url: string; end: () => Promise<void> }> {
-  const folder = mkdtempSync(join(tmpdir(), 'ebbline-bench-'))
-  const server = await startMariadb({
-    folder,
-    user: databaseUser(),
-    password: randomBytes(16).toString('hex'),
-    options: ['--innodb-buffer-pool-size=256M'],
-  })
-  const end = async () => {
-    await server.stop()
-    rmSync(folder, { recursive: true, force: true })
-  }
-  return { url: server.url('ebbline_bench'), end }
-}
-
 async function dropDatabase(address: string): Promise<void> {
   const url = new URL(address)
   const admin = mysql
@@ -223,14 +202,13 @@ async function dropDatabase(address: string): Promise<void> {
 
 async function main(): Promise<void> {
   const given = process.env.TEST_DATABASE_URL
-  const server =
-    given === undefined || given === ''
-      ? await ownServer()
-      : { url: testDatabaseUrl(0).replace(/_test_0$/, '_bench'), end: async () => {} }
-  process.env.DATABASE_URL = server.url
+  const own =
+    given === undefined || given === '' ? await startOwnMariadb(['--innodb-buffer-pool-size=256M']) : null
+  const url = own === null ? testDatabaseUrl(0).replace(/_test_0$/, '_bench') : own.url('ebbline_bench')
+  process.env.DATABASE_URL = url
   try {
-    await dropDatabase(server.url)
-    await migrateDatabase(server.url)
+    await dropDatabase(url)
+    await migrateDatabase(url)
     const site = await prepare()
     await getPool()
       .promise()
@@ -242,8 +220,8 @@ async function main(): Promise<void> {
     await benchLarge(site.actor.personId, Number(process.env.BENCH_LARGE_MIB ?? '128'))
   } finally {
     await closeDb()
-    await dropDatabase(server.url)
-    await server.end()
+    await dropDatabase(url)
+    await own?.end()
   }
 }
 

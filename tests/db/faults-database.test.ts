@@ -1,11 +1,6 @@
 /** A database server that is killed while a file is received, read and taken in, and started again on the same files. */
-import { mkdtempSync, rmSync } from 'node:fs'
-import { tmpdir } from 'node:os'
-import { join } from 'node:path'
 import { eq } from 'drizzle-orm'
 import { afterAll, beforeAll, expect, it } from 'vitest'
-import { databaseUser } from '#app/cli/database-user.mjs'
-import { startMariadb } from '#app/cli/mariadb.mjs'
 import { closeDb, connect, type Db } from '#app/db/client.server.ts'
 import { migrateDatabase } from '#app/db/migrate.server.ts'
 import { importFile, job } from '#app/db/schema/index.ts'
@@ -28,14 +23,13 @@ import {
   storedDigest,
   takeOver,
 } from '#tests/support/intake-faults.ts'
+import { type OwnMariadb, startOwnMariadb } from '#tests/support/own-mariadb.ts'
 
 const ROWS = 6_000
 const LARGE = 1_024
 const WITHIN_MS = 180_000
 
-type Server = Awaited<ReturnType<typeof startMariadb>>
-let folder: string
-let server: Server
+let server: OwnMariadb
 let open: ReturnType<typeof connect>
 let technician: Actor
 /** What the way from sending to readings takes here when nothing dies, and a bit more: deaths are spread over it. */
@@ -45,26 +39,10 @@ let sendingMs: number
 /** How far the file of each seed had come when the server died. */
 const stages = new Set<string>()
 
-/** With the product's own settings for durability: a server that is killed must not lose what it has confirmed. */
-async function startServer(): Promise<void> {
-  server = await startMariadb({
-    folder,
-    user: databaseUser(),
-    password: 'onlyfortests',
-    options: ['--innodb-buffer-pool-size=64M', '--innodb-log-file-size=16M', `--tmpdir=${tmpdir()}`],
-  })
-}
-
-async function killServer(): Promise<void> {
-  server.program.child.kill('SIGKILL')
-  await server.program.ended
-}
-
 beforeAll(async () => {
   process.env.LOG_LEVEL ??= 'silent'
   process.env.SESSION_SECRET ??= 'a secret for tests only, 32 or more'
-  folder = mkdtempSync(join(tmpdir(), 'ebbline-faults-'))
-  await startServer()
+  server = await startOwnMariadb(['--innodb-buffer-pool-size=64M', '--innodb-log-file-size=16M'])
   process.env.DATABASE_URL = server.url('ebbline')
   await migrateDatabase(server.url('ebbline'))
   open = connect(server.url('ebbline'))
@@ -88,8 +66,7 @@ beforeAll(async () => {
 afterAll(async () => {
   await open?.pool.promise().end()
   await closeDb()
-  await server?.stop()
-  rmSync(folder, { recursive: true, force: true })
+  await server?.end()
 })
 
 function startOf(seed: number): number {
@@ -146,7 +123,7 @@ it.each(FAULT_SEEDS)(
       (error: unknown) => error,
     )
     await pause(shareOf(seed, 3) * (seed % 5 === 0 ? sendingMs : spanMs))
-    await killServer()
+    await server.kill()
     const end = await way
     if (end !== 'done') expect(end).toBeInstanceOf(Error)
     await open.pool
@@ -154,7 +131,7 @@ it.each(FAULT_SEEDS)(
       .end()
       .catch((error: unknown) => expect(error).toBeInstanceOf(Error))
 
-    await startServer()
+    await server.restart()
     open = connect(server.url('ebbline'))
     const { db } = open
     await expectWhole(db)
