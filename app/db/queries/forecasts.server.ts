@@ -1,7 +1,7 @@
 import { and, desc, eq, sql } from 'drizzle-orm'
 import { ForecastModelSchema } from '../../domain/forecast-records.ts'
 import type { DbOrTx } from '../client.server.ts'
-import { forecastRecord, person, position, segment } from '../schema/index.ts'
+import { forecastRecord, person, position, segment, supplySet } from '../schema/index.ts'
 
 /** Forecasts of record, the last made first. */
 export async function listForecasts(
@@ -58,4 +58,10 @@ export async function closeForecast(
     .set(judged)
     .where(and(eq(forecastRecord.id, id), eq(forecastRecord.outcome, sql`'open'`)))
   return result.affectedRows === 1
+}
+
+/** Supply sets that are in the register, for what several bakes at once would need. */
+export async function countSupplySets(db: DbOrTx): Promise<number> {
+  const rows = await db.select({ count: sql<number>`COUNT(*)` }).from(supplySet)
+  return Number(rows[0]?.count ?? 0)
 }
