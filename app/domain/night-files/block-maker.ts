@@ -3,6 +3,7 @@ import { type Block, isReordered, makeBlock } from './block.ts'
 import { askUnfitUnit, noKnownChannel, oneOf } from './block-questions.ts'
 import type { BodyTools } from './body.ts'
 import { channelQuestion } from './cell-faults.ts'
+import type { Curves } from './curves.ts'
 import { type HeaderColumn, joinHeaders, readHeader } from './header.ts'
 import type { NumberReader } from './numbers.ts'
 import type { FileDialect, Refusal, Restart } from './types.ts'
@@ -15,6 +16,7 @@ export type UnitOrigin = FileDialect['unitFrom']
 interface MakerTools extends BodyTools {
   numbers: NumberReader
   unitWords: UnitWords
+  curves: Curves
   /** Where a name goes that the register lacks. */
   targets: (name: string) => string | null
 }
@@ -79,7 +81,8 @@ export class BlockMaker {
   /** The unit that counts where a file names one: that one, or the one that a person said. */
   settleUnit(unit: Unit): Unit {
     const override = this.#override
-    if (override === null || override.from.quantity !== unit.quantity) return unit
+    // What is written as volts names no unit of pressure that could be compared.
+    if (unit.curve !== undefined || override === null || override.from.quantity !== unit.quantity) return unit
     return override.from.factor === unit.factor && override.from.offset === unit.offset ? override.to : unit
   }
 
@@ -104,6 +107,7 @@ export class BlockMaker {
       noteUnit: this.#noteUnit,
       answeredUnits:
         profile.unit === null ? [unitOf(questions.answer('unit'))].filter((unit) => unit !== null) : [],
+      curves: this.#tools.curves,
       doubtful: (token, column, quantity) => this.#doubtfulUnit(token, column, quantity ?? 'pressure'),
       unfit: (name, column, unit, quantity) =>
         askUnfitUnit(name, { line: this.#headerLine, column }, unit, quantity, questions),
@@ -145,8 +149,8 @@ export class BlockMaker {
   #checkUnit(block: Block): void {
     const { dialect, profile, questions } = this.#tools
     const column =
-      block.wide.find(({ unit }) => unit?.quantity === 'pressure') ??
-      block.wide.find(({ unit }) => unit !== null)
+      block.wide.find(({ unit }) => unit?.quantity === 'pressure' && unit.curve === undefined) ??
+      block.wide.find(({ unit }) => unit !== null && unit.curve === undefined)
     const row = dialect.rows[0]
     const at = block.layout === 'wide' ? column?.at : block.unitAt
     const written =

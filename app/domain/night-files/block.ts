@@ -2,6 +2,7 @@ import type { Quantity } from '../readings.ts'
 import { channelKey } from '../register.ts'
 import type { SourceProfile } from '../schemas/source-profile.ts'
 import type { ChannelBook } from './channel-names.ts'
+import type { Curves } from './curves.ts'
 import { channelColumn, type HeaderColumn } from './header.ts'
 import type { QuestionList } from './questions.ts'
 import type { ReadingSink } from './sink.ts'
@@ -43,6 +44,8 @@ export interface BlockFacts {
   sink: ReadingSink
   /** Unit of a metadata line. */
   noteUnit: Unit | null
+  /** Curves of gauges that write volts. */
+  curves: Curves
   /** Units that a person chose for columns without one. */
   answeredUnits: readonly Unit[]
   /** What a doubtful unit of a header stands for; null leaves the column without a unit, and asks. */
@@ -69,6 +72,7 @@ function columnUnit(
   i: number,
   quantity: Quantity | null,
   facts: BlockFacts,
+  channel: string | null,
 ): Unit | 'leave-out' | null {
   const { unit } = column
   let own: Unit | 'leave-out' | null = facts.unitRow?.[i] ?? unitOf(column.profileUnit)
@@ -80,6 +84,8 @@ function columnUnit(
   }
   if (own === 'leave-out') return own
   if (own !== null && quantity !== null && !unitFits(quantity, own)) {
+    const byCurve = channel === null || quantity !== 'pressure' ? null : facts.curves.unitFor(channel, own)
+    if (byCurve !== null) return byCurve
     facts.unfit(column.name, i + 1, own, quantity)
     return 'leave-out'
   }
@@ -113,7 +119,7 @@ export function makeBlock(
   const valueColumn = columns[block.valueAt]
   const sameName = layout === 'wide' ? repeatedNames(columns, facts) : new Map<string, number[]>()
   if (layout === 'long' && valueColumn !== undefined)
-    block.unit = usable(columnUnit(valueColumn, block.valueAt, null, facts))
+    block.unit = usable(columnUnit(valueColumn, block.valueAt, null, facts, null))
   columns.forEach((column, i) => {
     const shown: ColumnReadOut = {
       position: i + 1,
@@ -143,7 +149,7 @@ export function makeBlock(
         return
       }
     }
-    const unit = columnUnit(column, i, target.quantity, facts)
+    const unit = columnUnit(column, i, target.quantity, facts, target.name)
     if (unit === 'leave-out') {
       shown.role = 'left-out'
       return
@@ -151,10 +157,27 @@ export function makeBlock(
     const quantity = target.quantity ?? column.quantity ?? unit?.quantity ?? 'pressure'
     const channel = facts.sink.channel(target.name, quantity)
     block.wide.push({ at: i, channel, quantity, unit })
+    const volts = unit?.curve === undefined ? null : voltsOf(target.name, facts)
+    if (volts !== null) block.wide.push({ at: i, ...volts })
     shown.channel = target.name
     shown.unit = unit?.token ?? null
   })
   return block
+}
+
+/** The channel that keeps the volts of a pressure channel, where the register has one. */
+export function voltsOf(
+  name: string,
+  { curves, book, sink }: Pick<BlockFacts, 'curves' | 'book' | 'sink'>,
+): Omit<WideColumn, 'at'> | null {
+  const match = book.match(curves.voltsChannel(name) ?? '')
+  if (match.kind !== 'known' || match.channel.ignored === true || match.channel.quantity !== 'voltage')
+    return null
+  return {
+    channel: sink.channel(match.channel.name, 'voltage'),
+    quantity: 'voltage',
+    unit: unitOf('V'),
+  }
 }
 
 function usable(unit: Unit | 'leave-out' | null): Unit | null {

@@ -7,6 +7,7 @@ import type { ChannelBook } from './channel-names.ts'
 import { ResetStretches, resetFault } from './clock-reset.ts'
 import { ClockWatch } from './clock-watch.ts'
 import { joinDecimalCommas, twoWays } from './comma-pairs.ts'
+import { Curves } from './curves.ts'
 import type { Dialect } from './dialect.ts'
 import { splitFields } from './fields.ts'
 import { looksLikeHeader, looksLikeUnitRow } from './header.ts'
@@ -89,13 +90,16 @@ export class FileBody {
     const unitWords = new UnitWords(questions, profile.units, context)
     this.numbers = numbers
     const targets = namedTargets(questions, profile)
-    this.#blocks = new BlockMaker({ ...tools, numbers, unitWords, targets })
+    const curves = new Curves(profile.curves)
+    this.#blocks = new BlockMaker({ ...tools, numbers, unitWords, curves, targets })
     const words = new WordBook({ ...profile.words, ...questions.words() })
     this.rows = new RowReader({
       cells: new CellReader(numbers, words, [...profile.sentinels, ...questions.floors()], (token) =>
         unitWords.meaning(token),
       ),
       unitWords,
+      curves,
+      startingMs: profile.startingMinutes * 60_000,
       numbers,
       targetFor: targets,
       sink,

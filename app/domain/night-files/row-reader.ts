@@ -1,9 +1,11 @@
 import { type Quantity, qualityCode } from '../readings.ts'
 import type { Block } from './block.ts'
-import { channelTarget } from './block.ts'
+import { channelTarget, voltsOf } from './block.ts'
+import { askUnfitUnit } from './block-questions.ts'
 import { cellFault, channelQuestion, wordQuestion } from './cell-faults.ts'
 import type { CellFault, CellReader } from './cells.ts'
 import type { ChannelBook } from './channel-names.ts'
+import type { Curves } from './curves.ts'
 import { FUTURE_MS } from './limits.ts'
 import { isCutNumber, type NumberReader } from './numbers.ts'
 import type { QuestionList } from './questions.ts'
@@ -11,10 +13,12 @@ import type { ReadingSink } from './sink.ts'
 import type { LineTally } from './tally.ts'
 import { plainWord } from './text.ts'
 import type { UnitWords } from './unit-words.ts'
-import { readUnit, type Unit } from './units.ts'
+import { readUnit, type Unit, unitFits } from './units.ts'
 
 const SUSPECT = qualityCode('suspect')
 const GOOD = qualityCode('good')
+const OFF = qualityCode('off')
+const STARTING = qualityCode('starting')
 
 /** A row cut into fields, with the header it stands under. */
 export interface Row {
@@ -38,6 +42,9 @@ export interface RowTools {
   decimalMark: '.' | ','
   nowMs: number
   unitWords: UnitWords
+  curves: Curves
+  /** Minutes after a gauge was switched on in which it counts as starting. */
+  startingMs: number
   /** Where a name goes that the register lacks. */
   targetFor: (name: string) => string | null
   numbers: NumberReader
@@ -64,6 +71,8 @@ export class RowReader {
   readonly #tools: RowTools
   /** Dates of the channels, by their index. */
   readonly #dates: { fromMs: number; untilMs: number }[] = []
+  /** When each gauge came on, by the channel's index; null while it is off. Before it was off nothing is known. */
+  readonly #startedAt: (number | null | undefined)[] = []
   /** Results of the row at hand. */
   #kept = 0
   #duplicates = 0
@@ -123,7 +132,9 @@ export class RowReader {
       })
       return false
     }
-    const unit = this.#rowUnit(row)
+    const written = this.#rowUnit(row)
+    const unit = written === 'unknown' ? written : this.#fitted(row, target, written)
+    if (unit === 'unfit') return false
     if (unit === 'unknown') {
       const token = (fields[block.unitAt] ?? '').trim()
       const valueText = fields[block.valueAt] ?? ''
@@ -146,8 +157,38 @@ export class RowReader {
     else {
       this.#noteUnitChange(row, unit)
       this.#emit(sink.channel(target.name, quantity), atMs, row, text, marks)
+      const volts = unit?.curve === undefined ? null : voltsOf(target.name, this.#tools)
+      // The volts as they are written, beside the pressure made of them.
+      if (volts !== null && cells.read(text, volts.quantity, volts.unit) === null)
+        this.#emit(volts.channel, atMs, row, text, marks)
     }
     return true
+  }
+
+  /**
+   * The unit in which a row of a long file is read: volts by the curve of the gauge, if there is one. A unit of its
+   * own that measures something else costs the row; one that holds for rows that name none says nothing about it.
+   */
+  #fitted(
+    row: Row,
+    { name, quantity }: { name: string; quantity: Quantity | null },
+    unit: Unit | null,
+  ): Unit | null | 'unfit' {
+    if (unit === null || quantity === null || quantity === 'switch' || unitFits(quantity, unit)) return unit
+    const byCurve = quantity === 'pressure' ? this.#tools.curves.unitFor(name, unit) : null
+    if (byCurve !== null) return byCurve
+    const { block, fields } = row
+    const own = block.unitAt === -1 ? '' : (fields[block.unitAt] ?? '').trim()
+    if (own === '') return null
+    const { tally, questions, decimalMark } = this.#tools
+    const place = { line: row.line, column: block.unitAt + 1 }
+    askUnfitUnit(name, place, unit, quantity, questions)
+    tally.reject(
+      row.line,
+      row.text,
+      cellFault('unknown-unit', fields[block.valueAt] ?? '', own, place.column, decimalMark),
+    )
+    return 'unfit'
   }
 
   #rowUnit(row: Row): Unit | null | 'unknown' {
@@ -211,6 +252,16 @@ export class RowReader {
     return atMs < dates.fromMs || atMs >= dates.untilMs
   }
 
+  /** Quality of a reading, seen that its gauge may have been switched on shortly before. */
+  #started(channel: number, atMs: number, quality: number): number {
+    const { startingMs } = this.#tools
+    if (startingMs === 0) return quality
+    if (quality === OFF) this.#startedAt[channel] = null
+    else if (quality === GOOD && this.#startedAt[channel] === null) this.#startedAt[channel] = atMs
+    const since = atMs - (this.#startedAt[channel] ?? Number.NaN)
+    return quality === GOOD && since >= 0 && since < startingMs ? STARTING : quality
+  }
+
   #emit(channel: number, atMs: number, row: Row, text: string, marks: number): void {
     const { cells, sink, nowMs } = this.#tools
     let { quality } = cells
@@ -228,6 +279,7 @@ export class RowReader {
       this.#flagged = true
       if (quality === GOOD) quality = SUSPECT
     }
+    quality = this.#started(channel, atMs, quality)
     const result = sink.emit({
       channel,
       atMs,

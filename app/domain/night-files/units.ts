@@ -8,6 +8,8 @@ export interface Unit {
   quantity: Quantity
   factor: number
   offset: number
+  /** Volts of a logarithmic gauge: the number of `factor` units is 10 to the power of (V × volts − atUnit) / perDecade. */
+  curve?: { volts: number; atUnit: number; perDecade: number }
 }
 
 export type UnitReading =
@@ -180,5 +182,7 @@ export function unitFits(quantity: Quantity, unit: Unit): boolean {
 
 /** SI value of a number in a unit. */
 export function toSi(value: number, unit: Unit): number {
+  const { curve } = unit
+  if (curve !== undefined) return unit.factor * 10 ** ((value * curve.volts - curve.atUnit) / curve.perDecade)
   return unit.offset === 0 ? value * unit.factor : value * unit.factor + unit.offset
 }

@@ -51,6 +51,18 @@ const ProfileColumnSchema = z.object({
   quantity: z.enum(QUANTITY_NAMES).nullable().default(null),
 })
 
+/** What a gauge writes that gives volts on a logarithmic scale, as its manual or certificate says. */
+const VoltCurveSchema = z.object({
+  /** Raw channel of the pressure. */
+  channel: z.string().min(1).max(80),
+  voltsPerDecade: z.number().refine((volts) => volts !== 0, { error: 'A curve has a slope other than 0 V.' }),
+  /** Output in volts at one of `unit`. */
+  voltsAtUnit: z.number(),
+  unit: z.string().min(1).max(24),
+  /** Raw channel that keeps the volts themselves; null when the register has none. */
+  voltsChannel: z.string().min(1).max(80).nullable().default(null),
+})
+
 export const SourceProfileSchema = z.object({
   version: z.int().min(1).default(1),
   layout: z.enum(['wide', 'long']).nullable().default(null),
@@ -80,6 +92,10 @@ export const SourceProfileSchema = z.object({
   units: z.record(z.string().min(1).max(40), z.string().min(1).max(24)).default({}),
   /** Numbers that this source uses as words. */
   sentinels: z.array(z.object({ value: z.number(), quality: z.enum(QUALITIES) })).default([]),
+  /** Curves of gauges whose columns hold volts. Without one such a column is left out and asked about. */
+  curves: z.array(VoltCurveSchema).default([]),
+  /** Minutes after a gauge was switched on in which its readings are those of a starting gauge. */
+  startingMinutes: z.number().min(0).max(1440).default(0),
   basis: z
     .object({
       kind: z.enum(['nitrogen-equivalent', 'corrected']),

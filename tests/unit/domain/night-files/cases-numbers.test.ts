@@ -233,6 +233,30 @@ const CASES: Record<string, Case[]> = {
       ],
     },
   ],
+  '48 the first minutes of a gauge that was switched on': [
+    {
+      name: 'count as starting for as long as the profile says, and before it was off nothing is known',
+      file: file(
+        'time,channel,value,unit,status',
+        `${AT},P1,1e-8,Pa,OK`,
+        '2026-11-08T06:01:00Z,P1,,Pa,OFF',
+        '2026-11-08T06:02:00Z,P1,9e-8,Pa,OK',
+        '2026-11-08T06:03:00Z,P1,OVER,Pa,',
+        '2026-11-08T06:06:00Z,P1,6e-8,Pa,OK',
+        '2026-11-08T06:07:00Z,P1,5e-8,Pa,OK',
+      ),
+      profile: { ...ISO, startingMinutes: 5 },
+      state: 'readable',
+      readings: [
+        ['P1', AT, 1e-8, 'good'],
+        ['P1', '2026-11-08T06:01:00Z', null, 'off'],
+        ['P1', '2026-11-08T06:02:00Z', 9e-8, 'starting'],
+        ['P1', '2026-11-08T06:03:00Z', null, 'over-range'],
+        ['P1', '2026-11-08T06:06:00Z', 6e-8, 'starting'],
+        ['P1', '2026-11-08T06:07:00Z', 5e-8, 'good'],
+      ],
+    },
+  ],
   '49 error codes as numbers': [
     { ...reads('1.23E+06', 1.23e6, 'suspect'), remarks: ['outside-ceiling'] },
     {

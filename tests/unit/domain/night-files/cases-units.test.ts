@@ -40,6 +40,13 @@ const KNOWN_UNITS: [string, number][] = [
   ['inHg', 3386.388640341],
 ]
 
+const CURVE = { channel: 'P1', voltsPerDecade: 0.75, voltsAtUnit: 7.75, unit: 'mbar', voltsChannel: 'P1 V' }
+const VOLT_CHANNELS = [
+  { name: 'P1', quantity: 'pressure' as const },
+  { name: 'P1 V', quantity: 'voltage' as const },
+  { name: 'P2', quantity: 'pressure' as const },
+]
+
 const CASES: Record<string, Case[]> = {
   '1 unit in the column header': [
     {
@@ -259,6 +266,45 @@ const CASES: Record<string, Case[]> = {
       state: 'needs-answers',
       questions: ['unfit-unit:P1'],
       readings: [],
+    },
+  ],
+  '9 volts with the curve of the gauge': [
+    {
+      name: 'become a pressure, and are kept as volts where the register has a channel for them',
+      // 0.75 V a decade, 7.75 V at 1 mbar: 7 V is a decade below 1 mbar (10 Pa), 5.5 V three decades (0.1 Pa).
+      file: file('time,P1 (V),P2 (Pa)', `${AT},7.0,1.0`, '2026-11-08T06:10:00Z,5.5,1.0'),
+      profile: { ...ISO, curves: [CURVE] },
+      context: { channels: VOLT_CHANNELS },
+      state: 'readable',
+      readings: [
+        ['P1', AT, 10, 'good'],
+        ['P1 V', AT, 7, 'good'],
+        ['P2', AT, 1, 'good'],
+        ['P1', '2026-11-08T06:10:00Z', 0.1, 'good'],
+        ['P1 V', '2026-11-08T06:10:00Z', 5.5, 'good'],
+        ['P2', '2026-11-08T06:10:00Z', 1, 'good'],
+      ],
+    },
+    {
+      name: 'are read by it also row by row, in millivolts too',
+      file: file('time,channel,value,unit', `${AT},P1,7000,mV`, `${AT},P2,1.0,Pa`),
+      profile: { ...ISO, curves: [{ ...CURVE, voltsChannel: null }] },
+      context: { channels: VOLT_CHANNELS },
+      state: 'readable',
+      readings: [
+        ['P1', AT, 10, 'good'],
+        ['P2', AT, 1, 'good'],
+      ],
+    },
+    {
+      name: 'are turned away row by row without a curve, and never taken for pascals',
+      file: file('time,channel,value,unit', `${AT},P1,7.0,V`, `${AT},P2,1.0,Pa`),
+      profile: ISO,
+      context: { channels: VOLT_CHANNELS },
+      state: 'readable',
+      questions: ['unfit-unit:P1'],
+      rejected: ['2:unknown-unit'],
+      readings: [['P2', AT, 1, 'good']],
     },
   ],
   '68 temperatures beside pressures': [
