@@ -6,6 +6,7 @@ import { tx } from '../app/db/transaction.server.ts'
 import { elapsedMs, machineNow } from '../app/machine-time.server.ts'
 import { ensureClock } from '../app/services/clock.server.ts'
 import { createReadingPartitions } from '../app/services/partitions.server.ts'
+import { seedBakePlans } from './bakes/plans.ts'
 import { DEMO_START } from './demo-time.ts'
 import { seedLogEntries } from './log/seed-log.ts'
 import { seedPeople } from './people.ts'
@@ -55,7 +56,8 @@ export async function seedDemo(
     await seedSegmentStates(inside)
     const imports = await seedImports(inside, archive)
     const entries = await seedLogEntries(inside)
-    const counts = { people, segments, positions, channels, instruments, imports, entries }
+    const bakePlans = await seedBakePlans(inside)
+    const counts = { people, segments, positions, channels, instruments, imports, entries, bakePlans }
     await inside.insert(record).values({
       at: DEMO_START,
       machineAt: machineNow(),
