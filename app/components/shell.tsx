@@ -36,6 +36,7 @@ function placesFor(places: ShellProps['places']): Place[] {
           { to: '/', label: 'Line', roots: ['/segments'] },
           { to: '/bakes', label: 'Bakes', roots: ['/bakes'] },
           { to: '/intake', label: 'Log intake', roots: ['/intake'] },
+          { to: '/forecasts', label: 'Forecasts', roots: ['/forecasts'] },
         ]
       : []),
     { to: '/logbook', label: 'Logbook', roots: ['/logbook'] },

@@ -26,6 +26,8 @@ export const JOB_PAYLOADS = {
     importId: z.int().positive(),
     actor: z.strictObject({ personId: z.int().positive(), name: z.string(), roles: z.array(z.enum(ROLES)) }),
   }),
+  /** Looks which forecasts of record have come true or not. */
+  'judge-forecasts': z.strictObject({}),
   /** Makes rollups anew where readings have changed. */
   'roll-up': z.strictObject({}),
   /** Notes where the bakes under way have left their plans or limits. */
@@ -54,6 +56,7 @@ export const SCHEDULED_TASKS: readonly ScheduledTask[] = [
   // Whoever takes a file in asks for it at once; this is for live posts, typed readings and what a stop has left.
   { name: 'roll-up', kind: 'roll-up', everySeconds: 300 },
   { name: 'note-deviations', kind: 'note-deviations', everySeconds: 600 },
+  { name: 'judge-forecasts', kind: 'judge-forecasts', everySeconds: 3600 },
   { name: 'purge-sessions', kind: 'purge-sessions', everySeconds: 3600 },
   { name: 'purge-leftovers', kind: 'purge-leftovers', everySeconds: 24 * 3600 },
 ]

@@ -54,6 +54,22 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: HANDS, status: 200 },
     POST: { who: HANDS, status: 400 },
   },
+  '/segments/:tag/isolation-tests/new': {
+    path: '/segments/SG-X1/isolation-tests/new',
+    GET: { who: HANDS, status: 200 },
+    POST: { who: HANDS, status: 400 },
+  },
+  '/segments/:tag/isolation-tests/:testId': {
+    path: '/segments/SG-X1/isolation-tests/999',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: ['engineer'], status: 400 },
+  },
+  '/forecasts': { GET: { who: STAFF, status: 200 } },
+  '/forecasts/:tag': {
+    path: '/forecasts/SG-X1',
+    GET: { who: STAFF, status: 200 },
+    POST: { who: ['engineer'], status: 400 },
+  },
   '/segments/:tag/readings.csv': { path: '/segments/SG-X1/readings.csv', GET: { who: STAFF, status: 200 } },
   '/forecasts/:tag/what-if': { path: '/forecasts/SG-X1/what-if', GET: { who: STAFF, status: 200 } },
   '/intake': { GET: { who: STAFF, status: 200 }, POST: { who: HANDS, status: 400 } },

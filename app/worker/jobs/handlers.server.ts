@@ -1,6 +1,7 @@
 /** Which function does which kind of job. */
 import type { JobHandlers } from '../../services/jobs.server.ts'
 import { feedDemo } from './feeder.server.ts'
+import { judgeRecordedForecasts } from './judge-forecasts.server.ts'
 import { noteDeviations } from './note-deviations.server.ts'
 import { partitionReadings } from './partition-readings.server.ts'
 import { purgeLeftovers } from './purge-leftovers.server.ts'
@@ -11,6 +12,7 @@ import { rollUp } from './rollup.server.ts'
 export const JOB_HANDLERS: JobHandlers = {
   'feed-demo': feedDemo,
   'note-deviations': noteDeviations,
+  'judge-forecasts': judgeRecordedForecasts,
   'partition-readings': partitionReadings,
   'purge-sessions': purgeEndedSessions,
   'purge-leftovers': purgeLeftovers,
