@@ -2,7 +2,10 @@
 import type { Quality } from '../../app/domain/readings.ts'
 import type { SourceCode } from '../register/positions.ts'
 
-export type LoggerCode = Exclude<SourceCode, 'HAND'>
+/** Loggers that owe a file every night. */
+export type LoggerCode = Exclude<SourceCode, 'HAND' | 'REC'>
+/** All that write files: the loggers, and the recorder that is set up for a test. */
+export type FileSource = Exclude<SourceCode, 'HAND'>
 
 export interface FileReading {
   channel: string
@@ -17,7 +20,7 @@ export interface FileReading {
 }
 
 export interface LoggerFile {
-  source: LoggerCode
+  source: FileSource
   fileName: string
   /** End of what it covers. */
   endsMs: number

@@ -48,11 +48,16 @@ const WITHOUT_NOISE = new Set([NIGHT_END_MS, SG15_LAST.getTime()])
 /** HC-14A flickered before it was taken out. */
 const FLICKER_FROM = at('2026-10-28 00:00').getTime()
 
-/** What a channel says at an instant, Pa or a word. */
-export function said(channel: string, atMs: number): Said {
+/** What a channel would say at an instant without noise, Pa or a word. */
+export function trueAt(channel: string, atMs: number): Said {
   const wired = atMs >= CROSSED_SINCE ? (CROSSED[channel] ?? channel) : channel
   const { segment, gauge } = placeOf(wired)
-  const value = pressureAt(segment, gauge, atMs)
+  return pressureAt(segment, gauge, atMs)
+}
+
+/** What a channel says at an instant, Pa or a word. */
+export function said(channel: string, atMs: number): Said {
+  const value = trueAt(channel, atMs)
   if (typeof value !== 'number' || WITHOUT_NOISE.has(atMs)) return value
   return value * pressureNoise(channel, atMs, channel === 'HC-14A' && atMs >= FLICKER_FROM ? 6 : 1)
 }

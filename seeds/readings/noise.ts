@@ -4,7 +4,7 @@
  */
 
 /** Scatter of a single pressure reading from row to row, and its slow wander, as shares of the reading: 2 % together. */
-const WHITE = 0.016
+export const WHITE = 0.016
 const WANDER = 0.012
 /** The wander forgets itself within this time. */
 const WANDER_MS = 90 * 60_000
@@ -44,6 +44,11 @@ function bell(seed: number, salt: number): number {
 /** Mean 0, deviation about 1, for a name at an instant; independent from minute to minute. */
 export function scatter(name: string, atMs: number): number {
   return bell(seedOf(name), Math.round(atMs / 60_000))
+}
+
+/** As `scatter`, but independent from second to second. */
+export function scatterBySecond(name: string, atMs: number): number {
+  return bell(seedOf(`${name}/s`), Math.round(atMs / 1000))
 }
 
 /** Mean 0, deviation about 1 for a name, changing slowly over `spanMs`. */

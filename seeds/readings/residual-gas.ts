@@ -29,7 +29,7 @@ const ALWAYS: Record<Mass, number> = {
 }
 const LEAK_OPENS_MS = 40 * 60_000
 /** Helium at the last bag on the afternoon of 6 November: a slow answer. */
-const BAGGED = { fromMs: at('2026-11-06 12:50').getTime(), tauMs: 25 * 60_000, pa: 6e-12 }
+const BAGGED = { fromMs: at('2026-11-06 12:50').getTime(), tauMs: 25 * 60_000, pa: 4e-9 }
 
 const HYDROGEN_PA = hydrogenReading(segmentOf('SG-06'), 'own', 2).B / ION_SENSITIVITY.H2
 
@@ -52,6 +52,11 @@ function partialPa(mass: Mass, atMs: number): number {
   return mass === 28 || mass === 32 || mass === 40 ? airPa(mass, atMs) : 0
 }
 
+/** Mass that a channel such as RG-A-40 follows; null for any other channel. */
+export function massOf(channel: string): Mass | null {
+  return MASSES.find((mass) => channel === `RG-A-${String(mass).padStart(2, '0')}`) ?? null
+}
+
 const SENSITIVITY: Record<Mass, number> = {
   2: ION_SENSITIVITY.H2,
   4: ION_SENSITIVITY.He,
@@ -62,10 +67,10 @@ const SENSITIVITY: Record<Mass, number> = {
   44: ION_SENSITIVITY.CO2,
 }
 
-/** Ion current at a mass, A; never below the noise of the multiplier. */
-export function ionCurrentA(mass: Mass, atMs: number): number {
+/** Ion current at a mass, A; never below the noise of the multiplier. `noise` is drawn anew for every row. */
+export function ionCurrentA(mass: Mass, atMs: number, noise = scatter): number {
   const name = `RG-A ${mass}`
   const current = A_PER_PA * SENSITIVITY[mass] * (ALWAYS[mass] + partialPa(mass, atMs))
-  const said = current * (1 + 0.02 * scatter(name, atMs) + 0.02 * wander(name, atMs, 4 * 3_600_000))
-  return Math.max(FLOOR_A / 10, said + FLOOR_A * scatter(`${name}/floor`, atMs))
+  const said = current * (1 + 0.02 * noise(name, atMs) + 0.02 * wander(name, atMs, 4 * 3_600_000))
+  return Math.max(FLOOR_A / 10, said + FLOOR_A * noise(`${name}/floor`, atMs))
 }

@@ -3,6 +3,7 @@ import type { Answer } from '../../app/domain/night-files/types.ts'
 import { PERSON_ID } from '../people.ts'
 import { SEGMENTS } from '../register/segments.ts'
 import { BAKES } from '../scenario/bakes.ts'
+import { RECORDINGS } from '../scenario/recordings.ts'
 import {
   archiveMonths,
   demoNights,
@@ -22,6 +23,7 @@ import {
   temperatureFile,
 } from './logger-files.ts'
 import { eastFile, nightFile, westFile } from './night-file.ts'
+import { recorderFile } from './recorder-file.ts'
 import { siteDay } from './site-clock.ts'
 import { THERMOCOUPLES } from './temperatures.ts'
 import { isHeated } from './wall-temperature.ts'
@@ -138,9 +140,18 @@ function nights(): TakenInFile[] {
   })
 }
 
+/** Recordings second by second, taken in within the hour. */
+function recordings(): TakenInFile[] {
+  return RECORDINGS.map((one) => ({
+    make: () => recorderFile(one),
+    takenInBy: PERSON_ID[one.by],
+    takenInAt: later(one.untilAt.getTime(), 40),
+  }))
+}
+
 /** All of them in the order in which they were taken in. */
 export function takenInFiles(): TakenInFile[] {
-  return [...pressureMonths(), ...powerMonths(), ...bakeRecords(), ...nights()].sort(
+  return [...pressureMonths(), ...powerMonths(), ...bakeRecords(), ...recordings(), ...nights()].sort(
     (a, b) => a.takenInAt.getTime() - b.takenInAt.getTime(),
   )
 }

@@ -6,7 +6,7 @@ import type { PositionKind } from '../../app/domain/register.ts'
 import { SEGMENTS } from './segments.ts'
 
 /** Source whose files carry a position's channel; hand readings are possible everywhere they make sense. */
-export type SourceCode = 'NL-W' | 'NL-E' | 'NL-T' | 'NL-P' | 'NL-R' | 'HAND'
+export type SourceCode = 'NL-W' | 'NL-E' | 'NL-T' | 'NL-P' | 'NL-R' | 'REC' | 'HAND'
 
 export interface DemoPosition {
   id: number

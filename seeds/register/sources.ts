@@ -6,6 +6,7 @@ import { type SourceProfile, SourceProfileSchema } from '../../app/domain/schema
 import { DEMO_ZONE, REGISTER_BEGAN } from '../demo-time.ts'
 import { PERSON_ID } from '../people.ts'
 import { OPEN_WIRE_C } from '../readings/temperatures.ts'
+import { RECORDINGS } from '../scenario/recordings.ts'
 import { type DemoPosition, GASES_WATCHED, POSITIONS, type SourceCode } from './positions.ts'
 
 /** The pressure loggers write a row a minute; before the end of October they wrote one every ten. */
@@ -114,6 +115,22 @@ export const SOURCES: readonly DemoSource[] = [
     note: 'RG-A, ion currents by mass; counts seconds from a start that stands in its first lines',
   },
   {
+    code: 'REC',
+    name: 'Recorder for tests',
+    dueAt: '',
+    periodSeconds: 1,
+    profile: SourceProfileSchema.parse({
+      layout: 'wide',
+      separator: ',',
+      decimalMark: '.',
+      time: { format: 'iso' },
+      basis: NITROGEN_EQUIVALENT,
+      averaging: 'momentary',
+      expectedPeriodSeconds: 1,
+    }),
+    note: 'Put beside a gauge for half an hour: a row a second. Owes no file in the morning',
+  },
+  {
     code: 'HAND',
     name: 'Typed by hand',
     dueAt: '',
@@ -129,6 +146,9 @@ export const SOURCE_ID = Object.fromEntries(SOURCES.map(({ code }, index) => [co
   number
 >
 
+/** Positions that the recorder has been put beside. */
+const RECORDED = new Set<string>(RECORDINGS.flatMap(({ channels }) => channels))
+
 interface DemoChannel {
   id: number
   source: SourceCode
@@ -141,7 +161,8 @@ interface DemoChannel {
 export const CHANNELS: readonly DemoChannel[] = POSITIONS.flatMap((position) => {
   const logged = position.logger === null ? [] : [{ source: position.logger, position }]
   const typed = position.typed ? [{ source: 'HAND' as const, position }] : []
-  return [...logged, ...typed]
+  const recorded = RECORDED.has(position.tag) ? [{ source: 'REC' as const, position }] : []
+  return [...logged, ...typed, ...recorded]
 }).map(({ source: code, position }, index) => ({
   id: index + 1,
   source: code,

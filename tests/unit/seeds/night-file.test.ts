@@ -10,7 +10,9 @@ import type { FileReading, LoggerCode, LoggerFile } from '#seeds/readings/files.
 import { handExport } from '#seeds/readings/hand-export.ts'
 import { LOST_CLOCK_ANSWER } from '#seeds/readings/logger-files.ts'
 import { nightFile } from '#seeds/readings/night-file.ts'
+import { recorderFile } from '#seeds/readings/recorder-file.ts'
 import { CHANNELS, SOURCES } from '#seeds/register/sources.ts'
+import { RECORDINGS } from '#seeds/scenario/recordings.ts'
 
 const LAST_NIGHTS = demoNights().slice(-3)
 const FOLDER = fileURLToPath(new URL('../../../seeds/night-files/', import.meta.url))
@@ -108,6 +110,19 @@ describe('night files of the demo', () => {
     expect(readOut.lines.total).toBe(file.lineCount)
     expect(sameReadings(rows, file)).toBe(true)
   })
+
+  it.each(RECORDINGS.map((one) => [one.segment, one] as const))(
+    'the recorder at %s says what was written into it, a row a second for half an hour',
+    async (_segment, recording) => {
+      const file = recorderFile(recording)
+      const { readOut, rows } = await readBack(file)
+      expect(readOut.state).toBe('readable')
+      expect(readOut.gapTotal).toBe(0)
+      expect(readOut.periodSeconds).toBe(1)
+      expect(rows).toHaveLength(1800 * recording.channels.length)
+      expect(sameReadings(rows, file)).toBe(true)
+    },
+  )
 
   it('begins each file after the last instant of the one before', () => {
     for (const source of ['NL-W', 'NL-E'] as const) {

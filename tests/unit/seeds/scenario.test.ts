@@ -4,6 +4,7 @@ import { BAKE_TABLES } from '#seeds/readings/bake-curves.ts'
 import { bakeName, simulateBake } from '#seeds/readings/bake-simulation.ts'
 import { nightFile } from '#seeds/readings/night-file.ts'
 import { pressureAt } from '#seeds/readings/pressures.ts'
+import { recorderFile } from '#seeds/readings/recorder-file.ts'
 import { ionCurrentA } from '#seeds/readings/residual-gas.ts'
 import { hydrogenReading, isolatedRise, leakReading, waterReading } from '#seeds/readings/segment-gas.ts'
 import { heatingOf } from '#seeds/readings/supplies.ts'
@@ -12,6 +13,7 @@ import { wallC } from '#seeds/readings/wall-temperature.ts'
 import { segmentOf } from '#seeds/register/segments.ts'
 import { BAKES } from '#seeds/scenario/bakes.ts'
 import { LEAKS, OPEN_LEAK } from '#seeds/scenario/events.ts'
+import { RECORDINGS } from '#seeds/scenario/recordings.ts'
 
 /** Reading of a gauge without noise; a word is a slip of the test. */
 function pa(segment: string, gauge: 'A' | 'B' | 'C', when: string): number {
@@ -158,6 +160,48 @@ describe('stories in the readings', () => {
     const ratio = pa('SG-12', 'B', '2026-03-17 10:40') / pa('SG-12', 'B', '2026-03-17 09:00')
     expect(ratio).toBeGreaterThan(1.5)
     expect(ratio).toBeLessThan(2.5)
+  })
+})
+
+describe('recordings second by second', () => {
+  const recorded = (segment: string, channel: string) => {
+    const recording = RECORDINGS.find((one) => one.segment === segment)
+    if (recording === undefined) throw new Error(`${segment} was not recorded`)
+    return recorderFile(recording).readings.filter((one) => one.channel === channel)
+  }
+  const over = (rows: { atMs: number; value: number | null }[], from: string, until: string) =>
+    mean(
+      rows
+        .filter(({ atMs }) => atMs > at(from).getTime() && atMs <= at(until).getTime())
+        .map(({ value }) => value ?? Number.NaN),
+    )
+
+  it('SG-13 is level until its port is shut and then rises by 6.0e-6 Pa an hour', () => {
+    const rows = recorded('SG-13', 'HC-13B')
+    expect(within(over(rows, '2026-11-08 19:55', '2026-11-08 20:00'), 5e-8, 0.15)).toBe(true)
+    // Ten minutes between the middles of the two halves.
+    const gained =
+      over(rows, '2026-11-08 20:15', '2026-11-08 20:25') - over(rows, '2026-11-08 20:05', '2026-11-08 20:15')
+    expect(within(gained * 6, 6.0e-6, 0.05)).toBe(true)
+  })
+
+  it('SG-10 rises within the limit for its size once its port is shut', () => {
+    const rows = recorded('SG-10', 'HC-10B')
+    const gained =
+      over(rows, '2026-09-16 18:15', '2026-09-16 18:25') - over(rows, '2026-09-16 18:05', '2026-09-16 18:15')
+    expect(gained * 6).toBeGreaterThan(1e-6)
+    expect(gained * 6).toBeLessThan(1.2e-5)
+  })
+
+  it('helium comes slowly after the last bag at SG-06, and the cold cathode beside it sees nothing', () => {
+    const helium = recorded('SG-06', 'RG-A-04')
+    const before = over(helium, '2026-11-06 12:40', '2026-11-06 12:50')
+    expect(over(helium, '2026-11-06 13:00', '2026-11-06 13:10')).toBeGreaterThan(3 * before)
+    const gauge = recorded('SG-06', 'CC-06')
+    const ratio =
+      over(gauge, '2026-11-06 13:00', '2026-11-06 13:10') /
+      over(gauge, '2026-11-06 12:40', '2026-11-06 12:50')
+    expect(within(ratio, 1, 0.02)).toBe(true)
   })
 })
 
