@@ -169,6 +169,7 @@ export const PlanActSchema = z.discriminatedUnion(
   [
     z.object({ act: z.literal('sign'), revision, password }),
     z.object({ act: z.literal('withdraw'), revision, reason }),
+    z.object({ act: z.literal('move-on'), revision, to: z.enum(['under-way', 'done']), reason }),
     z.object({ act: z.literal('priority'), revision, priority: z.enum(PLAN_PRIORITIES), reason }),
     z.object({
       act: z.literal('tick'),

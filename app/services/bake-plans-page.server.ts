@@ -106,7 +106,7 @@ export interface PlanPageData {
   permitChain: string | null
   load: { amps: number; volts: number }
   versions: VersionLine[]
-  may: { plan: boolean; tick: boolean; prioritise: boolean }
+  may: { plan: boolean; tick: boolean; prioritise: boolean; moveOn: boolean }
 }
 
 /** One plan with its checklist judged now; a closed plan keeps its prediction and shows no open steps. */
@@ -157,6 +157,7 @@ export async function readPlanPage(db: Db, actor: Actor, now: Date, planId: numb
       plan: open && may(actor, 'bake:plan'),
       tick: open && may(actor, 'bake:note'),
       prioritise: open && may(actor, 'bake:prioritise'),
+      moveOn: (state === 'ready' || state === 'under-way') && may(actor, 'bake:note'),
     },
   }
 }

@@ -19,6 +19,7 @@ import { type PlanPrediction, PlanPredictionSchema } from '../domain/bake-plan-p
 import { blockingItems, readiness, TICKED_ITEMS, type TickedItem } from '../domain/bake-plan-readiness.ts'
 import { DomainError } from '../domain/errors.ts'
 import type { BakePlanState, PlanPriority } from '../domain/planning.ts'
+import { SEGMENT_STATES } from '../domain/segment-states.ts'
 import {
   bakedSegments,
   contentOf,
@@ -202,6 +203,68 @@ export async function withdrawPlan(
       reason: form.reason,
     })
   })
+}
+
+/**
+ * Moves a plan on as its bake begins and ends. The state of the segments decides whether that is so, not the button.
+ *
+ * @throws DomainError forbidden, not-found, conflict, not-acceptable-now (not ready, no segment hot yet, or one still hot)
+ */
+export async function movePlanOn(
+  db: Db,
+  actor: Actor,
+  now: Date,
+  planId: number,
+  form: { revision: number; to: 'under-way' | 'done'; reason: string },
+): Promise<void> {
+  demand(actor, 'bake:note')
+  await tx(db, async (inside) => {
+    const plan = await lockPlan(inside, planId)
+    if (plan === null) throw notFound(planId)
+    if (plan.revision !== form.revision) throw stale()
+    const from = form.to === 'under-way' ? 'ready' : 'under-way'
+    if (plan.state !== from) {
+      throw new DomainError(
+        'not-acceptable-now',
+        `This plan is ${BAKE_PLAN_STATE_LABELS[plan.state].toLowerCase()}; only a plan that is ${BAKE_PLAN_STATE_LABELS[from].toLowerCase()} can become ${BAKE_PLAN_STATE_LABELS[form.to].toLowerCase()}.`,
+      )
+    }
+    await requireHeat(inside, planId, form.to, now)
+    const closed = { closedBy: actor.personId, closedAt: now, closeReason: form.reason }
+    await change(inside, planId, form.revision, { state: form.to, ...(form.to === 'done' ? closed : {}) })
+    await writeRecord(inside, {
+      at: now,
+      actor,
+      act: form.to === 'done' ? 'bake plan done' : 'bake plan under way',
+      ...subjectOf(planId),
+      before: { state: plan.state },
+      after: { state: form.to },
+      reason: form.reason,
+    })
+  })
+}
+
+async function requireHeat(
+  inside: DbOrTx,
+  planId: number,
+  to: 'under-way' | 'done',
+  now: Date,
+): Promise<void> {
+  const { content } = await readPlan(inside, planId)
+  const segments = await planSegments(inside, content.segments, now)
+  const hot = segments.filter(({ state }) => SEGMENT_STATES[state].hot).map(({ tag }) => tag)
+  if (to === 'under-way' && hot.length === 0) {
+    throw new DomainError(
+      'not-acceptable-now',
+      `${content.segments.join(' and ')} ${segments.length === 1 ? 'is' : 'are'} not recorded as heated. Set the state of the segment when heating is on, then come back.`,
+    )
+  }
+  if (to === 'done' && hot.length > 0) {
+    throw new DomainError(
+      'not-acceptable-now',
+      `${hot.join(' and ')} ${hot.length === 1 ? 'is' : 'are'} still recorded as hot. A bake is done when its tube is cold.`,
+    )
+  }
 }
 
 /** Says which plan goes first where two want the same thing. Does not touch the plan's content or its signature. */

@@ -7,6 +7,7 @@ import {
   logEntry,
   person,
   pump,
+  segmentState,
   supplySet,
 } from '#app/db/schema/index.ts'
 import type { BakePlanContent } from '#app/domain/bake-plan.ts'
@@ -15,6 +16,7 @@ import type { IsolationFinding } from '#app/domain/isolation-tests.ts'
 import {
   addPlanVersion,
   createPlan,
+  movePlanOn,
   permitRequest,
   setPlanPriority,
   signPlanReady,
@@ -30,6 +32,7 @@ import {
   createPosition,
   createSegment,
   createSite,
+  createState,
   createUser,
   PASSWORD,
   type TestUser,
@@ -316,6 +319,31 @@ test('a withdrawn plan can no longer be changed, ticked or signed', async () => 
   await expect(readPlanForm(db, MORNING, new URLSearchParams({ of: String(id) }))).rejects.toMatchObject(
     closed,
   )
+})
+
+test('a plan is under way when its segment is hot, and done when it is cold again', async () => {
+  const id = await readyPlan()
+  const move = async (to: 'under-way' | 'done') =>
+    movePlanOn(db, pim, MORNING, id, { revision: await revisionOf(id), to, reason: 'HX-T switched' })
+  await expect(move('under-way')).rejects.toMatchObject({
+    message: expect.stringMatching(/not recorded as heated/),
+  })
+  await createState(db, { segmentId, setBy: pim.personId, state: 'heating' })
+  await expect(move('done')).rejects.toMatchObject({ message: expect.stringMatching(/plan is ready/) })
+  await move('under-way')
+  const second = await plan()
+  const list = (await readPlanPage(db, bram, MORNING, second)).checklist
+  expect(list.find(({ key }) => key === 'supply')?.detail).toMatch(/HX-T heats SG-A/)
+  await expect(move('done')).rejects.toMatchObject({
+    message: expect.stringMatching(/still recorded as hot/),
+  })
+  await db.update(segmentState).set({ state: 'in-service' })
+  await move('done')
+  expect(await readPlanPage(db, bram, MORNING, id)).toMatchObject({
+    state: 'done',
+    baselineVersion: 1,
+    closedAt: MORNING,
+  })
 })
 
 test('the form begins with what the option said, or with the version that stands', async () => {

@@ -1,7 +1,7 @@
 /** What can be done with a plan as a whole: sign it, say how urgent it is, withdraw it. */
 import { Form, useNavigation } from 'react-router'
 import { PLAN_PRIORITY_LABELS } from '#app/domain/bake-plan.ts'
-import { PLAN_PRIORITIES, type PlanPriority } from '#app/domain/planning.ts'
+import { type BakePlanState, PLAN_PRIORITIES, type PlanPriority } from '#app/domain/planning.ts'
 import type { ActionFailure } from '../forms/failure.ts'
 import { Button } from '../ui/button.tsx'
 import { SelectField, TextAreaField, TextField } from '../ui/field.tsx'
@@ -114,6 +114,33 @@ export function WithdrawPanel({ revision, failure }: ActProps) {
         <Button kind="danger" disabled={sending}>
           Withdraw the plan
         </Button>
+      </Form>
+    </Panel>
+  )
+}
+
+/** The bake begins, or is over. The service holds the button to the state of the segments. */
+export function MoveOnPanel({ revision, failure, state }: ActProps & { state: BakePlanState }) {
+  const { typed, fields } = own(failure, 'move-on')
+  const sending = useSending()
+  const done = state === 'under-way'
+  return (
+    <Panel title={done ? 'The bake is over' : 'Heating is on'}>
+      <Form method="post">
+        <input type="hidden" name="act" value="move-on" />
+        <input type="hidden" name="revision" value={revision} />
+        <input type="hidden" name="to" value={done ? 'done' : 'under-way'} />
+        <TextAreaField
+          name="reason"
+          label={done ? 'How it ended' : 'What was done'}
+          rows={2}
+          required
+          minLength={5}
+          maxLength={1000}
+          defaultValue={typed?.reason}
+          errors={fields.reason}
+        />
+        <Button disabled={sending}>{done ? 'Close the plan as done' : 'Record it as under way'}</Button>
       </Form>
     </Panel>
   )

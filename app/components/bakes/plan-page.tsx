@@ -10,7 +10,7 @@ import { Instant } from '../ui/instant.tsx'
 import { Notice } from '../ui/notice.tsx'
 import { Facts, PageHead, Panel } from '../ui/panel.tsx'
 import { Pressure } from '../ui/pressure.tsx'
-import { PriorityPanel, SignPanel, WithdrawPanel } from './plan-acts.tsx'
+import { MoveOnPanel, PriorityPanel, SignPanel, WithdrawPanel } from './plan-acts.tsx'
 import { PlanChecklist } from './plan-checklist.tsx'
 import { PlanCurves } from './plan-curves.tsx'
 import { PlanTable } from './plan-table.tsx'
@@ -72,6 +72,7 @@ export function PlanPage(props: PageProps) {
       )}
       <div className="grid gap-x-4.5 lg:grid-cols-2 print:hidden">
         {may.plan && state === 'draft' && <SignPanel {...props} blocking={blocking} />}
+        {may.moveOn && <MoveOnPanel {...props} />}
         {may.prioritise && <PriorityPanel {...props} />}
         {may.plan && <WithdrawPanel {...props} />}
       </div>

@@ -6,6 +6,7 @@ import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure, orRefuse } from '#app/server/respond.server.ts'
 import {
+  movePlanOn,
   setPlanPriority,
   signPlanReady,
   tickPlanStep,
@@ -39,6 +40,10 @@ export async function action({ context, request, params }: Route.ActionArgs) {
     if (act.act === 'withdraw') {
       await withdrawPlan(getDb(), actor, now, planId, act)
       return redirectWithNotice(here, 'Withdrawn.')
+    }
+    if (act.act === 'move-on') {
+      await movePlanOn(getDb(), actor, now, planId, act)
+      return redirectWithNotice(here, act.to === 'done' ? 'The bake is done.' : 'The bake is under way.')
     }
     if (act.act === 'priority') {
       await setPlanPriority(getDb(), actor, now, planId, act)
