@@ -141,10 +141,16 @@ export async function createSegment(
   return { id: result.insertId, tag, lineId }
 }
 
-/** The open state of a segment. */
+/** A state of a segment, open unless it is said when it ended. */
 export async function createState(
   db: DbOrTx,
-  options: { segmentId: number; setBy: number; state: typeof segmentState.$inferInsert.state; since?: Date },
+  options: {
+    segmentId: number
+    setBy: number
+    state: typeof segmentState.$inferInsert.state
+    since?: Date
+    endedAt?: Date
+  },
 ): Promise<void> {
   const since = options.since ?? LONG_AGO
   await db.insert(segmentState).values({ ...options, since, reason: 'for a test', recordedAt: since })
