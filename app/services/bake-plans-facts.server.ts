@@ -125,7 +125,7 @@ const LONG_PUMPED_H = 2 * 8766
 /** Hours of cold pumping between the last opening of a segment and the start of heating. */
 async function coldHoursBefore(
   db: DbOrTx,
-  content: BakePlanContent,
+  content: Pick<BakePlanContent, 'startsAt' | 'prepHours'>,
   segmentId: number,
   now: Date,
 ): Promise<number> {
@@ -135,9 +135,10 @@ async function coldHoursBefore(
   return since === null ? LONG_PUMPED_H : Math.min(LONG_PUMPED_H, (start - since.getTime()) / HOUR_MS)
 }
 
-async function plannedSegments(
+/** Segments with their heat, and their vacuum on the cart named (the first one otherwise) and after it. */
+export async function plannedSegments(
   db: DbOrTx,
-  content: BakePlanContent,
+  content: Pick<BakePlanContent, 'cart' | 'startsAt' | 'prepHours'>,
   segments: readonly SegmentWithState[],
   now: Date,
 ): Promise<PlannedSegment[]> {

@@ -136,7 +136,7 @@ export function bakeToReach(
   // One pump holds a segment in service; of several placements over the years the last one counts.
   const model = coldModel(segment, (own.length > 0 ? own : everPlaced).slice(-1))
   if (model === null) return null
-  const hydrogenTimes = crossPa === null || model.water.state === 'unbaked' ? 1 : excessOver(model, crossPa)
+  const hydrogenTimes = hydrogenExcess(model, crossPa)
   const soakOf = (hydrogen: SegmentModel['hydrogen']) =>
     bakeHoursToReach(
       { ...model, hydrogen: scaleHydrogen(hydrogen, hydrogenTimes) },
@@ -156,13 +156,21 @@ function freshFromMill({ hydrogen, water }: SegmentModel): SegmentModel['hydroge
   return { ...hydrogen, agedTauM2: MILL_AGE_M2 }
 }
 
-function excessOver(model: SegmentModel, crossPa: number): number {
+/**
+ * How many times a model's hydrogen explains the present reading at the cross, as if all of it were hydrogen; 1 when the
+ * model explains it, and for a wall whose water decides.
+ *
+ * @param crossPa fresh reading at the pump, nitrogen-equivalent; null without one
+ */
+export function hydrogenExcess(model: SegmentModel, crossPa: number | null): number {
+  if (crossPa === null || model.water.state === 'unbaked') return 1
   const expected = Math.min(...steadyProfile(model).map(({ n2EquivalentPa }) => n2EquivalentPa))
   const times = crossPa / expected
   return times > UNEXPLAINED ? times : 1
 }
 
-function scaleHydrogen(hydrogen: SegmentModel['hydrogen'], times: number): SegmentModel['hydrogen'] {
+/** The same hydrogen, so many times as much of it. */
+export function scaleHydrogen(hydrogen: SegmentModel['hydrogen'], times: number): SegmentModel['hydrogen'] {
   return hydrogen.kind === 'diffusion'
     ? { ...hydrogen, c0PerM3: hydrogen.c0PerM3 * times }
     : { ...hydrogen, qPaMS: hydrogen.qPaMS * times }

@@ -95,7 +95,7 @@ export async function readSegmentPage(
 }
 
 /** Fresh reading at the cross of a segment in service; null otherwise. */
-function crossOf({ segment, standing: { headline } }: StandingSegment): number | null {
+export function crossOf({ segment, standing: { headline } }: StandingSegment): number | null {
   return segment.state === 'in-service' && headline?.fresh ? headline.value : null
 }
 
