@@ -2,7 +2,7 @@
  * Pressures against time on a log axis: the drawing, a read-out that the keyboard moves, the course in words, the
  * figures as a table, and all of them as a file. The drawing needs a script; everything else does without.
  */
-import { useMemo, useState } from 'react'
+import { memo, useCallback, useDeferredValue, useMemo, useState } from 'react'
 import { usePalette } from '#app/hooks/use-palette.ts'
 import { useSite } from '#app/hooks/use-site.ts'
 import { fromPascal, toPascal } from '#app/physics/units.ts'
@@ -77,8 +77,13 @@ export function PressureChart({
     }
   }, [key])
   const { aligned } = drawn
-  const placeText = (place: number) =>
-    kind === 'time' ? siteTimeText(new Date(place), zone) : `${place.toFixed(place < 10 ? 2 : 1)} h`
+  // The figures follow when there is time: under a moving hand, hundreds of cells would hold the drawing up.
+  const settled = useDeferredValue(aligned)
+  const placeText = useCallback(
+    (place: number) =>
+      kind === 'time' ? siteTimeText(new Date(place), zone) : `${place.toFixed(place < 10 ? 2 : 1)} h`,
+    [kind, zone],
+  )
   const spoken = (cell: Cell) => (cell === null || cell === undefined ? 'none' : pressureWords(cell, unit))
 
   if (aligned.columns.every((column) => extremesOf(aligned.x, column) === null)) {
@@ -126,8 +131,8 @@ export function PressureChart({
       />
       <ChartMarks marks={marks} placeText={placeText} />
       <ChartWords aligned={aligned} levels={levels} placeText={placeText} />
-      <ChartTable
-        aligned={aligned}
+      <SettledTable
+        aligned={settled}
         caption={caption}
         placeHead={kind === 'time' ? 'Time' : 'Hours'}
         placeText={placeText}
@@ -136,6 +141,8 @@ export function PressureChart({
     </figure>
   )
 }
+
+const SettledTable = memo(ChartTable)
 
 /** A slider along the curves: arrow keys, a finger or a mouse move the read-out without touching the drawing. */
 function ReadOut({

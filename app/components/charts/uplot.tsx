@@ -53,18 +53,24 @@ export function dashOf(columns: readonly { role: SeriesRole }[], at: number): nu
 }
 
 export function UplotCanvas(props: CanvasProps) {
-  const { aligned, kind, xLog, zone, unit, decades, levels, marks, now, palette, cursor, onCursor } = props
+  const { aligned, kind, xLog, zone, unit, palette, cursor, onCursor } = props
   const hostRef = useRef<HTMLDivElement>(null)
-  const chartRef = useRef<uPlot | null>(null)
+  const chartRef = useRef<{ chart: uPlot; drawn: Aligned } | null>(null)
+  // What the chart's hooks draw: they are made once, and data may change under a hand many times a second.
+  const nowRef = useRef(props)
   const onCursorRef = useRef(onCursor)
   useEffect(() => {
     onCursorRef.current = onCursor
+    nowRef.current = props
   })
+  // Curves of the same names, looks and bands take new data in; any others make a new chart.
+  const shape = JSON.stringify(aligned.columns.map(({ label, role, band }) => [label, role, band !== null]))
 
+  // biome-ignore lint/correctness/useExhaustiveDependencies: the shape stands for what is made of the curves
   useEffect(() => {
     const host = hostRef.current
     if (host === null) return
-    const { series, data, bands } = seriesOf(aligned, palette)
+    const { series, bands } = seriesOf(aligned, palette, (at) => nowRef.current.aligned.columns[at])
     const chart = new uPlot(
       {
         width: host.clientWidth,
@@ -75,29 +81,34 @@ export function UplotCanvas(props: CanvasProps) {
         legend: { show: false },
         cursor: { drag: { x: false, y: false }, y: false, points: { size: 7 } },
         scales: {
-          x: { time: kind === 'time', distr: xLog ? 3 : 1, range: () => xRange(aligned.x, now, xLog) },
-          y: { distr: 3, range: [decades[0]?.value ?? 1e-9, decades.at(-1)?.value ?? 1] },
+          x: {
+            time: kind === 'time',
+            distr: xLog ? 3 : 1,
+            range: () => xRange(nowRef.current.aligned.x, nowRef.current.now, xLog),
+          },
+          y: { distr: 3, range: () => yRange(nowRef.current.decades) },
         },
-        axes: [xAxis(kind, xLog, zone, palette), yAxis(decades, palette)],
+        axes: [xAxis(kind, xLog, zone, palette), yAxis(() => nowRef.current.decades, palette)],
         series,
         bands,
         hooks: {
           drawAxes: [
             (u) => {
               const plot = plotOf(u)
-              drawDecades(plot, decades, unit, palette)
-              drawLevels(plot, levels, palette)
-              if (now !== null) drawNow(plot, now, palette)
+              const held = nowRef.current
+              drawDecades(plot, held.decades, unit, palette)
+              drawLevels(plot, held.levels, palette)
+              if (held.now !== null) drawNow(plot, held.now, palette)
             },
           ],
-          draw: [(u) => drawMarks(plotOf(u), marks, palette)],
+          draw: [(u) => drawMarks(plotOf(u), nowRef.current.marks, palette)],
           setCursor: [(u) => onCursorRef.current(u.cursor.idx ?? null)],
         },
       },
-      data,
+      dataOf(aligned),
       host,
     )
-    chartRef.current = chart
+    chartRef.current = { chart, drawn: aligned }
     const observer = new ResizeObserver(() => chart.setSize({ width: host.clientWidth, height: HEIGHT }))
     observer.observe(host)
     // The first drawing may come before the typeface; its labels are then set again.
@@ -111,12 +122,20 @@ export function UplotCanvas(props: CanvasProps) {
       chart.destroy()
       chartRef.current = null
     }
-  }, [aligned, kind, xLog, zone, unit, decades, levels, marks, now, palette])
+  }, [shape, kind, xLog, zone, unit, palette])
+
+  // Levels, marks and decades come anew with the data that they were made from.
+  useEffect(() => {
+    const held = chartRef.current
+    if (held === null || held.drawn === aligned) return
+    held.drawn = aligned
+    held.chart.setData(dataOf(aligned))
+  }, [aligned])
 
   useEffect(() => {
-    const chart = chartRef.current
+    const chart = chartRef.current?.chart
     const place = cursor === null ? undefined : aligned.x[cursor]
-    if (chart === null || place === undefined || chart.cursor.idx === cursor) return
+    if (chart === undefined || place === undefined || chart.cursor.idx === cursor) return
     chart.setCursor({ left: chart.valToPos(place, 'x'), top: chart.over.clientHeight / 2 }, false)
   }, [cursor, aligned])
 
@@ -181,11 +200,15 @@ function roundHours(min: number, max: number): number[] {
   return found
 }
 
-function yAxis(decades: readonly Decade[], palette: Palette): uPlot.Axis {
+function yRange(decades: readonly Decade[]): [number, number] {
+  return [decades[0]?.value ?? 1e-9, decades.at(-1)?.value ?? 1]
+}
+
+function yAxis(decades: () => readonly Decade[], palette: Palette): uPlot.Axis {
   return {
     scale: 'y',
     size: 54,
-    splits: () => decades.map(({ value }) => value),
+    splits: () => decades().map(({ value }) => value),
     // The figures are drawn by hand, for the sake of their exponents.
     values: (_u, splits) => splits.map(() => ''),
     grid: { stroke: palette.rule2, width: 1 },
@@ -193,9 +216,9 @@ function yAxis(decades: readonly Decade[], palette: Palette): uPlot.Axis {
   }
 }
 
-function seriesOf(aligned: Aligned, palette: Palette) {
+/** @param columnNow the curve as it is when the chart draws, by its number */
+function seriesOf(aligned: Aligned, palette: Palette, columnNow: (at: number) => Column | undefined) {
   const series: uPlot.Series[] = [{}]
-  const data: Cell[][] = [aligned.x]
   const bands: uPlot.Band[] = []
   const edge = { width: 0, stroke: 'transparent', points: { show: false } }
   for (const [at, column] of aligned.columns.entries()) {
@@ -206,22 +229,26 @@ function seriesOf(aligned: Aligned, palette: Palette) {
         fill: color === 'ink' ? palette.rule : palette.vacSoft,
       })
       series.push(edge, edge)
-      data.push(column.band.high, column.band.low)
     }
     series.push({
       stroke: palette[color],
       width,
       dash: dashOf(aligned.columns, at),
-      points: { show: true, size: 4, fill: palette[color], filter: () => aloneIn(column) },
+      points: { show: true, size: 4, fill: palette[color], filter: () => aloneIn(columnNow(at)) },
     })
-    data.push(column.y)
   }
-  return { series, bands, data: data as uPlot.AlignedData }
+  return { series, bands }
+}
+
+/** The columns in the order of the series: a curve's band before it. */
+function dataOf({ x, columns }: Aligned): uPlot.AlignedData {
+  const data: Cell[][] = columns.flatMap(({ y, band }) => (band === null ? [y] : [band.high, band.low, y]))
+  return [x, ...data] as uPlot.AlignedData
 }
 
 /** Values with a gap on either side: no line shows them, so a dot must. */
-function aloneIn({ y }: Column): number[] {
-  const known = y.flatMap((cell, at) => (cell === undefined ? [] : [{ at, cell }]))
+function aloneIn(column: Column | undefined): number[] {
+  const known = (column?.y ?? []).flatMap((cell, at) => (cell === undefined ? [] : [{ at, cell }]))
   return known.flatMap(({ at, cell }, step) =>
     cell !== null && (known[step - 1]?.cell ?? null) === null && (known[step + 1]?.cell ?? null) === null
       ? [at]

@@ -1,5 +1,5 @@
 /** One number of a trial: a slider for the hand, a field for the exact figure, and its grounds a click away. */
-import { useId } from 'react'
+import { memo, useId } from 'react'
 import { Link } from 'react-router'
 import {
   type WhatIfField as Field,
@@ -13,7 +13,7 @@ import {
  * @param typed what stands in the field where it differs from the value: half typed, or not to be used
  * @param alive whether a script can move the slider
  */
-export function WhatIfField({
+export const WhatIfField = memo(function WhatIfField({
   field,
   value,
   typed,
@@ -28,9 +28,10 @@ export function WhatIfField({
   typed: string | undefined
   error: string | undefined
   alive: boolean
-  onValue: (value: number) => void
-  onTyped: (text: string) => void
-  onLeave: () => void
+  /** Called with the field, so that the same three do for all: a field that nothing touches is not made anew. */
+  onValue: (field: Field, value: number) => void
+  onTyped: (field: Field, text: string) => void
+  onLeave: (field: Field) => void
 }) {
   const id = useId()
   const { key, label, unit, slider, usual } = field
@@ -48,8 +49,8 @@ export function WhatIfField({
             inputMode="decimal"
             autoComplete="off"
             value={typed ?? numberText(value)}
-            onChange={(event) => onTyped(event.target.value)}
-            onBlur={onLeave}
+            onChange={(event) => onTyped(field, event.target.value)}
+            onBlur={() => onLeave(field)}
             aria-invalid={error !== undefined || undefined}
             aria-describedby={`${id}-unit${error === undefined ? '' : ` ${id}-error`}`}
             className="min-h-9 w-26 rounded-md border border-edge bg-sheet px-2 text-right text-ink aria-invalid:border-2 aria-invalid:border-bad pointer-coarse:min-h-11"
@@ -67,7 +68,7 @@ export function WhatIfField({
         max={sliderSteps(slider)}
         step={1}
         value={sliderStepOf(slider, value)}
-        onChange={(event) => onValue(sliderValueAt(slider, Number(event.target.value)))}
+        onChange={(event) => onValue(field, sliderValueAt(slider, Number(event.target.value)))}
         className={`mt-1 h-6 w-full accent-ink print:hidden pointer-coarse:h-11 ${alive ? '' : 'invisible'}`}
       />
       {error !== undefined && (
@@ -91,4 +92,4 @@ export function WhatIfField({
       </details>
     </div>
   )
-}
+})

@@ -1,11 +1,12 @@
 /** A segment with other numbers: the curve follows the hand, nothing is saved, and the address says what was tried. */
-import { useEffect, useMemo, useState } from 'react'
+import { useCallback, useEffect, useMemo, useState } from 'react'
 import { Link } from 'react-router'
 import { Button, ButtonLink } from '#app/components/ui/button.tsx'
 import { pressureWords } from '#app/components/ui/format-pressure.ts'
 import { Notice } from '#app/components/ui/notice.tsx'
 import { PageHead, Panel } from '#app/components/ui/panel.tsx'
 import {
+  type WhatIfField as Field,
   usualState,
   type WhatIfKey,
   type WhatIfMode,
@@ -17,13 +18,12 @@ import { readWhatIfNumber, whatIfQuery } from '#app/domain/what-if-query.ts'
 import { type WhatIfCurve, whatIfCorners } from '#app/domain/what-if-solve.ts'
 import { useSite } from '#app/hooks/use-site.ts'
 import type { WhatIfPageData } from '#app/services/what-if.server.ts'
+import { useAddress } from './use-address.ts'
 import { useWhatIfCurve } from './use-what-if-curve.ts'
 import { WhatIfField } from './what-if-field.tsx'
 import { spanText, WhatIfChart, WhatIfFacts } from './what-if-outcome.tsx'
 import { Choice, CopyLink } from './what-if-parts.tsx'
 
-/** The address follows once the hand has been still for so long, ms: browsers take ill to a flood of changes. */
-const ADDRESS_AFTER_MS = 250
 const RESET = 'Back to the register’s'
 
 export function WhatIfPage(props: WhatIfPageData) {
@@ -69,6 +69,11 @@ export function WhatIfPage(props: WhatIfPageData) {
   )
 }
 
+/** Without a key where there is none to begin with, the same object: nothing is made anew for it. */
+function without(of: Partial<Record<WhatIfKey, string>>, key: WhatIfKey): Partial<Record<WhatIfKey, string>> {
+  return of[key] === undefined ? of : { ...of, [key]: undefined }
+}
+
 type TrialProps = WhatIfPageData & { trial: NonNullable<WhatIfPageData['trial']> }
 
 function Trial({ tag, trial, targetPa, measured, pumpGone }: TrialProps) {
@@ -85,27 +90,39 @@ function Trial({ tag, trial, targetPa, measured, pumpGone }: TrialProps) {
   const works = alive && shown.fault === null
   const query = whatIfQuery(ground, state)
   const address = query === '' ? path : `${path}?${query}`
-  useEffect(() => {
-    const timer = setTimeout(() => {
-      // Past the router, which would ask the server for the page anew.
-      if (location.pathname === path) history.replaceState(history.state, '', address)
-    }, ADDRESS_AFTER_MS)
-    return () => clearTimeout(timer)
-  }, [path, address])
+  useAddress(path, address)
 
-  const without = (of: Partial<Record<WhatIfKey, string>>, key: WhatIfKey) => ({ ...of, [key]: undefined })
-  function setNumber(key: WhatIfKey, value: number) {
+  const setNumber = useCallback(({ key }: Field, value: number) => {
     setState((before) => ({ ...before, numbers: { ...before.numbers, [key]: value } }))
     setErrors((before) => without(before, key))
-  }
-  function type(key: WhatIfKey, text: string) {
-    setTyped((before) => ({ ...before, [key]: text }))
-    const field = fields.find((one) => one.key === key)
-    if (field === undefined) return
-    const read = readWhatIfNumber(field, text)
-    if (read.error === null) setNumber(key, read.value)
-    else setErrors((before) => ({ ...before, [key]: `${read.error} The curve keeps the number before.` }))
-  }
+  }, [])
+  const onValue = useCallback(
+    (field: Field, value: number) => {
+      setTyped((before) => without(before, field.key))
+      setNumber(field, value)
+    },
+    [setNumber],
+  )
+  const onTyped = useCallback(
+    (field: Field, text: string) => {
+      setTyped((before) => ({ ...before, [field.key]: text }))
+      const read = readWhatIfNumber(field, text)
+      if (read.error === null) setNumber(field, read.value)
+      else
+        setErrors((before) => ({
+          ...before,
+          [field.key]: `${read.error} The curve keeps the number before.`,
+        }))
+    },
+    [setNumber],
+  )
+  // Once left, a number that is in use is written the short way; one that is not stays as typed beside its reason.
+  const onLeave = useCallback(
+    ({ key }: Field) => {
+      if (errors[key] === undefined) setTyped((before) => without(before, key))
+    },
+    [errors],
+  )
   function reset() {
     setState(usualState(ground))
     setTyped({})
@@ -208,14 +225,9 @@ function Trial({ tag, trial, targetPa, measured, pumpGone }: TrialProps) {
               typed={typed[field.key]}
               error={errors[field.key]}
               alive={works}
-              onValue={(value) => {
-                setTyped((before) => without(before, field.key))
-                setNumber(field.key, value)
-              }}
-              onTyped={(text) => type(field.key, text)}
-              onLeave={() => {
-                if (errors[field.key] === undefined) setTyped((before) => without(before, field.key))
-              }}
+              onValue={onValue}
+              onTyped={onTyped}
+              onLeave={onLeave}
             />
           ))}
           {works ? <CopyLink address={address} /> : <Button kind="primary">Work it out</Button>}
