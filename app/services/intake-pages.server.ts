@@ -22,6 +22,7 @@ import { LARGE_FILE_BYTES, type WithdrawalState } from '../domain/imports.ts'
 import { copyText } from '../domain/night-files/rounded-copy.ts'
 import type { ReadOut } from '../domain/night-files/types.ts'
 import { findRoundedCopy } from './intake-copy.server.ts'
+import { type EarlierFile, findEarlierFile } from './intake-earlier.server.ts'
 import { storedReport } from './intake-reading.server.ts'
 import { getSite } from './site.server.ts'
 
@@ -147,6 +148,8 @@ export interface ImportPageData {
   wish: 'asked' | 'agreed' | null
   /** What to say when the file holds only what is stored already, with fewer digits; null for any other. */
   copy: string | null
+  /** Another file of the same name, while this one has not been decided about. */
+  earlier: EarlierFile | null
 }
 
 /**
@@ -156,18 +159,21 @@ export interface ImportPageData {
  */
 export async function readImportPage(db: Db, actor: Actor, importId: number): Promise<ImportPageData> {
   demand(actor, 'facility:view')
-  const { readOut: value, ...file } = await importOf(db, importId)
+  const found = await importOf(db, importId)
+  const { readOut: value, ...file } = found
   const readOut = storedReport(value)
   const waits = file.state === 'read' && file.firstAt !== null && file.lastAt !== null
   // A large file would have to be read whole for one page.
-  const mayBeCopy = (file.state === 'read' || file.state === 'refused') && file.byteSize <= LARGE_FILE_BYTES
-  const [targets, heldBefore, wish, copy] = await Promise.all([
+  const undecided = file.state === 'read' || file.state === 'refused'
+  const mayBeCopy = undecided && file.byteSize <= LARGE_FILE_BYTES
+  const [targets, heldBefore, wish, copy, earlier] = await Promise.all([
     listChannelTargets(db, file.sourceId, file.lastAt ?? file.uploadedAt),
     waits && file.firstAt !== null && file.lastAt !== null
       ? countHeld(db, file.sourceId, file.firstAt, file.lastAt)
       : Promise.resolve(0),
     findOpenWish(db, importId),
     mayBeCopy ? findRoundedCopy(db, importId) : Promise.resolve(null),
+    undecided ? findEarlierFile(db, found) : Promise.resolve(null),
   ])
   return {
     file,
@@ -177,6 +183,7 @@ export async function readImportPage(db: Db, actor: Actor, importId: number): Pr
     mayTakeIn: may(actor, 'intake:take-in'),
     wish: wish?.state === 'asked' || wish?.state === 'agreed' ? wish.state : null,
     copy: copy === null ? null : copyText(copy),
+    earlier,
   }
 }
 

@@ -4,8 +4,8 @@ import { reading } from '#app/db/schema/index.ts'
 import type { Actor } from '#app/domain/actor.ts'
 import { stageUpload } from '#app/services/intake.server.ts'
 import { findRoundedCopy } from '#app/services/intake-copy.server.ts'
-import { acceptImport } from '#app/services/intake-decisions.server.ts'
-import { readImportPage } from '#app/services/intake-pages.server.ts'
+import { acceptImport, discardImport } from '#app/services/intake-decisions.server.ts'
+import { originalFile, readImportPage } from '#app/services/intake-pages.server.ts'
 import { NL_W } from '#tests/fixtures/night-files/profiles.ts'
 import { fixture } from '#tests/fixtures/night-files/read.ts'
 import { MORNING } from '#tests/support/clock.ts'
@@ -89,5 +89,45 @@ describe('a file that holds stored readings with fewer digits', () => {
 
   it('is none in an import that does not exist', async () => {
     await expect(findRoundedCopy(db, 4711)).rejects.toMatchObject({ code: 'not-found' })
+  })
+})
+
+describe('a file that came before under the same name', () => {
+  const cut = () => night().slice(0, 2000)
+  const earlierOf = async (importId: number) => (await readImportPage(db, technician, importId)).earlier
+
+  it('and was cut then is named, also after it was taken in', async () => {
+    const first = await upload(cut())
+    const second = await upload(night())
+    const size = new TextEncoder().encode(cut()).length
+    expect(await earlierOf(second.importId)).toEqual({
+      importId: first.importId,
+      state: 'read',
+      byteSize: size,
+      uploadedAt: MORNING,
+      relation: 'begins',
+    })
+    await acceptImport(db, technician, MORNING, first.importId)
+    expect(await earlierOf(second.importId)).toMatchObject({ state: 'accepted', relation: 'begins' })
+    // What the cut file brought is left alone, the rest is added.
+    const { stored, held } = await acceptImport(db, technician, MORNING, second.importId)
+    expect(held).toBeGreaterThan(100)
+    expect(stored + held).toBe(435)
+  })
+
+  it('and is whole is named where this one was cut, and kept beside it', async () => {
+    const whole = await upload(night())
+    const { importId } = await upload(cut())
+    expect(await earlierOf(importId)).toMatchObject({ importId: whole.importId, relation: 'whole' })
+    await discardImport(db, technician, MORNING, importId, 'cut on its way')
+    expect(await earlierOf(whole.importId)).toBeNull()
+    const { byteSize, body } = await originalFile(db, technician, importId)
+    expect((await new Response(body).arrayBuffer()).byteLength).toBe(byteSize)
+  })
+
+  it('and holds something else is named as such', async () => {
+    const first = await upload(night())
+    const { importId } = await upload(night().replace(/08\.11\.2026/g, '07.11.2026'))
+    expect(await earlierOf(importId)).toMatchObject({ importId: first.importId, relation: 'other' })
   })
 })

@@ -13,6 +13,7 @@ import { Facts, PageHead, Panel } from '../ui/panel.tsx'
 import { AnswersPanel } from './answers-panel.tsx'
 import { ChannelsPanel } from './channels-panel.tsx'
 import { DiscardPanel, QuestionsPanel, TakeIn } from './decisions.tsx'
+import { cutReason, EarlierNotice } from './earlier-notice.tsx'
 import { countOf, countText, sizeText } from './file-words.ts'
 import { LinesPanel } from './lines-panel.tsx'
 import { NotesPanel, RejectedPanel } from './rejected-panel.tsx'
@@ -29,9 +30,12 @@ export function ImportPage({
   mayTakeIn,
   wish,
   copy,
+  earlier,
   failure,
 }: ImportPageData & { failure: ActionFailure | undefined }) {
   const waits = file.state === 'read' && file.takingInBy === null && mayTakeIn && readOut !== null
+  const notWanted =
+    copy !== null ? COPY_REASON : earlier?.relation === 'whole' ? cutReason(earlier.importId) : null
   return (
     <>
       <PageHead
@@ -73,17 +77,18 @@ export function ImportPage({
         <Notice>These readings were typed by hand, so there is no file to look at.</Notice>
       ) : (
         <>
+          {earlier !== null && <EarlierNotice importId={file.id} earlier={earlier} mayDecide={mayTakeIn} />}
           {copy !== null && <CopyNotice text={copy} />}
           {readOut.refusal !== null && <RefusalNotice refusal={readOut.refusal} />}
           {waits && <QuestionsPanel readOut={readOut} failure={failure} />}
           <div className="grid gap-x-4.5 xl:grid-cols-[minmax(0,1fr)_22rem]">
             <div className="min-w-0">
-              {waits && copy !== null && <DiscardPanel failure={failure} reason={COPY_REASON} />}
+              {waits && notWanted !== null && <DiscardPanel failure={failure} reason={notWanted} />}
               <LinesPanel readOut={readOut} importId={file.id} heldBefore={heldBefore} />
               <RemarksPanel readOut={readOut} />
               <NotesPanel readOut={readOut} />
               <AnswersPanel readOut={readOut} />
-              {waits && copy === null && <DiscardPanel failure={failure} />}
+              {waits && notWanted === null && <DiscardPanel failure={failure} />}
             </div>
             <div className="min-w-0">
               <FilePanel file={file} readOut={readOut} />

@@ -1,5 +1,5 @@
 /** Night files on their way in: the original bytes, the rows of the intake, and what is needed to read them. */
-import { and, asc, desc, eq, gt, gte, inArray, isNull, lte, or, sql } from 'drizzle-orm'
+import { and, asc, desc, eq, gt, gte, inArray, isNull, lte, ne, or, sql } from 'drizzle-orm'
 import { alias } from 'drizzle-orm/mysql-core'
 import type { ImportState } from '../../domain/imports.ts'
 import type { Quantity } from '../../domain/readings.ts'
@@ -261,6 +261,27 @@ export async function findSameBytes(
 ): Promise<ImportListRow | null> {
   const [row] = await selectImports(db)
     .where(and(eq(importFile.sha256, sha256), inArray(importFile.state, [...states])))
+    .orderBy(desc(importFile.id))
+    .limit(1)
+  return row ?? null
+}
+
+/** The last other file of the same source and name with other bytes that has not been discarded or withdrawn. */
+export async function findSameName(
+  db: DbOrTx,
+  file: Pick<ImportRow, 'id' | 'sourceId' | 'fileName' | 'sha256'>,
+): Promise<ImportListRow | null> {
+  const [row] = await selectImports(db)
+    .where(
+      and(
+        eq(importFile.sourceId, file.sourceId),
+        eq(importFile.fileName, file.fileName),
+        eq(importFile.arrival, 'file'),
+        ne(importFile.id, file.id),
+        ne(importFile.sha256, file.sha256),
+        inArray(importFile.state, ['read', 'refused', 'accepted']),
+      ),
+    )
     .orderBy(desc(importFile.id))
     .limit(1)
   return row ?? null
