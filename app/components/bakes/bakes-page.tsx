@@ -1,7 +1,7 @@
 /** Bakes: what is hot now, what is planned, and the ways on to options, plans and schedule. */
 import { Link } from 'react-router'
 import { BAKE_PLAN_STATE_LABELS, PLAN_PRIORITY_LABELS } from '#app/domain/bake-plan.ts'
-import { BAKE_PLAN_STATES, type BakePlanState } from '#app/domain/planning.ts'
+import type { BakePlanState } from '#app/domain/planning.ts'
 import type { BakesPageData } from '#app/services/bake-plans-page.server.ts'
 import { ButtonLink } from '../ui/button.tsx'
 import { type Column, DataTable } from '../ui/data-table.tsx'
@@ -30,6 +30,15 @@ const RUNNING: readonly Column<Running>[] = [
     cell: ({ since }) => (since === null ? 'not recorded' : <Instant at={since} age />),
   },
   { key: 'reason', head: 'What was done', cell: ({ reason }) => reason },
+  {
+    key: 'run',
+    head: 'As it runs',
+    cell: ({ tag }) => (
+      <Link to={`/bakes/runs/${tag}`} className="link">
+        Bake of {tag}
+      </Link>
+    ),
+  },
 ]
 
 const PLANS: readonly Column<Line>[] = [
@@ -67,8 +76,7 @@ const PLANS: readonly Column<Line>[] = [
   {
     key: 'priority',
     head: 'Priority',
-    cell: ({ priority, state }) =>
-      state === 'draft' || state === 'ready' ? PLAN_PRIORITY_LABELS[priority] : '',
+    cell: ({ priority }) => PLAN_PRIORITY_LABELS[priority],
   },
   { key: 'by', head: 'Planned by', cell: ({ createdBy }) => createdBy },
 ]
@@ -76,8 +84,11 @@ const PLANS: readonly Column<Line>[] = [
 /** What comes first is what somebody has to do something about. */
 const ORDER: readonly BakePlanState[] = ['under-way', 'draft', 'ready', 'done', 'withdrawn']
 
+function isOpen(state: BakePlanState): boolean {
+  return state === 'draft' || state === 'ready'
+}
+
 export function BakesPage({ running, plans, mayPlan }: BakesPageData) {
-  const states = ORDER.filter((state) => BAKE_PLAN_STATES.includes(state))
   return (
     <>
       <PageHead
@@ -105,14 +116,14 @@ export function BakesPage({ running, plans, mayPlan }: BakesPageData) {
           empty="No segment is recorded as heated or cooling."
         />
       </Panel>
-      {states.map((state) => {
+      {ORDER.map((state) => {
         const rows = plans.filter((plan) => plan.state === state)
         if (rows.length === 0 && state !== 'draft') return null
         return (
           <Panel key={state} title={`${BAKE_PLAN_STATE_LABELS[state]} (${rows.length})`}>
             <DataTable
               caption={`Plans: ${BAKE_PLAN_STATE_LABELS[state].toLowerCase()}`}
-              columns={PLANS}
+              columns={isOpen(state) ? PLANS : PLANS.filter(({ key }) => key !== 'priority')}
               rows={rows}
               rowKey={({ id }) => id}
               empty="No draft. Begin with the options for a segment, or with a new plan."

@@ -16,7 +16,8 @@ const LEFT = 62
 const RIGHT = 16
 const STRIP = 132
 const GAP = 34
-const TOP = 40
+const TOP = 46
+const DECADES = 8
 
 const LOOKS = [
   { stroke: 'stroke-ink', dash: '' },
@@ -168,7 +169,7 @@ function StripView({
   const scale = scaleOf(strip, top)
   return (
     <g>
-      <text x={LEFT} y={top - 4} className="fill-ink-2 text-xs font-medium">
+      <text x={LEFT} y={top - 8} className="fill-ink-2 text-xs font-medium">
         {strip.title}
       </text>
       {scale.ticks.map(({ value, label }) => (
@@ -215,7 +216,7 @@ function scaleOf({ curves, marks, log }: Strip, top: number): Scale {
     ...marks.map(({ value }) => value),
   ]
   if (log) {
-    const decades = decadesAround(known, 8)
+    const decades = topDecades(known)
     const share = (value: number) =>
       (Math.log10(Math.max(value, 1e-30)) - decades.low) / (decades.high - decades.low)
     return {
@@ -235,6 +236,12 @@ function scaleOf({ curves, marks, log }: Strip, top: number): Scale {
       label: String(Number((i * step).toPrecision(4))),
     })),
   }
+}
+
+/** Decades from the highest value down: what lies below the last one is as good as nothing. */
+function topDecades(values: readonly number[]): { low: number; high: number } {
+  const { low, high } = decadesAround(values, 40)
+  return { low: Math.max(low, high - DECADES), high }
 }
 
 function Keys({ strips }: { strips: readonly Strip[] }) {
