@@ -11,6 +11,7 @@ import {
 import { DomainError } from '../domain/errors.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
 import { type IonCurrent, readIonCurrents } from './ion-currents.server.ts'
+import { type IsolationTestRow, isolationTestsOf } from './isolation-tests.server.ts'
 import { type Curves, readCurves } from './segment-curves.server.ts'
 import { forecastPumpDown, type PumpDownForecast } from './segment-forecast.server.ts'
 import { type BakeAnswer, bakeToReach, predictedProfile } from './segment-model.server.ts'
@@ -36,6 +37,7 @@ export interface SegmentPageData {
   bake: { bakeC: number; targetPa: number; answer: BakeAnswer | null } | null
   entries: Entry[]
   states: StateSpan[]
+  isolationTests: IsolationTestRow[]
 }
 
 /**
@@ -54,12 +56,13 @@ export async function readSegmentPage(
   const own = standings[0]
   if (own === undefined) throw new DomainError('not-found', `The register has no segment ${tag}.`)
   const { segment } = own
-  const [all, everPlaced, entries, states, curves, ionCurrents] = await Promise.all([
+  const [all, everPlaced, entries, states, curves, isolationTests, ionCurrents] = await Promise.all([
     listSegments(db, now),
     listPlacedPumps(db, [segment.id]),
     listEntries(db, { segmentId: segment.id, limit: ENTRIES_SHOWN }),
     listStates(db, segment.id),
     readCurves(db, own, now),
+    isolationTestsOf(db, segment.id),
     readIonCurrents(db, segment.id, now),
   ])
   const target = own.target?.value ?? null
@@ -91,6 +94,7 @@ export async function readSegmentPage(
           },
     entries,
     states,
+    isolationTests,
   }
 }
 

@@ -38,6 +38,8 @@ function handlers(work: JobHandlers['purge-sessions']): JobHandlers {
     'roll-up': unexpected,
     'take-in-night-file': unexpected,
     'purge-leftovers': unexpected,
+    'judge-forecasts': unexpected,
+    'note-deviations': unexpected,
   }
 }
 

@@ -1,5 +1,5 @@
 /** What the log says: when a pressure will be reached, with its range and its grounds, or why that cannot be said. */
-import { Form } from 'react-router'
+import { Form, Link } from 'react-router'
 import { Button } from '#app/components/ui/button.tsx'
 import { Instant } from '#app/components/ui/instant.tsx'
 import { Facts, Panel } from '#app/components/ui/panel.tsx'
@@ -65,7 +65,14 @@ function PumpDownForecastPanel({
   const { result } = forecast
   const instant = (hours: number) => new Date(forecast.startedAt.getTime() + hours * HOUR_MS)
   return (
-    <Panel title="When will it be there?">
+    <Panel
+      title="When will it be there?"
+      aside={
+        <Link to={`/forecasts/${segment.tag}`} className="link text-sm">
+          The fit in full
+        </Link>
+      }
+    >
       <Form
         method="get"
         action={`/segments/${segment.tag}`}

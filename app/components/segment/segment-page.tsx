@@ -1,6 +1,7 @@
 /** One segment: where it is, what it read, what the model expects and what follows. */
 import { Link } from 'react-router'
 import { Locator } from '#app/components/charts/locator.tsx'
+import { IsolationTestsPanel } from '#app/components/isolation/tests-panel.tsx'
 import { ButtonLink } from '#app/components/ui/button.tsx'
 import { Instant } from '#app/components/ui/instant.tsx'
 import { Notice } from '#app/components/ui/notice.tsx'
@@ -21,7 +22,7 @@ export interface SegmentPageProps extends SegmentPageData {
   now: Date
   zone: string
   asked: AskedPressure
-  may: { setState: boolean; takeIn: boolean; typeReading: boolean; writeEntry: boolean }
+  may: { setState: boolean; takeIn: boolean; typeReading: boolean; writeEntry: boolean; recordTest: boolean }
 }
 
 export function SegmentPage(props: SegmentPageProps) {
@@ -111,6 +112,7 @@ export function SegmentPage(props: SegmentPageProps) {
         <div className="grid min-w-0 items-start gap-x-4.5 md:grid-cols-2 xl:grid-cols-1">
           <ForecastPanel {...props} />
           <BakePanel {...props} />
+          <IsolationTestsPanel tag={tag} tests={props.isolationTests} mayRecord={may.recordTest} />
           <SegmentEntries tag={tag} entries={props.entries} />
           <StateHistory states={props.states} />
         </div>

@@ -30,6 +30,7 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
       takeIn: rolesHave(actor.roles, 'intake:take-in'),
       typeReading: rolesHave(actor.roles, 'reading:type'),
       writeEntry: rolesHave(actor.roles, 'entry:write'),
+      recordTest: rolesHave(actor.roles, 'isolation-test:record'),
     },
   }
 }
