@@ -10,6 +10,7 @@ import {
   listChannelTargets,
   listImports,
   listImportsSince,
+  listQuestioned,
   listSources,
   listSourcesHeardOf,
   readOriginal,
@@ -48,8 +49,8 @@ export interface NightRow {
 export interface IntakePageData {
   sources: { code: string; name: string }[]
   nights: NightRow[]
-  /** With how far a withdrawal is that somebody asked for. */
-  files: (ImportListRow & { wish: WithdrawalState | null })[]
+  /** With how far a withdrawal is that somebody asked for, and whether a question has to be answered first. */
+  files: (ImportListRow & { wish: WithdrawalState | null; hasQuestion: boolean })[]
   mayTakeIn: boolean
 }
 
@@ -57,13 +58,14 @@ export interface IntakePageData {
 export async function readIntakePage(db: Db, actor: Actor, now: Date): Promise<IntakePageData> {
   demand(actor, 'facility:view')
   const since = new Date(now.getTime() - (NIGHTS + 2) * DAY_MS)
-  const [site, sources, recent, files, heardOf, wishes] = await Promise.all([
+  const [site, sources, recent, files, heardOf, wishes, questioned] = await Promise.all([
     getSite(db),
     listSources(db),
     listImportsSince(db, since),
     listImports(db, LISTED),
     listSourcesHeardOf(db),
     listOpenWishes(db),
+    listQuestioned(db),
   ])
   const nights: NightRow[] = []
   for (let back = 0; back < NIGHTS; back += 1) {
@@ -76,7 +78,11 @@ export async function readIntakePage(db: Db, actor: Actor, now: Date): Promise<I
   return {
     sources: sources.map(({ code, name }) => ({ code, name })),
     nights,
-    files: files.map((file) => ({ ...file, wish: wishes.get(file.id) ?? null })),
+    files: files.map((file) => ({
+      ...file,
+      wish: wishes.get(file.id) ?? null,
+      hasQuestion: questioned.has(file.id),
+    })),
     mayTakeIn: may(actor, 'intake:take-in'),
   }
 }

@@ -59,7 +59,7 @@ export function QuestionsPanel({
   const questions = [...readOut.questions].sort((a, b) => Number(b.blocking) - Number(a.blocking))
   if (questions.length === 0) return null
   return (
-    <Panel title="Questions">
+    <Panel title="Questions" id="questions">
       <Form method="post">
         <input type="hidden" name="intent" value="answer" />
         {questions.map((question) => (

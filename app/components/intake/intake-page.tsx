@@ -61,9 +61,14 @@ const FILE_COLUMNS: Column<FileRow>[] = [
     key: 'state',
     head: 'State',
     nowrap: true,
-    cell: ({ id, state, wish }) => (
+    cell: ({ id, state, wish, hasQuestion }) => (
       <>
         <StateTag word={IMPORT_STATE_LABELS[state]} tone={TONE_OF_STATE[state]} />
+        {hasQuestion && (
+          <Link to={`/intake/${id}#questions`} className="link ml-2 inline-block py-0.5">
+            has a question
+          </Link>
+        )}
         {wish !== null && (
           <Link to={`/intake/${id}/withdrawal`} className="link ml-2 inline-block py-0.5">
             {wish === 'asked' ? 'withdrawal asked for' : 'withdrawal agreed to'}

@@ -287,6 +287,17 @@ export async function findSameName(
   return row ?? null
 }
 
+/** Files that wait and have a question without whose answer they cannot be taken in. */
+export async function listQuestioned(db: DbOrTx): Promise<Set<number>> {
+  const rows = await db
+    .select({ id: importFile.id })
+    .from(importFile)
+    .where(
+      and(eq(importFile.state, 'read'), sql`json_value(${importFile.readOut}, '$.state') = 'needs-answers'`),
+    )
+  return new Set(rows.map(({ id }) => id))
+}
+
 export async function insertImport(tx: DbOrTx, row: typeof importFile.$inferInsert): Promise<number> {
   const [result] = await tx.insert(importFile).values(row)
   return result.insertId
