@@ -20,6 +20,7 @@ export default [
     route('intake/:importId', 'routes/intake/import.tsx'),
     route('intake/:importId/withdrawal', 'routes/intake/withdrawal.tsx'),
     route('bakes', 'routes/bakes/bakes.tsx'),
+    route('bakes/options', 'routes/bakes/options.tsx'),
     route('bakes/plans/new', 'routes/bakes/new-plan.tsx'),
     route('bakes/plans/:planId', 'routes/bakes/plan.tsx'),
     route('bakes/runs/:tag', 'routes/bakes/run.tsx'),

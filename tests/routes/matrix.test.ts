@@ -87,6 +87,7 @@ const ADDRESSES: Record<string, Address> = {
   '/intake/:importId/original': { path: '/intake/999/original', GET: { who: STAFF, status: 404 } },
   '/intake/:importId/rejected.csv': { path: '/intake/999/rejected.csv', GET: { who: STAFF, status: 404 } },
   '/bakes': { GET: { who: STAFF, status: 200 } },
+  '/bakes/options': { path: '/bakes/options?segments=SG-X1', GET: { who: STAFF, status: 200 } },
   '/bakes/plans/new': {
     GET: { who: ['engineer'], status: 200 },
     POST: { who: ['engineer'], status: 400 },

@@ -1,4 +1,5 @@
 /** Whether waiting can reach the target, and the bake that would. */
+import { Link } from 'react-router'
 import { Facts, Panel } from '#app/components/ui/panel.tsx'
 import { Pressure } from '#app/components/ui/pressure.tsx'
 import { SEGMENT_STATES } from '#app/domain/segment-states.ts'
@@ -12,7 +13,14 @@ export function BakePanel({ bake, forecast, segment, standing }: SegmentPageProp
   if (bake === null || SEGMENT_STATES[segment.state].hot) return null
   const { answer } = bake
   return (
-    <Panel title={`A bake at ${bake.bakeC} °C`}>
+    <Panel
+      title={`A bake at ${bake.bakeC} °C`}
+      aside={
+        <Link to={`/bakes/options?segments=${segment.tag}`} className="link">
+          Other temperatures
+        </Link>
+      }
+    >
       {forecast !== null && <NeedsBake forecast={forecast} targetPa={bake.targetPa} />}
       {standing.verdict === 'at-target' && (
         <p className="mb-2 text-ink-2">The segment is at its target; no bake is called for.</p>
