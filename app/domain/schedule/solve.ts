@@ -12,7 +12,7 @@ import { type Compiled, callIns, compile, type SearchJob, SearchState } from './
 /** Up to so many bakes are searched through. */
 const SMALL = 7
 /** Nodes of that search; it is left where it would take longer. */
-const NODES = 400_000
+const NODES = 60_000
 
 export interface SolveOptions {
   seed: number

@@ -108,8 +108,8 @@ function pairRight(p: ScheduleProblem, a: Put, b: Put): boolean {
 }
 
 /** Whether power, sets, carts and crews are enough for all together. */
-function togetherRight(p: ScheduleProblem, all: readonly Put[]): boolean {
-  for (let hour = 0; hour < p.hours; hour += 1) {
+function togetherRight(p: ScheduleProblem, all: readonly Put[], fromH = 0, untilH = p.hours): boolean {
+  for (let hour = fromH; hour < untilH; hour += 1) {
     let sum = 0
     const feeder = { west: 0, east: 0 }
     for (const { job: one, at } of all) {
@@ -180,6 +180,17 @@ export function bestByEnumeration(p: ScheduleProblem): number | null {
   const order = p.jobs.map((_, i) => i).sort((a, b) => (p.jobs[b]?.endH ?? 0) - (p.jobs[a]?.endH ?? 0))
   let best = Number.POSITIVE_INFINITY
   const put: Put[] = []
+  const known = new Map<string, boolean>()
+  // Whether two may stand so, power included: asked again and again, worked out once.
+  const beside = (a: Put, b: Put): boolean => {
+    const key = `${a.job.id} ${a.at} ${b.job.id} ${b.at}`
+    let right = known.get(key)
+    if (right === undefined) {
+      right = pairRight(p, a, b) && togetherRight(p, [a, b])
+      known.set(key, right)
+    }
+    return right
+  }
   const go = (k: number, end: number): void => {
     const i = order[k]
     if (i === undefined) {
@@ -191,9 +202,10 @@ export function bestByEnumeration(p: ScheduleProblem): number | null {
       const until = Math.max(end, at + one.endH)
       if (until >= best) return
       const now = { job: one, at }
-      if (put.some((other) => !pairRight(p, now, other))) continue
+      if (put.some((other) => !beside(now, other))) continue
       put.push(now)
-      if (k === 0 || togetherRight(p, put)) go(k + 1, until)
+      // What stood there before was right: only the hours of the new one can be wrong.
+      if (put.length < 3 || togetherRight(p, put, at, at + one.powerKW.length)) go(k + 1, until)
       put.pop()
     }
   }
