@@ -6,13 +6,16 @@ import { tx } from '../app/db/transaction.server.ts'
 import { elapsedMs, machineNow } from '../app/machine-time.server.ts'
 import { ensureClock } from '../app/services/clock.server.ts'
 import { createReadingPartitions } from '../app/services/partitions.server.ts'
+import { seedCrews } from './bakes/crews.ts'
 import { seedBakePlans } from './bakes/plans.ts'
 import { DEMO_START } from './demo-time.ts'
+import { seedForecasts } from './forecasts/forecasts.ts'
+import { seedIsolationTests } from './forecasts/isolation-tests.ts'
 import { seedLogEntries } from './log/seed-log.ts'
 import { seedPeople } from './people.ts'
 import { loadReadings } from './readings/load.ts'
 import { loadArchive, seedImports } from './readings/night-archive.ts'
-import { typedReadings } from './readings/typed.ts'
+import { seedTypedReadings, typedReadings } from './readings/typed.ts'
 import { seedHardware } from './register/hardware.ts'
 import { seedInstruments } from './register/instruments.ts'
 import { seedLimits } from './register/limits.ts'
@@ -54,10 +57,27 @@ export async function seedDemo(
     const instruments = await seedInstruments(inside)
     await seedLimits(inside)
     await seedSegmentStates(inside)
+    const typed = await seedTypedReadings(inside)
     const imports = await seedImports(inside, archive)
     const entries = await seedLogEntries(inside)
+    const isolationTests = await seedIsolationTests(inside)
+    const forecasts = await seedForecasts(inside)
     const bakePlans = await seedBakePlans(inside)
-    const counts = { people, segments, positions, channels, instruments, imports, entries, bakePlans }
+    const crews = await seedCrews(inside)
+    const counts = {
+      people,
+      segments,
+      positions,
+      channels,
+      instruments,
+      typed,
+      imports,
+      entries,
+      isolationTests,
+      forecasts,
+      bakePlans,
+      crews,
+    }
     await inside.insert(record).values({
       at: DEMO_START,
       machineAt: machineNow(),
