@@ -6,7 +6,7 @@ import { at, REGISTER_BEGAN } from './demo-time.ts'
 import { PERSON_ID, type PersonKey } from './people.ts'
 import { SEGMENTS, segmentOf } from './register/segments.ts'
 import { bakesOf, type DemoBake } from './scenario/bakes.ts'
-import { VENTS } from './scenario/events.ts'
+import { ISOLATIONS, VENTS } from './scenario/events.ts'
 
 interface Step {
   state: SegmentState
@@ -44,7 +44,10 @@ const OTHER_STEPS: Record<string, readonly Step[]> = {
       by: 'pim',
     },
   ],
+  'SG-11': isolated('SG-11', 'pumping'),
+  'SG-16': isolated('SG-16', 'in-service'),
   'SG-12': [
+    ...isolated('SG-12', 'in-service'),
     {
       state: 'bake-prep',
       since: at('2026-11-06 13:00'),
@@ -60,6 +63,21 @@ const OTHER_STEPS: Record<string, readonly Step[]> = {
       by: 'corwin',
     },
   ],
+}
+
+/** Pump port shut for a night, and open again. */
+function isolated(segment: string, before: SegmentState): Step[] {
+  return ISOLATIONS.filter((one) => one.segment === segment).flatMap(({ fromAt, untilAt }) => [
+    {
+      state: 'isolated-test' as const,
+      since: fromAt,
+      reason: 'Pump port shut to see how fast it rises',
+      by: 'odalys' as const,
+    },
+    ...(untilAt === null
+      ? []
+      : [{ state: before, since: untilAt, reason: 'Pump port open again', by: 'bram' as const }]),
+  ])
 }
 
 /** What each bake was broken off for, or why its soak ended. */

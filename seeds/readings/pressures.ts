@@ -1,6 +1,7 @@
 /** What every gauge of the demo would say without noise, Pa nitrogen-equivalent. */
 import { at } from '../demo-time.ts'
 import { segmentOf } from '../register/segments.ts'
+import { bakesOf } from '../scenario/bakes.ts'
 import { EXCHANGES, ISOLATIONS, POWER_DIP } from '../scenario/events.ts'
 import { HC07A_LOW, MORNING, NIGHT_END_MS, SG13_AT_12H, SG15_LAST } from './morning.ts'
 import { type AtGauges, type Gauge, isolatedRise } from './segment-gas.ts'
@@ -50,15 +51,27 @@ const OF_ONE: Record<string, (gauge: Gauge, atMs: number) => number> = {
   'SG-16': growth16,
 }
 
+/** What a filament that has just come on adds to the reading of its gauge, and how fast, h. */
+const FILAMENT_ADDS = 0.25
+const FILAMENT_HOURS = 0.3
+
 /** Pump port shut: hydrogen, and next to nothing else, rises in proportion to time. */
 function isolationPhases(cold: ColdSegment): Phase[] {
   const { tag, lastBakeYear } = cold.segment
-  return ISOLATIONS.filter(({ segment }) => segment === tag).map(({ fromAt, untilAt }) => {
+  return ISOLATIONS.filter(({ segment }) => segment === tag).map(({ fromAt, untilAt, filamentAt }) => {
     const fromMs = fromAt.getTime()
-    const rise = isolatedRise(cold.segment, lastBakeYear === null ? 0 : 2) * cold.steel
+    const fresh = bakesOf(tag).some(
+      ({ outcome, offAt }) => outcome === 'complete' && offAt !== null && offAt <= fromAt,
+    )
+    const rise = isolatedRise(cold.segment, (lastBakeYear === null ? 0 : 1) + (fresh ? 1 : 0)) * cold.steel
+    const filament = (atMs: number) =>
+      filamentAt === undefined || atMs < filamentAt.getTime()
+        ? 1
+        : 1 + FILAMENT_ADDS * (1 - Math.exp(-hoursBetween(filamentAt.getTime(), atMs) / FILAMENT_HOURS))
     const curve: Curve = (gauge, atMs) => {
       const before = cold.at(gauge, fromMs)
-      if (untilAt !== null) return before + rise * hoursBetween(fromMs, atMs)
+      if (untilAt !== null)
+        return (before + rise * hoursBetween(fromMs, atMs)) * (gauge === 'B' ? filament(atMs) : 1)
       return before + ((SG13_AT_12H[gauge] - before) * hoursBetween(fromMs, atMs)) / 12
     }
     return { fromMs, untilMs: untilAt?.getTime() ?? Number.POSITIVE_INFINITY, curve }

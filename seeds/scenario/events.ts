@@ -340,9 +340,23 @@ export const POWER_DIP = {
 } as const
 
 /** Isolated tests with the pump port shut, oldest first; the last goes on. */
-export const ISOLATIONS: readonly { segment: string; fromAt: Date; untilAt: Date | null }[] = [
+export const ISOLATIONS: readonly {
+  segment: string
+  fromAt: Date
+  untilAt: Date | null
+  /** A gauge filament came on in the middle, and with it its own gas. */
+  filamentAt?: Date
+}[] = [
   { segment: 'SG-15', fromAt: at('2025-11-12 18:00'), untilAt: at('2025-11-13 08:00') },
   { segment: 'SG-06', fromAt: at('2026-02-13 18:00'), untilAt: at('2026-02-14 09:00') },
   { segment: 'SG-10', fromAt: at('2026-09-16 18:00'), untilAt: at('2026-09-17 08:00') },
+  {
+    segment: 'SG-11',
+    fromAt: at('2026-10-20 18:00'),
+    untilAt: at('2026-10-21 07:00'),
+    filamentAt: at('2026-10-20 23:40'),
+  },
+  { segment: 'SG-12', fromAt: at('2026-10-29 18:00'), untilAt: at('2026-10-30 07:00') },
+  { segment: 'SG-16', fromAt: at('2026-11-04 18:00'), untilAt: at('2026-11-05 07:00') },
   { segment: 'SG-13', fromAt: at('2026-11-08 20:00'), untilAt: null },
 ]
