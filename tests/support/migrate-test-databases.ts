@@ -10,11 +10,13 @@ export default async function migrateTestDatabases(project: TestProject): Promis
   const workers = Number(project.config.maxWorkers)
   // Two projects of one run share their workers' databases: each is made once.
   made.__testDatabases ??= new Map()
+  const all: Promise<void>[] = []
   for (let worker = 1; worker <= workers; worker += 1) {
     const begun = made.__testDatabases.get(worker) ?? recreate(testDatabaseUrl(worker))
     made.__testDatabases.set(worker, begun)
-    await begun
+    all.push(begun)
   }
+  await Promise.all(all)
 }
 
 async function recreate(databaseUrl: string): Promise<void> {

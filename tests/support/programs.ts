@@ -14,7 +14,11 @@ export async function launcher<Module>(file: string): Promise<Module> {
 }
 
 interface Processes {
-  start(command: string, args: readonly string[], options?: { channel?: boolean }): Program
+  start(
+    command: string,
+    args: readonly string[],
+    options?: { channel?: boolean; env?: NodeJS.ProcessEnv },
+  ): Program
   stop(program: Program, options: { graceMs: number }): Promise<void>
 }
 
