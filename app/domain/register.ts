@@ -54,6 +54,7 @@ export const POSITION_KINDS = [
   'bay-fan',
   'partial-pressure',
   'oxygen',
+  'tube-ends',
 ] as const
 export type PositionKind = (typeof POSITION_KINDS)[number]
 export const POSITION_KIND_LABELS: Record<PositionKind, string> = {
@@ -69,6 +70,7 @@ export const POSITION_KIND_LABELS: Record<PositionKind, string> = {
   'bay-fan': 'Bay fan',
   'partial-pressure': 'Residual gas',
   oxygen: 'Oxygen monitor',
+  'tube-ends': 'Tube end to end',
 }
 
 export const HEATER_KINDS = ['direct-current', 'blanket'] as const

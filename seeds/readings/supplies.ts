@@ -36,6 +36,12 @@ function tubeOf(tag: string): HeatedTube & { lengthM: number } {
   }
 }
 
+/** Resistance of a segment from end to end with its wall at a temperature, Ω. */
+export function endToEndOhm(segment: string, celsius: number): number {
+  const tube = tubeOf(segment)
+  return seriesVolts(tube, 1, celsius + 273.15, tube.lengthM, 1)
+}
+
 export interface SupplyOutput {
   volts: number
   amps: number

@@ -116,6 +116,16 @@ const INSTRUMENTS: readonly DemoInstrument[] = [
   spare('Q-8122', 'Spare, in the cabinet at VB-08'),
 ].map((draft, index) => ({ id: index + 1, ...draft }))
 
+/** The instrument that sat at a position at an instant; null where none is fitted. */
+export function instrumentAt(tag: string, when: Date): { id: number; serial: string } | null {
+  const exchange = EXCHANGE_AT.get(tag)
+  return (
+    INSTRUMENTS.find(({ serial, position }) =>
+      exchange !== undefined && exchange.at <= when ? serial === exchange.newSerial : position?.tag === tag,
+    ) ?? null
+  )
+}
+
 /** Writes instruments and fittings. */
 export async function seedInstruments(db: DbOrTx): Promise<number> {
   await db.insert(instrument).values(INSTRUMENTS.map(({ position: _place, ...row }) => row))

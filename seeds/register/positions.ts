@@ -84,7 +84,7 @@ function alongSegments(
 }
 
 function supplies(): Draft[] {
-  const nowhere = { segmentId: null, lineId: null, chainageM: null, logger: 'NL-P' as const, typed: false }
+  const nowhere = { segmentId: null, lineId: null, chainageM: null, logger: 'NL-P' as const, typed: true }
   return [
     ...['HX-1', 'HX-2', 'HX-3'].flatMap((tag) => [
       {
@@ -108,7 +108,6 @@ function supplies(): Draft[] {
       kind: 'energy-meter' as const,
       quantity: 'energy' as const,
       label: side === 'W' ? 'Feeder west' : 'Feeder east',
-      typed: true,
     })),
     ...SEGMENTS.map((one) => ({
       tag: `IP-${one.short}`,
@@ -129,6 +128,7 @@ function supplies(): Draft[] {
       lineId: 1,
       chainageM: 150 + index * 300,
       label: 'Bay fan',
+      typed: false,
     })),
   ]
 }
@@ -160,6 +160,21 @@ function gasAndOxygen(): Draft[] {
   ]
 }
 
+/** The bars at both ends of a segment, between which its resistance is measured before and after a bake. */
+function tubeEnds(): Draft[] {
+  return SEGMENTS.map((one) => ({
+    tag: `RE-${one.short}`,
+    kind: 'tube-ends',
+    quantity: 'resistance',
+    segmentId: one.id,
+    lineId: one.lineId,
+    chainageM: (one.startM + one.endM) / 2,
+    label: 'Between the bars at both ends',
+    logger: null,
+    typed: true,
+  }))
+}
+
 /** Every position of the demo. */
 export const POSITIONS: readonly DemoPosition[] = [
   ...gauges(),
@@ -181,6 +196,7 @@ export const POSITIONS: readonly DemoPosition[] = [
   ),
   ...supplies(),
   ...gasAndOxygen(),
+  ...tubeEnds(),
 ].map((draft, index) => ({ id: index + 1, ...draft }))
 
 /** Writes the positions. */

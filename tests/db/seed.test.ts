@@ -255,6 +255,29 @@ describe('fourteen months of the demo', () => {
     expect((await mean('18', '2026-11-05')) / (await mean('18', '2026-10-25'))).toBeCloseTo(1, 0)
   })
 
+  it('says of every typed reading who typed it, when and from what, and keeps it beside its value', async () => {
+    const row = await one(`SELECT COUNT(*) AS n, SUM(r.channel_id IS NOT NULL) AS held,
+      SUM(t.typed_at >= t.at AND t.instrument_text <> '') AS told, COUNT(DISTINCT c.quantity) AS quantities
+      FROM typed_reading t JOIN channel c ON c.id = t.channel_id LEFT JOIN reading r ON
+      r.channel_id = t.channel_id AND r.at = t.at AND r.seq = t.seq AND r.line_no = t.id AND r.import_id = 0`)
+    const [typed, held, told] = [row.n, row.held, row.told].map(Number)
+    expect(held).toBe(typed)
+    expect(told).toBe(typed)
+    // Pressure, temperature, stroke, oxygen, resistance, voltage, current.
+    expect(Number(row.quantities)).toBe(7)
+    const loose = await one(`SELECT COUNT(*) AS n FROM reading WHERE import_id = 0`)
+    expect(Number(loose.n)).toBe(typed)
+  })
+
+  it('has the resistance of SG-10 before and after its bake, both that of a cold tube', async () => {
+    const row = await one(`SELECT COUNT(*) AS n, MIN(r.value) AS low, MAX(r.value) AS high FROM reading r
+      JOIN channel c ON c.id = r.channel_id WHERE c.name = 'RE-10'`)
+    expect(Number(row.n)).toBe(2)
+    // 22.8 mΩ at 20 °C by the register.
+    expect(Number(row.low)).toBeGreaterThan(0.0222)
+    expect(Number(row.high)).toBeLessThan(0.0235)
+  })
+
   it('has no residual gas for the last night and the two temporary seals in the register', async () => {
     expect(
       (await one("SELECT COUNT(*) AS n FROM import_file WHERE file_name = 'NL-R_2026-11-08.csv'")).n,
