@@ -9,6 +9,7 @@ import { spawnSync } from 'node:child_process'
 import { type GasHistory, runTransport, type TransportRun } from '#app/physics/transport.ts'
 import { caseB, caseC, DAY_S, HOUR_S, longLine } from '#tests/fixtures/physics/benchmark-runs.ts'
 import { type Reference, type ReferenceAsk, startReference } from './reference-process.ts'
+import { benchWhatIf } from './what-if.ts'
 
 const PAIRS = 9
 /** Half a percent where p is above this counts as right, Pa. */
@@ -209,6 +210,8 @@ try {
 } finally {
   reference?.close()
 }
+
+await benchWhatIf()
 
 // In a process of its own, so that neither bench leaves the other its memory.
 const intake = spawnSync(process.execPath, ['--import', 'tsx', 'tests/bench/intake.ts'], { stdio: 'inherit' })
