@@ -155,9 +155,12 @@ function StepsPanel({ prediction, content, permits }: PageProps) {
           The ramp is not expected to get past its hold limit. Ramp slower, or look for a leak first.
         </p>
       )}
-      <p className="mt-2 text-sm text-ink-2">
-        {permits.length === 1 ? 'One permit covers the hot time.' : `${permits.length} permits in a chain.`}
-      </p>
+      {permits.map(({ number, fromH, toH }) => (
+        <p key={number} className="mt-2 text-sm text-ink-2">
+          {permits.length === 1 ? 'One permit covers the hot time' : `Permit ${number} of ${permits.length}`}:{' '}
+          {when(fromH)} to {when(toH)}.
+        </p>
+      ))}
       {content.remarks !== '' && <p className="mt-2 whitespace-pre-line">{content.remarks}</p>}
     </Panel>
   )
