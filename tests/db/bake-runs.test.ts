@@ -3,6 +3,8 @@ import { beforeEach, describe, expect, it } from 'vitest'
 import {
   bakeDeviation,
   limitValue,
+  pump,
+  pumpPlacement,
   reading,
   record,
   rollupDue,
@@ -301,5 +303,41 @@ describe('afterwards', () => {
     await expect(acceptOutgassing(db, engineer, MORNING, 'SG-10', null, 1)).rejects.toMatchObject({
       code: 'bad-input',
     })
+  })
+
+  it('offers hydrogen that explains the reading, and an engineer makes it the figure of the register', async () => {
+    const other = await bakedLongAgo(4e-8)
+    const [placed] = await db
+      .insert(pump)
+      .values({ tag: 'PX-10', kind: 'getter-ion', speeds: { H2: 1.2, N2: 0.4, H2O: 0.4 } })
+    await db.insert(pumpPlacement).values({
+      pumpId: placed.insertId,
+      segmentId: other.id,
+      offsetM: 75,
+      startsAt: new Date('2025-01-01T00:00:00Z'),
+      reason: 'for a test',
+    })
+    const before = await readBakeRunPage(db, 'SG-10', MORNING, null)
+    const offer = before.afterwards?.offer
+    if (offer === null || offer === undefined) throw new Error('nothing was offered')
+    expect(offer).toMatchObject({ field: 'hydrogenQ20', held: 4e-10 })
+    // 4e-10 Pa·m/s from 283 m² into 1.2 m³/s is 9.4e-8 Pa of hydrogen, 4.0e-8 Pa as nitrogen at a sensitivity of 0.42.
+    expect(offer.fitted / 4e-10).toBeGreaterThan(0.8)
+    expect(offer.fitted / 4e-10).toBeLessThan(1.25)
+    expect(offer.error / offer.fitted).toBeCloseTo(0.15, 2)
+
+    const revision = before.afterwards?.revision ?? 0
+    await expect(acceptOutgassing(db, technician, MORNING, 'SG-10', null, revision)).rejects.toMatchObject({
+      code: 'forbidden',
+    })
+    await acceptOutgassing(db, engineer, MORNING, 'SG-10', null, revision)
+    const [row] = await db.select().from(segmentTable).where(eq(segmentTable.id, other.id))
+    expect(row?.hydrogenQ20).toBe(Number(offer.fitted.toPrecision(3)))
+    expect(row?.hydrogenOrigin).toContain('Measured: HC-10B')
+    await expect(acceptOutgassing(db, engineer, MORNING, 'SG-10', null, revision)).rejects.toMatchObject({
+      code: 'conflict',
+    })
+    const after = await readBakeRunPage(db, 'SG-10', MORNING, null)
+    expect((after.afterwards?.offer?.fitted ?? 0) / offer.fitted).toBeCloseTo(1, 2)
   })
 })
