@@ -28,6 +28,8 @@ export const JOB_PAYLOADS = {
   }),
   /** Looks which forecasts of record have come true or not. */
   'judge-forecasts': z.strictObject({}),
+  /** Looks for places for the bakes of a schedule. */
+  'solve-schedule': z.strictObject({ scheduleId: z.int().positive() }),
   /** Makes rollups anew where readings have changed. */
   'roll-up': z.strictObject({}),
   /** Notes where the bakes under way have left their plans or limits. */

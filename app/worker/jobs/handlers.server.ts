@@ -8,6 +8,7 @@ import { purgeLeftovers } from './purge-leftovers.server.ts'
 import { purgeEndedSessions } from './purge-sessions.server.ts'
 import { readNightFile, takeInNightFile } from './read-night-file.server.ts'
 import { rollUp } from './rollup.server.ts'
+import { solveScheduleJob } from './solve-schedule.server.ts'
 
 export const JOB_HANDLERS: JobHandlers = {
   'feed-demo': feedDemo,
@@ -18,5 +19,6 @@ export const JOB_HANDLERS: JobHandlers = {
   'purge-leftovers': purgeLeftovers,
   'read-night-file': readNightFile,
   'roll-up': rollUp,
+  'solve-schedule': solveScheduleJob,
   'take-in-night-file': takeInNightFile,
 }
