@@ -88,7 +88,7 @@ export async function readForecastsPage(db: Db, now: Date): Promise<ForecastsPag
     outlookOf({ ...segment, verdict: standing.verdict }, durations, now),
   )
   const trends = new Map<string, SegmentTrend>()
-  for (const one of standings.filter(({ segment }) => segment.state === 'in-service')) {
+  for (const one of standings.filter(isQuietlyInService)) {
     const trend = await trendOf(db, one, now)
     if (trend !== null) trends.set(one.segment.tag, trend)
   }
@@ -116,6 +116,11 @@ export async function readForecastsPage(db: Db, now: Date): Promise<ForecastsPag
     },
     ...record,
   }
+}
+
+/** A reading under question, such as one of crossed channels, has no trend worth naming. */
+function isQuietlyInService({ segment, standing }: StandingSegment): boolean {
+  return segment.state === 'in-service' && standing.questions.length === 0
 }
 
 function isOpen(state: SegmentState, verdict: Verdict): boolean {

@@ -23,7 +23,11 @@ const COLUMNS: readonly Column<ForecastLine>[] = [
     ),
   },
   { key: 'now', head: 'Reads', align: 'right', cell: ({ paNow }) => <Pressure pa={paNow} /> },
-  { key: 'next', head: 'On the way', cell: ({ toNext }) => <OutcomeCell outcome={toNext} /> },
+  {
+    key: 'next',
+    head: 'On the way',
+    cell: ({ state, toNext }) => (state === 'pumping' ? <OutcomeCell outcome={toNext} /> : 'not pumped down'),
+  },
   {
     key: 'target',
     head: 'Target',
