@@ -102,6 +102,15 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: STAFF, status: 404 },
     POST: { who: ['technician', 'engineer'], status: 400 },
   },
+  '/bakes/schedule': { GET: { who: STAFF, status: 200 }, POST: { who: ['engineer'], status: 400 } },
+  '/bakes/schedule/:scheduleId/schedule.csv': {
+    path: '/bakes/schedule/999/schedule.csv',
+    GET: { who: STAFF, status: 404 },
+  },
+  '/bakes/schedule/:scheduleId/schedule.ics': {
+    path: '/bakes/schedule/999/schedule.ics',
+    GET: { who: STAFF, status: 404 },
+  },
   '/bakes/plans/:planId/plan.csv': { path: '/bakes/plans/999/plan.csv', GET: { who: STAFF, status: 404 } },
   '/bakes/plans/:planId/plan.ics': { path: '/bakes/plans/999/plan.ics', GET: { who: STAFF, status: 404 } },
   '/logbook': { GET: { who: ROLES, status: 200 } },
