@@ -11,7 +11,7 @@ import {
 } from '#app/domain/schemas/api-answers.ts'
 import { POST_LIMITS, PostSchema } from '#app/domain/schemas/live-readings.ts'
 
-export interface ApiLimits {
+interface ApiLimits {
   fileMib: number
   postsPerMinute: number
 }
