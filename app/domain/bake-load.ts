@@ -59,7 +59,7 @@ export function powerW(
 }
 
 /** End-to-end resistance at a temperature, Ω: the register's value at 20 °C carried on by the law of the steel. */
-export function resistanceOhm(segment: Pick<BakedSegment, 'resistance20Ohm'>, celsius: number): number {
+function resistanceOhm(segment: Pick<BakedSegment, 'resistance20Ohm'>, celsius: number): number {
   return (
     (segment.resistance20Ohm * steelResistivity(celsiusToKelvin(celsius))) / steelResistivity(REFERENCE_K)
   )
@@ -86,7 +86,7 @@ export function ampsAndVolts(
 }
 
 /** A heating programme; `downKH` null lets the tube cool by itself. */
-export interface HeatProgramme {
+interface HeatProgramme {
   celsius: number
   upKH: number
   holdHours: number

@@ -42,7 +42,7 @@ export interface OutcomeBands {
 }
 
 /** What the register says of the figures behind a model. */
-export interface Knowledge {
+interface Knowledge {
   waterAssumed: boolean
   hydrogenAssumed: boolean
   toleranceK: number

@@ -34,7 +34,7 @@ export interface OptionSite {
   feeders: Readonly<Record<Feeder, number | null>>
 }
 
-export type DemandKind = 'part' | 'stroke' | 'current' | 'voltage' | 'power' | 'feeder'
+type DemandKind = 'part' | 'stroke' | 'current' | 'voltage' | 'power' | 'feeder'
 
 /** One thing that a bake asks for, and the most that can be given. */
 export interface Demand {
@@ -106,7 +106,7 @@ function partDemands(segments: readonly Heated[], ambientC: number, celsius: num
 }
 
 /** Temperature that a part reaches with the tube at `celsius`. */
-export function reachedBy(part: Pick<OptionPart, 'riseShare'>, ambientC: number, celsius: number): number {
+function reachedBy(part: Pick<OptionPart, 'riseShare'>, ambientC: number, celsius: number): number {
   return ambientC + part.riseShare * (celsius - ambientC)
 }
 

@@ -134,7 +134,7 @@ function pumpedAlike(
   return unitPressure({ ...model, pumps: afterPumps }, gas, atM) / unitPressure(model, gas, atM)
 }
 
-export interface ConfirmedSoak {
+interface ConfirmedSoak {
   soakHours: number
   /** In the order of the segments. */
   outcomes: SolvedOutcome[]

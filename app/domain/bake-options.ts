@@ -68,7 +68,7 @@ export interface BakeOptionRow {
   solves: number
 }
 
-export type LeftReason = Demand['kind'] | 'target' | 'unconfirmed' | 'beaten'
+type LeftReason = Demand['kind'] | 'target' | 'unconfirmed' | 'beaten'
 
 export interface LeftOut {
   celsius: number
@@ -127,7 +127,11 @@ function* confirmedRows(
   const rows = new Map<number, BakeOptionRow>()
   let pool = screened
   for (;;) {
-    const next = pool.find((one) => !rows.has(one.celsius) && !pool.some((other) => beats(other, one)))
+    // A confirmed row is weighed by what came out of it, the others by what the closed forms promise.
+    const open = pool.filter(
+      (one) => !rows.has(one.celsius) && ![...rows.values()].some((row) => beats(row, one)),
+    )
+    const next = open.find((one) => !open.some((other) => beats(other, one)))
     if (next === undefined) break
     const { celsius, path } = next
     const confirmed = yield* confirmSoak(solved, path, question.targetPa, solve)
@@ -142,7 +146,7 @@ function* confirmedRows(
   }
   const found = [...rows.values()]
   for (const one of pool) {
-    const better = rows.has(one.celsius) ? undefined : (found.find((row) => beats(row, one)) ?? found[0])
+    const better = rows.has(one.celsius) ? undefined : found.find((row) => beats(row, one))
     if (better !== undefined) left.push(beaten(one, better))
   }
   return found.filter((one) => {
@@ -191,7 +195,7 @@ function screen(
       words: `At ${celsius} °C a year of soak would not bring ${segments[missing]?.baked.tag} to the target; a hotter bake or a higher target would.`,
     }
   }
-  const soakHours = Math.max(...holds.map((hours) => hours ?? 0))
+  const soakHours = Math.max(...holds.map((hours) => Math.ceil(hours ?? 0)))
   return { celsius, path, ...costs(question, solved, path, soakHours) }
 }
 

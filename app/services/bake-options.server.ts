@@ -16,7 +16,7 @@ import type { PlannedSegment } from '../domain/bake-plan-prediction.ts'
 import { FEEDERS, type LimitKind, type PositionKind, VALVE_KIND_LABELS } from '../domain/register.ts'
 import { SEGMENT_STATES } from '../domain/segment-states.ts'
 import { type BakedPart, PART_LIMITS } from '../physics/component-limits.ts'
-import { unitPressure } from '../physics/segment-gas.ts'
+import { airPressure, unitPressure } from '../physics/segment-gas.ts'
 import { plannedSegments } from './bake-plans-facts.server.ts'
 import { hydrogenExcess, scaleHydrogen } from './segment-model.server.ts'
 import { crossOf } from './segment-page.server.ts'
@@ -148,13 +148,12 @@ async function optionSegment(
   if (planned === undefined || planned.hot === null) return null
   const { baked, hot: onCart, after, coldHours } = planned
   const later = after ?? onCart
-  const times = hydrogenExcess(later, crossOf(standing))
-  const hot = {
-    ...onCart,
-    hydrogen: scaleHydrogen(onCart.hydrogen, times),
-    // Where a leak is not known it is taken at the end, where it counts for most.
-    ...(leakPaM3S > 0 ? { airLeaks: [{ atM: 0, qPaM3S: leakPaM3S }] } : {}),
-  }
+  // Where the leak lies is not known: it is taken at the end, where it counts for most.
+  const leaks = leakPaM3S > 0 ? { airLeaks: [{ atM: 0, qPaM3S: leakPaM3S }] } : {}
+  const cross = crossOf(standing)
+  const airPa = airPressure({ ...later, ...leaks }, later.pumps[0]?.atM ?? 0)
+  const times = hydrogenExcess(later, cross === null ? null : Math.max(0, cross - airPa))
+  const hot = { ...onCart, hydrogen: scaleHydrogen(onCart.hydrogen, times), ...leaks }
   const { segment, gauges } = standing
   const places = gauges
     .filter(({ position }) => position.kind === 'hot-cathode')

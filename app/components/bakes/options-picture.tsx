@@ -18,7 +18,7 @@ const SMALLEST = 4
 /** Times that a mark may stand at, h. */
 const TIME_MARKS = [6, 12, 24, 48, 96, 168, 336, 720, 1440, 2880, 8766]
 
-export function OptionsPicture({ rows, chosen }: { rows: readonly BakeOptionRow[]; chosen?: number }) {
+export function OptionsPicture({ rows }: { rows: readonly BakeOptionRow[] }) {
   const [first] = rows
   if (first === undefined) return null
   const shortest = Math.min(...rows.map(({ totalHours }) => totalHours))
@@ -48,7 +48,7 @@ export function OptionsPicture({ rows, chosen }: { rows: readonly BakeOptionRow[
     >
       <svg
         viewBox={`0 0 ${WIDTH} ${HEIGHT}`}
-        className="w-full min-w-[30rem]"
+        className="w-full min-w-[30rem] max-w-[54rem]"
         role="img"
         aria-label={pictureWords(rows)}
       >
@@ -88,7 +88,7 @@ export function OptionsPicture({ rows, chosen }: { rows: readonly BakeOptionRow[
             cx={across(totalHours)}
             cy={up(celsius)}
             r={SMALLEST + (LARGEST - SMALLEST) * Math.sqrt(energyKWh / most)}
-            className={`stroke-ink stroke-[1.5] ${celsius === chosen ? 'fill-heat' : 'fill-heat-soft'}`}
+            className="fill-heat-soft stroke-ink stroke-[1.5]"
           >
             <title>
               {celsius} °C: {hoursText(totalHours)}, {energyText(energyKWh)}

@@ -107,12 +107,12 @@ function soakText(hours: number): string {
 
 function Tightest({ what, uses, limit, unit, share }: Demand) {
   return (
-    <>
+    <span className="block min-w-48">
       {what}
       <span className="block text-sm text-ink-3">
         {figure(uses, unit)} of {figure(limit, unit)}, {Math.round(share * 100)} % used
       </span>
-    </>
+    </span>
   )
 }
 
@@ -126,7 +126,7 @@ export function AfterTable({ rows }: { rows: readonly BakeOptionRow[] }) {
   const { unit } = useSite()
   const columns: Column<After>[] = [
     { key: 'celsius', head: 'Bake', rowHead: true, cell: ({ row }) => `${row.celsius} °C` },
-    { key: 'gauge', head: 'At', cell: ({ outcome }) => outcome.gauge },
+    { key: 'gauge', head: 'At', nowrap: true, cell: ({ outcome }) => outcome.gauge },
     {
       key: 'n2',
       head: `Reading, ${unit} N₂`,

@@ -78,6 +78,18 @@ describe('options of one segment', () => {
     }
   })
 
+  test('what is left out as beaten is beaten by a row that is shown, in the figures shown', () => {
+    const beaten = answer.left.filter(({ reason }) => reason === 'beaten')
+    expect(beaten.length).toBeGreaterThan(2)
+    for (const { celsius, words } of beaten) {
+      const by = answer.rows.find((row) => words.startsWith(`${row.celsius} °C gets there`))
+      expect(by?.celsius).toBeLessThan(celsius)
+      const [, hours = '0', kWh = '0'] = /would take (\d+) h and (\d+) kWh/.exec(words) ?? []
+      expect(by?.totalHours).toBeLessThanOrEqual(Number(hours) + 0.5)
+      expect(by?.energyKWh).toBeLessThanOrEqual(Number(kWh) + 0.5)
+    }
+  })
+
   test('above 150 °C the metal gate valve binds, by its own name', () => {
     const over = answer.left.filter(({ celsius }) => celsius > 150)
     expect(over).toHaveLength(10)
@@ -121,6 +133,32 @@ describe('options of one segment', () => {
     expect(off?.up).toBeGreaterThan(1.8)
     expect(off?.up).toBeLessThan(4)
     expect((bands?.water.highPa ?? 0) / (row?.outcomes[0]?.waterPa ?? 1)).toBeGreaterThan(off?.up ?? 99)
+  })
+})
+
+describe('full solutions that disagree', () => {
+  test('never meeting the target, they end the row after at most five, and the next temperature is tried', () => {
+    const counts = new Map<number, number>()
+    const answer = bakeOptions(question({ coolestC: 100, hottestC: 110 }), (segment, path, hours) => {
+      counts.set(path.celsius, (counts.get(path.celsius) ?? 0) + 1)
+      const outcome = fullOutcome(segment, path, hours)
+      return path.celsius < 110 ? { ...outcome, n2EquivalentPa: 2.1e-7 } : outcome
+    })
+    expect(answer.rows.map(({ celsius }) => celsius)).toEqual([110])
+    expect(answer.left.map(({ reason }) => reason)).toEqual(['unconfirmed', 'unconfirmed'])
+    for (const count of counts.values()) expect(count).toBeLessThanOrEqual(MOST_SOLVES)
+  })
+
+  test('reading a quarter more than the closed forms, they lengthen the soak', () => {
+    const at = { coolestC: 80, hottestC: 80 }
+    const plain = bakeOptions(question(at)).rows[0]
+    const more = bakeOptions(question(at), (segment, path, hours) => {
+      const outcome = fullOutcome(segment, path, hours)
+      return { ...outcome, n2EquivalentPa: 1.25 * outcome.n2EquivalentPa }
+    }).rows[0]
+    expect(more?.soakHours).toBeGreaterThan(1.2 * (plain?.soakHours ?? Infinity))
+    expect(more?.outcomes[0]?.n2EquivalentPa).toBeLessThanOrEqual(2e-7)
+    expect(more?.solves).toBeGreaterThan(1)
   })
 })
 
