@@ -2,6 +2,7 @@ import { eq } from 'drizzle-orm'
 import { expect, test, vi } from 'vitest'
 import { job } from '#app/db/schema/index.ts'
 import { tx } from '#app/db/transaction.server.ts'
+import { JOB_PAYLOADS } from '#app/domain/job-kinds.ts'
 import {
   type ClaimedJob,
   claimJob,
@@ -30,17 +31,8 @@ function ask(options: { runAt?: Date; uniqueKey?: string; maxAttempts?: number }
 /** Handlers of which only purge-sessions is expected to be called. */
 function handlers(work: JobHandlers['purge-sessions']): JobHandlers {
   const unexpected = () => Promise.reject(new Error('not expected in this test'))
-  return {
-    'feed-demo': unexpected,
-    'purge-sessions': work,
-    'partition-readings': unexpected,
-    'read-night-file': unexpected,
-    'roll-up': unexpected,
-    'take-in-night-file': unexpected,
-    'purge-leftovers': unexpected,
-    'judge-forecasts': unexpected,
-    'note-deviations': unexpected,
-  }
+  const none = Object.fromEntries(Object.keys(JOB_PAYLOADS).map((kind) => [kind, unexpected]))
+  return { ...(none as unknown as JobHandlers), 'purge-sessions': work }
 }
 
 function held(claimed: ClaimedJob | null): ClaimedJob {

@@ -37,10 +37,9 @@ export function SchedulePicture(props: PictureProps) {
       <svg
         viewBox={`0 0 ${WIDTH} ${rowsEnd + POWER + 20}`}
         className="w-full min-w-[640px] text-ink"
-        role="group"
         aria-label="Bakes by day, and power by hour. The table below says the same in words."
       >
-        {Array.from({ length: days }, (_, day) => (
+        {Array.from({ length: days }, (_, day) => day).map((day) => (
           <g key={day}>
             <line
               x1={x(day * DAY_H)}
