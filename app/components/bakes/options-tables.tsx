@@ -154,7 +154,7 @@ export function AfterTable({ rows }: { rows: readonly BakeOptionRow[] }) {
     },
     {
       key: 'sure',
-      head: 'Soak if every doubt goes against it',
+      head: 'Soak that brings the whole band to the target',
       align: 'right',
       cell: ({ row }) => (row.sureSoakHours === null ? 'more than a year' : soakText(row.sureSoakHours)),
     },
