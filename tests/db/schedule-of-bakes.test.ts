@@ -114,7 +114,8 @@ test('the worker places the bakes, a person moves one and is told what breaks, a
   const solved = await shown(id)
   expect(solved.state).toBe('solved')
   expect(solved.outcome?.gap).toBeLessThan(0.2)
-  const [first, second] = solved.placements
+  const of = (planId: number | undefined) => solved.placements.find(({ jobId }) => jobId === String(planId))
+  const [first, second] = planIds.map(of)
   // One supply set: the second waits until the first gives it back.
   const [sooner = 0, later = 0] = [first?.startH ?? 0, second?.startH ?? 0].sort((a, b) => a - b)
   expect(later - sooner).toBeGreaterThanOrEqual(100 + 13 + 4)
