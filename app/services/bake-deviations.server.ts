@@ -87,12 +87,11 @@ export async function noteDeviation(
  * @returns how many deviations stand for the bakes under way
  */
 export async function noteOwnDeviations(db: Db, now: Date): Promise<number> {
-  const { ambientC } = await getSite(db)
   let count = 0
   for (const segment of await listSegments(db, now)) {
     const bake = bakesIn(await listStates(db, segment.id))[0]
     if (bake === undefined || bake.phase === 'over') continue
-    count += await noteDeviationsOf(db, segment, bake, now, ambientC)
+    count += await noteDeviationsOf(db, segment, bake, now)
   }
   return count
 }
@@ -103,8 +102,8 @@ export async function noteDeviationsOf(
   segment: SegmentWithState,
   bake: FoundBake,
   now: Date,
-  ambientC: number,
 ): Promise<number> {
+  const { ambientC } = await getSite(db)
   const plan = await planOf(db, segment.id, bake)
   const terms = await termsOf(db, segment.id, plan, bake.heatingFrom)
   if (terms === null) return 0

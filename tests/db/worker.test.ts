@@ -3,6 +3,7 @@ import { expect, onTestFinished, test, vi } from 'vitest'
 import { connect } from '#app/db/client.server.ts'
 import { job, productClock, scheduleOwner, session } from '#app/db/schema/index.ts'
 import { tx } from '#app/db/transaction.server.ts'
+import { JOB_PAYLOADS, SCHEDULED_TASKS } from '#app/domain/job-kinds.ts'
 import { drainJobs, enqueue, type JobHandlers, purgeJobs } from '#app/services/jobs.server.ts'
 import { runSchedule } from '#app/services/schedule.server.ts'
 import { JOB_HANDLERS } from '#app/worker/jobs/handlers.server.ts'
@@ -21,13 +22,9 @@ function startWorker(handlers: Partial<JobHandlers> = {}) {
     signal: stop.signal,
     db,
     handlers: {
-      'feed-demo': quiet,
-      'partition-readings': quiet,
-      'purge-leftovers': quiet,
-      'purge-sessions': quiet,
-      'read-night-file': quiet,
-      'roll-up': quiet,
-      'take-in-night-file': quiet,
+      ...(Object.fromEntries(
+        Object.keys(JOB_PAYLOADS).map((kind) => [kind, quiet]),
+      ) as unknown as JobHandlers),
       ...handlers,
     },
   })
@@ -44,7 +41,7 @@ test('the worker does what the schedule asks for, keeps the clock and hands the 
   await vi.waitFor(
     async () => {
       const rows = await db.select({ state: job.state }).from(job)
-      expect(rows.map(({ state }) => state)).toEqual(['done', 'done', 'done', 'done'])
+      expect(rows.map(({ state }) => state)).toEqual(SCHEDULED_TASKS.map(() => 'done'))
     },
     { timeout: 10_000 },
   )
@@ -59,7 +56,9 @@ test('the worker does what the schedule asks for, keeps the clock and hands the 
 test('a worker that starts after a night off goes on from the time last seen', async () => {
   await createClock(db, { baseMachineAt: after(new Date(), -43_200) })
   const worker = startWorker()
-  await vi.waitFor(async () => expect(await db.select().from(job)).toHaveLength(4), { timeout: 10_000 })
+  await vi.waitFor(async () => expect(await db.select().from(job)).toHaveLength(SCHEDULED_TASKS.length), {
+    timeout: 10_000,
+  })
   worker.stop()
   await worker.running
   const [clock] = await db.select().from(productClock)
@@ -133,7 +132,12 @@ test('the real handlers do every job of the schedule', async () => {
     { ...row, tokenHash: 'idle', lastSeenAt: after(machine, -13 * 3600), expiresAt: after(machine, 3600) },
   ])
   await runSchedule(db, 'test', MORNING, { machine })
-  expect(await drainJobs(db, JOB_HANDLERS)).toEqual({ done: 4, again: 0, failed: 0, lost: 0 })
+  expect(await drainJobs(db, JOB_HANDLERS)).toEqual({
+    done: SCHEDULED_TASKS.length,
+    again: 0,
+    failed: 0,
+    lost: 0,
+  })
   const left = await db.select({ tokenHash: session.tokenHash }).from(session)
   expect(left).toEqual([{ tokenHash: 'live' }])
 })

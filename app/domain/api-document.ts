@@ -1,6 +1,6 @@
 /** The description of the API as an OpenAPI 3.1 document, made from the schemas that the routes go by. */
 import { z } from 'zod'
-import { ERROR_STATUS } from '#app/domain/errors.ts'
+import { ERROR_STATUS } from './errors.ts'
 import {
   FileAnswerSchema,
   FileProblemSchema,
@@ -8,8 +8,8 @@ import {
   PostProblemSchema,
   ProblemSchema,
   RequestKeySchema,
-} from '#app/domain/schemas/api-answers.ts'
-import { POST_LIMITS, PostSchema } from '#app/domain/schemas/live-readings.ts'
+} from './schemas/api-answers.ts'
+import { POST_LIMITS, PostSchema } from './schemas/live-readings.ts'
 
 interface ApiLimits {
   fileMib: number
