@@ -1,10 +1,18 @@
 /** The checklist of a plan. What records show cannot be ticked; each tick is a form of its own, so that it needs no script. */
-import { Form } from 'react-router'
+import { Form, Link } from 'react-router'
 import type { ReadinessItem } from '#app/domain/bake-plan-readiness.ts'
 import { Button } from '../ui/button.tsx'
 import { Instant } from '../ui/instant.tsx'
 
-export function PlanChecklist({ items, mayTick }: { items: readonly ReadinessItem[]; mayTick: boolean }) {
+interface PlanChecklistProps {
+  planId: number
+  items: readonly ReadinessItem[]
+  /** Whether the reader works at the tube: ticks, tests and log entries are theirs. */
+  mayTick: boolean
+  mayPlan: boolean
+}
+
+export function PlanChecklist({ items, ...who }: PlanChecklistProps) {
   const parts = [
     { kind: 'computed', title: 'What the records show' },
     { kind: 'ticked', title: 'What is done by hand' },
@@ -18,7 +26,7 @@ export function PlanChecklist({ items, mayTick }: { items: readonly ReadinessIte
             {items
               .filter((item) => item.kind === kind)
               .map((item) => (
-                <Item key={item.key} item={item} mayTick={mayTick} />
+                <Item key={item.key} item={item} {...who} />
               ))}
           </ul>
         </section>
@@ -27,8 +35,22 @@ export function PlanChecklist({ items, mayTick }: { items: readonly ReadinessIte
   )
 }
 
-function Item({ item, mayTick }: { item: ReadinessItem; mayTick: boolean }) {
+/** Where a missing item is mended; null where that is no page, or not for this reader. */
+function remedyOf(key: string, { planId, mayTick, mayPlan }: Omit<PlanChecklistProps, 'items'>) {
+  const [, what, tag] = /^(leak-checked|isolation-test)-(.+)$/.exec(key) ?? []
+  if (what === 'leak-checked' && mayTick)
+    return { to: `/logbook/new?segment=${tag}`, words: 'Write the entry' }
+  if (what === 'isolation-test' && mayTick)
+    return { to: `/segments/${tag}/isolation-tests/new`, words: `Test ${tag}` }
+  if (['supply', 'cart-named', 'electrician'].includes(key) && mayPlan)
+    return { to: `/bakes/plans/new?of=${planId}`, words: 'Change the plan' }
+  return null
+}
+
+function Item({ item, ...who }: { item: ReadinessItem } & Omit<PlanChecklistProps, 'items'>) {
   const { key, label, kind, met, blocking, detail, at } = item
+  const { mayTick } = who
+  const remedy = met ? null : remedyOf(key, who)
   return (
     <li className="flex gap-2.5 border-b border-rule-2 py-2">
       <Mark met={met} blocking={blocking} />
@@ -44,6 +66,11 @@ function Item({ item, mayTick }: { item: ReadinessItem; mayTick: boolean }) {
               </>
             )}
           </p>
+        )}
+        {remedy !== null && (
+          <Link to={remedy.to} className="link text-sm print:hidden">
+            {remedy.words}
+          </Link>
         )}
       </div>
       {kind === 'ticked' && mayTick && (

@@ -32,6 +32,7 @@ export function PlanPage(props: PageProps) {
         actions={
           <>
             {may.plan && <ButtonLink to={`/bakes/plans/new?of=${id}`}>New version</ButtonLink>}
+            <ButtonLink to="/bakes/schedule">Schedule</ButtonLink>
             <ButtonLink to={`/bakes/plans/${id}/plan.csv`} reloadDocument>
               CSV
             </ButtonLink>
@@ -67,7 +68,7 @@ export function PlanPage(props: PageProps) {
       </div>
       {props.checklist.length > 0 && (
         <Panel title="Before it may be signed">
-          <PlanChecklist items={props.checklist} mayTick={may.tick} />
+          <PlanChecklist planId={id} items={props.checklist} mayTick={may.tick} mayPlan={may.plan} />
         </Panel>
       )}
       <div className="grid gap-x-4.5 lg:grid-cols-2 print:hidden">

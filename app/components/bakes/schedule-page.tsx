@@ -1,6 +1,6 @@
 /** The schedule of bakes: the picture, what breaks, and the forms that make, move and choose. */
 import { useEffect, useState } from 'react'
-import { Form, useNavigation, useRevalidator } from 'react-router'
+import { Form, Link, useNavigation, useRevalidator } from 'react-router'
 import { SCHEDULE_OBJECTIVES, type ScheduleState } from '#app/domain/planning.ts'
 import { OBJECTIVE_FACTS } from '#app/domain/schedule/objectives.ts'
 import type { Placement } from '#app/domain/schedule/problem.ts'
@@ -40,6 +40,11 @@ export function SchedulePage({
     <>
       <PageHead
         title={shown === null ? 'Schedule of bakes' : `Schedule: ${shown.title}`}
+        crumbs={
+          <Link to="/bakes" className="link">
+            Bakes
+          </Link>
+        }
         actions={
           shown !== null && (
             <>
@@ -390,7 +395,15 @@ function NewSchedule({
         />
         <fieldset>
           <legend className="font-medium">Plans</legend>
-          {plans.length === 0 && <p>No plan is open. Make one first.</p>}
+          {plans.length === 0 && (
+            <p>
+              No plan is open.{' '}
+              <Link to="/bakes/plans/new" className="link">
+                Make one first
+              </Link>
+              .
+            </p>
+          )}
           {plans.map(({ id, title, segments }) => (
             <CheckField
               key={id}

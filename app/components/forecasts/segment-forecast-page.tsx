@@ -21,6 +21,8 @@ export interface SegmentForecastPageProps extends ForecastDetail {
   /** The question as typed into the address, and what of it could not be read. */
   asked: { typed: Readonly<Record<string, string>>; fields: Readonly<Record<string, string[]>> }
   mayRecord: boolean
+  /** Whether the reader may record an isolation test. */
+  mayTest: boolean
   zone: string
   failure: ActionFailure | undefined
 }
@@ -57,7 +59,7 @@ export function SegmentForecastPage(props: SegmentForecastPageProps) {
   )
 }
 
-function NoForecast({ state, trend, targetPa }: SegmentForecastPageProps) {
+function NoForecast({ tag, state, trend, targetPa, mayTest }: SegmentForecastPageProps) {
   return (
     <Panel title="No forecast">
       <p>
@@ -74,11 +76,19 @@ function NoForecast({ state, trend, targetPa }: SegmentForecastPageProps) {
         </p>
       )}
       {trend?.paNow != null && targetPa !== null && trend.paNow > targetPa && (
-        <p className="mt-2">
-          Waiting does not bring it to its target. What binds is a constant load: hydrogen from the steel,
-          which a bake drives out, or a leak, which has to be found. An isolation test and a leak check tell
-          which.
-        </p>
+        <>
+          <p className="mt-2">
+            Waiting does not bring it to its target. What binds is a constant load: hydrogen from the steel,
+            which a bake drives out, or a leak, which has to be found. An isolation test and a leak check tell
+            which.
+          </p>
+          <div className="mt-3 flex flex-wrap gap-2 print:hidden">
+            {mayTest && (
+              <ButtonLink to={`/segments/${tag}/isolation-tests/new`}>Isolation test of {tag}</ButtonLink>
+            )}
+            <ButtonLink to={`/bakes/options?segments=${tag}`}>Options for a bake of {tag}</ButtonLink>
+          </div>
+        </>
       )}
     </Panel>
   )
@@ -95,6 +105,15 @@ function WithForecast(props: SegmentForecastPageProps & { forecast: SegmentForec
           {binding !== null && <p className="mt-2">{binding.text}</p>}
           {inService?.binding != null && (
             <p className="mt-2">For the target in service: {inService.binding.text}</p>
+          )}
+          {[binding, inService?.binding].some(
+            (one) => one?.binds === 'hydrogen' || one?.binds === 'water',
+          ) && (
+            <p className="mt-2 print:hidden">
+              <Link to={`/bakes/options?segments=${tag}`} className="link">
+                Options for a bake of {tag}
+              </Link>
+            </p>
           )}
         </Panel>
         <Panel title="Pump-down">

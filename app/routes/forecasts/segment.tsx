@@ -24,7 +24,13 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
   const typed = Object.fromEntries(url.searchParams)
   const { ask, fields } = readAsk(typed, zone)
   const detail = await orRefuse(readForecastDetail(getDb(), params.tag, nowOf(context), ask))
-  return { ...detail, asked: { typed, fields }, mayRecord: may(actor, 'forecast:record'), zone }
+  return {
+    ...detail,
+    asked: { typed, fields },
+    mayRecord: may(actor, 'forecast:record'),
+    mayTest: may(actor, 'isolation-test:record'),
+    zone,
+  }
 }
 
 /** What was asked; what cannot be read is named beside its field, and the question answered without it. */
