@@ -32,9 +32,11 @@ import {
 import { DomainError } from '../domain/errors.ts'
 import { instantText } from '../domain/instant-text.ts'
 import type { IsolationTestState } from '../domain/planning.ts'
-import { coldModel } from './segment-model.server.ts'
+import type { SegmentModel } from '../physics/predict.ts'
+import { coldModel, hydrogenExcess, scaleHydrogen } from './segment-model.server.ts'
+import { crossOf } from './segment-page.server.ts'
 import { getSite } from './site.server.ts'
-import { limitFor } from './standing.server.ts'
+import { limitFor, readStandings } from './standing.server.ts'
 
 const HOUR_MS = 3_600_000
 
@@ -190,7 +192,21 @@ export async function predictFromRegister(
 ): Promise<PlanPrediction> {
   const segments = await planSegments(db, content.segments, now)
   const { ambientC } = await getSite(db)
-  return predictPlan(content, await plannedSegments(db, content, segments, now), ambientC)
+  const planned = await plannedSegments(db, content, segments, now)
+  const scaled = await Promise.all(planned.map((one) => scaledToReading(db, one, now)))
+  return predictPlan(content, scaled, ambientC)
+}
+
+/** A baked segment that reads above its model gives more hydrogen than the register says: as the bake options take it. */
+async function scaledToReading(db: DbOrTx, planned: PlannedSegment, now: Date): Promise<PlannedSegment> {
+  const { hot, after } = planned
+  const later = after ?? hot
+  if (later === null) return planned
+  const [standing] = await readStandings(db, now, planned.baked.tag)
+  const times = hydrogenExcess(later, standing === undefined ? null : crossOf(standing))
+  const scaled = (model: SegmentModel | null) =>
+    model === null ? null : { ...model, hydrogen: scaleHydrogen(model.hydrogen, times) }
+  return times === 1 ? planned : { ...planned, hot: scaled(hot), after: scaled(after) }
 }
 
 /** Everything the checklist of a plan is judged by, at an instant. */
