@@ -142,7 +142,12 @@ function Remarks({ asked }: { asked: NonNullable<BakeOptionsPage['asked']> }) {
       {asked.excess.map(({ segment, times }) => (
         <Notice key={segment} tone="warn">
           {segment} reads {times.toFixed(1)} times what the register's hydrogen gives. All of that is taken
-          for hydrogen here. A leak would not yield to a bake: find out which it is first.
+          for hydrogen here. A leak would not yield to a bake: find out which it is first, by the isolation
+          tests of{' '}
+          <Link to={`/segments/${segment}`} className="link">
+            {segment}
+          </Link>
+          .
         </Notice>
       ))}
     </>

@@ -90,9 +90,8 @@ export function OptionsPicture({ rows }: { rows: readonly BakeOptionRow[] }) {
             r={SMALLEST + (LARGEST - SMALLEST) * Math.sqrt(energyKWh / most)}
             className="fill-heat-soft stroke-ink stroke-[1.5]"
           >
-            <title>
-              {celsius} °C: {hoursText(totalHours)}, {energyText(energyKWh)}
-            </title>
+            {/* One string: the server writes a title of several parts empty, and the page's code then finds a difference. */}
+            <title>{`${celsius} °C: ${hoursText(totalHours)}, ${energyText(energyKWh)}`}</title>
           </circle>
         ))}
       </svg>
