@@ -1,4 +1,4 @@
-/** A database with the demo facility for each browser test file: seeded once a server, then copied inside it. */
+/** A database with the demo facility for the tests that look at it: seeded once a server, then copied inside it. */
 import { execFile } from 'node:child_process'
 import { createHash } from 'node:crypto'
 import { readdirSync, readFileSync } from 'node:fs'
@@ -7,6 +7,10 @@ import { promisify } from 'node:util'
 import mysql from 'mysql2/promise'
 
 const PREFIX = 'ebbline_demo_'
+/** What decides on the demo's content. */
+const MADE_FROM = ['seeds', 'drizzle', 'app/physics', 'app/domain', 'app/db', 'app/services']
+/** The longest a test waits for another one that seeds, in seconds. */
+const SEEDED_WITHIN_S = 600
 const run = promisify(execFile)
 
 type Rows = Record<string, string>[]
@@ -16,6 +20,21 @@ type Rows = Record<string, string>[]
  * TEST_DATABASE_URL.
  */
 export async function demoDatabase(name: string): Promise<string> {
+  return await onServer(async (connection, url) => {
+    const original = await oneAtATime(connection, () => ensureOriginal(connection, url))
+    await copyDatabase(connection, original, name)
+    return addressOf(url, name)
+  })
+}
+
+/** The address of the demo that the copies are made from, for tests that only look. */
+export async function seededDemo(): Promise<string> {
+  return await onServer(async (connection, url) =>
+    addressOf(url, await oneAtATime(connection, () => ensureOriginal(connection, url))),
+  )
+}
+
+async function onServer(work: (connection: mysql.Connection, url: URL) => Promise<string>): Promise<string> {
   const server = process.env.TEST_DATABASE_URL
   if (server === undefined || server === '') {
     throw new Error(
@@ -30,18 +49,31 @@ export async function demoDatabase(name: string): Promise<string> {
     password: decodeURIComponent(url.password),
   })
   try {
-    const original = await ensureOriginal(connection, url)
-    await copyDatabase(connection, original, name)
+    return await work(connection, url)
   } finally {
     await connection.end()
   }
-  return addressOf(url, name)
+}
+
+/** Two test files that ask at once are two processes: the second waits until the first has seeded. */
+async function oneAtATime<Made>(connection: mysql.Connection, make: () => Promise<Made>): Promise<Made> {
+  const [lock] = await rowsOf(connection, 'SELECT GET_LOCK(?, ?) AS got', [PREFIX, SEEDED_WITHIN_S])
+  if (Number(lock?.got) !== 1) {
+    throw new Error(
+      `Another test has been seeding the demo for ${SEEDED_WITHIN_S} s. Wait for it, or end it, and run this one again.`,
+    )
+  }
+  try {
+    return await make()
+  } finally {
+    await connection.query('SELECT RELEASE_LOCK(?)', [PREFIX])
+  }
 }
 
 /** The seeded database that the others are copied from, named after all that goes into it. */
 async function ensureOriginal(connection: mysql.Connection, url: URL): Promise<string> {
   const hash = createHash('sha256')
-  for (const folder of ['seeds', 'drizzle', 'app/domain', 'app/db', 'app/services']) hashFolder(hash, folder)
+  for (const folder of MADE_FROM) hashFolder(hash, folder)
   const wanted = `${PREFIX}${hash.digest('hex').slice(0, 12)}`
   const [rows] = await connection.query<mysql.RowDataPacket[]>('SHOW DATABASES LIKE ?', [`${PREFIX}%`])
   const present = rows.flatMap((row) => Object.values(row).map(String))
