@@ -139,6 +139,37 @@ async function readQuestion(
   }
 }
 
+/** How many times the hydrogen of the model a segment reads at its cross, what its air leaks give taken off. */
+function excessOf(standing: StandingSegment, model: NonNullable<PlannedSegment['hot']>): number {
+  const cross = crossOf(standing)
+  const airPa = airPressure(model, model.pumps[0]?.atM ?? 0)
+  return hydrogenExcess(model, cross === null ? null : Math.max(0, cross - airPa))
+}
+
+/**
+ * Segments in service that read more than the register's hydrogen explains, and by how much. Those on their way down
+ * still show their water and are left out.
+ */
+export async function readExcess(
+  db: DbOrTx,
+  tags: readonly string[],
+  now: Date,
+): Promise<{ segment: string; times: number }[]> {
+  const standings = (await Promise.all(tags.map((tag) => readStandings(db, now, tag)))).flat()
+  const settled = standings.filter(({ segment }) => segment.state === 'in-service')
+  const planned = await plannedSegments(
+    db,
+    { cart: null, startsAt: null, prepHours: 0 },
+    settled.map(({ segment }) => segment),
+    now,
+  )
+  return settled.flatMap((standing, i) => {
+    const model = planned[i]?.after ?? planned[i]?.hot ?? null
+    const times = model === null ? 1 : excessOf(standing, model)
+    return times > 1 ? [{ segment: standing.segment.tag, times }] : []
+  })
+}
+
 async function optionSegment(
   db: DbOrTx,
   standing: StandingSegment,
@@ -150,9 +181,7 @@ async function optionSegment(
   const later = after ?? onCart
   // Where the leak lies is not known: it is taken at the end, where it counts for most.
   const leaks = leakPaM3S > 0 ? { airLeaks: [{ atM: 0, qPaM3S: leakPaM3S }] } : {}
-  const cross = crossOf(standing)
-  const airPa = airPressure({ ...later, ...leaks }, later.pumps[0]?.atM ?? 0)
-  const times = hydrogenExcess(later, cross === null ? null : Math.max(0, cross - airPa))
+  const times = excessOf(standing, { ...later, ...leaks })
   const hot = { ...onCart, hydrogen: scaleHydrogen(onCart.hydrogen, times), ...leaks }
   const { segment, gauges } = standing
   const places = gauges

@@ -18,6 +18,7 @@ import { DomainError } from '../domain/errors.ts'
 import { instantText } from '../domain/instant-text.ts'
 import type { BakePlanState, PlanPriority } from '../domain/planning.ts'
 import { SEGMENT_STATES, type SegmentState } from '../domain/segment-states.ts'
+import { readExcess } from './bake-options.server.ts'
 import { readPlan } from './bake-plans.server.ts'
 import { contentOf, readPlanFacts } from './bake-plans-facts.server.ts'
 import { getSite } from './site.server.ts'
@@ -105,6 +106,8 @@ export interface PlanPageData {
   permits: PermitWindow[]
   permitChain: string | null
   load: { amps: number; volts: number }
+  /** Segments that now read more than the hydrogen that the prediction takes, and how many times it; none once closed. */
+  excess: { segment: string; times: number }[]
   versions: VersionLine[]
   may: { plan: boolean; tick: boolean; prioritise: boolean; moveOn: boolean }
 }
@@ -118,6 +121,7 @@ export async function readPlanPage(db: Db, actor: Actor, now: Date, planId: numb
   ])
   const permits = permitWindows(prediction.steps)
   const open = plan.state === 'draft' || plan.state === 'ready'
+  const excess = open ? await readExcess(db, content.segments, now) : []
   const { id, title, state, priority, version, baselineVersion, createdBy, createdAt } = plan
   const { readyBy, readyAt, closedAt, closeReason, revision } = plan
   return {
@@ -140,6 +144,7 @@ export async function readPlanPage(db: Db, actor: Actor, now: Date, planId: numb
     permits,
     permitChain: permitChainText(permits),
     load: facts.load,
+    excess,
     versions: versions
       .map((row, i) => {
         const before = versions[i - 1]

@@ -53,6 +53,16 @@ export function PlanPage(props: PageProps) {
         </Notice>
       )}
       {permitChain !== null && <Notice tone="warn">{permitChain}</Notice>}
+      {props.excess.map(({ segment, times }) => (
+        <Notice key={segment} tone="warn">
+          {segment} now reads {times.toFixed(1)} times what the register's hydrogen gives. The prediction
+          below takes the register's, and so promises too much; the{' '}
+          <Link to={`/bakes/options?segments=${content.segments.join(',')}`} className="link">
+            options
+          </Link>{' '}
+          take the reading for hydrogen. A leak would not yield to the bake.
+        </Notice>
+      ))}
       <Panel title="Course of the bake">
         <PlanCurves content={content} prediction={props.prediction} />
         <PlanTable prediction={props.prediction} />
