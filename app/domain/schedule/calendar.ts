@@ -8,7 +8,7 @@ const DAY_MS = 86_400_000
 /** Quarters of an hour, because crews begin and end at them. */
 export const QUARTERS = 4
 /** People that a start, a ramp end or a soak end needs together. */
-export const PAIR = 2
+const PAIR = 2
 
 export interface Calendar {
   hours: number

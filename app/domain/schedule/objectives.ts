@@ -47,7 +47,7 @@ export function figureOf(
 }
 
 /** Hours of the window in which any bake is heated. */
-export function heatedHours(entries: readonly Timed[]): number {
+function heatedHours(entries: readonly Timed[]): number {
   const spans = entries
     .map(({ one, startH }): [number, number] => [Math.max(0, startH), startH + one.heatH])
     .sort((a, b) => a[0] - b[0])

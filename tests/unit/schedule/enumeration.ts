@@ -5,7 +5,7 @@
 import type { Placement, ScheduleJob, ScheduleProblem } from '#app/domain/schedule/problem.ts'
 import { everPresent, job, manyCarts, problem, supplies, twoCrews } from './problems.ts'
 
-export function seeded(seed: number): () => number {
+function seeded(seed: number): () => number {
   let state = seed * 2_654_435_761 + 12_345
   return () => {
     state = (Math.imul(state, 1_664_525) + 1_013_904_223) >>> 0
