@@ -209,8 +209,19 @@ export async function readPlanForm(db: Db, now: Date, asked: URLSearchParams): P
   }
   return {
     ...common,
-    values: planFormValues(title, content, written),
+    values: planFormValues(title, placed(content, asked), written),
     of: { id, title, version, revision, state },
+  }
+}
+
+/** A plan with the place that the address names, as a schedule gives it: start, supply set and cart. */
+function placed(content: BakePlanContent, asked: URLSearchParams): BakePlanContent {
+  const startsAt = asked.get('startsAt')
+  return {
+    ...content,
+    ...(startsAt === null || Number.isNaN(Date.parse(startsAt)) ? {} : { startsAt }),
+    supply: asked.get('supply') ?? content.supply,
+    cart: asked.get('cart') ?? content.cart,
   }
 }
 

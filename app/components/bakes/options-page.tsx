@@ -48,10 +48,7 @@ export function OptionsPage({ tags, query, asked, answer, mayPlan }: BakeOptions
             </p>
           </Panel>
           <Panel title="What each asks">
-            <OptionsTable
-              rows={rows}
-              planLink={mayPlan ? (row) => planAddress(asked.segments, asked.upKH, row) : null}
-            />
+            <OptionsTable rows={rows} planLink={mayPlan ? (row) => planAddress(asked, row) : null} />
             <Cautions rows={rows} />
           </Panel>
           <Panel title="What each leaves behind">
@@ -70,12 +67,16 @@ export function OptionsPage({ tags, query, asked, answer, mayPlan }: BakeOptions
   )
 }
 
-function planAddress(segments: readonly string[], upKH: number, row: BakeOptionRow): string {
+function planAddress(
+  { segments, upKH, targetPa }: NonNullable<BakeOptionsPage['asked']>,
+  row: BakeOptionRow,
+): string {
   const params = new URLSearchParams({
     segments: segments.join(','),
     celsius: String(row.celsius),
     hours: String(row.soakHours),
-    upKH: String(upKH),
+    ramp: String(upKH),
+    target: String(targetPa),
   })
   return `/bakes/plans/new?${params}`
 }

@@ -79,7 +79,8 @@ export function SchedulePage({
           </ul>
         </Panel>
       )}
-      {mayPlan && <NewSchedule plans={openPlans} failure={failure} />}
+      {/* A schedule that has just been made leaves the form empty for the next. */}
+      {mayPlan && <NewSchedule key={shown?.id} plans={openPlans} failure={failure} />}
     </>
   )
 }
@@ -139,18 +140,16 @@ function Shown({
           the arrow keys (with Shift by a day).
         </p>
       </Panel>
-      <Findings found={found} />
+      <Findings
+        found={found}
+        unplaced={placements.flatMap(({ jobId, startH }) =>
+          startH === null ? [problem.jobs.find(({ id }) => id === jobId)?.label ?? jobId] : [],
+        )}
+      />
       {mayPlan && one !== undefined && isMovable(shown, one.jobId) && (
-        <MovePanel
-          key={`${one.jobId}-${one.startH}`}
-          shown={shown}
-          placements={placements}
-          one={one}
-          onChoose={setChosen}
-          failure={failure}
-        />
+        <MovePanel shown={shown} placements={placements} one={one} onChoose={setChosen} failure={failure} />
       )}
-      <PlacesTable shown={shown} placements={placements} />
+      <PlacesTable shown={shown} placements={placements} mayPlan={mayPlan} />
     </>
   )
 }
@@ -212,11 +211,17 @@ function Outcome({ shown }: { shown: ShownSchedule }) {
 
 const SEVERITY = { breaks: 'Breaks', missing: 'To be done before', note: 'To be known' } as const
 
-function Findings({ found }: { found: readonly Violation[] }) {
+function Findings({ found, unplaced }: { found: readonly Violation[]; unplaced: readonly string[] }) {
   return (
     <Panel title="What breaks, what is missing">
       <div aria-live="polite">
-        {found.length === 0 && <p>Nothing breaks and nothing is missing.</p>}
+        {unplaced.length > 0 && (
+          <p className="mb-2">
+            Without a place, and so not judged: <strong>{unplaced.join(', ')}</strong>. Propose places, or
+            give one under “Move a bake”.
+          </p>
+        )}
+        {found.length === 0 && unplaced.length === 0 && <p>Nothing breaks and nothing is missing.</p>}
         {(['breaks', 'missing', 'note'] as const).map((severity) => {
           const own = found.filter((one) => one.severity === severity)
           if (own.length === 0) return null
@@ -264,7 +269,12 @@ function MovePanel({
   ]
   return (
     <Panel title="Move a bake">
-      <Form method="post" className="max-w-md print:hidden">
+      <p aria-live="polite" className="mb-3">
+        {answer === null
+          ? 'It has no place yet; the form gives it one.'
+          : `With any free set and cart: ${answer}`}
+      </p>
+      <Form key={`${one.jobId}-${one.startH}`} method="post" className="max-w-md print:hidden">
         <input type="hidden" name="act" value="move" />
         <input type="hidden" name="scheduleId" value={shown.id} />
         <input type="hidden" name="revision" value={shown.revision} />
@@ -300,12 +310,28 @@ function MovePanel({
         <CheckField name="pinned" label="Pinned: a proposal leaves it there" defaultChecked={one.pinned} />
         <Button kind="primary">Keep this place</Button>
       </Form>
-      {answer !== null && <p className="mt-3">With any free set and cart: {answer}</p>}
     </Panel>
   )
 }
 
-function PlacesTable({ shown, placements }: { shown: ShownSchedule; placements: readonly Placement[] }) {
+/** The form of a new version of a plan, with the place that the schedule gives it. */
+function planAddress({ problem }: ShownSchedule, { jobId, startH, supply, cart }: Placement): string {
+  const params = new URLSearchParams({ of: jobId })
+  if (startH !== null) params.set('startsAt', new Date(problem.fromMs + startH * HOUR_MS).toISOString())
+  if (supply !== null) params.set('supply', supply)
+  if (cart !== null) params.set('cart', cart)
+  return `/bakes/plans/new?${params}`
+}
+
+function PlacesTable({
+  shown,
+  placements,
+  mayPlan,
+}: {
+  shown: ShownSchedule
+  placements: readonly Placement[]
+  mayPlan: boolean
+}) {
   const { problem } = shown
   const jobOf = ({ jobId }: Placement) => problem.jobs.find(({ id }) => id === jobId)
   const at = (placement: Placement, hours: number) =>
@@ -314,8 +340,18 @@ function PlacesTable({ shown, placements }: { shown: ShownSchedule; placements: 
     ) : (
       <Instant at={new Date(problem.fromMs + (placement.startH + hours) * HOUR_MS)} />
     )
-  const columns: readonly Column<Placement>[] = [
-    { key: 'bake', head: 'Bake', rowHead: true, nowrap: true, cell: (one) => jobOf(one)?.label },
+  const columns: Column<Placement>[] = [
+    {
+      key: 'bake',
+      head: 'Bake',
+      rowHead: true,
+      nowrap: true,
+      cell: (one) => (
+        <Link to={`/bakes/plans/${one.jobId}`} className="link">
+          {jobOf(one)?.label ?? one.jobId}
+        </Link>
+      ),
+    },
     {
       key: 'from',
       head: 'Heating from',
@@ -342,6 +378,20 @@ function PlacesTable({ shown, placements }: { shown: ShownSchedule; placements: 
       cell: (one) => (jobOf(one)?.underWay === true ? 'under way' : one.pinned ? 'pinned' : 'planned'),
     },
   ]
+  if (mayPlan) {
+    columns.push({
+      key: 'plan',
+      head: 'Plan',
+      nowrap: true,
+      cell: (one) =>
+        jobOf(one)?.underWay === false &&
+        one.startH !== null && (
+          <Link to={planAddress(shown, one)} className="link">
+            Put into the plan <span className="sr-only">of {jobOf(one)?.label}</span>
+          </Link>
+        ),
+    })
+  }
   return (
     <Panel title="Places">
       <DataTable
