@@ -55,9 +55,9 @@ export interface ScheduledTask {
 
 export const SCHEDULED_TASKS: readonly ScheduledTask[] = [
   { name: 'partition-readings', kind: 'partition-readings', everySeconds: 6 * 3600 },
+  { name: 'note-deviations', kind: 'note-deviations', everySeconds: 600 },
   // Whoever takes a file in asks for it at once; this is for live posts, typed readings and what a stop has left.
   { name: 'roll-up', kind: 'roll-up', everySeconds: 300 },
-  { name: 'note-deviations', kind: 'note-deviations', everySeconds: 600 },
   { name: 'judge-forecasts', kind: 'judge-forecasts', everySeconds: 3600 },
   { name: 'purge-sessions', kind: 'purge-sessions', everySeconds: 3600 },
   { name: 'purge-leftovers', kind: 'purge-leftovers', everySeconds: 24 * 3600 },

@@ -13,6 +13,7 @@ import {
 } from '../db/queries/rollups.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { ROLLUP_LEVELS, wholeBuckets } from '../domain/rollups.ts'
+import { enqueue } from './jobs.server.ts'
 
 /** Stretches of one channel that are taken in one transaction. */
 const AT_ONCE = 500
@@ -22,15 +23,30 @@ const LONGEST_MS = 31 * 86_400_000
 /**
  * Makes the rollups of everything that is due, channel by channel, until nothing is or the signal comes.
  *
+ * @param most transactions after which it stops with the rest still due
  * @returns how many transactions that took
  */
-export async function makeRollups(db: Db, signal: AbortSignal): Promise<number> {
+export async function makeRollups(
+  db: Db,
+  signal: AbortSignal,
+  most: number = Number.POSITIVE_INFINITY,
+): Promise<number> {
   for (let count = 0; ; count += 1) {
-    if (signal.aborted) return count
+    if (signal.aborted || count >= most) return count
     const channelId = await findDueChannel(db)
     if (channelId === null) return count
     await rollUpChannel(db, channelId)
   }
+}
+
+/** One job's share: a year of many channels is many transactions, and other jobs want their turn in between. */
+const TURNS_A_JOB = 40
+
+/** Makes a share of the rollups that are due, and asks for another job when there may be more. */
+export async function makeShareOfRollups(db: Db, signal: AbortSignal): Promise<number> {
+  const turns = await makeRollups(db, signal, TURNS_A_JOB)
+  if (turns === TURNS_A_JOB) await tx(db, (inside) => enqueue(inside, { kind: 'roll-up', payload: {} }))
+  return turns
 }
 
 async function rollUpChannel(db: Db, channelId: number): Promise<void> {

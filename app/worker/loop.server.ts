@@ -36,7 +36,8 @@ export async function runWorker({
   await Promise.all([
     keepClockGoing(db, signal),
     repeat('look at the schedule', signal, async () => {
-      await runSchedule(db, owner, await productNow(db), { tasks: [...SCHEDULED_TASKS, ...feederTasks()] })
+      // What is new comes first; what is made of it follows.
+      await runSchedule(db, owner, await productNow(db), { tasks: [...feederTasks(), ...SCHEDULED_TASKS] })
       return SCHEDULE_MS
     }),
     repeat('do jobs', signal, () => doOneJob(db, handlers, signal)),

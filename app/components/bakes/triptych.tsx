@@ -180,7 +180,25 @@ function Pressures({ moments, x, xTicks, gauge, unit }: PartProps & { gauge: str
   )
 }
 
-function Powers({ moments, x, xTicks, supply }: PartProps & { supply: string }) {
+/** Supplies are logged more sparsely than temperatures in the archive: over so long a pause the line is carried on. */
+const CARRIED_MS = 3 * 3_600_000
+
+/** Moments with a power, and one without where a pause is too long to be carried over. */
+function carried(moments: readonly BakeMoment[]): BakeMoment[] {
+  const kept: BakeMoment[] = []
+  for (const moment of moments) {
+    if (moment.powerKW === null) continue
+    const before = kept.at(-1)
+    if (before !== undefined && moment.at - before.at > CARRIED_MS) {
+      kept.push({ ...moment, at: before.at + 1, powerKW: null })
+    }
+    kept.push(moment)
+  }
+  return kept
+}
+
+function Powers({ moments: all, x, xTicks, supply }: PartProps & { supply: string }) {
+  const moments = carried(all)
   const range = extremes(moments.map(({ powerKW }) => powerKW))
   if (range === null) {
     return <p className="py-2 text-sm text-ink-2">{supply} gave no readings in this stretch.</p>
