@@ -95,6 +95,13 @@ export function TestPage({ test, curve, openedSince, mayDecide, failure }: TestP
             />
             {test.note !== '' && <p className="mt-2">{test.note}</p>}
             {test.acceptRemark !== '' && <p className="mt-2">Accepted because: {test.acceptRemark}</p>}
+            {test.state === 'accepted' && openedSince === null && (
+              <p className="mt-2 print:hidden">
+                <Link to={`/bakes/options?segments=${tag}`} className="link">
+                  Options for a bake of {tag}
+                </Link>
+              </p>
+            )}
           </Panel>
           {mayDecide && test.state !== 'voided' && (
             <DecisionPanels key={test.revision} test={test} failure={failure} />
