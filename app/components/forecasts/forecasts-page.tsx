@@ -1,11 +1,13 @@
 /** All forecasts in one place: the facility, the segments on their way, slow growth, and the record of hits. */
 import { Link } from 'react-router'
 import { SEGMENT_STATES } from '#app/domain/segment-states.ts'
+import { useSite } from '#app/hooks/use-site.ts'
 import type { ForecastLine, ForecastsPageData, Outcome } from '#app/services/forecasts-page.server.ts'
 import { type Column, DataTable } from '../ui/data-table.tsx'
 import { Instant } from '../ui/instant.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
 import { Pressure } from '../ui/pressure.tsx'
+import { dayText } from '../ui/site-time.ts'
 import { RecordsPanel } from './records-panel.tsx'
 
 const COLUMNS: readonly Column<ForecastLine>[] = [
@@ -104,6 +106,7 @@ function OutcomeCell({ outcome }: { outcome: Outcome | null }) {
 
 function FacilityPanel({ facility, trends }: Pick<ForecastsPageData, 'facility' | 'trends'>) {
   const { from, to, slowest, open, segments } = facility
+  const { zone } = useSite()
   return (
     <Panel title="When will the facility be available?">
       {from !== null && to !== null ? (
@@ -113,11 +116,11 @@ function FacilityPanel({ facility, trends }: Pick<ForecastsPageData, 'facility' 
           <p>
             Between{' '}
             <strong>
-              <Instant at={from} />
+              <time dateTime={from.toISOString()}>{dayText(from, zone)}</time>
             </strong>{' '}
             and{' '}
             <strong>
-              <Instant at={to} />
+              <time dateTime={to.toISOString()}>{dayText(to, zone)}</time>
             </strong>
             , if what is assumed below holds. Available means every segment of the main line within its limit,
             and at least {facility.neededAtTarget} at target.
@@ -178,6 +181,7 @@ function FacilityPanel({ facility, trends }: Pick<ForecastsPageData, 'facility' 
 
 function daysWords(hours: { low: number; high: number } | null): string {
   if (hours === null) return 'cannot be told'
+  if (hours.high < 1) return 'any time'
   const days = (value: number) => (value / 24).toFixed(value < 240 ? 1 : 0)
   return days(hours.low) === days(hours.high)
     ? `${days(hours.high)} days`

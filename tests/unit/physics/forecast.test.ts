@@ -192,14 +192,14 @@ describe('forecastTimeToTarget refuses', () => {
 })
 
 describe('the range', () => {
-  // The soak run counts 500 trials and aims at 75 to 85 %. Fifty trials of a true 80 % fall within these limits in
-  // all but about 2 of 1000 draws (binomial law); a range half as wide would hold in about half of them.
+  // Fifty fixed trials, of which 40 hold at present; the soak run counts 500. Another fifty may lie between 70 and 90 %
+  // by chance alone (binomial law), so a change of the method that leaves these limits is to be judged by the soak run.
   it('holds in about four trials of five on tubes that are not the model', () => {
     const coverage = forecastCoverage(50, 42)
     expect(coverage.forecasts).toBeGreaterThanOrEqual(45)
     const share = coverage.inside / coverage.forecasts
-    expect(share).toBeGreaterThan(0.63)
-    expect(share).toBeLessThan(0.96)
+    expect(share).toBeGreaterThanOrEqual(0.75)
+    expect(share).toBeLessThanOrEqual(0.85)
     expect(coverage.medianHalfWidth).toBeLessThan(0.4)
   }, 20_000)
 })
