@@ -13,12 +13,12 @@ function seeded(seed: number): () => number {
   }
 }
 
-/** Up to six bakes on a grid of six hours over fourteen days from Monday 2026-11-09 06:00. */
-export function smallProblem(seed: number): ScheduleProblem {
+/** Up to six bakes, or fewer, on a grid of six hours over fourteen days from Monday 2026-11-09 06:00. */
+export function smallProblem(seed: number, most = 6): ScheduleProblem {
   const random = seeded(seed)
   const between = (low: number, high: number): number => low + Math.floor(random() * (high - low + 1))
   for (let i = 0; i < 8; i += 1) random()
-  const count = between(2, 6)
+  const count = between(2, most)
   const places = [0, 1, 2, 3, 4, 5, 6, 7].sort(() => random() - 0.5)
   const jobs = Array.from({ length: count }, (_, i) => {
     const rampH = between(8, 14)
@@ -186,7 +186,9 @@ export function bestByEnumeration(p: ScheduleProblem): number | null {
     const key = `${a.job.id} ${a.at} ${b.job.id} ${b.at}`
     let right = known.get(key)
     if (right === undefined) {
-      right = pairRight(p, a, b) && togetherRight(p, [a, b])
+      // Before the first heats and after the last has heated there is no power to look at.
+      const until = Math.max(...[a, b].map(({ job: one, at }) => at + one.powerKW.length))
+      right = pairRight(p, a, b) && togetherRight(p, [a, b], Math.min(a.at, b.at), until)
       known.set(key, right)
     }
     return right
