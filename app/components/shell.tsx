@@ -34,13 +34,17 @@ function placesFor(places: ShellProps['places']): Place[] {
     ...(places.facility
       ? [
           { to: '/', label: 'Line', roots: ['/segments'] },
-          { to: '/bakes', label: 'Bakes', roots: ['/bakes'] },
           { to: '/intake', label: 'Log intake', roots: ['/intake'] },
-          { to: '/forecasts', label: 'Forecasts', roots: ['/forecasts'] },
         ]
       : []),
     { to: '/logbook', label: 'Logbook', roots: ['/logbook'] },
-    ...(places.facility ? [{ to: '/register', label: 'Register', roots: ['/register'] }] : []),
+    ...(places.facility
+      ? [
+          { to: '/forecasts', label: 'Forecasts', roots: ['/forecasts'] },
+          { to: '/bakes', label: 'Bakes', roots: ['/bakes'] },
+          { to: '/register', label: 'Register', roots: ['/register'] },
+        ]
+      : []),
     ...(places.people ? [{ to: '/people', label: 'People', roots: ['/people'] }] : []),
   ]
 }

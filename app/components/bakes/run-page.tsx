@@ -235,7 +235,10 @@ function NowPanel(props: BakeRunPageProps) {
             ? [
                 {
                   name: 'Rate, last half hour',
-                  value: rateKH === null ? 'not known' : `${rateKH.toFixed(1)} °C/h`,
+                  value:
+                    rateKH === null
+                      ? 'not known'
+                      : `${rateKH < 0 ? '−' : ''}${Math.abs(rateKH).toFixed(1)} °C/h`,
                 },
                 { name: `Pressure at ${props.gauge}`, value: <Pressure pa={props.pressurePa} /> },
               ]
