@@ -77,6 +77,18 @@ describe('editing the register', () => {
     })
   })
 
+  it('stores the feeder that a bake of a segment draws from, and that nobody knows it any more', async () => {
+    const { tag } = await createSegment(db)
+    const stored = async (feeder: 'east' | null) => {
+      await editThing(db, bram, MORNING, 'segments', tag, await formOf('segments', tag, { feeder }))
+      return (await db.select().from(segment).where(eq(segment.tag, tag)))[0]?.feeder
+    }
+    expect(await stored('east')).toBe('east')
+    expect(await stored(null)).toBeNull()
+    const lines = await db.select().from(record)
+    expect(lines.map(({ after }) => after)).toEqual([{ feeder: 'east' }, { feeder: null }])
+  })
+
   it('stores what somebody typed over no newer edit, and says what that was', async () => {
     const { tag } = await createSegment(db)
     const stale = await formOf('segments', tag, { bellowsCount: 9 })

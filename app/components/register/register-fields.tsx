@@ -54,7 +54,8 @@ export function RegisterField({
     return <CheckField {...common} defaultChecked={typed === undefined ? value === true : start === 'on'} />
   }
   if (field.input === 'choice') {
-    const choose = value === null ? [{ value: '', label: 'Choose' }] : []
+    const mayStayOpen = field.options.some((option) => option.value === '')
+    const choose = value === null && !mayStayOpen ? [{ value: '', label: 'Choose' }] : []
     return <SelectField {...common} defaultValue={start} options={[...choose, ...field.options]} />
   }
   if (field.input === 'segment') return <SegmentField {...common} start={start} segments={segments} />

@@ -5,6 +5,7 @@
 import { z } from 'zod'
 import { QUANTITIES, QUANTITY_NAMES } from '../readings.ts'
 import {
+  FEEDERS,
   HEATER_KIND_LABELS,
   HEATER_KINDS,
   INSTRUMENT_KINDS,
@@ -94,6 +95,22 @@ function choice<Value extends string>(
   )
 }
 
+/** Which feeder heats a segment. It may stay open, and then no feeder's limit counts a bake of it. */
+function feederChoice(): FieldFact {
+  const options = [
+    { value: '', label: 'Not known' },
+    ...FEEDERS.map((value) => ({ value, label: `Feeder ${value}` })),
+  ]
+  const error = `Choose one: ${options.map(({ label }) => label).join(', ')}.`
+  return fact(
+    'feeder',
+    'Feeder for bakes',
+    'choice',
+    () => z.enum(['', ...FEEDERS], { error }).transform((value) => (value === '' ? null : value)),
+    { options, hint: 'While it is not known, a bake of this segment counts on neither feeder.' },
+  )
+}
+
 function tick(name: string, label: string): FieldFact {
   return fact(name, label, 'tick', () => tickValue())
 }
@@ -174,6 +191,7 @@ export const SEGMENT_FIELDS: readonly FieldFact[] = [
   number('insulationM', 'Insulation thickness', { min: 0, max: 2, unit: 'm' }),
   number('insulationWPerMK', 'Insulation conductivity', { min: 0.001, max: 10, unit: 'W/(m·K)' }),
   number('resistance20Ohm', 'Resistance end to end at 20 °C', { min: 1e-6, max: 10, unit: 'Ω' }),
+  feederChoice(),
 ]
 
 export const POSITION_FIELDS: readonly FieldFact[] = [

@@ -23,6 +23,7 @@ const SEGMENT = {
   insulationM: '0.1',
   insulationWPerMK: '0.045',
   resistance20Ohm: '0.0228',
+  feeder: '',
 }
 
 function faults(kind: (typeof EDITED_KINDS)[number], form: Record<string, string>, isNew = false) {
@@ -49,6 +50,17 @@ describe('forms of the register', () => {
       hydrogenQ20: null,
     })
     expect(Object.keys(read.values).sort()).toEqual(KIND_FACTS.segments.fields.map(({ name }) => name).sort())
+  })
+
+  it('takes a feeder, takes that nobody knows it, and names both where it is given another', () => {
+    const feederOf = (feeder: string) =>
+      editedSchema('segments', ZONE).parse({ ...SEGMENT, ...FRAME, feeder }).values.feeder
+    expect(feederOf('east')).toBe('east')
+    expect(feederOf('')).toBeNull()
+    const wanted = { feeder: 'Choose one: Not known, Feeder west, Feeder east.' }
+    expect(faults('segments', { ...SEGMENT, ...FRAME, feeder: 'north' })).toEqual(wanted)
+    const { feeder: _, ...without } = SEGMENT
+    expect(faults('segments', { ...without, ...FRAME })).toEqual(wanted)
   })
 
   it('wants the figure that the hydrogen model needs', () => {
