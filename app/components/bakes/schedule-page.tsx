@@ -137,7 +137,8 @@ function Shown({
         <p className="mt-2 text-sm text-ink-2">
           Light: preparation and test. Dark: ramp. Then soak, then cooling. A thin bar beneath: what was.
           Power with {problem.rules.baseKW} kW base load; the line is the cap. Drag a bake, or move it with
-          the arrow keys (with Shift by a day).
+          the arrow keys (with Shift by a day); nothing is kept until “Keep this place”. A pinned bake stays
+          where it is until it is unpinned there.
         </p>
       </Panel>
       <Findings

@@ -61,7 +61,7 @@ export function SchedulePicture(props: PictureProps) {
         {placements.map(({ jobId }, row) => {
           const label = problem.jobs.find(({ id }) => id === jobId)?.label.split('+') ?? []
           return actual
-            .filter(({ segment }) => label.includes(segment))
+            .filter(({ segment, untilH }) => label.includes(segment) && untilH > 0)
             .map(({ segment, fromH, untilH }) => (
               <rect
                 key={`${segment}-${fromH}`}
@@ -127,7 +127,11 @@ function Row({
     target.addEventListener('pointercancel', end)
   }
   const keys = (event: React.KeyboardEvent): void => {
-    if (event.key === 'Enter' || event.key === ' ') onChoose(job.id)
+    if (event.key === 'Enter' || event.key === ' ') {
+      // The page would scroll on the space bar.
+      event.preventDefault()
+      onChoose(job.id)
+    }
     const sign = event.key === 'ArrowRight' ? 1 : event.key === 'ArrowLeft' ? -1 : 0
     if (sign === 0 || !movable || startH === null) return
     event.preventDefault()
@@ -143,7 +147,6 @@ function Row({
       aria-pressed={chosen === job.id}
       onPointerDown={drag}
       onKeyDown={keys}
-      className={movable ? 'cursor-grab touch-none' : ''}
     >
       <rect
         x={0}
@@ -167,7 +170,8 @@ function Row({
           y={y + 4}
           width={Math.max(0, x(until) - x(from))}
           height={18}
-          className={`${broken.has(job.id) ? 'fill-bad' : 'fill-heat'} ${shade}`}
+          // A finger on the bar moves the bake; beside it, the page.
+          className={`${broken.has(job.id) ? 'fill-bad' : 'fill-heat'} ${shade} ${movable ? 'cursor-grab touch-none' : ''}`}
         />
       ))}
       {placement.pinned && startH !== null && (
