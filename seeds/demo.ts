@@ -7,6 +7,7 @@ import { elapsedMs, machineNow } from '../app/machine-time.server.ts'
 import { ensureClock } from '../app/services/clock.server.ts'
 import { createReadingPartitions } from '../app/services/partitions.server.ts'
 import { seedCrews } from './bakes/crews.ts'
+import { seedBakeDeviations } from './bakes/deviations.ts'
 import { seedBakePlans } from './bakes/plans.ts'
 import { DEMO_START } from './demo-time.ts'
 import { seedForecasts } from './forecasts/forecasts.ts'
@@ -64,6 +65,7 @@ export async function seedDemo(
     const forecasts = await seedForecasts(inside)
     const bakePlans = await seedBakePlans(inside)
     const crews = await seedCrews(inside)
+    const bakeDeviations = await seedBakeDeviations(inside)
     const counts = {
       people,
       segments,
@@ -77,6 +79,7 @@ export async function seedDemo(
       forecasts,
       bakePlans,
       crews,
+      bakeDeviations,
     }
     await inside.insert(record).values({
       at: DEMO_START,

@@ -23,7 +23,7 @@ export const ForecastModelSchema = z.object({
   points: z.int(),
   rmsLn: z.number(),
 })
-export type ForecastModel = z.infer<typeof ForecastModelSchema>
+type ForecastModel = z.infer<typeof ForecastModelSchema>
 
 /** How many of the last ones the record of hits speaks of. */
 const HITS_COUNTED = 20

@@ -1,5 +1,5 @@
 /** Deviations of bakes: those that people note, and those that the product finds in the readings by itself. */
-import type { Db } from '../db/client.server.ts'
+import type { Db, DbOrTx } from '../db/client.server.ts'
 import { deleteOwnDeviations, insertDeviation, listDeviations } from '../db/queries/bake-runs.server.ts'
 import { listSegments, listStates, type SegmentWithState } from '../db/queries/segments.server.ts'
 import { tx } from '../db/transaction.server.ts'
@@ -91,24 +91,24 @@ export async function noteOwnDeviations(db: Db, now: Date): Promise<number> {
   for (const segment of await listSegments(db, now)) {
     const bake = bakesIn(await listStates(db, segment.id))[0]
     if (bake === undefined || bake.phase === 'over') continue
-    count += await noteDeviationsOf(db, segment, bake, now)
+    count += await tx(db, (inside) => noteDeviationsOf(inside, segment, bake, now))
   }
   return count
 }
 
-/** Notes what the product finds in one bake, up to an instant. */
+/** Notes, inside a transaction, what the product finds in one bake up to an instant. */
 export async function noteDeviationsOf(
-  db: Db,
+  inside: DbOrTx,
   segment: SegmentWithState,
   bake: FoundBake,
   now: Date,
 ): Promise<number> {
-  const { ambientC } = await getSite(db)
-  const plan = await planOf(db, segment.id, bake)
-  const terms = await termsOf(db, segment.id, plan, bake.heatingFrom)
+  const { ambientC } = await getSite(inside)
+  const plan = await planOf(inside, segment.id, bake)
+  const terms = await termsOf(inside, segment.id, plan, bake.heatingFrom)
   if (terms === null) return 0
   const { steps } = await readBakeSeries(
-    db,
+    inside,
     segment,
     {
       from: new Date(bucketStart(bake.heatingFrom.getTime(), STEP_S)),
@@ -118,27 +118,25 @@ export async function noteDeviationsOf(
     plan?.content.supply ?? null,
   )
   const found = deviationsOf(steps, plannedCourse(bake, terms, ambientC), terms, pascalText)
-  await tx(db, async (inside) => {
-    const before = await listDeviations(inside, segment.id, bake.heatingFrom, new Date(now.getTime() + 1))
-    const known = new Map(
-      before.flatMap(({ kind, startsAt, notedBy, notedAt }) =>
-        notedBy === null ? [[`${kind} ${startsAt.getTime()}`, notedAt] as const] : [],
-      ),
-    )
-    await deleteOwnDeviations(inside, segment.id, bake.heatingFrom)
-    for (const one of found) {
-      await insertDeviation(inside, {
-        segmentId: segment.id,
-        planId: plan?.planId ?? null,
-        kind: one.kind,
-        startsAt: new Date(one.from),
-        endsAt: one.to === null ? null : new Date(one.to),
-        detail: one.detail,
-        notedBy: null,
-        // When it was learned stays, however often it is looked at again.
-        notedAt: known.get(`${one.kind} ${one.from}`) ?? now,
-      })
-    }
-  })
+  const before = await listDeviations(inside, segment.id, bake.heatingFrom, new Date(now.getTime() + 1))
+  const known = new Map(
+    before.flatMap(({ kind, startsAt, notedBy, notedAt }) =>
+      notedBy === null ? [[`${kind} ${startsAt.getTime()}`, notedAt] as const] : [],
+    ),
+  )
+  await deleteOwnDeviations(inside, segment.id, bake.heatingFrom)
+  for (const one of found) {
+    await insertDeviation(inside, {
+      segmentId: segment.id,
+      planId: plan?.planId ?? null,
+      kind: one.kind,
+      startsAt: new Date(one.from),
+      endsAt: one.to === null ? null : new Date(one.to),
+      detail: one.detail,
+      notedBy: null,
+      // When it was learned stays, however often it is looked at again.
+      notedAt: known.get(`${one.kind} ${one.from}`) ?? now,
+    })
+  }
   return found.length
 }

@@ -101,7 +101,7 @@ export async function readBakeRunPage(
  * @param since instant in ms UTC, as the links of the page give it; null for the newest bake
  * @throws DomainError not-found (no such segment, or it was never baked in what is recorded)
  */
-export async function readBakeRun(db: Db, tag: string, now: Date, since: number | null): Promise<BakeRun> {
+async function readBakeRun(db: Db, tag: string, now: Date, since: number | null): Promise<BakeRun> {
   const { segment, bakes, bake } = await findBake(db, tag, now, since)
   const until = endOfPicture(bake, now)
   const [{ ambientC }, plan] = await Promise.all([getSite(db), planOf(db, segment.id, bake)])
