@@ -3,7 +3,7 @@ import { useEffect, useState } from 'react'
 import { Form, Link, useNavigation, useRevalidator } from 'react-router'
 import { SCHEDULE_OBJECTIVES, type ScheduleState } from '#app/domain/planning.ts'
 import { OBJECTIVE_FACTS } from '#app/domain/schedule/objectives.ts'
-import type { Placement } from '#app/domain/schedule/problem.ts'
+import type { Placement, ScheduleJob } from '#app/domain/schedule/problem.ts'
 import { type Violation, violations } from '#app/domain/schedule/violations.ts'
 import { whyNot } from '#app/domain/schedule/why-not.ts'
 import { useSite } from '#app/hooks/use-site.ts'
@@ -244,6 +244,14 @@ function Findings({ found, unplaced }: { found: readonly Violation[]; unplaced: 
   )
 }
 
+/** What the answer to "why not" takes for the set and the cart: the plan's own where it names them. */
+function equipmentWords(job: ScheduleJob | undefined): string {
+  const supply = job?.supply ?? null
+  const cart = job?.cart ?? null
+  if (supply === null && cart === null) return 'any free set and cart'
+  return `${supply ?? 'any free set'} and ${cart ?? 'any free cart'}, as its plan asks`
+}
+
 function MovePanel({
   shown,
   placements,
@@ -263,6 +271,7 @@ function MovePanel({
     failure?.typed?.act === 'move' && failure.typed.planId === one.jobId ? failure.typed : undefined
   const fields = typed === undefined ? {} : (failure?.fields ?? {})
   const answer = one.startH === null ? null : whyNot(problem, placements, one.jobId, one.startH).sentence
+  const job = problem.jobs.find(({ id }) => id === one.jobId)
   const startsAt = new Date(problem.fromMs + (one.startH ?? 0) * HOUR_MS)
   const options = (tags: readonly string[]) => [
     { value: '', label: 'none yet' },
@@ -273,7 +282,7 @@ function MovePanel({
       <p aria-live="polite" className="mb-3">
         {answer === null
           ? 'It has no place yet; the form gives it one.'
-          : `With any free set and cart: ${answer}`}
+          : `With ${equipmentWords(job)}: ${answer}`}
       </p>
       <Form key={`${one.jobId}-${one.startH}`} method="post" className="max-w-md print:hidden">
         <input type="hidden" name="act" value="move" />
