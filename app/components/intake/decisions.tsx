@@ -80,7 +80,7 @@ export function QuestionsPanel({
 function openWords({ blocking, kind }: Question): string {
   if (blocking) return 'Not answered: nothing can be taken in'
   if (kind === 'floor') return 'Not answered: counts as measured'
-  if (kind === 'basis') return 'Not answered: stored as written'
+  if (kind === 'basis' || kind === 'averaging') return 'Not answered: stored as written'
   return 'Not answered: left out'
 }
 

@@ -6,6 +6,7 @@ import { channelQuestion } from './cell-faults.ts'
 import type { Curves } from './curves.ts'
 import { type HeaderColumn, joinHeaders, readHeader } from './header.ts'
 import type { NumberReader } from './numbers.ts'
+import { askReadingColumn } from './statistics.ts'
 import type { FileDialect, Refusal, Restart } from './types.ts'
 import { checkUnit, refuseWithoutUnit } from './unit-check.ts'
 import { type UnitWords, unitSamples } from './unit-words.ts'
@@ -114,6 +115,7 @@ export class BlockMaker {
       unitRow,
       oneOf: (name, positions) => oneOf(name, positions, this.#headerLine, questions),
       answerFor: this.#tools.targets,
+      readingColumn: questions.answer('reading-of') ?? profile.readingColumn,
     })
     this.block = block
     if (unitRow !== null) this.unitFrom = 'unit-row'
@@ -133,6 +135,15 @@ export class BlockMaker {
     if (!this.#namesPending || block === null) return
     this.#namesPending = false
     const { questions, book } = this.#tools
+    // An answer holds for the whole file: what it does not fit stays out, and is not asked about again.
+    if (questions.answer('reading-of') === null)
+      askReadingColumn(
+        block.unsettled,
+        this.#headerColumns,
+        this.#headerLine,
+        this.#tools.dialect.rows[0],
+        questions,
+      )
     for (const { name, position } of block.unknown)
       questions.ask(`unknown-channel:${name}`, () => channelQuestion(name, this.#headerLine, position, book))
   }
@@ -178,7 +189,7 @@ export class BlockMaker {
     const block = this.block
     if (block === null) return null
     const unknown = block.unknown[0]
-    if (block.wide.length === 0 && block.repeated.length > 0) return null
+    if (block.wide.length === 0 && block.repeated.length + block.unsettled.length > 0) return null
     // Before anything is confirmed about a source, names that the register lacks are asked about one by one.
     if (
       profile.layout === null &&

@@ -6,7 +6,8 @@ import type { Curves } from './curves.ts'
 import { channelColumn, type HeaderColumn } from './header.ts'
 import type { QuestionList } from './questions.ts'
 import type { ReadingSink } from './sink.ts'
-import type { ColumnReadOut } from './types.ts'
+import { type OpenReading, readingColumns, statisticOf } from './statistics.ts'
+import type { ColumnReadOut, ColumnStatistic } from './types.ts'
 import { type Unit, unitFits, unitOf } from './units.ts'
 
 /** One channel of a wide file in one block. */
@@ -15,6 +16,8 @@ export interface WideColumn {
   channel: number
   quantity: Quantity
   unit: Unit | null
+  /** Columns with the lowest and highest value of the stretch of time that a row stands for. */
+  bounds?: { at: number; unit: Unit; kind: 'lowest' | 'highest' }[]
 }
 
 /** What a header says about the rows under it. */
@@ -36,6 +39,8 @@ export interface Block {
   unknown: { name: string; position: number }[]
   /** Channels that several columns name. */
   repeated: string[]
+  /** Channels of which the file holds statistics only, while nobody has said which of them counts. */
+  unsettled: OpenReading[]
 }
 
 export interface BlockFacts {
@@ -58,6 +63,8 @@ export interface BlockFacts {
   oneOf: (name: string, positions: readonly number[]) => number | null
   /** Where an unknown name goes by answer: a registered name, `leave-out`, or null while nobody has said. */
   answerFor: (name: string) => string | null
+  /** Which column is the reading of a channel that has statistics only, by an answer or the profile. */
+  readingColumn: string | null
 }
 
 /** Units of the columns that name none, by rank: a metadata line's, an answer's, the profile's. */
@@ -115,9 +122,13 @@ export function makeBlock(
     columns: [],
     unknown: [],
     repeated: [],
+    unsettled: [],
   }
   const valueColumn = columns[block.valueAt]
-  const sameName = layout === 'wide' ? repeatedNames(columns, facts) : new Map<string, number[]>()
+  const wide = layout === 'wide' ? wideColumns(columns, facts) : null
+  const targets = wide?.targets ?? []
+  block.unsettled = wide?.open ?? []
+  const sameName = repeatedNames(targets)
   if (layout === 'long' && valueColumn !== undefined)
     block.unit = usable(columnUnit(valueColumn, block.valueAt, null, facts, null))
   columns.forEach((column, i) => {
@@ -129,9 +140,11 @@ export function makeBlock(
       unit: null,
     }
     block.columns.push(shown)
+    const statistic = wide?.statistics[i] ?? null
+    if (statistic !== null) shown.statistic = statistic
     if (column.role === 'value') shown.unit = block.unit?.token ?? null
     if (layout !== 'wide' || column.role !== 'channel') return
-    const target = wideTarget(column, facts)
+    const target = targets[i] ?? null
     if (target === null) {
       block.unknown.push({ name: column.name, position: i + 1 })
       shown.role = 'left-out'
@@ -162,7 +175,51 @@ export function makeBlock(
     shown.channel = target.name
     shown.unit = unit?.token ?? null
   })
+  if (wide !== null) joinBounds(block, columns, facts)
   return block
+}
+
+/** Lays the columns with the lowest and highest values beside the readings that they bound. */
+function joinBounds(block: Block, columns: readonly HeaderColumn[], facts: BlockFacts): void {
+  block.columns.forEach(({ statistic, channel }, at) => {
+    const column = columns[at]
+    if (channel !== null || column === undefined || statistic === undefined) return
+    const { kind, of } = statistic
+    if (kind !== 'lowest' && kind !== 'highest') return
+    const reading = block.wide.find(
+      (one) => one.quantity !== 'voltage' && facts.sink.channels[one.channel]?.name === of,
+    )
+    if (reading === undefined || reading.unit === null || reading.unit.curve !== undefined) return
+    const own = column.unit.kind === 'unit' ? column.unit.unit : reading.unit
+    if (!unitFits(reading.quantity, own)) return
+    reading.bounds = [...(reading.bounds ?? []), { at, unit: own, kind }]
+  })
+}
+
+/** Where the columns of a wide file go, with those that hold the lowest, highest or mean value of a channel. */
+function wideColumns(
+  columns: readonly HeaderColumn[],
+  facts: BlockFacts,
+): { targets: Target[]; statistics: (ColumnStatistic | null)[]; open: OpenReading[] } {
+  const counts = ({ role }: HeaderColumn) => role === 'channel' || role === 'left-out'
+  const plain = columns.map((column) => (counts(column) ? wideTarget(column, facts) : null))
+  const statistics = columns.map((column) => (counts(column) ? statisticOf(column.name, facts.book) : null))
+  const { chosen, open } = readingColumns(
+    columns.map((_, i) => {
+      const target = plain[i] ?? null
+      return {
+        statistic: target === null ? (statistics[i] ?? null) : null,
+        given: target === null || target === 'leave-out' ? null : target.name,
+      }
+    }),
+    facts.readingColumn,
+  )
+  const targets = plain.map((target, i): Target => {
+    const statistic = statistics[i] ?? null
+    if (target !== null || statistic === null) return target
+    return chosen.has(i) ? channelTarget(statistic.of, facts) : 'leave-out'
+  })
+  return { targets, statistics, open }
 }
 
 /** The channel that keeps the volts of a pressure channel, where the register has one. */
@@ -187,10 +244,9 @@ function usable(unit: Unit | 'leave-out' | null): Unit | null {
 type Target = { name: string; quantity: Quantity | null } | 'leave-out' | null
 
 /** Positions (from 1) of the columns of each channel. */
-function repeatedNames(columns: readonly HeaderColumn[], facts: BlockFacts): Map<string, number[]> {
+function repeatedNames(targets: readonly Target[]): Map<string, number[]> {
   const positions = new Map<string, number[]>()
-  columns.forEach((column, i) => {
-    const target = column.role === 'channel' ? wideTarget(column, facts) : null
+  targets.forEach((target, i) => {
     if (target === null || target === 'leave-out') return
     positions.set(target.name, [...(positions.get(target.name) ?? []), i + 1])
   })

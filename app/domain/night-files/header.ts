@@ -4,6 +4,7 @@ import type { SourceProfile } from '../schemas/source-profile.ts'
 import type { ChannelBook } from './channel-names.ts'
 import { mendLabel } from './encoding.ts'
 import { looksNumeric } from './numbers.ts'
+import { bareStatistic, statisticTail } from './statistics.ts'
 import { looksLikeTime } from './time-text.ts'
 import type { ColumnReadOut } from './types.ts'
 import { readUnit, type UnitReading } from './units.ts'
@@ -55,6 +56,12 @@ function splitHeaderCell(cell: string): { name: string; unit: UnitReading } {
     // A lone letter at the end (HC 03 A, TC 1 C) is far more often a position than amperes or degrees.
     if (unit.kind === 'unit' && token.length > 1) return { name: (tailed[1] as string).trim(), unit }
     if (unit.kind === 'gauge-pressure') return { name: (tailed[1] as string).trim(), unit }
+  }
+  // `P1 (mbar) max`: the unit stands before the word that says which value of a stretch of time it is.
+  const tail = statisticTail(text)
+  if (tail !== null) {
+    const inner = splitHeaderCell(tail.rest)
+    if (inner.unit.kind !== 'none') return { name: `${inner.name} ${tail.word}`, unit: inner.unit }
   }
   return { name: text, unit: { kind: 'none' } }
 }
@@ -133,9 +140,15 @@ export function readHeader(
   const channelAt = columns.findIndex(
     (column) => column.role === 'channel' && CHANNEL.test(column.name) && !book.isKnown(column.name),
   )
-  const valueAt = columns.findIndex(
-    (column) => column.role === 'channel' && VALUE.test(column.name) && !book.isKnown(column.name),
-  )
+  const nameless = (column: HeaderColumn) => column.role === 'channel' && !book.isKnown(column.name)
+  const plainAt = columns.findIndex((column) => nameless(column) && VALUE.test(column.name))
+  // A long file of means calls its value by what it is.
+  const valueAt =
+    plainAt !== -1
+      ? plainAt
+      : columns.findIndex(
+          (column) => nameless(column) && bareStatistic(column.name)?.endsWith('mean') === true,
+        )
   const layout = profile.layout !== 'wide' && channelAt !== -1 && valueAt !== -1 ? 'long' : 'wide'
   if (layout === 'long' && valueAt !== -1) {
     columns.forEach((column, i) => {

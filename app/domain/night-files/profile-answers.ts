@@ -61,6 +61,12 @@ function learn(draft: SourceProfile, { id, choice, found }: Answer, { dialect, c
         ? { kind: 'corrected', gas: choice.slice('corrected:'.length) }
         : { kind: 'nitrogen-equivalent', gas: null }
       return
+    case 'reading-of':
+      draft.readingColumn = choice as SourceProfile['readingColumn']
+      return
+    case 'averaging':
+      draft.averaging = choice as SourceProfile['averaging']
+      return
     case 'floor': {
       const floor = floorOf(choice)
       if (floor !== null && !draft.sentinels.some(({ value }) => value === floor.value))

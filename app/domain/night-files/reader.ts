@@ -10,6 +10,7 @@ import { LineCounter, LineSplitter, NulScanner } from './lines.ts'
 import { choice, QuestionList, question } from './questions.ts'
 import { collectRemarks } from './remarks.ts'
 import { ReadingSink } from './sink.ts'
+import { askAveraging, averagingOf } from './statistics.ts'
 import { LineTally } from './tally.ts'
 import {
   type BatchChannel,
@@ -19,6 +20,7 @@ import {
   type ReadingBatch,
   type ReadOut,
   type Refusal,
+  type StatisticKind,
 } from './types.ts'
 
 /** Gases that controllers of long tubes are set to (common practice, no source). */
@@ -226,6 +228,7 @@ class Reader implements NightFileReader {
     if (this.#refusal === null && this.#sink.total === 0 && this.#questions.isWaiting())
       this.#questions.blockAll()
     this.#askBasis()
+    if (this.#body !== null) askAveraging(...this.#statistics(), this.#profile, this.#questions)
     if (this.#body !== null) askFloors(this.#sink.stuck(), this.#body.numbers, this.#questions)
     const blocked = this.#questions.isBlocked()
     if (this.#refusal === null && !blocked && this.#sink.total === 0) this.#refusal = this.#noRows()
@@ -258,6 +261,15 @@ class Reader implements NightFileReader {
         ],
       }),
     )
+  }
+
+  /** Kinds of the columns that give readings, and the names of all columns that hold statistics. */
+  #statistics(): [StatisticKind[], string[]] {
+    const columns = (this.#body?.block?.columns ?? []).filter(({ statistic }) => statistic !== undefined)
+    const kinds = columns.flatMap(({ channel, statistic }) =>
+      channel === null || statistic === undefined ? [] : [statistic.kind],
+    )
+    return [kinds, columns.map(({ inFile }) => inFile)]
   }
 
   #noRows(): Refusal {
@@ -306,6 +318,7 @@ class Reader implements NightFileReader {
       firstMs: sink.firstMs,
       lastMs: sink.lastMs,
       periodSeconds: sink.periodMs === null ? null : sink.periodMs / 1000,
+      averaging: averagingOf(this.#statistics()[0], this.#profile, this.#questions),
       columns: body?.block?.columns ?? [],
       channels,
       gaps: sink.gaps,

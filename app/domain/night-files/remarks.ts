@@ -2,7 +2,7 @@ import type { FileBody } from './body.ts'
 import { GAP_PERIODS } from './limits.ts'
 import type { NulScanner } from './lines.ts'
 import type { ReadingSink } from './sink.ts'
-import type { ChannelSummary, Remark, RemarkKind } from './types.ts'
+import type { ChannelSummary, ColumnReadOut, Remark, RemarkKind } from './types.ts'
 
 function remark(kind: RemarkKind, count: number, text: string, extra: Partial<Remark> = {}): Remark {
   return { kind, text, line: null, channel: null, atMs: null, count, ...extra }
@@ -94,6 +94,14 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
         `${many(doubts.dates, 'One reading lies', 'readings lie')} outside the dates of the channel in the register and will be stored as suspect.`,
       ),
     )
+  if (doubts.bounds > 0)
+    remarks.push(
+      remark(
+        'outside-bounds',
+        doubts.bounds,
+        `${many(doubts.bounds, 'One reading lies', 'readings lie')} outside the lowest and highest value of the row it stands in. Are the columns what they are called?`,
+      ),
+    )
   if (doubts.spaced > 0)
     remarks.push(
       remark(
@@ -110,8 +118,9 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
         `The time steps back ${body.backSteps === 1 ? 'once' : `${body.backSteps} times`} from one row to the next. Readings are ordered by their time.`,
       ),
     )
+  remarks.push(...statisticRemarks(body.block?.columns ?? []))
   const leftOut = (body.block?.columns ?? [])
-    .filter(({ role }) => role === 'left-out')
+    .filter(({ role, statistic }) => role === 'left-out' && statistic === undefined)
     .map(({ inFile }) => inFile)
   if (leftOut.length > 0)
     remarks.push(
@@ -148,6 +157,36 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
       }),
     )
   remarks.push(...stoppedChannels(sink))
+  return remarks
+}
+
+/** Which columns of a stretch of time count as readings, and which only bound them. */
+function statisticRemarks(columns: readonly ColumnReadOut[]): Remark[] {
+  const some = (list: readonly ColumnReadOut[]) =>
+    `${list
+      .slice(0, 6)
+      .map(({ inFile }) => inFile)
+      .join(', ')}${list.length > 6 ? ' …' : ''}`
+  const statistics = columns.filter(({ statistic }) => statistic !== undefined)
+  const read = statistics.filter(({ channel }) => channel !== null)
+  const kept = statistics.filter(({ channel }) => channel === null)
+  const remarks: Remark[] = []
+  if (read.length > 0)
+    remarks.push(
+      remark(
+        'averaged',
+        read.length,
+        `Taken as the reading: ${some(read)}. A row stands for a stretch of time, not for a moment.`,
+      ),
+    )
+  if (kept.length > 0)
+    remarks.push(
+      remark(
+        'averaged',
+        kept.length,
+        `No readings of their own: ${some(kept)}. They stay in the original file, and readings are held against their lowest and highest values.`,
+      ),
+    )
   return remarks
 }
 

@@ -1,5 +1,5 @@
 import { type Quantity, qualityCode } from '../readings.ts'
-import type { Block } from './block.ts'
+import type { Block, WideColumn } from './block.ts'
 import { channelTarget, voltsOf } from './block.ts'
 import { askUnfitUnit } from './block-questions.ts'
 import { cellFault, channelQuestion, wordQuestion } from './cell-faults.ts'
@@ -13,12 +13,15 @@ import type { ReadingSink } from './sink.ts'
 import type { LineTally } from './tally.ts'
 import { plainWord } from './text.ts'
 import type { UnitWords } from './unit-words.ts'
-import { readUnit, type Unit, unitFits } from './units.ts'
+import { readUnit, toSi, type Unit, unitFits } from './units.ts'
 
 const SUSPECT = qualityCode('suspect')
 const GOOD = qualityCode('good')
 const OFF = qualityCode('off')
 const STARTING = qualityCode('starting')
+
+/** Columns may be written with fewer digits than their neighbour: two digits are off by 5 % at most. */
+const BOUND_ROUNDING = 0.05
 
 /** A row cut into fields, with the header it stands under. */
 export interface Row {
@@ -29,7 +32,7 @@ export interface Row {
 }
 
 export type DoubtCounts = Record<
-  'zero' | 'negative' | 'ceiling' | 'open-sensor' | 'spaced' | 'future' | 'conflict' | 'dates',
+  'zero' | 'negative' | 'ceiling' | 'open-sensor' | 'spaced' | 'future' | 'conflict' | 'dates' | 'bounds',
   number
 >
 
@@ -63,6 +66,7 @@ export class RowReader {
     future: 0,
     conflict: 0,
     dates: 0,
+    bounds: 0,
   }
   leftOut = 0
   /** First row of a long file whose unit is another than that of the row before. */
@@ -104,7 +108,24 @@ export class RowReader {
       const text = row.fields[column.at] ?? ''
       const fault = cells.read(text, column.quantity, column.unit)
       if (fault !== null) this.#fault(row, fault, text, column.at, column.quantity, column.channel)
-      else this.#emit(column.channel, atMs, row, text, marks)
+      else {
+        if (column.bounds !== undefined) this.#holdAgainstBounds(row, column.bounds)
+        this.#emit(column.channel, atMs, row, text, marks)
+      }
+    }
+  }
+
+  /** Flags a row whose reading lies outside the lowest and highest value that the row itself gives. */
+  #holdAgainstBounds({ fields }: Row, bounds: NonNullable<WideColumn['bounds']>): void {
+    const { cells, numbers } = this.#tools
+    for (const { at, unit, kind } of bounds) {
+      const bound = toSi(numbers.read(fields[at] ?? ''), unit)
+      // Where one of the two is no number there is nothing to compare.
+      const beyond = kind === 'lowest' ? bound - cells.value : cells.value - bound
+      if (!(beyond > BOUND_ROUNDING * Math.abs(bound))) continue
+      this.doubts.bounds += 1
+      this.#flagged = true
+      return
     }
   }
 

@@ -2,7 +2,7 @@ import type { Quality, Quantity } from '../readings.ts'
 import type { Separator, TimeFormat } from '../schemas/source-profile.ts'
 
 /** Version of the reading rules; kept with every import, since a later version may read the same bytes otherwise. */
-export const READER_VERSION = 2
+export const READER_VERSION = 3
 
 /** One channel of the source as the register knows it. */
 export interface KnownChannel {
@@ -177,6 +177,8 @@ export type QuestionKind =
   | 'clock-jump'
   | 'same-name'
   | 'column'
+  | 'reading-of'
+  | 'averaging'
 
 export interface Question extends Finding {
   /** Stable for the same file: `unit`, `unknown-channel:HC99Z` … */
@@ -215,6 +217,8 @@ export type RemarkKind =
   | 'offset-change'
   | 'coarse-time'
   | 'outside-dates'
+  | 'averaged'
+  | 'outside-bounds'
 
 /** Something a person should look at before taking the file in. */
 export interface Remark {
@@ -226,6 +230,15 @@ export interface Remark {
   count: number
 }
 
+/** What a column holds of the stretch of time that a row stands for. */
+export type StatisticKind = 'lowest' | 'highest' | 'mean' | 'log-mean'
+
+export interface ColumnStatistic {
+  /** Registered channel. */
+  of: string
+  kind: StatisticKind
+}
+
 export interface ColumnReadOut {
   /** Position in the file counted from 1. */
   position: number
@@ -234,6 +247,8 @@ export interface ColumnReadOut {
   /** Raw channel the column goes to. */
   channel: string | null
   unit: string | null
+  /** Set where the column is named after a channel and a lowest, highest or mean value. */
+  statistic?: ColumnStatistic
 }
 
 /** Lowest and highest usable value in equal steps, for a small plot. */
@@ -323,6 +338,8 @@ export interface ReadOut {
   lastMs: number | null
   /** Seconds between rows: the profile's, else the commonest step of the head. */
   periodSeconds: number | null
+  /** What one reading stands for; null or absent while nobody has said. */
+  averaging?: 'momentary' | 'mean' | 'log-mean' | null
   columns: ColumnReadOut[]
   channels: ChannelSummary[]
   gaps: Gap[]

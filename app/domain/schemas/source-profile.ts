@@ -105,6 +105,8 @@ export const SourceProfileSchema = z.object({
     .default(null),
   /** Whether a row is a momentary value or a mean over the period before it. */
   averaging: z.enum(['momentary', 'mean', 'log-mean']).nullable().default(null),
+  /** Which column is the reading of a channel that a file gives only by its lowest, highest and mean values. */
+  readingColumn: z.enum(['mean', 'log-mean', 'lowest', 'highest', 'leave-out']).nullable().default(null),
   expectedPeriodSeconds: z.number().positive().nullable().default(null),
   /** Columns of a wide file, or channel names of a long one, that are not called like the source's channels. */
   columns: z.array(ProfileColumnSchema).default([]),

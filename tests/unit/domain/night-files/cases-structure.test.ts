@@ -361,17 +361,6 @@ const CASES: Record<string, Case[]> = {
       },
     ),
   ],
-  '70 columns of bounds beside means': [
-    plain(
-      'are no channels of their own until the register has them',
-      file('time,P1,P1 min,P1 max', `${A},1E-8,0.9E-8,1.1E-8`),
-      {
-        context: { channels: pressure('P1') },
-        questions: ['unknown-channel:P1 min', 'unknown-channel:P1 max'],
-        readings: [['P1', A, 1e-8, 'good']],
-      },
-    ),
-  ],
   '72 fields that shifted': [
     plain(
       'cost their line',
