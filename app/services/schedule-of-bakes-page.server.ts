@@ -51,7 +51,7 @@ export interface SchedulePageData {
 /**
  * The schedule asked for, else the current one, else the newest.
  *
- * @throws DomainError not-found; not-acceptable-now when the register has no power cap
+ * @throws DomainError not-found
  */
 export async function readSchedulePage(
   db: Db,

@@ -8,13 +8,10 @@ import {
   type PlacementRow,
   type ScheduleRow,
 } from '../db/queries/bake-schedules.server.ts'
-import { type LimitRow, type LineRow, listLimits, listLines } from '../db/queries/segments.server.ts'
+import { type LineRow, listLimits, listLines } from '../db/queries/segments.server.ts'
 import { ampsAndVolts } from '../domain/bake-load.ts'
 import { PlanPredictionSchema } from '../domain/bake-plan-prediction.ts'
 import { blockingItems, readiness } from '../domain/bake-plan-readiness.ts'
-import { DomainError } from '../domain/errors.ts'
-import type { LimitKind } from '../domain/register.ts'
-import { LIMIT_KIND_FACTS } from '../domain/register.ts'
 import { jobOfPlan } from '../domain/schedule/job-of-plan.ts'
 import type { Extent, Placement, ScheduleJob, ScheduleProblem } from '../domain/schedule/problem.ts'
 import { addWorkingDays, RosterSchema } from '../domain/schedule/rosters.ts'
@@ -35,11 +32,7 @@ export interface ScheduleParts {
   rows: PlacementRow[]
 }
 
-/**
- * The problem of a schedule and where its bakes stand now. Bakes under way are in it, whether chosen or not.
- *
- * @throws DomainError not-acceptable-now when the register has no power cap
- */
+/** The problem of a schedule and where its bakes stand now. Bakes under way are in it, whether chosen or not. */
 export async function readScheduleParts(db: DbOrTx, schedule: ScheduleRow): Promise<ScheduleParts> {
   const { timeZone, ambientC } = await getSite(db)
   const [limits, lines, holidays, rows, plans] = await Promise.all([
@@ -74,8 +67,8 @@ export async function readScheduleParts(db: DbOrTx, schedule: ScheduleRow): Prom
     crews,
     holidays,
     rules: {
-      dayKW: required(limits, 'power-cap-day'),
-      nightKW: required(limits, 'power-cap-night'),
+      dayKW: limitFor(limits, 'power-cap-day', null)?.value ?? null,
+      nightKW: limitFor(limits, 'power-cap-night', null)?.value ?? null,
       baseKW: limitFor(limits, 'power-base', null)?.value ?? 0,
       dayFromHour: 6,
       dayToHour: 22,
@@ -90,15 +83,6 @@ export async function readScheduleParts(db: DbOrTx, schedule: ScheduleRow): Prom
   }
   const placements = wanted.map((plan) => placementOf(plan, rows, fromMs))
   return { problem, placements, rows }
-}
-
-function required(limits: readonly LimitRow[], kind: LimitKind): number {
-  const found = limitFor(limits, kind, null)
-  if (found !== null && found !== undefined) return found.value
-  throw new DomainError(
-    'not-acceptable-now',
-    `The register has no limit “${LIMIT_KIND_FACTS[kind].label}”, so no bake can be given power. An engineer sets it under Register, Limits.`,
-  )
 }
 
 interface Around {

@@ -13,6 +13,7 @@ import {
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
+import { missingCaps } from '../domain/schedule/caps.ts'
 import type { NewSchedule, ScheduleAct } from '../domain/schedule/forms.ts'
 import { type Solution, search } from '../domain/schedule/solve.ts'
 import { violations } from '../domain/schedule/violations.ts'
@@ -129,6 +130,8 @@ export async function solveSchedule(db: Db, scheduleId: number, signal: AbortSig
   if (schedule.state !== 'solving') return
   try {
     const parts = await readScheduleParts(db, schedule)
+    const lacking = missingCaps(parts.problem.rules)
+    if (lacking.length > 0) throw new DomainError('not-acceptable-now', lacking.join(' '))
     const found = await searchSlowly(db, schedule, parts, signal)
     if (found !== null) await keepSolution(db, schedule, parts, found)
   } catch (error) {

@@ -153,11 +153,29 @@ test('the worker places the bakes, a person moves one and is told what breaks, a
   expect(calendar).toContain('SUMMARY:Hot: SG-A')
 })
 
-test('without a power cap the schedule says which limit is missing and who sets it', async () => {
+test('without a power cap the schedule is shown, and says which limit is missing and who sets it', async () => {
+  const byDay =
+    'The register has no limit “Power cap for bakes, 06:00 to 22:00”, so no bake can be given power.'
+  const byNight = 'The register has no limit “Power cap for bakes, 22:00 to 06:00”'
   const id = await made()
   await actOnSchedule(db, bram, MORNING, { act: 'propose', scheduleId: id, revision: 1 })
   await solveSchedule(db, id, signal)
-  await expect(readSchedulePage(db, bram, MORNING, id)).rejects.toThrow(
-    'The register has no limit “Power cap for bakes, 06:00 to 22:00”',
-  )
+  const failed = await shown(id)
+  expect(failed.state).toBe('failed')
+  expect(failed.fault).toContain(byDay)
+  expect(failed.fault).toContain(byNight)
+  expect(failed.placements.map(({ startH }) => startH)).toEqual([null, null])
+  expect(failed.problem.rules).toMatchObject({ dayKW: null, nightKW: null })
+  await limit('power-cap-night', 260)
+  const place = { planId: planIds[0] ?? 0, supply: 'HX-1', cart: 'MC-A', pinned: false }
+  const startsAt = new Date(failed.problem.fromMs + 200 * 3_600_000)
+  const move = { act: 'move', scheduleId: id, revision: failed.revision, startsAt, ...place } as const
+  expect(await actOnSchedule(db, bram, MORNING, move)).toContain('break')
+  const { revision, trouble } = await shown(id)
+  const reasons = trouble.find(({ jobId }) => jobId === String(planIds[0]))?.reasons.join(' ')
+  expect(reasons).toContain(byDay)
+  expect(reasons).not.toContain(byNight)
+  await expect(
+    actOnSchedule(db, bram, MORNING, { act: 'make-current', scheduleId: id, revision }),
+  ).rejects.toThrow('it breaks')
 })

@@ -2,6 +2,7 @@
 import { useEffect, useState } from 'react'
 import { Form, Link, useNavigation, useRevalidator } from 'react-router'
 import { SCHEDULE_OBJECTIVES, type ScheduleState } from '#app/domain/planning.ts'
+import { missingCaps } from '#app/domain/schedule/caps.ts'
 import { OBJECTIVE_FACTS } from '#app/domain/schedule/objectives.ts'
 import type { Placement, ScheduleJob } from '#app/domain/schedule/problem.ts'
 import { type Violation, violations } from '#app/domain/schedule/violations.ts'
@@ -136,7 +137,8 @@ function Shown({
         />
         <p className="mt-2 text-sm text-ink-2">
           Light: preparation and test. Dark: ramp. Then soak, then cooling. A thin bar beneath: what was.
-          Power with {problem.rules.baseKW} kW base load; the line is the cap. Drag a bake, or move it with
+          Power with {problem.rules.baseKW} kW base load
+          {missingCaps(problem.rules).length === 0 && '; the line is the cap'}. Drag a bake, or move it with
           the arrow keys (with Shift by a day); nothing is kept until “Keep this place”. A pinned bake stays
           where it is until it is unpinned there.
         </p>
@@ -196,6 +198,9 @@ function Outcome({ shown }: { shown: ShownSchedule }) {
   const { label, unit, says } = OBJECTIVE_FACTS[objective]
   if (state === 'solving')
     return <Notice announce="status">Places are being looked for: {Math.round(progress * 100)} %.</Notice>
+  const lacking = missingCaps(shown.problem.rules)
+  // A search that failed for want of them says the same.
+  if (lacking.length > 0) return <Notice tone="bad">{lacking.join(' ')}</Notice>
   if (fault !== null) return <Notice tone="bad">{fault}</Notice>
   if (outcome === null || outcome.value === null) return null
   return (

@@ -201,7 +201,8 @@ function PowerSum({
   const { site } = heatByHour(problem, placed)
   const { capKW } = calendarOf(problem)
   const { baseKW } = problem.rules
-  const highest = Math.max(...capKW, ...site.map((kw) => kw + baseKW)) * 1.05
+  const cap = Math.max(...capKW)
+  const highest = Math.max(1, cap, ...site.map((kw) => kw + baseKW)) * 1.05
   const y = (kw: number): number => top + (POWER - 20) * (1 - kw / highest)
   const steps = (value: (hour: number) => number): string =>
     Array.from({ length: problem.hours }, (_, hour) => {
@@ -214,14 +215,18 @@ function PowerSum({
       <text x={4} y={top + 14} className="fill-current text-[12px]">
         Power, kW
       </text>
-      <text x={LEFT - 4} y={y(Math.max(...capKW)) + 4} textAnchor="end" className="fill-current text-[10px]">
-        {Math.max(...capKW)}
-      </text>
+      {cap > 0 && (
+        <text x={LEFT - 4} y={y(cap) + 4} textAnchor="end" className="fill-current text-[10px]">
+          {cap}
+        </text>
+      )}
       <text x={LEFT - 4} y={y(0)} textAnchor="end" className="fill-current text-[10px]">
         0
       </text>
       <path d={`${load}L${x(problem.hours)},${y(0)}L${x(0)},${y(0)}Z`} className="fill-heat opacity-40" />
-      <path d={steps((hour) => capKW[hour] ?? 0)} className="fill-none stroke-bad" strokeWidth={1.2} />
+      {cap > 0 && (
+        <path d={steps((hour) => capKW[hour] ?? 0)} className="fill-none stroke-bad" strokeWidth={1.2} />
+      )}
     </g>
   )
 }

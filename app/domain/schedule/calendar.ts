@@ -60,7 +60,7 @@ function buildCalendar(problem: ScheduleProblem): Calendar {
     const siteHour = at.minuteOfDay / 60
     const day = siteHour >= rules.dayFromHour && siteHour < rules.dayToHour
     calendar.byDay[hour] = day ? 1 : 0
-    calendar.capKW[hour] = day ? rules.dayKW : rules.nightKW
+    calendar.capKW[hour] = (day ? rules.dayKW : rules.nightKW) ?? 0
     const tomorrow = new Date((at.dayNumber + 1) * DAY_MS).toISOString().slice(0, 10)
     calendar.holiday[hour] = holidays.has(at.date) ? 1 : 0
     calendar.beforeHoliday[hour] = holidays.has(at.date) || holidays.has(tomorrow) ? 1 : 0

@@ -67,9 +67,9 @@ export interface ScheduleCrew {
 }
 
 export interface ScheduleRules {
-  /** Caps of the site; the base load is inside them. */
-  dayKW: number
-  nightKW: number
+  /** Caps of the site; the base load is inside them. Null where the register has none, and then no bake has power. */
+  dayKW: number | null
+  nightKW: number | null
   baseKW: number
   /** Site hours between which the day cap holds. */
   dayFromHour: number

@@ -4,6 +4,7 @@
  */
 import { FEEDERS, type Feeder } from '../register.ts'
 import { calendarOf, QUARTERS } from './calendar.ts'
+import { missingCaps } from './caps.ts'
 import {
   canFeed,
   distanceM,
@@ -58,6 +59,7 @@ export function violations(problem: ScheduleProblem, placements: readonly Placem
   const standing = stand(problem, placements)
   return [
     ...standing.flatMap((one) => (one.job.underWay ? [] : ownFaults(problem, one))),
+    ...capFaults(problem, standing),
     ...powerFaults(problem, standing),
     ...equipmentFaults(problem, standing, 'supply'),
     ...equipmentFaults(problem, standing, 'cart'),
@@ -219,16 +221,32 @@ export function heatByHour(
   return { site, feeders }
 }
 
+/** A cap that nobody has set is no leave to heat. */
+function capFaults(problem: ScheduleProblem, standing: readonly Standing[]): Violation[] {
+  const planned = standing.filter(({ job }) => !job.underWay)
+  if (planned.length === 0) return []
+  const jobs = planned.map(({ job }) => job.id)
+  return missingCaps(problem.rules).map((text) => ({
+    severity: 'breaks',
+    kind: 'power',
+    jobs,
+    fromH: 0,
+    untilH: problem.hours,
+    text,
+  }))
+}
+
 function powerFaults(problem: ScheduleProblem, standing: readonly Standing[]): Violation[] {
   const { capKW, byDay } = calendarOf(problem)
-  const { baseKW, feederKW } = problem.rules
+  const { baseKW, feederKW, dayKW, nightKW } = problem.rules
   const { site, feeders } = heatByHour(problem, standing)
   const faults = overloads(problem, standing, 'power', (hour) => {
     const load = site[hour] ?? 0
     const name = byDay[hour] === 1 ? 'Site by day' : 'Site at night'
+    const judged = (byDay[hour] === 1 ? dayKW : nightKW) !== null
     // With no bake on, the base load is not for this schedule to judge.
     return {
-      load: load > 0 ? load + baseKW : 0,
+      load: judged && load > 0 ? load + baseKW : 0,
       limit: capKW[hour] ?? 0,
       name,
       more: `, ${kwWords(baseKW)} kW base load in it`,

@@ -1,5 +1,6 @@
 /** Why a bake cannot be at a time, or at none, in words. */
 import { hourOptions } from './assignment.ts'
+import { missingCaps } from './caps.ts'
 import type { Placement, ScheduleJob, ScheduleProblem } from './problem.ts'
 import { type Violation, violations } from './violations.ts'
 import { dayWords, hourWords, kwWords } from './words.ts'
@@ -77,10 +78,10 @@ export function whyNowhere(
 /** What a bake needs and the site never has, each with what would lift it. */
 export function neverPossible(problem: ScheduleProblem, job: ScheduleJob): string[] {
   const { rules, supplies, carts, crews } = problem
-  const reasons: string[] = []
+  const reasons = missingCaps(rules)
   const peak = Math.max(0, ...job.powerKW)
-  const cap = Math.max(rules.dayKW, rules.nightKW)
-  if (peak + rules.baseKW > cap)
+  const cap = Math.max(rules.dayKW ?? 0, rules.nightKW ?? 0)
+  if (reasons.length === 0 && peak + rules.baseKW > cap)
     reasons.push(
       `${job.label} needs ${kwWords(peak)} kW at its peak; with ${kwWords(rules.baseKW)} kW base load the site gives ${kwWords(cap - rules.baseKW)} kW at most. Ramp slower, bake one segment at a time, or have the cap raised in the register.`,
     )

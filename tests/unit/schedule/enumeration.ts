@@ -119,7 +119,7 @@ function togetherRight(p: ScheduleProblem, all: readonly Put[], fromH = 0, until
       feeder.east += kw * one.feederShare.east
     }
     const siteHour = (hour + 6) % 24
-    const cap = siteHour >= 6 && siteHour < 22 ? p.rules.dayKW : p.rules.nightKW
+    const cap = (siteHour >= 6 && siteHour < 22 ? p.rules.dayKW : p.rules.nightKW) ?? 0
     if (sum > 0 && sum + p.rules.baseKW > cap + 1e-6) return false
     if (feeder.west > (p.rules.feederKW.west ?? 1e9) + 1e-6) return false
     if (feeder.east > (p.rules.feederKW.east ?? 1e9) + 1e-6) return false

@@ -1,5 +1,7 @@
 import { expect, test } from 'vitest'
-import type { Placement } from '#app/domain/schedule/problem.ts'
+import type { Placement, ScheduleJob } from '#app/domain/schedule/problem.ts'
+import { solve } from '#app/domain/schedule/solve.ts'
+import { violations } from '#app/domain/schedule/violations.ts'
 import { neverPossible, whyNot, whyNowhere } from '#app/domain/schedule/why-not.ts'
 import { bakeOf, demoMonth } from './long-problems.ts'
 import { job, problem } from './problems.ts'
@@ -61,4 +63,16 @@ test('a bake that others keep out is told what stands in the way most often', ()
   const month = problem({ jobs: [bakeOf({ segments: [16] }), bakeOf({ segments: [15] })], hours: 300 })
   const [first] = whyNowhere(month, [put('SG-15', 48, 'HX-1', 'MC-1')], 'SG-16')
   expect(first).toMatch(/^At \d+ of \d+ starts looked at, such as: /)
+})
+
+test('without a cap no bake has power: said for the cap that is missing, once, and not as an overload', () => {
+  const { rules } = problem({ jobs: [] })
+  const open = problem({ jobs: [bakeOf({ segments: [16] })], rules: { ...rules, dayKW: null } })
+  const sentence =
+    'The register has no limit “Power cap for bakes, 06:00 to 22:00”, so no bake can be given power. An engineer sets it under Register, Limits.'
+  expect(neverPossible(open, open.jobs[0] as ScheduleJob)).toEqual([sentence])
+  const placement = { jobId: 'SG-16', startH: 60, supply: 'HX-1', cart: 'MC-1', pinned: false }
+  const power = violations(open, [placement]).filter(({ kind }) => kind === 'power')
+  expect(power).toMatchObject([{ severity: 'breaks', text: sentence, jobs: ['SG-16'] }])
+  expect(solve(open, [], 'earliest-finish', { seed: 1, budget: 5 })?.unplaced).toEqual(['SG-16'])
 })
