@@ -189,6 +189,13 @@ const UNIT_FROM_WORDS: Record<NonNullable<ReadOut['dialect']['unitFrom']>, strin
   profile: 'from the profile of the source',
 }
 
+const AVERAGING_WORDS: Record<NonNullable<ReadOut['averaging']> | 'unsaid', string> = {
+  momentary: 'a momentary value',
+  mean: 'a mean over its period',
+  'log-mean': 'a mean of logarithms over its period',
+  unsaid: 'momentary or a mean: not said yet',
+}
+
 function FilePanel({ file, readOut }: { file: ImportPageData['file']; readOut: ReadOut }) {
   const { dialect, firstMs, lastMs } = readOut
   const unit =
@@ -208,6 +215,7 @@ function FilePanel({ file, readOut }: { file: ImportPageData['file']; readOut: R
           { name: 'Zone of its times', value: dialect.zone ?? '–' },
           { name: 'First reading', value: <BothClocks ms={firstMs} /> },
           { name: 'Last reading', value: <BothClocks ms={lastMs} /> },
+          { name: 'Each reading is', value: AVERAGING_WORDS[readOut.averaging ?? 'unsaid'] },
           { name: 'Period', value: readOut.periodSeconds === null ? '–' : `${readOut.periodSeconds} s` },
           {
             name: 'Layout',

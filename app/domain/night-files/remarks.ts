@@ -4,6 +4,9 @@ import type { NulScanner } from './lines.ts'
 import type { ReadingSink } from './sink.ts'
 import type { ChannelSummary, ColumnReadOut, Remark, RemarkKind } from './types.ts'
 
+/** A clock set right steps back once or twice; so many steps look like files laid one behind the other (our choice). */
+const MANY_BACK_STEPS = 5
+
 function remark(kind: RemarkKind, count: number, text: string, extra: Partial<Remark> = {}): Remark {
   return { kind, text, line: null, channel: null, atMs: null, count, ...extra }
 }
@@ -115,7 +118,7 @@ export function collectRemarks(body: FileBody | null, sink: ReadingSink, facts: 
       remark(
         'disorder',
         body.backSteps,
-        `The time steps back ${body.backSteps === 1 ? 'once' : `${body.backSteps} times`} from one row to the next. Readings are ordered by their time.`,
+        `The time steps back ${body.backSteps === 1 ? 'once' : `${body.backSteps} times`} from one row to the next. Readings are ordered by their time.${body.backSteps >= MANY_BACK_STEPS ? ' Were several files put together into one?' : ''}`,
       ),
     )
   remarks.push(...statisticRemarks(body.block?.columns ?? []))
