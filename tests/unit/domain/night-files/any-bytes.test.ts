@@ -2,6 +2,7 @@ import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
 import { NL_W } from '#tests/fixtures/night-files/profiles.ts'
 import { countLines, fixture, readFlat, sumOfOutcomes } from '#tests/fixtures/night-files/read.ts'
+import { RUN_TIMEOUT_MS, runs } from '#tests/fixtures/night-files/runs.ts'
 
 const night = () => new TextDecoder().decode(fixture('nl-w-night.csv'))
 
@@ -30,29 +31,33 @@ describe('encodings and line ends', () => {
 })
 
 describe('whatever the bytes', () => {
-  it('every line has one outcome, and the sum is the number of line ends', async () => {
-    const whole = fixture('nl-w-night.csv')
-    await fc.assert(
-      fc.asyncProperty(
-        fc.array(fc.record({ at: fc.nat(whole.length - 1), byte: fc.integer({ min: 0, max: 255 }) }), {
-          maxLength: 40,
-        }),
-        fc.nat(whole.length),
-        fc.integer({ min: 1, max: 5000 }),
-        async (edits, length, piece) => {
-          const bytes = Uint8Array.from(whole)
-          // CR LF pairs stay whole and no CR is added, so that counting LF counts lines.
-          for (const { at, byte } of edits)
-            if (byte !== 10 && byte !== 13 && bytes[at] !== 10 && bytes[at] !== 13) bytes[at] = byte
-          const cut = bytes.subarray(0, bytes[length - 1] === 13 ? length - 1 : length)
-          const { out, readings } = await readFlat(cut, NL_W, {}, piece)
-          expect(sumOfOutcomes(out)).toBe(out.lines.total)
-          expect(out.lines.total).toBe(countLines(cut))
-          expect(readings).toHaveLength(out.readings.total)
-          for (const { value } of readings) expect(value === null || Number.isFinite(value)).toBe(true)
-        },
-      ),
-      { numRuns: 60 },
-    )
-  })
+  it(
+    'every line has one outcome, and the sum is the number of line ends',
+    async () => {
+      const whole = fixture('nl-w-night.csv')
+      await fc.assert(
+        fc.asyncProperty(
+          fc.array(fc.record({ at: fc.nat(whole.length - 1), byte: fc.integer({ min: 0, max: 255 }) }), {
+            maxLength: 40,
+          }),
+          fc.nat(whole.length),
+          fc.integer({ min: 1, max: 5000 }),
+          async (edits, length, piece) => {
+            const bytes = Uint8Array.from(whole)
+            // CR LF pairs stay whole and no CR is added, so that counting LF counts lines.
+            for (const { at, byte } of edits)
+              if (byte !== 10 && byte !== 13 && bytes[at] !== 10 && bytes[at] !== 13) bytes[at] = byte
+            const cut = bytes.subarray(0, bytes[length - 1] === 13 ? length - 1 : length)
+            const { out, readings } = await readFlat(cut, NL_W, {}, piece)
+            expect(sumOfOutcomes(out)).toBe(out.lines.total)
+            expect(out.lines.total).toBe(countLines(cut))
+            expect(readings).toHaveLength(out.readings.total)
+            for (const { value } of readings) expect(value === null || Number.isFinite(value)).toBe(true)
+          },
+        ),
+        runs(40, 20261111),
+      )
+    },
+    RUN_TIMEOUT_MS,
+  )
 })
