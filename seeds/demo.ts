@@ -9,6 +9,7 @@ import { createReadingPartitions } from '../app/services/partitions.server.ts'
 import { seedCrews } from './bakes/crews.ts'
 import { seedBakeDeviations } from './bakes/deviations.ts'
 import { seedBakePlans } from './bakes/plans.ts'
+import { seedBakeSchedule } from './bakes/schedule.ts'
 import { DEMO_START } from './demo-time.ts'
 import { seedForecasts } from './forecasts/forecasts.ts'
 import { seedIsolationTests } from './forecasts/isolation-tests.ts'
@@ -65,6 +66,7 @@ export async function seedDemo(
     const forecasts = await seedForecasts(inside)
     const bakePlans = await seedBakePlans(inside)
     const crews = await seedCrews(inside)
+    await seedBakeSchedule(inside)
     const bakeDeviations = await seedBakeDeviations(inside)
     const counts = {
       people,

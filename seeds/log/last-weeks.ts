@@ -187,7 +187,7 @@ const WRITTEN: readonly WrittenEntry[] = [
     event: '2026-11-08 20:00',
     written: '2026-11-08 20:10',
     by: 'corwin',
-    text: 'PV-13 shut for an isolated test over night, logger set to a row a minute.',
+    text: 'PV-13 shut for an isolated test over night, logger set to a row a minute, RG-B on the cross to watch argon.',
   },
   {
     segment: 'SG-08',

@@ -1,10 +1,11 @@
-/** Ion currents of the analyser RG-A, which pumps along at the cross of SG-06, by mass. */
+/** Ion currents by mass: of the analyser RG-A at the cross of SG-06, and of RG-B on the closed SG-13. */
 import { ION_SENSITIVITY } from '../../app/physics/gauges.ts'
 import { at } from '../demo-time.ts'
 import { GETTER_ION } from '../register/pump-speeds.ts'
 import { segmentOf } from '../register/segments.ts'
 import { OPEN_LEAK } from '../scenario/events.ts'
 import { scatter, wander } from './noise.ts'
+import { pressureAt } from './pressures.ts'
 import { hydrogenReading } from './segment-gas.ts'
 import { outgassingSwing } from './tunnel-air.ts'
 
@@ -52,9 +53,11 @@ function partialPa(mass: Mass, atMs: number): number {
   return mass === 28 || mass === 32 || mass === 40 ? airPa(mass, atMs) : 0
 }
 
-/** Mass that a channel such as RG-A-40 follows; null for any other channel. */
+/** Mass that a channel such as RG-A-40 or RG-B-40 follows; null for any other channel. */
 export function massOf(channel: string): Mass | null {
-  return MASSES.find((mass) => channel === `RG-A-${String(mass).padStart(2, '0')}`) ?? null
+  return (
+    MASSES.find((mass) => /^RG-[AB]-(\d\d)$/.exec(channel)?.[1] === String(mass).padStart(2, '0')) ?? null
+  )
 }
 
 const SENSITIVITY: Record<Mass, number> = {
@@ -73,4 +76,23 @@ export function ionCurrentA(mass: Mass, atMs: number, noise = scatter): number {
   const current = A_PER_PA * SENSITIVITY[mass] * (ALWAYS[mass] + partialPa(mass, atMs))
   const said = current * (1 + 0.02 * noise(name, atMs) + 0.02 * wander(name, atMs, 4 * 3_600_000))
   return Math.max(FLOOR_A / 10, said + FLOOR_A * noise(`${name}/floor`, atMs))
+}
+
+/** Argon that RG-B brings along and that its own filament keeps level, Pa. */
+const RG_B_ARGON_PA = 2e-9
+
+/**
+ * Ion current of RG-B on the closed SG-13, A: hydrogen rises with the gauges, and argon stays, because nothing leaks in.
+ * Of the air that would make the same rise, argon would be three hundred times as much by the morning.
+ */
+export function closedIonCurrentA(mass: Mass, atMs: number, noise: typeof scatter): number {
+  const name = `RG-B ${mass}`
+  const gauge = pressureAt('SG-13', 'B', atMs)
+  if (typeof gauge !== 'number') throw new Error(`SG-13 says "${gauge}" while RG-B watches it`)
+  const pa = mass === 2 ? gauge / ION_SENSITIVITY.H2 : mass === 40 ? RG_B_ARGON_PA : ALWAYS[mass]
+  const current = A_PER_PA * SENSITIVITY[mass] * pa
+  return Math.max(
+    FLOOR_A / 10,
+    current * (1 + 0.02 * noise(name, atMs)) + FLOOR_A * noise(`${name}/floor`, atMs),
+  )
 }

@@ -140,7 +140,7 @@ function nights(): TakenInFile[] {
   })
 }
 
-/** Recordings second by second, taken in within the hour. */
+/** Recordings, taken in within the hour. */
 function recordings(): TakenInFile[] {
   return RECORDINGS.map((one) => ({
     make: () => recorderFile(one),

@@ -300,7 +300,7 @@ export async function seedHardware(db: DbOrTx): Promise<void> {
     {
       tag: 'RG-B',
       kind: 'residual-gas analyser',
-      facts: 'On cart MC-B, at SG-11',
+      facts: 'Of cart MC-B; on the cross of SG-13 for its isolated test',
       calibrationDue: at('2026-12-01'),
     },
     ...LEAKS.flatMap((one, index) =>

@@ -160,6 +160,21 @@ function gasAndOxygen(): Draft[] {
   ]
 }
 
+/** Where RG-B stood for the night of the isolated test. */
+function closedSegmentGas(): Draft[] {
+  return [2, 40].map((mass) => ({
+    tag: `RG-B-${String(mass).padStart(2, '0')}`,
+    kind: 'partial-pressure',
+    quantity: 'ion-current',
+    segmentId: 13,
+    lineId: 1,
+    chainageM: 1875,
+    label: `m/z ${mass}`,
+    logger: null,
+    typed: false,
+  }))
+}
+
 /** The bars at both ends of a segment, between which its resistance is measured before and after a bake. */
 function tubeEnds(): Draft[] {
   return SEGMENTS.map((one) => ({
@@ -197,6 +212,7 @@ export const POSITIONS: readonly DemoPosition[] = [
   ...supplies(),
   ...gasAndOxygen(),
   ...tubeEnds(),
+  ...closedSegmentGas(),
 ].map((draft, index) => ({ id: index + 1, ...draft }))
 
 /** Writes the positions. */

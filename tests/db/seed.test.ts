@@ -135,8 +135,8 @@ describe('the night files that lie ready', () => {
       anyNightFile('NL-R', LOST_CLOCK_ANSWER.night),
       ...RECORDINGS.map(recorderFile),
     ].filter((file) => file !== null)
-    // Three nights of five loggers, less the analyser's last; its night without a clock; three recordings.
-    expect(files).toHaveLength(14 + 1 + 3)
+    // Three nights of five loggers, less the analyser's last; its night without a clock; four recordings.
+    expect(files).toHaveLength(14 + 1 + 4)
     for (const file of files.filter(({ fileName }) => fileName !== 'NL-W_2026-11-08.csv')) {
       await expect(stage(file), file.fileName).rejects.toMatchObject({ code: 'conflict' })
     }

@@ -111,15 +111,17 @@ describe('night files of the demo', () => {
     expect(sameReadings(rows, file)).toBe(true)
   })
 
-  it.each(RECORDINGS.map((one) => [one.segment, one] as const))(
-    'the recorder at %s says what was written into it, a row a second for half an hour',
-    async (_segment, recording) => {
+  it.each(
+    RECORDINGS.map((one) => [one.segment, one.stepSeconds, one.stepSeconds === 1 ? 1800 : 60, one] as const),
+  )(
+    'the recorder at %s says what was written into it, a row every %i s, %i of them',
+    async (_segment, step, count, recording) => {
       const file = recorderFile(recording)
       const { readOut, rows } = await readBack(file)
       expect(readOut.state).toBe('readable')
       expect(readOut.gapTotal).toBe(0)
-      expect(readOut.periodSeconds).toBe(1)
-      expect(rows).toHaveLength(1800 * recording.channels.length)
+      expect(readOut.periodSeconds).toBe(step)
+      expect(rows).toHaveLength(count * recording.channels.length)
       expect(sameReadings(rows, file)).toBe(true)
     },
   )

@@ -165,7 +165,7 @@ describe('stories in the readings', () => {
 
 describe('recordings second by second', () => {
   const recorded = (segment: string, channel: string) => {
-    const recording = RECORDINGS.find((one) => one.segment === segment)
+    const recording = RECORDINGS.find((one) => one.segment === segment && one.channels.includes(channel))
     if (recording === undefined) throw new Error(`${segment} was not recorded`)
     return recorderFile(recording).readings.filter((one) => one.channel === channel)
   }
@@ -183,6 +183,17 @@ describe('recordings second by second', () => {
     const gained =
       over(rows, '2026-11-08 20:15', '2026-11-08 20:25') - over(rows, '2026-11-08 20:05', '2026-11-08 20:15')
     expect(within(gained * 6, 6.0e-6, 0.05)).toBe(true)
+  })
+
+  it('argon at SG-13 is level all night while hydrogen rises with the gauges: nothing leaks in', () => {
+    const late = ['2026-11-09 04:00', '2026-11-09 06:00'] as const
+    const early = ['2026-11-08 20:00', '2026-11-08 22:00'] as const
+    const grown = (mass: string) => {
+      const rows = recorded('SG-13', `RG-B-${mass}`)
+      return over(rows, ...late) / over(rows, ...early)
+    }
+    expect(within(grown('40'), 1, 0.05)).toBe(true)
+    expect(grown('02')).toBeGreaterThan(5)
   })
 
   it('SG-10 rises within the limit for its size once its port is shut', () => {
