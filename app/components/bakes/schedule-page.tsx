@@ -283,13 +283,13 @@ function MovePanel({
     ...tags.map((value) => ({ value, label: value })),
   ]
   return (
-    <Panel title="Move a bake">
+    <Panel title="Move a bake" className="print:hidden">
       <p aria-live="polite" className="mb-3">
         {answer === null
           ? 'It has no place yet; the form gives it one.'
           : `With ${equipmentWords(job)}: ${answer}`}
       </p>
-      <Form key={`${one.jobId}-${one.startH}`} method="post" className="max-w-md print:hidden">
+      <Form key={`${one.jobId}-${one.startH}`} method="post" className="max-w-md">
         <input type="hidden" name="act" value="move" />
         <input type="hidden" name="scheduleId" value={shown.id} />
         <input type="hidden" name="revision" value={shown.revision} />
@@ -431,8 +431,8 @@ function NewSchedule({
   const typed = failure?.typed?.act === 'create' ? failure.typed : undefined
   const fields = typed === undefined ? {} : (failure?.fields ?? {})
   return (
-    <Panel title="New schedule">
-      <Form method="post" className="max-w-md print:hidden">
+    <Panel title="New schedule" className="print:hidden">
+      <Form method="post" className="max-w-md">
         <input type="hidden" name="act" value="create" />
         <TextField name="title" label="Name" defaultValue={typed?.title} required errors={fields.title} />
         <SiteTimeField
