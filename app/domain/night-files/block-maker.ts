@@ -1,10 +1,10 @@
 import type { Quantity } from '../readings.ts'
 import { type Block, isReordered, makeBlock } from './block.ts'
-import { askUnfitUnit, noKnownChannel, oneOf } from './block-questions.ts'
+import { askOneOf, askUnfitUnit, noKnownChannel, oneOf } from './block-questions.ts'
 import type { BodyTools } from './body.ts'
 import { channelQuestion } from './cell-faults.ts'
 import type { Curves } from './curves.ts'
-import { type HeaderColumn, joinHeaders, readHeader } from './header.ts'
+import { type HeaderColumn, joinHeaders, joinStatistics, readHeader } from './header.ts'
 import type { NumberReader } from './numbers.ts'
 import { askReadingColumn } from './statistics.ts'
 import type { FileDialect, Refusal, Restart } from './types.ts'
@@ -67,6 +67,12 @@ export class BlockMaker {
     this.#make()
   }
 
+  /** Takes a row under a header that says which column is the lowest, highest or mean value of its channel. */
+  statisticRow(fields: readonly string[]): void {
+    this.#headerColumns = joinStatistics(this.#headerColumns, fields)
+    this.#make()
+  }
+
   /** Takes the unit that a line of metadata names; gives the change where another one held before. */
   noteUnit(token: string | null, line: number): { from: Unit; to: Unit } | null {
     const to = this.#unitOfNote(token, line)
@@ -113,7 +119,7 @@ export class BlockMaker {
       unfit: (name, column, unit, quantity) =>
         askUnfitUnit(name, { line: this.#headerLine, column }, unit, quantity, questions),
       unitRow,
-      oneOf: (name, positions) => oneOf(name, positions, this.#headerLine, questions),
+      oneOf: (name, positions) => oneOf(name, positions, questions),
       answerFor: this.#tools.targets,
       readingColumn: questions.answer('reading-of') ?? profile.readingColumn,
     })
@@ -144,6 +150,7 @@ export class BlockMaker {
         this.#tools.dialect.rows[0],
         questions,
       )
+    for (const { name, positions } of block.repeated) askOneOf(name, positions, this.#headerLine, questions)
     for (const { name, position } of block.unknown)
       questions.ask(`unknown-channel:${name}`, () => channelQuestion(name, this.#headerLine, position, book))
   }

@@ -5,15 +5,20 @@ import type { Refusal } from './types.ts'
 import { type Unit, unitsOf } from './units.ts'
 
 /** Which of several columns of one name counts, by its position from 1; null while that is open, and for none. */
-export function oneOf(
+export function oneOf(name: string, positions: readonly number[], questions: QuestionList): number | null {
+  const answer = questions.answer(`same-name:${name}`)
+  return positions.find((position) => String(position) === answer) ?? null
+}
+
+/** Asks which of several columns of one name counts, unless that has been answered. */
+export function askOneOf(
   name: string,
   positions: readonly number[],
   line: number,
   questions: QuestionList,
-): number | null {
+): void {
   const id = `same-name:${name}`
-  const answer = questions.answer(id)
-  if (answer !== null) return positions.find((position) => String(position) === answer) ?? null
+  if (questions.answer(id) !== null) return
   questions.ask(id, () =>
     question({
       id,
@@ -31,7 +36,6 @@ export function oneOf(
       ],
     }),
   )
-  return null
 }
 
 /** Asks about a column whose unit does not measure what its channel measures. */

@@ -37,8 +37,8 @@ export interface Block {
   columns: ColumnReadOut[]
   /** Columns whose name the register does not know, with their position counted from 1. */
   unknown: { name: string; position: number }[]
-  /** Channels that several columns name. */
-  repeated: string[]
+  /** Channels that several columns name, with the positions of these from 1. */
+  repeated: { name: string; positions: readonly number[] }[]
   /** Channels of which the file holds statistics only, while nobody has said which of them counts. */
   unsettled: OpenReading[]
 }
@@ -59,7 +59,7 @@ export interface BlockFacts {
   unfit: (name: string, column: number, unit: Unit, quantity: Quantity) => void
   /** Units of a second header row, by column. */
   unitRow: readonly (Unit | null)[] | null
-  /** The column (from 1) that counts of several with one name; null for none of them, and asks. */
+  /** The column (from 1) that counts of several with one name; null for none of them. */
   oneOf: (name: string, positions: readonly number[]) => number | null
   /** Where an unknown name goes by answer: a registered name, `leave-out`, or null while nobody has said. */
   answerFor: (name: string) => string | null
@@ -156,7 +156,7 @@ export function makeBlock(
     }
     const positions = sameName.get(target.name) ?? []
     if (positions.length > 1) {
-      if (positions[0] === i + 1) block.repeated.push(target.name)
+      if (positions[0] === i + 1) block.repeated.push({ name: target.name, positions })
       if (facts.oneOf(target.name, positions) !== i + 1) {
         shown.role = 'left-out'
         return

@@ -7,7 +7,7 @@ import { joinDecimalCommas, twoWays } from './comma-pairs.ts'
 import { Curves } from './curves.ts'
 import type { Dialect } from './dialect.ts'
 import { splitFields } from './fields.ts'
-import { looksLikeHeader, looksLikeUnitRow } from './header.ts'
+import { looksLikeHeader, looksLikeStatisticRow, looksLikeUnitRow } from './header.ts'
 import { cutLine, NUL_BYTES, OPEN_QUOTE, TOO_LONG, unclearCommas, wrongFieldCount } from './line-faults.ts'
 import { directiveSeparator, isComment, isFooter, readNote } from './line-kinds.ts'
 import { NumberReader } from './numbers.ts'
@@ -137,6 +137,11 @@ export class FileBody {
       if (this.block !== null && !this.#sawRow && looksLikeUnitRow(fields)) {
         tally.add('header')
         this.#blocks.unitRow(fields)
+        return
+      }
+      if (this.block !== null && !this.#sawRow && looksLikeStatisticRow(fields)) {
+        tally.add('header')
+        this.#blocks.statisticRow(fields)
         return
       }
     }

@@ -3,7 +3,7 @@ import type { ChannelBook } from './channel-names.ts'
 import { hasDecimalCommas, joinDecimalCommas } from './comma-pairs.ts'
 import { refuseMarkup } from './content-kind.ts'
 import { splitLoosely } from './fields.ts'
-import { type HeaderColumn, looksLikeHeader, looksLikeUnitRow, readHeader } from './header.ts'
+import { type HeaderColumn, isFurtherHeader, looksLikeHeader, readHeader } from './header.ts'
 import { directiveSeparator, isComment, isFooter } from './line-kinds.ts'
 import { columnsWithoutHeader } from './no-header.ts'
 import { decimalEvidence } from './numbers.ts'
@@ -90,7 +90,7 @@ export function settleDialect(
   const rows = plain
     .filter(({ line, text }) => line > headerAt && !isFooter(text))
     .map(({ line, text }) => ({ fields: splitLoosely(text, separator), line }))
-    .filter(({ fields }) => fields.length > 1 && !looksLikeUnitRow(fields) && !looksLikeHeader(fields, book))
+    .filter(({ fields }) => fields.length > 1 && !isFurtherHeader(fields, book))
   if (rows.length === 0)
     return {
       code: 'header-only',

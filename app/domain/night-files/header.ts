@@ -111,6 +111,27 @@ export function looksLikeUnitRow(fields: readonly string[]): boolean {
   return units > 0
 }
 
+/** Whether every named cell says which value of a stretch of time stands under it: a second row of a header. */
+export function looksLikeStatisticRow(fields: readonly string[]): boolean {
+  const named = fields.slice(1).filter((field) => field.trim() !== '')
+  const kinds = named.map(bareStatistic)
+  // One word alone in a row may as well head a line of totals.
+  return (fields[0] ?? '').trim() === '' && kinds.length > 1 && kinds.every((kind) => kind !== null)
+}
+
+/** Whether a row below the header belongs to it, or begins another block. */
+export function isFurtherHeader(fields: readonly string[], book: ChannelBook): boolean {
+  return looksLikeUnitRow(fields) || looksLikeStatisticRow(fields) || looksLikeHeader(fields, book)
+}
+
+/** Adds to the names of columns what a row under them says about the stretch of time. */
+export function joinStatistics(above: readonly HeaderColumn[], fields: readonly string[]): HeaderColumn[] {
+  return above.map((column, i) => {
+    const word = (fields[i] ?? '').trim()
+    return word === '' || column.role !== 'channel' ? column : { ...column, name: `${column.name} ${word}` }
+  })
+}
+
 /** Reads a header row into columns and the layout that follows from them. */
 export function readHeader(
   fields: readonly string[],

@@ -164,6 +164,26 @@ const CASES: Record<string, Case[]> = {
       },
     ),
   ],
+  '70 a second row of the header that says lowest, mean and highest': [
+    one(
+      'joins the names above it',
+      file('time,P1,P1,P1', ',min,mean,max', `${A},0.9E-8,1.0E-8,1.1E-8`, `${B},1E-8,2E-8,3E-8`),
+      {
+        profile: { ...MEANS, readingColumn: 'mean' },
+        readings: READ,
+        lines: { header: 2, accepted: 2 },
+      },
+    ),
+    one(
+      'does not make a row of totals a header',
+      file('time,P1,P2', `${A},1E-8,2E-8`, ',max,max', `${B},2E-8,3E-8`),
+      {
+        profile: MEANS,
+        rejected: ['3:unreadable-time'],
+        lines: { header: 1, accepted: 2, skipped: 1 },
+      },
+    ),
+  ],
   '70 a value beside its bounds in a row for each channel': [
     one(
       'is the mean, whatever stands beside it',
