@@ -36,6 +36,8 @@ const table = fc.record({
   lineEnd: fc.constantFrom('\n', '\r\n'),
   encoding: fc.constantFrom('utf-8', 'bom', 'utf-16le'),
   lastEnd: fc.boolean(),
+  /** Columns with the lowest and highest value of P1, which are no readings. */
+  bounds: fc.boolean(),
   startMinute: fc.integer({ min: 0, max: 500_000 }),
   rows: fc.array(
     fc.array(
@@ -64,9 +66,10 @@ function write(one: Table): { bytes: Uint8Array; readings: [string, string, numb
   const named = (name: string) => (unitAt === 'header' ? `${name} (${one.unit})` : name)
   const lines = unitAt === 'note' ? [`# Unit: ${one.unit}`] : []
   const readings: [string, string, number | null, string][] = []
+  const bounds = one.bounds && one.layout === 'wide'
   lines.push(
     one.layout === 'wide'
-      ? ['time', named('P1'), named('P2')].join(separator)
+      ? ['time', ...(bounds ? ['P1 min', 'P1', 'P1 max', 'P2'] : ['P1', 'P2']).map(named)].join(separator)
       : ['time', 'channel', named('value')].join(separator),
   )
   one.rows.forEach((cells, i) => {
@@ -84,6 +87,7 @@ function write(one: Table): { bytes: Uint8Array; readings: [string, string, numb
       readings.push([channel, at.toISOString(), value, 'good'])
       return `${number(cell.mantissa, cell.power)}${unitAt === 'cell' ? ` ${one.unit}` : ''}`
     })
+    if (bounds) texts.splice(0, 1, number(100, -12), texts[0] ?? '', number(999, 2))
     if (one.layout === 'wide') lines.push([time, ...texts].join(separator))
     else lines.push(...texts.map((text, j) => [time, `P${j + 1}`, text].join(separator)))
   })
@@ -101,8 +105,11 @@ function profileOf(one: Table) {
     decimalMark: one.comma && one.separator !== ',' ? ',' : '.',
     time: { format: one.time, zone: 'UTC' },
     basis: { kind: 'nitrogen-equivalent' },
+    averaging: 'mean',
   })
 }
+
+const REGISTERED = { channels: ['P1', 'P2'].map((name) => ({ name, quantity: 'pressure' as const })) }
 
 describe('any table in any dialect', () => {
   it(
@@ -114,9 +121,10 @@ describe('any table in any dialect', () => {
           // Units that stand in cells need a cell that holds one among the first rows.
           fc.pre(numbers > 0)
           const { bytes, readings } = write(one)
-          const { out, readings: read } = await readFlat(bytes, profileOf(one), {}, piece)
+          const { out, readings: read } = await readFlat(bytes, profileOf(one), REGISTERED, piece)
           expect(out.state).toBe('readable')
           expect(out.questions).toEqual([])
+          expect(out.remarks.map(({ kind }) => kind)).not.toContain('outside-bounds')
           const expected = new Map(readings.map(([channel, at, ...rest]) => [`${channel} ${at}`, rest]))
           expect(read).toHaveLength(expected.size)
           for (const { channel, at, value, quality } of read) {
@@ -156,7 +164,7 @@ describe('any damage to any table', () => {
             else bytes = Buffer.concat(kind === 'remove' ? [before, after] : [before, part, part, after])
             if (bytes.length === 0) return
           }
-          const { out, readings } = await readFlat(bytes, profileOf(one))
+          const { out, readings } = await readFlat(bytes, profileOf(one), REGISTERED)
           expect(sumOfOutcomes(out)).toBe(out.lines.total)
           if (out.dialect.encoding === 'utf-8' || out.dialect.encoding === 'windows-1252')
             expect(out.lines.total).toBe(countLines(bytes))

@@ -216,7 +216,7 @@ const CASES: Record<string, Case[]> = {
       remarks: ['short-file'],
     }),
   ],
-  '51 to 54 repeats, conflicts, disorder, gaps': [
+  '51 to 55 repeats, conflicts, disorder, gaps, changes of period': [
     plain(
       'an exact repeat is kept once and counted',
       file('time,P1', `${A},1E-8`, `${A},1E-8`, `${B},2E-8`),
@@ -241,6 +241,19 @@ const CASES: Record<string, Case[]> = {
           ['P1', A, 1e-8, 'good'],
           ['P1', C, 3e-8, 'good'],
         ],
+      },
+    ),
+    plain(
+      'many steps back look like files laid one behind the other, and that is asked',
+      file(
+        'time,P1',
+        ...Array.from({ length: 6 }, (_, i) => [`${B},2E-8`, `2026-11-08T06:0${i}:00Z,1E-8`]).flat(),
+      ),
+      {
+        readings: undefined,
+        remarks: ['disorder'],
+        more: (out) =>
+          expect(out.remarks.find(({ kind }) => kind === 'disorder')?.text).toContain('several files'),
       },
     ),
     plain(

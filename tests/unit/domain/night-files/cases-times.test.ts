@@ -270,6 +270,13 @@ const CASES: Record<string, Case[]> = {
         ]),
     },
     {
+      name: 'are asked about with a decimal comma as well',
+      file: file('Zeit;P1 (Pa)', '46335,3125;1,5E-8', '46335,3194444444;2,5E-8'),
+      profile: PLAIN,
+      state: 'needs-answers',
+      questions: ['date-order'],
+    },
+    {
       name: 'are local time once the base is known',
       file: at('46335.3125'),
       profile: { ...PLAIN, time: { ...PLAIN.time, format: 'serial-1900', zone: 'Europe/Vienna' } },

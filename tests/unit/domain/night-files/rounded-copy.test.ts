@@ -23,7 +23,7 @@ function pairs(stored: readonly number[], inFile: (value: number, i: number) => 
 const NIGHT = Array.from({ length: 200 }, (_, i) => Number(`${5 + ((i * 37) % 97) / 100}e-8`))
 const toDigits = (digits: number) => (value: number) => Number(value.toPrecision(digits))
 
-describe('a file beside what is stored', () => {
+describe('66 a file beside what is stored', () => {
   it('is a rounded copy when it has the same instants with fewer digits', () => {
     const finding = compareWithStored(pairs(NIGHT, toDigits(2)))
     expect(finding).toMatchObject({ kind: 'rounded-copy', pairs: 200, digits: 2 })
