@@ -164,33 +164,42 @@ async function searchSlowly(
 async function keepSolution(
   db: Db,
   schedule: ScheduleRow,
-  { problem }: ScheduleParts,
+  parts: ScheduleParts,
   found: Solution,
 ): Promise<void> {
-  const ids = await equipmentIds(db)
-  const { value, bound, boundWhy, gap, built } = found
   await tx(db, async (inside) => {
     const row = await lockSchedule(inside, schedule.id)
     if (row === null || row.state !== 'solving' || row.revision !== schedule.revision) return
-    for (const one of found.placements) {
-      const job = problem.jobs.find(({ id }) => id === one.jobId)
-      if (job === undefined || job.underWay) continue
-      await putPlacement(inside, {
-        scheduleId: schedule.id,
-        planId: Number(one.jobId),
-        startsAt: one.startH === null ? null : new Date(problem.fromMs + one.startH * HOUR_MS),
-        supplySetId: ids.supply(one.supply),
-        cartId: ids.cart(one.cart),
-        pinned: one.pinned,
-        trouble: one.startH === null ? whyNowhere(problem, found.placements, one.jobId) : [],
-      })
-    }
-    await updateSchedule(inside, schedule.id, {
-      state: 'solved',
-      progress: 1,
-      outcome: { value, bound, boundWhy, gap, built },
-      revision: row.revision + 1,
+    await writeSolution(inside, row, parts, found)
+  })
+}
+
+/** Writes down what a search has found, and why a bake has no place. The schedule's own row is locked by the caller. */
+export async function writeSolution(
+  inside: DbOrTx,
+  { id, revision }: Pick<ScheduleRow, 'id' | 'revision'>,
+  { problem }: ScheduleParts,
+  { placements, value, bound, boundWhy, gap, built }: Solution,
+): Promise<void> {
+  const ids = await equipmentIds(inside)
+  for (const one of placements) {
+    const job = problem.jobs.find((candidate) => candidate.id === one.jobId)
+    if (job === undefined || job.underWay) continue
+    await putPlacement(inside, {
+      scheduleId: id,
+      planId: Number(one.jobId),
+      startsAt: one.startH === null ? null : new Date(problem.fromMs + one.startH * HOUR_MS),
+      supplySetId: ids.supply(one.supply),
+      cartId: ids.cart(one.cart),
+      pinned: one.pinned,
+      trouble: one.startH === null ? whyNowhere(problem, placements, one.jobId) : [],
     })
+  }
+  await updateSchedule(inside, id, {
+    state: 'solved',
+    progress: 1,
+    outcome: { value, bound, boundWhy, gap, built },
+    revision: revision + 1,
   })
 }
 
