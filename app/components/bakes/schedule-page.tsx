@@ -138,9 +138,9 @@ function Shown({
         <p className="mt-2 text-sm text-ink-2">
           Light: preparation and test. Dark: ramp. Then soak, then cooling. A thin bar beneath: what was.
           Power with {problem.rules.baseKW} kW base load
-          {missingCaps(problem.rules).length === 0 && '; the line is the cap'}. Drag a bake, or move it with
-          the arrow keys (with Shift by a day); nothing is kept until “Keep this place”. A pinned bake stays
-          where it is until it is unpinned there.
+          {missingCaps(problem.rules).length === 0 && '; the line is the cap'}.
+          {mayPlan &&
+            ' Drag a bake, or move it with the arrow keys (with Shift by a day); nothing is kept until “Keep this place”. A pinned bake stays where it is until it is unpinned there.'}
         </p>
       </Panel>
       <Findings
@@ -236,6 +236,12 @@ function Findings({ found, unplaced }: { found: readonly Violation[]; unplaced: 
               <h3 className="font-semibold">
                 {SEVERITY[severity]} ({own.length})
               </h3>
+              {severity === 'missing' && (
+                <p className="text-sm text-ink-2">
+                  Judged by each plan as it stands, its own start included; put a place into the plan to have
+                  it judged there.
+                </p>
+              )}
               <ul className="list-disc pl-5">
                 {own.map(({ text, fromH }) => (
                   <li key={`${fromH}-${text}`}>{text}</li>

@@ -38,7 +38,7 @@ export function FindingFacts({
           },
           {
             name: 'Limit',
-            value: limitPaPerHour === null ? 'none set' : `${limitPaPerHour.toExponential(1)} Pa/h`,
+            value: limitPaPerHour === null ? 'none set' : <Scientific value={limitPaPerHour} unit="Pa/h" />,
           },
           {
             name: 'Gas load, nitrogen-equivalent',
@@ -46,7 +46,10 @@ export function FindingFacts({
               <PlusMinus value={finding.throughputPaM3S} se={finding.throughputSePaM3S} unit="Pa·m³/s" />
             ),
           },
-          { name: 'The same if it is hydrogen', value: `${finding.hydrogenPaM3S.toExponential(1)} Pa·m³/s` },
+          {
+            name: 'The same if it is hydrogen',
+            value: <Scientific value={finding.hydrogenPaM3S} unit="Pa·m³/s" />,
+          },
           ...(bend === null
             ? []
             : [
@@ -86,6 +89,15 @@ export function FindingFacts({
         changes the pressure by 0.3 %, the outgassing by about 7 %.
       </p>
     </>
+  )
+}
+
+function Scientific({ value, unit }: { value: number; unit: string }) {
+  const [digits = '0', exponent = '0'] = value.toExponential(1).split('e')
+  return (
+    <span className="whitespace-nowrap">
+      {digits.replace('-', '−')} × 10<sup>{String(Number(exponent)).replace('-', '−')}</sup>&nbsp;{unit}
+    </span>
   )
 }
 

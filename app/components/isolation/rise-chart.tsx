@@ -121,7 +121,7 @@ export function RiseChart({
             />
             <text
               x={x(limit.to) - 4}
-              y={Math.max(TOP + 12, y(limit.toPa) + 4)}
+              y={Math.max(TOP + 12, y(limit.toPa) - 6)}
               textAnchor="end"
               className="fill-ink-2"
             >
