@@ -105,7 +105,7 @@ async function jobOf(db: DbOrTx, plan: PlanRow, around: Around): Promise<Schedul
       ? []
       : blockingItems(readiness(facts))
           .filter(({ kind }) => kind === 'computed')
-          .map(({ label, detail }) => (detail === '' ? label : `${label}: ${detail}`))
+          .map(missingWords)
   return jobOfPlan({
     id: plan.id,
     content,
@@ -121,6 +121,12 @@ async function jobOf(db: DbOrTx, plan: PlanRow, around: Around): Promise<Schedul
     earliestH: around.earliestH,
     earliestWhy: `${LEAD_DAYS} working days after its permit is asked for`,
   })
+}
+
+/** A label says what would be right; of a step that is missing, a sentence on what is wrong says more. */
+function missingWords({ label, detail }: { label: string; detail: string }): string {
+  if (detail.endsWith('.')) return detail
+  return `not met yet: ${label}${detail === '' ? '' : ` (${detail})`}`
 }
 
 /** A spur's first metre lies beside the line it leaves. */

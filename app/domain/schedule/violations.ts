@@ -116,7 +116,7 @@ function ownFaults(problem: ScheduleProblem, { job, startH }: Standing): Violati
       'window',
       latest,
       overH,
-      `${job.label}: over ${hourWords(problem, overH)}, wanted by ${hourWords(problem, latest)}.`,
+      `${job.label}: its test would be over ${hourWords(problem, overH)}, and it has to be over by ${hourWords(problem, latest)}.`,
     )
   if (startH < job.earliestH)
     say(
@@ -249,7 +249,7 @@ function powerFaults(problem: ScheduleProblem, standing: readonly Standing[]): V
       load: judged && load > 0 ? load + baseKW : 0,
       limit: capKW[hour] ?? 0,
       name,
-      more: `, ${kwWords(baseKW)} kW base load in it`,
+      more: `, with the base load of ${kwWords(baseKW)} kW`,
     }
   })
   for (const feeder of FEEDERS) {

@@ -24,8 +24,15 @@ export function whyNot(
   const sentence =
     breaks.length === 0
       ? `${when}: nothing stands in the way.`
-      : `${job.label} not on ${dayWords(problem, startH)} at ${hourWords(problem, startH).slice(-5)}: ${breaks.map(({ text }) => text).join(' ')}`
+      : `${job.label} not on ${dayWords(problem, startH)} at ${hourWords(problem, startH).slice(-5)}: ${breaks.map(({ text }) => withoutName(job, text)).join(' ')}`
   return { sentence, breaks, placement }
+}
+
+/** The sentence has named the bake already. */
+function withoutName({ label }: ScheduleJob, text: string): string {
+  const name = `${label}: `
+  if (!text.startsWith(name)) return text
+  return `${text.charAt(name.length).toUpperCase()}${text.slice(name.length + 1)}`
 }
 
 function breaking(problem: ScheduleProblem, placements: readonly Placement[]): Violation[] {
@@ -72,7 +79,7 @@ export function whyNowhere(
   return [...seen.values()]
     .sort((a, b) => b.count - a.count)
     .slice(0, 3)
-    .map(({ count, text }) => `At ${count} of ${looked} starts looked at, such as: ${text}`)
+    .map(({ count, text }) => `At ${count} of the ${looked} starts tried, for example: ${text}`)
 }
 
 /** What a bake needs and the site never has, each with what would lift it. */

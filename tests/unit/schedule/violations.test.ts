@@ -57,7 +57,7 @@ test('three ramp ends in one hour are 241 kW: refused by day, allowed at night',
   expect(byDay.map(({ kind, text }) => [kind, text])).toEqual([
     [
       'power',
-      'Site by day at 241 of 200 kW, 9 Nov 19:00–20:00, 18 kW base load in it: SG-01+SG-02, SG-11+SG-12, SG-15+SG-16.',
+      'Site by day at 241 of 200 kW, 9 Nov 19:00–20:00, with the base load of 18 kW: SG-01+SG-02, SG-11+SG-12, SG-15+SG-16.',
     ],
   ])
   expect(violations(all, placed({ 'SG-01+SG-02': 4, 'SG-11+SG-12': 4, 'SG-15+SG-16': 4 }))).toEqual([])

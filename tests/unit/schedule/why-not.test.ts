@@ -26,6 +26,10 @@ test('the answer names the day, the limit, the figure and the hours', () => {
   expect(found.sentence).toContain(' of 160 kW, 12 Nov ')
   // It was given the set and the cart that nobody has.
   expect(found.placement).toMatchObject({ supply: 'HX-3', cart: 'MC-3' })
+  // Named once, not before every reason again.
+  expect(whyNot(month, [], 'SG-16', 0).sentence).toMatch(
+    /^SG-16 not on 9 Nov at \d\d:\d\d: Preparation would begin .* before the schedule does\./,
+  )
   expect(whyNot(month, [], 'SG-16', 62).sentence).toBe('SG-16 on 11 Nov 20:00: nothing stands in the way.')
 })
 
@@ -62,7 +66,7 @@ test('a bake that can be nowhere is told what binds and what would lift it', () 
 test('a bake that others keep out is told what stands in the way most often', () => {
   const month = problem({ jobs: [bakeOf({ segments: [16] }), bakeOf({ segments: [15] })], hours: 300 })
   const [first] = whyNowhere(month, [put('SG-15', 48, 'HX-1', 'MC-1')], 'SG-16')
-  expect(first).toMatch(/^At \d+ of \d+ starts looked at, such as: /)
+  expect(first).toMatch(/^At \d+ of the \d+ starts tried, for example: /)
 })
 
 test('without a cap no bake has power: said for the cap that is missing, once, and not as an overload', () => {
