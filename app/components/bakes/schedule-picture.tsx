@@ -138,48 +138,52 @@ function Row({
     onChoose(job.id)
     onMove?.(job.id, startH + sign * (event.shiftKey ? DAY_H : 1))
   }
+  const mark =
+    startH === null
+      ? { x: LEFT + 4, words: 'no place yet' }
+      : placement.pinned
+        ? { x: x(startH) + 3, words: 'pinned' }
+        : null
   return (
-    // biome-ignore lint/a11y/useSemanticElements: a button cannot stand inside a picture
-    <g
-      role="button"
-      tabIndex={0}
-      aria-label={`${job.label}: ${where}${placement.pinned ? ', pinned' : ''}`}
-      aria-pressed={chosen === job.id}
-      onPointerDown={drag}
-      onKeyDown={keys}
-    >
-      <rect
-        x={0}
-        y={y}
-        width={WIDTH}
-        height={ROW - 2}
-        className={chosen === job.id ? 'fill-rule-2' : 'fill-transparent'}
-      />
-      <text x={4} y={y + 16} className="fill-current text-[12px] font-medium">
-        {job.label}
-      </text>
-      {startH === null && (
-        <text x={LEFT + 4} y={y + 16} className="fill-current text-[12px]">
-          no place yet
-        </text>
-      )}
-      {parts.map(([from, until, shade]) => (
+    <>
+      {/* biome-ignore lint/a11y/useSemanticElements: a button cannot stand inside a picture */}
+      <g
+        role="button"
+        tabIndex={0}
+        aria-label={`${job.label}: ${where}${placement.pinned ? ', pinned' : ''}`}
+        aria-pressed={chosen === job.id}
+        onPointerDown={drag}
+        onKeyDown={keys}
+      >
         <rect
-          key={`${from}-${shade}`}
-          x={x(from)}
-          y={y + 4}
-          width={Math.max(0, x(until) - x(from))}
-          height={18}
-          // A finger on the bar moves the bake; beside it, the page.
-          className={`${broken.has(job.id) ? 'fill-bad' : 'fill-heat'} ${shade} ${movable ? 'cursor-grab touch-none' : ''}`}
+          x={0}
+          y={y}
+          width={WIDTH}
+          height={ROW - 2}
+          className={chosen === job.id ? 'fill-rule-2' : 'fill-transparent'}
         />
-      ))}
-      {placement.pinned && startH !== null && (
-        <text x={x(startH) + 3} y={y + 17} className="fill-current text-[11px] font-medium">
-          pinned
+        <text x={4} y={y + 16} className="fill-current text-[12px] font-medium">
+          {job.label}
+        </text>
+        {parts.map(([from, until, shade]) => (
+          <rect
+            key={`${from}-${shade}`}
+            x={x(from)}
+            y={y + 4}
+            width={Math.max(0, x(until) - x(from))}
+            height={18}
+            // A finger on the bar moves the bake; beside it, the page.
+            className={`${broken.has(job.id) ? 'fill-bad' : 'fill-heat'} ${shade} ${movable ? 'cursor-grab touch-none' : ''}`}
+          />
+        ))}
+      </g>
+      {/* Beside the button, whose name says the same. */}
+      {mark !== null && (
+        <text x={mark.x} y={y + 17} className="pointer-events-none fill-current text-[11px] font-medium">
+          {mark.words}
         </text>
       )}
-    </g>
+    </>
   )
 }
 
