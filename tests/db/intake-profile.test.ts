@@ -1,6 +1,6 @@
 import { eq } from 'drizzle-orm'
 import { beforeEach, describe, expect, it } from 'vitest'
-import { channel, importFile, record, source } from '#app/db/schema/index.ts'
+import { channel, importFile, reading, record, source } from '#app/db/schema/index.ts'
 import type { Actor } from '#app/domain/actor.ts'
 import type { ReadOut } from '#app/domain/night-files/types.ts'
 import { channelKey } from '#app/domain/register.ts'
@@ -80,6 +80,28 @@ describe('answers', () => {
     const asked = (await report(next)).questions[0]
     expect(asked?.id).toBe('unit')
     expect(asked?.choices[0]?.candidates[0]?.meaning).toContain('HC-01A was last')
+  })
+
+  it('about columns of lowest, mean and highest values hold from then on, and only the means are stored', async () => {
+    const header = 'time,HC-01A min (mbar),HC-01A mean (mbar),HC-01A max (mbar)'
+    const rows = (day: string) => `${header}\n${day}T04:00:00Z,4.9E-10,5.1E-10,5.4E-10\n`
+    const meant = await createSource(db, { code: 'NL-M', profile: null, profileVersion: 0 })
+    await createChannel(db, { sourceId: meant.id, name: 'HC-01A' })
+    const importId = await upload(rows('2026-11-08'), 'NL-M')
+    const asked = async () => (await report(importId)).questions.map(({ id }) => id)
+    expect(await asked()).toEqual(['reading-of'])
+    await answerQuestions(db, technician, MORNING, importId, [{ id: 'reading-of', choice: 'mean' }])
+    expect(await asked()).toEqual(['basis', 'averaging'])
+    await answerQuestions(db, technician, MORNING, importId, [
+      { id: 'averaging', choice: 'log-mean' },
+      { id: 'basis', choice: 'nitrogen-equivalent' },
+    ])
+    await acceptImport(db, technician, secondsAfter(MORNING, 60), importId)
+    const stored = await db.select({ value: reading.value }).from(reading)
+    expect(stored).toHaveLength(1)
+    expect(stored[0]?.value).toBeCloseTo(5.1e-8, 12)
+    const next = await report(await upload(rows('2026-11-07'), 'NL-M'))
+    expect(next).toMatchObject({ state: 'readable', questions: [], averaging: 'log-mean' })
   })
 
   it('leave the profile alone where nobody answered anything', async () => {

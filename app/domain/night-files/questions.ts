@@ -48,6 +48,10 @@ export class QuestionList {
     asked.waiting += waiting
   }
 
+  isAsked(id: string): boolean {
+    return this.#asked.has(id)
+  }
+
   /** Whether a question stands open without whose answer no value or time is sure. */
   isBlocked(): boolean {
     return this.#blocked

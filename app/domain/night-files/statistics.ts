@@ -176,6 +176,8 @@ export function askAveraging(
   questions: QuestionList,
 ): void {
   if (found.length === 0 || questions.answer('averaging') !== null) return
+  // Which columns are the readings comes first: a column of means is no momentary value.
+  if (questions.isAsked('reading-of')) return
   const isMean = kinds.includes('mean')
   const { averaging } = profile
   if (kinds.includes('log-mean') && (averaging === null || averaging === 'log-mean')) return

@@ -103,7 +103,7 @@ const CASES: Record<string, Case[]> = {
   '70 a channel that has a lowest, a highest and a mean value and no other': [
     one('stops the file until somebody says which of them counts', ONLY, {
       state: 'needs-answers',
-      questions: ['reading-of', 'averaging'],
+      questions: ['reading-of'],
       readings: [],
       more: (out) =>
         expect(
@@ -123,6 +123,13 @@ const CASES: Record<string, Case[]> = {
         expect(out.columns[2]).toMatchObject({ channel: 'P1', statistic: { of: 'P1', kind: 'mean' } })
       },
     }),
+    one('is asked what sort of mean it is only when the mean is the reading', ONLY, {
+      context: answers(['reading-of', 'mean']),
+      questions: ['averaging'],
+      readings: READ,
+      more: (out) =>
+        expect(out.questions[0]?.choices.map(({ value }) => value)).toEqual(['mean', 'log-mean']),
+    }),
     one('is read by the highest where somebody wants that', ONLY, {
       context: answers(['reading-of', 'highest']),
       readings: [
@@ -135,7 +142,7 @@ const CASES: Record<string, Case[]> = {
       'keeps the other channels of the file readable meanwhile',
       ONLY.replace('time,', 'time,P2,').replaceAll('Z,', 'Z,5E-8,'),
       {
-        questions: ['reading-of', 'averaging'],
+        questions: ['reading-of'],
         readings: [
           ['P2', A, 5e-8, 'good'],
           ['P2', B, 5e-8, 'good'],
