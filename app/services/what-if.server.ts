@@ -7,6 +7,7 @@ import { type AskedWhatIf, readWhatIf, whatIfQuery } from '../domain/what-if-que
 import { type WhatIfCurve, whatIfRefusal, whatIfSlices } from '../domain/what-if-solve.ts'
 import { PhysicsError } from '../physics/errors.ts'
 import { TransportError } from '../physics/transport.ts'
+import { readExcess } from './bake-options.server.ts'
 import { readCurves } from './segment-curves.server.ts'
 import { coldModel } from './segment-model.server.ts'
 import { readStandings, type StandingSegment } from './standing.server.ts'
@@ -28,6 +29,8 @@ export interface WhatIfPageData {
   measured: { gauge: string; hours: number[]; pa: (number | null)[] } | null
   /** Whether the pump of the model has been taken off since. */
   pumpGone: boolean
+  /** How many times the register's hydrogen the segment in service reads now; null where that explains the reading. */
+  excessTimes: number | null
 }
 
 /**
@@ -48,7 +51,14 @@ export async function readWhatIfPage(
   const pumps = working.length > 0 ? working : await lastPump(db, own)
   const ground = groundOf(own, pumps)
   const targetPa = own.target?.value ?? null
-  const common = { tag, targetPa, measured: await readMeasured(db, own, now), pumpGone: working.length === 0 }
+  const [excess] = await readExcess(db, [tag], now)
+  const common = {
+    tag,
+    targetPa,
+    measured: await readMeasured(db, own, now),
+    pumpGone: working.length === 0,
+    excessTimes: excess?.times ?? null,
+  }
   if (ground === null) return { ...common, trial: null }
   const asked = readWhatIf(ground, query)
   const solved = await solve(ground, asked.state)

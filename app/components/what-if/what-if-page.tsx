@@ -27,7 +27,7 @@ import { Choice, CopyLink } from './what-if-parts.tsx'
 const RESET = 'Back to the register’s'
 
 export function WhatIfPage(props: WhatIfPageData) {
-  const { tag, trial } = props
+  const { tag, trial, excessTimes } = props
   return (
     <>
       <PageHead
@@ -53,6 +53,12 @@ export function WhatIfPage(props: WhatIfPageData) {
       >
         Change the numbers and see what the model makes of them. Nothing here is saved, and no record changes.
       </PageHead>
+      {excessTimes !== null && (
+        <Notice tone="warn">
+          {tag} now reads {excessTimes.toFixed(1)} times what the register's hydrogen gives. The curve starts
+          from the register; try a leak or more hydrogen to come to what the gauge says.
+        </Notice>
+      )}
       {trial === null ? (
         <Notice tone="warn" lead="No trial without a model. ">
           The register must give {tag} a high-vacuum pump with its speeds for water and hydrogen, and the
