@@ -77,7 +77,11 @@ async function ensureOriginal(connection: mysql.Connection, url: URL): Promise<s
   const wanted = `${PREFIX}${hash.digest('hex').slice(0, 12)}`
   const [rows] = await connection.query<mysql.RowDataPacket[]>('SHOW DATABASES LIKE ?', [`${PREFIX}%`])
   const present = rows.flatMap((row) => Object.values(row).map(String))
-  for (const old of present) if (old !== wanted) await connection.query('DROP DATABASE ??', [old])
+  // A younger one may be looked at by a test that began before a file was changed.
+  for (const old of present) {
+    if (old !== wanted && (await isOutlived(connection, old)))
+      await connection.query('DROP DATABASE ??', [old])
+  }
   if (present.includes(wanted) && (await isSeeded(connection, wanted))) return wanted
   // Both are idempotent, and a seeding that was cut off is completed.
   for (const file of ['app/cli/migrate.ts', 'app/cli/seed.ts']) {
@@ -93,6 +97,16 @@ async function ensureOriginal(connection: mysql.Connection, url: URL): Promise<s
     })
   }
   return wanted
+}
+
+/** Whether a seeded database is older than any run of tests takes. */
+async function isOutlived(connection: mysql.Connection, database: string): Promise<boolean> {
+  const [row] = await rowsOf(
+    connection,
+    'SELECT COALESCE(MIN(CREATE_TIME) < NOW() - INTERVAL 2 HOUR, TRUE) AS outlived FROM information_schema.TABLES WHERE TABLE_SCHEMA = ?',
+    [database],
+  )
+  return Number(row?.outlived) === 1
 }
 
 /** The site's row is the last that seeding writes. */
