@@ -55,7 +55,7 @@ async function follow(page: Page, target: Locator, to: RegExp): Promise<void> {
 }
 
 test('by keyboard alone: a forecast without a date, an isolation test, an option, a plan signed as ready, a place', {
-  timeout: 240_000,
+  timeout: 400_000,
 }, async () => {
   const view = await openPage(browser, inject('demoUrl'))
   const { page } = view
