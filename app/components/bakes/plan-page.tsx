@@ -56,11 +56,11 @@ export function PlanPage(props: PageProps) {
       {props.excess.map(({ segment, times }) => (
         <Notice key={segment} tone="warn">
           {segment} now reads {times.toFixed(1)} times what the register's hydrogen gives. The prediction
-          below takes the register's, and so promises too much; the{' '}
+          takes all of what it read when this version was saved for hydrogen, as the{' '}
           <Link to={`/bakes/options?segments=${content.segments.join(',')}`} className="link">
             options
           </Link>{' '}
-          take the reading for hydrogen. A leak would not yield to the bake.
+          do. A leak would not yield to the bake: find out which it is first.
         </Notice>
       ))}
       <Panel title="Course of the bake">
