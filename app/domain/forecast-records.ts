@@ -23,7 +23,6 @@ export const ForecastModelSchema = z.object({
   points: z.int(),
   rmsLn: z.number(),
 })
-type ForecastModel = z.infer<typeof ForecastModelSchema>
 
 /** How many of the last ones the record of hits speaks of. */
 const HITS_COUNTED = 20

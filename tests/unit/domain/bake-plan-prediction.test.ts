@@ -100,7 +100,11 @@ test('stroke of a joint is the free expansion of the segment over its joints', (
 
 test('the cold hydrogen at the end agrees with the closed form of the bake within 5 %', () => {
   // Both cold at the temperature of the tunnel: two kelvins more would give 17 % more hydrogen.
-  const closed = afterBake({ ...after, temperatureK: AMBIENT_C + 273.15 }, { bakeK: 423.15, holdHours: 168, upKH: 10 }, 0)
+  const closed = afterBake(
+    { ...after, temperatureK: AMBIENT_C + 273.15 },
+    { bakeK: 423.15, holdHours: 168, upKH: 10 },
+    0,
+  )
   const hydrogen = usual.segments[0]?.byGasPa.H2.at(-1) ?? Number.NaN
   expect(Math.abs(hydrogen / closed.hydrogenPa - 1)).toBeLessThan(0.05)
 })
