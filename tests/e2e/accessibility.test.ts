@@ -72,10 +72,14 @@ describe.each(PAGES)('pages of the $role', ({ role, paths }) => {
         await view.page.setViewportSize({ width, height: 900 })
         // Between desk and phone nothing changes but the room there is.
         if (width !== TABLET) await expectAccessible(view.page)
-        const sideways = await view.page.evaluate(
-          () => document.documentElement.scrollWidth - document.documentElement.clientWidth,
-        )
-        expect(sideways, `${path} scrolls sideways at ${width} px`).toBeLessThanOrEqual(0)
+        // A chart follows its new width a frame later.
+        const sideways = () =>
+          view.page.evaluate(
+            () => document.documentElement.scrollWidth - document.documentElement.clientWidth,
+          )
+        await expect
+          .poll(sideways, { message: `${path} scrolls sideways at ${width} px`, timeout: 5_000 })
+          .toBeLessThanOrEqual(0)
       }
     }
     await view.close()
