@@ -5,6 +5,7 @@ import { WATER_FLOOR_PA } from '../physics/water.ts'
 import { pairObjection } from './bake-load.ts'
 import { peakKW } from './bake-options-demands.ts'
 import type { OptionQuestion, OptionSegment } from './bake-options-question.ts'
+import { powerText } from './power-text.ts'
 
 /** The sentence with which a question is refused as a whole; null where it can be asked. */
 export function refusalOf(question: OptionQuestion): string | null {
@@ -52,7 +53,7 @@ function floorRefusal({ baked, hot, afterPumps, gauge }: OptionSegment, targetPa
   const leakPaM3S = (hot.airLeaks ?? []).reduce((sum, { qPaM3S }) => sum + qPaM3S, 0)
   const airPa = leakPaM3S === 0 ? 0 : airPressure(later, gauge.offsetM)
   if (airPa >= targetPa) {
-    return `An air leak of ${sci(leakPaM3S)} Pa·m³/s holds ${gauge.tag} at ${pa(airPa)}, above the target of ${pa(targetPa)}: no bake of ${baked.tag} lowers that. Mending it to below ${sci((leakPaM3S * targetPa) / airPa)} Pa·m³/s, or pumping more air, would lift it.`
+    return `An air leak of ${powerText(leakPaM3S, 2)} Pa·m³/s holds ${gauge.tag} at ${pa(airPa)}, above the target of ${pa(targetPa)}: no bake of ${baked.tag} lowers that. Mending it to below ${powerText((leakPaM3S * targetPa) / airPa, 2)} Pa·m³/s, or pumping more air, would lift it.`
   }
   if (hot.hydrogen.kind !== 'low-hydrogen') return null
   const hydrogenPa = nitrogenEquivalent({
@@ -63,16 +64,5 @@ function floorRefusal({ baked, hot, afterPumps, gauge }: OptionSegment, targetPa
 }
 
 function pa(value: number): string {
-  return `${sci(value)} Pa`
-}
-
-const RAISED = '⁰¹²³⁴⁵⁶⁷⁸⁹'
-
-/** Two digits and a power of ten, as the pages write them. */
-function sci(value: number): string {
-  const [digits = '', power = '0'] = value.toExponential(1).split('e')
-  const raised = [...power.replace('+', '')].map((sign) =>
-    sign === '-' ? '⁻' : (RAISED[Number(sign)] ?? ''),
-  )
-  return `${digits}×10${raised.join('')}`
+  return `${powerText(value, 2)} Pa`
 }

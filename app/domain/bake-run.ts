@@ -336,19 +336,23 @@ export function coolingOf(
   return { hottest, touchSafeAt: when + hours * HOUR_MS, below: false }
 }
 
+/** A counter this near to its end has wrapped when it reads less; anything else is another meter, or was set back. */
+const NEAR_ITS_END = 0.9
+
 /**
- * Energy between the first and last value of a meter that counts up and wraps to zero, kWh; null with fewer than two.
- *
- * @param wrapAt the value at which the meter begins again
+ * Energy between the first and last value of a meter that counts up and begins again after its last digit, kWh. Null with
+ * fewer than two values, and where it falls from the middle of its range: then nobody knows what it counted.
  */
-export function meterEnergy(values: readonly (number | null)[], wrapAt: number): number | null {
+export function meterEnergy(values: readonly (number | null)[]): number | null {
   const told = values.flatMap((value) => (value === null ? [] : [value]))
   if (told.length < 2) return null
   let total = 0
   for (const [index, value] of told.entries()) {
     const before = told[index - 1]
     if (before === undefined) continue
-    total += value >= before ? value - before : value + wrapAt - before
+    const end = 10 ** Math.ceil(Math.log10(before + 1))
+    if (value < before && before < NEAR_ITS_END * end) return null
+    total += value >= before ? value - before : value + end - before
   }
   return total
 }

@@ -1,5 +1,7 @@
 /** What holds a segment above a pressure, and what would lift it, in a sentence. Pure. */
 
+import { powerText } from './power-text.ts'
+
 /** Waiting longer than this is no plan, h. */
 const PATIENCE_HOURS = 60 * 24
 
@@ -51,5 +53,5 @@ export function bindingOf(facts: BindingFacts): BindingAnswer | null {
 }
 
 function pa(value: number): string {
-  return `${value.toExponential(1)} Pa`
+  return `${powerText(value, 2)} Pa`
 }

@@ -15,6 +15,7 @@ import { bakesIn, type FoundBake } from '../domain/bake-history.ts'
 import { type BakePlanContent, BakePlanContentSchema } from '../domain/bake-plan.ts'
 import type { ThermocoupleNow } from '../domain/bake-run.ts'
 import { DomainError } from '../domain/errors.ts'
+import { powerText } from '../domain/power-text.ts'
 import { QUALITY_LABELS } from '../domain/readings.ts'
 import { median } from '../physics/statistics.ts'
 import { limitFor } from './standing.server.ts'
@@ -57,11 +58,7 @@ export async function findBake(
 
 /** A pressure inside a sentence: 2.1 × 10⁻⁴ Pa. */
 export function pascalText(pa: number): string {
-  const [mantissa = '0', exponent = '0'] = pa.toExponential(1).split('e')
-  const raised = [...String(Number(exponent))]
-    .map((sign) => '⁻⁰¹²³⁴⁵⁶⁷⁸⁹'['-0123456789'.indexOf(sign)])
-    .join('')
-  return `${mantissa} × 10${raised} Pa`
+  return `${powerText(pa, 2)} Pa`
 }
 
 /** The frozen plan that a bake followed; null when none fits. */

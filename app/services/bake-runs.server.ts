@@ -240,9 +240,6 @@ async function readSupply(db: DbOrTx, supply: string, now: Date): Promise<BakeRu
   return { tag: supply, volts: volts.value, amps: amps.value, at: amps.at ?? volts.at }
 }
 
-/** Counter of the energy meters: they begin again after five digits and a decimal (the demo's meters, by their plate). */
-const METER_WRAPS_AT = 100_000
-
 async function readFeeder(
   db: DbOrTx,
   segment: SegmentWithState,
@@ -268,5 +265,5 @@ async function readFeeder(
     ),
   )
   const values = readings.map((each) => each.get(span.channelId)?.usable?.value ?? null)
-  return { tag, kWh: meterEnergy(values, METER_WRAPS_AT) }
+  return { tag, kWh: meterEnergy(values) }
 }

@@ -1,5 +1,6 @@
 /** What a bake left behind, against what was planned, and the outgassing that follows from it. */
 import { Form, useNavigation } from 'react-router'
+import { powerText } from '#app/domain/power-text.ts'
 import type { BakeAfterwards } from '#app/services/bake-afterwards.server.ts'
 import { Button } from '../ui/button.tsx'
 import { type Column, DataTable } from '../ui/data-table.tsx'
@@ -102,9 +103,5 @@ export function AfterwardsPanel({
 }
 
 function figure(value: number): string {
-  const [mantissa = '0', exponent = '0'] = value.toExponential(1).split('e')
-  const raised = [...String(Number(exponent))]
-    .map((sign) => '⁻⁰¹²³⁴⁵⁶⁷⁸⁹'['-0123456789'.indexOf(sign)])
-    .join('')
-  return `${mantissa} × 10${raised}`
+  return powerText(value, 2)
 }

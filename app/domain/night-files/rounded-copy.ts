@@ -1,5 +1,5 @@
+import { powerText } from '../power-text.ts'
 import { QUANTITIES, type Quantity } from '../readings.ts'
-import { powerText } from './text.ts'
 
 /** A reading of a file beside the stored one of the same channel and instant. */
 export interface StoredPair {

@@ -16,13 +16,3 @@ export function plainWord(text: string): string {
     .trim()
     .toLowerCase()
 }
-
-/** A number as a power of ten, such as `6.81 × 10⁻⁸`, for sentences that are shown as they stand. */
-export function powerText(value: number): string {
-  if (value === 0 || !Number.isFinite(value)) return String(value)
-  const [mantissa = '', exponent = ''] = value.toExponential(2).split('e')
-  const raised = Array.from(String(Number(exponent)), (sign) =>
-    sign === '-' ? '⁻' : ('⁰¹²³⁴⁵⁶⁷⁸⁹'[Number(sign)] ?? ''),
-  )
-  return `${mantissa} × 10${raised.join('')}`
-}

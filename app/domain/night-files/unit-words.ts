@@ -1,7 +1,8 @@
+import { powerText } from '../power-text.ts'
 import { QUANTITIES, type Quantity } from '../readings.ts'
 import type { NumberReader } from './numbers.ts'
 import { choice, type QuestionList, question } from './questions.ts'
-import { detach, powerText } from './text.ts'
+import { detach } from './text.ts'
 import type { Candidate, Question, ReadContext } from './types.ts'
 import { toSi, type Unit, unitOf, unitsOf } from './units.ts'
 

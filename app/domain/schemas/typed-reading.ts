@@ -2,9 +2,9 @@
 import { z } from 'zod'
 import { CellReader } from '../night-files/cells.ts'
 import { NumberReader } from '../night-files/numbers.ts'
-import { powerText } from '../night-files/text.ts'
 import { type Unit, unitFits, unitOf } from '../night-files/units.ts'
 import { WordBook } from '../night-files/words.ts'
+import { powerText } from '../power-text.ts'
 import { PLAUSIBLE, QUANTITIES, type Quality, type Quantity, qualityWord } from '../readings.ts'
 import { siteInstant } from './instant.ts'
 

@@ -235,7 +235,7 @@ describe('questions without an answer', () => {
     [
       'a target below the floor',
       { targetPa: 5e-12 },
-      /5\.0×10⁻¹² Pa lies at or below the floor of 9\.3×10⁻¹² Pa/,
+      /5\.0 × 10⁻¹² Pa lies at or below the floor of 9\.3 × 10⁻¹² Pa/,
     ],
     ['no target', { targetPa: Number.NaN }, /Found a target of NaN Pa; a pressure above zero/],
     ['no segment', { segments: [] }, /Found 0 segments/],
@@ -270,8 +270,8 @@ describe('questions without an answer', () => {
     const leaky = { ...one, hot: { ...one.hot, airLeaks: [{ atM: 75, qPaM3S: 4e-7 }] } }
     // 4e-7 Pa m3/s over 0.4 m3/s at the cross is 1e-6 Pa; the target allows a fifth of it.
     const answer = bakeOptions(question({ segments: [{ ...leaky, gauge: { tag: 'HC-B', offsetM: 75 } }] }))
-    expect(answer.refusal).toMatch(/4\.0×10⁻⁷ Pa·m³\/s holds HC-B at 1\.0×10⁻⁶ Pa/)
-    expect(answer.refusal).toContain('below 8.0×10⁻⁸ Pa·m³/s')
+    expect(answer.refusal).toMatch(/4\.0 × 10⁻⁷ Pa·m³\/s holds HC-B at 1\.0 × 10⁻⁶ Pa/)
+    expect(answer.refusal).toContain('below 8.0 × 10⁻⁸ Pa·m³/s')
   })
 
   test('fired steel whose hydrogen alone is above the target', () => {

@@ -222,9 +222,14 @@ describe('cooling', () => {
 
 describe('energy', () => {
   test('a meter that begins again at its end is followed', () => {
-    expect(meterEnergy([99_990, 99_998, 4, 12], 100_000)).toBe(22)
-    expect(meterEnergy([5, null, 9], 100_000)).toBe(4)
-    expect(meterEnergy([5], 100_000)).toBeNull()
+    expect(meterEnergy([99_990, 99_998, 4, 12])).toBe(22)
+    expect(meterEnergy([999_990, 999_999, 0, 5])).toBe(15)
+    expect(meterEnergy([5, null, 9])).toBe(4)
+    expect(meterEnergy([5])).toBeNull()
+  })
+
+  test('a meter that falls from the middle of its range says nothing', () => {
+    expect(meterEnergy([450_000, 450_120, 30, 40])).toBeNull()
   })
 
   test('1 083 A at 23.4 V for two hours is 50.7 kWh; a gap is left out and said', () => {

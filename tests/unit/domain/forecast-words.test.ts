@@ -7,7 +7,7 @@ const CASES: [string, Partial<BindingFacts>, string | null, RegExp][] = [
     'hydrogen counts before a constant part',
     { hydrogenPa: 3e-7, constantPa: 4e-7 },
     'hydrogen',
-    /3\.0e-7 Pa/,
+    /3\.0 × 10⁻⁷ Pa/,
   ],
   ['a constant part above it', { constantPa: 5e-7 }, 'constant-load', /leak.*2\.5 times the pumping speed/],
   ['a constant part below it', { constantPa: 1e-7, earliestHours: 100 }, null, /^$/],
