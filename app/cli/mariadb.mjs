@@ -41,10 +41,16 @@ export async function startMariadb({ folder, user, password, options = [], start
   writeFileSync(accountFile, accountSql(password), { mode: 0o600 })
   if (user.dropped) chownSync(accountFile, user.uid, user.gid)
 
+  // Of its own: a server that starts deletes every server's temporary tables that it finds in its folder for them.
+  const temporaryFolder = join(folder, 'temporary')
+  mkdirSync(temporaryFolder, { recursive: true, mode: 0o700 })
+  if (user.dropped) chownSync(temporaryFolder, user.uid, user.gid)
+
   const port = await freePort()
   const serverOptions = [
     '--no-defaults',
     `--datadir=${dataFolder}`,
+    `--tmpdir=${temporaryFolder}`,
     '--bind-address=127.0.0.1',
     `--port=${port}`,
     // Relative paths: the server goes to its data folder first, so that no path can be too long for a socket.

@@ -51,7 +51,6 @@ async function startTestDatabase(folder) {
       '--innodb-flush-log-at-trx-commit=0',
       '--innodb-doublewrite=0',
       '--innodb-buffer-pool-size=256M',
-      `--tmpdir=${tmpdir()}`,
     ],
   })
 }

@@ -43,7 +43,7 @@ export async function startOwnMariadb(options: readonly string[]): Promise<OwnMa
       folder,
       user: databaseUser(),
       password: 'onlyfortests',
-      options: [...options, `--tmpdir=${tmpdir()}`],
+      options,
     })
   let server = await start()
   return {
