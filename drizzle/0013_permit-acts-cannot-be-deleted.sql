@@ -1,0 +1,1 @@
+CREATE TRIGGER `permit_act_no_delete` BEFORE DELETE ON `permit_act` FOR EACH ROW IF @ebbline_retention_run IS NULL THEN SIGNAL SQLSTATE '45000' SET MESSAGE_TEXT = 'What was done to a permit is deleted by a retention run only'; END IF;

@@ -1,0 +1,1 @@
+CREATE TRIGGER `permit_version_no_delete` BEFORE DELETE ON `permit_version` FOR EACH ROW IF @ebbline_retention_run IS NULL THEN SIGNAL SQLSTATE '45000' SET MESSAGE_TEXT = 'What a permit said is deleted by a retention run only'; END IF;
