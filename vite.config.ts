@@ -5,6 +5,9 @@ import { defineConfig } from 'vitest/config'
 // Under vitest the router plugin must stay off: it would take over module resolution.
 const underTest = process.env.VITEST !== undefined
 
+/** Test files with a database of their own: the demo's, or that of a server that they kill. */
+const OWN_DATABASE = ['tests/db/seed*.test.ts', 'tests/db/faults-database.test.ts']
+
 export default defineConfig({
   plugins: underTest ? [] : [tailwindcss(), reactRouter()],
   // Vite would otherwise pick one of its default ports and open it on every interface.
@@ -29,7 +32,21 @@ export default defineConfig({
         test: {
           name: 'db',
           include: ['tests/db/**/*.test.ts'],
+          exclude: OWN_DATABASE,
           globalSetup: ['tests/support/migrate-test-databases.ts'],
+          // Each file begins with an empty database; loading the modules anew for each takes as long as the tests.
+          isolate: false,
+          maxWorkers: 2,
+          testTimeout: 30_000,
+          hookTimeout: 60_000,
+        },
+      },
+      {
+        extends: true,
+        // These point the product's handle at another database, which is read once a process.
+        test: {
+          name: 'db-own',
+          include: OWN_DATABASE,
           maxWorkers: 2,
           testTimeout: 30_000,
           hookTimeout: 60_000,

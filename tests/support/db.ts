@@ -10,7 +10,7 @@ process.env.SESSION_SECRET ??= 'a secret for tests only, 32 or more'
 process.env.LOG_LEVEL ??= 'silent'
 
 /** Tables that refuse DELETE by trigger; TRUNCATE does not ask triggers. */
-const APPEND_ONLY = new Set(['record', 'log_entry', 'log_amendment'])
+const APPEND_ONLY = new Set(['record', 'log_entry', 'log_amendment', 'permit_act', 'permit_version'])
 const KEPT = new Set(['__drizzle_migrations', 'migration_guard'])
 
 /** This worker's database handle, the same one the product gets from getDb(). */
