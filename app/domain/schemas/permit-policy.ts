@@ -1,0 +1,31 @@
+/** Forms of the site's permit policy and of the deletion of old records. */
+import { z } from 'zod'
+import { PermitPolicySchema } from '../permit-policy.ts'
+
+const password = z.string().min(1, 'Sign with your own password.')
+const reason = z
+  .string()
+  .trim()
+  .min(5, 'Say why, for those who read it later.')
+  .max(500, 'At most 500 characters.')
+const days = PermitPolicySchema.shape.keepDays
+
+/** What an officer sets. `seen` is the number of the setting that the page showed, 0 for none. */
+export const PolicyFormSchema = z.object({
+  intent: z.literal('set-policy'),
+  seen: z.coerce.number().int().min(0),
+  extensionAllowed: z
+    .enum(['yes', 'no'], { error: 'Choose whether a window may be extended.' })
+    .transform((answer) => answer === 'yes'),
+  keepDays: z.coerce
+    .number({ error: 'Give a whole number of days.' })
+    .int('Give a whole number of days.')
+    .min(
+      days.minValue ?? 0,
+      `At least ${days.minValue} days: cancelled permits are looked through for a year.`,
+    )
+    .max(days.maxValue ?? 0, `At most ${days.maxValue} days.`),
+  reason,
+  password,
+})
+export type PolicyForm = z.infer<typeof PolicyFormSchema>
