@@ -67,6 +67,8 @@ export interface TestFact {
   place: string
   /** `overdue`: good, but due again since. */
   state: 'missing' | 'failed' | 'overdue' | 'good'
+  /** When the result that counts was taken; null while there is none. Work that was stopped goes on after newer ones. */
+  takenAt: Date | null
   nextDueAt: Date | null
   text: string
 }
