@@ -171,11 +171,11 @@ function unknown(last: Known | null, why: string): HeatingFact {
 
 function fromSupplies(supplies: readonly SupplyNow[], when: (at: Date) => string): Known | null {
   const found = supplies.map((supply) => supplySays(supply, when))
-  const on = found.filter((one) => one?.on === true)
+  const speaking = found.filter((one) => one !== null)
+  const on = speaking.filter((one) => one.on)
   if (on.length > 0) return joined(on, newest(on.map((one) => one.at)), true)
-  const off = found.filter((one) => one !== null)
-  if (off.length === 0 || off.length < found.length) return null
-  return joined(off, oldest(off.map((one) => one.at)), false)
+  if (speaking.length === 0 || speaking.length < found.length) return null
+  return joined(speaking, oldest(speaking.map((one) => one.at)), false)
 }
 
 function joined(found: readonly SupplyFinding[], at: Date, on: boolean): Known {
