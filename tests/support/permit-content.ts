@@ -1,0 +1,56 @@
+/** A permit's content with which nothing is missing, for tests that want to change one thing of it. */
+import { emptyPermitContent, type PermitContent } from '#app/domain/permit-content.ts'
+
+/** A bake of one segment by direct current: 2026-11-10 07:00 at +01:00, four days, attended. */
+export function fullContent(changes: Partial<PermitContent> = {}): PermitContent {
+  return {
+    ...emptyPermitContent(),
+    title: 'Bake at 150 °C',
+    segments: ['SG-T1'],
+    fromM: 0,
+    toM: 150,
+    bays: '0 to 10',
+    exclusionWestM: 10,
+    exclusionEastM: 10,
+    equipment: ['HX-1'],
+    work: 'Heat the segment to 150 °C and hold it there.',
+    notIncluded: 'No flange is opened.',
+    maxCelsius: 150,
+    rampKH: 10,
+    soakHours: 60,
+    supply: 'HX-1',
+    maxAmps: 1200,
+    maxVolts: 27,
+    openCircuitVolts: 75,
+    earthing: 'At the west end bar',
+    unattended: false,
+    holderId: 1,
+    deputyIds: [2],
+    crewIds: [3],
+    isolatingPersonId: 3,
+    electricianId: 4,
+    from: '2026-11-10T06:00:00.000Z',
+    to: '2026-11-14T06:00:00.000Z',
+    shifts: 'All, in two crews',
+    points: [
+      { tag: 'IP-1', isolates: 'NV-T1 vent valve', required: 'shut', purpose: 'to-heat', boxed: false },
+      { tag: 'IP-2', isolates: 'GV-T1 gate valve', required: 'shut', purpose: 'to-heat', boxed: true },
+    ],
+    tests: [
+      { kind: 'cut-out', place: 'HX-1', low: null, high: null, unit: '', everyHours: null },
+      { kind: 'emergency-stop', place: 'HX-1', low: null, high: null, unit: '', everyHours: null },
+      { kind: 'communications', place: 'bay 5', low: null, high: null, unit: '', everyHours: null },
+      { kind: 'zero-voltage', place: 'bars', low: 0, high: 1, unit: 'V', everyHours: null },
+      { kind: 'earth-continuity', place: 'west end', low: 0, high: 0.1, unit: 'Ω', everyHours: null },
+      { kind: 'oxygen', place: 'bay 5', low: 19.5, high: 23.5, unit: '%', everyHours: 12 },
+    ],
+    protectiveEquipment: 'Heat gloves, safety shoes',
+    barriers: 'Chains at 0 m and 160 m',
+    signs: 'Hot surface, electricity',
+    lighting: 'Bay lights, hand lamps',
+    rescue: 'Two people of the crew, stretcher at bay 4',
+    assemblyPoint: 'Gate west',
+    contacts: [{ role: 'Emergency', name: '', phone: '112' }],
+    ...changes,
+  }
+}
