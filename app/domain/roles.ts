@@ -48,6 +48,7 @@ const ROLES_BY_PERMISSION = {
   'permit:approve': ['safety-officer'],
   'permit:stop': ['technician', 'engineer', 'safety-officer', 'manager', 'administrator', 'contributor'],
   'permit:lock': ['technician', 'engineer'],
+  'permit:clear-lock': ['engineer', 'safety-officer'],
   'permit:test': ['technician', 'engineer', 'safety-officer'],
   'heating:state': ['technician', 'engineer', 'safety-officer'],
   'work:plan': ['technician', 'engineer', 'safety-officer'],
