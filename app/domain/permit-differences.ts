@@ -119,7 +119,7 @@ function workLines(content: PermitContent): PermitLine[] {
     line('work', 'Work', content.work),
     line('not-included', 'Not included', content.notIncluded),
     line('celsius', 'Highest temperature', figure(content.maxCelsius, '°C')),
-    line('ramp', 'Fastest ramp', figure(content.rampKH, 'K/h')),
+    line('ramp', 'Fastest ramp', figure(content.rampKH, '°C/h')),
     line('soak', 'Soak', figure(content.soakHours, 'h')),
     line('supply', 'Supply set', content.supply ?? ''),
     line('amps', 'Highest current', figure(content.maxAmps, 'A')),
