@@ -349,7 +349,7 @@ export interface PermitRequest {
  * @throws DomainError not-found; not-acceptable-now with the list of missing steps, or when the plan is not signed
  */
 export async function permitRequest(db: Db, actor: Actor, now: Date, planId: number): Promise<PermitRequest> {
-  demand(actor, 'bake:plan')
+  demand(actor, 'permit:draft')
   const { plan, content, prediction } = await readPlan(db, planId)
   const facts = await readPlanFacts(db, { id: planId, content, prediction }, now)
   refuseMissing(blockingItems(readiness(facts)), 'No permit can be asked for.')
