@@ -77,7 +77,7 @@ export interface DangerFacts {
   stateSince: Date
   /** Whether it expired because nobody revalidated it. */
   revalidationMissed: boolean
-  /** Another permit is live and covers every one of these segments. */
+  /** Another permit answers for the heat of every one of these segments. */
   coveredByOther: boolean
   heating: HeatingFact
   tests: readonly TestFact[]
@@ -205,7 +205,7 @@ function whyEnded(
   if (HEATED_KINDS.some((kind) => kind === event.kind)) {
     if (facts.heating.on === false) return facts.heating.text
     if (facts.state === 'issued') return `${facts.number} is live.`
-    return facts.coveredByOther ? 'Another permit for it is live.' : null
+    return facts.coveredByOther ? 'Another permit answers for it.' : null
   }
   if (event.kind === 'low-oxygen' || event.kind === 'high-oxygen') return null
   const still = dangers.some((danger) =>

@@ -70,7 +70,7 @@ describe('what is dangerous', () => {
     expect(kinds(facts('suspended', true, { coveredByOther: true }))).toEqual(['permit-suspended'])
     const expired = facts('expired', true)
     expect(settle(facts('expired', true, { coveredByOther: true }), open(expired)).end).toEqual([
-      { id: 0, why: 'Another permit for it is live.' },
+      { id: 0, why: 'Another permit answers for it.' },
     ])
   })
 
