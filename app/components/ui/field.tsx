@@ -4,6 +4,8 @@ import { useId } from 'react'
 
 interface FieldProps {
   name: string
+  /** An address of its own, for links that lead to it. */
+  id?: string | undefined
   label: React.ReactNode
   /** What to put in, where the label cannot say it all. */
   hint?: React.ReactNode
@@ -24,12 +26,14 @@ const CONTROL =
 /** The frame of a field; the control inside takes the wiring. The other fields here are made of it. */
 function Field({
   name,
+  id: given,
   label,
   hint,
   errors = [],
   children,
 }: FieldProps & { children: (wiring: Wiring) => React.ReactNode }) {
-  const id = useId()
+  const own = useId()
+  const id = given ?? own
   const hintId = `${id}-hint`
   const errorId = `${id}-error`
   const described = [...(hint === undefined ? [] : [hintId]), ...(errors.length === 0 ? [] : [errorId])].join(
@@ -70,13 +74,14 @@ function FieldErrors({ id, errors }: { id: string; errors: readonly string[] }) 
 /** One line of text, a number, a date and time, a password: whatever an `input` takes. */
 export function TextField({
   name,
+  id,
   label,
   hint,
   errors,
   ...input
 }: FieldProps & InputHTMLAttributes<HTMLInputElement> & { ref?: React.Ref<HTMLInputElement> }) {
   return (
-    <Field name={name} label={label} hint={hint} errors={errors}>
+    <Field name={name} id={id} label={label} hint={hint} errors={errors}>
       {(wiring) => <input {...input} {...wiring} className={CONTROL} />}
     </Field>
   )
@@ -85,13 +90,14 @@ export function TextField({
 /** Several lines of text. */
 export function TextAreaField({
   name,
+  id,
   label,
   hint,
   errors,
   ...area
 }: FieldProps & TextareaHTMLAttributes<HTMLTextAreaElement> & { ref?: React.Ref<HTMLTextAreaElement> }) {
   return (
-    <Field name={name} label={label} hint={hint} errors={errors}>
+    <Field name={name} id={id} label={label} hint={hint} errors={errors}>
       {(wiring) => <textarea rows={6} {...area} {...wiring} className={CONTROL} />}
     </Field>
   )
@@ -104,6 +110,7 @@ export function SelectField({
   hint,
   errors,
   options,
+  id,
   ...select
 }: FieldProps &
   SelectHTMLAttributes<HTMLSelectElement> & {
@@ -111,7 +118,7 @@ export function SelectField({
     ref?: React.Ref<HTMLSelectElement>
   }) {
   return (
-    <Field name={name} label={label} hint={hint} errors={errors}>
+    <Field name={name} id={id} label={label} hint={hint} errors={errors}>
       {(wiring) => (
         <select {...select} {...wiring} className={CONTROL}>
           {options.map((option) => (
@@ -128,12 +135,14 @@ export function SelectField({
 /** A box to tick, with its words behind it; the whole line is the target. */
 export function CheckField({
   name,
+  id: given,
   label,
   hint,
   errors = [],
   ...input
 }: FieldProps & InputHTMLAttributes<HTMLInputElement> & { ref?: React.Ref<HTMLInputElement> }) {
-  const id = useId()
+  const own = useId()
+  const id = given ?? own
   const described = [
     ...(hint === undefined ? [] : [`${id}-hint`]),
     ...(errors.length === 0 ? [] : [`${id}-error`]),
