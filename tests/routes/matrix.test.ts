@@ -113,6 +113,10 @@ const ADDRESSES: Record<string, Address> = {
   },
   '/bakes/plans/:planId/plan.csv': { path: '/bakes/plans/999/plan.csv', GET: { who: STAFF, status: 404 } },
   '/bakes/plans/:planId/plan.ics': { path: '/bakes/plans/999/plan.ics', GET: { who: STAFF, status: 404 } },
+  '/permits/:number/history': {
+    path: '/permits/HSP-2026-999/history',
+    GET: { who: STAFF, status: 404 },
+  },
   '/logbook': { GET: { who: ROLES, status: 200 } },
   '/logbook/new': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
   '/logbook/:entryId': {
