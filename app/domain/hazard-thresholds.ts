@@ -302,6 +302,11 @@ export const THRESHOLDS: Readonly<Record<ThresholdKey, ThresholdFacts>> = FACTS
 
 export const THRESHOLD_KEYS = Object.keys(FACTS) as ThresholdKey[]
 
+/** Whether a text is the key of a threshold. */
+export function isThresholdKey(text: string | undefined): text is ThresholdKey {
+  return text !== undefined && Object.hasOwn(FACTS, text)
+}
+
 /** What this site says in place of a value that it has not adopted. */
 export const NOT_SET = 'not set by site'
 
