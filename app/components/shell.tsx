@@ -16,7 +16,8 @@ interface ShellProps {
   site: { name: string; zone: string }
   clock: { at: Date; demo: boolean }
   unit: PressureUnit
-  places: { facility: boolean; people: boolean }
+  /** `permits`: how many permits wait for this person. */
+  places: { facility: boolean; people: boolean; permits: number }
   mayAdvanceClock: boolean
   notice: string | null
   children: React.ReactNode
@@ -27,6 +28,8 @@ interface Place {
   label: string
   /** Beginnings of the addresses that belong to this place. */
   roots: readonly string[]
+  /** How many things there wait for the reader. */
+  waiting?: number
 }
 
 function placesFor(places: ShellProps['places']): Place[] {
@@ -42,6 +45,7 @@ function placesFor(places: ShellProps['places']): Place[] {
       ? [
           { to: '/forecasts', label: 'Forecasts', roots: ['/forecasts'] },
           { to: '/bakes', label: 'Bakes', roots: ['/bakes'] },
+          { to: '/permits', label: 'Permits', roots: ['/permits'], waiting: places.permits },
           { to: '/register', label: 'Register', roots: ['/register'] },
         ]
       : []),
@@ -124,11 +128,22 @@ function Places({ places, home }: { places: readonly Place[]; home: string }) {
               className="flex min-h-14 items-center justify-center rounded-md px-1 text-center text-sm text-ink-2 hover:bg-sheet aria-[current]:bg-sheet aria-[current]:font-semibold aria-[current]:text-ink aria-[current]:shadow-[inset_0_3px_0_var(--color-vac)] md:min-h-10 md:justify-start md:px-2.5 md:text-left md:text-base md:aria-[current]:shadow-[inset_3px_0_0_var(--color-vac)] md:pointer-coarse:min-h-11"
             >
               {place.label}
+              {place.waiting !== undefined && place.waiting > 0 && <WaitingCount count={place.waiting} />}
             </Link>
           </li>
         ))}
       </ul>
     </nav>
+  )
+}
+
+/** A number in a ring; its words are for those who hear it. */
+function WaitingCount({ count }: { count: number }) {
+  return (
+    <span className="ml-1 inline-flex min-w-5 justify-center rounded-full border border-edge px-1 text-xs font-semibold text-ink md:ml-auto">
+      {count}
+      <span className="sr-only">{count === 1 ? ' waits for you' : ' wait for you'}</span>
+    </span>
   )
 }
 

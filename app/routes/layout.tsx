@@ -8,15 +8,17 @@ import { takeNotice } from '#app/server/notice.server.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
 import { readClock } from '#app/services/clock.server.ts'
 import { countWaitingFor } from '#app/services/people.server.ts'
+import { listWaitingPermits } from '#app/services/permit-register.server.ts'
 import { getSite } from '#app/services/site.server.ts'
 import type { Route } from './+types/layout'
 
 export async function loader({ context, request }: Route.LoaderArgs) {
   const actor = signedIn(context, request)
-  const [site, clock, waiting, { notice, clear }] = await Promise.all([
+  const [site, clock, waiting, permits, { notice, clear }] = await Promise.all([
     orRefuse(getSite(getDb())),
     readClock(getDb()),
     countWaitingFor(getDb(), actor),
+    listWaitingPermits(getDb(), actor, nowOf(context)),
     takeNotice(request),
   ])
   return data(
@@ -29,6 +31,7 @@ export async function loader({ context, request }: Route.LoaderArgs) {
       places: {
         facility: rolesHave(actor.roles, 'facility:view'),
         people: rolesHave(actor.roles, 'people:view'),
+        permits: permits.length,
       },
       mayAdvanceClock: clock.demo && rolesHave(actor.roles, 'clock:advance'),
       notice,

@@ -113,6 +113,7 @@ const ADDRESSES: Record<string, Address> = {
   },
   '/bakes/plans/:planId/plan.csv': { path: '/bakes/plans/999/plan.csv', GET: { who: STAFF, status: 404 } },
   '/bakes/plans/:planId/plan.ics': { path: '/bakes/plans/999/plan.ics', GET: { who: STAFF, status: 404 } },
+  '/permits': { GET: { who: STAFF, status: 200 } },
   '/permits/:number/history': {
     path: '/permits/HSP-2026-999/history',
     GET: { who: STAFF, status: 404 },
