@@ -1,8 +1,13 @@
 /** Work by others in the tunnel. */
-import { aliasedTable, and, asc, desc, eq, inArray, isNull } from 'drizzle-orm'
+import { and, asc, desc, eq, inArray, isNull } from 'drizzle-orm'
+import { alias } from 'drizzle-orm/mysql-core'
 import type { PlannedWorkState } from '../../domain/permit-words.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { bayClosure, line, person, plannedWork, segment } from '../schema/index.ts'
+
+const ruler = alias(person, 'ruler')
+const ownLine = alias(line, 'own_line')
+const segmentLine = alias(line, 'segment_line')
 
 export type PlannedWorkRow = typeof plannedWork.$inferSelect & {
   lineCode: string | null
@@ -14,9 +19,6 @@ export type PlannedWorkRow = typeof plannedWork.$inferSelect & {
 }
 
 function select(db: DbOrTx) {
-  const ruler = aliasedTable(person, 'ruler')
-  const ownLine = aliasedTable(line, 'own_line')
-  const segmentLine = aliasedTable(line, 'segment_line')
   return db
     .select({
       work: plannedWork,

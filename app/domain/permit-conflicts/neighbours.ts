@@ -140,11 +140,14 @@ function tooHot(
   ]
 }
 
-/** K6: a bay fan or other equipment that two permits rest on. */
+/** K6: a bay fan or other equipment that two permits rest on. Two on one segment are stopped by K1. */
 export function sharedUtilities(facts: ConflictFacts): Finding[] {
   const { own, fans, valves } = facts
   const apart = new Set([...valves.map(({ tag }) => tag), own.supply, own.cart])
-  return meeting(facts).flatMap((other) => {
+  const elsewhere = meeting(facts).filter(
+    ({ segments }) => !segments.some(({ tag }) => own.segments.some((one) => one.tag === tag)),
+  )
+  return elsewhere.flatMap((other) => {
     const things = own.equipment.filter((tag) => !apart.has(tag) && other.equipment.includes(tag))
     const ownFans = fansOf(own, fans)
     const both = fansOf(other, fans).filter(({ tag }) => ownFans.some((one) => one.tag === tag))
