@@ -40,10 +40,17 @@ export async function readRegisterIndex(db: Db, query: URLSearchParams): Promise
   }
 }
 
+/** Rows of a table on one page: a list of every channel is a megabyte, which a tablet takes seconds to lay out. */
+const ROWS_A_PAGE = 100
+
 export interface RegisterList {
   kind: RegisterKind
   words: string
+  /** Rows in all, and of those the ones in which every word occurs. */
   total: number
+  found: number
+  page: number
+  pages: number
   tables: RegisterTable[]
 }
 
@@ -67,7 +74,22 @@ export async function readRegisterList(
     })
     return { ...table, rows, empty: `Nothing here holds "${words}".` }
   })
-  return { kind, words, total, tables: narrowed }
+  const found = narrowed.reduce((sum, { rows }) => sum + rows.length, 0)
+  const pages = Math.max(1, ...narrowed.map(({ rows }) => Math.ceil(rows.length / ROWS_A_PAGE)))
+  const asked = Number(query.get('page') ?? '1')
+  const page = Number.isSafeInteger(asked) ? Math.min(Math.max(asked, 1), pages) : 1
+  return {
+    kind,
+    words,
+    total,
+    found,
+    page,
+    pages,
+    tables: narrowed.map((table) => ({
+      ...table,
+      rows: table.rows.slice((page - 1) * ROWS_A_PAGE, page * ROWS_A_PAGE),
+    })),
+  }
 }
 
 export interface RegisterDetail extends DatedPart {

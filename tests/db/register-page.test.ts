@@ -105,6 +105,22 @@ describe('the register', () => {
     expect(said(before?.rows[0]?.cells ?? [])[2]).toBe('not set')
   })
 
+  it('shows a long list in pages of a hundred, and the nearest page for a number that has none', async () => {
+    // The register has two already.
+    for (let n = 0; n < 201; n += 1) {
+      await createInstrument(db, { serial: `P-${String(n).padStart(3, '0')}` })
+    }
+    const pageOf = async (query: string) => {
+      const list = await readRegisterList(db, 'instruments', MORNING, new URLSearchParams(query))
+      return [list.page, list.pages, list.found, list.tables[0]?.rows.length]
+    }
+    expect(await pageOf('')).toEqual([1, 3, 203, 100])
+    expect(await pageOf('page=3')).toEqual([3, 3, 203, 3])
+    expect(await pageOf('page=99')).toEqual([3, 3, 203, 3])
+    expect(await pageOf('page=no')).toEqual([1, 3, 203, 100])
+    expect(await pageOf('page=2&words=P-')).toEqual([2, 3, 201, 100])
+  })
+
   it('puts the supply sets under the circuits and narrows a list by words', async () => {
     const list = await readRegisterList(db, 'circuits', MORNING, new URLSearchParams('words=hx'))
     expect(list.tables.map(({ title, rows }) => [title, rows.length])).toEqual([

@@ -95,11 +95,13 @@ export function RegisterListPage({
   kind,
   words,
   total,
+  found,
+  page,
+  pages,
   tables,
   mayEdit,
 }: RegisterList & { mayEdit: boolean }) {
   const facts = KIND_FACTS[kind]
-  const shown = tables.reduce((sum, { rows }) => sum + rows.length, 0)
   const addable: RegisterKind[] = kind === 'circuits' ? ['circuits', 'supply-sets'] : [kind]
   return (
     <>
@@ -122,14 +124,35 @@ export function RegisterListPage({
       </PageHead>
       <Search words={words} label="Words in the list" name={facts.title} all={`/register/${kind}`} />
       <p className="mb-2 text-sm text-ink-2" role="status">
-        {words === '' ? `${total} in all` : `${shown} of ${total}`}
+        {words === '' ? `${total} in all` : `${found} of ${total}`}
+        {pages > 1 && `, page ${page} of ${pages}`}
       </p>
       {tables.map((table) => (
         <Panel key={table.title} title={table.title}>
           <RegisterTableView table={table} />
         </Panel>
       ))}
+      {pages > 1 && <Pages words={words} page={page} pages={pages} />}
     </>
+  )
+}
+
+function Pages({ words, page, pages }: { words: string; page: number; pages: number }) {
+  const address = (to: number) =>
+    `?${new URLSearchParams({ ...(words === '' ? {} : { words }), page: String(to) })}`
+  return (
+    <nav aria-label="Pages of the list" className="flex gap-4 text-sm print:hidden">
+      {page > 1 && (
+        <Link to={address(page - 1)} className="link py-1">
+          Page before
+        </Link>
+      )}
+      {page < pages && (
+        <Link to={address(page + 1)} className="link py-1">
+          Next page
+        </Link>
+      )}
+    </nav>
   )
 }
 
