@@ -26,6 +26,7 @@ export default [
     route('bakes/runs/:tag', 'routes/bakes/run.tsx'),
     route('bakes/schedule', 'routes/bakes/schedule.tsx'),
     route('permits', 'routes/permits/permits.tsx'),
+    route('permits/thresholds', 'routes/permits/thresholds.tsx'),
     route('permits/:number/history', 'routes/permits/history.tsx'),
     route('logbook', 'routes/logbook/logbook.tsx'),
     route('logbook/new', 'routes/logbook/new-entry.tsx'),

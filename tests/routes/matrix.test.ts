@@ -114,6 +114,10 @@ const ADDRESSES: Record<string, Address> = {
   '/bakes/plans/:planId/plan.csv': { path: '/bakes/plans/999/plan.csv', GET: { who: STAFF, status: 404 } },
   '/bakes/plans/:planId/plan.ics': { path: '/bakes/plans/999/plan.ics', GET: { who: STAFF, status: 404 } },
   '/permits': { GET: { who: STAFF, status: 200 } },
+  '/permits/thresholds': {
+    GET: { who: STAFF, status: 200 },
+    POST: { who: ['safety-officer'], status: 400 },
+  },
   '/permits/:number/history': {
     path: '/permits/HSP-2026-999/history',
     GET: { who: STAFF, status: 404 },
