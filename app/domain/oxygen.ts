@@ -1,5 +1,10 @@
 /** What a reading of oxygen means for whoever is in the tunnel, and when a stretch may be opened again. Percent by volume. */
 
+/**
+ * Where no site has adopted anything: 29 CFR 1910.146(b) calls less than 19.5 % oxygen-deficient and more than 23.5 %
+ * oxygen-enriched.
+ */
+export const PUBLISHED_OXYGEN = { low: 19.5, high: 23.5 } as const
 /** Readings that release a stretch are at least this high (the site may ask for more), and hold for so long. */
 export const RELEASE_PERCENT = 20
 export const RELEASE_MINUTES = 10

@@ -41,6 +41,7 @@ import { writeRecord } from './record.server.ts'
 import { signAct, useSignedAct } from './signature.server.ts'
 import { instantWriter } from './site.server.ts'
 
+export { reportOxygen } from './bay-closures.server.ts'
 export type { SafetyEventRow }
 
 /** Looks at one permit: begins the events that are due and ends those whose cause is gone. */

@@ -111,6 +111,24 @@ export async function findSegments(
     .orderBy(segment.startM)
 }
 
+/** A segment with its place, or null. */
+export async function findSegmentById(
+  db: DbOrTx,
+  id: number,
+): Promise<{ id: number; tag: string; lineId: number; startM: number; endM: number } | null> {
+  const rows = await db
+    .select({
+      id: segment.id,
+      tag: segment.tag,
+      lineId: segment.lineId,
+      startM: segment.startM,
+      endM: segment.endM,
+    })
+    .from(segment)
+    .where(eq(segment.id, id))
+  return rows[0] ?? null
+}
+
 /**
  * The first reading of the run of equal answers that a channel ends with at an instant.
  *
