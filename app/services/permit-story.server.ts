@@ -1,4 +1,5 @@
 /** The story of a permit: every table that knows of it, told in one order. */
+import { z } from 'zod'
 import type { Db } from '../db/client.server.ts'
 import { listPeople } from '../db/queries/people.server.ts'
 import {
@@ -121,12 +122,11 @@ export async function readPermitHistory(db: Db, number: string): Promise<PermitH
     ...attempts
       .filter(({ act }) => act === BLOCKED)
       .map(
-        ({ at, person, reason, after }): StoryEvent => ({
+        ({ at, person, after }): StoryEvent => ({
           kind: 'attempt',
           at,
           who: person,
-          what: triedOf(after),
-          reason,
+          ...attemptIn(after),
         }),
       ),
   ]
@@ -143,9 +143,15 @@ export async function readPermitHistory(db: Db, number: string): Promise<PermitH
 /** How the record names an act on a permit that somebody was not let do. */
 const BLOCKED = 'permit attempt blocked'
 
-function triedOf(after: unknown): string {
-  const act = (after as { act?: unknown } | null)?.act
-  return typeof act === 'string' ? act.replaceAll('-', ' ') : 'act'
+const AttemptSchema = z.object({
+  attempt: z.string(),
+  reasons: z.array(z.object({ text: z.string() })).default([]),
+})
+
+/** What was tried and why it was not let, as services/permits.server.ts writes it down. */
+function attemptIn(after: unknown): { what: string; reason: string } {
+  const { attempt, reasons } = AttemptSchema.parse(after)
+  return { what: attempt.replaceAll('-', ' '), reason: reasons.map(({ text }) => text).join(' ') }
 }
 
 function actEvents(
