@@ -15,6 +15,7 @@ import { seedForecasts } from './forecasts/forecasts.ts'
 import { seedIsolationTests } from './forecasts/isolation-tests.ts'
 import { seedLogEntries } from './log/seed-log.ts'
 import { seedPeople } from './people.ts'
+import { seedPermits } from './permits/permits.ts'
 import { loadReadings } from './readings/load.ts'
 import { loadArchive, seedImports } from './readings/night-archive.ts'
 import { seedTypedReadings, typedReadings } from './readings/typed.ts'
@@ -68,6 +69,7 @@ export async function seedDemo(
     const crews = await seedCrews(inside)
     await seedBakeSchedule(inside)
     const bakeDeviations = await seedBakeDeviations(inside)
+    const permits = await seedPermits(inside)
     const counts = {
       people,
       segments,
@@ -82,6 +84,7 @@ export async function seedDemo(
       bakePlans,
       crews,
       bakeDeviations,
+      permits,
     }
     await inside.insert(record).values({
       at: DEMO_START,

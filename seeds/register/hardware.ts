@@ -254,6 +254,14 @@ async function seedPumps(db: DbOrTx): Promise<void> {
   )
 }
 
+/** Hand instruments with which permits are tested, and when each goes to calibration. */
+const TESTERS: readonly (readonly [tag: string, kind: string, facts: string, due: string])[] = [
+  ['VT-1', 'voltage tester', 'Two poles, proved on its own source before and after', '2027-03-01'],
+  ['IT-1', 'insulation tester', '500 V; measures low resistance as well', '2027-03-01'],
+  ['RM-1', 'micro-ohmmeter', '10 A, for bolted joints', '2027-04-15'],
+  ['CP-1', 'contact thermometer', 'Probe for bare steel, to 400 °C', '2027-01-20'],
+]
+
 /** Valves, pumps with their places, heater circuits, supply sets and loose equipment. */
 export async function seedHardware(db: DbOrTx): Promise<void> {
   await seedValves(db)
@@ -303,6 +311,7 @@ export async function seedHardware(db: DbOrTx): Promise<void> {
       facts: 'Of cart MC-B; on the cross of SG-13 for its isolated test',
       calibrationDue: at('2026-12-01'),
     },
+    ...TESTERS.map(([tag, kind, facts, due]) => ({ tag, kind, facts, calibrationDue: at(due) })),
     ...LEAKS.flatMap((one, index) =>
       one.temporaryUntil === null
         ? []
