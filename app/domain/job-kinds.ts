@@ -34,6 +34,8 @@ export const JOB_PAYLOADS = {
   'roll-up': z.strictObject({}),
   /** Notes where the bakes under way have left their plans or limits. */
   'note-deviations': z.strictObject({}),
+  /** Looks through the permits for dangers, and for times that have passed. */
+  'watch-permits': z.strictObject({}),
   /** Deletes finished jobs, and uploads that broke off, once nobody will ask about them. */
   'purge-leftovers': z.strictObject({}),
 } as const satisfies Record<string, z.ZodType>
@@ -54,6 +56,8 @@ export interface ScheduledTask {
 }
 
 export const SCHEDULED_TASKS: readonly ScheduledTask[] = [
+  // First: people wait for nothing more than for this.
+  { name: 'watch-permits', kind: 'watch-permits', everySeconds: 60 },
   { name: 'partition-readings', kind: 'partition-readings', everySeconds: 6 * 3600 },
   { name: 'note-deviations', kind: 'note-deviations', everySeconds: 600 },
   // Whoever takes a file in asks for it at once; this is for live posts, typed readings and what a stop has left.

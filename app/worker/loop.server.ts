@@ -1,6 +1,7 @@
 /**
- * What the worker process does until it is told to stop: it keeps the product clock, looks at the schedule, and does
- * one job after another. Each of the three has its own pace; none is held up by an error of another.
+ * What the worker process does until it is told to stop: it keeps the product clock, looks at the schedule, does one
+ * job after another, and ends permits at the second their time is over. Each of the four has its own pace; none is held
+ * up by an error of another, or by a long job.
  */
 import { randomUUID } from 'node:crypto'
 import { type Db, getDb } from '../db/client.server.ts'
@@ -9,6 +10,7 @@ import { log } from '../log.server.ts'
 import { productNow } from '../services/clock.server.ts'
 import { keepClockGoing, resumeClockWhenAble } from '../services/clock-keeping.server.ts'
 import { claimJob, type JobHandlers, runJob } from '../services/jobs.server.ts'
+import { carryOutDue } from '../services/permit-watch.server.ts'
 import { repeat } from '../services/repeat.server.ts'
 import { releaseSchedule, runSchedule } from '../services/schedule.server.ts'
 import { feederTasks } from './jobs/feeder.server.ts'
@@ -16,6 +18,8 @@ import { JOB_HANDLERS } from './jobs/handlers.server.ts'
 
 const SCHEDULE_MS = 5_000
 const IDLE_MS = 1_000
+/** How late the worker may learn of a permit that has just become live, or that the demo clock has been moved. */
+const LOOK_MS = 1_000
 
 export interface WorkerOptions {
   /** Stops the worker: no new job is begun, the present one is told and waited for. */
@@ -41,6 +45,7 @@ export async function runWorker({
       return SCHEDULE_MS
     }),
     repeat('do jobs', signal, () => doOneJob(db, handlers, signal)),
+    repeat('end permits in time', signal, () => endPermits(db)),
   ])
   await endWell(db, owner)
 }
@@ -51,6 +56,13 @@ async function doOneJob(db: Db, handlers: JobHandlers, signal: AbortSignal): Pro
   const outcome = await runJob(db, held, handlers, { signal })
   log.debug('job ended', { job: held.id, kind: held.kind, outcome })
   return 0
+}
+
+/** @returns ms until the next look: until the next time passes by the product's clock, which runs as the machine's does */
+async function endPermits(db: Db): Promise<number> {
+  const { nextAt } = await carryOutDue(db, await productNow(db))
+  if (nextAt === null) return LOOK_MS
+  return Math.min(LOOK_MS, Math.max(1, nextAt.getTime() - (await productNow(db)).getTime()))
 }
 
 /** The schedule is handed on; without a database that can neither be done, nor does it matter. */

@@ -9,6 +9,7 @@ import { purgeEndedSessions } from './purge-sessions.server.ts'
 import { readNightFile, takeInNightFile } from './read-night-file.server.ts'
 import { rollUp } from './rollup.server.ts'
 import { solveScheduleJob } from './solve-schedule.server.ts'
+import { watchPermits } from './watch-permits.server.ts'
 
 export const JOB_HANDLERS: JobHandlers = {
   'feed-demo': feedDemo,
@@ -21,4 +22,5 @@ export const JOB_HANDLERS: JobHandlers = {
   'roll-up': rollUp,
   'solve-schedule': solveScheduleJob,
   'take-in-night-file': takeInNightFile,
+  'watch-permits': watchPermits,
 }
