@@ -26,6 +26,7 @@ import { seedPositions } from './register/positions.ts'
 import { seedSegments } from './register/segments.ts'
 import { seedSources } from './register/sources.ts'
 import { seedSegmentStates } from './segment-states.ts'
+import { seedThresholds } from './thresholds.ts'
 
 /**
  * Seeds the demo when the database holds no site yet, and does nothing otherwise. Readings go in first, since they are
@@ -69,6 +70,7 @@ export async function seedDemo(
     const crews = await seedCrews(inside)
     await seedBakeSchedule(inside)
     const bakeDeviations = await seedBakeDeviations(inside)
+    const thresholds = await seedThresholds(inside)
     const permits = await seedPermits(inside)
     const counts = {
       people,
@@ -84,6 +86,7 @@ export async function seedDemo(
       bakePlans,
       crews,
       bakeDeviations,
+      thresholds,
       permits,
     }
     await inside.insert(record).values({
