@@ -40,6 +40,7 @@ export default [
     route('people/waiting', 'routes/people/waiting.tsx'),
     route('people/record', 'routes/people/record.tsx'),
     route('people/tokens', 'routes/api/tokens.tsx'),
+    route('people/competences', 'routes/people/competences.tsx'),
     route('people/:personId', 'routes/people/person.tsx'),
     route('account', 'routes/account/account.tsx'),
     route('clock', 'routes/account/clock.tsx'),

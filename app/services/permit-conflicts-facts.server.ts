@@ -1,6 +1,6 @@
 /** Collects what the conflict rules look at: this permit, those it may meet, works, valves, limits, people, calendar. */
 import type { DbOrTx } from '../db/client.server.ts'
-import { listCarts, listPlans, type PlanRow } from '../db/queries/bake-plans.server.ts'
+import { listCarts, listPlans, listSupplies, type PlanRow } from '../db/queries/bake-plans.server.ts'
 import { listCrews } from '../db/queries/bake-schedules.server.ts'
 import { listCompetences } from '../db/queries/competences.server.ts'
 import { listPeople } from '../db/queries/people.server.ts'
@@ -44,6 +44,8 @@ interface Around {
   places: ReadonlyMap<string, { place: Place; segment: SegmentWithState }>
   plans: readonly PlanRow[]
   carts: readonly string[]
+  /** Sets that send direct current through a tube; anything else that heats is a blanket. */
+  supplies: readonly string[]
   names: ReadonlyMap<number, string>
   locks: readonly Lock[]
 }
@@ -54,11 +56,12 @@ export async function readConflictFacts(db: DbOrTx, permit: PermitRow, now: Date
   const others = (await listPermits(db, { states: CLAIMING_PERMIT_STATES })).filter(
     ({ id }) => id !== permit.id,
   )
-  const [lines, segments, plans, carts, people, locks, limits] = await Promise.all([
+  const [lines, segments, plans, carts, supplies, people, locks, limits] = await Promise.all([
     listLines(db),
     listSegments(db, now),
     listPlans(db),
     listCarts(db),
+    listSupplies(db),
     listPeople(db),
     listHangingLocks(db, [permit.id, ...others.map(({ id }) => id)]),
     listLimits(db, now),
@@ -67,6 +70,7 @@ export async function readConflictFacts(db: DbOrTx, permit: PermitRow, now: Date
     places: new Map(segments.map((segment) => [segment.tag, { place: placeOf(segment), segment }])),
     plans,
     carts: carts.map(({ tag }) => tag),
+    supplies: supplies.map(({ tag }) => tag),
     names: new Map(people.map(({ id, name }) => [id, name])),
     locks,
   }
@@ -164,6 +168,7 @@ async function conflictPermit(db: DbOrTx, permit: PermitRow, around: Around): Pr
       permit,
       found.map(({ segment }) => segment),
       plan,
+      around.supplies,
     ),
   }
 }
@@ -174,8 +179,9 @@ async function heatOf(
   { content }: PermitRow,
   segments: readonly SegmentWithState[],
   plan: ReturnType<typeof contentOf> | null,
+  supplies: readonly string[],
 ): Promise<Heat | null> {
-  const throughTube = content.supply !== null
+  const throughTube = content.supply !== null && supplies.includes(content.supply)
   const upKH = content.rampKH ?? plan?.upKH ?? null
   if (content.maxCelsius === null || (throughTube && upKH === null)) return null
   return {

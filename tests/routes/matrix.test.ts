@@ -155,9 +155,11 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: ['administrator'], status: 200 },
     POST: { who: ['administrator'], status: 400 },
   },
+  '/people/competences': { GET: { who: STAFF, status: 200 } },
   '/people/:personId': {
     path: '/people/999',
-    GET: { who: ['administrator'], status: 404 },
+    // An officer sees what the person may do, and nothing of the account.
+    GET: { who: ['safety-officer', 'administrator'], status: 404 },
     POST: { who: ['administrator'], status: 400 },
   },
   '/api/v1/openapi.json': { GET: { who: 'anyone', status: 200 } },

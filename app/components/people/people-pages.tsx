@@ -68,6 +68,7 @@ export function PeoplePage({ people, waiting }: { people: readonly PersonWithRol
         title="People"
         actions={
           <>
+            <ButtonLink to="/people/competences">Competences</ButtonLink>
             <ButtonLink to="/people/tokens">Tokens</ButtonLink>
             <ButtonLink to="/people/record">Record of who did what</ButtonLink>
             <ButtonLink kind="primary" to="/people/new">
@@ -166,7 +167,7 @@ export function NewPersonPage({ failure: answered }: { failure: RegisterFailure 
             <TextField
               name="note"
               label="Note"
-              hint="Such as a firm or a licence."
+              hint="Such as a firm. Licences are entered on the page of the account."
               maxLength={500}
               defaultValue={typed?.note ?? ''}
               errors={errorsOf('note')}

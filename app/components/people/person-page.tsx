@@ -4,6 +4,7 @@ import { Form, Link, useNavigation } from 'react-router'
 import { ROLE_LABELS } from '#app/domain/roles.ts'
 import { accountEndSchema, grantSchema } from '#app/domain/schemas/people.ts'
 import { useSite } from '#app/hooks/use-site.ts'
+import type { CompetenceRow } from '#app/services/competences.server.ts'
 import type { GrantWithStanding } from '#app/services/people.server.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { SiteTimeField } from '../forms/site-time-field.tsx'
@@ -16,6 +17,7 @@ import { Instant } from '../ui/instant.tsx'
 import { Notice } from '../ui/notice.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
 import { fieldTime } from '../ui/site-time.ts'
+import { CompetencesPanel } from './competences-panel.tsx'
 import { PeopleCrumbs, RoleField } from './people-pages.tsx'
 
 export interface PersonPageProps {
@@ -29,6 +31,7 @@ export interface PersonPageProps {
     createdAt: Date
   }
   grants: readonly GrantWithStanding[]
+  competences: readonly CompetenceRow[]
   own: boolean
   failure: RegisterFailure | undefined
 }
@@ -76,7 +79,7 @@ const COLUMNS: readonly Column<GrantWithStanding>[] = [
   },
 ]
 
-export function PersonPage({ person, grants, own, failure }: PersonPageProps) {
+export function PersonPage({ person, grants, competences, own, failure }: PersonPageProps) {
   const failureOf = (intent: string) => (failure?.intent === intent ? failure : undefined)
   const endable = grants.filter(({ standing }) => standing !== 'ended')
   return (
@@ -126,6 +129,7 @@ export function PersonPage({ person, grants, own, failure }: PersonPageProps) {
           </div>
         </div>
       )}
+      <CompetencesPanel name={person.name} competences={competences} own={own} failure={failure} />
     </>
   )
 }
