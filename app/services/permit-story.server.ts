@@ -143,10 +143,9 @@ export async function readPermitHistory(db: Db, number: string): Promise<PermitH
 /** How the record names an act on a permit that somebody was not let do. */
 const BLOCKED = 'permit attempt blocked'
 
-const AttemptSchema = z.object({
-  attempt: z.string(),
-  reasons: z.array(z.object({ text: z.string() })).default([]),
-})
+const AttemptSchema = z
+  .object({ attempt: z.string(), reasons: z.array(z.object({ text: z.string() })) })
+  .catch({ attempt: 'act on it', reasons: [] })
 
 /** What was tried and why it was not let, as services/permits.server.ts writes it down. */
 function attemptIn(after: unknown): { what: string; reason: string } {
