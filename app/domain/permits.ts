@@ -38,6 +38,7 @@ import { condition, inputReason, personReason, type Reason, wrongState } from '.
 import type { PermitAct, PermitState, SafetyEventKind } from './permit-words.ts'
 
 const HOUR_MS = 3_600_000
+const LONGEST_REASON = 1000
 
 /** What an act causes besides the new state. */
 export type PermitEffect =
@@ -462,6 +463,9 @@ export function permitStep<Act extends PermitAct>(
   const reasons = standsInTheWay(facts, actor, act, now)
   const reason = input.reason.trim()
   if (rule.reason !== null && reason.length < 3) reasons.push(inputReason('reason', rule.reason))
+  if (reason.length > LONGEST_REASON) {
+    reasons.push(inputReason('reason', `At most ${LONGEST_REASON} characters; these are ${reason.length}.`))
+  }
   const parsed = PERMIT_ACT_DETAILS[act].safeParse(input.detail ?? {})
   if (!parsed.success) {
     reasons.push(
