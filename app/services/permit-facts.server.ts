@@ -69,7 +69,7 @@ function approvingSince(grants: readonly GrantRow[], now: Date): Date | null {
 }
 
 /** A person as the rules of permits see them: what they may do, and since when others know that they approve. */
-export async function permitActorOf(db: DbOrTx, actor: Actor, now: Date): Promise<PermitActor> {
+export async function permitActor(db: DbOrTx, actor: Actor, now: Date): Promise<PermitActor> {
   const mayApprove = may(actor, 'permit:approve')
   return {
     personId: actor.personId,

@@ -35,7 +35,7 @@ import {
   productStep,
 } from '../domain/permits.ts'
 import type { FormAct } from '../domain/schemas/permit-act.ts'
-import { officersApart, permitActorOf, readPermitFacts } from './permit-facts.server.ts'
+import { officersApart, permitActor, readPermitFacts } from './permit-facts.server.ts'
 import { writeRecord } from './record.server.ts'
 import { noteDangers } from './safety-events.server.ts'
 import { signAct, useSignedAct as spendSignature } from './signature.server.ts'
@@ -157,7 +157,7 @@ export async function savePermit(
     const facts = await readPermitFacts(inside, changed, now)
     const outcome = permitStep(
       facts,
-      await permitActorOf(inside, actor, now),
+      await permitActor(inside, actor, now),
       act,
       { reason: form.reason, detail: {} },
       now,
@@ -241,7 +241,7 @@ async function judge(
   form: PermitActForm,
 ): Promise<PermitStep> {
   const facts = await readPermitFacts(db, permit, now, endOf(permit, form))
-  const outcome = permitStep(facts, await permitActorOf(db, actor, now), form.act, form, now)
+  const outcome = permitStep(facts, await permitActor(db, actor, now), form.act, form, now)
   if (outcome.kind === 'step') return outcome
   const others =
     form.act === 'approve' && outcome.reasons.some(({ kind }) => kind === 'person')
