@@ -58,7 +58,16 @@ export function ThresholdsPage(props: ThresholdsPageProps) {
       <Panel title="All thresholds">
         <ThresholdsTable openOf={openOf} mayAdopt={mayAdopt} />
       </Panel>
-      {chosen !== null && <Chosen key={chosen} {...props} threshold={chosen} open={openOf(chosen)} />}
+      {chosen !== null && (
+        <Chosen
+          key={chosen}
+          threshold={chosen}
+          open={openOf(chosen)}
+          history={history}
+          mayAdopt={mayAdopt}
+          failure={failure}
+        />
+      )}
       <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_22rem]">
         {chosen === null ? (
           <Panel title="History">
@@ -177,7 +186,10 @@ function Chosen({
   history,
   mayAdopt,
   failure,
-}: ThresholdsPageProps & { threshold: ThresholdKey; open: AdoptedThreshold | null }) {
+}: Pick<ThresholdsPageProps, 'history' | 'mayAdopt' | 'failure'> & {
+  threshold: ThresholdKey
+  open: AdoptedThreshold | null
+}) {
   const { label, meaning, hazards, careful } = THRESHOLDS[threshold]
   return (
     <div id="threshold" className="scroll-mt-4">
