@@ -27,6 +27,7 @@ export default [
     route('bakes/schedule', 'routes/bakes/schedule.tsx'),
     route('permits', 'routes/permits/permits.tsx'),
     route('permits/thresholds', 'routes/permits/thresholds.tsx'),
+    route('permits/:number', 'routes/permits/permit.tsx'),
     route('permits/:number/history', 'routes/permits/history.tsx'),
     route('logbook', 'routes/logbook/logbook.tsx'),
     route('logbook/new', 'routes/logbook/new-entry.tsx'),

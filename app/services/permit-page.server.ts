@@ -152,6 +152,21 @@ export async function readPermitPage(
   }
 }
 
+export interface StopPageData {
+  number: string
+  segments: readonly string[]
+  state: PermitState
+  revision: number
+}
+
+/** As much of a permit as somebody needs who may stop work on it and nothing else. @throws DomainError not-found */
+export async function readStopPage(db: DbOrTx, now: Date, number: string): Promise<StopPageData> {
+  const permit = await findPermit(db, number)
+  if (permit === null) throw new DomainError('not-found', `There is no permit ${number}.`)
+  const { content, revision } = permit
+  return { number, segments: content.segments, state: stateAsOf(permit, now).state, revision }
+}
+
 const EDITABLE: readonly PermitState[] = ['draft', 'returned', 'approved', 'suspended']
 
 function standing(permit: PermitRow) {

@@ -118,6 +118,12 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: STAFF, status: 200 },
     POST: { who: ['safety-officer'], status: 400 },
   },
+  '/permits/:number': {
+    path: '/permits/HSP-2026-999',
+    // Whoever may stop work sees the stop card of a permit.
+    GET: { who: ROLES, status: 404 },
+    POST: { who: ROLES, status: 400 },
+  },
   '/permits/:number/history': {
     path: '/permits/HSP-2026-999/history',
     GET: { who: STAFF, status: 404 },

@@ -15,8 +15,15 @@ interface LocatorSegment {
 /** Per cent of the strip left free between two segments. */
 const GAP = 0.15
 
-/** @param here tag of the segment the page is about */
-export function Locator({ along, here }: { along: readonly LocatorSegment[]; here: string }) {
+/** @param here tag of the segment that the page is about, or tags where it is about several */
+export function Locator({
+  along,
+  here,
+}: {
+  along: readonly LocatorSegment[]
+  here: string | readonly string[]
+}) {
+  const marked = [here].flat()
   const scrollerRef = useRef<HTMLElement>(null)
   const ends = new Map<string, number>()
   for (const { lineCode, endM } of along) ends.set(lineCode, Math.max(ends.get(lineCode) ?? 0, endM))
@@ -24,7 +31,7 @@ export function Locator({ along, here }: { along: readonly LocatorSegment[]; her
     [...ends].map(([code, lengthM]) => ({ code, lengthM })),
     100,
   )
-  const own = along.find(({ tag }) => tag === here)
+  const own = along.find(({ tag }) => marked.includes(tag))
   const middle = own === undefined ? 0 : (place(own.lineCode, (own.startM + own.endM) / 2) ?? 0) / 100
 
   // Narrower than its links need, the strip scrolls; it then opens on the segment the page is about.
@@ -47,12 +54,12 @@ export function Locator({ along, here }: { along: readonly LocatorSegment[]; her
               <Link
                 to={`/segments/${tag}`}
                 aria-label={`${tag}, ${SEGMENT_STATES[state].label}`}
-                aria-current={tag === here ? 'page' : undefined}
+                aria-current={marked.includes(tag) ? (tag === here ? 'page' : 'location') : undefined}
                 title={`${tag}, ${SEGMENT_STATES[state].label}`}
                 className="group flex h-full items-center focus-visible:-outline-offset-2"
               >
                 <span
-                  className={`block h-2 w-full group-hover:h-3.5 group-aria-[current]:h-4 ${barClass(state, tag === here)}`}
+                  className={`block h-2 w-full group-hover:h-3.5 group-aria-[current]:h-4 ${barClass(state, marked.includes(tag))}`}
                 />
               </Link>
             </li>

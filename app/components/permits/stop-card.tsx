@@ -1,9 +1,13 @@
 /** The stop card: one line and one button, for everybody, on every live permit. */
 import { Form, useNavigation } from 'react-router'
+import type { StopPageData } from '#app/services/permit-page.server.ts'
 import type { ActionFailure } from '../forms/failure.ts'
+import { FormFailure } from '../forms/form-failure.tsx'
 import { Button } from '../ui/button.tsx'
 import { TextField } from '../ui/field.tsx'
+import { PageHead } from '../ui/panel.tsx'
 import { ownFailure } from './act-form.tsx'
+import { PermitMark } from './permit-mark.tsx'
 
 export function StopCard({
   number,
@@ -50,5 +54,31 @@ export function StopCard({
         </Button>
       </Form>
     </section>
+  )
+}
+
+/** A permit for somebody who may stop work on it and sees nothing else of the facility. */
+export function StopPage({
+  number,
+  segments,
+  state,
+  revision,
+  failure,
+}: StopPageData & { failure: ActionFailure | undefined }) {
+  return (
+    <>
+      <PageHead title={`Heated-segment permit ${number}`}>
+        {segments.join(' + ')} · <PermitMark state={state} />
+      </PageHead>
+      <FormFailure failure={failure} />
+      {state === 'issued' ? (
+        <StopCard number={number} revision={revision} failure={failure} />
+      ) : (
+        <p>
+          There is no work under this permit that could be stopped here. If something is wrong at the segment
+          all the same: keep away, and tell a safety officer.
+        </p>
+      )}
+    </>
   )
 }

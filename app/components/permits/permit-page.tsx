@@ -1,0 +1,159 @@
+/** A heated-segment permit on one page: where it stands, what it warns of, what is in its way, and what can be done. */
+import { Link } from 'react-router'
+import type { OfferedAct } from '#app/domain/permit-offers.ts'
+import type { PermitPageData } from '#app/services/permit-page.server.ts'
+import { Locator } from '../charts/locator.tsx'
+import type { ActionFailure } from '../forms/failure.ts'
+import { FormFailure } from '../forms/form-failure.tsx'
+import { ButtonLink } from '../ui/button.tsx'
+import { Instant } from '../ui/instant.tsx'
+import { PageHead } from '../ui/panel.tsx'
+import { ActForm } from './act-form.tsx'
+import { ACT_WORDS } from './act-words.ts'
+import { HazardList } from './hazard-list.tsx'
+import {
+  ChecklistPanel,
+  DifferencesPanel,
+  PeoplePanel,
+  ProtectionPanel,
+  RecentPanel,
+  TermsPanel,
+  ValidityPanel,
+} from './permit-panels.tsx'
+import { StageBar } from './stage-bar.tsx'
+import { StopCard } from './stop-card.tsx'
+
+export interface PermitPageProps extends PermitPageData {
+  /** The act whose form is asked for by the address. */
+  asked: OfferedAct | null
+  failure: ActionFailure | undefined
+}
+
+export function PermitPage(props: PermitPageProps) {
+  const { number, content, along, failure, revision, checklist, waitsFor, offers } = props
+  const open = openForm(props)
+  const here = `/permits/${number}`
+  return (
+    <>
+      <Head {...props} />
+      <div className="-mt-2 mb-3">
+        <Locator along={along} here={content.segments} />
+      </div>
+      <StageBar stages={props.stages} />
+      <FormFailure failure={failure} />
+      {waitsFor !== '' && <p className="-mt-1 mb-4">{waitsFor}</p>}
+      {open !== undefined && open.act !== 'suspend' && (
+        <ActForm
+          key={open.act}
+          offer={open}
+          revision={revision}
+          failure={failure}
+          here={here}
+          holder={props.holder}
+        />
+      )}
+      {offers.some(({ act }) => act === 'suspend') && (
+        <StopCard number={number} revision={revision} failure={failure} />
+      )}
+      <DifferencesPanel {...props} />
+      <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_20.5rem]">
+        <div className="min-w-0">
+          <HazardList hazards={props.hazards} />
+          <ProtectionPanel {...props} />
+        </div>
+        <div className="min-w-0">
+          {checklist !== null && <ChecklistPanel checklist={checklist} />}
+          <ValidityPanel {...props} />
+          <TermsPanel {...props} />
+          <PeoplePanel {...props} />
+          <RecentPanel {...props} />
+        </div>
+      </div>
+    </>
+  )
+}
+
+/** The form on the page: the one that was refused, or the one that is asked for, if it is offered to this reader. */
+function openForm({ asked, failure, offers }: PermitPageProps) {
+  const act = failure?.typed?.act ?? asked
+  return offers.find((offer) => offer.act === act)
+}
+
+function Head(props: PermitPageProps) {
+  const { number, content, requestedBy, requestedAt, createdBy, createdAt, offers, may } = props
+  const { fromM, toM, planId } = content
+  return (
+    <PageHead
+      title={`Heated-segment permit ${number}`}
+      crumbs={
+        <>
+          <Link to="/permits" className="link">
+            Permits
+          </Link>{' '}
+          / {number}
+        </>
+      }
+      actions={
+        <>
+          <ButtonLink to={`/permits/${number}/print`}>Print for posting</ButtonLink>
+          {may.site && <ButtonLink to={`/permits/${number}/site`}>At the site</ButtonLink>}
+          {may.edit && (
+            <ButtonLink to={`/permits/${number}/edit`}>
+              {props.state === 'draft' || props.state === 'returned' ? 'Edit' : 'Change the terms'}
+            </ButtonLink>
+          )}
+          {offers.map(({ act }) =>
+            act === 'suspend' ? (
+              <ButtonLink key={act} to="#stop" kind="danger">
+                {ACT_WORDS[act].button}
+              </ButtonLink>
+            ) : (
+              <ButtonLink key={act} to={`?act=${act}#act`} kind={ACT_WORDS[act].kind}>
+                {ACT_WORDS[act].button}
+              </ButtonLink>
+            ),
+          )}
+        </>
+      }
+    >
+      <span className="block font-medium text-ink">{content.title || 'No title yet'}</span>
+      {content.segments.length === 0
+        ? 'no segment yet'
+        : content.segments.map((tag, i) => (
+            <span key={tag}>
+              {i > 0 && ' + '}
+              <Link to={`/segments/${tag}`} className="link">
+                {tag}
+              </Link>
+            </span>
+          ))}
+      {fromM !== null && toM !== null && `, ${fromM} – ${toM} m`}
+      {' · '}
+      {requestedBy === null || requestedAt === null ? (
+        <>
+          drafted by {createdBy}, <Instant at={createdAt} />
+        </>
+      ) : (
+        <>
+          asked for by {requestedBy}, <Instant at={requestedAt} />
+        </>
+      )}
+      {planId !== null && (
+        <>
+          {' · '}
+          <Link to={`/bakes/plans/${planId}`} className="link">
+            bake plan {planId}
+          </Link>
+          {content.planVersion !== null && `, version ${content.planVersion}`}
+        </>
+      )}
+      <span className="block text-sm">
+        Revision {props.revision} · version {props.version}
+        {props.approvedVersion !== null &&
+          !props.approvedIsShown &&
+          ` (approved was version ${props.approvedVersion})`}
+        {' · '}short code {props.shortCode} · Ebbline records; it does not isolate, switch off or protect.
+      </span>
+    </PageHead>
+  )
+}
