@@ -4,6 +4,7 @@
  * A result counts when it was taken with an instrument whose calibration was in date and lies within the limits that
  * the permit sets, ends included.
  */
+import { PUBLISHED_OXYGEN } from './oxygen.ts'
 import type { RequiredTest } from './permit-content.ts'
 import type { TestFact } from './permit-facts.ts'
 import {
@@ -14,13 +15,6 @@ import {
 } from './permit-words.ts'
 
 const HOUR_MS = 3_600_000
-
-/**
- * Air that is short of oxygen, and air that has too much, in per cent by volume: US 29 CFR 1910.146(b); from memory, not
- * verified. A test without limits of its own never passes outside these.
- */
-export const OXYGEN_LOW = 19.5
-const OXYGEN_HIGH = 23.5
 
 /** Tests whose result is a figure of an instrument; the others are tried and found to work or not. */
 const MEASURED: readonly PermitTestKind[] = [
@@ -36,6 +30,22 @@ const MEASURED: readonly PermitTestKind[] = [
 /** Whether a test of this kind is taken with an instrument. */
 export function needsInstrument(kind: PermitTestKind): boolean {
   return MEASURED.includes(kind)
+}
+
+const ELECTRICAL = ['voltage', 'current', 'resistance']
+/** What an instrument has to read, as the register calls it, to be the right one for a test. A hand meter reads several. */
+const QUANTITIES: Partial<Record<PermitTestKind, readonly string[]>> = {
+  oxygen: ['oxygen'],
+  'zero-voltage': ELECTRICAL,
+  'earth-continuity': ELECTRICAL,
+  'insulation-resistance': ELECTRICAL,
+  'joint-resistance': ELECTRICAL,
+  'surface-temperature': ['temperature', ...ELECTRICAL],
+}
+
+/** Whether an instrument that reads a quantity can have been used for a test. */
+export function measures(kind: PermitTestKind, quantity: string): boolean {
+  return QUANTITIES[kind]?.includes(quantity) ?? true
 }
 
 /** Units in which each kind is usually given, the first one proposed. */
@@ -105,7 +115,7 @@ export interface JudgedTest {
 }
 
 /**
- * Whether a test passes, with every reason why not.
+ * Whether a test passes, with every reason why not; `doubt` is what speaks against the instrument alone.
  *
  * @param required what the permit asks for; null for a test beyond that
  * @param when writes an instant in site time
@@ -114,7 +124,7 @@ export function judgeTest(
   required: Pick<RequiredTest, 'low' | 'high' | 'unit'> | null,
   test: JudgedTest,
   when: (at: Date) => string,
-): { passed: boolean; reasons: string[] } {
+): { passed: boolean; reasons: string[]; doubt: string } {
   const reasons: string[] = []
   const { kind, value, unit, takenAt, calibrationDue } = test
   if (needsInstrument(kind)) {
@@ -124,23 +134,25 @@ export function judgeTest(
       reasons.push(`The instrument’s calibration ran out ${when(calibrationDue)}, before the test.`)
     }
   }
+  const doubt = reasons.join(' ')
   const limits = limitsOf(kind, required)
   const outside = limits === null ? null : outsideText(limits, value, unit)
   if (outside !== null) reasons.push(outside)
   if (test.saysPassed === false) reasons.push('The tester says it failed.')
   if (limits === null && test.saysPassed === null) reasons.push('Nobody has said whether it passed.')
-  return { passed: reasons.length === 0, reasons }
+  return { passed: reasons.length === 0, reasons, doubt }
 }
 
 type Limits = Pick<RequiredTest, 'low' | 'high' | 'unit'>
 
-/** The limits that decide a test; null where the tester's word does. */
+/** The limits that decide a test; null where the tester's word does. Oxygen never passes without any. */
 export function limitsOf(kind: PermitTestKind, required: Limits | null): Limits | null {
   if (required !== null && (required.low !== null || required.high !== null)) return required
-  return kind === 'oxygen' ? { low: OXYGEN_LOW, high: OXYGEN_HIGH, unit: '%' } : null
+  return kind === 'oxygen' ? { ...PUBLISHED_OXYGEN, unit: '%' } : null
 }
 
-function outsideText(limits: Limits, value: number | null, unit: string): string | null {
+/** Why a figure is not within limits; null when it is. */
+export function outsideText(limits: Limits, value: number | null, unit: string): string | null {
   if (value === null) return `There is no figure; wanted: ${limitsText(limits)}.`
   if (unit !== limits.unit) {
     return `Found a figure in ${unit === '' ? 'no unit' : unit}; wanted: ${limitsText(limits)}.`

@@ -4,6 +4,7 @@ import {
   answers,
   judgeTest,
   limitsText,
+  measures,
   nextDue,
   notTakenText,
   roundObjection,
@@ -67,6 +68,7 @@ describe('a test', () => {
     expect(judged({ calibrationDue: AT })).toEqual({
       passed: false,
       reasons: ['The instrument’s calibration ran out 2026-11-09T07:00, before the test.'],
+      doubt: 'The instrument’s calibration ran out 2026-11-09T07:00, before the test.',
     })
     expect(judged({ calibrationDue: new Date(AT.getTime() + 1) }).passed).toBe(true)
     expect(judged({ calibrationDue: null }).reasons).toEqual([
@@ -98,6 +100,13 @@ describe('a test', () => {
   test('that the tester calls failed is failed within its limits too', () => {
     expect(judged({ saysPassed: false }).passed).toBe(false)
   })
+})
+
+test('an instrument of another quantity is not the one', () => {
+  expect(measures('oxygen', 'oxygen')).toBe(true)
+  expect(measures('oxygen', 'pressure')).toBe(false)
+  expect(measures('earth-continuity', 'voltage')).toBe(true)
+  expect(measures('flammable-gas', 'oxygen')).toBe(true)
 })
 
 test('limits in words', () => {
