@@ -281,3 +281,40 @@ export function permitFormSchema(zone: string) {
     })
   })
 }
+
+const counter = z.coerce
+  .number({ error: 'Load the page again: it does not say what it was filled from.' })
+  .int()
+
+/** What goes with the fields when the form is sent: the button, what the form was filled from, and the reason. */
+export const PermitFormBasisSchema = z.object({
+  intent: z.string().min(1, 'Press one of the buttons.').max(40),
+  revision: counter,
+  version: counter,
+  reason: z.string().trim().max(1000).default(''),
+})
+
+/** What a new permit is made from: a link of a plan's chain, such as `7:1`, or a segment by hand. */
+export const NewPermitSchema = z.discriminatedUnion(
+  'from',
+  [
+    z.object({
+      from: z.literal('plan'),
+      link: z
+        .string({ error: 'Choose the permit of the plan.' })
+        .regex(/^[1-9]\d{0,8}:[1-9]\d{0,2}$/, 'Choose the permit of the plan.')
+        .transform((typed) => {
+          const [planId, number] = typed.split(':').map(Number) as [number, number]
+          return { planId, number }
+        }),
+    }),
+    z.object({
+      from: z.literal('segment'),
+      segment: needed(12, 'Choose a segment.'),
+      second: text(12),
+      celsius: figure({ low: 20, high: 400, unit: '°C' }),
+      supply: choice(12),
+    }),
+  ],
+  { error: 'Choose a bake plan or a segment to begin with.' },
+)
