@@ -114,6 +114,7 @@ const ADDRESSES: Record<string, Address> = {
   '/bakes/plans/:planId/plan.csv': { path: '/bakes/plans/999/plan.csv', GET: { who: STAFF, status: 404 } },
   '/bakes/plans/:planId/plan.ics': { path: '/bakes/plans/999/plan.ics', GET: { who: STAFF, status: 404 } },
   '/permits': { GET: { who: STAFF, status: 200 } },
+  '/permits/new': { GET: { who: HANDS, status: 200 }, POST: { who: HANDS, status: 400 } },
   '/permits/thresholds': {
     GET: { who: STAFF, status: 200 },
     POST: { who: ['safety-officer'], status: 400 },
@@ -123,6 +124,11 @@ const ADDRESSES: Record<string, Address> = {
     // Whoever may stop work sees the stop card of a permit.
     GET: { who: ROLES, status: 404 },
     POST: { who: ROLES, status: 400 },
+  },
+  '/permits/:number/edit': {
+    path: '/permits/HSP-2026-999/edit',
+    GET: { who: HANDS, status: 404 },
+    POST: { who: HANDS, status: 400 },
   },
   '/permits/:number/history': {
     path: '/permits/HSP-2026-999/history',
