@@ -116,3 +116,28 @@ export const readingAside = mysqlTable(
     index('reading_aside_instant_ix').on(t.channelId, t.at),
   ],
 )
+
+/** A file that arrives in pieces, so that a connection that breaks off costs only the piece. Times are the machine's. */
+export const upload = mysqlTable(
+  'upload',
+  {
+    id: id(),
+    /** Names the upload in addresses; not to be guessed. */
+    token: varchar('token', { length: 43 }).notNull(),
+    personId: ref('person_id')
+      .notNull()
+      .references(() => person.id),
+    sourceCode: varchar('source_code', { length: 20 }).notNull().default(''),
+    fileName: varchar('file_name', { length: 255 }).notNull(),
+    byteSize: bigint('byte_size', { mode: 'number', unsigned: true }).notNull(),
+    attachmentId: ref('attachment_id')
+      .notNull()
+      .references(() => attachment.id),
+    receivedBytes: bigint('received_bytes', { mode: 'number', unsigned: true }).notNull().default(0),
+    createdAt: utc('created_at').notNull(),
+    lastAt: utc('last_at').notNull(),
+    /** The import that it became. */
+    importId: ref('import_id').references(() => importFile.id),
+  },
+  (t) => [uniqueIndex('upload_token_uq').on(t.token), index('upload_last_ix').on(t.lastAt)],
+)

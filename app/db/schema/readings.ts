@@ -1,5 +1,7 @@
-import { double, index, int, mysqlTable, primaryKey, tinyint } from 'drizzle-orm/mysql-core'
-import { ref, utc } from '../columns.ts'
+import { double, index, int, mysqlTable, primaryKey, tinyint, varchar } from 'drizzle-orm/mysql-core'
+import { id, ref, utc } from '../columns.ts'
+import { person } from './people.ts'
+import { source } from './register.ts'
 
 /**
  * Readings by raw channel and instant. Which position and instrument a reading belongs to follows from the dated maps
@@ -40,4 +42,50 @@ export const importRange = mysqlTable(
     primaryKey({ name: 'import_range_pk', columns: [t.importId, t.channelId] }),
     index('import_range_channel_ix').on(t.channelId, t.firstAt),
   ],
+)
+
+/** Lowest and highest value that a file gives beside a mean, for the reading of the same channel, instant and import. */
+export const readingBounds = mysqlTable(
+  'reading_bounds',
+  {
+    importId: int('import_id', { unsigned: true }).notNull(),
+    channelId: int('channel_id', { unsigned: true }).notNull(),
+    at: utc('at').notNull(),
+    low: double('low'),
+    high: double('high'),
+  },
+  (t) => [
+    primaryKey({ name: 'reading_bounds_pk', columns: [t.channelId, t.at, t.importId] }),
+    index('reading_bounds_import_ix').on(t.importId),
+  ],
+)
+
+/**
+ * How far a source's clock went wrong over a stretch: a layer that is laid over its readings when they are read and
+ * taken off by replacing the row. The times as the file has them stay.
+ */
+export const clockCorrection = mysqlTable(
+  'clock_correction',
+  {
+    id: id(),
+    sourceId: ref('source_id')
+      .notNull()
+      .references(() => source.id),
+    /** By the source's own clock. */
+    startsAt: utc('starts_at').notNull(),
+    endsAt: utc('ends_at').notNull(),
+    /** True time minus the source's, milliseconds, at both ends; straight between them. */
+    startMs: int('start_ms').notNull(),
+    endMs: int('end_ms').notNull(),
+    /** What it rests on: compared events or a comparison by hand. */
+    basis: varchar('basis', { length: 1000 }).notNull(),
+    recordedBy: ref('recorded_by')
+      .notNull()
+      .references(() => person.id),
+    recordedAt: utc('recorded_at').notNull(),
+    replacedAt: utc('replaced_at'),
+    replacedBy: ref('replaced_by').references(() => person.id),
+    replaceReason: varchar('replace_reason', { length: 500 }).notNull().default(''),
+  },
+  (t) => [index('clock_correction_ix').on(t.sourceId, t.startsAt)],
 )
