@@ -460,6 +460,7 @@ export function permitStep<Act extends PermitAct>(
   now: Date,
 ): PermitStep | PermitRefusal {
   const rule: Rule<Act> = PERMIT_RULES[act]
+  const current = asOf(facts, now)
   const reasons = standsInTheWay(facts, actor, act, now)
   const reason = input.reason.trim()
   if (rule.reason !== null && reason.length < 3) reasons.push(inputReason('reason', rule.reason))
@@ -476,10 +477,10 @@ export function permitStep<Act extends PermitAct>(
   const detail = parsed.data as ActDetail<Act>
   // What was typed is held against the facts only where the act itself is possible.
   if (!reasons.some(({ kind }) => kind === 'state')) {
-    reasons.push(...(rule.check?.(facts, actor, now, detail) ?? []))
+    reasons.push(...(rule.check?.(current, actor, now, detail) ?? []))
   }
   if (reasons.length > 0) return { kind: 'refused', reasons }
-  return step(facts, act, now, reason, detail, rule.outcome({ facts, actor, now, detail, reason }))
+  return step(current, act, now, reason, detail, rule.outcome({ facts: current, actor, now, detail, reason }))
 }
 
 /**
