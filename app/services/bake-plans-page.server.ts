@@ -21,6 +21,7 @@ import { SEGMENT_STATES, type SegmentState } from '../domain/segment-states.ts'
 import { readExcess } from './bake-options.server.ts'
 import { readPlan } from './bake-plans.server.ts'
 import { contentOf, readPlanFacts } from './bake-plans-facts.server.ts'
+import { listPermitBriefs, type PermitBrief } from './permit-register.server.ts'
 import { getSite } from './site.server.ts'
 import { limitFor } from './standing.server.ts'
 
@@ -109,15 +110,18 @@ export interface PlanPageData {
   /** Segments that now read more than the hydrogen that the prediction takes, and how many times it; none once closed. */
   excess: { segment: string; times: number }[]
   versions: VersionLine[]
-  may: { plan: boolean; tick: boolean; prioritise: boolean; moveOn: boolean }
+  /** Permits drawn up from it. */
+  drawnUp: PermitBrief[]
+  may: { draftPermit: boolean; plan: boolean; tick: boolean; prioritise: boolean; moveOn: boolean }
 }
 
 /** One plan with its checklist judged now; a closed plan keeps its prediction and shows no open steps. */
 export async function readPlanPage(db: Db, actor: Actor, now: Date, planId: number): Promise<PlanPageData> {
   const { plan, content, prediction } = await readPlan(db, planId)
-  const [facts, versions] = await Promise.all([
+  const [facts, versions, drawnUp] = await Promise.all([
     readPlanFacts(db, { id: planId, content, prediction }, now),
     listPlanVersions(db, planId),
+    listPermitBriefs(db, { planId }, now),
   ])
   const permits = permitWindows(prediction.steps)
   const open = plan.state === 'draft' || plan.state === 'ready'
@@ -145,6 +149,7 @@ export async function readPlanPage(db: Db, actor: Actor, now: Date, planId: numb
     permitChain: permitChainText(permits),
     load: facts.load,
     excess,
+    drawnUp,
     versions: versions
       .map((row, i) => {
         const before = versions[i - 1]
@@ -159,6 +164,7 @@ export async function readPlanPage(db: Db, actor: Actor, now: Date, planId: numb
       })
       .reverse(),
     may: {
+      draftPermit: (open || state === 'under-way') && may(actor, 'permit:draft'),
       plan: open && may(actor, 'bake:plan'),
       tick: open && may(actor, 'bake:note'),
       prioritise: open && may(actor, 'bake:prioritise'),

@@ -6,6 +6,7 @@ import {
   listHolders,
   listOpenDangers,
   listPermitLines,
+  listPermitsBySegment,
   listPermitYears,
   listPlanners,
   listSegmentsOfPermits,
@@ -17,7 +18,7 @@ import { type Actor, may } from '../domain/actor.ts'
 import { stateAsOf } from '../domain/permit-clock.ts'
 import { AT_THE_SITE, PERMIT_GROUPS, type PermitGroup, statesOfGroup } from '../domain/permit-groups.ts'
 import { waitsFor } from '../domain/permit-waiting.ts'
-import type { PermitState, SafetyEventKind } from '../domain/permit-words.ts'
+import { ENDED_PERMIT_STATES, type PermitState, type SafetyEventKind } from '../domain/permit-words.ts'
 import { readTests } from './permit-tests.server.ts'
 
 const PAGE = 50
@@ -196,4 +197,46 @@ export async function listWaitingPermits(db: DbOrTx, actor: Actor, now: Date): P
 
 function plansOf(permits: readonly PermitRow[]): number[] {
   return [...new Set(permits.flatMap(({ planId }) => (planId === null ? [] : [planId])))]
+}
+
+/** A permit in a few words, for the pages of what it is for. */
+export interface PermitBrief {
+  number: string
+  title: string
+  state: PermitState
+  windowFrom: Date | null
+  windowTo: Date | null
+  /** Null for what is neither live nor suspended. */
+  currentUntil: Date | null
+}
+
+const BRIEF = 5
+
+/** The newest permits of a segment or of a bake plan, those that have not ended first. */
+export async function listPermitBriefs(
+  db: DbOrTx,
+  of: { segment: string } | { planId: number },
+  now: Date,
+): Promise<PermitBrief[]> {
+  const rows = await listPermitLines(db, of, { limit: 4 * BRIEF, offset: 0 })
+  const briefs = rows.map(({ number, title, windowFrom, windowTo, currentUntil, ...row }) => {
+    const { state } = stateAsOf({ state: row.state, windowFrom, windowTo, currentUntil }, now)
+    const running = state === 'issued' || state === 'suspended'
+    return { number, title, state, windowFrom, windowTo, currentUntil: running ? currentUntil : null }
+  })
+  const ended = ({ state }: PermitBrief) => Number(ENDED_PERMIT_STATES.includes(state))
+  return briefs.toSorted((a, b) => ended(a) - ended(b)).slice(0, BRIEF)
+}
+
+/** Permits at the site by the tags of their segments: what covers a heat, or should and no longer does. */
+export async function permitsAtTheSite(
+  db: DbOrTx,
+  now: Date,
+): Promise<Map<string, { number: string; state: PermitState }[]>> {
+  const bySegment = new Map<string, { number: string; state: PermitState }[]>()
+  for (const { tag, number, ...times } of await listPermitsBySegment(db, AT_THE_SITE)) {
+    const { state } = stateAsOf(times, now)
+    bySegment.set(tag, [...(bySegment.get(tag) ?? []), { number, state }])
+  }
+  return bySegment
 }

@@ -12,6 +12,7 @@ import { DomainError } from '../domain/errors.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
 import { type IonCurrent, readIonCurrents } from './ion-currents.server.ts'
 import { type IsolationTestRow, isolationTestsOf } from './isolation-tests.server.ts'
+import { listPermitBriefs, type PermitBrief } from './permit-register.server.ts'
 import { type Curves, readCurves } from './segment-curves.server.ts'
 import { forecastPumpDown, type PumpDownForecast } from './segment-forecast.server.ts'
 import { type BakeAnswer, bakeToReach, predictedProfile } from './segment-model.server.ts'
@@ -38,6 +39,7 @@ export interface SegmentPageData {
   entries: Entry[]
   states: StateSpan[]
   isolationTests: IsolationTestRow[]
+  permits: PermitBrief[]
 }
 
 /**
@@ -56,7 +58,7 @@ export async function readSegmentPage(
   const own = standings[0]
   if (own === undefined) throw new DomainError('not-found', `The register has no segment ${tag}.`)
   const { segment } = own
-  const [all, everPlaced, entries, states, curves, isolationTests, ionCurrents] = await Promise.all([
+  const [all, everPlaced, entries, states, curves, isolationTests, ionCurrents, permits] = await Promise.all([
     listSegments(db, now),
     listPlacedPumps(db, [segment.id]),
     listEntries(db, { segmentId: segment.id, limit: ENTRIES_SHOWN }),
@@ -64,6 +66,7 @@ export async function readSegmentPage(
     readCurves(db, own, now),
     isolationTestsOf(db, segment.id),
     readIonCurrents(db, segment.id, now),
+    listPermitBriefs(db, { segment: tag }, now),
   ])
   const target = own.target?.value ?? null
   return {
@@ -95,6 +98,7 @@ export async function readSegmentPage(
     entries,
     states,
     isolationTests,
+    permits,
   }
 }
 

@@ -4,6 +4,7 @@ import { BAKE_PLAN_STATE_LABELS, PLAN_PRIORITY_LABELS, PLAN_STEP_LABELS } from '
 import type { PlanPageData } from '#app/services/bake-plans-page.server.ts'
 import type { ActionFailure } from '../forms/failure.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
+import { PermitsPanel } from '../permits/permits-panel.tsx'
 import { ButtonLink } from '../ui/button.tsx'
 import { DataTable } from '../ui/data-table.tsx'
 import { Instant } from '../ui/instant.tsx'
@@ -87,6 +88,12 @@ export function PlanPage(props: PageProps) {
         {may.prioritise && <PriorityPanel {...props} />}
         {may.plan && <WithdrawPanel {...props} />}
       </div>
+      <PermitsPanel
+        permits={props.drawnUp}
+        empty="No permit has been drawn up from this plan yet."
+        all={null}
+        ask={may.draftPermit ? `/permits/new?plan=${id}` : null}
+      />
       <VersionsPanel {...props} />
     </>
   )

@@ -2,6 +2,7 @@
 import { Link } from 'react-router'
 import { Locator } from '#app/components/charts/locator.tsx'
 import { IsolationTestsPanel } from '#app/components/isolation/tests-panel.tsx'
+import { PermitsPanel } from '#app/components/permits/permits-panel.tsx'
 import { ButtonLink } from '#app/components/ui/button.tsx'
 import { Instant } from '#app/components/ui/instant.tsx'
 import { Notice } from '#app/components/ui/notice.tsx'
@@ -22,7 +23,14 @@ export interface SegmentPageProps extends SegmentPageData {
   now: Date
   zone: string
   asked: AskedPressure
-  may: { setState: boolean; takeIn: boolean; typeReading: boolean; writeEntry: boolean; recordTest: boolean }
+  may: {
+    setState: boolean
+    takeIn: boolean
+    typeReading: boolean
+    writeEntry: boolean
+    recordTest: boolean
+    draftPermit: boolean
+  }
 }
 
 export function SegmentPage(props: SegmentPageProps) {
@@ -112,6 +120,12 @@ export function SegmentPage(props: SegmentPageProps) {
         <div className="grid min-w-0 items-start gap-x-4.5 md:grid-cols-2 xl:grid-cols-1">
           <ForecastPanel {...props} />
           <BakePanel {...props} />
+          <PermitsPanel
+            permits={props.permits}
+            empty="No permit has been drawn up for this segment yet."
+            all={`/permits?group=all&segment=${tag}`}
+            ask={may.draftPermit ? `/permits/new?segment=${tag}` : null}
+          />
           <IsolationTestsPanel tag={tag} tests={props.isolationTests} mayRecord={may.recordTest} />
           <SegmentEntries tag={tag} entries={props.entries} />
           <StateHistory states={props.states} />

@@ -18,6 +18,7 @@ export interface PermitListFilter {
   states?: readonly PermitState[]
   segment?: string
   holderId?: number
+  planId?: number
   year?: number
   /** In the number, the title or the work. */
   words?: string
@@ -31,7 +32,14 @@ const holderOf = sql<
 const title = sql<string>`JSON_VALUE(${permitVersion.content}, '$.title')`
 const work = sql<string>`JSON_VALUE(${permitVersion.content}, '$.work')`
 
-function conditions({ states, segment: tag, holderId, year, words }: PermitListFilter): SQL | undefined {
+function conditions({
+  states,
+  segment: tag,
+  holderId,
+  planId,
+  year,
+  words,
+}: PermitListFilter): SQL | undefined {
   const pattern = `%${(words ?? '').replaceAll(/[\\%_]/g, '\\$&')}%`
   return and(
     states === undefined ? undefined : inArray(permit.state, [...states]),
@@ -40,6 +48,7 @@ function conditions({ states, segment: tag, holderId, year, words }: PermitListF
       : sql`EXISTS (SELECT 1 FROM ${permitSegment} JOIN ${segment} ON ${segment.id} = ${permitSegment.segmentId}
           WHERE ${permitSegment.permitId} = ${permit.id} AND ${segment.tag} = ${tag})`,
     holderId === undefined ? undefined : sql`${holderOf} = ${holderId}`,
+    planId === undefined ? undefined : eq(permit.planId, planId),
     year === undefined ? undefined : like(permit.number, `%-${year}-%`),
     words === undefined || words === ''
       ? undefined
@@ -106,6 +115,24 @@ export async function listSegmentsOfPermits(
     .orderBy(asc(segment.sortOrder))
   for (const { permitId, tag } of rows) byPermit.set(permitId, [...(byPermit.get(permitId) ?? []), tag])
   return byPermit
+}
+
+/** Permits in some states, segment by segment, without what they say. */
+export async function listPermitsBySegment(db: DbOrTx, states: readonly PermitState[]) {
+  return db
+    .select({
+      tag: segment.tag,
+      number: permit.number,
+      state: permit.state,
+      windowFrom: permit.windowFrom,
+      windowTo: permit.windowTo,
+      currentUntil: permit.currentUntil,
+    })
+    .from(permit)
+    .innerJoin(permitSegment, eq(permitSegment.permitId, permit.id))
+    .innerJoin(segment, eq(segment.id, permitSegment.segmentId))
+    .where(inArray(permit.state, [...states]))
+    .orderBy(asc(permit.number))
 }
 
 /** How many locks hang at present, by the permit's id. */

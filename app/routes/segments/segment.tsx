@@ -31,6 +31,7 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
       typeReading: rolesHave(actor.roles, 'reading:type'),
       writeEntry: rolesHave(actor.roles, 'entry:write'),
       recordTest: rolesHave(actor.roles, 'isolation-test:record'),
+      draftPermit: rolesHave(actor.roles, 'permit:draft'),
     },
   }
 }
