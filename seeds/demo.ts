@@ -10,12 +10,14 @@ import { seedCrews } from './bakes/crews.ts'
 import { seedBakeDeviations } from './bakes/deviations.ts'
 import { seedBakePlans } from './bakes/plans.ts'
 import { seedBakeSchedule } from './bakes/schedule.ts'
+import { seedCompetences } from './competences.ts'
 import { DEMO_START } from './demo-time.ts'
 import { seedForecasts } from './forecasts/forecasts.ts'
 import { seedIsolationTests } from './forecasts/isolation-tests.ts'
 import { seedLogEntries } from './log/seed-log.ts'
 import { seedPeople } from './people.ts'
 import { seedPermits } from './permits/permits.ts'
+import { seedPlannedWorks } from './planned-works.ts'
 import { loadReadings } from './readings/load.ts'
 import { loadArchive, seedImports } from './readings/night-archive.ts'
 import { seedTypedReadings, typedReadings } from './readings/typed.ts'
@@ -68,9 +70,12 @@ export async function seedDemo(
     const forecasts = await seedForecasts(inside)
     const bakePlans = await seedBakePlans(inside)
     const crews = await seedCrews(inside)
+    // Before the schedule: a bake needs a licensed electrician.
+    const competences = await seedCompetences(inside)
     await seedBakeSchedule(inside)
     const bakeDeviations = await seedBakeDeviations(inside)
     const thresholds = await seedThresholds(inside)
+    const plannedWorks = await seedPlannedWorks(inside)
     const permits = await seedPermits(inside)
     const counts = {
       people,
@@ -87,6 +92,8 @@ export async function seedDemo(
       crews,
       bakeDeviations,
       thresholds,
+      competences,
+      plannedWorks,
       permits,
     }
     await inside.insert(record).values({

@@ -96,7 +96,7 @@ const PEOPLE = [
     key: 'wendel',
     name: 'Wendel Quarrie',
     email: null,
-    note: 'Licensed electrician, licence QE-1187, which runs out on 2026-11-20. Does not sign in',
+    note: 'Licensed electrician. Does not sign in',
     grants: [],
   },
   {

@@ -242,7 +242,7 @@ function electricianItems({ electricians, hotUntilDay }: PlanFacts): ReadinessIt
         'electrician',
         label,
         false,
-        'No person on record holds a licence. The administrator can enter one.',
+        'No electrician’s licence has been entered. A safety officer or the administrator does so under Competences.',
       ),
     ]
   }
@@ -315,14 +315,4 @@ function tickedItem(key: TickedItem, { ticks }: PlanFacts): ReadinessItem {
     detail: `${by}${note}`,
     at: tick?.at ?? null,
   }
-}
-
-/**
- * The licence that a note about a person speaks of, such as "Licensed electrician, licence QE-1187, until 2026-11-20";
- * null where it speaks of none. Without a date it is taken to have no end.
- */
-export function licenceIn(note: string): { licence: string; endsOn: string | null } | null {
-  const licence = /\belectrician\b/i.test(note) ? /\blicence\s+([A-Z][\w-]*\d)/.exec(note)?.[1] : undefined
-  if (licence === undefined) return null
-  return { licence, endsOn: /\b\d{4}-\d{2}-\d{2}\b/.exec(note)?.[0] ?? null }
 }

@@ -4,12 +4,12 @@ import {
   lastLeakCheck,
   listBlankets,
   listCarts,
-  listLicenceNotes,
   listPlansUnderWay,
   listPlanTicks,
   listSupplies,
   listValvesOf,
 } from '../db/queries/bake-plans.server.ts'
+import { listCompetences } from '../db/queries/competences.server.ts'
 import { listIsolationTests } from '../db/queries/isolation-tests.server.ts'
 import {
   type LimitRow,
@@ -23,14 +23,10 @@ import {
 import { ampsAndVolts, type BakedSegment, pairObjection, powerW } from '../domain/bake-load.ts'
 import { type BakePlanContent, BakePlanContentSchema, stepOf } from '../domain/bake-plan.ts'
 import { type PlannedSegment, type PlanPrediction, predictPlan } from '../domain/bake-plan-prediction.ts'
-import {
-  licenceIn,
-  type PlanFacts,
-  type SegmentFacts,
-  TICKED_ITEM_KEYS,
-} from '../domain/bake-plan-readiness.ts'
+import { type PlanFacts, type SegmentFacts, TICKED_ITEM_KEYS } from '../domain/bake-plan-readiness.ts'
 import { DomainError } from '../domain/errors.ts'
 import { instantText } from '../domain/instant-text.ts'
+import { firstGap } from '../domain/permit-conflicts/competences.ts'
 import type { IsolationTestState } from '../domain/planning.ts'
 import type { SegmentModel } from '../physics/predict.ts'
 import { coldModel, hydrogenExcess, scaleHydrogen } from './segment-model.server.ts'
@@ -39,6 +35,8 @@ import { getSite } from './site.server.ts'
 import { limitFor, readStandings } from './standing.server.ts'
 
 const HOUR_MS = 3_600_000
+/** The latest instant that a date can hold: for spans without an end. */
+const LAST_INSTANT = new Date(8_640_000_000_000_000)
 
 /** A plan's content as it was stored; a row that no longer reads is a fault of ours and is said as one. */
 export function contentOf(stored: unknown): BakePlanContent {
@@ -256,10 +254,11 @@ export async function readPlanFacts(
       strokeMm: Math.max(0, ...strokeMm),
       ratedMm,
     })),
-    electricians: (await listLicenceNotes(db)).flatMap(({ name, note }) => {
-      const found = licenceIn(note)
-      return found === null ? [] : [{ name, ...found }]
-    }),
+    electricians: await electriciansAt(
+      db,
+      content.startsAt === null ? now : new Date(content.startsAt),
+      timeZone,
+    ),
     hotUntilDay:
       content.startsAt === null
         ? null
@@ -274,6 +273,27 @@ export async function readPlanFacts(
     },
     ticks: await ticksOf(db, plan.id),
   }
+}
+
+/** Electricians whose licence holds at an instant, with the last day of it; one renewed without a break goes on. */
+async function electriciansAt(db: DbOrTx, at: Date, zone: string): Promise<PlanFacts['electricians']> {
+  const licences = await listCompetences(db, { kind: 'electrician-licence' })
+  return [...new Set(licences.map(({ personId }) => personId))].flatMap((personId) => {
+    const own = licences.filter((one) => one.personId === personId)
+    const ends = firstGap(
+      own.map(({ startsAt, endsAt }) => ({ from: startsAt, to: endsAt })),
+      { from: at, to: LAST_INSTANT },
+    )
+    const [first] = own
+    if (first === undefined || ends?.getTime() === at.getTime()) return []
+    return [
+      {
+        name: first.personName,
+        licence: [...new Set(own.map(({ number }) => number))].join(', '),
+        endsOn: ends === null ? null : instantText(new Date(ends.getTime() - 1), zone).slice(0, 10),
+      },
+    ]
+  })
 }
 
 function worst(values: readonly (number | null)[]): number | null {

@@ -2,6 +2,7 @@
 import { beforeEach, expect, test } from 'vitest'
 import {
   bakePlanVersion,
+  competence,
   heaterCircuit,
   isolationTest,
   logEntry,
@@ -144,10 +145,15 @@ async function makeReadyOnRecord(): Promise<void> {
     acceptedBy: bram.personId,
     acceptedAt: MORNING,
   })
-  await db.insert(person).values({
-    name: 'Quarrie',
-    note: 'Licensed electrician, licence QE-1, until 2027-01-01',
-    createdAt: MORNING,
+  const [electrician] = await db.insert(person).values({ name: 'Quarrie', createdAt: MORNING })
+  await db.insert(competence).values({
+    personId: electrician.insertId,
+    kind: 'electrician-licence',
+    number: 'QE-1',
+    startsAt: after(MORNING, -86_400),
+    endsAt: new Date('2027-01-01T00:00:00.000Z'),
+    enteredBy: bram.personId,
+    enteredAt: MORNING,
   })
 }
 

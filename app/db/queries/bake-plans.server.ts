@@ -1,5 +1,5 @@
 /** Bake plans with their versions and ticks, and what the register knows that a plan rests on. */
-import { and, asc, desc, eq, gte, inArray, like, ne, or } from 'drizzle-orm'
+import { and, asc, desc, eq, gte, inArray, ne, or } from 'drizzle-orm'
 import type { BakePlanState, PlanPriority } from '../../domain/planning.ts'
 import type { DbOrTx } from '../client.server.ts'
 import {
@@ -230,15 +230,6 @@ export async function lastLeakCheck(db: DbOrTx, segmentId: number, since: Date |
     .orderBy(desc(logEntry.eventAt))
     .limit(1)
   return row?.at ?? null
-}
-
-/** Notes of people that speak of a licence. */
-export function listLicenceNotes(db: DbOrTx): Promise<{ name: string; note: string }[]> {
-  return db
-    .select({ name: person.name, note: person.note })
-    .from(person)
-    .where(like(person.note, '%electrician%'))
-    .orderBy(asc(person.name))
 }
 
 /** Plans under way other than one, with what they hold: for supplies and carts that are in use. */

@@ -4,7 +4,6 @@ import type { BakePlanContent } from '#app/domain/bake-plan.ts'
 import { differences } from '#app/domain/bake-plan-differences.ts'
 import {
   blockingItems,
-  licenceIn,
   type PlanFacts,
   readiness,
   TICKED_ITEM_KEYS,
@@ -82,7 +81,7 @@ const wrongs: [string, Partial<PlanFacts>, string, RegExp][] = [
     'electrician',
     /QE-1187 ends on 2026-11-20.*2026-11-25/,
   ],
-  ['nobody licensed', { electricians: [] }, 'electrician', /No person/],
+  ['nobody licensed', { electricians: [] }, 'electrician', /No electrician/],
 ]
 
 describe.each(wrongs)('%s', (_what, change, key, words) => {
@@ -164,21 +163,3 @@ test('equal versions differ in nothing, and a difference says both values', () =
   expect(differences(content, { ...content })).toEqual([])
   expect(differences(content, { ...content, celsius: 140 })).toEqual(['Bake temperature: 150 °C → 140 °C'])
 })
-
-test.each([
-  [
-    'Licensed electrician, licence QE-1187, which runs out on 2026-11-20. Does not sign in',
-    'QE-1187',
-    '2026-11-20',
-  ],
-  ['Licensed electrician, licence QE-12', 'QE-12', null],
-])('a licence is read from "%s"', (note, licence, endsOn) => {
-  expect(licenceIn(note)).toEqual({ licence, endsOn })
-})
-
-test.each(['Crane licence K-7 until 2027-01-01', 'electrician, licence to be renewed', ''])(
-  '"%s" speaks of no electrician\'s licence',
-  (note) => {
-    expect(licenceIn(note)).toBeNull()
-  },
-)
