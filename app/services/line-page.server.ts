@@ -3,6 +3,7 @@ import type { Db } from '../db/client.server.ts'
 import { binReadings, listMapSpans, listSourceEnds } from '../db/queries/readings.server.ts'
 import { listLimits, listLines } from '../db/queries/segments.server.ts'
 import { expectedNight, type NightFileStatus } from '../domain/expected-files.ts'
+import type { PermitState } from '../domain/permit-words.ts'
 import type { Quality } from '../domain/readings.ts'
 import type { PumpKind } from '../domain/register.ts'
 import {
@@ -13,6 +14,7 @@ import {
 } from '../domain/segment-standing.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
 import { weeklyChange } from '../domain/trend.ts'
+import { permitsAtTheSite } from './permit-register.server.ts'
 import { predictedProfile } from './segment-model.server.ts'
 import { getSite } from './site.server.ts'
 import { type LastAtPosition, limitFor, readStandings, type StandingSegment } from './standing.server.ts'
@@ -47,6 +49,8 @@ export interface LineSegment {
   pumps: { tag: string; kind: PumpKind; chainageM: number }[]
   /** Pressure the model expects along the segment now (nitrogen-equivalent), by metres from the segment's start; null without a model for this state. */
   predicted: { offsetM: number; pa: number }[] | null
+  /** Permits at the site there; null on a look back, which knows of no permits. */
+  permits: { number: string; state: PermitState }[] | null
 }
 
 export interface LinePageData {
@@ -61,21 +65,29 @@ export interface LinePageData {
   zone: string
 }
 
-/** Everything Line shows, at an instant (now, or an earlier one to look back). */
-export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
-  const [site, lines, standings, limits, sources] = await Promise.all([
+/**
+ * Everything Line shows, at an instant (now, or an earlier one to look back).
+ *
+ * @param lookBack whether the instant is an earlier one: permits are shown as they stand now or not at all
+ */
+export async function readLinePage(db: Db, at: Date, lookBack = false): Promise<LinePageData> {
+  const [site, lines, standings, limits, sources, permits] = await Promise.all([
     getSite(db),
     listLines(db),
     readStandings(db, at),
     listLimits(db, at),
     listSourceEnds(db, at),
+    lookBack ? null : permitsAtTheSite(db, at),
   ])
   const mainCodes = new Set(lines.filter(({ joinsLineId }) => joinsLineId === null).map(({ code }) => code))
   const owing = sources.filter(({ dueAt }) => dueAt !== '')
   const needed = limitFor(limits, 'available-at-target', null)?.value ?? standings.length
   return {
     lines: lines.map(({ code, name, lengthM, joinsAtM }) => ({ code, name, lengthM, joinsAtM })),
-    segments: standings.map((entry) => toLineSegment(entry, at)),
+    segments: standings.map((entry) => ({
+      ...toLineSegment(entry, at),
+      permits: permits === null ? null : (permits.get(entry.segment.tag) ?? []),
+    })),
     figures: facilityFigures(
       standings.map(({ segment, standing }) => ({
         tag: segment.tag,
@@ -103,7 +115,7 @@ export async function readLinePage(db: Db, at: Date): Promise<LinePageData> {
   }
 }
 
-function toLineSegment(entry: StandingSegment, at: Date): LineSegment {
+function toLineSegment(entry: StandingSegment, at: Date): Omit<LineSegment, 'permits'> {
   const { segment, standing, gauges, pumps, target, limit } = entry
   return {
     tag: segment.tag,

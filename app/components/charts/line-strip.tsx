@@ -13,6 +13,7 @@ import {
   axisValues,
   drawnReadings,
   isOverTarget,
+  permitWords,
   pumpWords,
   type StripLine,
   type StripSegment,
@@ -166,6 +167,15 @@ function SegmentBand({ segment, scene }: { segment: StripSegment; scene: Scene }
           d={`M${x - 4} ${TUBE_TOP - 3}L${x + 4} ${TUBE_TOP + TUBE + 3}V${TUBE_TOP - 3}L${x - 4} ${TUBE_TOP + TUBE + 3}Z`}
           className="fill-sheet stroke-ink-2"
         />
+      ))}
+      {(segment.permits ?? []).map((permit, i) => (
+        <text
+          key={permit.number}
+          transform={`translate(${x1 + 13 + 14 * i} ${TOP + PLOT - 10}) rotate(-90)`}
+          className="fill-heat text-xs font-semibold"
+        >
+          {permitWords(permit)}
+        </text>
       ))}
       {(!highVacuum || silent) && (
         <text

@@ -1,5 +1,6 @@
 /** What the drawing of the tube says, in words and in choices, apart from how it is drawn. */
 import type { PressureUnit } from '#app/context.ts'
+import { PERMIT_STATE_LABELS, type PermitState } from '#app/domain/permit-words.ts'
 import { PUMP_KIND_LABELS, type PumpKind } from '#app/domain/register.ts'
 import { SEGMENT_STATES, type SegmentState } from '#app/domain/segment-states.ts'
 import { pressureWords } from '../ui/format-pressure.ts'
@@ -39,6 +40,8 @@ export interface StripSegment {
   pumps: readonly StripPump[]
   /** Expected pressure by metres from the segment's start; null without a model for this state. */
   predicted: readonly { offsetM: number; pa: number }[] | null
+  /** Permits at the site there; null where nothing is known of permits. */
+  permits: readonly { number: string; state: PermitState }[] | null
 }
 
 interface Drawn {
@@ -75,6 +78,11 @@ export function isOverTarget({ state, targetPa }: StripSegment, reading: Drawn):
   return reading.fresh && state === 'in-service' && targetPa !== null && reading.pa > targetPa
 }
 
+/** A permit as it is named beside its mark. */
+export function permitWords({ number, state }: { number: string; state: PermitState }): string {
+  return `permit ${number}, ${PERMIT_STATE_LABELS[state].toLowerCase()}`
+}
+
 /** A pump as it is named beside its mark. */
 export function pumpWords({ tag, kind }: StripPump): string {
   return `${tag}, ${PUMP_KIND_LABELS[kind].toLowerCase()}`
@@ -91,5 +99,6 @@ export function segmentWords(segment: StripSegment, unit: PressureUnit): string 
     SEGMENT_STATES[segment.state].label,
     ...(readings.length === 0 ? ['no reading'] : readings),
     ...segment.pumps.map((pump) => `pumped by ${pumpWords(pump)}`),
+    ...(segment.permits ?? []).map(permitWords),
   ].join('; ')
 }

@@ -61,8 +61,12 @@ export function attentionOf(segment: LineSegment): Attention | null {
   const question = segment.questions[0]
   if (question !== undefined) return { tone: 'warn', text: question.text }
   if (segment.verdict === 'above-target') return { tone: 'warn', text: 'Above target, within the limit' }
-  if (SEGMENT_STATES[segment.state].hot)
+  if (SEGMENT_STATES[segment.state].hot) {
+    const { permits } = segment
+    if (permits !== null && !permits.some(({ state }) => state === 'issued'))
+      return { tone: 'bad', text: 'Hot, and no live permit covers it' }
     return { tone: 'heat', text: 'Hot: surfaces may burn. Go by contact readings on site.' }
+  }
   return null
 }
 

@@ -4,6 +4,7 @@ import { type Column, DataTable } from '#app/components/ui/data-table.tsx'
 import { Instant } from '#app/components/ui/instant.tsx'
 import { Pressure } from '#app/components/ui/pressure.tsx'
 import { StateMark } from '#app/components/ui/state-mark.tsx'
+import { PERMIT_STATE_LABELS } from '#app/domain/permit-words.ts'
 import type { LineSegment, Trend } from '#app/services/line-page.server.ts'
 import { percentText } from './morning-figures.tsx'
 import { attentionOf, belongs, SHOWN, SHOWN_LABELS, type Shown, trendOf } from './segment-rows.ts'
@@ -39,7 +40,24 @@ export function SegmentsTable({
         </Link>
       ),
     },
-    { key: 'state', head: 'State', nowrap: true, cell: ({ state }) => <StateMark state={state} /> },
+    {
+      key: 'state',
+      head: 'State',
+      nowrap: true,
+      cell: ({ state, permits }) => (
+        <>
+          <StateMark state={state} />
+          {(permits ?? []).map((permit) => (
+            <span key={permit.number} className="block text-sm">
+              <Link to={`/permits/${permit.number}`} className="link inline-block py-0.5">
+                {permit.number}
+              </Link>
+              <span className="text-ink-2">, {PERMIT_STATE_LABELS[permit.state].toLowerCase()}</span>
+            </span>
+          ))}
+        </>
+      ),
+    },
     { key: 'pressure', head: 'Pressure', align: 'right', cell: (segment) => <Headline segment={segment} /> },
     {
       key: 'target',

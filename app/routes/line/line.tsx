@@ -18,7 +18,7 @@ export async function loader({ context, request, url }: Route.LoaderArgs) {
   const dayBefore = url.searchParams.get('at') === 'day-before'
   const at = dayBefore ? new Date(now.getTime() - DAY_MS) : now
   const [page, trends, site] = await Promise.all([
-    readLinePage(getDb(), at),
+    readLinePage(getDb(), at, dayBefore),
     readTrends(getDb(), at),
     getSite(getDb()),
   ])

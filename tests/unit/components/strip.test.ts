@@ -12,6 +12,7 @@ function segment(facts: Partial<StripSegment>): StripSegment {
     gauges: [],
     pumps: [],
     predicted: null,
+    permits: [],
     ...facts,
   }
 }
@@ -55,6 +56,12 @@ describe('a segment in words', () => {
   test('names the pumps at work', () => {
     const pumps = [{ tag: 'NP-15', kind: 'getter-ion', chainageM: 2300 }] as const
     expect(segmentWords({ ...silent, pumps }, 'Pa')).toMatch(/, old; pumped by NP-15, getter and ion pump$/)
+  })
+
+  test('names the permits at the site, with how they stand', () => {
+    const permits = [{ number: 'HSP-2026-031', state: 'suspended' }] as const
+    expect(segmentWords({ ...silent, permits }, 'Pa')).toMatch(/; permit HSP-2026-031, suspended$/)
+    expect(segmentWords({ ...silent, permits: null }, 'Pa')).not.toContain('permit')
   })
 
   test('holds the target against segments in service alone', () => {
