@@ -25,8 +25,10 @@ import { type PermitStage, permitStages } from '../domain/permit-progress.ts'
 import { COMPETENCE_LABELS, type CompetenceKind, type PermitState } from '../domain/permit-words.ts'
 import { PERMIT_RULES } from '../domain/permits.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
+import { type PointLine, readPointTable } from './isolation-points.server.ts'
 import { officersApart, permitActor, readPermitFacts } from './permit-facts.server.ts'
 import { readHazards } from './permit-hazards.server.ts'
+import { readTestTable, type TestLine } from './permit-tests.server.ts'
 import { readDangers, type SafetyEventRow } from './safety-events.server.ts'
 import { getSite } from './site.server.ts'
 
@@ -75,6 +77,8 @@ export interface PermitPageData {
   conflicts: ConflictFact[]
   hazards: HazardView[]
   heating: HeatingFact
+  points: PointLine[]
+  tests: TestLine[]
   locksOut: string[]
   dangers: SafetyEventRow[]
   people: PermitPerson[]
@@ -100,13 +104,15 @@ export async function readPermitPage(
 ): Promise<PermitPageData> {
   const permit = await findPermit(db, number)
   if (permit === null) throw new DomainError('not-found', `There is no permit ${number}.`)
-  const [facts, site, segments, people, acts, hazards, dangers, me] = await Promise.all([
+  const [facts, site, segments, people, acts, hazards, points, tests, dangers, me] = await Promise.all([
     readPermitFacts(db, permit, now),
     getSite(db),
     listSegments(db, now),
     listPeople(db),
     listPermitActs(db, permit.id),
     readHazards(db, permit, now),
+    readPointTable(db, permit),
+    readTestTable(db, permit, now),
     readDangers(db, number),
     permitActor(db, actor, now),
   ])
@@ -133,6 +139,8 @@ export async function readPermitPage(
     conflicts: [...facts.conflicts],
     hazards,
     heating: facts.heating,
+    points,
+    tests,
     locksOut: [...facts.locksOut],
     dangers,
     people: await peopleOf(db, permit, nameOf),

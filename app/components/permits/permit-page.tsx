@@ -7,7 +7,7 @@ import type { ActionFailure } from '../forms/failure.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { ButtonLink } from '../ui/button.tsx'
 import { Instant } from '../ui/instant.tsx'
-import { PageHead } from '../ui/panel.tsx'
+import { PageHead, Panel } from '../ui/panel.tsx'
 import { ActForm } from './act-form.tsx'
 import { ACT_WORDS } from './act-words.ts'
 import { HazardList } from './hazard-list.tsx'
@@ -20,8 +20,10 @@ import {
   TermsPanel,
   ValidityPanel,
 } from './permit-panels.tsx'
+import { PointsTable } from './points-table.tsx'
 import { StageBar } from './stage-bar.tsx'
 import { StopCard } from './stop-card.tsx'
+import { TestsTable } from './tests-table.tsx'
 
 export interface PermitPageProps extends PermitPageData {
   /** The act whose form is asked for by the address. */
@@ -59,6 +61,12 @@ export function PermitPage(props: PermitPageProps) {
       <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_20.5rem]">
         <div className="min-w-0">
           <HazardList hazards={props.hazards} />
+          <Panel title="Isolation points" aside={<LocksOut locks={props.locksOut} />}>
+            <PointsTable lines={props.points} />
+          </Panel>
+          <Panel title="Tests">
+            <TestsTable lines={props.tests} />
+          </Panel>
           <ProtectionPanel {...props} />
         </div>
         <div className="min-w-0">
@@ -70,6 +78,15 @@ export function PermitPage(props: PermitPageProps) {
         </div>
       </div>
     </>
+  )
+}
+
+function LocksOut({ locks }: { locks: readonly string[] }) {
+  if (locks.length === 0) return <span className="text-sm text-ink-3">no lock hangs for it</span>
+  return (
+    <span className="text-sm text-ink-2">
+      {locks.length === 1 ? '1 lock hangs' : `${locks.length} locks hang`}: {locks.join(', ')}
+    </span>
   )
 }
 
