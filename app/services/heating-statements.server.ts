@@ -1,6 +1,7 @@
 /** What people say about a heating. Ebbline writes it down and looks what follows; it switches nothing. */
 import type { Db } from '../db/client.server.ts'
 import { findSegments, insertHeatingStatement, listSupplySets } from '../db/queries/heating.server.ts'
+import { findPermit } from '../db/queries/permits.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
@@ -74,4 +75,21 @@ export async function stateHeating(
     await noteDangersAtSegments(inside, segmentTags, now)
     return readHeating(inside, segmentTags, now)
   })
+}
+
+/** Tags of a permit's segments. @throws DomainError not-found; also where the permit names none yet */
+export async function segmentsOfPermit(db: Db, number: string): Promise<string[]> {
+  const permit = await findPermit(db, number)
+  if (permit === null) throw new DomainError('not-found', `There is no permit ${number}.`)
+  if (permit.content.segments.length === 0) {
+    throw new DomainError('not-found', `${number} names no segment yet, so it has no heating.`)
+  }
+  return permit.content.segments
+}
+
+/** The tag of a segment of the register. @throws DomainError not-found */
+export async function knownSegment(db: Db, tag: string): Promise<string> {
+  const [found] = await findSegments(db, [tag])
+  if (found === undefined) throw new DomainError('not-found', `The register has no segment ${tag}.`)
+  return found.tag
 }

@@ -54,6 +54,11 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: HANDS, status: 200 },
     POST: { who: HANDS, status: 400 },
   },
+  '/segments/:tag/heating': {
+    path: '/segments/SG-X1/heating',
+    GET: { who: STAFF, status: 200 },
+    POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
+  },
   '/segments/:tag/isolation-tests/new': {
     path: '/segments/SG-X1/isolation-tests/new',
     GET: { who: HANDS, status: 200 },
@@ -133,6 +138,19 @@ const ADDRESSES: Record<string, Address> = {
   '/permits/:number/history': {
     path: '/permits/HSP-2026-999/history',
     GET: { who: STAFF, status: 404 },
+  },
+  '/permits/bays': {
+    GET: { who: STAFF, status: 200 },
+    POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
+  },
+  '/permits/dangers': {
+    GET: { who: STAFF, status: 200 },
+    POST: { who: ['safety-officer'], status: 400 },
+  },
+  '/permits/:number/heating': {
+    path: '/permits/HSP-2026-999/heating',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
   },
   '/logbook': { GET: { who: ROLES, status: 200 } },
   '/logbook/new': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
