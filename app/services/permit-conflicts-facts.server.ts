@@ -50,12 +50,21 @@ interface Around {
   locks: readonly Lock[]
 }
 
-/** Everything that findConflicts looks at for a permit, as of an instant. */
-export async function readConflictFacts(db: DbOrTx, permit: PermitRow, now: Date): Promise<ConflictFacts> {
+/** What all permits share, read once, with every permit that claims its segments. */
+export interface ConflictGround {
+  shared: Omit<ConflictFacts, 'own' | 'others'>
+  claiming: { row: PermitRow; permit: ConflictPermit }[]
+  around: Around
+}
+
+/** Reads what all permits share, as of an instant; locks of the permits given are read along. */
+export async function readConflictGround(
+  db: DbOrTx,
+  now: Date,
+  alsoOf: readonly number[] = [],
+): Promise<ConflictGround> {
   const { timeZone, ambientC } = await getSite(db)
-  const others = (await listPermits(db, { states: CLAIMING_PERMIT_STATES })).filter(
-    ({ id }) => id !== permit.id,
-  )
+  const rows = await listPermits(db, { states: CLAIMING_PERMIT_STATES })
   const [lines, segments, plans, carts, supplies, people, locks, limits] = await Promise.all([
     listLines(db),
     listSegments(db, now),
@@ -63,7 +72,7 @@ export async function readConflictFacts(db: DbOrTx, permit: PermitRow, now: Date
     listCarts(db),
     listSupplies(db),
     listPeople(db),
-    listHangingLocks(db, [permit.id, ...others.map(({ id }) => id)]),
+    listHangingLocks(db, [...rows.map(({ id }) => id), ...alsoOf]),
     listLimits(db, now),
   ])
   const around: Around = {
@@ -74,33 +83,48 @@ export async function readConflictFacts(db: DbOrTx, permit: PermitRow, now: Date
     names: new Map(people.map(({ id, name }) => [id, name])),
     locks,
   }
-  const claiming: ConflictPermit[] = []
-  for (const other of others) claiming.push(await conflictPermit(db, other, around))
+  const claiming: ConflictGround['claiming'] = []
+  for (const row of rows) claiming.push({ row, permit: await conflictPermit(db, row, around) })
   return {
-    now,
-    zone: timeZone,
-    ambientC,
+    around,
+    claiming,
+    shared: {
+      now,
+      zone: timeZone,
+      ambientC,
+      segments: segments.map(placeOf),
+      valves: await listGateValves(db),
+      joints: jointsOf(lines),
+      works: (await listPlannedWorks(db, { states: ['planned', 'limited', 'started'] })).map(workFact),
+      limits: limitsOf(limits),
+      fans: await listBayFans(db),
+      competences: (await listCompetences(db)).map(({ personId, kind, number, startsAt, endsAt }) => ({
+        personId,
+        kind,
+        number,
+        from: startsAt,
+        to: endsAt,
+      })),
+      holidays: await listNamedHolidays(db),
+      crews: (await listCrews(db)).map(({ code, roster, endsAt }) => ({
+        code,
+        roster: RosterSchema.parse(roster),
+        endsMs: endsAt?.getTime() ?? null,
+      })),
+    },
+  }
+}
+
+/** Everything that findConflicts looks at for one permit. */
+export async function conflictFactsOf(
+  db: DbOrTx,
+  permit: PermitRow,
+  { shared, claiming, around }: ConflictGround,
+): Promise<ConflictFacts> {
+  return {
+    ...shared,
     own: await ownPermit(db, permit, around),
-    others: claiming,
-    segments: segments.map(placeOf),
-    valves: await listGateValves(db),
-    joints: jointsOf(lines),
-    works: (await listPlannedWorks(db, { states: ['planned', 'limited', 'started'] })).map(workFact),
-    limits: limitsOf(limits),
-    fans: await listBayFans(db),
-    competences: (await listCompetences(db)).map(({ personId, kind, number, startsAt, endsAt }) => ({
-      personId,
-      kind,
-      number,
-      from: startsAt,
-      to: endsAt,
-    })),
-    holidays: await listNamedHolidays(db),
-    crews: (await listCrews(db)).map(({ code, roster, endsAt }) => ({
-      code,
-      roster: RosterSchema.parse(roster),
-      endsMs: endsAt?.getTime() ?? null,
-    })),
+    others: claiming.filter(({ row }) => row.id !== permit.id).map((one) => one.permit),
   }
 }
 
@@ -109,7 +133,7 @@ function placeOf({ tag, lineCode, startM, endM, state }: SegmentWithState): Plac
 }
 
 /** Where spurs leave their lines. */
-export function jointsOf(lines: readonly LineRow[]): Joint[] {
+function jointsOf(lines: readonly LineRow[]): Joint[] {
   return lines.flatMap(({ code, joinsLineId, joinsAtM }) => {
     const joined = lines.find(({ id }) => id === joinsLineId)
     return joined === undefined || joinsAtM === null ? [] : [{ spur: code, line: joined.code, atM: joinsAtM }]

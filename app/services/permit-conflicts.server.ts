@@ -9,7 +9,7 @@ import { DomainError } from '../domain/errors.ts'
 import { findConflicts } from '../domain/permit-conflicts.ts'
 import type { ConflictFact } from '../domain/permit-facts.ts'
 import { CLAIMING_PERMIT_STATES, ENDED_PERMIT_STATES, PERMIT_STATE_LABELS } from '../domain/permit-words.ts'
-import { readConflictFacts } from './permit-conflicts-facts.server.ts'
+import { conflictFactsOf, readConflictGround } from './permit-conflicts-facts.server.ts'
 import { writeRecord } from './record.server.ts'
 import { signAct, useSignedAct } from './signature.server.ts'
 
@@ -22,8 +22,9 @@ const KEPT_FACTS = 1000
  */
 export async function readConflicts(db: DbOrTx, permit: PermitRow, now: Date): Promise<ConflictFact[]> {
   if (ENDED_PERMIT_STATES.includes(permit.state)) return []
-  const [facts, rulings] = [await readConflictFacts(db, permit, now), await listRulings(db, permit.id)]
-  return findConflicts(facts).map((finding) => ({
+  const ground = await readConflictGround(db, now, [permit.id])
+  const rulings = await listRulings(db, permit.id)
+  return findConflicts(await conflictFactsOf(db, permit, ground)).map((finding) => ({
     ...finding,
     ruling: rulingOn(
       finding.text,
@@ -32,7 +33,8 @@ export async function readConflicts(db: DbOrTx, permit: PermitRow, now: Date): P
   }))
 }
 
-function rulingOn(text: string, last: RulingRow | undefined): ConflictFact['ruling'] {
+/** The last ruling on a conflict that reads as given; stale when it was given on other facts. */
+export function rulingOn(text: string, last: RulingRow | undefined): ConflictFact['ruling'] {
   if (last === undefined) return null
   const { allowed, by, at } = last
   return { allowed, stale: last.facts !== text.slice(0, KEPT_FACTS), text: last.text, by, at }

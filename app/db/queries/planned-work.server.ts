@@ -1,9 +1,9 @@
 /** Work by others in the tunnel. */
-import { and, asc, desc, eq, inArray, isNull } from 'drizzle-orm'
+import { and, desc, eq, inArray } from 'drizzle-orm'
 import { alias } from 'drizzle-orm/mysql-core'
 import type { PlannedWorkState } from '../../domain/permit-words.ts'
 import type { DbOrTx } from '../client.server.ts'
-import { bayClosure, line, person, plannedWork, segment } from '../schema/index.ts'
+import { line, person, plannedWork, segment } from '../schema/index.ts'
 
 const ruler = alias(person, 'ruler')
 const ownLine = alias(line, 'own_line')
@@ -88,30 +88,4 @@ export async function updatePlannedWork(
     .set({ ...change, revision: revision + 1 })
     .where(and(eq(plannedWork.id, id), eq(plannedWork.revision, revision)))
   return result.affectedRows === 1
-}
-
-export interface OpenClosure {
-  id: number
-  line: string
-  fromM: number
-  toM: number
-  reason: string
-  closedAt: Date
-}
-
-/** Stretches of tunnel that are closed and not released. */
-export function listOpenClosures(db: DbOrTx): Promise<OpenClosure[]> {
-  return db
-    .select({
-      id: bayClosure.id,
-      line: line.code,
-      fromM: bayClosure.fromM,
-      toM: bayClosure.toM,
-      reason: bayClosure.reason,
-      closedAt: bayClosure.closedAt,
-    })
-    .from(bayClosure)
-    .innerJoin(line, eq(line.id, bayClosure.lineId))
-    .where(isNull(bayClosure.releasedAt))
-    .orderBy(asc(bayClosure.fromM))
 }
