@@ -12,7 +12,7 @@ export interface BayVolume {
 }
 
 /** Said as a default wherever it is used. */
-export const DEFAULT_BAY: BayVolume = {
+const DEFAULT_BAY: BayVolume = {
   volumeM3: 1440,
   basis: 'no size set by the site, taken as 150 m of a tunnel 3.2 m wide and 3.0 m high',
   settingId: 0,

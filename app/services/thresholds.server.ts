@@ -13,7 +13,7 @@ import {
 } from '../db/queries/thresholds.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand, may } from '../domain/actor.ts'
-import { BAY_KEY, type BayVolume, bayVolumeOf, DEFAULT_BAY } from '../domain/bay-volume.ts'
+import { BAY_KEY, type BayVolume, bayVolumeOf } from '../domain/bay-volume.ts'
 import { DomainError } from '../domain/errors.ts'
 import {
   type AdoptedThreshold,
@@ -25,7 +25,6 @@ import {
 import type { BayVolumeForm, ThresholdAdoption, ThresholdEnd } from '../domain/schemas/threshold.ts'
 import { writeRecord } from './record.server.ts'
 import { signAct, useSignedAct } from './signature.server.ts'
-import { getSite } from './site.server.ts'
 
 const DAY_MS = 86_400_000
 /** Nothing is adopted for longer than this without another look, days. */
@@ -52,24 +51,18 @@ export interface ThresholdsPageData {
   /** Every adoption, the newest first. */
   history: AdoptedThreshold[]
   bay: BayVolume
-  /** Size that a bay is taken to have where nobody has set one. */
-  bayDefault: BayVolume
   mayAdopt: boolean
-  zone: string
 }
 
 /** What the page of thresholds shows. @throws DomainError forbidden */
 export async function readThresholdsPage(db: Db, actor: Actor): Promise<ThresholdsPageData> {
   demand(actor, 'facility:view')
   const history = (await listAdoptions(db)).flatMap(adoptionOf)
-  const { timeZone: zone } = await getSite(db)
   return {
     open: history.filter(({ endedAt }) => endedAt === null),
     history,
     bay: await readBayVolume(db),
-    bayDefault: DEFAULT_BAY,
     mayAdopt: may(actor, 'threshold:adopt'),
-    zone,
   }
 }
 

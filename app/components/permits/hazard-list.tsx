@@ -58,11 +58,7 @@ function Hazard({ hazard }: { hazard: HazardView }) {
             {finding}
           </p>
         ))}
-        <ul className="mt-1 list-disc pl-4.5 text-ink-2">
-          {precautions.map((precaution) => (
-            <li key={precaution}>{precaution}</li>
-          ))}
-        </ul>
+        <p className="mt-1 text-ink-2">{precautions.join(' ')}</p>
         {text !== '' && (
           <p className="mt-1.5 whitespace-pre-line">
             <strong className="font-semibold">At this segment: </strong>
@@ -70,7 +66,7 @@ function Hazard({ hazard }: { hazard: HazardView }) {
           </p>
         )}
         {thresholds.length > 0 && <Thresholds thresholds={thresholds} />}
-        {facts.length > 0 && <Sources facts={facts} />}
+        {facts.length + thresholds.length > 0 && <Sources facts={facts} thresholds={thresholds} />}
       </div>
     </article>
   )
@@ -78,9 +74,9 @@ function Hazard({ hazard }: { hazard: HazardView }) {
 
 function Facts({ facts }: { facts: readonly HazardFact[] }) {
   return (
-    <dl>
+    <dl className="flex flex-wrap gap-x-4.5">
       {facts.map(({ name, value }) => (
-        <div key={name} className="flex flex-wrap gap-x-2">
+        <div key={name} className="flex flex-wrap gap-x-1.5">
           <dt className="text-ink-2">{name}:</dt>
           <dd className="font-medium">{value}</dd>
         </div>
@@ -89,42 +85,52 @@ function Facts({ facts }: { facts: readonly HazardFact[] }) {
   )
 }
 
+/** What the site has adopted, in a line; one that does not count says why at once. */
 function Thresholds({ thresholds }: { thresholds: readonly HazardThreshold[] }) {
   return (
-    <ul className="mt-1.5 text-sm text-ink-2" aria-label="Thresholds of this site">
+    <ul className="mt-1.5 flex flex-wrap gap-x-4.5 text-sm text-ink-2" aria-label="Thresholds of this site">
       {thresholds.map(({ key, label, standing, text, detail }) => (
         <li key={key}>
           {label}:{' '}
           {standing === 'in-force' ? (
             <b className="font-semibold text-ink">{text}</b>
           ) : (
-            <b className="rounded-sm border border-warn bg-warn-soft px-1 font-semibold text-ink print:border-black">
-              {text}
-            </b>
+            <>
+              <b className="rounded-sm border border-warn bg-warn-soft px-1 font-semibold text-ink print:border-black">
+                {text}
+              </b>{' '}
+              {detail}
+            </>
           )}
-          . {detail}
         </li>
       ))}
     </ul>
   )
 }
 
-/** How each figure was worked out; folded on the screen, printed in full. */
-function Sources({ facts }: { facts: readonly HazardFact[] }) {
+interface Grounds {
+  facts: readonly HazardFact[]
+  thresholds: readonly HazardThreshold[]
+}
+
+/** How each figure was worked out and who adopted what; folded on the screen, printed in full. */
+function Sources(grounds: Grounds) {
   return (
     <>
-      <details className="mt-1.5 text-sm text-ink-2 print:hidden">
-        <summary className="inline-block min-h-6">How these figures were worked out</summary>
-        <SourceLines facts={facts} />
+      <details className="mt-1 text-sm text-ink-2 print:hidden">
+        <summary className="inline-block min-h-6 underline decoration-edge underline-offset-2">
+          Working and sources
+        </summary>
+        <SourceLines {...grounds} />
       </details>
       <div className="mt-1 hidden text-xs print:block">
-        <SourceLines facts={facts} />
+        <SourceLines {...grounds} />
       </div>
     </>
   )
 }
 
-function SourceLines({ facts }: { facts: readonly HazardFact[] }) {
+function SourceLines({ facts, thresholds }: Grounds) {
   return (
     <ul className="mt-0.5">
       {facts.map(({ name, how, source }) => (
@@ -132,6 +138,13 @@ function SourceLines({ facts }: { facts: readonly HazardFact[] }) {
           {name}: {how} Source: {source}.
         </li>
       ))}
+      {thresholds
+        .filter(({ standing }) => standing === 'in-force')
+        .map(({ key, label, text, detail }) => (
+          <li key={key}>
+            {label}, {text}: {detail}
+          </li>
+        ))}
     </ul>
   )
 }

@@ -22,7 +22,7 @@ import { PageHead, Panel } from '../ui/panel.tsx'
 import { dayText } from '../ui/site-time.ts'
 import { AdoptForm, BayForm, EndForm, failureOf } from './threshold-forms.tsx'
 
-export interface ThresholdsPageProps extends Omit<ThresholdsPageData, 'zone'> {
+export interface ThresholdsPageProps extends ThresholdsPageData {
   /** The threshold that the address names. */
   chosen: ThresholdKey | null
   failure: ActionFailure | undefined
@@ -68,28 +68,26 @@ export function ThresholdsPage(props: ThresholdsPageProps) {
           failure={failure}
         />
       )}
-      <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_22rem]">
-        {chosen === null ? (
+      {chosen === null && (
+        <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_22rem]">
           <Panel title="History">
-            <HistoryTable rows={history} />
+            <HistoryTable columns={[LABEL_COLUMN, ...HISTORY_COLUMNS]} rows={history} />
           </Panel>
-        ) : (
-          <div />
-        )}
-        <Panel title="Space of a bay">
-          <p className="mb-2">
-            {bay.volumeM3} m³ ({bay.basis}). The oxygen that venting would leave is worked out with it.
-          </p>
-          {mayAdopt && (
-            <BayForm
-              key={bay.settingId}
-              settingId={bay.settingId}
-              volumeM3={bay.volumeM3}
-              failure={failureOf(failure, 'bay-volume')}
-            />
-          )}
-        </Panel>
-      </div>
+          <Panel title="Space of a bay">
+            <p className="mb-2">
+              {bay.volumeM3} m³ ({bay.basis}). The oxygen that venting would leave is worked out with it.
+            </p>
+            {mayAdopt && (
+              <BayForm
+                key={bay.settingId}
+                settingId={bay.settingId}
+                volumeM3={bay.volumeM3}
+                failure={failureOf(failure, 'bay-volume')}
+              />
+            )}
+          </Panel>
+        </div>
+      )}
     </>
   )
 }
@@ -206,7 +204,7 @@ function Chosen({
           {hazards.map((key) => HAZARD_LABELS[key]).join(', ')}.
         </p>
         <div className="mt-2">
-          <HistoryTable rows={history.filter(({ key }) => key === threshold)} />
+          <HistoryTable columns={HISTORY_COLUMNS} rows={history.filter(({ key }) => key === threshold)} />
         </div>
       </Panel>
       {mayAdopt && (
@@ -231,8 +229,13 @@ function Chosen({
   )
 }
 
+const LABEL_COLUMN: Column<AdoptedThreshold> = {
+  key: 'label',
+  head: 'Threshold',
+  cell: ({ key }) => THRESHOLDS[key].label,
+}
+
 const HISTORY_COLUMNS: readonly Column<AdoptedThreshold>[] = [
-  { key: 'label', head: 'Threshold', cell: ({ key }) => THRESHOLDS[key].label },
   { key: 'value', head: 'Value', nowrap: true, cell: ({ value, unit }) => `${value} ${unit}` },
   {
     key: 'source',
@@ -264,11 +267,17 @@ const HISTORY_COLUMNS: readonly Column<AdoptedThreshold>[] = [
   },
 ]
 
-function HistoryTable({ rows }: { rows: readonly AdoptedThreshold[] }) {
+function HistoryTable({
+  columns,
+  rows,
+}: {
+  columns: readonly Column<AdoptedThreshold>[]
+  rows: readonly AdoptedThreshold[]
+}) {
   return (
     <DataTable
       caption="Values adopted, the newest first"
-      columns={HISTORY_COLUMNS}
+      columns={columns}
       rows={rows}
       rowKey={({ id }) => id}
       empty="No value has ever been adopted here."

@@ -41,7 +41,8 @@ test('a caution shows figures, what is beyond a limit, precautions, the site’s
     'Beyond a limit: 75 V across an open joint.',
     'Only the qualified person opens covers.',
     'At this segment: Covers of both clamps are locked.',
-    'Voltage to be guarded: 50 V . Site rule 7; adopted by Ione.',
+    'Voltage to be guarded: 50 V',
+    'Voltage to be guarded, 50 V: Site rule 7; adopted by Ione.',
     'Source: Ohm.',
   ])
     expect(shown).toContain(part)
@@ -71,6 +72,7 @@ test('a threshold that is not set is marked as such in words', () => {
     />,
   )
   expect(html).toMatch(/bg-warn-soft[^>]*>not set by site</)
+  expect(html).toContain('No value has been adopted here.')
 })
 
 test('one without an answer says so, one that does not apply stands below with its reason', () => {
