@@ -22,6 +22,7 @@ import type { ConflictFact, HeatingFact, PermitActor, PermitFacts } from '../dom
 import { OFFERED_ACTS, type OfferedAct, offeredReasons } from '../domain/permit-offers.ts'
 import { hasApproved, namedHolders } from '../domain/permit-people.ts'
 import { type PermitStage, permitStages } from '../domain/permit-progress.ts'
+import { permitStory, type StoryEvent } from '../domain/permit-story.ts'
 import { COMPETENCE_LABELS, type CompetenceKind, type PermitState } from '../domain/permit-words.ts'
 import { PERMIT_RULES } from '../domain/permits.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
@@ -150,7 +151,7 @@ export async function readPermitPage(
     }),
     offers: offersOf(facts, me, now),
     waitsFor: await waitsForWhom(db, facts, state, nameOf, now),
-    recent: acts.slice(-RECENT).reverse().map(recentLine),
+    recent: recentLines(acts),
     may: {
       edit: may(actor, 'permit:draft') && EDITABLE.includes(state),
       rule: may(actor, 'permit:approve'),
@@ -199,8 +200,14 @@ function standing(permit: PermitRow) {
   }
 }
 
-function recentLine({ act, at, personName }: PermitActRow): { text: string; at: Date } {
-  return { text: `${act.replaceAll('-', ' ')}${personName === null ? '' : `, ${personName}`}`, at }
+/** The newest acts, each in the sentence that the story tells it in. */
+function recentLines(acts: readonly PermitActRow[]): { text: string; at: Date }[] {
+  const events = acts
+    .slice(-RECENT)
+    .map((act): StoryEvent => ({ ...act, kind: 'act', who: act.personName, details: [], differences: [] }))
+  return permitStory(events)
+    .map(({ text, at }) => ({ text, at }))
+    .reverse()
 }
 
 function offersOf(facts: PermitFacts, me: PermitActor, now: Date): ActOffer[] {

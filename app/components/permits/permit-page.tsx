@@ -10,10 +10,12 @@ import { Instant } from '../ui/instant.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
 import { ActForm } from './act-form.tsx'
 import { ACT_WORDS } from './act-words.ts'
+import { DangerPanel } from './danger-panel.tsx'
 import { HazardList } from './hazard-list.tsx'
 import {
   ChecklistPanel,
   DifferencesPanel,
+  HeatingPanel,
   PeoplePanel,
   ProtectionPanel,
   RecentPanel,
@@ -32,7 +34,7 @@ export interface PermitPageProps extends PermitPageData {
 }
 
 export function PermitPage(props: PermitPageProps) {
-  const { number, content, along, failure, revision, checklist, waitsFor, offers } = props
+  const { number, content, along, failure, revision, checklist, waitsFor, offers, may } = props
   const open = openForm(props)
   const here = `/permits/${number}`
   return (
@@ -42,6 +44,7 @@ export function PermitPage(props: PermitPageProps) {
         <Locator along={along} here={content.segments} />
       </div>
       <StageBar stages={props.stages} />
+      <DangerPanel events={props.dangers} mayTolerate={may.rule} mayState={may.heating} />
       <FormFailure failure={failure} />
       {waitsFor !== '' && <p className="-mt-1 mb-4">{waitsFor}</p>}
       {open !== undefined && open.act !== 'suspend' && (
@@ -58,26 +61,54 @@ export function PermitPage(props: PermitPageProps) {
         <StopCard number={number} revision={revision} failure={failure} />
       )}
       <DifferencesPanel {...props} />
+      {/* What is in the way comes first on a narrow screen and for those who hear the page; beside the rest on a wide one. */}
       <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_20.5rem]">
-        <div className="min-w-0">
-          <HazardList hazards={props.hazards} />
-          <Panel title="Isolation points" aside={<LocksOut locks={props.locksOut} />}>
-            <PointsTable lines={props.points} />
-          </Panel>
-          <Panel title="Tests">
-            <TestsTable lines={props.tests} />
-          </Panel>
-          <ProtectionPanel {...props} />
-        </div>
-        <div className="min-w-0">
+        <div className="min-w-0 lg:col-start-2 lg:row-start-1">
           {checklist !== null && <ChecklistPanel checklist={checklist} />}
           <ValidityPanel {...props} />
+          <HeatingPanel {...props} />
           <TermsPanel {...props} />
           <PeoplePanel {...props} />
           <RecentPanel {...props} />
         </div>
+        <div className="min-w-0 lg:col-start-1 lg:row-start-1">
+          <OnThisPage />
+          <div id="cautions" className="scroll-mt-4">
+            <HazardList hazards={props.hazards} />
+          </div>
+          <Panel
+            title="Isolation points"
+            id="isolation"
+            className="scroll-mt-4"
+            aside={<LocksOut locks={props.locksOut} />}
+          >
+            <PointsTable lines={props.points} />
+          </Panel>
+          <Panel title="Tests" id="tests" className="scroll-mt-4">
+            <TestsTable lines={props.tests} />
+          </Panel>
+          <ProtectionPanel {...props} />
+        </div>
       </div>
     </>
+  )
+}
+
+/** The cautions are long, as they have to be; what stands below them is found from here. */
+function OnThisPage() {
+  return (
+    <nav aria-label="Parts of this permit" className="mb-2 flex flex-wrap gap-x-4 text-sm print:hidden">
+      {[
+        ['#cautions', 'Cautions'],
+        ['#isolation', 'Isolation points'],
+        ['#tests', 'Tests'],
+        ['#protection', 'Protection and rescue'],
+      ].map(([to, label]) => (
+        <a key={to} href={to} className="link inline-block py-1.5">
+          {label}
+        </a>
+      ))}
+    </nav>
   )
 }
 

@@ -88,7 +88,7 @@ export function TermsPanel({ content }: PermitPageData) {
 
 export function ProtectionPanel({ content }: PermitPageData) {
   return (
-    <Panel title="Protection, signs and rescue">
+    <Panel title="Protection, signs and rescue" id="protection" className="scroll-mt-4">
       <Words name="Protective equipment" text={content.protectiveEquipment} />
       <Words name="Barriers" text={content.barriers} />
       <Words name="Signs" text={content.signs} />
@@ -288,6 +288,33 @@ function Said({ text }: { text: string }) {
   )
 }
 
+/** A fact of its own: it follows from no state of the permit. */
+export function HeatingPanel({ heating, number, may }: PermitPageData) {
+  const word = heating.on === null ? 'not known' : heating.on ? 'on' : 'off'
+  return (
+    <Panel
+      title="Heating"
+      aside={
+        <Link to={`/permits/${number}/heating`} className="link text-sm">
+          {may.heating ? 'Say what you found' : 'What was said'}
+        </Link>
+      }
+    >
+      <p>
+        <strong className={heating.on === true ? 'text-heat' : heating.on === null ? 'text-warn' : ''}>
+          Heating is {word}.
+        </strong>{' '}
+        {heating.text}
+      </p>
+      {heating.since !== null && (
+        <p className="text-sm text-ink-2">
+          So since <Instant at={heating.since} age />
+        </p>
+      )}
+    </Panel>
+  )
+}
+
 export function RecentPanel({ number, recent }: PermitPageData) {
   return (
     <Panel
@@ -300,9 +327,9 @@ export function RecentPanel({ number, recent }: PermitPageData) {
     >
       <ul>
         {recent.map(({ text, at }) => (
-          <li key={`${at.toISOString()} ${text}`} className="flex justify-between gap-4 py-1">
-            <span className="first-letter:uppercase">{text}</span>
-            <Instant at={at} className="text-right text-sm text-ink-2" />
+          <li key={`${at.toISOString()} ${text}`} className="border-b border-rule-2 py-1.5 last:border-b-0">
+            {text}
+            <Instant at={at} className="block text-sm text-ink-3" />
           </li>
         ))}
       </ul>
