@@ -35,6 +35,10 @@ export default [
     route('permits/:number/edit', 'routes/permits/edit.tsx'),
     route('permits/:number/heating', 'routes/permits/heating.tsx'),
     route('permits/:number/history', 'routes/permits/history.tsx'),
+    route('permits/:number/site', 'routes/permits/site.tsx'),
+    route('permits/:number/site/locks', 'routes/permits/site-locks.tsx'),
+    route('permits/:number/site/tests', 'routes/permits/site-tests.tsx'),
+    route('permits/:number/site/rounds', 'routes/permits/site-rounds.tsx'),
     route('logbook', 'routes/logbook/logbook.tsx'),
     route('logbook/new', 'routes/logbook/new-entry.tsx'),
     route('logbook/:entryId', 'routes/logbook/entry.tsx'),
@@ -55,6 +59,7 @@ export default [
 
   // Resource routes: no page of their own.
   route('segments/:tag/readings.csv', 'routes/segments/readings-csv.tsx'),
+  route('permits/:number/photos/:photoId', 'routes/permits/photo.tsx'),
   route('bakes/plans/:planId/plan.csv', 'routes/bakes/plan-csv.tsx'),
   route('bakes/plans/:planId/plan.ics', 'routes/bakes/plan-ics.tsx'),
   route('bakes/schedule/:scheduleId/schedule.csv', 'routes/bakes/schedule-csv.tsx'),

@@ -5,6 +5,8 @@ import {
   findTestInstrument,
   insertPermitRound,
   insertPermitTest,
+  listPermitRounds,
+  listPermitTests,
   type TestInstrument,
 } from '../db/queries/permit-tests.server.ts'
 import type { PermitRow } from '../db/queries/permits.server.ts'
@@ -87,10 +89,24 @@ export async function recordPermitTest(
   const why = [...judged.reasons, form.note].filter((text) => text !== '').join(' ')
   return tx(db, async (inside) => {
     await lockedPermit(inside, number)
+    const place = required?.place ?? form.place
+    const again = (await listPermitTests(inside, permit.id)).some(
+      (test) =>
+        test.kind === form.kind &&
+        test.place === place &&
+        test.value === value &&
+        test.testerId === by.personId &&
+        test.passed === judged.passed &&
+        test.takenAt.getTime() === form.takenAt.getTime(),
+    )
+    if (again) {
+      const text = 'This test was written down already. Nothing was added.'
+      return { passed: judged.passed, leave: false, text }
+    }
     await insertPermitTest(inside, {
       permitId: permit.id,
       kind: form.kind,
-      place: required?.place ?? form.place,
+      place,
       value,
       unit,
       passed: judged.passed,
@@ -113,7 +129,7 @@ export async function recordPermitTest(
       effectiveAt: form.takenAt,
       after: {
         kind: form.kind,
-        place: required?.place ?? form.place,
+        place,
         value,
         unit,
         passed: judged.passed,
@@ -265,9 +281,19 @@ export async function recordPermitRound(
   const { hottestC, hottestAtM, inOrder, text } = form
   const objection = roundObjection(form, permit.content.maxCelsius)
   if (objection !== null) throw fieldFault({ [inOrder ? 'inOrder' : 'text']: objection })
-  await tx(db, async (inside) => {
+  const again = await tx(db, async (inside) => {
     await lockedPermit(inside, number)
     const round = { hottestC, hottestAtM, inOrder, text }
+    const there = (await listPermitRounds(inside, permit.id)).some(
+      (each) =>
+        each.personId === actor.personId &&
+        each.at.getTime() === form.at.getTime() &&
+        each.inOrder === inOrder &&
+        each.hottestC === hottestC &&
+        each.hottestAtM === hottestAtM &&
+        each.text === text,
+    )
+    if (there) return true
     const who = { permitId: permit.id, personId: actor.personId }
     await insertPermitRound(inside, { ...round, ...who, at: form.at, recordedAt: now })
     await writeRecord(inside, {
@@ -279,7 +305,9 @@ export async function recordPermitRound(
       effectiveAt: form.at,
       after: round,
     })
+    return false
   })
+  if (again) return 'This round was written down already. Nothing was added.'
   return inOrder
     ? 'Round written down: in order.'
     : 'Round written down: not in order. If it goes on, suspend the permit.'

@@ -2,6 +2,7 @@
 import type { DbOrTx } from '../db/client.server.ts'
 import { listPermitTests, type PermitTestRow } from '../db/queries/permit-tests.server.ts'
 import type { PermitRow } from '../db/queries/permits.server.ts'
+import type { RequiredTest } from '../domain/permit-content.ts'
 import type { TestFact } from '../domain/permit-facts.ts'
 import { answers, limitsText, testFacts } from '../domain/permit-tests.ts'
 import { instantWriter } from './site.server.ts'
@@ -15,6 +16,7 @@ export async function readTests(db: DbOrTx, permit: PermitRow, now: Date): Promi
 
 /** One line of the table of tests: what the permit asks for, and the last result. */
 export interface TestLine extends TestFact {
+  required: RequiredTest
   unit: string
   /** In words; empty where the tester's word decides. */
   limits: string
@@ -30,6 +32,6 @@ export async function readTestTable(db: DbOrTx, permit: PermitRow, now: Date): P
     if (fact === undefined) return []
     const { unit, everyHours } = required
     const last = taken.find((test) => answers(required, test) && test.takenAt <= now) ?? null
-    return [{ ...fact, unit, limits: limitsText(required), everyHours, last }]
+    return [{ ...fact, required, unit, limits: limitsText(required), everyHours, last }]
   })
 }

@@ -158,7 +158,7 @@ test('a lock is applied, verified by somebody else, and taken away by its owner:
     [pim.personId, 'verify isolation lock L-114', true],
     [odalys.personId, 'take away isolation lock L-114', true],
   ])
-  const record = await listRecord(db, { subjectKind: 'permit', subjectId: number })
+  const record = await listRecord(db, { subjectKind: 'permit', subjectId: number, limit: 10 })
   expect(record.map(({ act }) => act)).toEqual([
     'isolation lock taken away',
     'isolation lock verified',

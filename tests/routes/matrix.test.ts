@@ -152,6 +152,30 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: STAFF, status: 404 },
     POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
   },
+  '/permits/:number/site': {
+    path: '/permits/HSP-1999-001/site',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: STAFF, status: 400 },
+  },
+  '/permits/:number/site/locks': {
+    path: '/permits/HSP-1999-001/site/locks',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: STAFF, status: 400 },
+  },
+  '/permits/:number/site/tests': {
+    path: '/permits/HSP-1999-001/site/tests',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
+  },
+  '/permits/:number/site/rounds': {
+    path: '/permits/HSP-1999-001/site/rounds',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
+  },
+  '/permits/:number/photos/:photoId': {
+    path: '/permits/HSP-1999-001/photos/1',
+    GET: { who: STAFF, status: 404 },
+  },
   '/logbook': { GET: { who: ROLES, status: 200 } },
   '/logbook/new': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
   '/logbook/:entryId': {
