@@ -59,7 +59,7 @@ export interface PermitFormData {
   people: PersonChoice[]
   plan: { id: number; title: string; version: number; newest: number; crewNote: string | null } | null
   hazards: HazardView[]
-  missing: MissingPart[]
+  missing: readonly MissingPart[]
 }
 
 /**
@@ -83,7 +83,7 @@ export async function readPermitForm(
     readHazards(db, permit, now),
     planOf(db, permit.content),
   ])
-  const state = stateAsOf(permit, now)
+  const { state } = stateAsOf(permit, now)
   return {
     number,
     title: permit.content.title,

@@ -3,6 +3,7 @@ import { zodResolver } from '@hookform/resolvers/zod'
 import { useEffect, useMemo, useRef, useState } from 'react'
 import { FormProvider, useForm } from 'react-hook-form'
 import { Link, useNavigate } from 'react-router'
+import type { z } from 'zod'
 import type { PermitContent } from '#app/domain/permit-content.ts'
 import type { MissingPart } from '#app/domain/permit-facts.ts'
 import type { PermitFormValues } from '#app/domain/permit-form-values.ts'
@@ -82,7 +83,8 @@ function OpenForm(props: PermitFormPageProps) {
   const [opened] = useState(() => now.toISOString())
   const form = useForm<PermitFormValues, unknown, PermitContent>({
     defaultValues: start,
-    resolver: zodResolver(schema),
+    // The schema takes more than the form sends: a name left out, and a single box's own value.
+    resolver: zodResolver(schema as z.ZodType<PermitContent, PermitFormValues>),
     mode: 'onTouched',
     shouldFocusError: false,
   })
