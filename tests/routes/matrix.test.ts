@@ -139,6 +139,16 @@ const ADDRESSES: Record<string, Address> = {
     path: '/permits/HSP-2026-999/history',
     GET: { who: STAFF, status: 404 },
   },
+  '/permits/works': { GET: { who: STAFF, status: 200 } },
+  '/permits/works/new': {
+    GET: { who: ['technician', 'engineer', 'safety-officer'], status: 200 },
+    POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
+  },
+  '/permits/works/:workId': {
+    path: '/permits/works/999',
+    GET: { who: STAFF, status: 404 },
+    POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
+  },
   '/permits/bays': {
     GET: { who: STAFF, status: 200 },
     POST: { who: ['technician', 'engineer', 'safety-officer'], status: 400 },
