@@ -34,6 +34,7 @@ export default [
     route('permits/works/:workId', 'routes/permits/work.tsx'),
     route('permits/bays', 'routes/permits/bays.tsx'),
     route('permits/dangers', 'routes/permits/dangers.tsx'),
+    route('permits/policy', 'routes/permits/policy.tsx'),
     route('permits/:number', 'routes/permits/permit.tsx'),
     route('permits/:number/edit', 'routes/permits/edit.tsx'),
     route('permits/:number/heating', 'routes/permits/heating.tsx'),
@@ -63,6 +64,7 @@ export default [
   // Resource routes: no page of their own.
   route('segments/:tag/readings.csv', 'routes/segments/readings-csv.tsx'),
   route('permits/:number/photos/:photoId', 'routes/permits/photo.tsx'),
+  route('permits/policy/runs/:runId/manifest.json', 'routes/permits/retention-manifest.tsx'),
   route('bakes/plans/:planId/plan.csv', 'routes/bakes/plan-csv.tsx'),
   route('bakes/plans/:planId/plan.ics', 'routes/bakes/plan-ics.tsx'),
   route('bakes/schedule/:scheduleId/schedule.csv', 'routes/bakes/schedule-csv.tsx'),

@@ -6,6 +6,7 @@
 import type { Db, DbOrTx } from '../db/client.server.ts'
 import { findSegments, listSegmentsSaidHeated } from '../db/queries/heating.server.ts'
 import { findPermit, listPermits, lockPermit, type PermitRow } from '../db/queries/permits.server.ts'
+import { setHeld } from '../db/queries/retention.server.ts'
 import {
   endSafetyEvent,
   findSafetyEvent,
@@ -130,6 +131,10 @@ async function settle(
       noticedAt: now,
       text: danger.text.slice(0, 1000),
     })
+    // Heat without a live permit is an incident: what belongs to it stays until an officer releases it.
+    if (facts.number !== null && HEATED_KINDS.some((kind) => kind === danger.kind)) {
+      await setHeld(inside, facts.number, { held: true, reason: danger.text })
+    }
   }
 }
 

@@ -157,6 +157,11 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: STAFF, status: 200 },
     POST: { who: ['safety-officer'], status: 400 },
   },
+  '/permits/policy': { GET: { who: STAFF, status: 200 }, POST: { who: STAFF, status: 400 } },
+  '/permits/policy/runs/:runId/manifest.json': {
+    path: '/permits/policy/runs/999/manifest.json',
+    GET: { who: STAFF, status: 404 },
+  },
   '/permits/:number/heating': {
     path: '/permits/HSP-2026-999/heating',
     GET: { who: STAFF, status: 404 },

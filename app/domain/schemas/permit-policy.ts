@@ -29,3 +29,28 @@ export const PolicyFormSchema = z.object({
   password,
 })
 export type PolicyForm = z.infer<typeof PolicyFormSchema>
+
+/** An administrator's wish to delete what is old enough. */
+export const AskRetentionSchema = z.object({ intent: z.literal('ask-run'), password })
+
+const run = {
+  runId: z.coerce.number().int().positive(),
+  revision: z.coerce.number().int().positive(),
+}
+export const RunDecisionSchema = z.discriminatedUnion(
+  'intent',
+  [
+    z.object({ intent: z.literal('agree'), ...run, password }),
+    z.object({ intent: z.literal('call-off'), ...run }),
+  ],
+  { error: 'Choose what is to be done with this run.' },
+)
+export type RunDecision = z.infer<typeof RunDecisionSchema>
+
+export const HoldFormSchema = z.object({
+  intent: z.enum(['hold', 'release']),
+  number: z.string().trim().min(1, 'Type the number of the permit.').max(20),
+  reason,
+  password,
+})
+export type HoldForm = z.infer<typeof HoldFormSchema>
