@@ -1,3 +1,4 @@
+export * from './alerts.ts'
 export * from './api.ts'
 export * from './intake.ts'
 export * from './logbook.ts'
