@@ -104,7 +104,7 @@ const FACTS = {
       {
         text: 'live parts below 50 V to ground need not be made dead unless burns or arcs threaten',
         source: '29 CFR 1910.333(a)(1)',
-        edition: 'not noted',
+        edition: 'edition not noted',
         provenance: 'quoted',
       },
     ],
@@ -169,7 +169,7 @@ const FACTS = {
       {
         text: 'below 19.5 % an atmosphere counts as oxygen-deficient',
         source: '29 CFR 1910.146(b)',
-        edition: 'not noted',
+        edition: 'edition not noted',
         provenance: 'checked',
       },
     ],
@@ -187,7 +187,7 @@ const FACTS = {
       {
         text: 'above 23.5 % an atmosphere counts as oxygen-enriched',
         source: '29 CFR 1910.146(b)',
-        edition: 'not noted',
+        edition: 'edition not noted',
         provenance: 'checked',
       },
     ],
@@ -234,7 +234,7 @@ const FACTS = {
       {
         text: 'fluoro-elastomer lasts in service below about 200 °C; above about 300 °C it gives off toxic, corrosive products, hydrogen fluoride among them',
         source: 'handling guides of the plastics trade',
-        edition: 'not noted',
+        edition: 'edition not noted',
         provenance: 'quoted',
       },
       {

@@ -145,11 +145,31 @@ export function hazardViews(
       label: HAZARD_LABELS[key],
       applies: answer?.applies ?? null,
       text: answer?.text ?? '',
-      facts,
+      facts: mergeEqual(
+        facts,
+        ground.segments.map(({ tag }) => tag),
+      ),
       findings,
       precautions,
       thresholds: thresholds.map((each) => thresholdView(each, adoptions, now, dayText)),
     }
+  })
+}
+
+/** Facts that read alike but for the segment become one that names all of them. */
+function mergeEqual(facts: readonly HazardFact[], tags: readonly string[]): HazardFact[] {
+  const without = (text: string) => tags.reduce((rest, tag) => rest.replaceAll(tag, '\u0000'), text)
+  const alike = (one: HazardFact, other: HazardFact) =>
+    one.value === other.value &&
+    without(one.name) === without(other.name) &&
+    without(one.how) === without(other.how)
+  return facts.flatMap((fact, index) => {
+    if (facts.findIndex((other) => alike(other, fact)) < index) return []
+    const own = tags.filter((tag) => facts.some((other) => alike(other, fact) && other.name.includes(tag)))
+    const [first] = own
+    if (first === undefined || own.length < 2 || facts.filter((other) => alike(other, fact)).length < 2)
+      return [fact]
+    return [{ ...fact, name: `${fact.name.replace(first, own.join(' and '))}, each` }]
   })
 }
 

@@ -18,11 +18,11 @@ export function HazardList({ hazards }: { hazards: readonly HazardView[] }) {
   return (
     <section
       aria-labelledby={headingId}
-      className="mb-4.5 min-w-0 overflow-hidden rounded-md border-2 border-heat bg-sheet print:rounded-none print:border-black"
+      className="mb-4.5 min-w-0 overflow-hidden rounded-md border-2 border-heat bg-sheet print:rounded-none print:border-ink"
     >
       <h2
         id={headingId}
-        className="bg-heat px-3.5 py-2.5 text-sheet print:border-b-2 print:border-black print:bg-white print:text-black"
+        className="bg-heat px-3.5 py-2.5 text-sheet print:border-b-2 print:border-ink print:bg-transparent print:text-ink"
       >
         Cautions for this segment while heated
       </h2>
@@ -30,7 +30,7 @@ export function HazardList({ hazards }: { hazards: readonly HazardView[] }) {
         <Hazard key={hazard.key} hazard={hazard} />
       ))}
       {left.length > 0 && <LeftOut hazards={left} />}
-      <p className="border-t bg-heat-soft px-3.5 py-2.5 text-sm print:border-black print:bg-white">
+      <p className="border-t bg-heat-soft px-3.5 py-2.5 text-sm print:border-ink print:bg-transparent">
         {STANDING_SENTENCE}
       </p>
     </section>
@@ -40,7 +40,7 @@ export function HazardList({ hazards }: { hazards: readonly HazardView[] }) {
 function Hazard({ hazard }: { hazard: HazardView }) {
   const { label, applies, text, facts, findings, precautions, thresholds } = hazard
   return (
-    <article className="unbroken border-b border-rule-2 px-3.5 py-2.5 sm:grid sm:grid-cols-[12.5rem_minmax(0,1fr)] sm:gap-x-3 print:border-black">
+    <article className="unbroken border-b border-rule-2 px-3.5 py-2.5 sm:grid sm:grid-cols-[12.5rem_minmax(0,1fr)] sm:gap-x-3 print:border-ink">
       <h3 className="mb-1 flex items-start gap-2 text-base font-semibold">
         <WarningSign />
         <span>
@@ -53,7 +53,7 @@ function Hazard({ hazard }: { hazard: HazardView }) {
       <div className="min-w-0">
         {facts.length > 0 && <Facts facts={facts} />}
         {findings.map((finding) => (
-          <p key={finding} className="mt-1 border-l-4 border-warn bg-warn-soft px-2 py-1 print:border-black">
+          <p key={finding} className="mt-1 border-l-4 border-warn bg-warn-soft px-2 py-1 print:border-ink">
             <strong className="font-semibold">Beyond a limit: </strong>
             {finding}
           </p>
@@ -96,7 +96,7 @@ function Thresholds({ thresholds }: { thresholds: readonly HazardThreshold[] }) 
             <b className="font-semibold text-ink">{text}</b>
           ) : (
             <>
-              <b className="rounded-sm border border-warn bg-warn-soft px-1 font-semibold text-ink print:border-black">
+              <b className="rounded-sm border border-warn bg-warn-soft px-1 font-semibold text-ink print:border-ink">
                 {text}
               </b>{' '}
               {detail}
@@ -169,7 +169,7 @@ function WarningSign() {
     <svg
       viewBox="0 0 22 20"
       aria-hidden="true"
-      className="mt-0.5 h-5 w-5.5 shrink-0 text-heat print:text-black"
+      className="mt-0.5 h-5 w-5.5 shrink-0 text-heat print:text-ink"
       fill="none"
       stroke="currentColor"
       strokeWidth="1.8"

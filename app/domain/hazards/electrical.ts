@@ -102,9 +102,9 @@ export function shock(ground: HazardGround): HazardFinding {
     precautions: [
       'Only the qualified person named here opens covers, clamps or links.',
       'Lock the feed off, prove the tester, test each segment for absence of voltage, prove the tester again; then short and earth before anything is touched.',
-      'Covers stay on bars and clamps; no rings, watches, metal tapes or loose tools near them.',
-      'The loop is earthed at the one point written above. A strap, a tray or a ladder across it makes a second path: look for one before switching on.',
-      'The earth-fault monitor has been tried. Stand on a rubber mat at the clamps.',
+      'Keep covers on bars and clamps; no rings, watches, metal tapes or loose tools near them.',
+      'Earth the loop at the one point written above. A strap, a tray or a ladder across it makes a second path: look for one before switching on.',
+      'Try the earth-fault monitor before the first current. Stand on a rubber mat at the clamps.',
       'Few volts, much energy: a dropped spanner welds.',
     ],
   }
@@ -164,9 +164,9 @@ export function arc(ground: HazardGround): HazardFinding {
     findings: [],
     thresholds: ['joint-resistance'],
     precautions: [
-      'Every joint is tightened to its torque and measured with a micro-ohmmeter before the first current.',
-      'Feel them with a thermal camera at a tenth, at half and at full current; stop at the first that is warmer than its neighbours.',
-      'Covers on, half a metre clear of what burns, and nobody in front of a joint while the current changes.',
+      'Tighten every joint to its torque and measure it with a micro-ohmmeter before the first current.',
+      'Look at them with a thermal camera at a tenth, at half and at full current; stop at the first that is warmer than its neighbours.',
+      'Keep covers on, what burns half a metre away, and everybody from in front of a joint while the current changes.',
       'Never open a link that carries current: direct current does not go out by itself.',
     ],
   }
@@ -211,9 +211,9 @@ export function magneticField(ground: HazardGround): HazardFinding {
     findings,
     thresholds: ['implant-field'],
     precautions: [
-      'The return bar runs beside the feed bar wherever it can.',
-      'The magnet sign (ISO 7010 W006) and a notice for people with pacemakers and other implants hang at each way in.',
-      'Bank cards, watches and loose steel tools stay outside.',
+      'Run the return bar beside the feed bar wherever it goes.',
+      'Hang the magnet sign (ISO 7010 W006) and a notice for people with pacemakers and other implants at each way in.',
+      'Leave bank cards, watches and loose steel tools outside.',
     ],
   }
 }

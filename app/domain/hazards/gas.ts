@@ -35,9 +35,9 @@ export function ventPressure(ground: HazardGround): HazardFinding {
     findings: [],
     thresholds: ['vent-overpressure'],
     precautions: [
-      'Thin tube and bellows are made for pressure from outside and give way to little from inside: a relief is fitted and has been tried.',
-      'The gas comes through a regulator, never straight from a cylinder, and somebody stays at its valve until it is shut.',
-      'The vent valve stays locked shut while this permit is live.',
+      'Thin tube and bellows are made for pressure from outside and give way to little from inside: fit a relief and try it first.',
+      'Let gas in through a regulator, never straight from a cylinder, and stay at its valve until it is shut.',
+      'Keep the vent valve locked shut while this permit is live.',
     ],
   }
 }
@@ -89,10 +89,10 @@ export function oxygen(ground: HazardGround): HazardFinding {
     thresholds: ['oxygen-low', 'oxygen-high', 'oxygen-release'],
     precautions: [
       'Lack of oxygen gives no warning: judgement goes first, then the legs.',
-      'Fans are seen running; a fixed monitor and one on each person are on. Test before going in, then without a break.',
-      'At an alarm, leave. Nobody goes in for somebody lying there without breathing apparatus: those who tried make up a large share of the dead.',
-      'What is vented goes outside through a duct; no hose that can carry nitrogen or helium stays connected.',
-      'The suffocation sign (ISO 7010 W041) hangs at each way in.',
+      'See the fans run; use a fixed monitor and one on each person. Test before going in, then without a break.',
+      'At an alarm, leave. Do not go in without breathing apparatus for somebody who lies there: those who tried make up a large share of the dead.',
+      'Lead what is vented outside through a duct; leave no hose connected that can carry nitrogen or helium.',
+      'Hang the suffocation sign (ISO 7010 W041) at each way in.',
     ],
   }
 }
@@ -109,7 +109,7 @@ export function tubeEntry({ segments }: HazardGround): HazardFinding {
     thresholds: ['oxygen-low'],
     precautions: [
       'An opened tube is a confined space. Going in, head or arm, needs an entry permit of its own; this one never covers it.',
-      'An open end is covered or barred as soon as nobody works at it.',
+      'Cover or bar an open end as soon as nobody works at it.',
     ],
   }
 }
@@ -120,9 +120,9 @@ export function gasCylinders(): HazardFinding {
     findings: [],
     thresholds: ['oxygen-low'],
     precautions: [
-      'Cylinders stand chained, capped when not in use, and well away from what is hot.',
-      'Regulator and hose are looked over before each use, and shut at the cylinder afterwards.',
-      'Tracer gas in ducts and pits drives out air as nitrogen does: the oxygen monitor stays on.',
+      'Chain cylinders, cap them when they are not in use, and keep them well away from what is hot.',
+      'Look regulator and hose over before each use, and shut the cylinder afterwards.',
+      'Tracer gas in ducts and pits drives out air as nitrogen does: keep the oxygen monitor on.',
     ],
   }
 }

@@ -56,7 +56,7 @@ export function hotSurface(ground: HazardGround): HazardFinding {
       'Take every bare part for hot until a contact probe has said otherwise; polished steel deceives an infra-red thermometer.',
       'Keep jackets closed, put guards over what stays bare, and hang the hot-surface sign (ISO 7010 W017) at each way in.',
       'Wear gloves and sleeves rated for the temperature above.',
-      'A burn goes under cool running water at once and for twenty minutes, then to the first-aider (from memory, not verified; local first-aid rules come first).',
+      'Hold a burn under cool running water at once and for twenty minutes, then fetch the first-aider (from memory, not verified; local first-aid rules come first).',
     ],
   }
 }
@@ -131,10 +131,10 @@ export function elastomer(ground: HazardGround): HazardFinding {
     findings,
     thresholds: parts.length === 0 ? [] : ['elastomer-limit'],
     precautions: [
-      'A thermocouple sits on each of these parts; the heating stops before one of them is over its limit.',
+      'Put a thermocouple on each of these parts, and stop the heating before one of them is over its limit.',
       'After overheating or fire, touch no residue: air the bay, stay out, and take fluoro-elastomer to have given off hydrogen fluoride.',
-      'First-aid for hydrogen fluoride is agreed with a physician beforehand and is at hand while such parts are hot.',
-      'Burnt seals and what wiped them are hazardous waste.',
+      'Agree first-aid for hydrogen fluoride with a physician beforehand, and keep it at hand while such parts are hot.',
+      'Treat burnt seals and what wiped them as hazardous waste.',
     ],
   }
 }
@@ -153,11 +153,11 @@ export function fire({ content }: HazardGround): HazardFinding {
     findings: [],
     thresholds: ['combustible-free'],
     precautions: [
-      'Before heating somebody walks the whole stretch and takes away cardboard, tape, rags, oil and dust; cables hang clear of the tube.',
+      'Before heating, walk the whole stretch and take away cardboard, tape, rags, oil and dust; hang cables clear of the tube.',
       'A new or wetted jacket smokes: expect it, and tell whoever watches the detectors.',
-      'Extinguishers suit live electrical equipment and their places are known.',
-      'Where a detector is switched off, who did it and when it goes on again is written down.',
-      'Somebody watches through the ramp and for an hour after every change.',
+      'Have extinguishers that suit live electrical equipment, and know where they stand.',
+      'Where a detector is switched off, write down who did it and when it goes on again.',
+      'Keep a watch through the ramp and for an hour after every change.',
     ],
   }
 }
@@ -177,7 +177,7 @@ export function insulationDust({ segments }: HazardGround): HazardFinding {
     findings: [],
     thresholds: [],
     precautions: [
-      'Opened insulation gives off fibres that irritate: gloves, long sleeves, and a mask as the site prescribes.',
+      'Opened insulation gives off fibres that irritate: wear gloves, long sleeves, and a mask as the site prescribes.',
       'Damp the place, bag cuttings at once, and vacuum rather than sweep.',
     ],
   }
@@ -216,9 +216,9 @@ export function heatStress(ground: HazardGround): HazardFinding {
     findings: [],
     thresholds: ['bay-air'],
     precautions: [
-      'Drinking water at the barrier, short turns, and nobody goes on who feels unwell.',
-      'Temporary lights where jackets and cables narrow the way; hoses and leads are tied off the floor.',
-      'Hearing protection beside pumps and fans that run at full speed.',
+      'Put drinking water at the barrier, take short turns, and send out whoever feels unwell.',
+      'Hang temporary lights where jackets and cables narrow the way; tie hoses and leads off the floor.',
+      'Wear hearing protection beside pumps and fans that run at full speed.',
     ],
   }
 }

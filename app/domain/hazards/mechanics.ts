@@ -58,10 +58,10 @@ export function expansion(ground: HazardGround): HazardFinding {
     findings,
     thresholds: ['stroke-reserve'],
     precautions: [
-      'Shipping brackets are off, guides move freely and end stops are where the drawing has them.',
-      'Hands stay out of the gaps at sliding supports; a sign says so. No ladder leans on the tube.',
-      'Strokes are read at the temperatures agreed beforehand and compared with the expected ones.',
-      'After an unexpected bang the ramp is held and everybody stands clear until the cause is found.',
+      'Take shipping brackets off, see that guides move freely and that end stops are where the drawing has them.',
+      'Keep hands out of the gaps at sliding supports and put up a sign that says so. Lean no ladder on the tube.',
+      'Read strokes at the temperatures agreed beforehand and compare them with the expected ones.',
+      'After an unexpected bang, hold the ramp and stand clear until the cause is found.',
     ],
   }
 }
@@ -89,9 +89,9 @@ export function storedEnergy({ segments }: HazardGround): HazardFinding {
     findings: [],
     thresholds: [],
     precautions: [
-      'No blow, no grinding, no drilling on tube under vacuum; a fresh dent is reported and looked at before anybody goes on.',
-      'Windows and ceramic feedthroughs wear guards; whoever works near glass wears a face shield.',
-      'A flange is never loosened under vacuum, and a blank carries only what it is rated for.',
+      'No blow, no grinding, no drilling on tube under vacuum; report a fresh dent and have it looked at before going on.',
+      'Guard windows and ceramic feedthroughs; wear a face shield near glass.',
+      'Never loosen a flange under vacuum, and load a blank only up to what it is rated for.',
     ],
   }
 }
@@ -102,9 +102,9 @@ export function lifting(): HazardFinding {
     findings: [],
     thresholds: [],
     precautions: [
-      'Blankets, bars, carts and pump heads are lifted by a plan, with certified gear.',
-      'The load sign (ISO 7010 W015) is up, and nobody stands or passes under a load.',
-      'Nothing is carried over a heated tube: the crane’s key is withdrawn over this stretch.',
+      'Lift blankets, bars, carts and pump heads by a plan, with certified gear.',
+      'Put up the load sign (ISO 7010 W015); do not stand or pass under a load.',
+      'Carry nothing over a heated tube: keep the crane off this stretch.',
     ],
   }
 }
@@ -142,9 +142,9 @@ export function loneWork({ content, ambientC }: HazardGround): HazardFinding {
     findings: [],
     thresholds: ['check-in'],
     precautions: [
-      'Nobody is alone during the ramp, at first energising, at the opening of a vent, or at live parts.',
+      'Leave nobody alone during the ramp, at first energising, at the opening of a vent, or at live parts.',
       'Whoever walks the tunnel alone says so before, calls in by radio, and says when they are out; a missed call starts a search.',
-      'The map of call points hangs at each way in, and the radio has been tried where the work is.',
+      'Hang the map of call points at each way in, and try the radio where the work is.',
       `Some tasks need a second person whatever else is arranged: confined spaces and live electrical work are the usual ones (${PRACTICE}).`,
     ],
   }

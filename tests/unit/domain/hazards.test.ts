@@ -255,6 +255,20 @@ describe('venting and stroke', () => {
   })
 })
 
+test('what is the same for both segments of a pair is said once', () => {
+  const pair = { segments: [segment('SG-11'), segment('SG-12')] }
+  expect(view('stored-energy', pair).facts.map(({ name }) => name)).toEqual([
+    'Load of the air on a blank of SG-11 and SG-12, each',
+    'Energy held by SG-11 and SG-12, each',
+  ])
+  const unlike = { segments: [segment('SG-08', { endM: 760 }), segment('SG-07')] }
+  expect(view('stored-energy', unlike).facts.map(({ name }) => name)).toEqual([
+    'Load of the air on a blank of SG-08 and SG-07, each',
+    'Energy held by SG-08',
+    'Energy held by SG-07',
+  ])
+})
+
 test('another temperature gives other figures at once', () => {
   const cooler = { content: content({ maxCelsius: 80 }) }
   for (const key of ['hot-surface', 'shock', 'expansion', 'heat-stress', 'lone-work'] as const)
