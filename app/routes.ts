@@ -61,9 +61,14 @@ export default [
     route('clock', 'routes/account/clock.tsx'),
   ]),
 
+  // Paper and what leads back from it: without the frame.
+  route('permits/:number/print', 'routes/permits/print.tsx'),
+  route('p/:code', 'routes/permits/short-code.tsx'),
+
   // Resource routes: no page of their own.
   route('segments/:tag/readings.csv', 'routes/segments/readings-csv.tsx'),
   route('permits/:number/photos/:photoId', 'routes/permits/photo.tsx'),
+  route('permits/:number/permit.pdf', 'routes/permits/permit-pdf.tsx'),
   route('permits/policy/runs/:runId/manifest.json', 'routes/permits/retention-manifest.tsx'),
   route('bakes/plans/:planId/plan.csv', 'routes/bakes/plan-csv.tsx'),
   route('bakes/plans/:planId/plan.ics', 'routes/bakes/plan-ics.tsx'),

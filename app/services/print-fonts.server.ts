@@ -2,6 +2,7 @@
 import { readFileSync } from 'node:fs'
 import { createRequire } from 'node:module'
 import { inflateSync } from 'node:zlib'
+import { z } from 'zod'
 
 const require = createRequire(import.meta.url)
 
@@ -39,7 +40,7 @@ export function unpackWoff(woff: Buffer): Buffer {
   directory.writeUInt16BE(2 ** power * 16, 6)
   directory.writeUInt16BE(power, 8)
   directory.writeUInt16BE(count * 16 - 2 ** power * 16, 10)
-  const parts = [directory]
+  const parts: Uint8Array[] = [directory]
   let offset = directory.length
   for (const [index, { tag, checksum, data }] of tables.entries()) {
     const at = HEADER_BYTES + index * ENTRY_BYTES
@@ -55,8 +56,8 @@ export function unpackWoff(woff: Buffer): Buffer {
   return Buffer.concat(parts)
 }
 
-export const PRINT_FONTS = ['latin', 'latin-ext', 'greek'] as const
-/** The stretch of the alphabet that a file covers. */
+/** Stretches of the alphabet that have a file of their own, the most used first. */
+export const PRINT_FONTS = ['latin', 'latin-ext', 'greek', 'cyrillic', 'cyrillic-ext', 'vietnamese'] as const
 export type PrintFont = (typeof PRINT_FONTS)[number]
 
 const loaded = new Map<string, Buffer>()
@@ -69,4 +70,33 @@ export function printFont(part: PrintFont, weight: 400 | 600): Buffer {
   const font = unpackWoff(readFileSync(require.resolve(name)))
   loaded.set(name, font)
   return font
+}
+
+let ranges: Record<PrintFont, [from: number, to: number][]> | undefined
+
+/** Code points of each file, as the package lists them: "U+0000-00FF,U+0131". */
+function readRanges(): Record<PrintFont, [number, number][]> {
+  const path = require.resolve('@fontsource/ibm-plex-sans/unicode.json')
+  const listed = UnicodeSchema.parse(JSON.parse(readFileSync(path, 'utf8')))
+  return Object.fromEntries(
+    PRINT_FONTS.map((part) => [
+      part,
+      listed[part].split(',').map((range) => {
+        const [from = '', to = from] = range.replace('U+', '').split('-')
+        return [Number.parseInt(from, 16), Number.parseInt(to, 16)]
+      }),
+    ]),
+  ) as Record<PrintFont, [number, number][]>
+}
+
+const UnicodeSchema = z.record(z.enum(PRINT_FONTS), z.string())
+
+/** The file that has a letter; null where none has. */
+export function printFontOf(letter: string): PrintFont | null {
+  ranges ??= readRanges()
+  const code = letter.codePointAt(0) ?? 0
+  for (const part of PRINT_FONTS) {
+    if (ranges[part].some(([from, to]) => code >= from && code <= to)) return part
+  }
+  return null
 }

@@ -190,7 +190,7 @@ export function contentOf(permit: DemoPermit, plan: { id: number; version: numbe
     protectiveEquipment: `Heat-proof gloves to ${job.celsius < 100 ? 100 : 250} °C, long sleeves, goggles${wired ? ', insulating gloves for the electrician' : ''}`,
     barriers: `Barrier with door and lamp at ${westOf(job)} m and ${eastOf(job)} m`,
     signs: wired
-      ? 'Hot surface, direct current, no entry, notice for implants, hydrogen-free nitrogen: oxygen'
+      ? 'Hot surface, direct current, no entry, notice for implants, suffocation'
       : 'Hot surface, no entry',
     lighting: 'Tunnel lamps on, hand lamp at each barrier',
     rescue:

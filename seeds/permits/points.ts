@@ -123,7 +123,7 @@ export function requiredTests({ kind, segments, supply, celsius }: Job): Require
   return [
     ...always,
     test('zero-voltage', `bars of ${tags}, both ends`, { high: 1, unit: 'V' }),
-    test('joint-resistance', 'worst bolted joint of the bars', { high: 0.1, unit: 'mΩ' }),
+    test('joint-resistance', 'worst bolted joint of the bars', { high: 0.05, unit: 'mΩ' }),
     test('earth-fault-monitor', supply),
   ]
 }

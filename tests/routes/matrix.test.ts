@@ -135,6 +135,12 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: HANDS, status: 404 },
     POST: { who: HANDS, status: 400 },
   },
+  '/permits/:number/print': { path: '/permits/HSP-2026-999/print', GET: { who: STAFF, status: 404 } },
+  '/permits/:number/permit.pdf': {
+    path: '/permits/HSP-2026-999/permit.pdf',
+    GET: { who: STAFF, status: 404 },
+  },
+  '/p/:code': { path: '/p/NOSUCH', GET: { who: STAFF, status: 404 } },
   '/permits/:number/history': {
     path: '/permits/HSP-2026-999/history',
     GET: { who: STAFF, status: 404 },

@@ -3,15 +3,22 @@ import type { Drawing } from './drawing.ts'
 
 export type Block =
   | { kind: 'heading'; text: string }
-  | { kind: 'text'; text: string; strong?: boolean }
+  | { kind: 'text'; text: string; strong?: boolean; size?: number }
   /** Letters that are read from some metres away. */
   | { kind: 'big'; text: string; size: number }
   /** A frame around what must not be overlooked. */
   | { kind: 'notice'; title: string; text: string }
   | { kind: 'facts'; rows: [name: string, value: string][] }
-  | { kind: 'list'; items: string[] }
   /** Columns share the width by their weights. Empty cells of `blank` rows are written by hand. */
-  | { kind: 'table'; name: string; columns: Column[]; rows: string[][]; blank?: number; rowHeight?: number }
+  | {
+      kind: 'table'
+      name: string
+      columns: Column[]
+      rows: string[][]
+      blank?: number
+      rowHeight?: number
+      whole?: boolean
+    }
   | { kind: 'drawing'; drawing: Drawing; words: string }
 
 export interface Column {
@@ -86,7 +93,15 @@ const WORDS: readonly (readonly [RegExp, string])[] = [
   [/\u2002|\u2009|\u202f/g, '\u00a0'],
 ]
 
-/** A text in letters that print, signs that the typeface lacks said in words. */
+/** A text in letters that print: signs that the typeface lacks are said in words. */
 export function printable(text: string): string {
   return WORDS.reduce((result, [sign, words]) => result.replaceAll(sign, words), text)
+}
+
+/** The same with every text in it made printable. */
+export function allPrintable<Value>(value: Value): Value {
+  if (typeof value === 'string') return printable(value) as Value
+  if (Array.isArray(value)) return value.map(allPrintable) as Value
+  if (typeof value !== 'object' || value === null) return value
+  return Object.fromEntries(Object.entries(value).map(([name, each]) => [name, allPrintable(each)])) as Value
 }

@@ -115,6 +115,7 @@ function gate(x: number, tag: string): Shape[] {
       ],
       fill: 'black',
     },
+    { kind: 'rect', x: x - 15, y: TUBE.top - 15, width: 30, height: 11, fill: 'white' },
     { kind: 'text', at: [x, TUBE.top - 7], text: tag, size: 8, anchor: 'middle' },
   ]
 }
@@ -132,6 +133,13 @@ function barrier(x: number, atM: number, anchor: 'start' | 'end'): Shape[] {
 function axis(view: { from: number; to: number }, x: (metre: number) => number): Shape[] {
   const step = tickStep(view.to - view.from)
   const shapes: Shape[] = [{ kind: 'line', from: [0, AXIS_Y], to: [WIDTH, AXIS_Y], width: 0.8 }]
+  shapes.push({
+    kind: 'text',
+    at: [WIDTH, AXIS_Y + 26],
+    text: 'chainage, metres from the west end',
+    size: 8,
+    anchor: 'end',
+  })
   for (let at = Math.ceil(view.from / step) * step; at <= view.to; at += step) {
     if (at < 0) continue
     shapes.push({ kind: 'line', from: [x(at), AXIS_Y], to: [x(at), AXIS_Y + 4], width: 0.8 })
@@ -142,7 +150,7 @@ function axis(view: { from: number; to: number }, x: (metre: number) => number):
 }
 
 function keys(): Shape[] {
-  const y = 176
+  const y = 180
   const word = (at: number, text: string): Shape => ({
     kind: 'text',
     at: [at, y + 9],
@@ -180,7 +188,6 @@ function keys(): Shape[] {
       fill: 'black',
     },
     word(338, 'gate valve'),
-    word(405, 'chainage from the west'),
   ]
 }
 
