@@ -38,7 +38,7 @@ export function NewPermitPage(props: NewPermitData & { failure: ActionFailure | 
         {asked !== null && !plans.some(({ id }) => id === asked) && (
           <Notice tone="warn">there is no open bake plan {asked}.</Notice>
         )}
-        <FromPlan plans={ready} {...props} />
+        <FromPlan plans={ready} asked={asked} failure={failure} />
         <FromSegment {...props} />
         {refused.length > 0 && (
           <Panel title="Plans for which no permit can be asked yet">
