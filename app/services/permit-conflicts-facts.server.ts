@@ -140,7 +140,8 @@ function jointsOf(lines: readonly LineRow[]): Joint[] {
   })
 }
 
-function limitsOf(limits: readonly LimitRow[]): ConflictLimits {
+/** Limits of the register as the conflict rules take them. */
+export function limitsOf(limits: readonly LimitRow[]): ConflictLimits {
   const value = (kind: Parameters<typeof limitFor>[1]) => limitFor(limits, kind, null)?.value ?? null
   return {
     exclusionM: value('exclusion-length'),

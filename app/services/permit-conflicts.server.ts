@@ -3,13 +3,15 @@ import type { Db, DbOrTx } from '../db/client.server.ts'
 import { insertRuling, listRulings, type RulingRow } from '../db/queries/permit-conflicts.server.ts'
 import { listPlanners } from '../db/queries/permit-register.server.ts'
 import { findPermit, lockPermit, type PermitRow } from '../db/queries/permits.server.ts'
+import { listLimits } from '../db/queries/segments.server.ts'
 import { tx } from '../db/transaction.server.ts'
 import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
+import { exclusionReach, needsExclusion } from '../domain/permit-conflicts/facts.ts'
 import { findConflicts } from '../domain/permit-conflicts.ts'
 import type { ConflictFact } from '../domain/permit-facts.ts'
 import { CLAIMING_PERMIT_STATES, ENDED_PERMIT_STATES, PERMIT_STATE_LABELS } from '../domain/permit-words.ts'
-import { conflictFactsOf, readConflictGround } from './permit-conflicts-facts.server.ts'
+import { conflictFactsOf, limitsOf, readConflictGround } from './permit-conflicts-facts.server.ts'
 import { writeRecord } from './record.server.ts'
 import { signAct, useSignedAct } from './signature.server.ts'
 
@@ -95,6 +97,16 @@ export async function ruleOnConflict(
       signedActId: act.id,
     })
   })
+}
+
+/** Metres of tunnel that nobody enters beyond both ends of a permit's segments; 0 where it does not get hot enough. */
+export async function readExclusion(
+  db: DbOrTx,
+  { content }: PermitRow,
+  now: Date,
+): Promise<{ westM: number; eastM: number }> {
+  const limits = limitsOf(await listLimits(db, now))
+  return needsExclusion(content, limits) ? exclusionReach(content, limits) : { westM: 0, eastM: 0 }
 }
 
 function existing(permit: PermitRow | null, number: string): PermitRow {

@@ -27,6 +27,7 @@ import { COMPETENCE_LABELS, type CompetenceKind, type PermitState } from '../dom
 import { PERMIT_RULES } from '../domain/permits.ts'
 import type { SegmentState } from '../domain/segment-states.ts'
 import { type PointLine, readPointTable } from './isolation-points.server.ts'
+import { readExclusion } from './permit-conflicts.server.ts'
 import { officersApart, permitActor, readPermitFacts } from './permit-facts.server.ts'
 import { readHazards } from './permit-hazards.server.ts'
 import { readTestTable, type TestLine } from './permit-tests.server.ts'
@@ -76,6 +77,8 @@ export interface PermitPageData {
   stages: PermitStage[]
   checklist: Checklist | null
   conflicts: ConflictFact[]
+  /** Metres of tunnel that nobody enters beyond both ends. */
+  exclusion: { westM: number; eastM: number }
   hazards: HazardView[]
   heating: HeatingFact
   points: PointLine[]
@@ -138,6 +141,7 @@ export async function readPermitPage(
     stages: permitStages(state, ways),
     checklist: permitChecklist(facts, now),
     conflicts: [...facts.conflicts],
+    exclusion: await readExclusion(db, permit, now),
     hazards,
     heating: facts.heating,
     points,

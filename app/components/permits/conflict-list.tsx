@@ -2,7 +2,6 @@
 import { Form, useNavigation } from 'react-router'
 import type { ConflictEffect, ConflictFact, ConflictRule } from '#app/domain/permit-facts.ts'
 import type { ActionFailure } from '../forms/failure.ts'
-import { FormFailure } from '../forms/form-failure.tsx'
 import { Button } from '../ui/button.tsx'
 import { TextAreaField, TextField } from '../ui/field.tsx'
 import { Instant } from '../ui/instant.tsx'
@@ -37,8 +36,8 @@ export function markedConflicts(conflicts: readonly ConflictFact[]): MarkedStret
 }
 
 /**
- * @param ruling given where the reader may rule: the permit's revision, and why not where something forbids it
- * @param failure a refused form of this page; shown at the conflict that it was for
+ * @param ruling given where the reader may rule: the permit's revision. Whoever may not rule on this one is told so
+ * @param failure a refused form of this page, whose message stands above it; its fields are marked at their conflict
  */
 export function ConflictList({
   conflicts,
@@ -46,7 +45,7 @@ export function ConflictList({
   failure,
 }: {
   conflicts: readonly ConflictFact[]
-  ruling: { revision: number; whyNot: string | null } | null
+  ruling: { revision: number } | null
   failure: ActionFailure | undefined
 }) {
   const refused = failure?.typed?.act === 'rule' ? failure : undefined
@@ -54,13 +53,8 @@ export function ConflictList({
   return (
     <>
       {/* The conflict that was ruled on may be gone by now; what was typed must not go with it. */}
-      {refused !== undefined && !placed && (
-        <>
-          <FormFailure failure={refused} />
-          {refused.typed?.text !== undefined && refused.typed.text !== '' && (
-            <p className="mb-3 whitespace-pre-line">You had written: {refused.typed.text}</p>
-          )}
-        </>
+      {refused !== undefined && !placed && (refused.typed?.text ?? '') !== '' && (
+        <p className="mb-3 whitespace-pre-line">You had written: {refused.typed?.text}</p>
       )}
       {conflicts.length === 0 && (
         <p className="py-1 text-ink-2">None was found among permits, works, power, people and calendar.</p>
@@ -94,7 +88,7 @@ function Conflict({
   failure,
 }: {
   conflict: ConflictFact
-  ruling: { revision: number; whyNot: string | null } | null
+  ruling: { revision: number } | null
   failure: ActionFailure | undefined
 }) {
   const { rule, effect, text, wayOut, key } = conflict
@@ -117,16 +111,12 @@ function Conflict({
       )}
       {effect === 'ruling' && ruling !== null && (
         <div className="mt-2 print:hidden">
-          {ruling.whyNot === null ? (
-            <details open={failure !== undefined}>
-              <summary className="link inline-block cursor-pointer py-1.5">
-                {conflict.ruling === null ? 'Rule on it' : 'Rule on it anew'}
-              </summary>
-              <RulingForm conflictKey={key} revision={ruling.revision} failure={failure} />
-            </details>
-          ) : (
-            <p className="text-sm text-ink-2">{ruling.whyNot}</p>
-          )}
+          <details open={failure !== undefined}>
+            <summary className="link inline-block cursor-pointer py-1.5">
+              {conflict.ruling === null ? 'Rule on it' : 'Rule on it anew'}
+            </summary>
+            <RulingForm conflictKey={key} revision={ruling.revision} failure={failure} />
+          </details>
         </div>
       )}
     </div>
@@ -146,7 +136,6 @@ function RulingForm({
   const { typed, fields = {} } = failure ?? {}
   return (
     <Form method="post" className="mt-2 max-w-xl">
-      <FormFailure failure={failure} />
       <input type="hidden" name="act" value="rule" />
       <input type="hidden" name="key" value={conflictKey} />
       <input type="hidden" name="revision" value={revision} />

@@ -10,6 +10,7 @@ import { Instant } from '../ui/instant.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
 import { ActForm } from './act-form.tsx'
 import { ACT_WORDS } from './act-words.ts'
+import { ConflictsPanel } from './conflicts-panel.tsx'
 import { DangerPanel } from './danger-panel.tsx'
 import { HazardList } from './hazard-list.tsx'
 import {
@@ -76,6 +77,7 @@ export function PermitPage(props: PermitPageProps) {
           <div id="cautions" className="scroll-mt-4">
             <HazardList hazards={props.hazards} />
           </div>
+          <ConflictsPanel {...props} />
           <Panel
             title="Isolation points"
             id="isolation"
@@ -100,6 +102,7 @@ function OnThisPage() {
     <nav aria-label="Parts of this permit" className="mb-2 flex flex-wrap gap-x-4 text-sm print:hidden">
       {[
         ['#cautions', 'Cautions'],
+        ['#conflicts', 'Conflicts'],
         ['#isolation', 'Isolation points'],
         ['#tests', 'Tests'],
         ['#protection', 'Protection and rescue'],
