@@ -5,10 +5,12 @@
 import type { DbOrTx } from '../db/client.server.ts'
 import {
   type BayClosureRow,
+  findMeter,
   insertClosure,
   listOpenClosures,
   lockOpenClosures,
   lockOpenEventsAt,
+  releaseReadingsSince,
 } from '../db/queries/bay-closures.server.ts'
 import { findSegmentById } from '../db/queries/heating.server.ts'
 import { insertSafetyEvent, lockSegment } from '../db/queries/safety-events.server.ts'
@@ -21,11 +23,15 @@ import {
   RELEASE_PERCENT,
 } from '../domain/oxygen.ts'
 import { WHAT_TO_DO } from '../domain/safety-events.ts'
+import { ReleaseReadingsSchema } from '../domain/schemas/bay.ts'
 import { writeRecord } from './record.server.ts'
 import { instantWriter } from './site.server.ts'
 import { adoptedValue } from './thresholds.server.ts'
 
 export type { BayClosureRow }
+
+/** A bad reading of long ago says nothing about the air now: it is kept, and closes nothing (our own rule). */
+const OLD_MS = 2 * 86_400_000
 
 /** Subject of the record's lines about readings of oxygen. */
 export const OXYGEN_SUBJECT = 'oxygen-reading'
@@ -62,19 +68,21 @@ export interface OxygenReport {
   place?: string
   instrument?: string
   tester?: string
-  /** Why it does not count for a release; left out where it does. */
+  /** Why it does not count for a release, where the caller knows; otherwise the register is asked. */
   doubt?: string
 }
 
 export interface OxygenOutcome {
   answer: OxygenAnswer
+  /** Why it does not count for a release; empty where it does. */
+  doubt: string
   /** Whether the stretch is closed now, by this reading or an earlier one. */
   closed: boolean
 }
 
 /**
  * Writes a reading of oxygen down, in the transaction that has it. A bad one raises an event and closes the segment's
- * stretch, if it is not closed already.
+ * stretch, if it is not closed already; not one that newer readings of a release have overtaken, nor one of days ago.
  *
  * @param now when it is written down; the reading's own time when left out
  */
@@ -88,6 +96,8 @@ export async function reportOxygen(
   if (segment === null) throw new Error(`There is no segment with the id ${report.segmentId}`)
   const limits = await readOxygenLimits(inside, now)
   const answer = judgeOxygen(report.percent, limits)
+  const when = await instantWriter(inside)
+  const doubt = report.doubt ?? (await doubtOf(inside, report, when))
   await writeRecord(inside, {
     at: now,
     actor: report.actor,
@@ -100,16 +110,18 @@ export async function reportOxygen(
       place: report.place ?? '',
       instrument: report.instrument ?? '',
       tester: report.tester ?? report.actor.name,
-      doubt: report.doubt ?? '',
+      doubt,
       text: report.text,
     },
   })
   const stretch = { lineId: segment.lineId, fromM: segment.startM, toM: segment.endM }
   const open = await lockOpenClosures(inside, stretch)
-  if (answer === 'good') return { answer, closed: open.length > 0 }
-  const eventId = await raise(inside, report, { segment, answer, limits, now })
+  const stale =
+    now.getTime() - report.at.getTime() > OLD_MS || (await knownBefore(inside, stretch, report.at))
+  if (answer === 'good' || stale) return { answer, doubt, closed: open.length > 0 }
+  const eventId = await raise(inside, report, { segment, answer, limits, now, when })
   if (open.some((closure) => closure.fromM <= segment.startM && closure.toM >= segment.endM)) {
-    return { answer, closed: true }
+    return { answer, doubt, closed: true }
   }
   await insertClosure(inside, {
     ...stretch,
@@ -118,18 +130,46 @@ export async function reportOxygen(
     closedAt: report.at,
     closedBy: report.actor.personId,
   })
-  return { answer, closed: true }
+  return { answer, doubt, closed: true }
+}
+
+/** Whether a release since rested on readings that are newer than one of this instant. */
+async function knownBefore(
+  inside: DbOrTx,
+  stretch: { lineId: number; fromM: number; toM: number },
+  at: Date,
+): Promise<boolean> {
+  const runs = await releaseReadingsSince(inside, stretch, at)
+  return runs.some((run) => ReleaseReadingsSchema.parse(run).some((reading) => reading.at > at))
+}
+
+/** What an instrument's word is worth for a release. A bad reading is taken seriously whatever it came from. */
+async function doubtOf(
+  inside: DbOrTx,
+  { instrument = '', at }: OxygenReport,
+  when: (at: Date) => string,
+): Promise<string> {
+  if (instrument === '') return 'No instrument is named.'
+  const meter = await findMeter(inside, instrument)
+  if (meter === null) return `The register knows no instrument “${instrument}”.`
+  if (meter.calibrationDue === null || meter.calibrationDue > at) return ''
+  return `The calibration of ${meter.name} was due ${when(meter.calibrationDue)}.`
 }
 
 async function raise(
   inside: DbOrTx,
   report: OxygenReport,
-  of: { segment: { id: number; tag: string }; answer: 'low' | 'high'; limits: OxygenLimits; now: Date },
+  of: {
+    segment: { id: number; tag: string }
+    answer: 'low' | 'high'
+    limits: OxygenLimits
+    now: Date
+    when: (at: Date) => string
+  },
 ): Promise<number> {
   const kind = of.answer === 'low' ? 'low-oxygen' : 'high-oxygen'
   const standing = (await lockOpenEventsAt(inside, of.segment.id, [kind]))[0]
   if (standing !== undefined) return standing.id
-  const when = await instantWriter(inside)
   const limit =
     of.answer === 'low' ? `below ${percentText(of.limits.low)}` : `above ${percentText(of.limits.high)}`
   const basis = of.limits.set ? '' : ' (published; not set by site)'
@@ -140,7 +180,7 @@ async function raise(
     occurrenceKey: `${kind}:${of.segment.tag}:${report.at.toISOString()}`,
     startedAt: report.at,
     noticedAt: of.now,
-    text: `${percentText(report.percent)} oxygen at ${of.segment.tag} at ${when(report.at)}, ${limit}${basis}. ${report.text}. ${WHAT_TO_DO[kind]}`.slice(
+    text: `${percentText(report.percent)} oxygen at ${of.segment.tag} at ${of.when(report.at)}, ${limit}${basis}. ${report.text}. ${WHAT_TO_DO[kind]}`.slice(
       0,
       1000,
     ),

@@ -128,7 +128,6 @@ export async function typeOxygen(
     throw fieldFault({ segment: `The register has no segment ${form.segment}. Choose one from the list.` })
   }
   const meter = await findMeter(db, form.instrument)
-  const doubt = doubtOf(meter, form, when)
   const tester = form.tester === '' ? actor.name : form.tester
   const outcome = await tx(db, (inside) =>
     reportOxygen(
@@ -144,7 +143,6 @@ export async function typeOxygen(
         place: form.place,
         instrument: meter?.name ?? form.instrument,
         tester,
-        doubt,
       },
       now,
     ),
@@ -154,21 +152,11 @@ export async function typeOxygen(
   if (outcome.answer === 'good') {
     return {
       closed: outcome.closed,
-      text: `${said}${closed}${doubt === '' ? '' : ` It does not count for a release: ${doubt}`}`,
+      text: `${said}${closed}${outcome.doubt === '' ? '' : ` It does not count for a release: ${outcome.doubt}`}`,
     }
   }
   const kind = outcome.answer === 'low' ? 'low-oxygen' : 'high-oxygen'
-  return { closed: true, text: `${said} ${WHAT_TO_DO[kind]}` }
-}
-
-function doubtOf(
-  meter: { name: string; calibrationDue: Date | null } | null,
-  form: OxygenReadingForm,
-  when: (at: Date) => string,
-): string {
-  if (meter === null) return `The register knows no instrument “${form.instrument}”.`
-  if (meter.calibrationDue === null || meter.calibrationDue > form.at) return ''
-  return `The calibration of ${meter.name} was due ${when(meter.calibrationDue)}.`
+  return { closed: outcome.closed, text: `${said}${closed} ${WHAT_TO_DO[kind]}` }
 }
 
 /**

@@ -40,11 +40,13 @@ const PERHAPS: readonly PermitState[] = ['requested', 'approved', 'handed-back']
  * What is known about the heating of segments that are heated as one. Off is said only where it is known for all.
  *
  * @param segmentTags tags of the register; those it does not know count as segments nobody has said anything about
+ * @param formerly a set that fed them until their permit ended; it still counts while nobody else has it
  */
 export async function readHeating(
   db: DbOrTx,
   segmentTags: readonly string[],
   now: Date,
+  formerly: string | null = null,
 ): Promise<HeatingFact> {
   const [when, segments] = await Promise.all([instantWriter(db), findSegments(db, segmentTags)])
   const statements = await lastHeatingStatements(
@@ -52,7 +54,7 @@ export async function readHeating(
     segments.map(({ id }) => id),
     now,
   )
-  const tags = await suppliesOf(db, segments, statements, now)
+  const tags = await suppliesOf(db, segments, { statements, formerly }, now)
   const supplies = await readSupplies(db, tags, now, when)
   return judgeHeating({ segments: segmentTags, supplies, statements }, now, when)
 }
@@ -61,7 +63,7 @@ export async function readHeating(
 async function suppliesOf(
   db: DbOrTx,
   segments: readonly { id: number; tag: string }[],
-  statements: readonly StatementRow[],
+  known: { statements: readonly StatementRow[]; formerly: string | null },
   now: Date,
 ): Promise<string[]> {
   const permits = await listPermits(db, { states: [...CONNECTED, ...PERHAPS] })
@@ -74,10 +76,11 @@ async function suppliesOf(
         : [],
     )
   const elsewhere = named(CONNECTED, false)
-  const said = statements.flatMap((one) => (one.on && one.supply !== null ? [one.supply] : []))
+  const said = known.statements.flatMap((one) => (one.on && one.supply !== null ? [one.supply] : []))
   const certain = [...named(CONNECTED, true), ...said]
   if (certain.length > 0) return [...new Set(certain)]
   const perhaps = [...named(PERHAPS, true), ...(await plannedSupplies(db, segments, now))]
+  if (known.formerly !== null) perhaps.push(known.formerly)
   return [...new Set(perhaps.filter((tag) => !elsewhere.includes(tag)))]
 }
 

@@ -59,10 +59,15 @@ export async function noteDangers(inside: DbOrTx, number: string, now: Date): Pr
     stateSince: due?.at ?? (await stateBegan(inside, permit.id)) ?? permit.createdAt,
     revalidationMissed: currentUntil !== null && windowTo !== null && currentUntil < windowTo,
     coveredByOther: await coveredByOther(inside, permit, state, now),
-    heating: await readHeating(inside, permit.content.segments, now),
+    heating: await readHeating(inside, permit.content.segments, now, formerSupply(permit)),
     tests: state === 'issued' ? await readTests(inside, permit, now) : [],
   }
   await settle(inside, { permitId: permit.id }, segments[0]?.id ?? null, facts, now)
+}
+
+/** The set of a permit that was live and has ended: what it began has to be seen to its end. */
+function formerSupply({ state, currentUntil, content }: PermitRow): string | null {
+  return ENDED_PERMIT_STATES.includes(state) && currentUntil !== null ? content.supply : null
 }
 
 /** Whether other permits answer for every segment of this one: they are live, or have an event of their own. */

@@ -26,6 +26,7 @@ import { type Actor, demand } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
 import { MARKS, qualityCode } from '../domain/readings.ts'
 import { channelKey } from '../domain/register.ts'
+import { WHAT_TO_DO } from '../domain/safety-events.ts'
 import {
   outsideInstrument,
   readTypedValue,
@@ -35,6 +36,7 @@ import {
   type TypedValue,
   valueText,
 } from '../domain/schemas/typed-reading.ts'
+import { reportOxygen } from './bay-closures.server.ts'
 import { siteMinute } from './intake-reading.server.ts'
 import { writeRecord } from './record.server.ts'
 import { fieldFault } from './register-values.server.ts'
@@ -128,14 +130,44 @@ export async function typeReading(
     const outside = outsideInstrument(read.typed.value, position.quantity, instrument.known)
     if (outside !== null) throw fieldFault({ value: outside })
   }
-  const stored = await tx(db, (inside) =>
-    store(inside, actor, now, { form, position, instrument, typed: read.typed }),
-  )
+  const one = { form, position, instrument, typed: read.typed }
+  const { stored, warning } = await tx(db, async (inside) => {
+    const done = await store(inside, actor, now, one)
+    return { stored: done, warning: done === 'held' ? '' : await judgeAir(inside, actor, now, segment, one) }
+  })
   const what = `${position.tag} at ${when}: ${shownAs(read.typed, position.quantity, form)}`
   if (stored === 'held') return `${what} was there already. Nothing was added.`
   if (stored === 'conflict')
-    return `${what}, written down beside a different value of the same minute. Both are marked.`
-  return `${what}, written down.`
+    return `${what}, written down beside a different value of the same minute. Both are marked.${warning}`
+  return `${what}, written down.${warning}`
+}
+
+/** A reading of oxygen says whether people may be there. @returns what to do, or nothing */
+async function judgeAir(
+  inside: DbOrTx,
+  actor: Actor,
+  now: Date,
+  segment: TypedSegment,
+  { form, position, instrument, typed }: TypedOne,
+): Promise<string> {
+  if (position.quantity !== 'oxygen' || typed.value === null) return ''
+  const { answer } = await reportOxygen(
+    inside,
+    {
+      lineId: segment.lineId,
+      segmentId: segment.id,
+      percent: typed.value,
+      at: form.at,
+      actor,
+      permitId: null,
+      text: `typed at ${position.tag} from ${instrument.text}`,
+      place: position.tag,
+      instrument: instrument.text,
+    },
+    now,
+  )
+  if (answer === 'good') return ''
+  return ` ${WHAT_TO_DO[answer === 'low' ? 'low-oxygen' : 'high-oxygen']}`
 }
 
 function refuseInstant(at: Date, now: Date, when: string, present: string): void {
@@ -176,11 +208,18 @@ async function instrumentOf(
   })
 }
 
+interface TypedOne {
+  form: TypedReadingForm
+  position: TypedPosition & { quantity: TypedQuantity }
+  instrument: NamedInstrument
+  typed: TypedValue
+}
+
 async function store(
   inside: DbOrTx,
   actor: Actor,
   now: Date,
-  one: { form: TypedReadingForm; position: TypedPosition; instrument: NamedInstrument; typed: TypedValue },
+  one: TypedOne,
 ): Promise<'stored' | 'held' | 'conflict'> {
   const { form, position, instrument, typed } = one
   // The lock lets two people, or one who pressed twice, come one after the other.

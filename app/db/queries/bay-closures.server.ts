@@ -1,4 +1,4 @@
-import { and, asc, desc, eq, gt, inArray, isNotNull, isNull, lt } from 'drizzle-orm'
+import { and, asc, desc, eq, gt, gte, inArray, isNotNull, isNull, lt } from 'drizzle-orm'
 import { alias } from 'drizzle-orm/mysql-core'
 import type { SafetyEventKind } from '../../domain/permit-words.ts'
 import type { DbOrTx } from '../client.server.ts'
@@ -70,6 +70,27 @@ export async function lockOpenClosures(
       ),
     )
     .for('update')
+}
+
+/** The readings that releases of a stretch at or after an instant rested on, as they were kept. */
+export async function releaseReadingsSince(
+  tx: DbOrTx,
+  on: { lineId: number; fromM: number; toM: number },
+  at: Date,
+): Promise<unknown[]> {
+  const rows = await tx
+    .select({ readings: bayClosure.releaseReadings })
+    .from(bayClosure)
+    .where(
+      and(
+        gte(bayClosure.releasedAt, at),
+        eq(bayClosure.lineId, on.lineId),
+        lt(bayClosure.fromM, on.toM),
+        gt(bayClosure.toM, on.fromM),
+      ),
+    )
+    .for('update')
+  return rows.map(({ readings }) => readings)
 }
 
 /** Stretches that have been released, the last first. */

@@ -57,3 +57,6 @@ export const ReadOxygenSchema = z.object({
   tester: z.string(),
   doubt: z.string(),
 })
+
+/** The readings that a release rested on, as they are kept with it. */
+export const ReleaseReadingsSchema = z.array(ReadOxygenSchema.extend({ at: z.coerce.date() }))
