@@ -1,7 +1,7 @@
 /** What the permit form says about itself: what it lacks, what cannot be read, who changed it meanwhile, what is saved. */
 import { useEffect, useRef } from 'react'
 import type { MissingPart } from '#app/domain/permit-facts.ts'
-import { PERMIT_SECTION_LABELS } from '#app/domain/permit-words.ts'
+import { PERMIT_SECTION_LABELS, PERMIT_SECTIONS } from '#app/domain/permit-words.ts'
 import { useSite } from '#app/hooks/use-site.ts'
 import type { PermitFormAnswer } from '#app/services/permit-form.server.ts'
 import { ButtonLink } from '../ui/button.tsx'
@@ -30,7 +30,7 @@ export function FaultList({ message, faults }: { message: string | undefined; fa
   const shown = message !== undefined || faults.length > 0
   useEffect(() => {
     if (shown) ref.current?.focus()
-  }, [shown])
+  }, [shown, message, faults])
   if (!shown) return null
   const placed = faults.filter(({ field }) => field !== 'form')
   const count = new Set(placed.map(({ field }) => field)).size
@@ -51,8 +51,10 @@ export function FaultList({ message, faults }: { message: string | undefined; fa
   )
 }
 
-/** What a request still lacks. */
+/** What a request still lacks. Whoever asked for it goes on from here. */
 export function MissingList({ missing, number }: { missing: readonly MissingPart[]; number: string }) {
+  const ref = useRef<HTMLDivElement>(null)
+  useEffect(() => ref.current?.focus(), [])
   if (missing.length === 0) {
     return (
       <Notice announce="status" lead="Nothing is missing. ">
@@ -63,19 +65,28 @@ export function MissingList({ missing, number }: { missing: readonly MissingPart
       </Notice>
     )
   }
+  const sections = PERMIT_SECTIONS.filter((section) => missing.some((part) => part.section === section))
   return (
-    <div role="status" className="mb-4 border-l-4 border-warn bg-warn-soft px-3 py-2">
+    <div ref={ref} tabIndex={-1} className="mb-4 border-l-4 border-warn bg-warn-soft px-3 py-2">
       <p className="font-medium">
-        Saved. {missing.length === 1 ? 'One thing is' : `${missing.length} things are`} still missing for a
-        request:
+        {missing.length === 1 ? 'One thing is' : `${missing.length} things are`} still missing for a request:
       </p>
-      <ul className="list-disc pl-5">
-        {missing.map(({ section, field, text }) => (
-          <li key={`${field} ${text}`}>
-            {PERMIT_SECTION_LABELS[section]}: <FieldLink field={field}>{text}</FieldLink>
-          </li>
+      <div className="lg:columns-2">
+        {sections.map((section) => (
+          <div key={section} className="unbroken mt-2">
+            <p className="text-sm font-medium">{PERMIT_SECTION_LABELS[section]}</p>
+            <ul className="list-disc pl-5">
+              {missing
+                .filter((part) => part.section === section)
+                .map(({ field, text }) => (
+                  <li key={`${field} ${text}`}>
+                    <FieldLink field={field}>{text}</FieldLink>
+                  </li>
+                ))}
+            </ul>
+          </div>
         ))}
-      </ul>
+      </div>
     </div>
   )
 }

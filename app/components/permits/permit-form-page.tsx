@@ -4,6 +4,7 @@ import { useEffect, useMemo, useRef, useState } from 'react'
 import { FormProvider, useForm } from 'react-hook-form'
 import { Link, useNavigate } from 'react-router'
 import type { z } from 'zod'
+import type { FieldErrors } from '#app/domain/errors.ts'
 import type { PermitContent } from '#app/domain/permit-content.ts'
 import type { MissingPart } from '#app/domain/permit-facts.ts'
 import type { PermitFormValues } from '#app/domain/permit-form-values.ts'
@@ -126,12 +127,10 @@ function OpenForm(props: PermitFormPageProps) {
   }
 
   const refused = answer?.kind === 'refused' ? answer : undefined
-  const shownFaults: readonly Fault[] =
-    faults.length > 0
-      ? faults
-      : Object.entries(refused?.fields ?? {}).flatMap(([field, texts]) =>
-          texts.map((text) => ({ field, text })),
-        )
+  const shownFaults = useMemo(
+    () => (faults.length > 0 ? faults : faultsOf(refused?.fields ?? {})),
+    [faults, refused],
+  )
   return (
     <FormProvider {...form}>
       <PermitFieldsProvider value={{ values: start, errors: refused?.fields ?? {} }}>
@@ -192,6 +191,12 @@ function OpenForm(props: PermitFormPageProps) {
                   />
                 </Panel>
               )}
+              {mode === 'free' && (
+                // In the bar there is no room for it on a telephone.
+                <Button name="intent" value="request" kind="primary" className="mb-4 md:hidden">
+                  Save and go on to request
+                </Button>
+              )}
               <div className="sticky bottom-14 z-10 -mx-1 flex flex-wrap items-center justify-between gap-x-4 gap-y-2 border-t bg-paper px-1 py-2.5 md:bottom-0 print:hidden">
                 <SaveWords status={saving.status} asTyped={mode === 'free'} />
                 <div className="flex flex-wrap gap-2">
@@ -203,7 +208,7 @@ function OpenForm(props: PermitFormPageProps) {
                       <Button name="intent" value="check">
                         Save and check
                       </Button>
-                      <Button name="intent" value="request" kind="primary">
+                      <Button name="intent" value="request" kind="primary" className="max-md:hidden">
                         Save and go on to request
                       </Button>
                     </>
@@ -220,6 +225,10 @@ function OpenForm(props: PermitFormPageProps) {
       </PermitFieldsProvider>
     </FormProvider>
   )
+}
+
+function faultsOf(fields: FieldErrors): Fault[] {
+  return Object.entries(fields).flatMap(([field, texts]) => texts.map((text) => ({ field, text })))
 }
 
 /** Text of an earlier visit that was never saved; looked for once the page is alive, for the server cannot know of it. */
@@ -278,7 +287,7 @@ function SectionList({ missing }: { missing: readonly MissingPart[] }) {
             <li key={section}>
               <a
                 href={`#section-${section}`}
-                className="flex min-h-10 items-center justify-between gap-2 rounded-sm px-1 hover:bg-rule-2 pointer-coarse:min-h-11"
+                className="flex min-h-10 items-center justify-between gap-2 rounded-sm px-1 py-1 hover:bg-rule-2 pointer-coarse:min-h-11"
               >
                 <span>
                   {index + 1}. {PERMIT_SECTION_LABELS[section]}

@@ -173,7 +173,12 @@ export function PeopleFields({
           hint="Named now, so that a shift can be handed over to them. At most six."
           options={personOptions(people, 'permit-holder', zone)}
         />
-        <Boxes name="crewIds" label="Crew" options={personOptions(people, null, zone)} />
+        <Boxes
+          name="crewIds"
+          label="Crew"
+          hint="Everybody else who works there."
+          options={personOptions(people, null, zone)}
+        />
       </div>
       <div className="grid gap-x-4 sm:grid-cols-3">
         <Choice
