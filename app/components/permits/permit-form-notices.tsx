@@ -27,11 +27,10 @@ function FieldLink({ field, children }: { field: string; children: React.ReactNo
 /** What could not be saved and why, with a way to each field. It takes the focus when it appears. */
 export function FaultList({ message, faults }: { message: string | undefined; faults: readonly Fault[] }) {
   const ref = useRef<HTMLDivElement>(null)
-  const shown = message !== undefined || faults.length > 0
   useEffect(() => {
-    if (shown) ref.current?.focus()
-  }, [shown, message, faults])
-  if (!shown) return null
+    if (message !== undefined || faults.length > 0) ref.current?.focus()
+  }, [message, faults])
+  if (message === undefined && faults.length === 0) return null
   const placed = faults.filter(({ field }) => field !== 'form')
   const count = new Set(placed.map(({ field }) => field)).size
   return (
