@@ -20,7 +20,7 @@ import type { PermitContent } from '../domain/permit-content.ts'
 import { type PermitDifference, type PermitWording, permitDifferences } from '../domain/permit-differences.ts'
 import type { ConflictFact, HeatingFact, PermitActor, PermitFacts } from '../domain/permit-facts.ts'
 import { OFFERED_ACTS, type OfferedAct, offeredReasons } from '../domain/permit-offers.ts'
-import { asUninvolved, hasApproved, namedHolders } from '../domain/permit-people.ts'
+import { hasApproved, namedHolders } from '../domain/permit-people.ts'
 import { type PermitStage, permitStages } from '../domain/permit-progress.ts'
 import { permitStory, type StoryEvent } from '../domain/permit-story.ts'
 import { COMPETENCE_LABELS, type CompetenceKind, type PermitState } from '../domain/permit-words.ts'
@@ -77,10 +77,6 @@ export interface PermitPageData {
   stages: PermitStage[]
   checklist: Checklist | null
   conflicts: ConflictFact[]
-  /** Its segments with what is kept clear on both sides, for the drawing of the tube. */
-  heated: { tag: string; line: string; fromM: number; toM: number; westM: number; eastM: number }[]
-  /** Why this reader may not rule on conflicts; null for whoever may. */
-  mayNotRule: string | null
   /** Metres of tunnel that nobody enters beyond both ends. */
   exclusion: { westM: number; eastM: number }
   hazards: HazardView[]
@@ -145,17 +141,6 @@ export async function readPermitPage(
     stages: permitStages(state, ways),
     checklist: permitChecklist(facts, now),
     conflicts: [...facts.conflicts],
-    heated: segments
-      .filter(({ tag }) => permit.content.segments.includes(tag))
-      .map(({ tag, lineCode, startM, endM }) => ({
-        tag,
-        line: lineCode,
-        fromM: startM,
-        toM: endM,
-        westM: permit.content.exclusionWestM ?? 0,
-        eastM: permit.content.exclusionEastM ?? 0,
-      })),
-    mayNotRule: may(actor, 'permit:approve') ? partsOf(facts, me, now) : null,
     exclusion: await readExclusion(db, permit, now),
     hazards,
     heating: facts.heating,
@@ -227,12 +212,6 @@ function recentLines(acts: readonly PermitActRow[]): { text: string; at: Date }[
   return permitStory(events)
     .map(({ text, at }) => ({ text, at }))
     .reverse()
-}
-
-/** What part this person has had in a permit, which keeps them from deciding on it; null where none. */
-function partsOf(facts: PermitFacts, me: PermitActor, now: Date): string | null {
-  const reasons = asUninvolved(facts, me, now)
-  return reasons.length === 0 ? null : reasons.map(({ text }) => text).join(' ')
 }
 
 function offersOf(facts: PermitFacts, me: PermitActor, now: Date): ActOffer[] {

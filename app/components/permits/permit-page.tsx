@@ -1,7 +1,6 @@
 /** A heated-segment permit on one page: where it stands, what it warns of, what is in its way, and what can be done. */
 import { Link } from 'react-router'
 import type { OfferedAct } from '#app/domain/permit-offers.ts'
-import { ENDED_PERMIT_STATES } from '#app/domain/permit-words.ts'
 import type { PermitPageData } from '#app/services/permit-page.server.ts'
 import { Locator } from '../charts/locator.tsx'
 import type { ActionFailure } from '../forms/failure.ts'
@@ -11,7 +10,6 @@ import { Instant } from '../ui/instant.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
 import { ActForm } from './act-form.tsx'
 import { ACT_WORDS } from './act-words.ts'
-import { ConflictList, markedConflicts } from './conflict-list.tsx'
 import { ConflictsPanel } from './conflicts-panel.tsx'
 import { DangerPanel } from './danger-panel.tsx'
 import { HazardList } from './hazard-list.tsx'
@@ -29,7 +27,6 @@ import { PointsTable } from './points-table.tsx'
 import { StageBar } from './stage-bar.tsx'
 import { StopCard } from './stop-card.tsx'
 import { TestsTable } from './tests-table.tsx'
-import { TubeConflicts } from './tube-conflicts.tsx'
 
 export interface PermitPageProps extends PermitPageData {
   /** The act whose form is asked for by the address. */
@@ -82,7 +79,6 @@ export function PermitPage(props: PermitPageProps) {
           <div id="cautions" className="scroll-mt-4">
             <HazardList hazards={props.hazards} />
           </div>
-          <ConflictsPanel {...props} />
           <Panel
             title="Isolation points"
             id="isolation"
@@ -108,7 +104,6 @@ function OnThisPage() {
       {[
         ['#conflicts', 'Conflicts'],
         ['#cautions', 'Cautions'],
-        ['#conflicts', 'Conflicts'],
         ['#isolation', 'Isolation points'],
         ['#tests', 'Tests'],
         ['#protection', 'Protection and rescue'],
@@ -118,21 +113,6 @@ function OnThisPage() {
         </a>
       ))}
     </nav>
-  )
-}
-
-/** What stands against it from outside: for a permit that has ended there is nothing to compare it with any more. */
-function ConflictsPanel({ state, conflicts, heated, may, mayNotRule, revision, failure }: PermitPageProps) {
-  if (ENDED_PERMIT_STATES.includes(state)) return null
-  return (
-    <Panel title="Conflicts" id="conflicts" className="scroll-mt-4">
-      <TubeConflicts heated={heated} marked={markedConflicts(conflicts)} />
-      <ConflictList
-        conflicts={conflicts}
-        ruling={may.rule ? { revision, whyNot: mayNotRule } : null}
-        failure={failure}
-      />
-    </Panel>
   )
 }
 

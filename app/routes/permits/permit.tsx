@@ -5,11 +5,11 @@ import { getDb } from '#app/db/client.server.ts'
 import { isOfferedAct } from '#app/domain/permit-offers.ts'
 import { rolesHave } from '#app/domain/roles.ts'
 import { type FormAct, permitActSchema } from '#app/domain/schemas/permit-act.ts'
-import { PermitRulingSchema, PermitRulingSchema } from '#app/domain/schemas/permit-ruling.ts'
+import { PermitRulingSchema } from '#app/domain/schemas/permit-ruling.ts'
 import { parseValues, typedOf } from '#app/server/form.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { failure, orRefuse } from '#app/server/respond.server.ts'
-import { ruleOnConflict, ruleOnConflict } from '#app/services/permit-conflicts.server.ts'
+import { ruleOnConflict } from '#app/services/permit-conflicts.server.ts'
 import { readPermitPage, readStopPage } from '#app/services/permit-page.server.ts'
 import { actOnPermit } from '#app/services/permits.server.ts'
 import { getSite } from '#app/services/site.server.ts'
@@ -60,11 +60,6 @@ export async function action({ context, request, params }: Route.ActionArgs) {
     if (typed.act === 'rule') {
       await ruleOnConflict(getDb(), actor, now, params.number, parseValues(PermitRulingSchema, typed))
       return redirectWithNotice(`/permits/${params.number}#conflicts`, 'Ruling signed.')
-    }
-    if (typed.act === 'rule') {
-      const ruling = parseValues(PermitRulingSchema, typed)
-      await ruleOnConflict(getDb(), actor, now, params.number, ruling)
-      return redirectWithNotice(`/permits/${params.number}#conflicts`, 'Ruled and signed.')
     }
     const { timeZone } = await getSite(getDb())
     const form = parseValues(permitActSchema(timeZone), typed)
