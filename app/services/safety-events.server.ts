@@ -196,12 +196,12 @@ export async function readDangersAtSegments(
   return sorted(await listSafetyEvents(db, { segmentIds }))
 }
 
-/** Every open event of the site, the most serious first; and what ended since an instant, the newest first. */
+/** Every open event of the site, the most serious first; and what ended since an instant, if asked, the newest first. */
 export async function readAllDangers(
   db: DbOrTx,
-  since: Date,
+  since?: Date,
 ): Promise<{ open: SafetyEventRow[]; ended: SafetyEventRow[] }> {
-  const rows = await listSafetyEvents(db, { since })
+  const rows = await listSafetyEvents(db, since === undefined ? {} : { since })
   return {
     open: sorted(rows.filter(({ endedAt }) => endedAt === null)),
     ended: rows.filter(({ endedAt }) => endedAt !== null),

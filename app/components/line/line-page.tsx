@@ -1,9 +1,11 @@
 /** The facility at a glance: figures, the tube to scale with the pressure along it, and every segment in a row. */
 import { Link } from 'react-router'
 import { LineStrip } from '#app/components/charts/line-strip.tsx'
+import { SafetyNotices } from '#app/components/permits/safety-notices.tsx'
 import { Instant } from '#app/components/ui/instant.tsx'
 import { PageHead, Panel } from '#app/components/ui/panel.tsx'
 import type { LinePageData, Trend } from '#app/services/line-page.server.ts'
+import type { SafetyNoticesData } from '#app/services/safety-notices.server.ts'
 import { MorningFigures } from './morning-figures.tsx'
 import { readShown, trendOf } from './segment-rows.ts'
 import { SegmentsTable, ShownFilter } from './segments-table.tsx'
@@ -20,7 +22,14 @@ export function LinePage({
   at,
   dayBefore,
   show,
-}: LinePageData & { siteName: string; trends: Trend[]; dayBefore: boolean; show: string }) {
+  safety,
+}: LinePageData & {
+  siteName: string
+  trends: Trend[]
+  dayBefore: boolean
+  show: string
+  safety: SafetyNoticesData
+}) {
   const shown = readShown(show)
   return (
     <>
@@ -33,6 +42,7 @@ export function LinePage({
           </>
         )}
       </PageHead>
+      <SafetyNotices {...safety} />
       <MorningFigures
         figures={figures}
         worst={worst}

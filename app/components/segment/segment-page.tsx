@@ -2,6 +2,8 @@
 import { Link } from 'react-router'
 import { Locator } from '#app/components/charts/locator.tsx'
 import { IsolationTestsPanel } from '#app/components/isolation/tests-panel.tsx'
+import { ClosedStretches } from '#app/components/permits/closed-stretches.tsx'
+import { DangerPanel } from '#app/components/permits/danger-panel.tsx'
 import { PermitsPanel } from '#app/components/permits/permits-panel.tsx'
 import { ButtonLink } from '#app/components/ui/button.tsx'
 import { Instant } from '#app/components/ui/instant.tsx'
@@ -10,6 +12,7 @@ import { PageHead, Panel } from '#app/components/ui/panel.tsx'
 import { StateMark } from '#app/components/ui/state-mark.tsx'
 import type { AskedPressure } from '#app/domain/schemas/asked-pressure.ts'
 import { SEGMENT_STATES } from '#app/domain/segment-states.ts'
+import type { SafetyNoticesData } from '#app/services/safety-notices.server.ts'
 import type { SegmentPageData } from '#app/services/segment-page.server.ts'
 import { BakePanel } from './bake-panel.tsx'
 import { ForecastPanel } from './forecast-panel.tsx'
@@ -23,6 +26,7 @@ export interface SegmentPageProps extends SegmentPageData {
   now: Date
   zone: string
   asked: AskedPressure
+  safety: SafetyNoticesData
   may: {
     setState: boolean
     takeIn: boolean
@@ -30,6 +34,8 @@ export interface SegmentPageProps extends SegmentPageData {
     writeEntry: boolean
     recordTest: boolean
     draftPermit: boolean
+    stateHeating: boolean
+    tolerate: boolean
   }
 }
 
@@ -92,16 +98,24 @@ export function SegmentPage(props: SegmentPageProps) {
       <div className="-mt-2 mb-4">
         <Locator along={props.along} here={tag} />
       </div>
+      <DangerPanel events={props.safety.dangers} mayTolerate={may.tolerate} mayState={may.stateHeating} />
+      <ClosedStretches closures={props.safety.closures} />
       {facts.hot && (
         <Notice tone="heat" lead="This segment is hot. ">
           Touch nothing on the word of a screen: measure the hottest point with a contact probe on site, keep
-          to the permit and to local rules. Ebbline records and advises; it protects nobody.
+          to the permit and to local rules. Ebbline records and advises; it protects nobody.{' '}
+          <Link to={`/segments/${tag}/heating`} className="link">
+            What is known of its heating
+          </Link>
         </Notice>
       )}
       {segment.state === 'vented' && (
         <Notice tone="warn" lead="Vented. ">
           Gas let out of a tube into a tunnel displaces oxygen. Follow the site's oxygen rules and carry a
-          monitor; nothing here replaces it.
+          monitor; nothing here replaces it.{' '}
+          <Link to={`/permits/bays?segment=${tag}`} className="link">
+            Readings of oxygen
+          </Link>
         </Notice>
       )}
       {standing.questions.map(({ tag: gauge, text }) => (

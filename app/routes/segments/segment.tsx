@@ -4,6 +4,7 @@ import { getDb } from '#app/db/client.server.ts'
 import { rolesHave } from '#app/domain/roles.ts'
 import { readAskedPressure } from '#app/domain/schemas/asked-pressure.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
+import { readSafetyNotices } from '#app/services/safety-notices.server.ts'
 import { readSegmentPage } from '#app/services/segment-page.server.ts'
 import { getSite } from '#app/services/site.server.ts'
 import type { Route } from './+types/segment'
@@ -16,15 +17,17 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
   const actor = permitted(context, request, 'facility:view')
   const now = nowOf(context)
   const asked = readAskedPressure(url.searchParams.get('to'))
-  const [page, site] = await Promise.all([
+  const [page, site, safety] = await Promise.all([
     orRefuse(readSegmentPage(getDb(), params.tag, now, asked.pa)),
     getSite(getDb()),
+    readSafetyNotices(getDb(), params.tag),
   ])
   return {
     ...page,
     now,
     zone: site.timeZone,
     asked,
+    safety,
     may: {
       setState: rolesHave(actor.roles, 'segment-state:set'),
       takeIn: rolesHave(actor.roles, 'intake:take-in'),
@@ -32,6 +35,8 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
       writeEntry: rolesHave(actor.roles, 'entry:write'),
       recordTest: rolesHave(actor.roles, 'isolation-test:record'),
       draftPermit: rolesHave(actor.roles, 'permit:draft'),
+      stateHeating: rolesHave(actor.roles, 'heating:state'),
+      tolerate: rolesHave(actor.roles, 'permit:approve'),
     },
   }
 }
