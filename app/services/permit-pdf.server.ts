@@ -66,9 +66,9 @@ function head(setter: PdfSetter, frame: Paper['frame'], sheet: Sheet): void {
   put(setter, frame.standingText, y, BODY, 600, width)
   setter.drawing(frame.qr, LEFT + WIDTH - QR_SIDE, TOP)
   const code = setter.line(frame.code, 11, 600)
-  setter.draw(code, LEFT + WIDTH - QR_SIDE - 8 - code.width, TOP + 4, 11)
+  setter.draw(code, LEFT + WIDTH - QR_SIDE - 12 - code.width, TOP + 4, 11)
   const label = setter.line('Short code', 8, 400)
-  setter.draw(label, LEFT + WIDTH - QR_SIDE - 8 - label.width, TOP + 20, 8)
+  setter.draw(label, LEFT + WIDTH - QR_SIDE - 12 - label.width, TOP + 20, 8)
   if (frame.standing !== null) {
     const top = TOP + HEAD - 4
     setter.doc
