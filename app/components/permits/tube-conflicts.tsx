@@ -203,7 +203,7 @@ function Row({
   const point = one.fromM === one.toM
   return (
     <g>
-      <text x="0" y={y + 11} className="fill-ink text-xs">
+      <text x="0" y={y + 11} className="fill-ink stroke-sheet text-xs" strokeWidth="3" paintOrder="stroke">
         {one.label}, {range(one)}
       </text>
       {point ? (

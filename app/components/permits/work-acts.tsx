@@ -85,62 +85,69 @@ function LimitPanel({
   const sending = useSending()
   const { typed, fields = {} } = failure ?? {}
   const free = suggested(data)
+  const needed = data.clashes.some(standsInTheWay)
   return (
     <Panel title="Limit it" className="print:hidden">
-      <p className="mb-2 text-ink-2">
-        Asked for is {stretchText(asked)}.{' '}
-        {free === null
-          ? 'None of it lies outside.'
-          : `Outside all that is in the way lies ${stretchText(free)}.`}
-      </p>
-      <Form method="post" className="max-w-xl">
-        <FormFailure failure={failure} />
-        <input type="hidden" name="act" value="limit" />
-        <input type="hidden" name="revision" value={data.work.revision} />
-        <div className="grid gap-x-4 sm:grid-cols-2">
+      <details open={needed || failure !== undefined}>
+        <summary className="link inline-block cursor-pointer py-1.5">
+          Leave only a stretch of it, with a barrier
+        </summary>
+        <p className="my-2 text-ink-2">
+          Asked for is {stretchText(asked)}.
+          {needed &&
+            (free === null
+              ? ' None of it lies outside.'
+              : ` Outside all that is in the way lies ${stretchText(free)}.`)}
+        </p>
+        <Form method="post" className="max-w-xl">
+          <FormFailure failure={failure} />
+          <input type="hidden" name="act" value="limit" />
+          <input type="hidden" name="revision" value={data.work.revision} />
+          <div className="grid gap-x-4 sm:grid-cols-2">
+            <TextField
+              name="fromM"
+              label="Only from, m"
+              inputMode="decimal"
+              autoComplete="off"
+              required
+              defaultValue={typed?.fromM ?? ''}
+              errors={fields.fromM}
+            />
+            <TextField
+              name="toM"
+              label="to, m"
+              inputMode="decimal"
+              autoComplete="off"
+              required
+              defaultValue={typed?.toM ?? ''}
+              errors={fields.toM}
+            />
+          </div>
           <TextField
-            name="fromM"
-            label="Only from, m"
-            inputMode="decimal"
-            autoComplete="off"
+            name="barrier"
+            label="Barrier"
+            hint="What stands where, such as a locked mesh door at 760 m."
             required
-            defaultValue={typed?.fromM ?? ''}
-            errors={fields.fromM}
+            maxLength={500}
+            defaultValue={typed?.barrier ?? ''}
+            errors={fields.barrier}
           />
-          <TextField
-            name="toM"
-            label="to, m"
-            inputMode="decimal"
-            autoComplete="off"
+          <TextAreaField
+            name="ruling"
+            label="Ruling in words"
+            rows={3}
             required
-            defaultValue={typed?.toM ?? ''}
-            errors={fields.toM}
+            minLength={10}
+            maxLength={2000}
+            defaultValue={typed?.ruling ?? ''}
+            errors={fields.ruling}
           />
-        </div>
-        <TextField
-          name="barrier"
-          label="Barrier"
-          hint="What stands where, such as a locked mesh door at 760 m."
-          required
-          maxLength={500}
-          defaultValue={typed?.barrier ?? ''}
-          errors={fields.barrier}
-        />
-        <TextAreaField
-          name="ruling"
-          label="Ruling in words"
-          rows={3}
-          required
-          minLength={10}
-          maxLength={2000}
-          defaultValue={typed?.ruling ?? ''}
-          errors={fields.ruling}
-        />
-        <PasswordField failure={failure} />
-        <Button kind="primary" disabled={sending}>
-          {sending ? 'Signing' : 'Sign the limit'}
-        </Button>
-      </Form>
+          <PasswordField failure={failure} />
+          <Button kind="primary" disabled={sending}>
+            {sending ? 'Signing' : 'Sign the limit'}
+          </Button>
+        </Form>
+      </details>
     </Panel>
   )
 }

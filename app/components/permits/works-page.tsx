@@ -41,7 +41,10 @@ const NEAR: Column<WorkInList> = {
   key: 'near',
   head: 'Near heat',
   cell: ({ clashes, stopped }) => {
-    const against = [...new Set(clashes.map(({ permit, rule }) => `${permit ?? 'hot segment'} ${rule}`))]
+    const against = [...new Set(clashes.map(({ permit }) => permit ?? 'hot segment'))].map((who) => {
+      const rules = clashes.filter(({ permit }) => (permit ?? 'hot segment') === who).map(({ rule }) => rule)
+      return `${who}: ${[...new Set(rules)].join(', ')}`
+    })
     if (against.length === 0) return stopped ? <strong className="text-bad">closed bay</strong> : 'no'
     const waits = clashes.some((clash) => standsInTheWay(clash))
     return (
@@ -49,7 +52,7 @@ const NEAR: Column<WorkInList> = {
         <strong className={waits ? 'font-semibold text-bad' : 'font-medium'}>
           {waits ? 'cannot begin' : 'to be known'}
         </strong>
-        <span className="block text-sm text-ink-2">{against.join(', ')}</span>
+        <span className="block text-sm text-ink-2">{against.join('; ')}</span>
       </>
     )
   },

@@ -71,7 +71,7 @@ function endOf({ to }: CompetenceSpan): number {
 function lastMoment(end: Date, zone: string): string {
   if (siteMoment(end.getTime(), zone).minuteOfDay !== 0) return instantText(end, zone)
   const day = siteMoment(end.getTime() - 1, zone).date
-  return `with the day ${day} (${instantText(end, zone)})`
+  return `with the day ${day}, at ${instantText(end, zone)}`
 }
 
 function wayOut(need: NeededCompetence, gap: Date | null, zone: string): string {

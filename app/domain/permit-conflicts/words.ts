@@ -4,6 +4,10 @@ import { PLANNED_WORK_LABELS } from '../permit-words.ts'
 import type { Stretch } from '../tunnel-stretch.ts'
 import type { ConflictFacts, Place, WorkFact } from './facts.ts'
 
+/** Length of the day, and of day and time, in an instant as it is written in a sentence. */
+const DAY_LENGTH = '2026-11-16'.length
+const OFFSET_AT = '2026-11-16 06:00'.length
+
 /** A time from one instant up to another, the end not counted. */
 export interface Span {
   from: Date
@@ -38,9 +42,15 @@ export function stretchText({ fromM, toM }: Pick<Stretch, 'fromM' | 'toM'>): str
   return fromM === toM ? `at ${metres(fromM)} m` : `${metres(fromM)} to ${metres(toM)} m`
 }
 
-/** Such as `2026-11-16 06:00 (UTC+01:00) to 2026-11-25 18:00 (UTC+01:00)`. */
+/**
+ * Such as `2026-11-16 06:00 to 2026-11-25 18:00 (UTC+01:00)`; the day once where it is one day, the offset at both ends
+ * where the clock changes in between.
+ */
 export function spanText({ from, to }: Span, zone: string): string {
-  return `${instantText(from, zone)} to ${instantText(to, zone)}`
+  const [first, last] = [instantText(from, zone), instantText(to, zone)]
+  if (first.slice(OFFSET_AT) !== last.slice(OFFSET_AT)) return `${first} to ${last}`
+  const sameDay = first.slice(0, DAY_LENGTH) === last.slice(0, DAY_LENGTH)
+  return `${first.slice(0, OFFSET_AT)} to ${sameDay ? last.slice(DAY_LENGTH + 1) : last}`
 }
 
 /** Tags in a row: `SG-11`, `SG-11 and SG-12`. */

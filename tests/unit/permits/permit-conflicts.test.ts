@@ -1,6 +1,7 @@
 import { describe, expect, test } from 'vitest'
+import { spanText } from '#app/domain/permit-conflicts/words.ts'
 import { findConflicts } from '#app/domain/permit-conflicts.ts'
-import { at, facts, found, NOW, only, own, permit, work } from './conflict-grounds.ts'
+import { at, facts, found, NOW, only, own, permit, work, ZONE } from './conflict-grounds.ts'
 
 const MINUTE_BEFORE = new Date(at('16 06:00').getTime() - 60_000)
 const MINUTE_AFTER = new Date(at('16 06:00').getTime() + 60_000)
@@ -29,7 +30,7 @@ describe('K1, one segment claimed twice', () => {
       effect: 'block',
       place: { line: 'MAIN', fromM: 600, toM: 750 },
     })
-    expect(k1.text).toContain('2026-11-16 06:00 (UTC+01:00) to 2026-11-25 18:00 (UTC+01:00)')
+    expect(k1.text).toContain('2026-11-16 06:00 to 2026-11-25 18:00 (UTC+01:00)')
     expect(k1.wayOut).toContain('HSP-T-002')
   })
 
@@ -160,4 +161,12 @@ test('words do not change as time goes by, so that a ruling does not become stal
 
 test('a minute before the window the neighbour is still free', () => {
   expect(found({ others: [permit([6], { from: at('10 06:00'), to: MINUTE_BEFORE })] })).toEqual([])
+})
+
+test('a time is written as shortly as it stays plain: one day once, both offsets over a clock change', () => {
+  expect(spanText({ from: at('17 08:00'), to: at('17 12:00') }, ZONE)).toBe(
+    '2026-11-17 08:00 to 12:00 (UTC+01:00)',
+  )
+  const autumn = { from: new Date('2026-10-24T22:30:00Z'), to: new Date('2026-10-25T01:30:00Z') }
+  expect(spanText(autumn, ZONE)).toBe('2026-10-25 00:30 (UTC+02:00) to 2026-10-25 02:30 (UTC+01:00)')
 })
