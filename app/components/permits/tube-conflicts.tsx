@@ -117,14 +117,17 @@ function Strip({ heated, marked }: { heated: readonly HeatedStretch[]; marked: r
         ))}
         <rect x="0%" y={TUBE_TOP} width="100%" height={TUBE} className="fill-sheet stroke-edge" />
         {heated.map(({ tag, fromM, toM, westM, eastM }) => (
+          <rect
+            key={tag}
+            x={at(fromM - westM)}
+            y={TUBE_TOP}
+            width={wide(fromM - westM, toM + eastM)}
+            height={TUBE}
+            fill={`url(#${id}-exclusion)`}
+          />
+        ))}
+        {heated.map(({ tag, fromM, toM }) => (
           <g key={tag}>
-            <rect
-              x={at(fromM - westM)}
-              y={TUBE_TOP}
-              width={wide(fromM - westM, toM + eastM)}
-              height={TUBE}
-              fill={`url(#${id}-exclusion)`}
-            />
             <rect
               x={at(fromM)}
               y={TUBE_TOP}
@@ -144,9 +147,12 @@ function Strip({ heated, marked }: { heated: readonly HeatedStretch[]; marked: r
             <text x={at(fromM)} y={TUBE_TOP - 9} className="fill-ink-2 text-xs">
               {metres(fromM)}
             </text>
-            <text x={at(toM)} y={TUBE_TOP - 9} textAnchor="end" className="fill-ink-2 text-xs">
-              {metres(toM)}
-            </text>
+            {/* Where the next segment begins, its own beginning says it. */}
+            {!heated.some((next) => next.fromM === toM) && (
+              <text x={at(toM)} y={TUBE_TOP - 9} textAnchor="end" className="fill-ink-2 text-xs">
+                {metres(toM)}
+              </text>
+            )}
           </g>
         ))}
         {[zone.fromM, zone.toM].map((edge, index) => (

@@ -58,19 +58,20 @@ const NEAR: Column<WorkInList> = {
   },
 }
 
+const WHAT: Column<WorkInList> = {
+  key: 'title',
+  head: 'Work',
+  cell: ({ id, title, kind }) => (
+    <>
+      <Link to={`/permits/works/${id}`} className="link font-semibold">
+        {title}
+      </Link>
+      <span className="block text-sm text-ink-2">{PLANNED_WORK_LABELS[kind]}</span>
+    </>
+  ),
+}
+
 const COLUMNS: readonly Column<WorkInList>[] = [
-  {
-    key: 'title',
-    head: 'Work',
-    cell: ({ id, title, kind }) => (
-      <>
-        <Link to={`/permits/works/${id}`} className="link font-semibold">
-          {title}
-        </Link>
-        <span className="block text-sm text-ink-2">{PLANNED_WORK_LABELS[kind]}</span>
-      </>
-    ),
-  },
   { key: 'place', head: 'Where', cell: (work) => <WorkPlace {...work} /> },
   {
     key: 'when',
@@ -118,7 +119,7 @@ export function WorksPage({
       <Panel title="To come and under way">
         <DataTable
           caption="Works to come and under way, those near heat first"
-          columns={[...COLUMNS, NEAR, WHO]}
+          columns={[WHAT, NEAR, ...COLUMNS, WHO]}
           rows={ahead}
           rowKey={({ id }) => id}
           empty="No work is planned. What others do in the tunnel belongs here, so that permits can be held against it."
@@ -127,7 +128,7 @@ export function WorksPage({
       <Panel title="Over">
         <DataTable
           caption="Works that are over, refused or called off"
-          columns={[...COLUMNS, WHO]}
+          columns={[WHAT, ...COLUMNS, WHO]}
           rows={over}
           rowKey={({ id }) => id}
           empty="None yet."
