@@ -32,7 +32,7 @@ beforeAll(async () => {
   await createSegment(db, { lineId, tag: 'SG-05', startM: 600, endM: 750 })
   await createSegment(db, { lineId, tag: 'SG-06', startM: 750, endM: 900 })
   permit = await createPermitRow(db, {
-    state: 'requested',
+    state: 'approved',
     createdBy: engineer.personId,
     requestedBy: engineer.personId,
     content: {
@@ -71,9 +71,18 @@ test('work is planned, shown with what it would meet, not begun, limited and beg
   const page = await send('technician', path)
   expect(page.html).toContain('750 to 760 m')
   expect(page.html).toContain('no entry from')
-  const begin = await send('technician', path, { act: 'start', revision: '1' })
-  // Only asked for so far: nothing is hot, so nothing keeps it from beginning.
-  expect(begin.status).toBe(302)
+  const begin = (revision: string) => send('technician', path, { act: 'start', revision })
+  const refused = await begin('1')
+  expect(refused.status).toBe(422)
+  expect(refused.html).toContain('This work cannot begin')
+  const limit = { act: 'limit', revision: '1', toM: '900', barrier: 'Mesh door, locked', password: PASSWORD }
+  const ruling = 'East of the mesh door only; it stays locked.'
+  const near = await send('safety-officer', path, { ...limit, fromM: '755,5', ruling })
+  expect(near.status).toBe(422)
+  expect(near.html).toContain('755.5 to 760 m')
+  expect(near.html).toContain(ruling)
+  expect((await send('safety-officer', path, { ...limit, fromM: '760', ruling })).status).toBe(302)
+  expect((await begin('2')).status).toBe(302)
   expect((await send('technician', path)).html).toContain('under way')
 })
 
