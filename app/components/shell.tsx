@@ -119,13 +119,13 @@ function Places({ places, home }: { places: readonly Place[]; home: string }) {
         <BrandMark />
         Ebbline
       </Link>
-      <ul className="flex md:flex-col md:gap-0.5">
+      <ul className="flex overflow-x-auto md:flex-col md:gap-0.5 md:overflow-visible">
         {places.map((place) => (
-          <li key={place.to} className="min-w-0 flex-1">
+          <li key={place.to} className="flex-auto">
             <Link
               to={place.to}
               aria-current={isHere(place, pathname) ? 'page' : undefined}
-              className="flex min-h-14 items-center justify-center rounded-md px-1 text-center text-sm text-ink-2 hover:bg-sheet aria-[current]:bg-sheet aria-[current]:font-semibold aria-[current]:text-ink aria-[current]:shadow-[inset_0_3px_0_var(--color-vac)] md:min-h-10 md:justify-start md:px-2.5 md:text-left md:text-base md:aria-[current]:shadow-[inset_3px_0_0_var(--color-vac)] md:pointer-coarse:min-h-11"
+              className="relative flex min-h-14 items-center justify-center rounded-md px-1 text-center text-xs text-ink-2 hover:bg-sheet aria-[current]:bg-sheet aria-[current]:font-semibold aria-[current]:text-ink aria-[current]:shadow-[inset_0_3px_0_var(--color-vac)] md:min-h-10 md:justify-start md:px-2.5 md:text-left md:text-base md:aria-[current]:shadow-[inset_3px_0_0_var(--color-vac)] md:pointer-coarse:min-h-11"
             >
               {place.label}
               {place.waiting !== undefined && place.waiting > 0 && <WaitingCount count={place.waiting} />}
@@ -140,7 +140,7 @@ function Places({ places, home }: { places: readonly Place[]; home: string }) {
 /** A number in a ring; its words are for those who hear it. */
 function WaitingCount({ count }: { count: number }) {
   return (
-    <span className="ml-1 inline-flex min-w-5 justify-center rounded-full border border-edge px-1 text-xs font-semibold text-ink md:ml-auto">
+    <span className="absolute top-1 right-0 inline-flex min-w-5 justify-center rounded-full border border-edge bg-sheet px-1 text-xs font-semibold text-ink md:static md:ml-auto">
       {count}
       <span className="sr-only">{count === 1 ? ' waits for you' : ' wait for you'}</span>
     </span>

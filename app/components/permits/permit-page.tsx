@@ -64,16 +64,13 @@ export function PermitPage(props: PermitPageProps) {
       )}
       <DifferencesPanel {...props} />
       {/* What is in the way comes first on a narrow screen and for those who hear the page; beside the rest on a wide one. */}
-      <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_20.5rem]">
+      <div className="grid items-start gap-x-4.5 lg:grid-cols-[minmax(0,1fr)_20.5rem] lg:grid-rows-[auto_1fr]">
         <div className="min-w-0 lg:col-start-2 lg:row-start-1">
           {checklist !== null && <ChecklistPanel checklist={checklist} />}
           <ValidityPanel {...props} />
           <HeatingPanel {...props} />
-          <TermsPanel {...props} />
-          <PeoplePanel {...props} />
-          <RecentPanel {...props} />
         </div>
-        <div className="min-w-0 lg:col-start-1 lg:row-start-1">
+        <div className="min-w-0 lg:col-start-1 lg:row-span-2 lg:row-start-1">
           <OnThisPage />
           <ConflictsPanel {...props} />
           <div id="cautions" className="scroll-mt-4">
@@ -91,6 +88,11 @@ export function PermitPage(props: PermitPageProps) {
             <TestsTable lines={props.tests} />
           </Panel>
           <ProtectionPanel {...props} />
+        </div>
+        <div className="min-w-0 lg:col-start-2 lg:row-start-2">
+          <TermsPanel {...props} />
+          <PeoplePanel {...props} />
+          <RecentPanel {...props} />
         </div>
       </div>
     </>

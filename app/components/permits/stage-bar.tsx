@@ -16,7 +16,10 @@ const AHEAD: Partial<Record<PermitState, string>> = {
 
 export function StageBar({ stages }: { stages: readonly PermitStage[] }) {
   return (
-    <ol aria-label="Way of this permit" className="mb-4.5 grid gap-y-1 sm:auto-cols-fr sm:grid-flow-col">
+    <ol
+      aria-label="Way of this permit"
+      className="mb-4.5 grid gap-y-1 sm:grid-cols-3 lg:auto-cols-fr lg:grid-flow-col lg:grid-cols-none"
+    >
       {stages.map((stage) => (
         <li
           key={stage.state}
