@@ -28,8 +28,3 @@ export function notYet(what: string): string {
 export function named(segments: readonly { tag: string }[]): string {
   return segments.map(({ tag }) => tag).join(' and ')
 }
-
-/** The highest of several, or null for none. */
-export function highest(values: readonly number[]): number | null {
-  return values.length === 0 ? null : Math.max(...values)
-}
