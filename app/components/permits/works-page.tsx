@@ -28,7 +28,7 @@ export function WorksCrumbs({ here = true }: { here?: boolean }) {
 }
 
 /** Tag and stretch, the line where no segment is named, or that there is no place. */
-export function WorkPlace({ segmentTag, stretch }: Pick<WorkInList, 'segmentTag' | 'stretch'>) {
+function WorkPlace({ segmentTag, stretch }: Pick<WorkInList, 'segmentTag' | 'stretch'>) {
   if (stretch === null) return <>the site as a whole</>
   return (
     <>
