@@ -38,6 +38,8 @@ export function offeredReasons(
   act: OfferedAct,
   now: Date,
 ): string[] | null {
+  // Whoever takes it over signs: its holder has nothing to fill in.
+  if (act === 'hand-over' && facts.permit.holderId === actor.personId) return null
   const reasons = standsInTheWay(facts, actor, act, now)
   const hidden = reasons.some(
     ({ kind, code }) => kind === 'state' || (kind === 'person' && FOR_OTHERS.includes(code)),
