@@ -76,7 +76,7 @@ export interface TakenTest {
 }
 
 /** States in which tests are written down: from the request until the end, whatever the result. */
-export function testsTaken(state: PermitState): boolean {
+function testsTaken(state: PermitState): boolean {
   return ['requested', 'approved', 'issued', 'suspended', 'expired', 'handed-back'].includes(state)
 }
 

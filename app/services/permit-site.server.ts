@@ -45,6 +45,8 @@ export interface SiteHead {
   /** Who is signed in: tablets are shared. */
   actor: { personId: number; name: string }
   dangers: SafetyEventRow[]
+  /** Whether this person may say that heating is on or off. */
+  mayState: boolean
 }
 
 export interface SiteHubData extends SiteHead {
@@ -77,6 +79,7 @@ async function headOf(db: Db, actor: Actor, now: Date, permit: PermitRow): Promi
     zone: site.timeZone,
     actor: { personId: actor.personId, name: actor.name },
     dangers,
+    mayState: may(actor, 'heating:state'),
   }
 }
 

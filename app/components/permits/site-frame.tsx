@@ -5,6 +5,7 @@ import type { SiteHead } from '#app/services/permit-site.server.ts'
 import { Button } from '../ui/button.tsx'
 import { Instant } from '../ui/instant.tsx'
 import { Notice } from '../ui/notice.tsx'
+import { DangerPanel } from './danger-panel.tsx'
 import { PermitMark } from './permit-mark.tsx'
 
 /** Every control at least 56 px high, in one column, with room between: it is used with gloves. */
@@ -53,11 +54,7 @@ export function SiteFrame({
           {OFFLINE}
         </Notice>
       )}
-      {head.dangers.map(({ id, text, startedAt }) => (
-        <Notice key={id} tone="bad" lead="Danger: ">
-          {text} <Instant at={startedAt} age />
-        </Notice>
-      ))}
+      <DangerPanel events={head.dangers} mayTolerate={false} mayState={head.mayState} />
       <nav aria-label="At the segment" className="mb-4">
         <ul className="grid grid-cols-2 gap-2 sm:grid-cols-4">
           {PAGES.map(({ path, label }) => (
@@ -171,9 +168,9 @@ export function SiteStep({
   children: React.ReactNode
 }) {
   return (
-    <details open={open} className="mb-2 rounded-md border border-edge">
+    <details open={open} className="group mb-2 rounded-md border border-edge">
       <summary className="flex items-center px-3 font-medium marker:content-none">
-        <span aria-hidden="true" className="mr-2">
+        <span aria-hidden="true" className="mr-2 group-open:rotate-90">
           ▸
         </span>
         {label}

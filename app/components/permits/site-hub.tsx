@@ -37,9 +37,11 @@ export function SiteHub({ page, failure, photoMib }: SiteHubProps) {
         )}
       </Notice>
       <Standing page={page} />
-      <div className="mb-4.5">
-        <SiteLink to={`${permit}#stop`}>Stop the work</SiteLink>
-      </div>
+      {page.state === 'issued' && (
+        <div className="mb-4.5">
+          <SiteLink to={`${permit}#stop`}>Stop the work</SiteLink>
+        </div>
+      )}
       {page.may.check && ['approved', 'issued', 'suspended'].includes(page.state) && (
         <CheckPanel page={page} failure={failure} />
       )}

@@ -94,12 +94,14 @@ function RoundForm({ page, failure }: SiteRoundsProps) {
         errors={fields?.at}
       />
       <SiteSubmit sending={sending}>Write the round down</SiteSubmit>
-      <p className="mt-3">
-        If something is wrong:{' '}
-        <Link to={`/permits/${page.number}#stop`} className="link inline-flex min-h-14 items-center">
-          stop the work
-        </Link>
-      </p>
+      {page.state === 'issued' && (
+        <p className="mt-3">
+          If something is wrong:{' '}
+          <Link to={`/permits/${page.number}#stop`} className="link inline-flex min-h-14 items-center">
+            stop the work
+          </Link>
+        </p>
+      )}
     </Form>
   )
 }
