@@ -32,7 +32,9 @@ const LOOK_WORDS: Record<MarkedStretch['look'], string> = {
   left: 'left by the officer',
 }
 
-const TUBE_TOP = 22
+/** Tags stand in a row of their own, so that those of a pair do not run into the metres on a narrow screen. */
+const TUBE_TOP = 38
+const TAG_Y = 13
 const TUBE = 18
 const FIRST_ROW = TUBE_TOP + TUBE + 26
 const ROW = 36
@@ -138,7 +140,7 @@ function Strip({ heated, marked }: { heated: readonly HeatedStretch[]; marked: r
             />
             <text
               x={at((fromM + toM) / 2)}
-              y={TUBE_TOP - 9}
+              y={TAG_Y}
               textAnchor="middle"
               className="fill-ink text-sm font-semibold"
             >
