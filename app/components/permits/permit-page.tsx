@@ -44,6 +44,9 @@ export function PermitPage(props: PermitPageProps) {
       <div className="-mt-2 mb-3">
         <Locator along={along} here={content.segments} />
       </div>
+      <p className="mb-2 hidden font-semibold print:block">
+        A page of the register, and no sheet for posting: those are printed from the permit’s own sheets.
+      </p>
       <StageBar stages={props.stages} />
       <DangerPanel events={props.dangers} mayTolerate={may.rule} mayState={may.heating} />
       {/* A refused ruling is told at its conflict. */}
