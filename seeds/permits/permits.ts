@@ -13,6 +13,7 @@ import {
   permit,
   permitAct,
   permitRound,
+  permitRuling,
   permitSegment,
   permitTest,
   permitVersion,
@@ -32,6 +33,7 @@ import { beforeReturn, contentOf } from './content.ts'
 import { eventRows, statementRows } from './events.ts'
 import { jobOf } from './jobs.ts'
 import { addLocks, type LockRows } from './locks.ts'
+import { rulingRows } from './rulings.ts'
 import { type Signatures, signaturesAfter } from './signatures.ts'
 
 /** Rows of one insert. */
@@ -49,6 +51,7 @@ export interface PermitTables {
   locks: LockRows
   tests: (typeof permitTest.$inferInsert)[]
   rounds: (typeof permitRound.$inferInsert)[]
+  rulings: (typeof permitRuling.$inferInsert)[]
 }
 
 /**
@@ -69,6 +72,7 @@ export function permitTables(lastSignatureId: number, planOf: PlanOf): PermitTab
     locks: { points: [], inUse: [], boxes: [] },
     tests: [],
     rounds: [],
+    rulings: [],
   }
   for (const [index, demo] of PERMITS.entries()) {
     const id = index + 1
@@ -81,6 +85,7 @@ export function permitTables(lastSignatureId: number, planOf: PlanOf): PermitTab
     addLocks(tables.locks, demo, id, history, signatures)
     tables.tests.push(...testRows(demo, id, history))
     tables.rounds.push(...roundRows(demo, id, history))
+    tables.rulings.push(...rulingRows(demo, id, signatures))
   }
   return tables
 }
@@ -99,6 +104,7 @@ export async function seedPermits(db: DbOrTx): Promise<number> {
   await db.insert(lockInUse).values(tables.locks.inUse)
   await inBlocks(tables.tests, (block) => db.insert(permitTest).values(block))
   await inBlocks(tables.rounds, (block) => db.insert(permitRound).values(block))
+  await db.insert(permitRuling).values(tables.rulings)
   await db.insert(safetyEvent).values(eventRows())
   await db.insert(heatingStatement).values(statementRows())
   return tables.permits.length
@@ -210,6 +216,9 @@ function actRow(
     signedActId:
       by === null || !PERMIT_RULES[act].signed
         ? null
-        : sign(by, when, `permit: ${act}`, { kind: 'permit', id: number }),
+        : sign(by, when, `${act.replaceAll('-', ' ')} (heated-segment permit)`, {
+            kind: 'permit',
+            id: number,
+          }),
   }
 }
