@@ -10,9 +10,9 @@ const MINUTE_MS = 60_000
 const HOUR_MS = 3_600_000
 
 /** A supply posts every five minutes while a segment is heated; three posts missed and nothing is known (our own rule). */
-export const SUPPLY_FRESH_MS = 15 * MINUTE_MS
+const SUPPLY_FRESH_MS = 15 * MINUTE_MS
 /** Somebody's word that the heating is off counts for one shift; a switch can be thrown afterwards (our own rule). */
-export const OFF_STATEMENT_MS = 12 * HOUR_MS
+const OFF_STATEMENT_MS = 12 * HOUR_MS
 /** An output counts as on from this share of what its set can give: below are offsets of the meters (our own rule). */
 export const ON_SHARE = 0.01
 

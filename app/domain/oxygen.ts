@@ -7,9 +7,9 @@
 export const PUBLISHED_OXYGEN = { low: 19.5, high: 23.5 } as const
 /** Readings that release a stretch are at least this high (the site may ask for more), and hold for so long. */
 export const RELEASE_PERCENT = 20
-export const RELEASE_MINUTES = 10
+const RELEASE_MINUTES = 10
 /** A newest reading older than this says nothing about the air now (our own rule). */
-export const RELEASE_FRESH_MINUTES = 30
+const RELEASE_FRESH_MINUTES = 30
 const MINUTE_MS = 60_000
 
 /** Below and above these everybody leaves. `set` says whether the site has adopted them, or nobody has. */
