@@ -7,7 +7,9 @@ const LEFT = 40
 const WIDTH = PAGE.width - 2 * LEFT
 const TOP = 30
 const QR_SIDE = 70
-const HEAD = 86
+const HEAD_WIDTH = WIDTH - QR_SIDE - 80
+/** Type size of the large letters, where they have room. */
+const LARGE = 25
 /** Below the foot; most printers leave a few millimetres white. */
 const MARGIN = 24
 /** Height of the frame with the large letters, for what is not live. */
@@ -24,21 +26,50 @@ const PAD = 2.2
  *
  * @param at becomes the file's own date
  */
-export async function permitPdf({ frame, sheets }: Paper, at: Date): Promise<Buffer> {
+export async function permitPdf(paper: Paper, at: Date): Promise<Buffer> {
+  const { frame, sheets } = paper
   const setter = new PdfSetter({ title: `Heated-segment permit ${frame.number}`, author: frame.site, at })
+  const head = headOf(setter, paper)
   const pages: Sheet[] = []
-  for (const sheet of sheets) new SheetSetter(setter, frame, () => pages.push(sheet)).set(sheet)
+  for (const sheet of sheets) new SheetSetter(setter, head.bodyTop, () => pages.push(sheet)).set(sheet)
   for (const [index, sheet] of pages.entries()) {
     setter.doc.switchToPage(index)
-    head(setter, frame, sheet)
+    drawHead(setter, head, sheet)
     foot(setter, frame, `Page ${index + 1} of ${pages.length}`)
   }
   return setter.bytes()
 }
 
-/** Where the sheet's own content begins, below the head. */
-function bodyTop(frame: Paper['frame']): number {
-  return TOP + HEAD + (frame.standing === null ? 0 : STANDING + 4)
+interface Head {
+  frame: Paper['frame']
+  /** Lower edge of its words and of the code beside them. */
+  bottom: number
+  /** Where the sheet's own content begins. */
+  bodyTop: number
+}
+
+/** The words of the head with their sizes, from the top. */
+function headLines(frame: Paper['frame'], title: string): [text: string, size: number, weight: Weight][] {
+  return [
+    [`Heated-segment permit ${frame.number}`, 15, 600],
+    [`${title} · ${frame.site}`, 10.5, 600],
+    [frame.revisionText, BODY, 400],
+    [frame.printedText, BODY, 400],
+    [frame.standingText, BODY, 600],
+  ]
+}
+
+/** As high as the longest of its sheets' titles and texts make it, the same on every page. */
+function headOf(setter: PdfSetter, { frame, sheets }: Paper): Head {
+  const heights = sheets.map(({ title }) =>
+    headLines(frame, title).reduce(
+      (sum, [text, size, weight]) =>
+        sum + setter.lines(text, HEAD_WIDTH, size, weight).length * lineHeight(size),
+      0,
+    ),
+  )
+  const bottom = TOP + Math.max(QR_SIDE, ...heights) + 4
+  return { frame, bottom, bodyTop: bottom + (frame.standing === null ? 0 : STANDING + 4) + 8 }
 }
 
 function put(
@@ -57,31 +88,28 @@ function put(
   return at
 }
 
-function head(setter: PdfSetter, frame: Paper['frame'], sheet: Sheet): void {
-  const width = WIDTH - QR_SIDE - 70
-  let y = put(setter, `Heated-segment permit ${frame.number}`, TOP, 15, 600, width)
-  y = put(setter, `${sheet.title} · ${frame.site}`, y, 10.5, 600, width)
-  y = put(setter, frame.revisionText, y + 1, BODY, 400, width)
-  y = put(setter, frame.printedText, y, BODY, 400, width)
-  put(setter, frame.standingText, y, BODY, 600, width)
+function drawHead(setter: PdfSetter, { frame, bottom, bodyTop }: Head, sheet: Sheet): void {
+  let y = TOP
+  for (const [text, size, weight] of headLines(frame, sheet.title))
+    y = put(setter, text, y, size, weight, HEAD_WIDTH)
   setter.drawing(frame.qr, LEFT + WIDTH - QR_SIDE, TOP)
+  const beside = LEFT + WIDTH - QR_SIDE - 12
   const code = setter.line(frame.code, 11, 600)
-  setter.draw(code, LEFT + WIDTH - QR_SIDE - 12 - code.width, TOP + 4, 11)
+  setter.draw(code, beside - code.width, TOP + 4, 11)
   const label = setter.line('Short code', 8, 400)
-  setter.draw(label, LEFT + WIDTH - QR_SIDE - 12 - label.width, TOP + 20, 8)
+  setter.draw(label, beside - label.width, TOP + 20, 8)
   if (frame.standing !== null) {
-    const top = TOP + HEAD - 4
     setter.doc
-      .rect(LEFT, top, WIDTH, STANDING - 4)
+      .rect(LEFT, bottom, WIDTH, STANDING - 4)
       .lineWidth(3)
       .stroke('black')
-    const line = setter.line(frame.standing, 25, 600)
-    setter.draw(line, LEFT + (WIDTH - line.width) / 2, top + 3, 25)
+    const size = Math.min(LARGE, (LARGE * (WIDTH - 20)) / setter.line(frame.standing, LARGE, 600).width)
+    const line = setter.line(frame.standing, size, 600)
+    setter.draw(line, LEFT + (WIDTH - line.width) / 2, bottom + 3, size)
   }
-  const rule = bodyTop(frame) - 8
   setter.doc
-    .moveTo(LEFT, rule)
-    .lineTo(LEFT + WIDTH, rule)
+    .moveTo(LEFT, bodyTop - 6)
+    .lineTo(LEFT + WIDTH, bodyTop - 6)
     .lineWidth(1)
     .stroke('black')
 }
@@ -104,7 +132,7 @@ class SheetSetter {
 
   constructor(
     private readonly setter: PdfSetter,
-    private readonly frame: Paper['frame'],
+    private readonly top: number,
     private readonly begun: () => void,
   ) {}
 
@@ -116,12 +144,12 @@ class SheetSetter {
   private page(): void {
     this.setter.doc.addPage()
     this.begun()
-    this.y = bodyTop(this.frame)
+    this.y = this.top
   }
 
   /** Begins a page where what follows does not go on this one; what is taller than a page goes on all the same. */
   private room(height: number): void {
-    if (this.y + height > BOTTOM && this.y > bodyTop(this.frame)) this.page()
+    if (this.y + height > BOTTOM && this.y > this.top) this.page()
   }
 
   private block(block: Block, next: Block | undefined): void {
@@ -174,7 +202,7 @@ class SheetSetter {
     )
     const rows = block.whole ? block.rows.length : 1
     const height = Math.max(block.rowHeight ?? 0, heightOf(first, SMALL)) * rows + 20
-    return Math.min(height, (BOTTOM - bodyTop(this.frame)) * 0.7)
+    return Math.min(height, (BOTTOM - this.top) * 0.7)
   }
 
   private text(text: string, size: number, weight: Weight): void {
@@ -243,8 +271,8 @@ class SheetSetter {
       while (left.length > 0) {
         const height = Math.max(rowHeight, heightOf(left, size))
         const needed = height + (fresh ? headHeight : 0)
-        if (this.y + needed > BOTTOM && this.y > bodyTop(this.frame) + headHeight) {
-          const goesOnOne = bodyTop(this.frame) + headHeight + height <= BOTTOM
+        if (this.y + needed > BOTTOM && this.y > this.top + headHeight) {
+          const goesOnOne = this.top + headHeight + height <= BOTTOM
           // What goes on one page is not cut; the rest of a longer one follows on the next.
           if (goesOnOne || fresh) {
             this.page()

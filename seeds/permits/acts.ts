@@ -36,14 +36,6 @@ export interface PermitHistory {
 
 const minutesAfter = (when: Date, minutes: number) => hoursAfter(when, minutes / 60)
 
-/** Same local day, other time of day. */
-export function onDayOf(when: Date, hour: number, minute: number): Date {
-  const local = new TZDate(when.getTime(), DEMO_ZONE)
-  return new Date(
-    new TZDate(local.getFullYear(), local.getMonth(), local.getDate(), hour, minute, 0, DEMO_ZONE).getTime(),
-  )
-}
-
 function dayAfter(when: Date, days: number, hour: number, minute: number): Date {
   const local = new TZDate(when.getTime(), DEMO_ZONE)
   return new Date(

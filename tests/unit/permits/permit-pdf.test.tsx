@@ -10,6 +10,8 @@ import { permitPdf } from '#app/services/permit-pdf.server.ts'
 import { printFont, printFontOf, unpackWoff } from '#app/services/print-fonts.server.ts'
 import { paperFacts } from '#tests/support/paper-facts.ts'
 
+/** Setting and reading back is work for the processor, which a busy machine gives slowly. */
+const PATIENCE_MS = 60_000
 const PRINTED_AT = new Date('2026-11-10T09:00:00.000Z')
 
 /** Words run together, raised figures as plain ones: what is left when lines are broken here or there. */
@@ -76,7 +78,7 @@ function everything({ frame, sheets }: Paper): string[] {
   ]
 }
 
-describe('the PDF file of a permit', () => {
+describe('the PDF file of a permit', { timeout: PATIENCE_MS }, () => {
   let facts: PaperFacts
   let paper: Paper
   let pages: string[]
@@ -84,7 +86,7 @@ describe('the PDF file of a permit', () => {
     facts = paperFacts()
     paper = permitPaper(facts)
     pages = await pagesOf(paper)
-  })
+  }, PATIENCE_MS)
 
   it('says everything that the sheets say, and so does the page', () => {
     const inPdf = squeezed(pages.join(' '))
@@ -117,6 +119,21 @@ describe('the PDF file of a permit', () => {
     const draft = await pagesOf(permitPaper(paperFacts({ state: 'draft', approvedVersion: null })))
     for (const page of draft) expect(page).toContain('DRAFT: NOT A PERMIT')
     for (const page of pages) expect(page).not.toContain('NOT A PERMIT')
+  })
+
+  it('keeps its head clear of the frame below it, however much there is to say', async () => {
+    const changed = permitPaper(
+      paperFacts({ state: 'requested', version: 2, printed: { at: PRINTED_AT, by: 'Ann '.repeat(60) } }),
+    )
+    const pdf = await getDocument({ data: new Uint8Array(await permitPdf(changed, PRINTED_AT)) }).promise
+    const { items } = await (await pdf.getPage(1)).getTextContent()
+    const place = (start: string): number => {
+      const found = items.find((item) => 'str' in item && item.str.includes(start))
+      return found !== undefined && 'transform' in found ? Number(found.transform[5]) : Number.NaN
+    }
+    // Upwards on the page: the last words of the head, the large letters, the first heading.
+    expect(place('strength of it')).toBeGreaterThan(place('REQUESTED: APPROVAL VOID') + 20)
+    expect(place('REQUESTED: APPROVAL VOID')).toBeGreaterThan(place('Bake at') + 10)
   })
 
   it('begins with SUSPENDED while work is stopped', async () => {
