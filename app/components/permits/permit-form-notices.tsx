@@ -18,7 +18,7 @@ export interface Fault {
 /** Goes to a field by the browser's own link, so that it works without script and sets the focus. */
 function FieldLink({ field, children }: { field: string; children: React.ReactNode }) {
   return (
-    <a className="link" href={`#${fieldAddress(field)}`}>
+    <a className="link inline-block min-h-6 py-0.5" href={`#${fieldAddress(field)}`}>
       {children}
     </a>
   )
@@ -134,7 +134,7 @@ function wordsOf(status: SaveStatus, asTyped: boolean, zone: string): string {
   switch (status.kind) {
     case 'as-loaded':
       return asTyped
-        ? 'Saved as you type, where the page can run script.'
+        ? 'Saved as you type; without script, by the buttons.'
         : 'Saved when you press the button.'
     case 'typed':
       return asTyped ? 'Not saved yet.' : 'Not saved. What you typed is kept in this browser.'

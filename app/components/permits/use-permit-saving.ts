@@ -101,13 +101,15 @@ export function usePermitSaving(
     send()
   }, [schema, form, hazardKeys, asTyped, send])
 
-  const later = useCallback(
-    (ms: number) => {
-      clearTimeout(timer.current)
-      timer.current = setTimeout(saveQuietly, ms)
-    },
-    [saveQuietly],
-  )
+  // Through a box, so that the timer outlives the renderings that what is typed causes.
+  const newest = useRef(saveQuietly)
+  useEffect(() => {
+    newest.current = saveQuietly
+  }, [saveQuietly])
+  const later = useCallback((ms: number) => {
+    clearTimeout(timer.current)
+    timer.current = setTimeout(() => newest.current(), ms)
+  }, [])
 
   useEffect(() => {
     const stop = form.subscribe({
