@@ -23,6 +23,21 @@ const EnvSchema = z.object({
   MAIL_FAKE_URL: z.string().default(''),
   /** Number of proxies in front (express "trust proxy"); 0 when people reach the server directly. */
   TRUST_PROXY: z.coerce.number().int().min(0).default(0),
+  /** Sender people see, as `Name <address>`; empty: the site's name at MAIL_DOMAIN. */
+  MAIL_FROM: z.string().default(''),
+  /** Where answers go: a desk with somebody at it. Empty: to the sender. */
+  MAIL_REPLY_TO: z.string().default(''),
+  /** Domain of our own for message ids and for the address that takes bounces; empty: that of MAIL_FROM. */
+  MAIL_DOMAIN: z
+    .union([
+      z.literal(''),
+      z.string().regex(/^([a-z0-9-]+\.)+[a-z0-9-]+$/i, 'MAIL_DOMAIN must look like example.org'),
+    ])
+    .default(''),
+  /** Token with which the mail server hands bounces in; empty switches that off. */
+  BOUNCE_TOKEN: z
+    .union([z.literal(''), z.string().min(32, 'BOUNCE_TOKEN needs at least 32 characters')])
+    .default(''),
   /** Address people use, for links in mail. */
   PUBLIC_URL: z.string().default(''),
   /** Demo mode: demo clock, demo sign-ins on the sign-in page, feeder. */
