@@ -55,7 +55,7 @@ function Danger({
     <>
       <p className="text-lg font-semibold text-bad">Danger: {SAFETY_EVENT_LABELS[kind]}</p>
       <p>
-        Since <Instant at={startedAt} age />
+        Since <Instant at={startedAt} />
         {late && (
           <>
             , noticed <Instant at={noticedAt} />

@@ -48,7 +48,7 @@ export function HeatingPage(props: HeatingPageProps) {
         {fact.since !== null && (
           <>
             {' '}
-            So since <Instant at={fact.since} age />.
+            So since <Instant at={fact.since} />.
           </>
         )}
       </Notice>
