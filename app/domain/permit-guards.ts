@@ -8,7 +8,7 @@ import { hasApproved } from './permit-people.ts'
 import { condition, type Reason, spanText } from './permit-reasons.ts'
 import { PERMIT_TEST_LABELS } from './permit-words.ts'
 
-export const MOST_EXTENSIONS = 2
+const MOST_EXTENSIONS = 2
 export const MOST_EXTENDED_HOURS = 72
 
 const HOUR_MS = 3_600_000
@@ -25,7 +25,7 @@ export function wasLive({ acts }: PermitFacts): boolean {
   return acts.some(({ act }) => act === 'accept')
 }
 
-export function hasExpired({ acts }: PermitFacts): boolean {
+function hasExpired({ acts }: PermitFacts): boolean {
   return acts.some(({ toState }) => toState === 'expired')
 }
 
@@ -35,7 +35,7 @@ export function suspendedSince(facts: PermitFacts): Date | null {
 }
 
 /** Hours for which a permit is valid from the moment somebody signs for it on site. */
-export function validityHours(facts: PermitFacts): number {
+function validityHours(facts: PermitFacts): number {
   const content = facts.permit.approvedContent ?? facts.permit.content
   return annexComplete(content) ? UNATTENDED_HOURS : ATTENDED_HOURS
 }

@@ -7,7 +7,7 @@ import { personReason, type Reason, spanText } from './permit-reasons.ts'
 import type { PermitAct } from './permit-words.ts'
 
 /** Hours for which an approving role waits after a second person confirmed it, so that others can object. */
-export const APPROVING_WAIT_HOURS = 24
+const APPROVING_WAIT_HOURS = 24
 
 const HOUR_MS = 3_600_000
 

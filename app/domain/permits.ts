@@ -411,6 +411,18 @@ export const PERMIT_RULES: { [Act in PermitAct]: Rule<Act> } = {
   },
 }
 
+const READ_FROM_CONTENT: readonly Guard[] = [nothingMissing, windowInOrder, thresholdsAdopted]
+const READ_FROM_LINE: readonly Guard[] = [noBlockingConflict, conflictsRuled]
+
+/** Which of the facts that are dear to gather the rule of an act looks at: cautions and what is missing; conflicts. */
+export function factsNeeded(act: PermitAct): { hazards: boolean; conflicts: boolean } {
+  const { guards } = PERMIT_RULES[act]
+  return {
+    hazards: guards.some((guard) => READ_FROM_CONTENT.includes(guard)),
+    conflicts: guards.some((guard) => READ_FROM_LINE.includes(guard)),
+  }
+}
+
 /** The facts as time has made them: an act is judged by the state of now, written down or not. */
 function asOf(facts: PermitFacts, now: Date): PermitFacts {
   const { state, due } = stateAsOf(facts.permit, now)

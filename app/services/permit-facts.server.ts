@@ -7,7 +7,8 @@ import { type Actor, may } from '../domain/actor.ts'
 import { unadoptedOf } from '../domain/hazards.ts'
 import { missingParts } from '../domain/permit-completeness.ts'
 import type { PermitActor, PermitFacts } from '../domain/permit-facts.ts'
-import { standsInTheWay } from '../domain/permits.ts'
+import type { PermitAct } from '../domain/permit-words.ts'
+import { factsNeeded, standsInTheWay } from '../domain/permits.ts'
 import { roleHas, rolesAt } from '../domain/roles.ts'
 import { readHeating } from './heating.server.ts'
 import { readLocksOut, readPoints } from './isolation-points.server.ts'
@@ -20,16 +21,18 @@ import { readTests } from './permit-tests.server.ts'
  * Facts of a permit at an instant.
  *
  * @param permit as it is stored, or with another content to judge what it would be
- * @param windowTo conflicts are looked for until then instead of the end of the window, for an extension
+ * @param options.act only what the rule of this act looks at is gathered; everything without it
+ * @param options.windowTo conflicts are looked for until then instead of the end of the window, for an extension
  */
 export async function readPermitFacts(
   db: DbOrTx,
   permit: PermitRow,
   now: Date,
-  windowTo: Date | null = permit.windowTo,
+  { act, windowTo = permit.windowTo }: { act?: PermitAct; windowTo?: Date | null } = {},
 ): Promise<PermitFacts> {
   const { content } = permit
-  const hazards = await readHazardsOf(db, content, now)
+  const needed = act === undefined ? { hazards: true, conflicts: true } : factsNeeded(act)
+  const hazards = needed.hazards ? await readHazardsOf(db, content, now) : []
   const plans = [...new Set([permit.planId, content.planId])].filter((id) => id !== null)
   return {
     permit: { ...permit, approvedContent: await approvedContentOf(db, permit) },
@@ -40,7 +43,7 @@ export async function readPermitFacts(
       hazards.map(({ key }) => key),
     ),
     unadopted: unadoptedOf(hazards),
-    conflicts: await readConflicts(db, { ...permit, windowTo }, now),
+    conflicts: needed.conflicts ? await readConflicts(db, { ...permit, windowTo }, now) : [],
     points: await readPoints(db, permit),
     locksOut: await readLocksOut(db, permit.id),
     tests: await readTests(db, permit, now),

@@ -38,7 +38,12 @@ import type { FormAct } from '../domain/schemas/permit-act.ts'
 import { officersApart, permitActor, readPermitFacts } from './permit-facts.server.ts'
 import { writeRecord } from './record.server.ts'
 import { noteDangers } from './safety-events.server.ts'
-import { signAct, useSignedAct as spendSignature } from './signature.server.ts'
+import {
+  type SignedAct,
+  type SignedSubject,
+  signAct,
+  useSignedAct as spendSignature,
+} from './signature.server.ts'
 import { getSite, instantWriter } from './site.server.ts'
 
 /** Letters and digits that cannot be taken for one another on paper or on the phone. */
@@ -154,7 +159,7 @@ export async function savePermit(
     const act = editingAct(permit.state)
     const version = permit.version + 1
     const changed: PermitRow = { ...permit, content, ...columnsOf(content) }
-    const facts = await readPermitFacts(inside, changed, now)
+    const facts = await readPermitFacts(inside, changed, now, { act })
     const outcome = permitStep(
       facts,
       await permitActor(inside, actor, now),
@@ -202,20 +207,11 @@ export async function actOnPermit(
 ): Promise<{ revision: number; state: PermitState }> {
   demand(actor, 'permit:stop')
   await noteDue(db, now, number)
-  // Judged before the signature, so that nobody signs what cannot be; and again inside, where it counts.
-  const seen = await existing(db, number)
-  await refuseStale(db, seen, form.revision)
-  await judge(db, actor, now, seen, form).catch(async (error) => {
-    await noteBlocked(db, actor, now, number, form, error)
-    throw error
-  })
   const subject = {
     meaning: `${form.act.replaceAll('-', ' ')} (heated-segment permit)`,
     ...subjectOf(number),
   }
-  const signed = PERMIT_RULES[form.act].signed
-    ? await signAct(db, { actor, password: demandPassword(form.password), now, ...subject })
-    : null
+  const signed = PERMIT_RULES[form.act].signed ? await takeSignature(db, actor, now, form, subject) : null
   return tx(db, async (inside) => {
     const permit = await currentPermit(inside, number, form.revision)
     const step = await judge(inside, actor, now, permit, form)
@@ -224,6 +220,26 @@ export async function actOnPermit(
     await carryOut(inside, permit, step, { actor, now, signedActId: signature?.id ?? null })
     return { revision: permit.revision + 1, state: step.to }
   })
+}
+
+/** Judged before the signature, so that nobody signs what cannot be; it is judged again inside, where it counts. */
+async function takeSignature(
+  db: Db,
+  actor: Actor,
+  now: Date,
+  form: PermitActForm,
+  subject: SignedSubject,
+): Promise<SignedAct> {
+  const number = subject.subjectId
+  const seen = await existing(db, number)
+  await refuseStale(db, seen, form.revision)
+  try {
+    await judge(db, actor, now, seen, form)
+  } catch (error) {
+    await noteBlocked(db, actor, now, number, form, error)
+    throw error
+  }
+  return signAct(db, { actor, password: demandPassword(form.password), now, ...subject })
 }
 
 function demandPassword(password: string): string {
@@ -240,7 +256,7 @@ async function judge(
   permit: PermitRow,
   form: PermitActForm,
 ): Promise<PermitStep> {
-  const facts = await readPermitFacts(db, permit, now, endOf(permit, form))
+  const facts = await readPermitFacts(db, permit, now, { act: form.act, windowTo: endOf(permit, form) })
   const outcome = permitStep(facts, await permitActor(db, actor, now), form.act, form, now)
   if (outcome.kind === 'step') return outcome
   const others =
@@ -266,7 +282,7 @@ async function noteBlocked(
   form: PermitActForm,
   error: unknown,
 ): Promise<void> {
-  if (!(error instanceof DomainError) || error.code !== 'forbidden' || !PERMIT_RULES[form.act].signed) return
+  if (!(error instanceof DomainError) || error.code !== 'forbidden') return
   await writeRecord(db, {
     at: now,
     actor,
@@ -294,7 +310,7 @@ export async function productAct(
     const due = dueAct(permit, now)
     const outcome =
       due?.act === act && due.at.getTime() === at.getTime()
-        ? productStep(await readPermitFacts(inside, permit, now), act, now)
+        ? productStep(await readPermitFacts(inside, permit, now, { act }), act, now)
         : null
     if (outcome === null || outcome.kind === 'refused') {
       throw new DomainError(

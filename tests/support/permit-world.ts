@@ -4,7 +4,7 @@
  * elsewhere.
  */
 import type { DbOrTx } from '#app/db/client.server.ts'
-import { listPermits } from '#app/db/queries/permits.server.ts'
+import { findPermit } from '#app/db/queries/permits.server.ts'
 import {
   adoptedThreshold,
   competence,
@@ -73,7 +73,16 @@ export async function createPermitWorld(db: DbOrTx): Promise<PermitWorld> {
       reason: 'for a test',
     })),
   )
-  const people = [world.bram, world.pim, world.corwin, world.odalys, world.nerys, world.ione, world.rafe]
+  const people = [
+    world.bram,
+    world.pim,
+    world.corwin,
+    world.odalys,
+    world.nerys,
+    world.ione,
+    world.rafe,
+    world.magnus,
+  ]
   await db.insert(competence).values(
     people.flatMap(({ personId }) =>
       COMPETENCE_KINDS.map((kind) => ({
@@ -146,8 +155,8 @@ export async function lockEverything(
   at: Date,
   who: { appliedBy: number; verifiedBy: number },
 ): Promise<void> {
-  const permit = (await listPermits(db)).find((each) => each.number === number)
-  if (permit === undefined) throw new Error(`no permit ${number}`)
+  const permit = await findPermit(db, number)
+  if (permit === null) throw new Error(`no permit ${number}`)
   for (const { tag, isolates, required, purpose } of permit.content.points) {
     locks += 1
     const lockNumber = `L-${locks}`
@@ -174,8 +183,8 @@ export async function testEverything(
   by: number,
   passed = true,
 ): Promise<void> {
-  const permit = (await listPermits(db)).find((each) => each.number === number)
-  if (permit === undefined) throw new Error(`no permit ${number}`)
+  const permit = await findPermit(db, number)
+  if (permit === null) throw new Error(`no permit ${number}`)
   await db.insert(permitTest).values(
     permit.content.tests.map(({ kind, place, unit, everyHours }) => ({
       permitId: permit.id,
