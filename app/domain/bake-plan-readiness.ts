@@ -83,6 +83,17 @@ export function readiness(facts: PlanFacts): ReadinessItem[] {
   ]
 }
 
+/**
+ * The items that hang on the tube alone, whatever the plan says of supplies, carts and crews: what a permit for a bake is
+ * held against, for the segments and the temperature that the permit itself names.
+ */
+export function tubeItems({
+  segments,
+  overheated,
+}: Pick<PlanFacts, 'segments' | 'overheated'>): ReadinessItem[] {
+  return [...segments.flatMap(segmentItems), partsItem(overheated)]
+}
+
 /** Open items that keep a plan from being signed. */
 export function blockingItems(items: readonly ReadinessItem[]): ReadinessItem[] {
   return items.filter(({ met, blocking }) => blocking && !met)
@@ -131,10 +142,6 @@ function hardwareItems({
   segments,
   bellows,
 }: PlanFacts): ReadinessItem[] {
-  const hot = overheated.map(
-    ({ part, reachesC, limitC }) =>
-      `${part} would reach ${reachesC.toFixed(0)} °C of ${limitC.toFixed(0)} allowed`,
-  )
   const short = bellows.filter(({ strokeMm, ratedMm }) => strokeMm > ratedMm)
   return [
     ...(segments.length > 1
@@ -147,14 +154,7 @@ function hardwareItems({
           ),
         ]
       : []),
-    computed(
-      'parts-within-limits',
-      'Every part stays below its limit',
-      hot.length === 0,
-      hot.length === 0
-        ? 'By each part’s own predicted temperature.'
-        : `${hot.join('; ')}. Bake cooler, or take the part off.`,
-    ),
+    partsItem(overheated),
     computed(
       'joints-within-stroke',
       'Joints stay within their rated stroke',
@@ -179,6 +179,21 @@ function hardwareItems({
           : `${cart.tag} works on ${cart.busyOn}. Name another, or wait until it is free.`,
     ),
   ]
+}
+
+function partsItem(overheated: PlanFacts['overheated']): ReadinessItem {
+  const hot = overheated.map(
+    ({ part, reachesC, limitC }) =>
+      `${part} would reach ${reachesC.toFixed(0)} °C of ${limitC.toFixed(0)} allowed`,
+  )
+  return computed(
+    'parts-within-limits',
+    'Every part stays below its limit',
+    hot.length === 0,
+    hot.length === 0
+      ? 'By each part’s own predicted temperature.'
+      : `${hot.join('; ')}. Bake cooler, or take the part off.`,
+  )
 }
 
 function supplyItem(supply: SupplyFacts | null, { amps, volts }: PlanFacts['load']): ReadinessItem {

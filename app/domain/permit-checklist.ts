@@ -19,6 +19,7 @@ import {
   testsInDate,
   testsSinceSuspension,
   thresholdsAdopted,
+  tubePrepared,
   validityLeft,
   windowInOrder,
   windowOpen,
@@ -39,6 +40,7 @@ export interface Checklist {
 
 const FORM: readonly [string, Guard] = ['Every section says what it has to', nothingMissing]
 const WINDOW: readonly [string, Guard] = ['The window is in order', windowInOrder]
+const TUBE: readonly [string, Guard] = ['The records show that the tube may be baked', tubePrepared]
 const POINTS: readonly [string, Guard] = [
   'Isolation points are locked, and verified by a second person',
   isolationVerified,
@@ -56,12 +58,13 @@ export function permitChecklist(facts: PermitFacts, now: Date): Checklist | null
   switch (stateAsOf(facts.permit, now).state) {
     case 'draft':
     case 'returned':
-      return list('Before it is asked for', FORM, WINDOW)
+      return list('Before it is asked for', FORM, WINDOW, TUBE)
     case 'requested':
       return list(
         'Before it is approved',
         FORM,
         WINDOW,
+        TUBE,
         ['Cautions rest on values that this site has adopted', thresholdsAdopted],
         BLOCKS,
         ['An officer has ruled on each conflict that needs it', conflictsRuled],
@@ -70,6 +73,7 @@ export function permitChecklist(facts: PermitFacts, now: Date): Checklist | null
       return list(
         'Before it may be live',
         ['The window is open', windowOpen],
+        TUBE,
         ['The site has been checked since the approval', siteCheckedSinceApproval],
         POINTS,
         TESTS,

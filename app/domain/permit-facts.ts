@@ -17,6 +17,14 @@ export interface UnadoptedThreshold {
   text: string
 }
 
+/** Something about the tube that the records have to show before it is baked, and do not. */
+export interface UnpreparedTube {
+  /** For example `isolation-test-SG-11`. */
+  key: string
+  /** What is lacking, why what there is does not count, and the way out. */
+  text: string
+}
+
 export const CONFLICT_RULES = [
   'K1',
   'K2',
@@ -121,6 +129,8 @@ export interface PermitFacts {
   plannerIds: readonly number[]
   missing: readonly MissingPart[]
   unadopted: readonly UnadoptedThreshold[]
+  /** What the records lack of the tube that is to be baked; empty where the permit rests on no bake plan. */
+  unprepared: readonly UnpreparedTube[]
   conflicts: readonly ConflictFact[]
   points: readonly PointFact[]
   /** Locks that still hang for this permit, personal locks on its box included. */

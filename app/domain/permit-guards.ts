@@ -95,6 +95,11 @@ export function thresholdsAdopted({ unadopted }: PermitFacts): Reason[] {
   )
 }
 
+/** No bake on an untested tube: what the bake plan needs from the records stands there today, not only when it was asked. */
+export function tubePrepared({ unprepared }: PermitFacts): Reason[] {
+  return unprepared.map(({ text }) => condition('unprepared', text))
+}
+
 export function noBlockingConflict({ conflicts }: PermitFacts): Reason[] {
   return conflicts
     .filter(({ effect }) => effect === 'block')

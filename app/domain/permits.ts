@@ -26,6 +26,7 @@ import {
   testsInDate,
   testsSinceSuspension,
   thresholdsAdopted,
+  tubePrepared,
   validityEnd,
   validityGains,
   validityLeft,
@@ -158,7 +159,7 @@ export const PERMIT_RULES: { [Act in PermitAct]: Rule<Act> } = {
     who: drafter,
     signed: true,
     reason: null,
-    guards: [nothingMissing, windowInOrder],
+    guards: [nothingMissing, windowInOrder, tubePrepared],
     outcome: ({ facts, actor }) => ({
       effects: [{ kind: 'set-requester', personId: actor.personId }, windowOf(facts)],
     }),
@@ -187,7 +188,14 @@ export const PERMIT_RULES: { [Act in PermitAct]: Rule<Act> } = {
     who: asUninvolved,
     signed: true,
     reason: null,
-    guards: [nothingMissing, windowInOrder, thresholdsAdopted, noBlockingConflict, conflictsRuled],
+    guards: [
+      nothingMissing,
+      windowInOrder,
+      tubePrepared,
+      thresholdsAdopted,
+      noBlockingConflict,
+      conflictsRuled,
+    ],
     outcome: ({ facts, actor }) => ({
       effects: [{ kind: 'approve', personId: actor.personId }, windowOf(facts)],
     }),
@@ -255,7 +263,14 @@ export const PERMIT_RULES: { [Act in PermitAct]: Rule<Act> } = {
     who: named,
     signed: true,
     reason: null,
-    guards: [windowOpen, siteCheckedSinceApproval, isolationVerified, testsInDate, noBlockingConflict],
+    guards: [
+      windowOpen,
+      tubePrepared,
+      siteCheckedSinceApproval,
+      isolationVerified,
+      testsInDate,
+      noBlockingConflict,
+    ],
     outcome: ({ facts, actor, now }) => {
       const until = validityEnd(facts, now)
       return {
@@ -414,10 +429,20 @@ export const PERMIT_RULES: { [Act in PermitAct]: Rule<Act> } = {
 const READ_FROM_CONTENT: readonly Guard[] = [nothingMissing, windowInOrder, thresholdsAdopted]
 const READ_FROM_LINE: readonly Guard[] = [noBlockingConflict, conflictsRuled]
 
-/** Which of the facts that are dear to gather the rule of an act looks at: cautions and what is missing; conflicts. */
-export function factsNeeded(act: PermitAct): { hazards: boolean; conflicts: boolean } {
+/** The facts that are dear to gather. */
+export interface FactsNeeded {
+  /** Cautions, and with them what is missing. */
+  hazards: boolean
+  conflicts: boolean
+  /** What the records say of the tube. */
+  tube: boolean
+}
+
+/** Which of the facts that are dear to gather the rule of an act looks at. */
+export function factsNeeded(act: PermitAct): FactsNeeded {
   const { guards } = PERMIT_RULES[act]
   return {
+    tube: guards.includes(tubePrepared),
     hazards: guards.some((guard) => READ_FROM_CONTENT.includes(guard)),
     conflicts: guards.some((guard) => READ_FROM_LINE.includes(guard)),
   }

@@ -23,7 +23,13 @@ import {
 import { ampsAndVolts, type BakedSegment, pairObjection, powerW } from '../domain/bake-load.ts'
 import { type BakePlanContent, BakePlanContentSchema, stepOf } from '../domain/bake-plan.ts'
 import { type PlannedSegment, type PlanPrediction, predictPlan } from '../domain/bake-plan-prediction.ts'
-import { type PlanFacts, type SegmentFacts, TICKED_ITEM_KEYS } from '../domain/bake-plan-readiness.ts'
+import {
+  type PlanFacts,
+  type ReadinessItem,
+  type SegmentFacts,
+  TICKED_ITEM_KEYS,
+  tubeItems,
+} from '../domain/bake-plan-readiness.ts'
 import { DomainError } from '../domain/errors.ts'
 import { instantText } from '../domain/instant-text.ts'
 import { firstGap } from '../domain/permit-conflicts/competences.ts'
@@ -273,6 +279,27 @@ export async function readPlanFacts(
     },
     ticks: await ticksOf(db, plan.id),
   }
+}
+
+/**
+ * What the records show of the tube that is to be baked, met or not.
+ *
+ * @param tags segments; a tag that the register does not have is left out, and told by what is missing of its paper
+ * @param celsius the hottest that the tube may become; null while nobody has said, and then no part is held against it
+ */
+export async function readTubeItems(
+  db: DbOrTx,
+  tags: readonly string[],
+  celsius: number | null,
+  now: Date,
+): Promise<ReadinessItem[]> {
+  const all = await listSegments(db, now)
+  const segments = tags.flatMap((tag) => all.find((one) => one.tag === tag) ?? [])
+  const { ambientC } = await getSite(db)
+  return tubeItems({
+    segments: await Promise.all(segments.map((segment) => segmentFacts(db, segment, now))),
+    overheated: celsius === null ? [] : await overheatedParts(db, segments, celsius, ambientC),
+  })
 }
 
 /** Electricians whose licence holds at an instant, with the last day of it; one renewed without a break goes on. */

@@ -4,18 +4,22 @@ import { listGrantRows } from '../db/queries/people.server.ts'
 import { listPlanners } from '../db/queries/permit-register.server.ts'
 import { findPermitVersion, listPermitActs, type PermitRow } from '../db/queries/permits.server.ts'
 import { type Actor, may } from '../domain/actor.ts'
+import { blockingItems } from '../domain/bake-plan-readiness.ts'
 import { unadoptedOf } from '../domain/hazards.ts'
 import { missingParts } from '../domain/permit-completeness.ts'
-import type { PermitActor, PermitFacts } from '../domain/permit-facts.ts'
+import type { PermitActor, PermitFacts, UnpreparedTube } from '../domain/permit-facts.ts'
 import type { PermitAct } from '../domain/permit-words.ts'
-import { factsNeeded, standsInTheWay } from '../domain/permits.ts'
+import { type FactsNeeded, factsNeeded, standsInTheWay } from '../domain/permits.ts'
 import { roleHas, rolesAt } from '../domain/roles.ts'
+import { readTubeItems } from './bake-plans-facts.server.ts'
 import { readHeating } from './heating.server.ts'
 import { readLocksOut, readPoints } from './isolation-points.server.ts'
 import { readConflicts } from './permit-conflicts.server.ts'
 import { readHazardsOf } from './permit-hazards.server.ts'
 import { readPermitPolicy } from './permit-policy.server.ts'
 import { readTests } from './permit-tests.server.ts'
+
+const EVERYTHING: FactsNeeded = { hazards: true, conflicts: true, tube: true }
 
 /**
  * Facts of a permit at an instant.
@@ -31,7 +35,7 @@ export async function readPermitFacts(
   { act, windowTo = permit.windowTo }: { act?: PermitAct; windowTo?: Date | null } = {},
 ): Promise<PermitFacts> {
   const { content } = permit
-  const needed = act === undefined ? { hazards: true, conflicts: true } : factsNeeded(act)
+  const needed = act === undefined ? EVERYTHING : factsNeeded(act)
   const hazards = needed.hazards ? await readHazardsOf(db, content, now) : []
   const plans = [...new Set([permit.planId, content.planId])].filter((id) => id !== null)
   return {
@@ -43,6 +47,8 @@ export async function readPermitFacts(
       hazards.map(({ key }) => key),
     ),
     unadopted: unadoptedOf(hazards),
+    // Small heat without a plan, such as a blanket on a cross or the drying of a vented end, asks for no tests of the tube.
+    unprepared: needed.tube && plans.length > 0 ? await unpreparedTube(db, content, now) : [],
     conflicts: needed.conflicts ? await readConflicts(db, { ...permit, windowTo }, now) : [],
     points: await readPoints(db, permit),
     locksOut: await readLocksOut(db, permit.id),
@@ -50,6 +56,16 @@ export async function readPermitFacts(
     heating: await readHeating(db, content.segments, now),
     policy: await readPermitPolicy(db),
   }
+}
+
+/** What a bake plan's own checklist says of the tube, for the segments and the temperature that the permit names. */
+async function unpreparedTube(
+  db: DbOrTx,
+  { segments, maxCelsius }: PermitRow['content'],
+  now: Date,
+): Promise<UnpreparedTube[]> {
+  const open = blockingItems(await readTubeItems(db, segments, maxCelsius, now))
+  return open.map(({ key, detail }) => ({ key, text: detail }))
 }
 
 async function approvedContentOf(db: DbOrTx, { id, content, version, approvedVersion }: PermitRow) {

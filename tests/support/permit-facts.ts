@@ -104,6 +104,7 @@ export function factsIn(
     plannerIds: [PLANNER],
     missing: [],
     unadopted: [],
+    unprepared: [],
     conflicts: [],
     points: content.points.map(({ tag }, i) => ({
       tag,

@@ -39,6 +39,7 @@ function facts(state: PermitState, change: Partial<PermitFacts> = {}): PermitFac
     plannerIds: [],
     missing: [],
     unadopted: [],
+    unprepared: [],
     conflicts: [],
     points: [{ tag: 'IP-1', lockNumber: 'L-1', appliedBy: 2, verifiedBy: 3, holds: true, removed: false }],
     locksOut: [],
@@ -95,6 +96,14 @@ test('a value that the site has not adopted is "not set", which is not "not done
   )
   expect(list?.items.filter(({ status }) => status === 'not-set')).toHaveLength(1)
   expect(list?.items.filter(({ status }) => status === 'not-done')).toHaveLength(0)
+})
+
+test('a tube without its tests is told before the request and before the approval, and blocks both', () => {
+  const unprepared = [{ key: 'isolation-test-SG-11', text: 'SG-11 has no accepted isolation test.' }]
+  for (const state of ['draft', 'returned', 'requested'] as const) {
+    expect(open(state, { unprepared })).toContain('SG-11 has no accepted isolation test.')
+  }
+  expect(open('issued', { unprepared })).toEqual([])
 })
 
 test('a block stays in the way whatever has been ruled; a ruling clears only what it may', () => {

@@ -153,6 +153,7 @@ function factsOf(
     acts,
     plannerIds: [PLANNER],
     missing: missingParts(content, []),
+    unprepared: [],
     unadopted: around.thresholdsSet ? [] : [{ hazard: 'fire', threshold: 'x', text: 'A value.' }],
     conflicts: conflictsOf(around),
     points: around.points.map(({ lock, by, verifiedBy }, i) => ({

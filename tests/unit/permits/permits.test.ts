@@ -310,6 +310,11 @@ describe('before approval', () => {
       ['not-adopted'],
     ],
     [
+      'the records do not show that the tube may be baked',
+      { unprepared: [{ key: 'isolation-test-SG-11', text: 'No accepted isolation test.' }] },
+      ['unprepared'],
+    ],
+    [
       'a conflict blocks',
       { conflicts: [conflict({ effect: 'block', ruling: ruling({}) })] },
       ['conflict-block'],

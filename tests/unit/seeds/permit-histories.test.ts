@@ -156,6 +156,7 @@ function play(permitId: number): { played: Played; against: string[] } {
       plannerIds: [PLANNER],
       missing: missingParts(content, HAZARD_KEYS),
       unadopted: [],
+      unprepared: [],
       conflicts: [],
       points: pointsAt(permitId, when),
       locksOut: pointsAt(permitId, when).flatMap(({ removed, lockNumber }) =>
