@@ -37,9 +37,12 @@ export async function prefillFromPlan(
   const { plan, content } = await readPlan(db, planId)
   const window = asked.windows.find(({ number }) => number === link)
   if (window === undefined) {
+    const count = asked.windows.length
     throw new DomainError(
       'bad-input',
-      `The chain of this plan has ${asked.windows.length} permits and no number ${link}. Choose one of them.`,
+      count === 1
+        ? `This plan needs one permit and has no permit ${link}. Choose the one.`
+        : `The chain of this plan has ${count} permits and no permit ${link}. Choose one of them.`,
     )
   }
   const earthing = (await listPlanTicks(db, planId)).findLast(({ item }) => item === 'earthing-point-written')
