@@ -16,7 +16,7 @@ export interface Series {
   /** Stored quality codes, see domain/readings.ts. */
   quality: ArrayLike<number>
   marks: ArrayLike<number>
-  /** Limit that an over- or under-range reading names; NaN or null where there is none, then its value is taken. */
+  /** Limit that an over- or under-range reading names; NaN where there is none, then its value is taken. */
   bound: ArrayLike<number> | null
 }
 
