@@ -91,13 +91,16 @@ function firstAtOrAfter({ fromMs, toMs, correction }: OwnStretch, trueMs: number
   return low
 }
 
-/** The least stretch of true time that holds all readings with own times in [from, last], ends included. */
-export function trueHull(
+/**
+ * A stretch of own time, both ends included, widened so that it also holds the true times of its readings: what may
+ * change when the readings do.
+ */
+export function widened(
   corrections: readonly ClockCorrection[],
   fromMs: number,
   lastMs: number,
 ): { fromMs: number; lastMs: number } {
-  let [first, last] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY]
+  let [first, last] = [fromMs, lastMs]
   for (const piece of pieces(corrections)) {
     const [from, to] = [Math.max(fromMs, piece.fromMs), Math.min(lastMs, piece.toMs - 1)]
     if (from > to) continue

@@ -1,7 +1,7 @@
 /** Whether a file that waits is a copy of readings that are held already, with fewer digits. */
 import type { Db } from '../db/client.server.ts'
 import { findImport, findSource, readOriginal } from '../db/queries/imports.server.ts'
-import { listChannelReadings } from '../db/queries/readings.server.ts'
+import { listStoredReadings } from '../db/queries/readings.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import { copyTrials, type Trial } from '../domain/night-files/copy-trials.ts'
 import { readNightFile } from '../domain/night-files/reader.ts'
@@ -73,7 +73,7 @@ async function pairsWithStored(db: Db, { channels }: ReadingRules, values: Value
     const own = values.get(name)
     if (own === undefined) continue
     const times = Array.from(own.keys())
-    const stored = await listChannelReadings(db, {
+    const stored = await listStoredReadings(db, {
       channelId: id,
       from: new Date(Math.min(...times)),
       to: new Date(Math.max(...times) + 1),

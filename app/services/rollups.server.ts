@@ -3,6 +3,7 @@
  * the worker makes the rollups of such stretches anew, and until it has, they are read from the readings themselves.
  */
 import type { Db } from '../db/client.server.ts'
+import { correctionsFor } from '../db/queries/clock-corrections.server.ts'
 import {
   deleteDue,
   findDueChannel,
@@ -12,6 +13,7 @@ import {
   rollUpRollups,
 } from '../db/queries/rollups.server.ts'
 import { tx } from '../db/transaction.server.ts'
+import { widened } from '../domain/clock-correction.ts'
 import { ROLLUP_LEVELS, wholeBuckets } from '../domain/rollups.ts'
 import { enqueue } from './jobs.server.ts'
 
@@ -54,15 +56,18 @@ async function rollUpChannel(db: Db, channelId: number): Promise<void> {
   await tx(db, async (inside) => {
     const due = await lockDue(inside, channelId, AT_ONCE)
     if (due.length === 0) return
+    // After the lock: a correction that is made now leaves a stretch of its own behind, which is taken next.
+    const corrections = await correctionsFor(inside, [channelId])
+    const own = corrections.get(channelId) ?? []
     const now: { fromMs: number; lastMs: number }[] = []
     const later: { channelId: number; from: Date; last: Date }[] = []
     for (const { from, last } of due) {
       const end = Math.min(last.getTime(), from.getTime() + LONGEST_MS)
-      now.push({ fromMs: from.getTime(), lastMs: end })
+      now.push(widened(own, from.getTime(), end))
       if (end < last.getTime()) later.push({ channelId, from: new Date(end), last })
     }
     const spans = wholeBuckets(now, shortest)
-    for (const span of spans) await rollUpReadings(inside, channelId, span)
+    for (const span of spans) await rollUpReadings(inside, channelId, span, corrections)
     for (const level of longer) {
       const wider = wholeBuckets(
         spans.map(({ fromMs, toMs }) => ({ fromMs, lastMs: toMs - 1 })),

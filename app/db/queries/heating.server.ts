@@ -2,6 +2,8 @@ import { and, desc, eq, inArray, lte, or, sql } from 'drizzle-orm'
 import { type Quality, qualityCode } from '../../domain/readings.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { heatingStatement, person, reading, segment, supplySet } from '../schema/index.ts'
+import { correctionsFor } from './clock-corrections.server.ts'
+import { edgeReading } from './readings.server.ts'
 import { usable } from './usable.server.ts'
 
 /** How far back the beginning of a supply's run is looked for. */
@@ -142,28 +144,13 @@ export async function runStart(
   run: { on: boolean; from: number },
 ): Promise<Date | null> {
   const since = new Date(at.getTime() - LOOK_BACK_DAYS * 86_400_000)
-  const within = and(
-    eq(reading.channelId, channelId),
-    sql`${reading.at} > ${since}`,
-    sql`${reading.at} <= ${at}`,
-  )
+  const corrections = (await correctionsFor(db, [channelId])).get(channelId) ?? []
   const off: Quality = 'off'
   const shows = run.on
     ? or(eq(reading.quality, qualityCode(off)), sql`(${usable} AND ABS(${reading.value}) < ${run.from})`)
     : sql`(${usable} AND ABS(${reading.value}) >= ${run.from})`
-  const other = await db
-    .select({ at: reading.at })
-    .from(reading)
-    .where(and(within, shows))
-    .orderBy(desc(reading.at))
-    .limit(1)
-  const before = other[0]
-  if (before === undefined) return null
-  const first = await db
-    .select({ at: reading.at })
-    .from(reading)
-    .where(and(within, sql`${reading.at} > ${before.at}`))
-    .orderBy(reading.at)
-    .limit(1)
-  return first[0]?.at ?? null
+  const before = await edgeReading(db, { channelId, corrections, since, at }, 'last', shows)
+  if (before === null) return null
+  const after = { channelId, corrections, since: before.at, at }
+  return (await edgeReading(db, after, 'first', undefined))?.at ?? null
 }

@@ -3,18 +3,28 @@
  * them. A reading that another accepted import brought as well, and that was not stored twice, takes the free place.
  */
 import { eq, sql } from 'drizzle-orm'
+import { widened } from '../../domain/clock-correction.ts'
 import { MARKS } from '../../domain/readings.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { importRange } from '../schema/index.ts'
+import { correctionsFor } from './clock-corrections.server.ts'
 import type { Stretch } from './derived.server.ts'
 import { affected } from './imports-merge.server.ts'
 
-/** The stretches of channels for which an import has stored readings. */
-export function importStretches(tx: DbOrTx, importId: number): Promise<Stretch[]> {
-  return tx
+/** The stretches of channels for which an import has stored readings, by their own and by true time. */
+export async function importStretches(tx: DbOrTx, importId: number): Promise<Stretch[]> {
+  const rows = await tx
     .select({ channelId: importRange.channelId, from: importRange.firstAt, to: importRange.lastAt })
     .from(importRange)
     .where(eq(importRange.importId, importId))
+  const corrections = await correctionsFor(
+    tx,
+    rows.map(({ channelId }) => channelId),
+  )
+  return rows.map(({ channelId, from, to }) => {
+    const span = widened(corrections.get(channelId) ?? [], from.getTime(), to.getTime())
+    return { channelId, from: new Date(span.fromMs), to: new Date(span.lastMs) }
+  })
 }
 
 /**

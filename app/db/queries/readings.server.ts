@@ -1,8 +1,10 @@
 /**
- * Readings as positions see them: through the channel maps and fittings in force at the reading's own instant. Stored
- * readings stay by raw channel; a corrected map changes what these queries return and nothing else.
+ * Readings as positions see them: through the channel maps and fittings in force at the reading's instant, and at the
+ * true instant where the clock of its source has been corrected. Stored readings stay by raw channel and as the file has
+ * their time; a corrected map or clock changes what these queries return and nothing else.
  */
-import { and, asc, eq, gt, inArray, isNull, lt, or, type SQL, sql } from 'drizzle-orm'
+import { and, asc, desc, eq, gt, gte, inArray, isNull, lt, or, type SQL, sql } from 'drizzle-orm'
+import { type ClockCorrection, ownStretches, withOffset } from '../../domain/clock-correction.ts'
 import {
   type Quality,
   type Quantity,
@@ -14,6 +16,7 @@ import type { PositionKind } from '../../domain/register.ts'
 import { bucketStart, levelFor, wholeBuckets } from '../../domain/rollups.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { channel, channelMap, fitting, importFile, position, reading, source } from '../schema/index.ts'
+import { type Corrections, correctionsFor, readingParts } from './clock-corrections.server.ts'
 import { listDue } from './rollups.server.ts'
 import { usable } from './usable.server.ts'
 
@@ -154,16 +157,9 @@ export async function lastReadings(
   at: Date,
 ): Promise<Map<number, { usable: ChannelReading | null; any: ChannelReading | null }>> {
   const since = new Date(at.getTime() - LOOK_BACK_DAYS * 86_400_000)
-  const last = async (channelId: number, extra: SQL | undefined): Promise<ChannelReading | null> => {
-    const rows = await db
-      .select(readingColumns)
-      .from(reading)
-      .where(and(eq(reading.channelId, channelId), gt(reading.at, since), sql`${reading.at} <= ${at}`, extra))
-      .orderBy(sql`${reading.at} DESC`)
-      .limit(1)
-    const row = rows[0]
-    return row === undefined ? null : { ...row, quality: qualityWord(row.quality) }
-  }
+  const corrections = await correctionsFor(db, channelIds)
+  const last = (channelId: number, extra: SQL | undefined): Promise<ChannelReading | null> =>
+    edgeReading(db, { channelId, corrections: corrections.get(channelId) ?? [], since, at }, 'last', extra)
   const found = await Promise.all(
     channelIds.map(async (channelId) => {
       const any = await last(channelId, undefined)
@@ -175,6 +171,56 @@ export async function lastReadings(
     }),
   )
   return new Map(found)
+}
+
+/** A channel over (since, at] in true time. */
+export interface EdgeWindow {
+  channelId: number
+  corrections: readonly ClockCorrection[]
+  since: Date
+  at: Date
+}
+
+/** First or last reading of a channel after one instant and not after another, of those that meet a condition. */
+export async function edgeReading(
+  db: DbOrTx,
+  { channelId, corrections, since, at }: EdgeWindow,
+  edge: 'first' | 'last',
+  extra: SQL | undefined,
+): Promise<ChannelReading | null> {
+  const sign = edge === 'first' ? 1 : -1
+  const stretches = ownStretches(corrections, since.getTime() + 1, at.getTime() + 1)
+  const ends = await Promise.all(
+    stretches.map(async (stretch) => {
+      const rows = await db
+        .select(readingColumns)
+        .from(reading)
+        .where(and(withinOwn(channelId, stretch), extra))
+        .orderBy(edge === 'first' ? asc(reading.at) : desc(reading.at))
+        .limit(1)
+      return rows.map((row) => asRead(row, stretch.correction))
+    }),
+  )
+  return ends.flat().sort((a, b) => sign * (a.at.getTime() - b.at.getTime()))[0] ?? null
+}
+
+function withinOwn(channelId: number, { fromMs, toMs }: { fromMs: number; toMs: number }): SQL | undefined {
+  return and(
+    eq(reading.channelId, channelId),
+    gte(reading.at, new Date(fromMs)),
+    lt(reading.at, new Date(toMs)),
+  )
+}
+
+function asRead(
+  row: Omit<ChannelReading, 'quality'> & { quality: number },
+  correction: ClockCorrection | null,
+): ChannelReading {
+  return {
+    ...row,
+    at: new Date(withOffset(row.at.getTime(), correction)),
+    quality: qualityWord(row.quality),
+  }
 }
 
 function isUsableRow(row: ChannelReading): boolean {
@@ -214,13 +260,20 @@ export async function binReadings(db: DbOrTx, input: BinsAsked): Promise<Bin[]> 
   if (input.channelIds.length === 0) return []
   const { binSeconds, from, to } = input
   const level = levelFor(from.getTime(), binSeconds)
-  const parts = level === null ? null : await rollupParts(db, input, level)
-  const rows = sql`SELECT channel_id, at, value AS low, value AS high, ${input.logarithmic ? sql`LN(value)` : sql`value`} AS total, 1 AS n
-    FROM reading WHERE ${usable}${input.logarithmic ? sql` AND value > 0` : sql``} AND channel_id IN ${input.channelIds}`
-  const source =
-    parts === null
-      ? sql`${rows} AND at >= ${from} AND at < ${to}`
-      : sql.join([parts.rolled, ...parts.direct.map((where) => sql`${rows} AND ${where}`)], sql` UNION ALL `)
+  const corrections = await correctionsFor(db, input.channelIds)
+  const parts = level === null ? null : await rollupParts(db, input, level, corrections)
+  const total = input.logarithmic ? sql`LN(value)` : sql`value`
+  const positive = input.logarithmic ? sql` AND value > 0` : sql``
+  const direct = (parts?.direct ?? [{ channelIds: input.channelIds, from, to }]).flatMap((stretch) =>
+    readingParts(corrections, stretch.channelIds, stretch.from, stretch.to).map(
+      ({
+        where,
+        at,
+      }) => sql`SELECT channel_id, ${at} AS at, value AS low, value AS high, ${total} AS total, 1 AS n
+        FROM reading WHERE ${usable}${positive} AND ${where}`,
+    ),
+  )
+  const source = sql.join(parts === null ? direct : [parts.rolled, ...direct], sql` UNION ALL `)
   const [found] =
     await db.execute(sql`SELECT channel_id, TIMESTAMPDIFF(SECOND, ${from}, at) DIV ${binSeconds} AS bin,
       MIN(low) AS low, MAX(high) AS high, SUM(total) AS total, SUM(n) AS n
@@ -240,56 +293,81 @@ export async function binReadings(db: DbOrTx, input: BinsAsked): Promise<Bin[]> 
   })
 }
 
+interface DirectStretch {
+  channelIds: readonly number[]
+  from: Date
+  to: Date
+}
+
 /** What is read from rollups and what from readings; null when too much has changed for that to be worth while. */
 async function rollupParts(
   db: DbOrTx,
   { channelIds, from, to, logarithmic }: BinsAsked,
   level: number,
-): Promise<{ rolled: SQL; direct: SQL[] } | null> {
+  corrections: Corrections,
+): Promise<{ rolled: SQL; direct: DirectStretch[] } | null> {
   const end = new Date(Math.max(from.getTime(), bucketStart(to.getTime(), level)))
   // First what is due, then the rollups: one that is made anew in between is left out, and none is taken that is old.
-  const due = await listDue(db, channelIds, from, end)
+  const due = await listDue(db, channelIds, from, end, corrections)
   const changed = channelIds.flatMap((channelId) => {
     const own = due.filter((one) => one.channelId === channelId)
     return wholeBuckets(
       own.map((one) => ({ fromMs: one.from.getTime(), lastMs: one.last.getTime() })),
       level,
-    ).map(
-      (span) =>
-        sql`(channel_id = ${channelId} AND at >= ${new Date(Math.max(span.fromMs, from.getTime()))} AND at < ${new Date(Math.min(span.toMs, end.getTime()))})`,
-    )
+    ).map((span) => ({
+      channelIds: [channelId],
+      from: new Date(Math.max(span.fromMs, from.getTime())),
+      to: new Date(Math.min(span.toMs, end.getTime())),
+    }))
   })
   if (changed.length > MOST_DUE) return null
   const figures = logarithmic
     ? sql`min_positive AS low, max_value AS high, sum_ln AS total, positive AS n`
     : sql`min_value AS low, max_value AS high, sum_value AS total, usable AS n`
   const some = logarithmic ? sql`positive > 0` : sql`usable > 0`
-  const anyOf = sql`(${sql.join(changed, sql` OR `)})`
+  const without = changed.map(
+    (span) => sql`(channel_id = ${span.channelIds[0]} AND at >= ${span.from} AND at < ${span.to})`,
+  )
   return {
     rolled: sql`SELECT channel_id, at, ${figures} FROM rollup WHERE channel_id IN ${channelIds} AND level_seconds = ${level}
-      AND at >= ${from} AND at < ${end} AND ${some}${changed.length === 0 ? sql`` : sql` AND NOT ${anyOf}`}`,
-    direct: [sql`at >= ${end} AND at < ${to}`, ...(changed.length === 0 ? [] : [anyOf])],
+      AND at >= ${from} AND at < ${end} AND ${some}${changed.length === 0 ? sql`` : sql` AND NOT (${sql.join(without, sql` OR `)})`}`,
+    direct: [{ channelIds, from: end, to }, ...changed],
   }
 }
 
-/** Readings of one channel as stored, oldest first, for lists and downloads. */
-export async function listChannelReadings(
+interface ReadingsAsked {
+  channelId: number
+  from: Date
+  to: Date
+  limit: number
+}
+
+/** Readings of one channel by the time as stored, oldest first: for comparing them with what a file says. */
+export async function listStoredReadings(
   db: DbOrTx,
-  input: { channelId: number; from: Date; to: Date; limit: number },
+  { channelId, from, to, limit }: ReadingsAsked,
+  correction: ClockCorrection | null = null,
 ): Promise<ChannelReading[]> {
   const rows = await db
     .select(readingColumns)
     .from(reading)
-    .where(
-      and(
-        eq(reading.channelId, input.channelId),
-        sql`${reading.at} >= ${input.from}`,
-        lt(reading.at, input.to),
-      ),
-    )
+    .where(withinOwn(channelId, { fromMs: from.getTime(), toMs: to.getTime() }))
     .orderBy(asc(reading.at), asc(reading.seq))
-    .limit(input.limit)
-  return rows.map((row) => ({ ...row, quality: qualityWord(row.quality) }))
+    .limit(limit)
+  return rows.map((row) => asRead(row, correction))
+}
+
+/** Readings of one channel by their true time, oldest first, for lists and downloads. */
+export async function listChannelReadings(db: DbOrTx, asked: ReadingsAsked): Promise<ChannelReading[]> {
+  const corrections = (await correctionsFor(db, [asked.channelId])).get(asked.channelId) ?? []
+  const stretches = ownStretches(corrections, asked.from.getTime(), asked.to.getTime())
+  const read: ChannelReading[] = []
+  for (const { fromMs, toMs, correction } of stretches) {
+    const own = { ...asked, from: new Date(fromMs), to: new Date(toMs) }
+    read.push(...(await listStoredReadings(db, own, correction)))
+  }
+  if (stretches.length > 1) read.sort((a, b) => a.at.getTime() - b.at.getTime())
+  return read.slice(0, asked.limit)
 }
 
 export interface SourceEnd {

@@ -1,9 +1,11 @@
 /** Rollups of readings: made anew where readings have changed, and read in place of them. */
 import { and, asc, eq, gte, inArray, lt, type SQL, sql } from 'drizzle-orm'
+import { MOST_OFFSET_MS, widened } from '../../domain/clock-correction.ts'
 import { QUALITIES, qualityCode } from '../../domain/readings.ts'
 import { ROLLUP_LEVELS, type Span } from '../../domain/rollups.ts'
 import type { DbOrTx } from '../client.server.ts'
 import { channel, reading, rollup, rollupDue } from '../schema/index.ts'
+import { type Corrections, readingParts } from './clock-corrections.server.ts'
 import { usable } from './usable.server.ts'
 
 /** Qualities that a stored reading may have: withdrawn ones are not among the readings any more. */
@@ -16,6 +18,7 @@ const QUALITY_COLUMNS = sql.join(
   sql`, `,
 )
 
+/** By the source's own clock, as the readings are stored; their rollups are by true time. */
 export interface DueStretch {
   id: number
   channelId: number
@@ -41,19 +44,32 @@ export async function findDueChannel(db: DbOrTx): Promise<number | null> {
   return row?.channelId ?? null
 }
 
-/** What is due of some channels and touches [from, to). */
-export function listDue(
+/** What is due of some channels and touches [from, to): widened to true time by the corrections in force. */
+export async function listDue(
   db: DbOrTx,
   channelIds: readonly number[],
   from: Date,
   to: Date,
+  corrections: Corrections,
 ): Promise<DueStretch[]> {
-  return db
+  // Only where a clock has been corrected can a stretch touch what it does not reach by its own time.
+  const margin = corrections.size === 0 ? 0 : MOST_OFFSET_MS
+  const rows = await db
     .select(dueColumns)
     .from(rollupDue)
     .where(
-      and(inArray(rollupDue.channelId, [...channelIds]), lt(rollupDue.fromAt, to), gte(rollupDue.toAt, from)),
+      and(
+        inArray(rollupDue.channelId, [...channelIds]),
+        lt(rollupDue.fromAt, new Date(to.getTime() + margin)),
+        gte(rollupDue.toAt, new Date(from.getTime() - margin)),
+      ),
     )
+  return rows
+    .map((row) => {
+      const span = widened(corrections.get(row.channelId) ?? [], row.from.getTime(), row.last.getTime())
+      return { ...row, from: new Date(span.fromMs), last: new Date(span.lastMs) }
+    })
+    .filter((row) => row.from < to && row.last >= from)
 }
 
 /**
@@ -93,8 +109,13 @@ function bucket(at: SQL | typeof reading.at, levelSeconds: number): SQL {
   return sql`'1900-01-01' + INTERVAL (TIMESTAMPDIFF(SECOND, '1900-01-01', ${at}) DIV ${levelSeconds}) * ${levelSeconds} SECOND`
 }
 
-/** Makes the rollups of the shortest level over whole buckets of it from the readings. */
-export async function rollUpReadings(tx: DbOrTx, channelId: number, span: Span): Promise<void> {
+/** Makes the rollups of the shortest level over whole buckets of it, in true time, from the readings. */
+export async function rollUpReadings(
+  tx: DbOrTx,
+  channelId: number,
+  span: Span,
+  corrections: Corrections,
+): Promise<void> {
   const [level] = ROLLUP_LEVELS
   const [from, to] = [new Date(span.fromMs), new Date(span.toMs)]
   await deleteSpan(tx, channelId, level, span)
@@ -102,6 +123,10 @@ export async function rollUpReadings(tx: DbOrTx, channelId: number, span: Span):
     COUNTED.map(({ code }) => sql`SUM(IF(quality = ${code}, n, 0))`),
     sql`, `,
   )
+  const parts = readingParts(corrections, [channelId], from, to).map(
+    ({ where, at }) => sql`SELECT ${at} AS at, quality, marks, value FROM reading WHERE ${where}`,
+  )
+  if (parts.length === 0) return
   // First by bucket, quality and use, which leaves few rows for the many sums.
   await tx.execute(sql`INSERT INTO rollup (channel_id, level_seconds, at, usable, min_value, max_value, sum_value,
       positive, min_positive, sum_ln, ${QUALITY_COLUMNS})
@@ -111,7 +136,7 @@ export async function rollUpReadings(tx: DbOrTx, channelId: number, span: Span):
       SELECT ${bucket(reading.at, level)} AS bucket, quality, ${usable} AS good, COUNT(*) AS n, MIN(value) AS low,
         MAX(value) AS high, COALESCE(SUM(value), 0) AS total, COALESCE(SUM(value > 0), 0) AS above,
         MIN(IF(value > 0, value, NULL)) AS low_above, SUM(IF(value > 0, LN(value), 0)) AS total_ln
-      FROM reading WHERE channel_id = ${channelId} AND at >= ${from} AND at < ${to} GROUP BY bucket, quality, good
+      FROM (${sql.join(parts, sql` UNION ALL `)}) AS reading GROUP BY bucket, quality, good
     ) AS parts GROUP BY bucket`)
 }
 

@@ -5,8 +5,8 @@ import {
   offsetWords,
   ownStretches,
   readOffset,
-  trueHull,
   trueTime,
+  widened,
 } from '#app/domain/clock-correction.ts'
 
 const DAY = 86_400_000
@@ -68,16 +68,14 @@ describe('a corrected clock', () => {
     expect(overlap.map(({ correction }) => correction)).toEqual([SLOW, null])
   })
 
-  it('keeps all readings of a stretch inside its hull', () => {
-    const [from, last] = [SLOW.endsMs - 10 * DAY, FAST.startsMs + DAY]
-    expect(trueHull([SLOW, FAST], from, last)).toEqual({
-      fromMs: from + 120_000,
-      lastMs: trueTime(last, [FAST]),
-    })
-    expect(trueHull([FAST], FAST.startsMs, FAST.startsMs)).toEqual({
+  it('widens a stretch by what its readings are shifted, and by nothing else', () => {
+    const last = SLOW.endsMs - 1
+    expect(widened([SLOW, FAST], START - DAY, last)).toEqual({ fromMs: START - DAY, lastMs: last + 180_000 })
+    expect(widened([FAST], FAST.startsMs, FAST.endsMs + DAY)).toEqual({
       fromMs: FAST.startsMs - 2000,
-      lastMs: FAST.startsMs - 2000,
+      lastMs: FAST.endsMs + DAY,
     })
+    expect(widened([], START, START)).toEqual({ fromMs: START, lastMs: START })
   })
 })
 
