@@ -139,10 +139,14 @@ export function windowOpen({ permit }: PermitFacts, now: Date): Reason[] {
   return []
 }
 
-/** Every point of the permit is locked and verified, by somebody other than who locked it and who approved. */
+/**
+ * Every point that makes heating safe is locked and verified, by somebody other than who locked it and who approved.
+ * Points that take the heating's energy away are for work afterwards or beside: their locks come off before it heats.
+ */
 export function isolationVerified(facts: PermitFacts): Reason[] {
   const content = facts.permit.approvedContent ?? facts.permit.content
-  return content.points.flatMap(({ tag }): Reason[] => {
+  return content.points.flatMap(({ tag, purpose }): Reason[] => {
+    if (purpose === 'to-work') return []
     const point =
       facts.points.find((each) => each.tag === tag && each.holds) ??
       facts.points.findLast((each) => each.tag === tag && !each.removed)

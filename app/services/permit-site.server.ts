@@ -100,13 +100,17 @@ export async function readSiteHub(db: Db, actor: Actor, now: Date, number: strin
   const check = acts.findLast(({ act }) => act === 'site-check')
   const since = acts.findLast(({ act }) => act === (head.state === 'suspended' ? 'suspend' : 'approve'))
   const counts = check !== undefined && since !== undefined && check.revision > since.revision
-  const held = points.filter(({ holds }) => holds).length
+  const toHeat = new Set(
+    permit.content.points.filter(({ purpose }) => purpose === 'to-heat').map(({ tag }) => tag),
+  )
+  const needed = points.filter(({ tag }) => toHeat.has(tag))
+  const held = needed.filter(({ holds }) => holds).length
   const good = tests.filter(({ state }) => state === 'good').length
   return {
     ...head,
     next: nextAtSite({
       state: head.state,
-      points: points.length,
+      points: needed.length,
       held,
       tests: tests.length,
       good,
@@ -114,7 +118,7 @@ export async function readSiteHub(db: Db, actor: Actor, now: Date, number: strin
       locksOut: locksOut.length,
       until: head.currentUntil === null ? '' : instantText(head.currentUntil, head.zone),
     }),
-    points: { held, of: points.length },
+    points: { held, of: needed.length },
     tests: {
       good,
       of: tests.length,

@@ -401,6 +401,16 @@ describe('before work begins', () => {
     ['a lock verified by who hung it', point({ verifiedBy: CREW }), ['isolation']],
     ['a lock verified by who approved', point({ verifiedBy: OFFICER }), ['isolation']],
     ['a lock that was taken off', point({ holds: false, removed: true }), ['isolation']],
+    [
+      'a point for work beside or afterwards, which is free while it heats',
+      factsIn('approved', {
+        points: [],
+        permit: {
+          content: fullContent({ points: fullContent().points.map((p) => ({ ...p, purpose: 'to-work' })) }),
+        },
+      }),
+      [],
+    ],
     ['a test without a result', aTest({ state: 'missing' }), ['test']],
     ['a test that failed', aTest({ state: 'failed' }), ['test']],
     ['a test that is due again', aTest({ state: 'overdue' }), ['test']],

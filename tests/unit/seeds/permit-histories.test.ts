@@ -25,10 +25,7 @@ const rowOf = (number: string) => {
 const actsOf = (permitId: number) => tables.acts.filter((one) => one.permitId === permitId)
 const locksOf = (permitId: number) => tables.locks.points.filter((one) => one.permitId === permitId)
 
-/**
- * Locks as they were at an instant. A point that keeps heating from people is free while the segment is heated, as the
- * rules of locks have it; the rules of permits ask for every point at each renewal, so it is shown to them as held then.
- */
+/** Locks as they were at an instant. */
 function pointsAt(permitId: number, when: Date): PointFact[] {
   return locksOf(permitId)
     .filter(({ appliedAt }) => appliedAt <= when)
@@ -40,15 +37,10 @@ function pointsAt(permitId: number, when: Date): PointFact[] {
         lockNumber: one.lockNumber,
         appliedBy: one.appliedBy,
         verifiedBy: verified ? (one.verifiedBy ?? null) : null,
-        holds: verified && (!removed || freeForHeating(one, when)),
-        removed: removed && !freeForHeating(one, when),
+        holds: verified && !removed,
+        removed,
       }
     })
-}
-
-/** HSP-2026-030 was heated from 2026-11-01 10:20 to 2026-11-08 23:30. */
-function freeForHeating({ purpose }: { purpose: string }, when: Date): boolean {
-  return purpose === 'to-work' && when >= at('2026-11-01 10:20') && when < at('2026-11-08 23:30')
 }
 
 function testsAt(permitId: number, content: PermitContent, when: Date): TestFact[] {
