@@ -41,6 +41,9 @@ export interface PermitFormPageProps extends PermitFormData {
 
 export function PermitFormPage(props: PermitFormPageProps) {
   const { number, title, mode } = props
+  // Saving new terms closes the permit to more of them: the form stays until it has led on to the permit.
+  const [first] = useState({ number, open: mode !== 'closed' })
+  const opened = first.open && first.number === number
   return (
     <>
       <PageHead
@@ -62,7 +65,7 @@ export function PermitFormPage(props: PermitFormPageProps) {
       </PageHead>
       {mode !== 'free' && <Notice tone={mode === 'closed' ? 'warn' : 'heat'}>{props.modeText}</Notice>}
       {/* Text that was sent comes back even where the permit has been closed to it meanwhile. */}
-      {(mode !== 'closed' || hasText(props.answer)) && <OpenForm key={number} {...props} />}
+      {(mode !== 'closed' || opened || hasText(props.answer)) && <OpenForm key={number} {...props} />}
     </>
   )
 }
