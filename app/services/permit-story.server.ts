@@ -24,6 +24,7 @@ import { detailWords } from '../domain/permit-detail.ts'
 import { type PermitDifference, type PermitWording, permitDifferences } from '../domain/permit-differences.ts'
 import { permitStory, type StoryEvent, type StoryLine } from '../domain/permit-story.ts'
 import type { PermitState } from '../domain/permit-words.ts'
+import { listPermitPhotos } from './permit-photos.server.ts'
 import { getSite } from './site.server.ts'
 
 /** More blocked attempts than this are not told one by one. */
@@ -69,7 +70,7 @@ export async function readPermitHistory(db: Db, number: string): Promise<PermitH
   }
   const ended = permit.endedAt ?? new Date(8.64e15)
   const until = ended.getTime() > Date.UTC(9000, 0) ? new Date(Date.UTC(9000, 0)) : ended
-  const [points, boxLocks, tests, rounds, rulings, dangers, heating, attempts] = await Promise.all([
+  const [points, boxLocks, tests, rounds, rulings, dangers, heating, photos, attempts] = await Promise.all([
     listStoryPoints(db, permit.id),
     listStoryBoxLocks(db, permit.id),
     listStoryTests(db, permit.id),
@@ -77,6 +78,7 @@ export async function readPermitHistory(db: Db, number: string): Promise<PermitH
     listStoryRulings(db, permit.id),
     listStoryEvents(db, permit.id),
     listStoryHeating(db, permit.id, permit.windowFrom ?? permit.createdAt, until),
+    listPermitPhotos(db, number),
     listRecordRows(db, { subjectKind: 'permit', subjectId: number, limit: MOST_ATTEMPTS }),
   ])
   const events: StoryEvent[] = [
@@ -117,6 +119,14 @@ export async function readPermitHistory(db: Db, number: string): Promise<PermitH
         segment: segmentTag,
         who,
         how: statement.how,
+      }),
+    ),
+    ...photos.map(
+      ({ createdAt, createdByName, fileName }): StoryEvent => ({
+        kind: 'photo',
+        at: createdAt,
+        who: createdByName ?? 'Somebody',
+        name: fileName,
       }),
     ),
     ...attempts

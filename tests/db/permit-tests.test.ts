@@ -12,6 +12,7 @@ import {
 import type { PermitRoundForm, PermitTestForm } from '#app/domain/schemas/permit-site.ts'
 import { addPermitPhoto, listPermitPhotos, openPermitPhoto } from '#app/services/permit-photos.server.ts'
 import { readSiteHub, readSiteTests } from '#app/services/permit-site.server.ts'
+import { readPermitHistory } from '#app/services/permit-story.server.ts'
 import { recordPermitRound, recordPermitTest } from '#app/services/permit-test-steps.server.ts'
 import { readTests } from '#app/services/permit-tests.server.ts'
 import { listRecord } from '#app/services/record.server.ts'
@@ -254,6 +255,10 @@ test('a photo is kept with its caption, sha and sender, and comes back as it was
   expect(Buffer.from(await new Response(opened.body).arrayBuffer()).equals(PNG)).toBe(true)
   const hub = await readSiteHub(db, pim, MORNING, number)
   expect(hub.photos).toHaveLength(1)
+  const { lines } = await readPermitHistory(db, number)
+  expect(lines.map(({ text }) => text)).toContainEqual(
+    expect.stringMatching(/added the picture Barrier at 0 m – IMG_1\.png\.$/),
+  )
 })
 
 test('what is no picture is refused by its content, whatever its name, and leaves nothing', async () => {
