@@ -1,7 +1,8 @@
-import { and, asc, desc, eq, gt, inArray, lte, ne, or, sql } from 'drizzle-orm'
+import { and, asc, desc, eq, gt, inArray, lte, ne, sql } from 'drizzle-orm'
 import type { DbOrTx } from '../client.server.ts'
 import {
   alert,
+  alertAct,
   alertRuleVersion,
   mailAttempt,
   mailBounce,
@@ -323,7 +324,7 @@ export async function escalateAlertsTold(tx: DbOrTx, personId: number, now: Date
     .where(
       and(
         eq(alert.state, 'active'),
-        or(gt(alert.nextEscalationAt, now)),
+        gt(alert.nextEscalationAt, now),
         inArray(
           alert.id,
           tx
@@ -384,4 +385,59 @@ export async function findAlertForMail(db: DbOrTx, alertId: number) {
     .orderBy(desc(alert.id))
     .limit(1)
   return rows[0] ?? null
+}
+
+const undeliveredKey = (address: string) => `mail-undelivered:${address.slice(0, 110)}:`
+
+/** The alert about an address that still stands; null when none does. */
+export async function findOpenUndelivered(tx: DbOrTx, address: string): Promise<number | null> {
+  const rows = await tx
+    .select({ id: alert.id })
+    .from(alert)
+    .where(
+      and(
+        eq(alert.condition, 'mail-undelivered'),
+        inArray(alert.state, ['active', 'owned']),
+        sql`LOCATE(${undeliveredKey(address)}, ${alert.occurrenceKey}) = 1`,
+      ),
+    )
+    .limit(1)
+  return rows[0]?.id ?? null
+}
+
+export async function insertUndelivered(
+  tx: DbOrTx,
+  found: { address: string; outboxId: number; title: string; detail: unknown; text: string; at: Date },
+): Promise<number> {
+  const [result] = await tx.insert(alert).values({
+    condition: 'mail-undelivered',
+    priority: 'medium',
+    state: 'active',
+    occurrenceKey: `${undeliveredKey(found.address)}${found.outboxId}`,
+    title: found.title,
+    detail: found.detail,
+    startedAt: found.at,
+    noticedAt: found.at,
+  })
+  await tx.insert(alertAct).values({
+    alertId: result.insertId,
+    act: 'raise',
+    at: found.at,
+    recordedAt: found.at,
+    text: found.text,
+    detail: null,
+  })
+  return result.insertId
+}
+
+export async function saveUnsubscribed(
+  db: DbOrTx,
+  personId: number,
+  change: { digest: boolean } | { lowToDigest: boolean },
+  updatedAt: Date,
+): Promise<void> {
+  await db
+    .insert(mailPreference)
+    .values({ personId, ...change, updatedAt })
+    .onDuplicateKeyUpdate({ set: { ...change, updatedAt } })
 }
