@@ -5,6 +5,7 @@ export default [
   route('sign-in', 'routes/public/sign-in.tsx'),
   route('sign-out', 'routes/public/sign-out.tsx'),
   route('health', 'routes/public/health.tsx'),
+  route('unsubscribe/:token', 'routes/public/unsubscribe.tsx'),
 
   layout('routes/layout.tsx', [
     index('routes/line/line.tsx'),
@@ -77,7 +78,10 @@ export default [
   route('api/v1/openapi.json', 'routes/api/openapi.tsx'),
   route('api/v1/sources/:code/readings', 'routes/api/readings.tsx'),
   route('api/v1/sources/:code/files/:name', 'routes/api/files.tsx'),
+  route('api/v1/bounces', 'routes/api/bounces.tsx'),
   route('intake/upload', 'routes/intake/upload.tsx'),
+  route('intake/uploads', 'routes/intake/uploads.tsx'),
+  route('intake/uploads/:token', 'routes/intake/upload-pieces.tsx'),
   route('intake/:importId/original', 'routes/intake/original.tsx'),
   route('intake/:importId/rejected.csv', 'routes/intake/rejected-csv.tsx'),
 

@@ -10,7 +10,8 @@ import type { Actor } from '../domain/actor.ts'
 import { DomainError, ERROR_STATUS } from '../domain/errors.ts'
 import type { UploadFailure } from '../domain/imports.ts'
 import { findingText } from '../domain/night-files/refusal-text.ts'
-import { refusalErrorCode, stageUpload } from '../services/intake.server.ts'
+import { refusalErrorCode, type Staged, stageUpload } from '../services/intake.server.ts'
+import { finishUpload } from '../services/uploads.server.ts'
 
 const MIB = 1024 * 1024
 /** The parser of forms holds a file in memory as a whole, so larger ones come as bare bytes. */
@@ -129,17 +130,30 @@ async function* piecesOf(stream: ReadableStream<Uint8Array>): AsyncGenerator<Uin
 }
 
 /** Hands a file to the intake and turns what comes back into an answer with its status. */
-export async function receiveFile(
+export function receiveFile(
   db: Db,
   actor: Actor,
   now: Date,
   take: () => FileToReceive | Promise<FileToReceive>,
 ): Promise<UploadAnswer> {
+  return answerOf(async (onSource) => {
+    const file = await take()
+    onSource(file.sourceCode)
+    return stageUpload(db, actor, now, file)
+  })
+}
+
+/** The same for a file that came in pieces and is all here. */
+export function finishReceived(db: Db, actor: Actor, now: Date, token: string): Promise<UploadAnswer> {
+  return answerOf(() => finishUpload(db, actor, now, token))
+}
+
+async function answerOf(work: (onSource: (code: string) => void) => Promise<Staged>): Promise<UploadAnswer> {
   let source = ''
   try {
-    const file = await take()
-    source = file.sourceCode
-    const staged = await stageUpload(db, actor, now, file)
+    const staged = await work((code) => {
+      source = code
+    })
     if (staged.refusal === null)
       return { ok: true, importId: staged.importId, again: staged.again, reading: staged.state === 'reading' }
     return {
@@ -168,4 +182,14 @@ export async function receiveFile(
       },
     }
   }
+}
+
+/** The answer to a script: the address of the import, or what stands in the way. */
+export function answerReceived(answer: UploadAnswer): Response {
+  if (!answer.ok) return Response.json(answer.failure, { status: answer.status })
+  const href = `/intake/${answer.importId}`
+  return Response.json(
+    { importId: answer.importId, href },
+    { status: answer.again ? 200 : 201, headers: { Location: href } },
+  )
 }

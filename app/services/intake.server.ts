@@ -74,11 +74,7 @@ export async function stageUpload(db: Db, actor: Actor, now: Date, upload: Uploa
 export async function stageFile(db: Db, actor: Actor | null, now: Date, upload: Upload): Promise<Staged> {
   const fileName = plainFileName(upload.fileName)
   const source = await findSource(db, upload.sourceCode)
-  if (source === null) {
-    throw new DomainError('bad-input', 'One field needs another look; nothing has been saved.', {
-      fields: { source: [`The register has no source “${upload.sourceCode}”. Choose one from the list.`] },
-    })
-  }
+  if (source === null) throw unknownSource(upload.sourceCode)
   const statedBytes = upload.statedBytes
   if (statedBytes !== null && statedBytes > upload.limitBytes) throw tooLarge(upload.limitBytes)
   const rules = await readingRules(db, source, {
@@ -106,36 +102,68 @@ export async function stageFile(db: Db, actor: Actor | null, now: Date, upload: 
       reader?.push(piece)
       upload.onProgress?.({ bytes, lines: reader?.linesSeen ?? 0 })
     })
-    const readOut = reader?.end() ?? null
-    const held = await findSameBytes(db, sha256, ['accepted'])
-    if (held !== null) throw heldAlready(held, rules.zone)
-    const waiting = await findSameBytes(db, sha256, ['read', 'reading'])
-    if (waiting !== null && waiting.sourceId === source.id) {
-      await dropOriginal(db, attachmentId)
-      const state = waiting.state === 'reading' ? 'reading' : 'read'
-      return { importId: waiting.id, state, refusal: null, again: true }
-    }
-    const refused = await sameRefusal(db, now, source.id, sha256, readOut)
-    if (refused !== null) {
-      await dropOriginal(db, attachmentId)
-      return { importId: refused.importId, state: 'refused', refusal: refused.refusal, again: true }
-    }
-    const importId = await storeReport(db, actor, now, {
-      sourceId: source.id,
-      sourceCode: source.code,
+    const staged = await settleArrived(db, actor, now, {
+      source,
       fileName,
+      zone: rules.zone,
+      attachmentId,
       byteSize,
       sha256,
-      attachmentId,
-      readOut,
+      readOut: reader?.end() ?? null,
       sentWith: upload.sentWith,
     })
-    const state = readOut === null ? 'reading' : readState(readOut)
-    return { importId, state, refusal: readOut?.refusal ?? null, again: false }
+    if (staged.again) await dropOriginal(db, attachmentId)
+    return staged
   } catch (error) {
     await dropOriginal(db, attachmentId)
     throw error
   }
+}
+
+export interface Arrived {
+  source: { id: number; code: string }
+  fileName: string
+  zone: string
+  attachmentId: number
+  byteSize: number
+  sha256: string
+  /** Null for a large file, which the worker has yet to read. */
+  readOut: ReadOut | null
+  sentWith: string | undefined
+}
+
+/**
+ * What becomes of a file whose bytes are all kept: an import, or, where `again` is set, one that was there before; the
+ * kept bytes are then of no more use.
+ *
+ * @param alongside done in the transaction that makes the import
+ * @throws DomainError conflict, when the same bytes have been taken in before; its details name that import
+ */
+export async function settleArrived(
+  db: Db,
+  actor: Actor | null,
+  now: Date,
+  arrived: Arrived,
+  alongside: (inside: DbOrTx, importId: number) => Promise<void> = async () => {},
+): Promise<Staged> {
+  const { source, sha256, readOut } = arrived
+  const held = await findSameBytes(db, sha256, ['accepted'])
+  if (held !== null) throw heldAlready(held, arrived.zone)
+  const waiting = await findSameBytes(db, sha256, ['read', 'reading'])
+  if (waiting !== null && waiting.sourceId === source.id) {
+    const state = waiting.state === 'reading' ? 'reading' : 'read'
+    return { importId: waiting.id, state, refusal: null, again: true }
+  }
+  const refused = await sameRefusal(db, now, source.id, sha256, readOut)
+  if (refused !== null)
+    return { importId: refused.importId, state: 'refused', refusal: refused.refusal, again: true }
+  const importId = await tx(db, async (inside) => {
+    const made = await storeReport(inside, actor, now, arrived)
+    await alongside(inside, made)
+    return made
+  })
+  const state = readOut === null ? 'reading' : readState(readOut)
+  return { importId, state, refusal: readOut?.refusal ?? null, again: false }
 }
 
 /**
@@ -176,7 +204,15 @@ export function heldAlready(held: ImportListRow, zone: string): DomainError {
   )
 }
 
-function tooLarge(limitBytes: number): DomainError {
+/** The message for a source that the register does not have. */
+export function unknownSource(code: string): DomainError {
+  return new DomainError('bad-input', 'One field needs another look; nothing has been saved.', {
+    fields: { source: [`The register has no source “${code}”. Choose one from the list.`] },
+  })
+}
+
+/** The message for a file over the limit. */
+export function tooLarge(limitBytes: number): DomainError {
   return new DomainError(
     'too-large',
     `The file is larger than ${Math.floor(limitBytes / PIECE_BYTES)} MiB, the most that is taken here. Split it at a line end and send the parts.`,
@@ -184,7 +220,7 @@ function tooLarge(limitBytes: number): DomainError {
 }
 
 /** A name fit for showing: no folders, no control characters, at most 200 characters. */
-function plainFileName(raw: string): string {
+export function plainFileName(raw: string): string {
   const base = raw.split(/[/\\]/).at(-1) ?? ''
   const plain = Array.from(base.normalize('NFC'))
     .filter((letter) => letter >= ' ' && letter !== '\u007f')
@@ -225,18 +261,6 @@ async function keepBytes(
   return { byteSize, sha256: hash.digest('hex') }
 }
 
-interface ReportToStore {
-  sourceId: number
-  sourceCode: string
-  fileName: string
-  byteSize: number
-  sha256: string
-  attachmentId: number
-  /** Null for a large file, which the worker has yet to read. */
-  readOut: ReadOut | null
-  sentWith: string | undefined
-}
-
 /** State of a file that has been read. */
 function readState(readOut: ReadOut): 'read' | 'refused' {
   return readOut.state === 'refused' ? 'refused' : 'read'
@@ -255,44 +279,43 @@ export function reportColumns(readOut: ReadOut) {
   }
 }
 
-function storeReport(db: Db, actor: Actor | null, now: Date, report: ReportToStore): Promise<number> {
-  const { readOut } = report
-  return tx(db, async (inside) => {
-    const importId = await insertImport(inside, {
-      state: 'reading',
-      sourceId: report.sourceId,
-      fileName: report.fileName,
-      byteSize: report.byteSize,
-      sha256: report.sha256,
-      attachmentId: report.attachmentId,
-      uploadedBy: actor?.personId ?? null,
-      uploadedAt: now,
-      ...(readOut === null ? {} : reportColumns(readOut)),
-    })
-    await finishOriginal(inside, report.attachmentId, {
-      byteSize: report.byteSize,
-      sha256: report.sha256,
-      subjectId: String(importId),
-    })
-    await writeRecord(inside, {
-      at: now,
-      actor,
-      act: readOut?.state === 'refused' ? 'night file refused' : 'night file received',
-      subjectKind: 'import',
-      subjectId: String(importId),
-      after: {
-        source: report.sourceCode,
-        fileName: report.fileName,
-        byteSize: report.byteSize,
-        sha256: report.sha256,
-        lines: readOut?.lines.total ?? null,
-        refusal: readOut?.refusal?.code ?? null,
-        ...(report.sentWith === undefined ? {} : { token: report.sentWith }),
-      },
-    })
-    if (readOut === null) await askToRead(inside, importId, [])
-    return importId
+async function storeReport(
+  inside: DbOrTx,
+  actor: Actor | null,
+  now: Date,
+  arrived: Arrived,
+): Promise<number> {
+  const { source, fileName, byteSize, sha256, attachmentId, readOut, sentWith } = arrived
+  const importId = await insertImport(inside, {
+    state: 'reading',
+    sourceId: source.id,
+    fileName,
+    byteSize,
+    sha256,
+    attachmentId,
+    uploadedBy: actor?.personId ?? null,
+    uploadedAt: now,
+    ...(readOut === null ? {} : reportColumns(readOut)),
   })
+  await finishOriginal(inside, attachmentId, { byteSize, sha256, subjectId: String(importId) })
+  await writeRecord(inside, {
+    at: now,
+    actor,
+    act: readOut?.state === 'refused' ? 'night file refused' : 'night file received',
+    subjectKind: 'import',
+    subjectId: String(importId),
+    after: {
+      source: source.code,
+      fileName,
+      byteSize,
+      sha256,
+      lines: readOut?.lines.total ?? null,
+      refusal: readOut?.refusal?.code ?? null,
+      ...(sentWith === undefined ? {} : { token: sentWith }),
+    },
+  })
+  if (readOut === null) await askToRead(inside, importId, [])
+  return importId
 }
 
 /** Has the worker read a kept file, inside the transaction that sets its state to `reading`. */

@@ -41,6 +41,12 @@ const ADDRESSES: Record<string, Address> = {
   },
   '/sign-out': { GET: { who: 'anyone', status: 302 }, POST: { who: 'anyone', status: 302 } },
   '/health': { GET: { who: 'anyone', status: 200 } },
+  // The address stands in one mail and is random: whoever has it may, and nobody guesses it.
+  '/unsubscribe/:token': {
+    path: '/unsubscribe/0123456789abcdef0123456789abcdef',
+    GET: { who: 'anyone', status: 404 },
+    POST: { who: 'anyone', status: 404 },
+  },
   '/*': { path: '/no-such-page', GET: { who: 'anyone', status: 404 }, POST: { who: 'anyone', status: 404 } },
   '/': { GET: { who: STAFF, status: 200 } },
   '/segments/:tag': { path: '/segments/SG-X1', GET: { who: STAFF, status: 200 } },
@@ -79,6 +85,13 @@ const ADDRESSES: Record<string, Address> = {
   '/forecasts/:tag/what-if': { path: '/forecasts/SG-X1/what-if', GET: { who: STAFF, status: 200 } },
   '/intake': { GET: { who: STAFF, status: 200 }, POST: { who: HANDS, status: 400 } },
   '/intake/upload': { POST: { who: HANDS, status: 400 } },
+  // Without the protocol's header nothing is begun.
+  '/intake/uploads': { POST: { who: HANDS, status: 412 } },
+  '/intake/uploads/:token': {
+    path: '/intake/uploads/none',
+    GET: { who: HANDS, status: 404 },
+    POST: { who: HANDS, status: 404 },
+  },
   '/intake/:importId': {
     path: '/intake/999',
     GET: { who: STAFF, status: 404 },
@@ -249,6 +262,7 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: 'anyone', status: 405 },
     POST: { who: 'anyone', status: 405 },
   },
+  '/api/v1/bounces': { GET: { who: 'anyone', status: 405 }, POST: { who: 'anyone', status: 401 } },
   '/account': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
   '/clock': { GET: { who: ['administrator'], status: 200 }, POST: { who: ['administrator'], status: 400 } },
 }

@@ -1,6 +1,6 @@
-import { and, asc, eq, lt } from 'drizzle-orm'
+import { and, asc, eq, lt, notExists } from 'drizzle-orm'
 import type { DbOrTx } from '../client.server.ts'
-import { attachment, attachmentChunk } from '../schema/index.ts'
+import { attachment, attachmentChunk, upload } from '../schema/index.ts'
 
 export type AttachmentRow = typeof attachment.$inferSelect
 
@@ -87,11 +87,17 @@ export async function deleteIncomplete(tx: DbOrTx, attachmentId: number): Promis
   await tx.delete(attachment).where(eq(attachment.id, attachmentId))
 }
 
-/** Files begun before an instant and never completed. */
+/** Files begun before an instant and never completed. Those that come in pieces have a rule of their own. */
 export async function listIncomplete(db: DbOrTx, before: Date): Promise<number[]> {
   const rows = await db
     .select({ id: attachment.id })
     .from(attachment)
-    .where(and(eq(attachment.complete, false), lt(attachment.createdAt, before)))
+    .where(
+      and(
+        eq(attachment.complete, false),
+        lt(attachment.createdAt, before),
+        notExists(db.select({ id: upload.id }).from(upload).where(eq(upload.attachmentId, attachment.id))),
+      ),
+    )
   return rows.map(({ id }) => id)
 }

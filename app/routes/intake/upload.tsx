@@ -1,7 +1,7 @@
 import { nowOf, permitted } from '#app/auth/guard.server.ts'
 import { getDb } from '#app/db/client.server.ts'
 import { env } from '#app/env.server.ts'
-import { fileFromBody, receiveFile } from '#app/server/upload.server.ts'
+import { answerReceived, fileFromBody, receiveFile } from '#app/server/upload.server.ts'
 import type { Route } from './+types/upload'
 
 /** Takes the bare bytes of one night file (`?source=…&name=…`), streamed; answers with the import's address as JSON. */
@@ -10,9 +10,5 @@ export async function action({ context, request }: Route.ActionArgs) {
   const answer = await receiveFile(getDb(), actor, nowOf(context), () =>
     fileFromBody(request, env().MAX_NIGHT_FILE_MIB),
   )
-  if (!answer.ok) return Response.json(answer.failure, { status: answer.status })
-  return Response.json(
-    { importId: answer.importId, href: `/intake/${answer.importId}` },
-    { status: answer.again ? 200 : 201, headers: { Location: `/intake/${answer.importId}` } },
-  )
+  return answerReceived(answer)
 }
