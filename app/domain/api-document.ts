@@ -127,6 +127,27 @@ export function apiDocument({ fileMib, postsPerMinute }: ApiLimits) {
           },
         },
       },
+      '/api/v1/bounces': {
+        post: {
+          operationId: 'sendBounce',
+          summary: 'Hand in a mail that came back',
+          description:
+            'For the mail server: the body is a delivery-status notification (RFC 3464) as it came to a bounce address. The token is that of the setting BOUNCE_TOKEN. The same notice again changes nothing.',
+          requestBody: { required: true, content: { 'message/rfc822': {} } },
+          responses: {
+            200: { description: 'Written down.', content: { 'application/json': {} } },
+            ...COMMON,
+            [ERROR_STATUS['not-found']]: {
+              description: 'About no mail of ours.',
+              content: problemOf('Problem'),
+            },
+            [ERROR_STATUS['too-large']]: {
+              description: 'Larger than what is taken, or without its length.',
+              content: problemOf('Problem'),
+            },
+          },
+        },
+      },
       '/api/v1/sources/{code}/readings': {
         post: {
           operationId: 'postReadings',

@@ -1,7 +1,7 @@
 /**
  * What the worker process does until it is told to stop: it keeps the product clock, looks at the schedule, does one
- * job after another, and ends permits at the second their time is over. Each of the four has its own pace; none is held
- * up by an error of another, or by a long job.
+ * job after another, ends permits at the second their time is over, and sends mail. Each of the five has its own pace;
+ * none is held up by an error of another, or by a long job.
  */
 import { randomUUID } from 'node:crypto'
 import { type Db, getDb } from '../db/client.server.ts'
@@ -15,6 +15,7 @@ import { repeat } from '../services/repeat.server.ts'
 import { releaseSchedule, runSchedule } from '../services/schedule.server.ts'
 import { feederTasks } from './jobs/feeder.server.ts'
 import { JOB_HANDLERS } from './jobs/handlers.server.ts'
+import { sendMail } from './mail/send.server.ts'
 
 const SCHEDULE_MS = 5_000
 const IDLE_MS = 1_000
@@ -46,6 +47,7 @@ export async function runWorker({
     }),
     repeat('do jobs', signal, () => doOneJob(db, handlers, signal)),
     repeat('end permits in time', signal, () => endPermits(db)),
+    sendMail(db, owner, signal),
   ])
   await endWell(db, owner)
 }
