@@ -10,7 +10,7 @@ import {
   listValvesOf,
 } from '../db/queries/bake-plans.server.ts'
 import { listCompetences } from '../db/queries/competences.server.ts'
-import { listIsolationTests } from '../db/queries/isolation-tests.server.ts'
+import { type IsolationTestRow, listIsolationTests } from '../db/queries/isolation-tests.server.ts'
 import {
   type LimitRow,
   listLimits,
@@ -332,22 +332,35 @@ function worst(values: readonly (number | null)[]): number | null {
 const TESTS_LOOKED_AT = 50
 
 const NOTES: Record<IsolationTestState, (voidRemark: string) => string> = {
-  recorded: () => 'the newest one waits for an engineer',
+  recorded: () => 'waits for an engineer',
   accepted: () => '',
-  voided: (remark) => `the newest one was voided: ${remark}`,
+  voided: (remark) => `was voided: ${remark.replace(/\.$/, '')}`,
+}
+
+/** Why the newest test does not count: an opening since, or its own standing, or both. */
+function isolationNote(newest: IsolationTestRow | undefined, since: Date | null, zone: string): string {
+  if (newest === undefined) return ''
+  const standing = NOTES[newest.state](newest.voidRemark)
+  const older =
+    since !== null && newest.closedAt < since
+      ? `is from before that, begun ${instantText(newest.closedAt, zone)}`
+      : ''
+  const why = [older, standing].filter((text) => text !== '').join(', and ')
+  return why === '' ? '' : `the newest one ${why}`
 }
 
 async function segmentFacts(db: DbOrTx, segment: SegmentWithState, now: Date): Promise<SegmentFacts> {
   const since = await closedSince(db, segment.id, now)
-  const tests = (await listIsolationTests(db, segment.id, TESTS_LOOKED_AT)).filter(
-    ({ closedAt }) => since === null || closedAt >= since,
+  const tests = await listIsolationTests(db, segment.id, TESTS_LOOKED_AT)
+  const accepted = tests.find(
+    ({ state, closedAt }) => state === 'accepted' && (since === null || closedAt >= since),
   )
-  const [newest] = tests
+  const { timeZone } = await getSite(db)
   return {
     tag: segment.tag,
     leakCheckedAt: await lastLeakCheck(db, segment.id, since),
-    isolationTestAt: tests.find(({ state }) => state === 'accepted')?.acceptedAt ?? null,
-    isolationNote: newest === undefined ? '' : NOTES[newest.state](newest.voidRemark),
+    isolationTestAt: accepted?.acceptedAt ?? null,
+    isolationNote: isolationNote(tests[0], since, timeZone),
   }
 }
 

@@ -52,6 +52,7 @@ export function PermitPage(props: PermitPageProps) {
       {/* A refused ruling is told at its conflict. */}
       <FormFailure failure={failure?.typed?.act === 'rule' ? undefined : failure} />
       {waitsFor !== '' && <p className="-mt-1 mb-4">{waitsFor}</p>}
+      {open === undefined && <InTheWay offers={offers} />}
       {open !== undefined && open.act !== 'suspend' && (
         <ActForm
           key={open.act}
@@ -99,6 +100,38 @@ export function PermitPage(props: PermitPageProps) {
         </div>
       </div>
     </>
+  )
+}
+
+/** An act that would be refused is no button to press first. */
+function kindOf(act: OfferedAct, reasons: readonly string[]) {
+  const { kind } = ACT_WORDS[act]
+  return kind === 'primary' && reasons.length > 0 ? 'plain' : kind
+}
+
+/** Before anything is read: whether the act that the page is there for can be done, and how much keeps it from that. */
+function InTheWay({ offers }: Pick<PermitPageProps, 'offers'>) {
+  const next = offers.find(({ act }) => ACT_WORDS[act].kind === 'primary')
+  if (next === undefined) return null
+  const { reasons } = next
+  const word = ACT_WORDS[next.act].button
+  if (reasons.length === 0) {
+    return (
+      <p className="mb-4 print:hidden">
+        By the record nothing keeps you from “{word}”. The record is not the site.
+      </p>
+    )
+  }
+  return (
+    <p className="mb-4 border-l-4 border-warn bg-warn-soft px-3 py-2 print:hidden">
+      <strong className="font-semibold">
+        “{word}” would be refused now, for {reasons.length === 1 ? 'one reason' : `${reasons.length} reasons`}
+        .
+      </strong>{' '}
+      <Link to={`?act=${next.act}#act`} className="link inline-block py-0.5">
+        Read {reasons.length === 1 ? 'it' : 'them'}
+      </Link>
+    </p>
   )
 }
 
@@ -159,13 +192,13 @@ function Head(props: PermitPageProps) {
               {props.state === 'draft' || props.state === 'returned' ? 'Edit' : 'Change the terms'}
             </ButtonLink>
           )}
-          {offers.map(({ act }) =>
+          {offers.map(({ act, reasons }) =>
             act === 'suspend' ? (
               <ButtonLink key={act} to="#stop" kind="danger">
                 {ACT_WORDS[act].button}
               </ButtonLink>
             ) : (
-              <ButtonLink key={act} to={`?act=${act}#act`} kind={ACT_WORDS[act].kind}>
+              <ButtonLink key={act} to={`?act=${act}#act`} kind={kindOf(act, reasons)}>
                 {ACT_WORDS[act].button}
               </ButtonLink>
             ),

@@ -295,7 +295,7 @@ export function HeatingPanel({ heating, number, may }: PermitPageData) {
     <Panel
       title="Heating"
       aside={
-        <Link to={`/permits/${number}/heating`} className="link text-sm">
+        <Link to={`/permits/${number}/heating`} className="link inline-block py-1 text-sm">
           {may.heating ? 'Say what you found' : 'What was said'}
         </Link>
       }
@@ -320,7 +320,7 @@ export function RecentPanel({ number, recent }: PermitPageData) {
     <Panel
       title="Last acts"
       aside={
-        <Link to={`/permits/${number}/history`} className="link text-sm">
+        <Link to={`/permits/${number}/history`} className="link inline-block py-1 text-sm">
           Whole story
         </Link>
       }
