@@ -6,7 +6,6 @@ export default [
   route('sign-out', 'routes/public/sign-out.tsx'),
   route('health', 'routes/public/health.tsx'),
   route('unsubscribe/:token', 'routes/public/unsubscribe.tsx'),
-  route('unsubscribe/:token', 'routes/public/unsubscribe.tsx'),
 
   layout('routes/layout.tsx', [
     index('routes/line/line.tsx'),
@@ -79,7 +78,6 @@ export default [
   route('api/v1/openapi.json', 'routes/api/openapi.tsx'),
   route('api/v1/sources/:code/readings', 'routes/api/readings.tsx'),
   route('api/v1/sources/:code/files/:name', 'routes/api/files.tsx'),
-  route('api/v1/bounces', 'routes/api/bounces.tsx'),
   route('api/v1/bounces', 'routes/api/bounces.tsx'),
   route('intake/upload', 'routes/intake/upload.tsx'),
   route('intake/uploads', 'routes/intake/uploads.tsx'),

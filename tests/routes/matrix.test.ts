@@ -47,12 +47,6 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: 'anyone', status: 404 },
     POST: { who: 'anyone', status: 404 },
   },
-  // The address stands in one mail and is random: whoever has it may, and nobody guesses it.
-  '/unsubscribe/:token': {
-    path: '/unsubscribe/0123456789abcdef0123456789abcdef',
-    GET: { who: 'anyone', status: 404 },
-    POST: { who: 'anyone', status: 404 },
-  },
   '/*': { path: '/no-such-page', GET: { who: 'anyone', status: 404 }, POST: { who: 'anyone', status: 404 } },
   '/': { GET: { who: STAFF, status: 200 } },
   '/segments/:tag': { path: '/segments/SG-X1', GET: { who: STAFF, status: 200 } },
@@ -268,7 +262,6 @@ const ADDRESSES: Record<string, Address> = {
     GET: { who: 'anyone', status: 405 },
     POST: { who: 'anyone', status: 405 },
   },
-  '/api/v1/bounces': { GET: { who: 'anyone', status: 405 }, POST: { who: 'anyone', status: 401 } },
   '/api/v1/bounces': { GET: { who: 'anyone', status: 405 }, POST: { who: 'anyone', status: 401 } },
   '/account': { GET: { who: ROLES, status: 200 }, POST: { who: ROLES, status: 400 } },
   '/clock': { GET: { who: ['administrator'], status: 200 }, POST: { who: ['administrator'], status: 400 } },
