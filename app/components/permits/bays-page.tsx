@@ -33,7 +33,7 @@ export function BaysPage(props: BaysPageProps) {
           </Link>
         }
       >
-        A reading below {limits.low.toFixed(1)} % or above {limits.high.toFixed(1)} % closes the segment's
+        A reading below {limits.low.toFixed(1)} % or above {limits.high.toFixed(1)} % closes the segment’s
         stretch at once. Ebbline writes down and shows; it locks no door and measures nothing itself.
       </PageHead>
       {!limits.set && (
@@ -46,7 +46,9 @@ export function BaysPage(props: BaysPageProps) {
         </Notice>
       )}
       {open.length === 0 ? (
-        <p className="mb-4 py-2">No stretch is closed.</p>
+        <p className="mb-4 py-2">
+          No stretch is closed. That says nothing about the air in any of them: measure before you go in.
+        </p>
       ) : (
         open.map((bay) => <ClosedBayPanel key={bay.closure.id} bay={bay} page={props} />)
       )}

@@ -304,6 +304,7 @@ export function HeatingPanel({ heating, number, may }: PermitPageData) {
         <strong className={heating.on === true ? 'text-heat' : heating.on === null ? 'text-warn' : ''}>
           Heating is {word}.
         </strong>{' '}
+        {heating.on === null && <strong className="font-semibold">Take it for on. </strong>}
         {heating.text}
       </p>
       {heating.since !== null && (

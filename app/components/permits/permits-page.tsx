@@ -25,10 +25,10 @@ export function PermitsPage(props: PermitRegisterData) {
         title="Permits"
         actions={
           <>
-            <ButtonLink to="/permits/works">Works by others</ButtonLink>
-            <ButtonLink to="/permits/bays">Bays</ButtonLink>
+            <ButtonLink to="/permits/works">Works in the tunnel</ButtonLink>
+            <ButtonLink to="/permits/bays">Closed bays and oxygen</ButtonLink>
             <ButtonLink to="/permits/thresholds">Thresholds</ButtonLink>
-            <ButtonLink to="/permits/policy">Policy</ButtonLink>
+            <ButtonLink to="/permits/policy">Permit policy</ButtonLink>
             {may.draft && (
               <ButtonLink kind="primary" to="/permits/new">
                 Draw up a permit

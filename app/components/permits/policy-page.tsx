@@ -31,7 +31,7 @@ export function PolicyPage(props: PolicyPageProps) {
   return (
     <>
       <PageHead
-        title="What holds for permits here"
+        title="Permit policy"
         crumbs={
           <Link to="/permits" className="link">
             Permits

@@ -39,20 +39,25 @@ function WorkPlace({ segmentTag, stretch }: Pick<WorkInList, 'segmentTag' | 'str
 
 const NEAR: Column<WorkInList> = {
   key: 'near',
-  head: 'Near heat',
+  head: 'Meets',
   cell: ({ clashes, stopped }) => {
     const against = [...new Set(clashes.map(({ permit }) => permit ?? 'hot segment'))].map((who) => {
       const rules = clashes.filter(({ permit }) => (permit ?? 'hot segment') === who).map(({ rule }) => rule)
       return `${who}: ${[...new Set(rules)].join(', ')}`
     })
-    if (against.length === 0) return stopped ? <strong className="text-bad">closed bay</strong> : 'no'
+    if (against.length === 0)
+      return stopped ? <strong className="text-bad">closed bay</strong> : 'no permit or heat found'
     const waits = clashes.some((clash) => standsInTheWay(clash))
     return (
       <>
         <strong className={waits ? 'font-semibold text-bad' : 'font-medium'}>
           {waits ? 'cannot begin' : 'to be known'}
         </strong>
-        <span className="block text-sm text-ink-2">{against.join('; ')}</span>
+        {against.map((each) => (
+          <span key={each} className="block text-sm whitespace-nowrap text-ink-2">
+            {each}
+          </span>
+        ))}
       </>
     )
   },

@@ -62,6 +62,6 @@ export function tagsText(places: readonly Pick<Place, 'tag'>[]): string {
 /** A piece of work by kind, title and number, where it is and when. */
 export function workText(work: WorkFact, zone: string): string {
   const where =
-    work.stretch === null ? 'no place given' : `${work.stretch.line}, ${stretchText(work.stretch)}`
+    work.stretch === null ? 'the site as a whole' : `${work.stretch.line}, ${stretchText(work.stretch)}`
   return `${PLANNED_WORK_LABELS[work.kind]} “${work.title}” (work ${work.id}: ${where}; ${spanText(work, zone)})`
 }

@@ -16,7 +16,7 @@ import { askRetention, decideRetention, holdPermit, readRetention } from '#app/s
 import type { Route } from './+types/policy'
 
 export function meta() {
-  return [{ title: 'What holds for permits · Ebbline' }]
+  return [{ title: 'Permit policy · Ebbline' }]
 }
 
 export async function loader({ context, request }: Route.LoaderArgs) {
