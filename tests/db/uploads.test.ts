@@ -255,7 +255,10 @@ describe('what becomes of a whole file', () => {
     const page = new TextEncoder().encode('<html><form></form></html>')
     const token = await sendAll(page)
     const staged = await finishUpload(db, technician, MORNING, token)
-    expect(staged).toMatchObject({ state: 'refused', refusal: { found: expect.stringContaining('web page') } })
+    expect(staged).toMatchObject({
+      state: 'refused',
+      refusal: { found: expect.stringContaining('web page') },
+    })
     expect(await finishUpload(db, technician, MORNING, token)).toEqual({ ...staged, again: true })
   })
 

@@ -1,7 +1,8 @@
 /** Several files that have been chosen: the logger of each, how far it is, and what became of it. */
 import { Link } from 'react-router'
+import type { UnfinishedUpload } from '#app/services/uploads.server.ts'
 import { sizeText } from './file-words.ts'
-import type { FileToSend, UploadState } from './use-upload.ts'
+import type { FileToSend, UploadState } from './upload-state.ts'
 
 export interface SourceChoice {
   code: string
@@ -89,16 +90,44 @@ function FileOutcome({ state, busy }: { state: UploadState | undefined; busy: bo
 }
 
 /** How much of a file has been sent. */
-export function SendingBar({ state }: { state: Extract<UploadState, { kind: 'sending' | 'reading' }> }) {
+export function SendingBar({
+  state,
+}: {
+  state: Extract<UploadState, { kind: 'sending' | 'broken' | 'reading' }>
+}) {
   const share = state.kind === 'reading' ? 1 : state.sent / Math.max(1, state.total)
+  const percent = Math.floor(share * 100)
   return (
     <span className="block max-w-md">
       <progress value={share} max={1} aria-label="Sent" className="block h-2 w-full accent-vac" />
       <span className="mt-1 block text-sm text-ink-2">
         {state.kind === 'reading'
           ? 'All bytes have arrived; the last lines are being read.'
-          : `${Math.floor(share * 100)} % of ${sizeText(state.total)} sent`}
+          : state.kind === 'broken'
+            ? `Broken off at ${percent} %, going on as soon as the connection is back.`
+            : `${percent} % of ${sizeText(state.total)} sent`}
       </span>
     </span>
+  )
+}
+
+/** Files that somebody began to send and that have not arrived whole. */
+export function UnfinishedFiles({ uploads }: { uploads: readonly UnfinishedUpload[] }) {
+  if (uploads.length === 0) return null
+  return (
+    <div className="mb-4 text-sm">
+      <p>
+        Broken off on the way. Choose the same file again, in the browser that it was begun in, to go on from
+        there; what has arrived is kept for a day.
+      </p>
+      <ul aria-label="Files that broke off">
+        {uploads.map(({ token, fileName, byteSize, receivedBytes }) => (
+          <li key={token} className="break-words">
+            {fileName}: {Math.floor((receivedBytes / Math.max(1, byteSize)) * 100)} % of {sizeText(byteSize)}{' '}
+            have arrived
+          </li>
+        ))}
+      </ul>
+    </div>
   )
 }

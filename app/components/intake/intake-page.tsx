@@ -2,6 +2,7 @@
 import { Link } from 'react-router'
 import { IMPORT_STATE_LABELS, type UploadFailure } from '#app/domain/imports.ts'
 import type { IntakePageData, NightRow } from '#app/services/intake-pages.server.ts'
+import type { UnfinishedUpload } from '#app/services/uploads.server.ts'
 import { type Column, DataTable } from '../ui/data-table.tsx'
 import { Instant } from '../ui/instant.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
@@ -114,8 +115,14 @@ export function IntakePage({
   mayTakeIn,
   limitMib,
   formLimitMib,
+  unfinished,
   failure,
-}: IntakePageData & { limitMib: number; formLimitMib: number; failure: UploadFailure | undefined }) {
+}: IntakePageData & {
+  limitMib: number
+  formLimitMib: number
+  unfinished: readonly UnfinishedUpload[]
+  failure: UploadFailure | undefined
+}) {
   const owed = nights.filter(({ state }) => OWED.includes(state)).length
   const waiting = files.filter(({ state }) => state === 'read').length
   return (
@@ -128,7 +135,13 @@ export function IntakePage({
       </PageHead>
       {mayTakeIn && (
         <Panel title="Send a night file">
-          <UploadForm sources={sources} limitMib={limitMib} formLimitMib={formLimitMib} failure={failure} />
+          <UploadForm
+            sources={sources}
+            limitMib={limitMib}
+            formLimitMib={formLimitMib}
+            unfinished={unfinished}
+            failure={failure}
+          />
         </Panel>
       )}
       <Panel title="The last three nights">

@@ -5,12 +5,14 @@
 import { type DragEvent, type FormEvent, useEffect, useState } from 'react'
 import { Form, Link, useNavigate, useNavigation, useRevalidator } from 'react-router'
 import type { UploadFailure } from '#app/domain/imports.ts'
+import type { UnfinishedUpload } from '#app/services/uploads.server.ts'
 import { FormFailure } from '../forms/form-failure.tsx'
 import { Button } from '../ui/button.tsx'
 import { SelectField, TextField } from '../ui/field.tsx'
-import { ChosenFiles, SendingBar, type SourceChoice, sourceOfName } from './chosen-files.tsx'
+import { ChosenFiles, SendingBar, type SourceChoice, sourceOfName, UnfinishedFiles } from './chosen-files.tsx'
 import { sizeText } from './file-words.ts'
-import { type FileToSend, useUploads } from './use-upload.ts'
+import type { FileToSend } from './upload-state.ts'
+import { useUploads } from './use-upload.ts'
 
 const MIB = 1024 * 1024
 
@@ -18,11 +20,13 @@ export function UploadForm({
   sources,
   limitMib,
   formLimitMib,
+  unfinished,
   failure,
 }: {
   sources: readonly SourceChoice[]
   limitMib: number
   formLimitMib: number
+  unfinished: readonly UnfinishedUpload[]
   failure: UploadFailure | undefined
 }) {
   const uploads = useUploads()
@@ -78,6 +82,7 @@ export function UploadForm({
   return (
     <>
       <FormFailure failure={shown} />
+      {!busy && <UnfinishedFiles uploads={unfinished} />}
       {shown !== undefined && shown.importId !== null && (
         <p className="mb-4">
           <Link to={`/intake/${shown.importId}`} className="link inline-block py-0.5">
@@ -159,7 +164,7 @@ export function UploadForm({
             </Button>
           )}
         </div>
-        {(state?.kind === 'sending' || state?.kind === 'reading') && (
+        {(state?.kind === 'sending' || state?.kind === 'broken' || state?.kind === 'reading') && (
           <div className="mt-3" role="status">
             <SendingBar state={state} />
           </div>

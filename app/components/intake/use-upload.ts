@@ -1,29 +1,11 @@
-/** Sends files as bare bytes, one after the other, and says how far each is. Without a script the form does the work. */
+/**
+ * Sends files, one after the other, and says how far each is: small ones in one request, larger ones in pieces. Without a
+ * script the form does the work.
+ */
 import { useEffect, useRef, useState } from 'react'
 import type { UploadFailure } from '#app/domain/imports.ts'
-
-export type UploadState =
-  | { kind: 'waiting' }
-  | { kind: 'sending'; sent: number; total: number }
-  /** All bytes are there; the server reads the last of them. */
-  | { kind: 'reading' }
-  | { kind: 'received'; href: string }
-  | { kind: 'failed'; failure: UploadFailure }
-
-export interface FileToSend {
-  /** Tells it from the others. */
-  key: string
-  source: string
-  file: File
-}
-
-const LOST: UploadFailure = {
-  ok: false,
-  message: 'The connection broke while the file was being sent. Nothing has been saved; send it again.',
-  fields: {},
-  importId: null,
-  source: '',
-}
+import { PIECES_FROM_BYTES, sendInPieces } from './send-in-pieces.ts'
+import { addressIn, type FileToSend, failureIn, LOST, type UploadState } from './upload-state.ts'
 
 const STOPPED: UploadFailure = { ...LOST, message: 'Stopped. Nothing of this file has been saved.' }
 
@@ -42,7 +24,7 @@ export interface Uploads {
 export function useUploads(): Uploads {
   const [states, setStates] = useState<ReadonlyMap<string, UploadState>>(new Map())
   const [busy, setBusy] = useState(false)
-  const running = useRef<XMLHttpRequest | null>(null)
+  const running = useRef<{ abort: () => void } | null>(null)
   const stopped = useRef(false)
   useEffect(
     () => () => {
@@ -64,7 +46,10 @@ export function useUploads(): Uploads {
     setBusy(true)
     for (const one of files) {
       if (stopped.current) put(one.key, { kind: 'failed', failure: STOPPED })
-      else put(one.key, await sendOne(one, running, (state) => put(one.key, state)))
+      else {
+        const sending = one.file.size < PIECES_FROM_BYTES ? sendOne : sendInPieces
+        put(one.key, await sending(one, running, (state) => put(one.key, state)))
+      }
     }
     setBusy(false)
     return current
@@ -80,7 +65,7 @@ export function useUploads(): Uploads {
 
 function sendOne(
   { source, file }: FileToSend,
-  running: { current: XMLHttpRequest | null },
+  running: { current: { abort: () => void } | null },
   onState: (state: UploadState) => void,
 ): Promise<UploadState> {
   return new Promise((resolve) => {
@@ -104,24 +89,4 @@ function sendOne(
     request.setRequestHeader('Content-Type', 'application/octet-stream')
     request.send(file)
   })
-}
-
-function addressIn(response: unknown): string | null {
-  if (typeof response !== 'object' || response === null || !('href' in response)) return null
-  return typeof response.href === 'string' ? response.href : null
-}
-
-function failureIn(response: unknown): UploadFailure {
-  if (
-    typeof response !== 'object' ||
-    response === null ||
-    !('message' in response) ||
-    !('fields' in response)
-  ) {
-    return {
-      ...LOST,
-      message: 'The server gave no answer that can be read. Look at the list of files, then send it again.',
-    }
-  }
-  return response as UploadFailure
 }

@@ -6,6 +6,7 @@ import { env } from '#app/env.server.ts'
 import { redirectWithNotice } from '#app/server/notice.server.ts'
 import { FORM_LIMIT_MIB, fileFromForm, receiveFile } from '#app/server/upload.server.ts'
 import { readIntakePage } from '#app/services/intake-pages.server.ts'
+import { readUnfinished } from '#app/services/uploads.server.ts'
 import type { Route } from './+types/intake'
 
 export function meta() {
@@ -14,9 +15,12 @@ export function meta() {
 
 export async function loader({ context, request }: Route.LoaderArgs) {
   const actor = permitted(context, request, 'facility:view')
-  const page = await readIntakePage(getDb(), actor, nowOf(context))
+  const [page, unfinished] = await Promise.all([
+    readIntakePage(getDb(), actor, nowOf(context)),
+    readUnfinished(getDb(), actor),
+  ])
   const limitMib = env().MAX_NIGHT_FILE_MIB
-  return { ...page, limitMib, formLimitMib: Math.min(limitMib, FORM_LIMIT_MIB) }
+  return { ...page, unfinished, limitMib, formLimitMib: Math.min(limitMib, FORM_LIMIT_MIB) }
 }
 
 export async function action({ context, request }: Route.ActionArgs) {
