@@ -15,8 +15,8 @@ import { tx } from '../db/transaction.server.ts'
 import { DomainError } from '../domain/errors.ts'
 import { BOUNCE_WINDOW_MS, isUndeliverable } from '../domain/mail/bounces.ts'
 import { headerSafe } from '../domain/mail/text.ts'
-import { mailSettings, messageIdOf, tokenOfBounceAddress } from './mail-settings.server.ts'
 import type { Undelivered } from './mail-sending.server.ts'
+import { mailSettings, messageIdOf, tokenOfBounceAddress } from './mail-settings.server.ts'
 import { getSite } from './site.server.ts'
 
 /** What a notification says of one recipient. */
@@ -61,7 +61,9 @@ export async function readNotification(bytes: Uint8Array): Promise<ReadNotificat
       diagnostic: headerSafe(typed(fields.get('diagnostic-code')), 500),
     }))
   const recipients = [message.to ?? []].flat().flatMap(({ value }) => value)
-  const named = recipients.map(({ address }) => tokenOfBounceAddress(address ?? '')).find((one) => one !== null)
+  const named = recipients
+    .map(({ address }) => tokenOfBounceAddress(address ?? ''))
+    .find((one) => one !== null)
   return { token: named ?? quotedToken(message.attachments), bounces }
 }
 
@@ -75,7 +77,13 @@ async function fieldGroups(report: Attachment): Promise<Map<string, string>[]> {
     groups.map(async (group) => {
       const { headerLines } = await simpleParser(`${group.trim()}\r\n\r\n`)
       return new Map(
-        headerLines.map(({ key, line }) => [key, line.slice(line.indexOf(':') + 1).replace(/\s+/g, ' ').trim()]),
+        headerLines.map(({ key, line }) => [
+          key,
+          line
+            .slice(line.indexOf(':') + 1)
+            .replace(/\s+/g, ' ')
+            .trim(),
+        ]),
       )
     }),
   )
@@ -154,5 +162,7 @@ async function noteBounce(inside: DbOrTx, now: Date, mail: MailRow, bounce: Read
     status: bounce.status,
     diagnostic: bounce.diagnostic,
   })
-  return !isUndeliverable(before, now) && isUndeliverable([...before, { at: now, action: bounce.action }], now)
+  return (
+    !isUndeliverable(before, now) && isUndeliverable([...before, { at: now, action: bounce.action }], now)
+  )
 }

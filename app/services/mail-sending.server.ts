@@ -110,6 +110,7 @@ async function sortOut(inside: DbOrTx, due: MailRow[], round: Round): Promise<Ma
   const going: MailRow[] = []
   const folded = new Set<number>()
   const gone = await goneByPerson(inside, due, round.machine)
+  const waiting = await companies(inside, due, round.machine)
   for (const mail of due) {
     if (folded.has(mail.id)) continue
     // What has been tried may have been read: it goes again as it was.
@@ -121,7 +122,8 @@ async function sortOut(inside: DbOrTx, due: MailRow[], round: Round): Promise<Ma
       going.push(await finishSummary(inside, mail, round))
       continue
     }
-    const company = await companyOf(inside, mail, folded, round.machine)
+    const all = mayLead(mail) ? (waiting.get(groupOf(mail)) ?? []) : []
+    const company = all.filter(({ id }) => id !== mail.id && !folded.has(id))
     for (const { id } of company) folded.add(id)
     if (!mayBeFolded(mail.kind, mail.priority)) {
       going.push(mail)
@@ -163,16 +165,24 @@ async function goneByPerson(inside: DbOrTx, due: MailRow[], machine: Date): Prom
   return past
 }
 
-async function companyOf(
-  inside: DbOrTx,
-  mail: MailRow,
-  folded: ReadonlySet<number>,
-  machine: Date,
-): Promise<MailRow[]> {
-  if (mail.groupKey === '' || mail.personId === null || mail.priority === 'highest') return []
+/** What waits together, by person and group; asked for once for all that are due. */
+async function companies(inside: DbOrTx, due: MailRow[], machine: Date): Promise<Map<string, MailRow[]>> {
+  const leads = due.filter(mayLead)
+  const personIds = [...new Set(leads.flatMap(({ personId }) => personId ?? []))]
+  const groupKeys = [...new Set(leads.map(({ groupKey }) => groupKey))]
   const until = new Date(machine.getTime() + GROUP_WAIT_MS)
-  const found = await lockCompany(inside, { personId: mail.personId, groupKey: mail.groupKey }, until)
-  return found.filter(({ id }) => id !== mail.id && !folded.has(id))
+  const found = await lockCompany(inside, personIds, groupKeys, until)
+  const groups = new Map<string, MailRow[]>()
+  for (const mail of found) groups.set(groupOf(mail), [...(groups.get(groupOf(mail)) ?? []), mail])
+  return groups
+}
+
+function mayLead({ groupKey, personId, priority, attempts }: MailRow): boolean {
+  return groupKey !== '' && personId !== null && priority !== 'highest' && attempts === 0
+}
+
+function groupOf({ personId, groupKey }: MailRow): string {
+  return `${personId} ${groupKey}`
 }
 
 /** The first of a group carries the others. */
@@ -181,7 +191,6 @@ async function foldCompany(inside: DbOrTx, lead: MailRow, company: MailRow[]): P
   const all = [lead, ...company].sort((a, b) => a.id - b.id)
   const mail = composeGroup(all)
   const priority = mostUrgent(all.map((one) => one.priority))
-  // What can be unsubscribed from by itself cannot be inside what may not.
   const changed = { ...pick(mail), priority }
   await updateMail(inside, lead.id, changed)
   await foldMails(

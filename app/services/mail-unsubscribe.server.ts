@@ -18,9 +18,7 @@ export async function readUnsubscribing(db: Db, token: string): Promise<Unsubscr
 
 async function find(db: Db, token: string): Promise<{ what: Unsubscribing; personId: number }> {
   const { domain } = mailSettings(await getSite(db))
-  const mail = /^[0-9a-f]{32}$/.test(token)
-    ? await findMailByMessageId(db, messageIdOf(token, domain))
-    : null
+  const mail = /^[0-9a-f]{32}$/.test(token) ? await findMailByMessageId(db, messageIdOf(token, domain)) : null
   const what = mail === null ? null : unsubscribingOf(mail)
   if (mail === null || what === null || mail.personId === null)
     throw new DomainError(

@@ -2,8 +2,8 @@
  * How fast is the transport solver? Against scipy's BDF on the same nodes, each side at its loosest tolerance that
  * stays within half a percent wherever there is pressure worth the name; and by itself on a long line with six gases.
  * Pairs are interleaved, so that a busy machine slows both alike, and the table shows medians. Run with
- * `npm run bench`, which goes on with the log intake (intake.ts); the comparison needs python3 with scipy
- * (python3-scipy on Debian).
+ * `npm run bench`, which goes on with the log intake (intake.ts) and mail (mail.ts); the comparison needs python3 with
+ * scipy (python3-scipy on Debian).
  */
 import { spawnSync } from 'node:child_process'
 import { type GasHistory, runTransport, type TransportRun } from '#app/physics/transport.ts'
@@ -213,6 +213,8 @@ try {
 
 await benchWhatIf()
 
-// In a process of its own, so that neither bench leaves the other its memory.
-const intake = spawnSync(process.execPath, ['--import', 'tsx', 'tests/bench/intake.ts'], { stdio: 'inherit' })
-if (intake.status !== 0) process.exitCode = 1
+// In processes of their own, so that no bench leaves another its memory.
+for (const file of ['tests/bench/intake.ts', 'tests/bench/mail.ts']) {
+  const { status } = spawnSync(process.execPath, ['--import', 'tsx', file], { stdio: 'inherit' })
+  if (status !== 0) process.exitCode = 1
+}

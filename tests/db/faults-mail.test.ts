@@ -195,7 +195,8 @@ it('a mailbox that is not there is given up at once and said, the others go', as
     transport,
     owner: 'alone',
     signal: new AbortController().signal,
-    undelivered: async (_inside, { mail, final, answer }) => void told.push(`${mail.address} ${final} ${answer}`),
+    undelivered: async (_inside, { mail, final, answer }) =>
+      void told.push(`${mail.address} ${final} ${answer}`),
   })
   await sender.step()
   expect((await outbox(db))[0]).toMatchObject({ state: 'failed', attempts: 1 })

@@ -84,7 +84,9 @@ it('can be unsubscribed from where duty allows, and follows its thread', async (
   await enqueueTestMail(db, to, { kind: 'digest', priority: 'low' })
   const [sent] = await sendAll()
   // No address of the product is set in tests: RFC 2369 takes a mail address as well.
-  expect(sent?.mail.headers.get('list')).toMatchObject({ unsubscribe: { mail: 'alerts@tst.example?subject=No%20more%20of%20these' } })
+  expect(sent?.mail.headers.get('list')).toMatchObject({
+    unsubscribe: { mail: 'alerts@tst.example?subject=No%20more%20of%20these' },
+  })
 })
 
 it('comes as ten mails and a summary in a flood', async () => {
@@ -98,7 +100,12 @@ it('takes names and addresses from the settings, and says what is wrong with one
   const given = { MAIL_FROM: '', MAIL_REPLY_TO: '', MAIL_DOMAIN: '', PUBLIC_URL: '' }
   const site = { code: 'QFL', name: 'Quillmere' }
   expect(mailSettings(site, given)).toMatchObject({ domain: 'qfl.example', replyTo: 'alerts@qfl.example' })
-  const own = { ...given, MAIL_FROM: 'Log <a@b.example>', MAIL_REPLY_TO: 'desk@b.example', PUBLIC_URL: 'https://log.b.example/' }
+  const own = {
+    ...given,
+    MAIL_FROM: 'Log <a@b.example>',
+    MAIL_REPLY_TO: 'desk@b.example',
+    PUBLIC_URL: 'https://log.b.example/',
+  }
   expect(mailSettings(site, own)).toEqual({
     from: { name: 'Log', address: 'a@b.example' },
     replyTo: 'desk@b.example',
@@ -106,5 +113,7 @@ it('takes names and addresses from the settings, and says what is wrong with one
     publicUrl: 'https://log.b.example',
     secure: true,
   })
-  expect(() => mailSettings(site, { ...given, MAIL_FROM: 'nobody' })).toThrow(/MAIL_FROM is “nobody”; expected/)
+  expect(() => mailSettings(site, { ...given, MAIL_FROM: 'nobody' })).toThrow(
+    /MAIL_FROM is “nobody”; expected/,
+  )
 })

@@ -24,11 +24,6 @@ export async function insertMail(tx: DbOrTx, row: NewMailRow): Promise<number> {
   return result.insertId
 }
 
-export async function findMail(db: DbOrTx, id: number): Promise<MailRow | null> {
-  const rows = await db.select().from(mailOutbox).where(eq(mailOutbox.id, id))
-  return rows[0] ?? null
-}
-
 export async function findMailByMessageId(db: DbOrTx, messageId: string): Promise<MailRow | null> {
   const rows = await db.select().from(mailOutbox).where(eq(mailOutbox.messageId, messageId))
   return rows[0] ?? null
@@ -112,20 +107,22 @@ export async function lockAbandonedMails(tx: DbOrTx, machine: Date, most: number
     .for('update', { skipLocked: true })
 }
 
-/** Locks what waits with a mail of a group and has not been tried yet. */
+/** Locks what waits for these people in these groups and has not been tried yet. */
 export async function lockCompany(
   tx: DbOrTx,
-  lead: { personId: number; groupKey: string },
+  personIds: number[],
+  groupKeys: string[],
   until: Date,
 ): Promise<MailRow[]> {
+  if (personIds.length === 0) return []
   return tx
     .select()
     .from(mailOutbox)
     .where(
       and(
-        eq(mailOutbox.groupKey, lead.groupKey),
+        inArray(mailOutbox.personId, personIds),
+        inArray(mailOutbox.groupKey, groupKeys),
         eq(mailOutbox.state, 'waiting'),
-        eq(mailOutbox.personId, lead.personId),
         eq(mailOutbox.attempts, 0),
         ne(mailOutbox.priority, 'highest'),
         lte(mailOutbox.sendAt, until),

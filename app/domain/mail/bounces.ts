@@ -1,7 +1,7 @@
 /** What has come back for an address, and when it is no use to try it again. */
 
 /** So many mails that came back within BOUNCE_WINDOW_MS make an address one that cannot be reached. */
-export const BOUNCES_UNTIL_GIVEN_UP = 3
+const BOUNCES_UNTIL_GIVEN_UP = 3
 export const BOUNCE_WINDOW_MS = 7 * 86_400_000
 
 export interface BounceFact {

@@ -18,7 +18,12 @@ export async function action({ context, request }: Route.ActionArgs) {
     demandToken(request.headers.get('Authorization'))
     const now = nowOf(context)
     const bytes = await messageOf(request)
-    const taken = await takeInBounce(getDb(), now, bytes, sayUndelivered(async () => now))
+    const taken = await takeInBounce(
+      getDb(),
+      now,
+      bytes,
+      sayUndelivered(async () => now),
+    )
     return Response.json(taken)
   } catch (error) {
     return problemOf(error)

@@ -19,25 +19,25 @@ export async function action({ context, params }: Route.ActionArgs) {
 }
 
 const WORDS = {
-  digest: { what: 'the daily digest', then: 'The page of alerts goes on showing all that stands in it.' },
-  low: { what: 'alerts of low priority one by one', then: 'They stand in the daily digest.' },
+  digest: { what: 'the daily digest', instead: 'The page of alerts goes on showing all that stands in it.' },
+  low: { what: 'alerts of low priority one by one', instead: 'They stand in the daily digest.' },
 }
 
 export default function Unsubscribe({ loaderData, actionData }: Route.ComponentProps) {
-  const { what, then } = WORDS[loaderData]
+  const { what, instead } = WORDS[loaderData]
   return (
     <main id="content" className="mx-auto max-w-2xl px-4 py-10">
       <h1 className="mb-4">Mail from Ebbline</h1>
       {actionData === undefined ? (
         <Form method="post">
           <p className="mb-4">
-            Send me no more mail with {what}. {then} Mail that duty asks for still comes.
+            Send me no more mail with {what}. {instead} Mail that duty asks for still comes.
           </p>
           <Button kind="primary">Send no more of these</Button>
         </Form>
       ) : (
         <p role="status">
-          You get no more mail with {what}. {then} Your account is where you change this.
+          You get no more mail with {what}. {instead} Your account is where you change this.
         </p>
       )}
     </main>

@@ -64,7 +64,11 @@ describe('a mail about an alert', () => {
   })
 
   it('gives no order and no way to take it when it has cleared', () => {
-    const { text } = composeAlertMail({ ...FACTS, kind: 'clear', clearedAt: new Date('2026-11-09T03:00:00Z') })
+    const { text } = composeAlertMail({
+      ...FACTS,
+      kind: 'clear',
+      clearedAt: new Date('2026-11-09T03:00:00Z'),
+    })
     expect(text).toContain('Cleared: 2026-11-09 04:00 local (03:00')
     expect(text).not.toContain('Do now')
     expect(text).not.toContain('Next:')
