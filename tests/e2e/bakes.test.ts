@@ -3,9 +3,7 @@ import type { Browser, Locator, Page } from 'playwright-core'
 import { afterAll, beforeAll, expect, inject, test } from 'vitest'
 import { DEMO_SIGN_INS } from '#seeds/demo-sign-ins.ts'
 import { expectAccessible, launchBrowser, openPage } from '#tests/support/browser.ts'
-
-/** No page here has more places for the focus; more presses of Tab mean that one cannot be reached. */
-const MOST_STOPS = 250
+import { press, reach, type } from '#tests/support/keyboard.ts'
 
 /** A server that is busy with other work still answers within this. */
 const SOON = { timeout: 20_000 }
@@ -24,47 +22,6 @@ function passwordOf(role: string): string {
   const person = DEMO_SIGN_INS.find((one) => one.role === role)
   if (person === undefined) throw new Error(`The demo has no ${role}.`)
   return person.password
-}
-
-/** Presses Tab until the element has the focus. A keyboard trap, or what takes no focus, ends it with an error. */
-async function reach(page: Page, target: Locator): Promise<void> {
-  await target.waitFor()
-  const unwatched = await target.evaluate(stopsBefore)
-  // Each look at the focus takes as long as a press: the first part of the way goes without.
-  for (let stop = 0; stop < unwatched; stop += 1) await page.keyboard.press('Tab')
-  for (let stop = unwatched; stop < MOST_STOPS; stop += 1) {
-    if (await target.evaluate((element) => element === document.activeElement)) return
-    await page.keyboard.press('Tab')
-  }
-  const held = await page.evaluate(() => document.activeElement?.outerHTML.slice(0, 200))
-  throw new Error(`${target} was not reached by Tab on ${page.url()}; the focus is at ${held}`)
-}
-
-/** Runs in the page: fewer presses of Tab than it takes from where the focus is. A radio group or a closed part only lowers it. */
-function stopsBefore(target: Element): number {
-  const stops = [
-    ...document.querySelectorAll<HTMLElement>('a[href], button, input, select, textarea, [tabindex]'),
-  ].filter((element) => element.tabIndex >= 0 && element.checkVisibility() && !element.matches(':disabled'))
-  const groups = new Set<string>()
-  const counted = stops.filter((element) => {
-    if (!(element instanceof HTMLInputElement) || element.type !== 'radio') return true
-    const seen = groups.has(element.name)
-    groups.add(element.name)
-    return !seen
-  })
-  const from = document.activeElement === null ? -1 : counted.indexOf(document.activeElement as HTMLElement)
-  return Math.max(0, counted.indexOf(target as HTMLElement) - Math.max(from, 0) - 5)
-}
-
-async function press(page: Page, target: Locator): Promise<void> {
-  await reach(page, target)
-  await page.keyboard.press('Enter')
-}
-
-async function type(page: Page, target: Locator, text: string): Promise<void> {
-  await reach(page, target)
-  await page.keyboard.press('ControlOrMeta+A')
-  await page.keyboard.type(text)
 }
 
 /** Follows a link by the keyboard and waits for the page it leads to. */

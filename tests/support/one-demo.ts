@@ -9,11 +9,14 @@ declare module 'vitest' {
   interface ProvidedContext {
     /** Address of the web server under test. */
     demoUrl: string
+    /** Address of the database that it runs on. */
+    demoDatabaseUrl: string
   }
 }
 
 export default async function startOneDemo(project: TestProject): Promise<() => Promise<void>> {
   const server = await startTestServer({ database: 'ebbline_e2e' })
   project.provide('demoUrl', server.url)
+  project.provide('demoDatabaseUrl', server.databaseUrl)
   return () => server.stop()
 }
