@@ -133,8 +133,8 @@ function safeHeaders(headers: Record<string, string>): Record<string, string> {
  * What duty allows to be switched off can be, from the mail program itself: digests and low priority (RFC 2369). One
  * click is offered where the product is reached over TLS, as RFC 8058 asks.
  */
-function unsubscribing(
-  mail: NewMail,
+export function unsubscribing(
+  mail: Pick<NewMail, 'kind' | 'priority' | 'to'>,
   messageId: string,
   settings: ReturnType<typeof mailSettings>,
 ): Record<string, string> {

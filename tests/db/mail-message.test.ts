@@ -3,6 +3,7 @@ import { simpleParser } from 'mailparser'
 import { beforeEach, expect, it, onTestFinished } from 'vitest'
 import { FLOOD_MAILS } from '#app/domain/mail/timing.ts'
 import { bounceAddress, mailSettings, tokenOfBounceAddress } from '#app/services/mail-settings.server.ts'
+import { unsubscribing } from '#app/services/mail-outbox.server.ts'
 import { makeSender } from '#app/worker/mail/sender.server.ts'
 import { openTransport } from '#app/worker/mail/transport.ts'
 import { MORNING } from '#tests/support/clock.ts'
@@ -87,6 +88,22 @@ it('can be unsubscribed from where duty allows, and follows its thread', async (
   expect(sent?.mail.headers.get('list')).toMatchObject({
     unsubscribe: { mail: 'alerts@tst.example?subject=No%20more%20of%20these' },
   })
+})
+
+it('offers one click only over TLS, with the two fields that RFC 8058 section 3.1 asks for', () => {
+  const given = { MAIL_FROM: '', MAIL_REPLY_TO: '', MAIL_DOMAIN: '', PUBLIC_URL: '' }
+  const of = (url: string, priority: 'low' | 'high' = 'low') =>
+    unsubscribing(
+      { kind: 'alert', priority, to },
+      '<00112233445566778899aabbccddeeff@tst.example>',
+      mailSettings({ code: 'TST', name: 'Test site' }, { ...given, PUBLIC_URL: url }),
+    )
+  expect(of('https://log.tst.example')).toEqual({
+    'List-Unsubscribe': '<https://log.tst.example/unsubscribe/00112233445566778899aabbccddeeff>',
+    'List-Unsubscribe-Post': 'List-Unsubscribe=One-Click',
+  })
+  expect(Object.keys(of('http://log.tst.example'))).toEqual(['List-Unsubscribe'])
+  expect(of('https://log.tst.example', 'high')).toEqual({})
 })
 
 it('comes as ten mails and a summary in a flood', async () => {
