@@ -29,6 +29,19 @@ export function permitted(context: Context, request: Request, permission: Permis
   return actor
 }
 
+/**
+ * Refuses what another site had the browser send. The framework looks at posts to pages; addresses that answer with bare
+ * data ask here. A request without an Origin comes from no page.
+ */
+export function fromHere(request: Request): void {
+  const origin = request.headers.get('Origin')
+  if (origin === null || origin === new URL(request.url).origin) return
+  throw data(
+    { message: 'This was sent from another site. Open the page here and send it again.' },
+    { status: 403 },
+  )
+}
+
 /** The product's time for this request. */
 export function nowOf(context: Context): Date {
   return context.get(nowContext)

@@ -1,4 +1,4 @@
-import { nowOf, permitted } from '#app/auth/guard.server.ts'
+import { fromHere, nowOf, permitted } from '#app/auth/guard.server.ts'
 import { getDb } from '#app/db/client.server.ts'
 import { env } from '#app/env.server.ts'
 import { answerTus } from '#app/server/tus.server.ts'
@@ -13,6 +13,7 @@ export function loader({ context, request }: Route.LoaderArgs) {
 
 /** Takes the next bytes (tus: PATCH); POST makes the import of a file that is all here, and may be asked again. */
 export async function action({ context, request, params }: Route.ActionArgs) {
+  fromHere(request)
   const actor = permitted(context, request, 'intake:take-in')
   if (request.method !== 'POST')
     return answerTus(getDb(), actor, nowOf(context), request, env().MAX_NIGHT_FILE_MIB)
