@@ -1,6 +1,13 @@
 import type { SourceProfile, TimeFormat } from '../schemas/source-profile.ts'
 import { choice, question } from './questions.ts'
-import { allowedOrders, dateParts, isTimeOfDay, looksLikeMonthName, TimeReader } from './time-text.ts'
+import {
+  allowedOrders,
+  dateParts,
+  hasDecimalComma,
+  isTimeOfDay,
+  looksLikeMonthName,
+  TimeReader,
+} from './time-text.ts'
 import type { Candidate, Question, Refusal } from './types.ts'
 import { wallText } from './zones.ts'
 
@@ -41,10 +48,13 @@ export function sniffTime(
 ): TimeFinding {
   const usable = samples.filter((sample) => sample.text.trim() !== '' && !isTimeOfDay(sample.text))
   if (usable.length === 0) return { format: profile.time.format, question: null, refusal: null }
-  const dotted = usable.map(({ text, line }) => ({
-    text: decimalMark === ',' ? text.trim().replace(',', '.') : text.trim(),
-    line,
-  }))
+  const dotted = usable.map(({ text, line }) => {
+    const trimmed = text.trim()
+    return {
+      text: decimalMark === ',' || hasDecimalComma(trimmed) ? trimmed.replace(',', '.') : trimmed,
+      line,
+    }
+  })
   if (mostly(dotted, ({ text }) => /^\d(?:\.\d+)?[eE]\+?0?9$|^\d(?:\.\d+)?[eE]\+?12$/.test(text)))
     return rounded(usable)
   const wanted = profile.time.format

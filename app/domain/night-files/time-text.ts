@@ -83,6 +83,14 @@ function fullYear(text: string): number {
 }
 
 /**
+ * Whether the comma of a number can only be its decimal mark, whatever the values of the file are written with: behind
+ * four figures or more no comma parts thousands. So are the day numbers that a spreadsheet saves (`46335,3125`).
+ */
+export function hasDecimalComma(text: string): boolean {
+  return /^-?\d{4,},\d+$/.test(text)
+}
+
+/**
  * Reads time texts of one format. A read leaves the wall time in `wallMs` (the figures taken as if they were UTC)
  * and the offset written in the text in `offset` (NaN when none); epochs leave the instant with offset 0.
  */
@@ -186,7 +194,7 @@ export class TimeReader {
   }
 
   #plain(text: string): number {
-    const dotted = this.#decimalComma ? text.replace(',', '.') : text
+    const dotted = this.#decimalComma || hasDecimalComma(text) ? text.replace(',', '.') : text
     return /^-?\d+(?:\.\d*)?(?:[eE][+-]?\d+)?$/.test(dotted) ? Number(dotted) : Number.NaN
   }
 

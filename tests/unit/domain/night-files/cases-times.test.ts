@@ -284,6 +284,46 @@ const CASES: Record<string, Case[]> = {
       // 46 335 days after 1899-12-30 is 2026-11-09, and 0.3125 of a day is 07:30.
       readings: good('2026-11-09T06:30:00Z'),
     },
+    {
+      name: 'are read with the decimal comma that the values have too',
+      file: file('Zeit;P1 (Pa)', '46335,3125;1,5E-8', '46335,3194444444;2,5E-8'),
+      profile: { ...PLAIN, time: { ...PLAIN.time, format: 'serial-1900', zone: 'Europe/Vienna' } },
+      state: 'readable',
+      readings: [
+        ['P1', '2026-11-09T06:30:00Z', 1.5e-8, 'good'],
+        ['P1', '2026-11-09T06:40:00Z', 2.5e-8, 'good'],
+      ],
+    },
+    {
+      name: 'are read with a decimal comma that stands in the times alone',
+      file: file('Zeit;P1 (Pa)', '46335,3125;1E-8', '46335,3194444444;2E-8', '46335,3263888889;3E-8'),
+      profile: { ...PLAIN, time: { ...PLAIN.time, format: 'serial-1900', zone: 'America/St_Johns' } },
+      state: 'readable',
+      // Three and a half hours behind UTC.
+      readings: [
+        ['P1', '2026-11-09T11:00:00Z', 1e-8, 'good'],
+        ['P1', '2026-11-09T11:10:00Z', 2e-8, 'good'],
+        ['P1', '2026-11-09T11:20:00Z', 3e-8, 'good'],
+      ],
+    },
+    {
+      name: 'are asked about with a comma in the times and points in the values',
+      file: file('Zeit;P1 (Pa)', '46335,3125;1.5E-8', '46335,3194444444;2.5E-8', '46335,3263888889;3.5E-8'),
+      profile: PLAIN,
+      state: 'needs-answers',
+      questions: ['date-order'],
+    },
+    {
+      name: 'are read with a comma in the times and points in the values once the base is known',
+      file: file('Zeit;P1 (Pa)', '46335,3125;1.5E-8', '46335,3194444444;2.5E-8', '46335,3263888889;3.5E-8'),
+      profile: { ...PLAIN, time: { ...PLAIN.time, format: 'serial-1900', zone: 'Europe/Vienna' } },
+      state: 'readable',
+      readings: [
+        ['P1', '2026-11-09T06:30:00Z', 1.5e-8, 'good'],
+        ['P1', '2026-11-09T06:40:00Z', 2.5e-8, 'good'],
+        ['P1', '2026-11-09T06:50:00Z', 3.5e-8, 'good'],
+      ],
+    },
   ],
   '39 elapsed seconds': [
     {
