@@ -296,14 +296,14 @@ const CASES: Record<string, Case[]> = {
     },
     {
       name: 'are read with a decimal comma that stands in the times alone',
-      file: file('Zeit;P1 (Pa)', '46335,3125;1E-8', '46335,3194444444;2E-8', '46335,3263888889;3E-8'),
+      file: file('Zeit;P1 (Pa)', '46334,3125;1E-8', '46334,3194444444;2E-8', '46334,3263888889;3E-8'),
       profile: { ...PLAIN, time: { ...PLAIN.time, format: 'serial-1900', zone: 'America/St_Johns' } },
       state: 'readable',
       // Three and a half hours behind UTC.
       readings: [
-        ['P1', '2026-11-09T11:00:00Z', 1e-8, 'good'],
-        ['P1', '2026-11-09T11:10:00Z', 2e-8, 'good'],
-        ['P1', '2026-11-09T11:20:00Z', 3e-8, 'good'],
+        ['P1', '2026-11-08T11:00:00Z', 1e-8, 'good'],
+        ['P1', '2026-11-08T11:10:00Z', 2e-8, 'good'],
+        ['P1', '2026-11-08T11:20:00Z', 3e-8, 'good'],
       ],
     },
     {
