@@ -124,8 +124,6 @@ export function correctionFault(
   const tooFar = 'More than a day is a wrong date or zone and no drift. Settle it in how the files are read.'
   if (Math.abs(startOffsetMs) > MOST_OFFSET_MS) return { field: 'startOffset', text: tooFar }
   if (Math.abs(endOffsetMs) > MOST_OFFSET_MS) return { field: 'endOffset', text: tooFar }
-  if (startOffsetMs === 0 && endOffsetMs === 0)
-    return { field: 'endOffset', text: 'Both ends are nought, which corrects nothing. Give the drift.' }
   const drift = Math.abs(endOffsetMs - startOffsetMs) / (endsMs - startsMs)
   if (drift <= MOST_DRIFT) return null
   return {

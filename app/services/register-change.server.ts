@@ -8,10 +8,12 @@ import { LIMIT_KINDS } from '../domain/register.ts'
 import { editedSchema, isEditedKind, type RegisterKind } from '../domain/schemas/register.ts'
 import {
   channelMapSchema,
+  clockCorrectionSchema,
   fittingSchema,
   limitSchema,
   placementSchema,
 } from '../domain/schemas/register-dated.ts'
+import { correctClock } from './clock-corrections.server.ts'
 import { editThing } from './register-edit.server.ts'
 import { fitInstrument } from './register-fittings.server.ts'
 import { setLimit } from './register-limits.server.ts'
@@ -43,6 +45,9 @@ export async function changeThing(
   }
   if (intent === 'channels: channel-map') {
     return mapChannel(db, actor, now, numberOf(key), parse(channelMapSchema(timeZone), typed))
+  }
+  if (intent === 'sources: clock-correction') {
+    return correctClock(db, actor, now, key, parse(clockCorrectionSchema(timeZone), typed))
   }
   if (intent === 'positions: fitting') {
     return fitInstrument(db, actor, now, key, parse(fittingSchema(timeZone), typed))

@@ -1,5 +1,6 @@
 /** The dated part of a thing's page: channel maps, fittings, places, limits; and what the form that adds one starts from. */
 import type { DbOrTx } from '../db/client.server.ts'
+import { listClockCorrections } from '../db/queries/clock-corrections.server.ts'
 import { listDatedLimits, listPlacements, type Placement } from '../db/queries/register-limits.server.ts'
 import {
   type FittingRow,
@@ -9,6 +10,7 @@ import {
   type MapRow,
 } from '../db/queries/register-maps.server.ts'
 import { listRegisterRows, type RegisterRow } from '../db/queries/register-rows.server.ts'
+import { offsetWords } from '../domain/clock-correction.ts'
 import { spanAt } from '../domain/dated-spans.ts'
 import { QUANTITIES } from '../domain/readings.ts'
 import { LIMIT_KIND_FACTS, LIMIT_KINDS, type LimitKind } from '../domain/register.ts'
@@ -30,6 +32,7 @@ export type DatedForm =
   | { form: 'channel-map'; seen: number; position: string; choices: string[] }
   | { form: 'fitting'; seen: number; serial: string; factor: number; choices: string[] }
   | { form: 'placement'; seen: number; segment: string; offsetM: number | null }
+  | { form: 'clock-correction'; seen: number }
   | { form: 'limit'; seen: number; value: number | null; unit: string }
 
 export interface DatedPart {
@@ -201,6 +204,7 @@ async function segmentTables(db: DbOrTx, row: RegisterRow): Promise<RegisterTabl
 
 async function sourcePart(db: DbOrTx, part: DatedPart, row: RegisterRow): Promise<DatedPart> {
   const channels = (await listChannels(db)).filter(({ sourceId }) => sourceId === row.id)
+  const corrections = await listClockCorrections(db, row.id)
   const version = Number(row.columns.profileVersion)
   return {
     ...part,
@@ -225,7 +229,40 @@ async function sourcePart(db: DbOrTx, part: DatedPart, row: RegisterRow): Promis
         })),
         empty: 'This source has no channels yet. They come with its first accepted file.',
       },
+      {
+        title: 'Corrections of its clock',
+        columns: columns(
+          'From, by its clock',
+          'Until, by its clock',
+          'Clock at the start',
+          'At the end',
+          'Rests on',
+          'Recorded by',
+          'Recorded',
+          'Replaced',
+          'Replaced by',
+          'Why replaced',
+        ),
+        rows: corrections.map((one) => ({
+          key: String(one.id),
+          replaced: one.replacedAt !== null,
+          cells: [
+            instant(one.startsAt),
+            instant(one.endsAt),
+            text(offsetWords(one.startMs)),
+            text(offsetWords(one.endMs)),
+            text(one.basis),
+            text(one.recordedBy),
+            instant(one.recordedAt),
+            instant(one.replacedAt),
+            text(one.replacedBy),
+            text(one.replaceReason),
+          ],
+        })),
+        empty: 'Its clock has not been corrected: its readings are shown at the times of its files.',
+      },
     ],
+    form: { form: 'clock-correction', seen: newestId(corrections) },
   }
 }
 

@@ -99,6 +99,7 @@ function spansOf(before: unknown, after: unknown): HistoryLine['changes'] {
 }
 
 function spanText(span: Record<string, unknown>): string {
+  if ('atStart' in span) return `clock ${String(span.atStart)} at the start, ${String(span.atEnd)} at the end`
   if ('instrument' in span) {
     return span.instrument === null
       ? 'no instrument'

@@ -3,6 +3,7 @@ import { useMemo } from 'react'
 import { Form, useNavigation } from 'react-router'
 import {
   channelMapSchema,
+  clockCorrectionSchema,
   fittingSchema,
   limitSchema,
   placementSchema,
@@ -23,6 +24,7 @@ const SCHEMAS = {
   fitting: fittingSchema,
   placement: placementSchema,
   limit: limitSchema,
+  'clock-correction': clockCorrectionSchema,
 }
 
 /** What each form is called on its page, and on its button. */
@@ -30,6 +32,7 @@ export const DATED_TITLES: Record<DatedForm['form'], { title: string; button: st
   'channel-map': { title: 'Change where this channel belongs', button: 'Save the map' },
   fitting: { title: 'Exchange or take out the instrument', button: 'Save the exchange' },
   placement: { title: 'Move this pump', button: 'Save the place' },
+  'clock-correction': { title: 'Correct the clock of this source', button: 'Save the correction' },
   limit: { title: 'Set this limit', button: 'Set the limit' },
 }
 
@@ -43,18 +46,22 @@ export function DatedRowForm({
   form,
   segments,
   failure: answered,
+  suggested,
 }: {
   form: DatedForm
   segments: readonly string[]
   failure: RegisterFailure | undefined
+  /** What the address asks the form to start with; what was typed goes before it. */
+  suggested?: Typed | undefined
 }) {
   const { zone, now } = useSite()
   const schema = useMemo(() => SCHEMAS[form.form](zone), [form.form, zone])
   const { failure, errorsOf, onSubmit } = useCheckedForm(schema, answered)
   const sending = useNavigation().formMethod === 'POST'
-  const typed = answered?.typed
+  const typed = answered?.typed ?? suggested
   const part = { typed, errorsOf, segments }
-  const ends = form.form === 'channel-map' || form.form === 'fitting'
+  const clock = form.form === 'clock-correction'
+  const ends = form.form === 'channel-map' || form.form === 'fitting' || clock
   return (
     <Form method="post" noValidate onSubmit={onSubmit}>
       <FormFailure failure={failure} />
@@ -71,19 +78,26 @@ export function DatedRowForm({
           at={now}
           typed={typed?.startsAt}
           zone={zone}
-          hint="What was before it stays as it is."
+          hint={
+            clock ? "By the source's own clock, as its files have it." : 'What was before it stays as it is.'
+          }
           errors={errorsOf('startsAt')}
         />
         {ends && (
           <TimeField
             name="endsAt"
             label="Until"
-            hint="Empty: until the next change that is recorded already, or for good."
+            hint={
+              clock
+                ? "By the source's own clock: when it was set right, or the last time compared."
+                : 'Empty: until the next change that is recorded already, or for good.'
+            }
             start={typed?.endsAt ?? ''}
             errors={errorsOf('endsAt')}
           />
         )}
       </div>
+      {clock && <ClockPart {...part} />}
       <ReasonField typed={typed} errors={errorsOf('reason')} />
       <Conflict failure={answered} />
       <Button kind="primary" disabled={sending}>
@@ -116,6 +130,35 @@ function ChannelMapPart({ form, typed, errorsOf }: Part & { form: DatedForm & { 
         ]}
         errors={errorsOf('other')}
       />
+    </>
+  )
+}
+
+function ClockPart({ typed, errorsOf }: Part) {
+  const how = 'Seconds, or minutes and seconds as 2:30. Fast: with a minus.'
+  return (
+    <>
+      <div className="grid gap-x-4 sm:grid-cols-2">
+        <TextField
+          name="startOffset"
+          label="Slow by, at the start"
+          hint={how}
+          defaultValue={typed?.startOffset ?? '0'}
+          errors={errorsOf('startOffset')}
+        />
+        <TextField
+          name="endOffset"
+          label="Slow by, at the end"
+          hint={how}
+          defaultValue={typed?.endOffset ?? ''}
+          errors={errorsOf('endOffset')}
+        />
+      </div>
+      <p className="mb-3 text-sm">
+        Between the two ends the offset goes straight. The times in the files stay as they are; what is
+        recorded here for the same time is replaced, and 0 at both ends takes a correction away. Give as the
+        reason what the offsets rest on.
+      </p>
     </>
   )
 }

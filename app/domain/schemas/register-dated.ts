@@ -1,5 +1,7 @@
 /** Forms that write a dated row: a channel's position, a position's instrument, a pump's place, a limit. */
 import { z } from 'zod'
+import { readOffset } from '../clock-correction.ts'
+import { DomainError } from '../errors.ts'
 import { siteInstant } from './instant.ts'
 import { ReasonSchema } from './register.ts'
 import { numberValue, optionalInstant } from './register-values.ts'
@@ -91,6 +93,34 @@ export function limitSchema(zone: string) {
     })
 }
 
+/** By how much a clock was behind true time; ahead of it with a minus. In milliseconds. */
+const clockOffset = z
+  .string({ error: 'Give the offset, such as 150 or -2:30.' })
+  .transform((text, context): number => {
+    try {
+      return readOffset(text)
+    } catch (error) {
+      if (!(error instanceof DomainError)) throw error
+      context.addIssue({ code: 'custom', message: error.message })
+      return z.NEVER
+    }
+  })
+
+/** How far a source's clock was off at both ends of a stretch, which is given by that clock. */
+export function clockCorrectionSchema(zone: string) {
+  return z
+    .object({
+      seen,
+      startsAt: siteInstant(zone),
+      endsAt: siteInstant(zone),
+      startOffset: clockOffset,
+      endOffset: clockOffset,
+      reason: ReasonSchema,
+    })
+    .superRefine(inOrder)
+}
+
+export type ClockCorrectionForm = z.infer<ReturnType<typeof clockCorrectionSchema>>
 export type ChannelMapForm = z.infer<ReturnType<typeof channelMapSchema>>
 export type FittingForm = z.infer<ReturnType<typeof fittingSchema>>
 export type PlacementForm = z.infer<ReturnType<typeof placementSchema>>
