@@ -20,7 +20,7 @@ function qualityCounts() {
 
 /**
  * What a channel's readings come to in ten minutes, two hours, eight hours and a day, from whole multiples of that length in UTC. By
- * raw channel, so a corrected map needs nothing. Extremes, sums and `usable` are of usable readings; the figures named
+ * raw channel, so a corrected map needs nothing; by true time, so a corrected clock leaves its stretch due. Extremes, sums and `usable` are of usable readings; the figures named
  * positive leave out those at or below zero, which have no logarithm.
  */
 export const rollup = mysqlTable(
