@@ -143,3 +143,33 @@ test('the bar shows how much of a slow file has been sent, and stopping leaves n
   expect(await page.getByRole('link', { name, exact: true }).count()).toBe(0)
   await view.close()
 })
+
+test('a large file whose connection breaks goes on by itself and is there once', async () => {
+  const view = await openPage(browser, inject('demoUrl'))
+  const { page } = view
+  await view.signIn('technician')
+  await view.goto('/intake')
+  let requests = 0
+  await page.route('**/intake/uploads/*', (route) => {
+    if (route.request().method() !== 'PATCH') return route.continue()
+    requests += 1
+    return requests === 2 ? route.abort('connectionreset') : route.continue()
+  })
+  const name = 'NL-E_2026-09-16.csv'
+  const remarks = `# ${'remark '.repeat(60)}\n`.repeat(25_000)
+  await drop(page, [{ name, text: `${east(name, 0, 'Pa').text}${remarks}` }])
+  await page.getByRole('button', { name: 'Send and read' }).click()
+  await page.getByText(/^Broken off at \d+ %, going on/).waitFor({ timeout: 60_000 })
+  await page.waitForURL(/\/intake\/\d+$/, { timeout: 60_000 })
+  const address = new URL(page.url()).pathname
+  // The one that broke, and the two that carry the file.
+  expect(requests).toBe(3)
+  await view.goto('/intake')
+  const links = page.getByRole('link', { name, exact: true })
+  const addresses = await links.evaluateAll((all) => all.map((link) => link.getAttribute('href') ?? ''))
+  expect([...new Set(addresses)]).toEqual([address])
+  expect(await page.getByRole('list', { name: 'Files that broke off' }).count()).toBe(0)
+  await view.goto(address)
+  await discard(page)
+  await view.close()
+})
