@@ -8,7 +8,7 @@ import { SiteTimeField } from '../forms/site-time-field.tsx'
 import { Button } from '../ui/button.tsx'
 import { CheckField, SelectField, TextAreaField, TextField } from '../ui/field.tsx'
 import { Panel } from '../ui/panel.tsx'
-import { ACT_WORDS } from './act-words.ts'
+import { ACT_WORDS, kindOf } from './act-words.ts'
 
 interface Fields {
   typed: Typed | undefined
@@ -72,7 +72,7 @@ export function ActForm({
           />
         )}
         <div className="flex flex-wrap items-center gap-4">
-          <Button kind={words.kind} disabled={sending}>
+          <Button kind={kindOf(act, reasons)} disabled={sending}>
             {signed ? `Sign: ${words.button.toLowerCase()}` : words.button}
           </Button>
           <Link to={here} className="link py-1" preventScrollReset>

@@ -108,3 +108,9 @@ export const ACT_WORDS: Record<OfferedAct, ActWords> = {
     reason: '',
   },
 }
+
+/** The look of an act's button: one that would be refused is not the button to press first. */
+export function kindOf(act: OfferedAct, reasons: readonly string[]): ActWords['kind'] {
+  const { kind } = ACT_WORDS[act]
+  return kind === 'primary' && reasons.length > 0 ? 'plain' : kind
+}

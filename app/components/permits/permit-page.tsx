@@ -9,7 +9,7 @@ import { ButtonLink } from '../ui/button.tsx'
 import { Instant } from '../ui/instant.tsx'
 import { PageHead, Panel } from '../ui/panel.tsx'
 import { ActForm } from './act-form.tsx'
-import { ACT_WORDS } from './act-words.ts'
+import { ACT_WORDS, kindOf } from './act-words.ts'
 import { ConflictsPanel } from './conflicts-panel.tsx'
 import { DangerPanel } from './danger-panel.tsx'
 import { HazardList } from './hazard-list.tsx'
@@ -52,6 +52,7 @@ export function PermitPage(props: PermitPageProps) {
       {/* A refused ruling is told at its conflict. */}
       <FormFailure failure={failure?.typed?.act === 'rule' ? undefined : failure} />
       {waitsFor !== '' && <p className="-mt-1 mb-4">{waitsFor}</p>}
+      {open === undefined && <NotYours asked={props.asked} />}
       {open === undefined && <InTheWay offers={offers} />}
       {open !== undefined && open.act !== 'suspend' && (
         <ActForm
@@ -103,10 +104,14 @@ export function PermitPage(props: PermitPageProps) {
   )
 }
 
-/** An act that would be refused is no button to press first. */
-function kindOf(act: OfferedAct, reasons: readonly string[]) {
-  const { kind } = ACT_WORDS[act]
-  return kind === 'primary' && reasons.length > 0 ? 'plain' : kind
+/** Somebody has followed a link to an act that is for other people, or for another state: told, not passed over. */
+function NotYours({ asked }: Pick<PermitPageProps, 'asked'>) {
+  if (asked === null) return null
+  return (
+    <p className="mb-4 border-l-4 border-warn bg-warn-soft px-3 py-2 print:hidden">
+      “{ACT_WORDS[asked].button}” is not for you on this permit as it stands. Ask those who are named here.
+    </p>
+  )
 }
 
 /** Before anything is read: whether the act that the page is there for can be done, and how much keeps it from that. */

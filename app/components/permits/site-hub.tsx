@@ -88,7 +88,7 @@ function Standing({ page }: { page: SiteHubData }) {
               ) : (
                 <>
                   <Instant at={lastRound.at} age />
-                  {lastRound.inOrder ? ', in order' : ', not in order'}
+                  {lastRound.inOrder ? ', in order' : <span className="text-warn">, not in order</span>}
                 </>
               ),
           },
@@ -96,6 +96,7 @@ function Standing({ page }: { page: SiteHubData }) {
       />
       <p className="mt-2">
         <strong className="font-semibold">Heating: </strong>
+        {heating.on === null && <strong className="font-semibold text-warn">take it for on. </strong>}
         {heating.text}
       </p>
     </Panel>

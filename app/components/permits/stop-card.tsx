@@ -49,7 +49,7 @@ export function StopCard({
           defaultValue={typed?.reason}
           errors={errors.reason}
         />
-        <Button kind="danger" disabled={sending} className="mb-4 min-h-12 border-2 font-semibold">
+        <Button kind="danger" disabled={sending} className="mb-4 min-h-14 border-2 font-semibold">
           Stop the work
         </Button>
       </Form>
