@@ -120,7 +120,7 @@ export async function stageFile(db: Db, actor: Actor | null, now: Date, upload: 
   }
 }
 
-export interface Arrived {
+interface Arrived {
   source: { id: number; code: string }
   fileName: string
   zone: string

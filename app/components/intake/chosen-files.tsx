@@ -124,7 +124,7 @@ export function UnfinishedFiles({ uploads }: { uploads: readonly UnfinishedUploa
         {uploads.map(({ token, fileName, byteSize, receivedBytes }) => (
           <li key={token} className="break-words">
             {fileName}: {Math.floor((receivedBytes / Math.max(1, byteSize)) * 100)} % of {sizeText(byteSize)}{' '}
-            have arrived
+            has arrived
           </li>
         ))}
       </ul>
