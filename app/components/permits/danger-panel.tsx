@@ -23,7 +23,7 @@ export function DangerPanel({
     <section
       role="alert"
       aria-label="Dangers"
-      className="mb-4.5 border-2 border-l-8 border-bad bg-bad-soft px-4 py-3 text-ink"
+      className="mb-4.5 border-2 border-l-8 border-bad bg-bad-soft px-4 py-3 text-ink [&_.text-ink-3]:text-ink-2"
     >
       <ul className="space-y-3">
         {events.map((event) => (
