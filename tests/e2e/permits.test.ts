@@ -312,7 +312,10 @@ test('a leak check beside hot steel begins only where an officer has left it, be
   expect(await met.locator('svg').first().textContent()).toMatch(/K3 HSP-2026-031/)
   await page.getByRole('button', { name: 'It begins now' }).click()
   await page.getByRole('alert').filter({ hasText: 'K3' }).waitFor(SOON)
-  await page.getByText(/· planned ·/).first().waitFor()
+  await page
+    .getByText(/· planned ·/)
+    .first()
+    .waitFor()
 
   const ione = await scenes.open(browser, 'ione')
   await ione.goto(address)
