@@ -77,6 +77,16 @@ const PAGES: Record<string, string> = {
   // A contributor sees the stop card and nothing else of it.
   '': `${STAFF}c`,
   '/history': STAFF,
+  // Closed to changes in most states, and then says so.
+  '/edit': 'te',
+  '/heating': STAFF,
+  '/site': STAFF,
+  '/site/locks': STAFF,
+  '/site/tests': STAFF,
+  '/site/rounds': STAFF,
+  // Whatever its state: what is no live permit is printed as such.
+  '/print': STAFF,
+  '/permit.pdf': STAFF,
 }
 
 const EVERYBODY: readonly Who[] = [...ROLES, 'nobody']
