@@ -225,7 +225,7 @@ function ReadingForm({ segments, asked, now, zone, failure }: BaysPageProps) {
         <TextField
           name="instrument"
           label="Instrument"
-          hint="Serial number, or tag such as OX-3"
+          hint="Serial number, or tag such as OXP-03"
           autoComplete="off"
           required
           defaultValue={typed?.instrument}
