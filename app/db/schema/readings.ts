@@ -44,22 +44,6 @@ export const importRange = mysqlTable(
   ],
 )
 
-/** Lowest and highest value that a file gives beside a mean, for the reading of the same channel, instant and import. */
-export const readingBounds = mysqlTable(
-  'reading_bounds',
-  {
-    importId: int('import_id', { unsigned: true }).notNull(),
-    channelId: int('channel_id', { unsigned: true }).notNull(),
-    at: utc('at').notNull(),
-    low: double('low'),
-    high: double('high'),
-  },
-  (t) => [
-    primaryKey({ name: 'reading_bounds_pk', columns: [t.channelId, t.at, t.importId] }),
-    index('reading_bounds_import_ix').on(t.importId),
-  ],
-)
-
 /**
  * How far a source's clock went wrong over a stretch: a layer that is laid over its readings when they are read and
  * taken off by replacing the row. The times as the file has them stay.

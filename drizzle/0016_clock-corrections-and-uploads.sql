@@ -30,15 +30,6 @@ CREATE TABLE `clock_correction` (
 	CONSTRAINT `clock_correction_id` PRIMARY KEY(`id`)
 );
 --> statement-breakpoint
-CREATE TABLE `reading_bounds` (
-	`import_id` int unsigned NOT NULL,
-	`channel_id` int unsigned NOT NULL,
-	`at` datetime(3) NOT NULL,
-	`low` double,
-	`high` double,
-	CONSTRAINT `reading_bounds_pk` PRIMARY KEY(`channel_id`,`at`,`import_id`)
-);
---> statement-breakpoint
 ALTER TABLE `upload` ADD CONSTRAINT `upload_person_id_person_id_fk` FOREIGN KEY (`person_id`) REFERENCES `person`(`id`) ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE `upload` ADD CONSTRAINT `upload_attachment_id_attachment_id_fk` FOREIGN KEY (`attachment_id`) REFERENCES `attachment`(`id`) ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE `upload` ADD CONSTRAINT `upload_import_id_import_file_id_fk` FOREIGN KEY (`import_id`) REFERENCES `import_file`(`id`) ON DELETE no action ON UPDATE no action;--> statement-breakpoint
@@ -46,5 +37,4 @@ ALTER TABLE `clock_correction` ADD CONSTRAINT `clock_correction_source_id_source
 ALTER TABLE `clock_correction` ADD CONSTRAINT `clock_correction_recorded_by_person_id_fk` FOREIGN KEY (`recorded_by`) REFERENCES `person`(`id`) ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 ALTER TABLE `clock_correction` ADD CONSTRAINT `clock_correction_replaced_by_person_id_fk` FOREIGN KEY (`replaced_by`) REFERENCES `person`(`id`) ON DELETE no action ON UPDATE no action;--> statement-breakpoint
 CREATE INDEX `upload_last_ix` ON `upload` (`last_at`);--> statement-breakpoint
-CREATE INDEX `clock_correction_ix` ON `clock_correction` (`source_id`,`starts_at`);--> statement-breakpoint
-CREATE INDEX `reading_bounds_import_ix` ON `reading_bounds` (`import_id`);
+CREATE INDEX `clock_correction_ix` ON `clock_correction` (`source_id`,`starts_at`);
