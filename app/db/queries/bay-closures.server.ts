@@ -2,7 +2,17 @@ import { and, asc, desc, eq, gt, gte, inArray, isNotNull, isNull, lt } from 'dri
 import { alias } from 'drizzle-orm/mysql-core'
 import type { SafetyEventKind } from '../../domain/permit-words.ts'
 import type { DbOrTx } from '../client.server.ts'
-import { bayClosure, equipment, instrument, line, person, safetyEvent, segment } from '../schema/index.ts'
+import {
+  bayClosure,
+  equipment,
+  fitting,
+  instrument,
+  line,
+  person,
+  position,
+  safetyEvent,
+  segment,
+} from '../schema/index.ts'
 
 const closer = alias(person, 'closer')
 const releaser = alias(person, 'releaser')
@@ -148,7 +158,7 @@ export async function lockOpenEventsAt(
     .for('update')
 }
 
-/** What the register says about an instrument of that serial number or a piece of equipment of that tag; null if neither. */
+/** What the register says about an instrument of that serial number, the one at a position of that tag, or a piece of equipment of that tag; null if none. */
 export async function findMeter(
   db: DbOrTx,
   name: string,
@@ -162,5 +172,15 @@ export async function findMeter(
     .select({ name: equipment.tag, calibrationDue: equipment.calibrationDue })
     .from(equipment)
     .where(eq(equipment.tag, name))
-  return tag ?? null
+  if (tag !== undefined) return tag
+  const [fitted] = await db
+    .select({ name: position.tag, calibrationDue: instrument.calibrationDue })
+    .from(position)
+    .innerJoin(
+      fitting,
+      and(eq(fitting.positionId, position.id), isNull(fitting.endsAt), isNull(fitting.replacedAt)),
+    )
+    .innerJoin(instrument, eq(instrument.id, fitting.instrumentId))
+    .where(eq(position.tag, name))
+  return fitted ?? null
 }
