@@ -42,15 +42,6 @@ export const ALERT_PRIORITY_LABELS: Record<AlertPriority, string> = {
  * corrected data. Shelved, suppressed and out of service are said beside it, with their own dates.
  */
 export const ALERT_STATES = ['active', 'owned', 'cleared-unseen', 'ended', 'withdrawn'] as const
-export type AlertState = (typeof ALERT_STATES)[number]
-
-export const ALERT_STATE_LABELS: Record<AlertState, string> = {
-  active: 'Active, nobody’s yet',
-  owned: 'Active, owned',
-  'cleared-unseen': 'Cleared, not yet seen',
-  ended: 'Ended',
-  withdrawn: 'Withdrawn (data corrected)',
-}
 
 export const ALERT_ACTS = [
   'raise',
@@ -67,10 +58,8 @@ export const ALERT_ACTS = [
   'escalate',
   'worsen',
 ] as const
-export type AlertAct = (typeof ALERT_ACTS)[number]
 
 export const SHELF_REASONS = ['known-work', 'false-signal', 'waiting-for-part', 'duplicate', 'other'] as const
-export type ShelfReason = (typeof SHELF_REASONS)[number]
 
 /** Who is called, in the order of the ladder. */
 export const LADDER_STEPS = [
@@ -82,11 +71,9 @@ export const LADDER_STEPS = [
   'engineer',
   'administrator',
 ] as const
-export type LadderStep = (typeof LADDER_STEPS)[number]
 
 export const MAIL_KINDS = ['alert', 'escalation', 'clear', 'digest', 'summary', 'notice', 'test'] as const
 export type MailKind = (typeof MAIL_KINDS)[number]
 
 /** Waiting for its time; taken by a worker; the mail server has said yes; given up; kept back for a summary or the digest. */
 export const MAIL_STATES = ['waiting', 'sending', 'sent', 'failed', 'folded'] as const
-export type MailState = (typeof MAIL_STATES)[number]

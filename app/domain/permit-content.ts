@@ -49,7 +49,7 @@ export const RequiredTestSchema = z.object({
 })
 export type RequiredTest = z.infer<typeof RequiredTestSchema>
 
-export const HazardAnswerSchema = z.object({
+const HazardAnswerSchema = z.object({
   /** Null until the requester has answered. */
   applies: z.boolean().nullable(),
   /** The precautions at this segment; or, where the hazard does not apply, why not. */

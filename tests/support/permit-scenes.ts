@@ -82,7 +82,7 @@ export function passwordOf(who: ScenePerson): string {
   return found.password
 }
 
-export function actorOf(who: ScenePerson): Actor {
+function actorOf(who: ScenePerson): Actor {
   return { personId: PERSON_ID[who], name: nameOf(PERSON_ID[who]), roles: ROLES_OF[who] }
 }
 
