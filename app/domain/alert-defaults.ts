@@ -294,7 +294,6 @@ export const ALERT_DEFAULTS: Record<AlertCondition, AlertRuleContent> = {
     onDelayS: 0,
     offDelayS: 0,
     priority: 'medium',
-    resetBy: ['safety-officer'],
     why: 'Heat without a live permit is work that nobody has agreed to.',
     whatToDo:
       'Before it ends: have it revalidated or extended, or have the heating off and handed back. After it: have the supply switched off, and let the officer write why if it has to stay on.',

@@ -116,11 +116,12 @@ function refusal(work: Promise<unknown>): Promise<DomainError> {
 describe('a corrected clock', () => {
   it('gives the bins of true time from readings and from rollups, and the former ones when taken away', async () => {
     const stored = await db.select().from(reading)
-    for (const change of [
+    const changes: Record<string, string>[] = [
       {},
       { startsAt: '2026-10-30 01:17', endsAt: '2026-10-31 12:00', startOffset: '-3:00', endOffset: '-4:11' },
       { startOffset: '0', endOffset: '0' },
-    ]) {
+    ]
+    for (const change of changes) {
       await correct(change)
       // While the rollups are due, by readings; then by rollups, of several lengths.
       await expectBins(600)

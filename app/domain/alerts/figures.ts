@@ -32,7 +32,7 @@ function number(label: string, unit: string, least: number, most: number): Figur
 const QUIET = seconds('Not judged for so long after a disturbance')
 const BIN = number('Readings are averaged over', 's', 60, 86_400)
 
-export const ALERT_FIGURES: Record<AlertCondition, Record<string, FigureFacts>> = {
+const ALERT_FIGURES: Record<AlertCondition, Record<string, FigureFacts>> = {
   'pressure-above-limit': { limitPa: pa('Limit'), clearRatio: ratio('Clears below the limit divided by') },
   'pressure-above-target': { limitPa: pa('Target'), clearRatio: ratio('Clears below the target divided by') },
   'fast-rise': {

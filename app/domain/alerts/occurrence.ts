@@ -4,7 +4,7 @@ import { ALERT_PRIORITIES, type AlertPriority } from '../alert-words.ts'
 import type { AlertEvent, AlertSubject } from './facts.ts'
 import type { Change } from './judge.ts'
 
-export const OccurrenceMemorySchema = z.object({
+const OccurrenceMemorySchema = z.object({
   /** Parts that are on. */
   open: z.array(z.string()),
   /** Parts told in this occurrence with the highest priority told for each. */

@@ -38,12 +38,6 @@ export function measured(series: Series, i: number): number {
   return worth(series, i) === MEASURED ? (series.value[i] as number) : Number.NaN
 }
 
-/** Whether a reading says anything at all: measured, over or under a bound. */
-export function speaks(series: Series, i: number): boolean {
-  const how = worth(series, i)
-  return how === MEASURED ? !Number.isNaN(series.value[i]) : how !== NOTHING
-}
-
 /** What a reading names, whatever it is worth as a measurement: the value, or the bound beside a word. */
 export function named(series: Series, i: number): number {
   if (worth(series, i) === MEASURED || series.bound === null) return series.value[i] as number
