@@ -4,6 +4,7 @@ import { findPermit } from '#app/db/queries/permits.server.ts'
 import { competence, heaterCircuit, permit, supplySet, valve } from '#app/db/schema/index.ts'
 import { emptyPermitContent, type PermitContent } from '#app/domain/permit-content.ts'
 import { permitFormValues } from '#app/domain/permit-form-values.ts'
+import { HAZARD_KEYS } from '#app/domain/permit-words.ts'
 import { machineNow } from '#app/machine-time.server.ts'
 import { createPermit, savePermit } from '#app/services/permits.server.ts'
 import { loadBuild, request, signIn } from '#tests/support/app.ts'
@@ -16,6 +17,7 @@ import {
   createUser,
   type TestUser,
 } from '#tests/support/factories.ts'
+import { fullContent } from '#tests/support/permit-content.ts'
 
 const ZONE = 'Europe/Berlin'
 const db = testDb()
@@ -76,11 +78,19 @@ beforeEach(async () => {
   number = await createPermit(db, bram, MORNING, { content: CONTENT })
 })
 
+function onlyOne(name: string, ids: readonly string[]): Record<string, string> {
+  if (ids.length > 1) throw new Error(`${name}: this test can send one person, not ${ids.length}`)
+  return ids[0] === undefined ? {} : { [name]: ids[0] }
+}
+
 /** The fields of the form as a browser sends them, with what a test changes. */
 function sent(change: Record<string, string> = {}, content: PermitContent = CONTENT): Record<string, string> {
   const fields: Record<string, string> = { intent: 'save', revision: '1', version: '1' }
   const put = (name: string, value: unknown): void => {
     if (typeof value === 'string') fields[name] = value.replaceAll('\n', '\r\n')
+    // A box for each person goes by one name; one of them is as many as a record of fields can hold.
+    else if (name === 'deputyIds' || name === 'crewIds')
+      Object.assign(fields, onlyOne(name, value as string[]))
     else
       for (const [key, inner] of Object.entries(value as object))
         put(name === '' ? key : `${name}.${key}`, inner)
@@ -324,6 +334,28 @@ describe('other states', () => {
     expect(refused.status).toBe(400)
     expect(tagOf(refused.html, 'maxCelsius')).toContain('value="95"')
     expect(await contentNow()).toEqual(CONTENT)
+  })
+
+  test('approved: with a reason the change is saved, and the permit waits for an officer again', async () => {
+    const hazards = Object.fromEntries(HAZARD_KEYS.map((key) => [key, { applies: true, text: '' }]))
+    const from = '2026-11-20T05:00:00.000Z'
+    const to = '2026-11-21T05:00:00.000Z'
+    const full = fullContent({ segments: ['SG-X2'], from, to, hazards })
+    number = await createPermit(db, bram, MORNING, { content: full })
+    await put('approved')
+    const without = await post(sent({ maxCelsius: '155', reason: '' }, full))
+    expect(without.status).toBe(400)
+    expect(tagOf(without.html, 'reason')).toContain('aria-invalid="true"')
+    const { status, location } = await post(
+      sent({ maxCelsius: '155', reason: 'Water needs it hotter' }, full),
+    )
+    expect([status, location]).toEqual([302, `/permits/${number}`])
+    expect(await findPermit(db, number)).toMatchObject({
+      state: 'requested',
+      version: 2,
+      approvedBy: null,
+      content: { ...full, maxCelsius: 155 },
+    })
   })
 })
 
