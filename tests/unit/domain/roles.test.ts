@@ -37,9 +37,9 @@ describe('permissions', () => {
     for (const permission of PERMISSIONS) expect(whoMay(permission).length, permission).toBeGreaterThan(0)
   })
 
-  test('a contributor sees and writes entries and nothing else', () => {
+  test('a contributor sees and writes entries, may stop work, and nothing else', () => {
     const own = PERMISSIONS.filter((permission) => roleHas('contributor', permission))
-    expect(own.sort()).toEqual(['entry:view', 'entry:write'])
+    expect(own.sort()).toEqual(['entry:view', 'entry:write', 'permit:stop'])
   })
 
   test('being administrator gives no authority over data, limits or forecasts of record', () => {
