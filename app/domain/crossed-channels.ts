@@ -11,7 +11,7 @@ import { type EventJudgement, judgeEvents, type KnownEvent } from './crossed-eve
 import { correlation, type GaugeSeries, together } from './crossed-series.ts'
 
 /** A channel under test, with the other gauges of the segment it is labelled for. */
-export interface TestedChannel extends GaugeSeries {
+interface TestedChannel extends GaugeSeries {
   segment: string
   others: readonly GaugeSeries[]
 }
@@ -25,7 +25,7 @@ export interface PairInput {
   events: readonly KnownEvent[]
 }
 
-export interface Correlations {
+interface Correlations {
   /** Of each channel's log pressure with the others of its own segment, and with those of the neighbour. */
   xOwn: number
   xNeighbour: number
@@ -34,7 +34,7 @@ export interface Correlations {
 }
 
 /** Root mean square departures in ln p since the beginning, from what each arrangement of the cables would give. */
-export interface Departures {
+interface Departures {
   xStraight: number
   xCrossed: number
   yStraight: number
@@ -51,8 +51,6 @@ export interface Suspicion {
   departures: Departures
   correlations: Correlations
   events: readonly EventJudgement[]
-  /** Distances of the two gauges from the others of their true segments, ln; for finding the begin more closely. */
-  distances: { a: number; b: number }
 }
 
 export type PairJudgement =
@@ -131,7 +129,6 @@ export function judgePair(input: PairInput): PairJudgement {
       yNeighbour: correlation(pick(y.ln), pick(own1)),
     },
     events: later,
-    distances: { a: found.crossedA, b: found.crossedB },
   }
 }
 
@@ -248,6 +245,8 @@ function byEvents(events: readonly EventJudgement[], { u, v }: Distances): Found
     crossedA: a,
     crossedB: b,
     by: 'events',
+    // Asked only where levels and movements have found nothing, so it is compared with no other.
+    cost: Number.POSITIVE_INFINITY,
     begin: { afterMs, byMs: first.event.atMs },
   }
 }

@@ -5,6 +5,7 @@ import type { Actor } from '../domain/actor.ts'
 import { DomainError } from '../domain/errors.ts'
 import type { LimitKind } from '../domain/register.ts'
 import { LIMIT_KINDS } from '../domain/register.ts'
+import { ProfileReadingSchema } from '../domain/schemas/profile-reading.ts'
 import { editedSchema, isEditedKind, type RegisterKind } from '../domain/schemas/register.ts'
 import {
   channelMapSchema,
@@ -20,6 +21,7 @@ import { setLimit } from './register-limits.server.ts'
 import { mapChannel } from './register-maps.server.ts'
 import { placePump } from './register-placements.server.ts'
 import { getSite } from './site.server.ts'
+import { setProfileReading } from './source-profile.server.ts'
 
 /** Checks posted values by a schema; given by the caller, who answers for the form's words. */
 export type Parse = <Schema extends z.ZodType>(schema: Schema, values: unknown) => z.infer<Schema>
@@ -48,6 +50,9 @@ export async function changeThing(
   }
   if (intent === 'sources: clock-correction') {
     return correctClock(db, actor, now, key, parse(clockCorrectionSchema(timeZone), typed))
+  }
+  if (intent === 'sources: profile-reading') {
+    return setProfileReading(db, actor, now, key, parse(ProfileReadingSchema, typed))
   }
   if (intent === 'positions: fitting') {
     return fitInstrument(db, actor, now, key, parse(fittingSchema(timeZone), typed))

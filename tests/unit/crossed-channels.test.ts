@@ -3,6 +3,7 @@ import { beginInFineBins } from '#app/domain/crossed-begin.ts'
 import { judgePair, type PairInput, type PairJudgement } from '#app/domain/crossed-channels.ts'
 import type { KnownEvent } from '#app/domain/crossed-events.ts'
 import { correlation, fullCountsOf, lnSeries, together } from '#app/domain/crossed-series.ts'
+import { beginWords, evidenceOf } from '#app/domain/crossed-words.ts'
 
 const BIN_MS = 7_200_000
 const FROM_MS = Date.UTC(2026, 5, 1)
@@ -198,18 +199,16 @@ describe('a gauge exchanged at the very time', () => {
 
 describe('the begin in finer bins', () => {
   it('is found where the coarse one only bounded it', () => {
-    const coarse = suspected(judgePair(scene({ crossedFrom: 121 })))
     const fine = { ...scene({ crossedFrom: 70 }), fromMs: at(118), binMs: 600_000 }
-    expect(beginInFineBins(fine, coarse)).toEqual({
+    expect(beginInFineBins(fine)).toEqual({
       afterMs: at(118) + 69 * 600_000,
       byMs: at(118) + 70 * 600_000,
     })
   })
 
   it('is not made up from a handful of bins', () => {
-    const coarse = suspected(judgePair(scene({ crossedFrom: 121 })))
     const fine = scene({ crossedFrom: 5, spoilX: (bin) => (bin < 10 ? 0 : Number.NaN) })
-    expect(beginInFineBins(fine, coarse)).toBeNull()
+    expect(beginInFineBins(fine)).toBeNull()
   })
 })
 
@@ -250,5 +249,35 @@ describe('series', () => {
   it('correlates only what both have', () => {
     expect(correlation([1, 2, Number.NaN, 4, 5], [2, 4, 9, 8, 10])).toBeCloseTo(1, 12)
     expect(correlation([1, 2], [1, 2])).toBeNaN()
+  })
+})
+
+describe('the evidence in words', () => {
+  const names = { x: { tag: 'HC-31B', segment: 'SG-31' }, y: { tag: 'HC-32A', segment: 'SG-32' } }
+  const written = (ms: number) => `bin ${Math.round((ms - FROM_MS) / BIN_MS)}`
+
+  it('names both departures, what is left, and that quiet correlations tell nothing', () => {
+    const suspicion = suspected(judgePair(scene({ crossedFrom: 121 })))
+    const [levels, events, correlations] = evidenceOf(suspicion, names, written)
+    expect(levels).toMatch(
+      /HC-31B left its place among the gauges of SG-31 by (4\d|5\d) % .* both fit to [1-3] %/,
+    )
+    expect(events).toMatch(/^No known event/)
+    expect(correlations).toMatch(/too much alike/)
+    expect(beginWords(suspicion, written)).toBe('since between bin 120 and bin 121')
+  })
+
+  it('tells what each side did at an event', () => {
+    const event: KnownEvent = { atMs: at(150), segment: 'SG-31', kind: 'state', text: 'port shut' }
+    const gas = (bin: number): [number, number] => [bin > 150 && bin < 154 ? 1.5 : 0, 0]
+    const suspicion = suspected(
+      judgePair(scene({ gas, levels: [0, 0], crossedFrom: 0, events: [event], scatter: 0.001 })),
+    )
+    const words = evidenceOf(suspicion, names, written)
+    expect(words[0]).toMatch(
+      /^bin 150, port shut: the other gauges of SG-31 went to 4\.4\d times, those of SG-32 to 1\.00 times, HC-31B to 1\.00 times, HC-32A to 4\.4\d times; each channel did what the other segment did\.$/,
+    )
+    expect(words.at(-1)).toMatch(/what moves follows the neighbour/)
+    expect(beginWords(suspicion, written)).toBe('at bin 150 already, perhaps for longer')
   })
 })

@@ -4,12 +4,17 @@ import { type EditedKind, isEditedKind, KIND_FACTS } from '#app/domain/schemas/r
 import type { FieldFact } from '#app/domain/schemas/register-fields.ts'
 import type { FieldValue } from '#app/domain/schemas/register-values.ts'
 import { useSite } from '#app/hooks/use-site.ts'
+import type { CrossedFindings } from '#app/services/crossed-suggestions.server.ts'
 import type { RegisterDetail } from '#app/services/register-page.server.ts'
+import type { ProfilePart } from '#app/services/source-profile.server.ts'
+import type { Typed } from '../forms/failure.ts'
 import { Notice } from '../ui/notice.tsx'
 import { Facts, PageHead, Panel } from '../ui/panel.tsx'
 import { dayText } from '../ui/site-time.ts'
 import { CellView } from './cell-view.tsx'
+import { CrossedPanel } from './crossed-panel.tsx'
 import { DATED_TITLES, DatedRowForm } from './dated-forms.tsx'
+import { PROFILE_INTENT, ProfileForm } from './profile-form.tsx'
 import { RegisterCrumbs, withArticle } from './register-pages.tsx'
 import { HistoryTable, RegisterTableView } from './register-table.tsx'
 import { type RegisterFailure, ThingForm } from './thing-form.tsx'
@@ -26,7 +31,17 @@ export function ThingPage({
   history,
   mayEdit,
   failure,
-}: RegisterDetail & { mayEdit: boolean; failure: RegisterFailure | undefined }) {
+  crossed,
+  suggested,
+  profile,
+}: RegisterDetail & {
+  mayEdit: boolean
+  failure: RegisterFailure | undefined
+  crossed: CrossedFindings | null
+  suggested: Typed | undefined
+  /** How a source's files are read; null for other kinds. */
+  profile: ProfilePart | null
+}) {
   const kindFacts = KIND_FACTS[kind]
   return (
     <>
@@ -62,13 +77,29 @@ export function ThingPage({
           </div>
         </Panel>
       )}
+      {crossed !== null && <CrossedPanel findings={crossed} mayEdit={mayEdit} />}
       {mayEdit && form !== null && (
-        <Folded title={DATED_TITLES[form.form].title} open={failure?.intent === form.form}>
+        <Folded
+          id="change"
+          title={DATED_TITLES[form.form].title}
+          open={failure?.intent === form.form || suggested !== undefined}
+        >
           <DatedRowForm
-            key={form.seen}
+            // Another suggestion is another form: its fields start anew.
+            key={`${form.seen} ${suggested?.position ?? ''} ${suggested?.startsAt ?? ''}`}
             form={form}
             segments={segments}
             failure={failure?.intent === form.form ? failure : undefined}
+            suggested={suggested}
+          />
+        </Folded>
+      )}
+      {mayEdit && profile !== null && (
+        <Folded title="Change how its files are read" open={failure?.intent === PROFILE_INTENT}>
+          <ProfileForm
+            key={profile.version}
+            profile={profile}
+            failure={failure?.intent === PROFILE_INTENT ? failure : undefined}
           />
         </Folded>
       )}
@@ -97,9 +128,19 @@ export function ThingPage({
 }
 
 /** A form that stays folded until it is wanted, so that looking something up is not looking past a form. */
-function Folded({ title, open, children }: { title: string; open: boolean; children: React.ReactNode }) {
+function Folded({
+  id,
+  title,
+  open,
+  children,
+}: {
+  id?: string
+  title: string
+  open: boolean
+  children: React.ReactNode
+}) {
   return (
-    <details open={open} className="mb-4.5 rounded-md border bg-sheet px-4 py-2 print:hidden">
+    <details id={id} open={open} className="mb-4.5 rounded-md border bg-sheet px-4 py-2 print:hidden">
       <summary className="min-h-8 cursor-pointer py-1 font-semibold">{title}</summary>
       <div className="max-w-3xl pt-3 pb-2">{children}</div>
     </details>

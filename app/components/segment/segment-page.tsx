@@ -5,6 +5,7 @@ import { IsolationTestsPanel } from '#app/components/isolation/tests-panel.tsx'
 import { ClosedStretches } from '#app/components/permits/closed-stretches.tsx'
 import { DangerPanel } from '#app/components/permits/danger-panel.tsx'
 import { PermitsPanel } from '#app/components/permits/permits-panel.tsx'
+import { CrossedPanel } from '#app/components/register/crossed-panel.tsx'
 import { ButtonLink } from '#app/components/ui/button.tsx'
 import { Instant } from '#app/components/ui/instant.tsx'
 import { Notice } from '#app/components/ui/notice.tsx'
@@ -12,6 +13,7 @@ import { PageHead, Panel } from '#app/components/ui/panel.tsx'
 import { StateMark } from '#app/components/ui/state-mark.tsx'
 import type { AskedPressure } from '#app/domain/schemas/asked-pressure.ts'
 import { SEGMENT_STATES } from '#app/domain/segment-states.ts'
+import type { CrossedFindings } from '#app/services/crossed-suggestions.server.ts'
 import type { SafetyNoticesData } from '#app/services/safety-notices.server.ts'
 import type { SegmentPageData } from '#app/services/segment-page.server.ts'
 import { BakePanel } from './bake-panel.tsx'
@@ -36,7 +38,10 @@ export interface SegmentPageProps extends SegmentPageData {
     draftPermit: boolean
     stateHeating: boolean
     tolerate: boolean
+    editRegister: boolean
   }
+  /** Comparison with the neighbours' channels; null when it was not asked for. */
+  crossed: CrossedFindings | null
 }
 
 export function SegmentPage(props: SegmentPageProps) {
@@ -128,7 +133,19 @@ export function SegmentPage(props: SegmentPageProps) {
           <SegmentChart {...props} />
           <Panel title="Gauges">
             <GaugesTable gauges={props.gauges} />
+            {props.crossed === null && (
+              <p className="mt-2 print:hidden">
+                <Link to="?compare#compared" preventScrollReset className="link">
+                  Compare its channels with the neighbours’
+                </Link>
+              </p>
+            )}
           </Panel>
+          {props.crossed !== null && (
+            <div id="compared">
+              <CrossedPanel findings={props.crossed} mayEdit={may.editRegister} />
+            </div>
+          )}
           <IonCurrentsPanel tag={tag} currents={props.ionCurrents} from={props.curves.from} />
         </div>
         <div className="grid min-w-0 items-start gap-x-4.5 md:grid-cols-2 xl:grid-cols-1">

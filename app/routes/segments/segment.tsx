@@ -4,6 +4,7 @@ import { getDb } from '#app/db/client.server.ts'
 import { rolesHave } from '#app/domain/roles.ts'
 import { readAskedPressure } from '#app/domain/schemas/asked-pressure.ts'
 import { orRefuse } from '#app/server/respond.server.ts'
+import { readCrossedFindings } from '#app/services/crossed-suggestions.server.ts'
 import { readSafetyNotices } from '#app/services/safety-notices.server.ts'
 import { readSegmentPage } from '#app/services/segment-page.server.ts'
 import { getSite } from '#app/services/site.server.ts'
@@ -22,8 +23,11 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
     getSite(getDb()),
     readSafetyNotices(getDb(), params.tag),
   ])
+  // Comparing reads six weeks of three segments: where a reading is questioned already, or when asked for.
+  const compare = page.standing.questions.length > 0 || url.searchParams.has('compare')
   return {
     ...page,
+    crossed: compare ? await readCrossedFindings(getDb(), now, params.tag) : null,
     now,
     zone: site.timeZone,
     asked,
@@ -36,6 +40,7 @@ export async function loader({ context, request, params, url }: Route.LoaderArgs
       recordTest: rolesHave(actor.roles, 'isolation-test:record'),
       draftPermit: rolesHave(actor.roles, 'permit:draft'),
       stateHeating: rolesHave(actor.roles, 'heating:state'),
+      editRegister: rolesHave(actor.roles, 'register:edit'),
       tolerate: rolesHave(actor.roles, 'permit:approve'),
     },
   }
