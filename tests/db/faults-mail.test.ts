@@ -14,7 +14,9 @@ import { startTroubledServer, type Trouble, type TroubledServer } from '#tests/s
 
 const db = freshDatabase()
 const MAILS = 60
-const WITHIN_MS = 60_000
+const WITHIN_MS = 120_000
+/** Each takes ten seconds: two in every run, all of those asked for in a soak. */
+const SEEDS = process.env.FAULT_SEEDS === undefined ? FAULT_SEEDS.slice(0, 2) : FAULT_SEEDS
 
 let smtp: TroubledServer
 
@@ -101,7 +103,7 @@ async function expectNoneLost(): Promise<void> {
   expect(tries.filter(({ accepted }) => accepted).length).toBeGreaterThanOrEqual(MAILS)
 }
 
-it.each(FAULT_SEEDS)(
+it.each(SEEDS)(
   'a worker killed before, amid and after handing messages over loses none (seed %i)',
   async (seed) => {
     await enqueueMany()
@@ -130,7 +132,7 @@ it.each(FAULT_SEEDS)(
   WITHIN_MS,
 )
 
-it.each(FAULT_SEEDS)(
+it.each(SEEDS)(
   'a mail server that refuses, stalls and hangs up at any moment gets every mail in the end (seed %i)',
   async (seed) => {
     await enqueueMany()
