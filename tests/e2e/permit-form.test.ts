@@ -151,3 +151,30 @@ test('fits into a telephone, a tablet and a desk', async () => {
   }
   await view.close()
 })
+
+test('no field that takes the focus by Tab lies under the bar with the buttons on a telephone', async () => {
+  const view = await openPage(browser, inject('demoUrl'), { viewport: { width: 390, height: 844 } })
+  const { page } = view
+  await view.signIn('engineer')
+  await view.goto('/permits/HSP-2026-033/edit')
+  await page.getByLabel('Title', { exact: true }).focus()
+  const hidden: string[] = []
+  let stops = 0
+  for (let inBar = false; !inBar && stops < 250; stops += 1) {
+    await page.keyboard.press('Tab')
+    const at = await page.evaluate(() => {
+      const bar = document.querySelector('[data-foot-bar]')
+      const focus = document.activeElement
+      const under =
+        bar !== null && focus !== null && focus.getBoundingClientRect().top >= bar.getBoundingClientRect().top
+      return { inBar: bar?.contains(focus) ?? true, under, name: focus?.getAttribute('name') ?? '' }
+    })
+    inBar = at.inBar
+    if (!inBar && at.under) hidden.push(at.name)
+  }
+  expect(hidden).toEqual([])
+  // The walk has gone through the form and ended at its bar.
+  expect(stops).toBeGreaterThan(60)
+  expect(stops).toBeLessThan(250)
+  await view.close()
+})

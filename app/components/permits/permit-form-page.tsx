@@ -200,7 +200,10 @@ function OpenForm(props: PermitFormPageProps) {
                   Save and go on to request
                 </Button>
               )}
-              <div className="sticky bottom-14 z-10 -mx-1 flex flex-wrap items-center justify-between gap-x-4 gap-y-2 border-t bg-paper px-1 py-2.5 md:bottom-0 print:hidden">
+              <div
+                data-foot-bar
+                className="sticky bottom-14 z-10 -mx-1 flex flex-wrap items-center justify-between gap-x-4 gap-y-2 border-t bg-paper px-1 py-2.5 md:bottom-0 print:hidden"
+              >
                 <SaveWords status={saving.status} asTyped={mode === 'free'} />
                 <div className="flex flex-wrap gap-2">
                   {mode === 'free' ? (
