@@ -127,8 +127,11 @@ test('whoever sees nothing but the stop card can stop work with it, and sees tha
 
 test('the page offers each reader their own acts and no others', async () => {
   const { number } = await permitIn('issued')
-  const offered = async (user: TestUser) =>
-    [...(await open(user, `/permits/${number}`)).html.matchAll(/\?act=([a-z-]+)#act/g)].map(([, act]) => act)
+  // An act that would be refused is named a second time at the head, with the way to its reasons.
+  const offered = async (user: TestUser) => {
+    const { html } = await open(user, `/permits/${number}`)
+    return [...new Set([...html.matchAll(/\?act=([a-z-]+)#act/g)].map(([, act]) => act))]
+  }
   expect(await offered(holder)).toEqual(['revalidate', 'hand-back'])
   expect(await offered(officer)).toEqual(['extend'])
   expect(await offered(engineer)).toEqual([])
