@@ -8,6 +8,9 @@ const underTest = process.env.VITEST !== undefined
 /** Test files with a database of their own: the demo's, or that of a server that they kill. */
 const OWN_DATABASE = ['tests/db/seed*.test.ts', 'tests/db/faults-database.test.ts']
 
+/** Browser tests of permits that take minutes: too long for every run. */
+const LONG_IN_A_BROWSER = ['tests/e2e/permits-live.test.ts', 'tests/e2e/permit-form.test.ts']
+
 export default defineConfig({
   plugins: underTest ? [] : [tailwindcss(), reactRouter()],
   // Vite would otherwise pick one of its default ports and open it on every interface.
@@ -68,8 +71,21 @@ export default defineConfig({
         test: {
           name: 'e2e',
           include: ['tests/e2e/**/*.test.ts'],
+          exclude: LONG_IN_A_BROWSER,
           globalSetup: ['tests/support/one-demo.ts'],
           // The files share one demo: none may change what another one looks at.
+          maxWorkers: 2,
+          testTimeout: 400_000,
+          hookTimeout: 180_000,
+        },
+      },
+      {
+        extends: true,
+        // Minutes of browser work: run by the soak, and by name.
+        test: {
+          name: 'e2e-long',
+          include: LONG_IN_A_BROWSER,
+          globalSetup: ['tests/support/one-demo.ts'],
           maxWorkers: 2,
           testTimeout: 400_000,
           hookTimeout: 180_000,

@@ -6,7 +6,7 @@ import { runChecks } from './checks.mjs'
 import { start } from './processes.mjs'
 import { outcomeOf } from './report.mjs'
 
-const HANGS_AFTER_MS = 8 * 60_000
+const HANGS_AFTER_MS = 12 * 60_000
 
 /**
  * @typedef {object} Surroundings
