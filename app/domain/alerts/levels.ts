@@ -12,7 +12,7 @@ interface Level {
   limitAt: () => (ms: number) => number
   backOf: (limit: number) => number
   /** For the title and the sentence. */
-  describe: (value: number, limit: number, ms: number) => { what: string; text: string }
+  describe: (value: number, limit: number) => { what: string; text: string }
 }
 
 /** Judges a series against one or several limits from above. */
@@ -31,9 +31,16 @@ function judgeLevels(of: Case<unknown>, series: Series, unit: string, levels: re
           return zoneAbove(series, i, limit, backOf(limit))
         }
       },
-      describe(value, at) {
+      describe(value, at, on) {
         const limit = limitAt()(at)
-        return { limit, ...describe(value, limit, at) }
+        const { what, text } = describe(value, limit)
+        if (on) return { limit, what, text }
+        const back = `${series.tag} back at ${figureText(value, unit)}`
+        return {
+          limit,
+          what: back,
+          text: `${back}, below the ${figureText(backOf(limit), unit)} at which it clears.`,
+        }
       },
       unlimited: (at) => Number.isNaN(limitAt()(at)),
     })),
