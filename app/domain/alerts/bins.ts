@@ -96,6 +96,13 @@ export class Bins {
   coverage(lastIndex: number, count: number): number {
     return covered(this.window(lastIndex, count), count, this.binMs)
   }
+
+  /** Share of so many bins before an instant, the one that is being filled with them, that good readings cover. */
+  coverageBefore(untilMs: number, count: number): number {
+    const last = Math.ceil(untilMs / this.binMs) - 1
+    const filling = this.#open !== null && this.#open.index <= last ? [this.#open] : []
+    return Math.min(1, covered([...this.window(last, count), ...filling], count, this.binMs))
+  }
 }
 
 /** Share of so many bins that good readings cover. */

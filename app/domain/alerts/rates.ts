@@ -46,14 +46,12 @@ function judgeRate(of: Case<SeriesFacts>, rate: Rate): Judge {
   )
   const quietS = figure(of, 'quietAfterS')
   let ranFromMs = Number.NEGATIVE_INFINITY
-  let coverage = (kept(memory, 'coverage') as number | undefined) ?? 0
   let forgotMs = (kept(memory, 'forgotMs') as number | null | undefined) ?? null
 
   function judgeBin(closedBy: number, changes: Change[]): void {
     const bin = bins.close() as Bin
     const window = bins.window(bin.index, count)
-    coverage = bins.coverage(bin.index, count)
-    if (coverage < content.coverage) return
+    if (bins.coverage(bin.index, count) < content.coverage) return
     const slope = medianSlope(window)
     const newest = bin.sum / bin.count
     const at = bin.index * binMs
@@ -99,15 +97,14 @@ function judgeRate(of: Case<SeriesFacts>, rate: Rate): Judge {
         )
       }
       const known = latch.knownMs
-      if (known !== null && untilMs - known <= 1000 * windowS) {
-        return EVALUABLE
-      }
+      const covers = bins.coverageBefore(untilMs, count)
+      if (known !== null && untilMs - known <= 1000 * windowS && covers >= content.coverage) return EVALUABLE
       const asked = Math.round(100 * content.coverage)
       return notEvaluable(
-        `${silenceText(series, known, ranFromMs, untilMs)} Good readings cover ${Math.round(100 * coverage)} % of the window, ${asked} % are asked for.`,
+        `${silenceText(series, known, ranFromMs, untilMs)} Good readings cover ${Math.round(100 * covers)} % of the window, ${asked} % are asked for.`,
       )
     },
-    memory: () => ({ bins: bins.memory(), latch: latch.memory(), coverage, forgotMs }),
+    memory: () => ({ bins: bins.memory(), latch: latch.memory(), forgotMs }),
   }
 }
 

@@ -10,6 +10,7 @@ import { type Quality, qualityCode } from '#app/domain/readings.ts'
 export const T0 = Date.parse('2026-11-08T20:00:00.000Z')
 export const MIN = 60_000
 export const HOUR = 3_600_000
+export const DAY = 24 * HOUR
 export const COMMON = { states: [], disturbances: [] }
 const SUBJECT: AlertSubject = { kind: 'position', tag: 'HC-01A', segment: 'SG-01' }
 
